@@ -1,0 +1,1 @@
+//! What to decide: keep or replace, and which bid.

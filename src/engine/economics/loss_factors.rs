@@ -1,0 +1,258 @@
+//! Capitalised loss factors A, B and auxiliary: what a kW of loss is worth, once, in today's money.
+
+use super::Assumptions;
+use super::discounting::running;
+use crate::engine::Refusal;
+use crate::engine::columns::FactorMethod;
+use crate::engine::loading::Duty;
+use crate::engine::loading::duty::growth;
+use crate::engine::working::{Formula, Recorder};
+
+/// The factors, money per kW of loss, once.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct LossFactors {
+    /// Of no-load loss.
+    pub factor_a_per_kw: f64,
+    /// Of load loss at rated load.
+    pub factor_b_per_kw: f64,
+    /// Of auxiliary loss.
+    pub factor_aux_per_kw: f64,
+}
+
+const A_PV: Formula = Formula {
+    name: "value of a kW of no-load loss",
+    symbol: "A",
+    formula: "Σ_k d_k·(h·(c0·idx_k + p_Ck·κ0/1000) + D·idxD_k) = h·c0·X_energy + h·κ0·X_carbon + D·X_demand",
+    unit: "money/kW",
+    source: "annuity form of IEC TS 60076-20 (memory) with demand and carbon; methods, section 5",
+};
+const B_PV: Formula = Formula {
+    name: "value of a kW of load loss at rated load",
+    symbol: "B",
+    formula: "β²·(h·LsF·(ck·Y_energy + κk·Y_carbon) + D·PRF²·Y_demand)",
+    unit: "money/kW",
+    source: "annuity form of IEC TS 60076-20 (memory) with demand and carbon; methods, section 5",
+};
+const AUX_PV: Formula = Formula {
+    name: "value of a kW of auxiliary loss",
+    symbol: "A_aux",
+    formula: "h_aux·(c0·X_energy + κ0·X_carbon)",
+    unit: "money/kW",
+    source: "methods, section 5",
+};
+const SUM: Formula = Formula {
+    name: "discounted price index over the horizon",
+    symbol: "X",
+    formula: "Σ_k d_k·index_k",
+    unit: "years",
+    source: "methods, section 5",
+};
+const SUM_GROWN: Formula = Formula {
+    name: "discounted price index times squared load growth over the horizon",
+    symbol: "Y",
+    formula: "Σ_k d_k·index_k·(S_k/S_1)²",
+    unit: "years",
+    source: "methods, section 5",
+};
+
+/// Σ_k d_k·index_k, and the same with the squared growth of the load.
+#[derive(Clone, Copy, Debug, Default)]
+struct Sums {
+    plain: f64,
+    grown: f64,
+}
+
+fn sums(a: &Assumptions, duty: &Duty, escalation: f64) -> Sums {
+    let mut sums = Sums::default();
+    for k in 1..=a.years {
+        let term = running(a.rate, k, a.cash_flow) * Assumptions::index(escalation, k);
+        let grown = growth(duty.load_growth_pu, k, a.load_growth_years);
+        sums.plain += term;
+        sums.grown += term * grown * grown;
+    }
+    sums
+}
+
+/// The factors of a duty on a transformer of `rated_kva`, by the method of the basis.
+///
+/// # Errors
+/// The levelized method without a fixed charge rate.
+pub fn of_duty<R: Recorder>(
+    w: &mut R,
+    duty: &Duty,
+    rated_kva: f64,
+    a: &Assumptions,
+) -> Result<LossFactors, Refusal> {
+    match a.factor_method {
+        FactorMethod::PresentValue => Ok(present_value(w, duty, rated_kva, a)),
+        FactorMethod::Levelized => levelized(w, duty, rated_kva, a),
+    }
+}
+
+/// Present value of the yearly cost of a kW of loss: so that owning cost and yearly costs agree.
+pub fn present_value<R: Recorder>(
+    w: &mut R,
+    duty: &Duty,
+    rated_kva: f64,
+    a: &Assumptions,
+) -> LossFactors {
+    let energy = sums(a, duty, a.energy_escalation);
+    let demand = sums(a, duty, a.demand_escalation);
+    let carbon = {
+        let s = sums(a, duty, a.carbon_escalation);
+        let per_kg = a.carbon_price_per_t / 1000.0;
+        Sums { plain: s.plain * per_kg, grown: s.grown * per_kg }
+    };
+    let (h, d) = (duty.energised_hours, a.demand_charge_per_kw_year);
+    let beta = duty.peak_kva / rated_kva;
+    let prf = duty.responsibility_pu;
+
+    w.open();
+    about(w, &SUM, energy.plain, "energy");
+    let (c0, k0) = (duty.no_load_price_per_kwh, duty.no_load_co2_kg_per_kwh);
+    let factor_a = h * (c0 * energy.plain + k0 * carbon.plain) + d * demand.plain;
+    if d > 0.0 {
+        about(w, &SUM, demand.plain, "demand");
+    }
+    if a.carbon_price_per_t > 0.0 {
+        about(w, &SUM, carbon.plain, "carbon (with its price per kg)");
+    }
+    let inputs = [
+        ("h", h),
+        ("c0", c0),
+        ("X_energy", energy.plain),
+        ("κ0", k0),
+        ("X_carbon", carbon.plain),
+        ("D", d),
+        ("X_demand", demand.plain),
+    ];
+    w.close(&A_PV, &inputs, factor_a);
+
+    w.open();
+    about(w, &SUM_GROWN, energy.grown, "energy");
+    let (ck, kk) = (duty.load_price_per_kwh, duty.load_co2_kg_per_kwh);
+    let factor_b = (beta * beta)
+        * (h * duty.loss_factor_pu * (ck * energy.grown + kk * carbon.grown)
+            + d * (prf * prf) * demand.grown);
+    let inputs = [
+        ("β", beta),
+        ("h", h),
+        ("LsF", duty.loss_factor_pu),
+        ("ck", ck),
+        ("Y_energy", energy.grown),
+        ("κk", kk),
+        ("Y_carbon", carbon.grown),
+        ("D", d),
+        ("PRF", prf),
+        ("Y_demand", demand.grown),
+    ];
+    w.close(&B_PV, &inputs, factor_b);
+
+    let aux = duty.auxiliary_hours * (c0 * energy.plain + k0 * carbon.plain);
+    let inputs = [
+        ("h_aux", duty.auxiliary_hours),
+        ("c0", c0),
+        ("X_energy", energy.plain),
+        ("κ0", k0),
+        ("X_carbon", carbon.plain),
+    ];
+    w.step(&AUX_PV, &inputs, aux);
+    LossFactors { factor_a_per_kw: factor_a, factor_b_per_kw: factor_b, factor_aux_per_kw: aux }
+}
+
+fn about<R: Recorder>(w: &mut R, formula: &'static Formula, value: f64, of: &'static str) {
+    w.step(formula, &[], value);
+    w.about(&|| of.to_owned());
+}
+
+const CRF: Formula = Formula {
+    name: "capital recovery factor of the horizon",
+    symbol: "CRF",
+    formula: "1/Σ_k d_k",
+    unit: "1/year",
+    source: "IEEE C57.120 (memory); methods, section 5",
+};
+const EC: Formula = Formula {
+    name: "levelised energy price",
+    symbol: "EC",
+    formula: "CRF·c0·Σ_k d_k·idx_k",
+    unit: "money/kWh",
+    source: "IEEE C57.120 (memory); methods, section 5",
+};
+const PUL2: Formula = Formula {
+    name: "levelised square of the peak load",
+    symbol: "PUL²",
+    formula: "CRF·Σ_k d_k·β_k²",
+    unit: "pu²",
+    source: "IEEE C57.120 (memory); methods, section 5",
+};
+const A_LEVEL: Formula = Formula {
+    name: "value of a kW of no-load loss, levelized",
+    symbol: "A",
+    formula: "(LIC + h·EC)/(ET·FCR·IF)",
+    unit: "money/kW",
+    source: "IEEE C57.120 (memory); methods, section 5",
+};
+const B_LEVEL: Formula = Formula {
+    name: "value of a kW of load loss at rated load, levelized",
+    symbol: "B",
+    formula: "(LIC·PRF² + h·EC·LsF)·PUL2/(ET·FCR·IF)",
+    unit: "money/kW",
+    source: "IEEE C57.120 (memory); methods, section 5",
+};
+const AUX_LEVEL: Formula = Formula {
+    name: "value of a kW of auxiliary loss, levelized",
+    symbol: "A_aux",
+    formula: "h_aux·EC/(ET·FCR·IF)",
+    unit: "money/kW",
+    source: "IEEE C57.120 (memory); methods, section 5",
+};
+
+/// The levelized form of IEEE C57.120 (memory): price and load levelised apart; not a present value.
+///
+/// # Errors
+/// No fixed charge rate.
+pub fn levelized<R: Recorder>(
+    w: &mut R,
+    duty: &Duty,
+    rated_kva: f64,
+    a: &Assumptions,
+) -> Result<LossFactors, Refusal> {
+    let Some(fcr) = a.fixed_charge_rate else {
+        let why = "is required by factor_method \"levelized\"";
+        return Err(Refusal::new("fixed_charge_rate_pct", "", why));
+    };
+    let discount = |k| running(a.rate, k, a.cash_flow);
+    let crf = 1.0 / (1..=a.years).map(discount).sum::<f64>();
+    let energy = sums(a, duty, a.energy_escalation).plain;
+    let flat = sums(a, duty, 0.0).grown;
+    let beta = duty.peak_kva / rated_kva;
+    let (et, increase) = (a.transmission_efficiency_pu, a.increase_factor);
+    let divisor = et * fcr * increase;
+    let (h, lic, prf) = (duty.energised_hours, a.investment_per_kw_year, duty.responsibility_pu);
+    let ec = crf * duty.no_load_price_per_kwh * energy;
+    let pul2 = crf * flat * (beta * beta);
+
+    w.open();
+    w.step(&CRF, &[], crf);
+    w.step(&EC, &[("CRF", crf), ("c0", duty.no_load_price_per_kwh)], ec);
+    let factor_a = (lic + h * ec) / divisor;
+    let ends = [("ET", et), ("FCR", fcr), ("IF", increase)];
+    let with = |own: &[(&'static str, f64)]| [own, &ends].concat();
+    w.close(&A_LEVEL, &with(&[("LIC", lic), ("h", h), ("EC", ec)]), factor_a);
+    w.open();
+    w.step(&PUL2, &[("CRF", crf)], pul2);
+    let factor_b = (lic * (prf * prf) + h * ec * duty.loss_factor_pu) * pul2 / divisor;
+    let inputs = [
+        ("LIC", lic),
+        ("PRF", prf),
+        ("h", h),
+        ("EC", ec),
+        ("LsF", duty.loss_factor_pu),
+        ("PUL2", pul2),
+    ];
+    w.close(&B_LEVEL, &with(&inputs), factor_b);
+    let aux = duty.auxiliary_hours * ec / divisor;
+    w.step(&AUX_LEVEL, &with(&[("h_aux", duty.auxiliary_hours), ("EC", ec)]), aux);
+    Ok(LossFactors { factor_a_per_kw: factor_a, factor_b_per_kw: factor_b, factor_aux_per_kw: aux })
+}

@@ -1,0 +1,73 @@
+//! What is doubtful about a figure: one table of flags, each with its key and its sentence.
+
+/// A set of flags, kept as bits.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub struct Flags(pub u32);
+
+macro_rules! flags {
+    ($($bit:expr, $constant:ident, $key:literal, $meaning:literal;)+) => {
+        impl Flags {
+            $(#[doc = $meaning] pub const $constant: Self = Self(1 << $bit);)+
+        }
+        /// Every flag with its key (JSON, CSV) and its meaning (screens, docs).
+        pub const FLAGS: &[(Flags, &str, &str)] = &[$((Flags::$constant, $key, $meaning)),+];
+    };
+}
+
+flags! {
+    0, LOSS_FACTOR_ESTIMATED, "loss_factor_estimated", "the loss factor is estimated from the load factor (w·LF + (1−w)·LF²)";
+    1, PRICE_NOT_WEIGHTED, "price_not_weighted", "no profile: load losses are priced at the plain mean of the price series";
+    2, YEAR_MADE_BLANK, "year_made_blank", "year_made is blank: no failures are counted for the unit nor for what replaces it";
+    3, LOADING_CONTRADICTS, "loading_contradicts", "load or loss factor given beside the profile differs from it by more than 0.05; the profile counts";
+    4, LOSSES_CONTRADICT, "losses_contradict", "total_loss_w differs from no_load_loss_w + load_loss_w by more than 1 %; the parts count";
+    5, LOAD_LOSS_FROM_TOTAL, "load_loss_from_total", "the load loss is total_loss_w less the no-load loss";
+    6, LOSS_BASE_DIFFERS, "loss_base_differs", "the load loss was quoted at loss_base_kva and is brought to rated_kva";
+    7, OVERLOADED, "overloaded", "the peak load of year 1 is above the rating";
+    8, VOLTAGE_BLANK, "voltage_blank", "a voltage is blank: offers of every voltage count as fitting";
+    9, PHASES_BLANK, "phases_blank", "phases is blank: one- and three-phase offers count as fitting";
+    10, VECTOR_GROUP_UNREAD, "vector_group_unread", "the vector group has no clock number that could be read; it is passed over";
+    11, CARBON_SERIES, "carbon_series", "both the basis and the price series give CO2 per kWh; the series counts";
+    12, LOSS_ESTIMATED, "loss_estimated", "a loss is estimated from the fleet's known units";
+    13, SPLIT_UNKNOWN, "split_unknown", "the stray part of the load loss is the basis's stray_share_pu";
+    14, NO_REFERENCE_TEMP, "no_reference_temp", "no reference temperature: the load loss is compared as quoted";
+    15, LIMIT_UNKNOWN, "limit_unknown", "a value that the lot limits is blank in the bid; it passes";
+    16, LAW_RELAXED, "law_relaxed", "no offer meets the law in a year in which the unit may fail; a forced purchase passes it over";
+    17, VERIFY_LAW, "verify_law", "the legal table is marked as remembered: verify it in the official text";
+    18, FACTOR_SCALE, "factor_scale", "capitalised losses are under 1 % of the price of every bid: check that the factors are per kW, not per W";
+    19, NO_LIFE, "no_life", "no life for this offer";
+    20, DROP_AT_RMS, "drop_at_rms", "voltage drop at the RMS load: no profile to integrate over";
+    21, RESPONSIBILITY_DEFAULT, "responsibility_default", "demand charge at full own peak: no responsibility_pu and no system load are known";
+    22, LOSSES_SWAPPED, "losses_swapped", "the load loss is below the no-load loss: were they exchanged?";
+}
+
+impl Flags {
+    /// No flag.
+    pub const NONE: Self = Self(0);
+
+    /// Both sets together.
+    #[must_use]
+    pub const fn with(self, other: Self) -> Self {
+        Self(self.0 | other.0)
+    }
+
+    /// The set with `flag` where `condition` holds.
+    #[must_use]
+    pub const fn with_if(self, condition: bool, flag: Self) -> Self {
+        if condition { self.with(flag) } else { self }
+    }
+
+    /// Whether all of `other` are in.
+    pub const fn has(self, other: Self) -> bool {
+        self.0 & other.0 == other.0
+    }
+
+    /// The keys of the flags that are up.
+    pub fn keys(self) -> Vec<&'static str> {
+        FLAGS.iter().filter(|(flag, ..)| self.has(*flag)).map(|(_, key, _)| *key).collect()
+    }
+
+    /// The sentences of the flags that are up.
+    pub fn meanings(self) -> Vec<&'static str> {
+        FLAGS.iter().filter(|(flag, ..)| self.has(*flag)).map(|(.., meaning)| *meaning).collect()
+    }
+}

@@ -1,0 +1,10 @@
+//! What a place asks of a transformer over a year: profiles, price series, load and loss factors, the duty.
+
+pub mod duty;
+pub mod factors;
+pub mod prices;
+pub mod profile;
+
+pub use duty::Duty;
+pub use prices::{Market, PriceSeries, Weights};
+pub use profile::{Profile, Ratios};

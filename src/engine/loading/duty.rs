@@ -1,0 +1,62 @@
+//! The duty of a place: all that a year there asks of whatever transformer stands in it.
+
+use crate::engine::working::{Formula, Recorder};
+
+/// What a place asks of a transformer.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Duty {
+    /// Highest load of year 1.
+    pub peak_kva: f64,
+    /// Growth of the load a year, g.
+    pub load_growth_pu: f64,
+    /// Mean over peak, LF, where it is known.
+    pub load_factor_pu: Option<f64>,
+    /// Mean square over peak square, LsF.
+    pub loss_factor_pu: f64,
+    /// Hours under voltage, h.
+    pub energised_hours: f64,
+    /// Hours of fans and pumps.
+    pub auxiliary_hours: f64,
+    /// Load at the system peak over own peak, PRF.
+    pub responsibility_pu: f64,
+    /// Price of a kWh of constant loss, c̄0.
+    pub no_load_price_per_kwh: f64,
+    /// Price of a kWh of load loss, c̄k.
+    pub load_price_per_kwh: f64,
+    /// CO2 of a kWh of constant loss, κ̄0.
+    pub no_load_co2_kg_per_kwh: f64,
+    /// CO2 of a kWh of load loss, κ̄k.
+    pub load_co2_kg_per_kwh: f64,
+}
+
+const PEAK: Formula = Formula {
+    name: "peak load of year k",
+    symbol: "S_k",
+    formula: "S_1·(1+g)^(min(k,Y)−1)",
+    unit: "kVA",
+    source: "methods, section 4",
+};
+
+/// Peak load of year `k` = 1, 2, … for a load that grows for `growth_years` years (kVA).
+pub fn peak_of_year<R: Recorder>(w: &mut R, duty: &Duty, k: usize, growth_years: usize) -> f64 {
+    let value = duty.peak_kva * growth(duty.load_growth_pu, k, growth_years);
+    #[expect(clippy::cast_precision_loss, reason = "at most 200 years")]
+    let inputs = [
+        ("S_1", duty.peak_kva),
+        ("g", duty.load_growth_pu),
+        ("k", k as f64),
+        ("Y", growth_years as f64),
+    ];
+    w.step(&PEAK, &inputs, value)
+}
+
+/// The growth factor (1+g)^(min(k,Y)−1) of year `k`.
+pub fn growth(load_growth_pu: f64, k: usize, growth_years: usize) -> f64 {
+    #[expect(
+        clippy::cast_possible_truncation,
+        clippy::cast_possible_wrap,
+        reason = "at most 200 years"
+    )]
+    let power = k.min(growth_years) as i32 - 1;
+    (1.0 + load_growth_pu).powi(power)
+}

@@ -1,0 +1,147 @@
+//! Price series: the mean price of a constant loss, of a loss that follows a profile, and the same for CO2.
+
+use super::profile::Profile;
+use crate::engine::Refusal;
+
+/// Energy prices of a year in equal steps, with emission factors and the load of the whole system where known.
+#[derive(Clone, Debug, PartialEq)]
+pub struct PriceSeries {
+    /// Identifier.
+    pub name: String,
+    /// Length of a step in minutes.
+    pub step_minutes: u32,
+    /// Price of each step.
+    pub price_per_kwh: Vec<f64>,
+    /// CO2 of a kWh in each step.
+    pub co2_kg_per_kwh: Option<Vec<f64>>,
+    /// Load of the system in each step, at any scale.
+    pub system_load: Option<Vec<f64>>,
+}
+
+/// Price and CO2 of a kWh of some loss, and the share of own peak load at the system peak.
+#[derive(Clone, Copy, Debug, Default, PartialEq)]
+pub struct Weights {
+    /// Mean price, c̄.
+    pub price_per_kwh: f64,
+    /// Mean emission factor, κ̄.
+    pub co2_kg_per_kwh: f64,
+    /// Load at the first step of greatest system load over own peak; none where it is not known.
+    pub responsibility_pu: Option<f64>,
+}
+
+/// What energy costs: for a constant loss, and for the load loss of each profile.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Market {
+    /// Of a constant loss (c̄0, κ̄0).
+    pub constant: Weights,
+    /// Of a load loss by profile, in the order of the profiles (c̄k, κ̄k); with a flat price all equal.
+    pub profiles: Vec<Weights>,
+    /// Whether the price differs from step to step.
+    pub series: bool,
+}
+
+impl Market {
+    /// A flat price: every loss pays the same.
+    pub fn flat(price_per_kwh: f64, co2_kg_per_kwh: f64, profiles: usize) -> Self {
+        let constant = Weights { price_per_kwh, co2_kg_per_kwh, responsibility_pu: None };
+        Self { constant, profiles: vec![constant; profiles], series: false }
+    }
+
+    /// A price series: c̄0 = Σp/n for a constant loss; c̄k = Σp·s²/Σs² for a loss that follows profile s.
+    /// `co2_kg_per_kwh` counts where the series has no emission factors.
+    ///
+    /// # Errors
+    /// A profile of another step or length than the series.
+    pub fn of_series(
+        series: &PriceSeries,
+        profiles: &[Profile],
+        co2_kg_per_kwh: f64,
+    ) -> Result<Self, Refusal> {
+        let mut market = Self {
+            constant: Weights {
+                price_per_kwh: mean(&series.price_per_kwh),
+                co2_kg_per_kwh: series.co2_kg_per_kwh.as_deref().map_or(co2_kg_per_kwh, mean),
+                responsibility_pu: None,
+            },
+            profiles: Vec::with_capacity(profiles.len()),
+            series: true,
+        };
+        let peak_step = series.system_load.as_deref().map(first_greatest);
+        for profile in profiles {
+            if profile.values.len() != series.price_per_kwh.len()
+                || profile.step_minutes != series.step_minutes
+            {
+                let why = format!(
+                    "has {} steps of {} min, the price series {} has {} of {} min; bring both to one step and length",
+                    profile.values.len(),
+                    profile.step_minutes,
+                    series.name,
+                    series.price_per_kwh.len(),
+                    series.step_minutes
+                );
+                return Err(Refusal::new("profile", &profile.profile, why));
+            }
+            let peak = profile.ratios()?.peak;
+            let load_weighted = |values: &[f64]| weighted(values, &profile.values);
+            market.profiles.push(Weights {
+                price_per_kwh: load_weighted(&series.price_per_kwh),
+                co2_kg_per_kwh: series
+                    .co2_kg_per_kwh
+                    .as_deref()
+                    .map_or(co2_kg_per_kwh, load_weighted),
+                responsibility_pu: peak_step.map(|step| profile.values[step].abs() / peak),
+            });
+        }
+        Ok(market)
+    }
+}
+
+#[expect(clippy::cast_precision_loss, reason = "a year has at most half a million steps")]
+fn mean(values: &[f64]) -> f64 {
+    if values.is_empty() { 0.0 } else { values.iter().sum::<f64>() / values.len() as f64 }
+}
+
+/// Σ value·s² / Σ s²; the plain mean where Σ s² = 0.
+fn weighted(values: &[f64], load: &[f64]) -> f64 {
+    let square = load.iter().map(|s| s * s).sum::<f64>();
+    if square > 0.0 {
+        values.iter().zip(load).map(|(p, s)| p * (s * s)).sum::<f64>() / square
+    } else {
+        mean(values)
+    }
+}
+
+/// Index of the first greatest value.
+fn first_greatest(values: &[f64]) -> usize {
+    let mut at = 0;
+    for (i, value) in values.iter().enumerate() {
+        if *value > values[at] {
+            at = i;
+        }
+    }
+    at
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn load_loss_pays_the_price_of_its_hours() {
+        let series = PriceSeries {
+            name: "p".into(),
+            step_minutes: 60,
+            price_per_kwh: vec![0.1, 0.3],
+            co2_kg_per_kwh: Some(vec![0.2, 0.4]),
+            system_load: Some(vec![5.0, 5.0]),
+        };
+        let profile = Profile { profile: "s".into(), step_minutes: 60, values: vec![1.0, 2.0] };
+        let market = Market::of_series(&series, std::slice::from_ref(&profile), 9.0).expect("fits");
+        assert!((market.constant.price_per_kwh - 0.2).abs() < 1e-15);
+        assert!((market.profiles[0].price_per_kwh - (0.1 + 0.3 * 4.0) / 5.0).abs() < 1e-15);
+        assert!((market.profiles[0].co2_kg_per_kwh - (0.2 + 0.4 * 4.0) / 5.0).abs() < 1e-15);
+        assert_eq!(market.profiles[0].responsibility_pu, Some(0.5), "first of two equal peaks");
+        let short = Profile { values: vec![1.0], ..profile };
+        assert!(Market::of_series(&series, &[short], 0.0).is_err());
+    }
+}

@@ -1,0 +1,90 @@
+//! Load profiles: a year of equal steps at any scale, and the ratios that the economics needs of them.
+
+use crate::engine::Refusal;
+
+/// A load profile of a year. Reverse flow loads the windings too, so absolute values count.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Profile {
+    /// Identifier.
+    pub profile: String,
+    /// Length of a step in minutes.
+    pub step_minutes: u32,
+    /// Load of each step, at any scale.
+    pub values: Vec<f64>,
+}
+
+/// What is left of a profile when its scale is taken away.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Ratios {
+    /// Greatest value, in the profile's own scale.
+    pub peak: f64,
+    /// Mean over peak, LF.
+    pub load_factor_pu: f64,
+    /// Mean square over peak square, LsF.
+    pub loss_factor_pu: f64,
+}
+
+impl Profile {
+    /// The ratios LF = mean/peak and LsF = mean(s²)/peak².
+    ///
+    /// # Errors
+    /// An empty profile and one that is never above zero have no ratios.
+    pub fn ratios(&self) -> Result<Ratios, Refusal> {
+        let peak = self.values.iter().fold(0.0, |peak: f64, s| peak.max(s.abs()));
+        if peak.is_nan() || peak <= 0.0 || !peak.is_finite() {
+            let why = "has no value above zero; a profile needs the shape of a year's load";
+            return Err(Refusal::new("profile", &self.profile, why));
+        }
+        #[expect(clippy::cast_precision_loss, reason = "a year has at most half a million steps")]
+        let steps = self.values.len() as f64;
+        let (sum, square) = self.values.iter().fold((0.0, 0.0), |(sum, square), s| {
+            let s = s.abs() / peak;
+            (sum + s, square + s * s)
+        });
+        Ok(Ratios { peak, load_factor_pu: sum / steps, loss_factor_pu: square / steps })
+    }
+
+    /// The load-duration histogram: for each of `bins` equal steps of s = |load|/peak the share of the year and
+    /// the mean of s inside the bin. Empty bins are left out.
+    pub fn load_duration(&self, bins: usize) -> Vec<(f64, f64)> {
+        let Ok(ratios) = self.ratios() else { return Vec::new() };
+        let mut bin = vec![(0.0_f64, 0.0_f64); bins.max(1)];
+        #[expect(
+            clippy::cast_precision_loss,
+            clippy::cast_possible_truncation,
+            clippy::cast_sign_loss,
+            reason = "s lies between 0 and 1, bins and steps are small"
+        )]
+        for value in &self.values {
+            let s = value.abs() / ratios.peak;
+            let at = ((s * bin.len() as f64) as usize).min(bin.len() - 1);
+            bin[at].0 += 1.0;
+            bin[at].1 += s;
+        }
+        #[expect(clippy::cast_precision_loss, reason = "a year has at most half a million steps")]
+        let steps = self.values.len() as f64;
+        bin.into_iter().filter(|(n, _)| *n > 0.0).map(|(n, sum)| (n / steps, sum / n)).collect()
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// T2-exact-two-level: 6 h at 1, 18 h at 0.25 gives LF 0.4375 and LsF 0.296875 by definition.
+    #[test]
+    fn two_level_curve() {
+        let values = [vec![100.0; 6], vec![-25.0; 18]].concat();
+        let profile = Profile { profile: "two".into(), step_minutes: 60, values };
+        let ratios = profile.ratios().expect("has a peak");
+        assert_eq!((ratios.load_factor_pu, ratios.loss_factor_pu), (0.4375, 0.296_875));
+        assert_eq!(profile.load_duration(4), vec![(0.75, 0.25), (0.25, 1.0)]);
+    }
+
+    #[test]
+    fn dead_profile_is_refused() {
+        let dead = |values| Profile { profile: "dead".into(), step_minutes: 60, values };
+        assert!(dead(vec![0.0; 5]).ratios().is_err());
+        assert!(dead(vec![]).ratios().is_err());
+    }
+}

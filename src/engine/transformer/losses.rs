@@ -1,0 +1,194 @@
+//! Losses of a transformer at a load and over a year: iron follows voltage, copper follows current.
+
+use crate::engine::Refusal;
+use crate::engine::loading::Duty;
+use crate::engine::loading::duty::peak_of_year;
+use crate::engine::working::{Formula, Recorder};
+
+/// Rated losses of a transformer, with the load loss at `rated_kva`.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Losses {
+    /// Rated power, S_r.
+    pub rated_kva: f64,
+    /// No-load (iron) loss, P0.
+    pub no_load_loss_w: f64,
+    /// Load (copper) loss at rated current and reference temperature, Pk.
+    pub load_loss_w: f64,
+    /// Fans and pumps, P_aux.
+    pub auxiliary_loss_w: f64,
+}
+
+/// Energy lost in a year.
+#[derive(Clone, Copy, Debug, Default, PartialEq)]
+pub struct Energy {
+    /// By the iron, E0.
+    pub no_load_energy_kwh: f64,
+    /// By the copper, Ek.
+    pub load_energy_kwh: f64,
+    /// By fans and pumps, Ea.
+    pub auxiliary_energy_kwh: f64,
+}
+
+impl Energy {
+    /// All three together.
+    pub fn total_kwh(&self) -> f64 {
+        self.no_load_energy_kwh + self.load_energy_kwh + self.auxiliary_energy_kwh
+    }
+}
+
+const LOAD_LOSS_AT_RATING: Formula = Formula {
+    name: "load loss at the rating",
+    symbol: "Pk",
+    formula: "Pk_base·(S_r/S_base)²",
+    unit: "W",
+    source: "copper follows current squared; methods, section 1",
+};
+const LOAD_LOSS_FROM_TOTAL: Formula = Formula {
+    name: "load loss from the total loss",
+    symbol: "Pk_base",
+    formula: "P_total − P0",
+    unit: "W",
+    source: "common practice of quotations, no source; methods, section 1",
+};
+
+/// The quoted losses of a transformer brought to its rating.
+///
+/// First Pk = total − P0 where only the total is given, then Pk·(rated/loss_base)²; P0 is never scaled.
+///
+/// # Errors
+/// A loss is missing, or the total is below the no-load loss.
+pub fn quoted<R: Recorder>(
+    w: &mut R,
+    rated_kva: f64,
+    loss_base_kva: Option<f64>,
+    no_load_loss_w: Option<f64>,
+    load_loss_w: Option<f64>,
+    total_loss_w: Option<f64>,
+    auxiliary_loss_w: Option<f64>,
+) -> Result<Losses, Refusal> {
+    let missing = |quantity, why: &str| Err(Refusal::new(quantity, "", why));
+    let (p0, base) = match (no_load_loss_w, load_loss_w, total_loss_w) {
+        (Some(p0), Some(pk), _) => (p0, pk),
+        (Some(p0), None, Some(total)) if total >= p0 => {
+            (p0, w.step(&LOAD_LOSS_FROM_TOTAL, &[("P_total", total), ("P0", p0)], total - p0))
+        }
+        (Some(p0), None, Some(total)) => {
+            let why = format!(
+                "is below the no-load loss of {p0} W; total_loss_w is no-load plus load loss"
+            );
+            return Err(Refusal::new("total_loss_w", total, why));
+        }
+        (None, Some(pk), Some(total)) if total >= pk => (total - pk, pk),
+        (Some(_), None, None) => {
+            return missing("load_loss_w", "load loss is blank, and so is total_loss_w");
+        }
+        (None, Some(_), _) => return missing("no_load_loss_w", "no-load loss is blank"),
+        (None, None, Some(_)) => {
+            return missing(
+                "no_load_loss_w",
+                "only total_loss_w is given; one of its parts is needed",
+            );
+        }
+        (None, None, None) => return missing("no_load_loss_w", "no-load and load loss are blank"),
+    };
+    let load_loss_w = match loss_base_kva {
+        Some(s_base) if s_base != rated_kva => {
+            let value = base * (rated_kva / s_base) * (rated_kva / s_base);
+            let inputs = [("Pk_base", base), ("S_r", rated_kva), ("S_base", s_base)];
+            w.step(&LOAD_LOSS_AT_RATING, &inputs, value)
+        }
+        _ => base,
+    };
+    Ok(Losses {
+        rated_kva,
+        no_load_loss_w: p0,
+        load_loss_w,
+        auxiliary_loss_w: auxiliary_loss_w.unwrap_or(0.0),
+    })
+}
+
+const AT_LOAD: Formula = Formula {
+    name: "loss at a load",
+    symbol: "P",
+    formula: "P0·v² + Pk·i²",
+    unit: "W",
+    source: "IEC 60076-1: iron follows voltage, copper follows current; methods, section 2",
+};
+
+/// Loss with `v_pu` of rated voltage on the core and `current_pu` of rated current in the windings (W).
+pub fn at_current<R: Recorder>(w: &mut R, losses: &Losses, v_pu: f64, current_pu: f64) -> f64 {
+    let (p0, pk) = (losses.no_load_loss_w, losses.load_loss_w);
+    let value = p0 * v_pu * v_pu + pk * current_pu * current_pu;
+    w.step(&AT_LOAD, &[("P0", p0), ("v", v_pu), ("Pk", pk), ("i", current_pu)], value)
+}
+
+const NO_LOAD_ENERGY: Formula = Formula {
+    name: "energy of the no-load loss in a year",
+    symbol: "E0",
+    formula: "P0·h/1000",
+    unit: "kWh",
+    source: "methods, section 4",
+};
+const LOAD_ENERGY: Formula = Formula {
+    name: "energy of the load loss in year k",
+    symbol: "Ek",
+    formula: "Pk·(S_k/S_r)²·LsF·h/1000",
+    unit: "kWh",
+    source: "methods, section 4 (rated voltage model)",
+};
+const AUXILIARY_ENERGY: Formula = Formula {
+    name: "energy of fans and pumps in a year",
+    symbol: "Ea",
+    formula: "P_aux·h_aux/1000",
+    unit: "kWh",
+    source: "methods, section 4",
+};
+
+/// Energy lost in year `k` under a duty, at rated voltage.
+pub fn annual_energy<R: Recorder>(
+    w: &mut R,
+    losses: &Losses,
+    duty: &Duty,
+    k: usize,
+    growth_years: usize,
+) -> Energy {
+    let h = duty.energised_hours;
+    let no_load = losses.no_load_loss_w * h / 1000.0;
+    w.step(&NO_LOAD_ENERGY, &[("P0", losses.no_load_loss_w), ("h", h)], no_load);
+    w.open();
+    let peak = peak_of_year(w, duty, k, growth_years);
+    let beta = peak / losses.rated_kva;
+    let load = losses.load_loss_w * (beta * beta) * duty.loss_factor_pu * h / 1000.0;
+    let inputs = [
+        ("Pk", losses.load_loss_w),
+        ("S_k", peak),
+        ("S_r", losses.rated_kva),
+        ("LsF", duty.loss_factor_pu),
+        ("h", h),
+    ];
+    w.close(&LOAD_ENERGY, &inputs, load);
+    let auxiliary = losses.auxiliary_loss_w * duty.auxiliary_hours / 1000.0;
+    if losses.auxiliary_loss_w > 0.0 {
+        let inputs = [("P_aux", losses.auxiliary_loss_w), ("h_aux", duty.auxiliary_hours)];
+        w.step(&AUXILIARY_ENERGY, &inputs, auxiliary);
+    }
+    Energy { no_load_energy_kwh: no_load, load_energy_kwh: load, auxiliary_energy_kwh: auxiliary }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::engine::working::Silent;
+
+    #[test]
+    fn quoted_losses_come_to_the_rating() {
+        let quote = |base, p0, pk, total| quoted(&mut Silent, 50_000.0, base, p0, pk, total, None);
+        let losses =
+            quote(Some(30_000.0), Some(20_000.0), None, Some(110_000.0)).expect("complete");
+        assert_eq!(losses.no_load_loss_w, 20_000.0);
+        assert!((losses.load_loss_w - 90_000.0 * 25.0 / 9.0).abs() < 1e-9);
+        assert!(quote(None, Some(20.0), None, Some(10.0)).is_err());
+        assert!(quote(None, None, None, Some(10.0)).is_err());
+        assert!(quote(None, Some(1.0), None, None).is_err());
+    }
+}

@@ -1,0 +1,48 @@
+//! Vector groups: the clock number, and which ones can stand for each other.
+
+/// The clock number at the end of a vector group like `Dyn11`; none where there is none up to 11.
+pub fn clock(vector_group: &str) -> Option<u8> {
+    let digits = vector_group.trim().trim_start_matches(|c: char| !c.is_ascii_digit());
+    digits.parse().ok().filter(|hour: &u8| *hour < 12)
+}
+
+/// Whether two clock numbers can be matched at the terminals.
+///
+/// Equal; or apart by 4 or 8 (relabelling the phases); or both odd (crossing two phases on both sides maps n
+/// to 12 − n). Otherwise never. Source: common practice of paralleling, no source.
+pub fn clocks_match(a: u8, b: u8) -> bool {
+    a == b || matches!(a.abs_diff(b), 4 | 8) || (a % 2 == 1 && b % 2 == 1)
+}
+
+/// Whether two vector groups can be matched; blank or unreadable ones agree with all.
+pub fn agree(a: Option<&str>, b: Option<&str>) -> bool {
+    match (a.and_then(clock), b.and_then(clock)) {
+        (Some(a), Some(b)) => clocks_match(a, b),
+        _ => true,
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn clocks() {
+        assert_eq!(clock("Dyn11"), Some(11));
+        assert_eq!(clock("YNd5"), Some(5));
+        assert_eq!(clock("Yy0"), Some(0));
+        assert_eq!(clock("Dyn"), None);
+        assert_eq!(clock("Dyn13"), None);
+        assert!(
+            clocks_match(11, 5) && clocks_match(1, 11) && clocks_match(0, 4) && clocks_match(2, 10)
+        );
+        assert!(
+            !clocks_match(0, 1)
+                && !clocks_match(0, 6)
+                && !clocks_match(11, 0)
+                && !clocks_match(2, 4)
+        );
+        assert!(agree(Some("Dyn11"), None) && agree(Some("odd"), Some("Dyn11")));
+        assert!(!agree(Some("Dyn11"), Some("Yyn0")));
+    }
+}
