@@ -155,9 +155,9 @@ fn in_symbol(c: char) -> bool {
 pub fn substitute(formula: &str, inputs: &[(&str, f64)]) -> String {
     let mut out = String::with_capacity(formula.len() + 8 * inputs.len());
     let mut symbol = String::new();
-    let mut flush = |symbol: &mut String, out: &mut String| {
+    let flush = |symbol: &mut String, out: &mut String| {
         match inputs.iter().find(|(name, _)| name == symbol) {
-            Some((_, value)) if *value < 0.0 => out.push_str(&format!("({})", number(*value))),
+            Some((_, value)) if *value < 0.0 => out.extend(["(", &number(*value), ")"]),
             Some((_, value)) => out.push_str(&number(*value)),
             None => out.push_str(symbol),
         }

@@ -185,10 +185,12 @@ impl Column {
         Self::of(Kind::Date)
     }
     /// The same, required.
+    #[must_use]
     pub const fn required(self) -> Self {
         Self { required: true, ..self }
     }
     /// The same, with what a blank falls to.
+    #[must_use]
     pub const fn blank(self, blank: &'static str) -> Self {
         Self { blank, ..self }
     }
@@ -218,13 +220,12 @@ impl Column {
             Kind::Id | Kind::Text | Kind::Date => String::new(),
             Kind::Choice(words) => words.join(" | "),
             Kind::Flag => "true | false".to_owned(),
-            Kind::Integer(a, b) => format!("{a} … {b}"),
+            Kind::Integer(a, b) | Kind::Money(a, b) => format!("{a} … {b}"),
             Kind::IntegerOf(list) => {
                 list.iter().map(ToString::to_string).collect::<Vec<_>>().join(" | ")
             }
             Kind::Real(a, b) => format!("{a} … {b}"),
             Kind::Above(a, b) => format!("above {a} … {b}"),
-            Kind::Money(a, b) => format!("{a} … {b}"),
         }
     }
 
@@ -266,29 +267,16 @@ impl Column {
                 Err(_) => Err("is not a date like 2027-03-31".to_owned()),
             },
             Kind::Integer(..) | Kind::IntegerOf(..) => {
-                let number: f64 = self.number(text)?;
+                let number: f64 = number(text)?;
                 if number.fract() != 0.0 || number.abs() > 9e15 {
                     return Err("is not a whole number".to_owned());
                 }
                 #[expect(clippy::cast_possible_truncation, reason = "whole and below 9e15")]
                 self.check(Value::Integer(number as i64))
             }
-            Kind::Real(..) | Kind::Above(..) => self.check(Value::Real(self.number(text)?)),
+            Kind::Real(..) | Kind::Above(..) => self.check(Value::Real(number(text)?)),
             Kind::Money(..) => self.check(Value::Money(Money::parse(text)?)),
         }
-    }
-
-    fn number(&self, text: &str) -> Result<f64, String> {
-        let number: f64 = text.parse().map_err(|_| "is not a number".to_owned())?;
-        if number.is_nan() {
-            return Err(
-                "is not a number; leave the cell blank where the value is unknown".to_owned()
-            );
-        }
-        if number.is_infinite() {
-            return Err("is infinite or beyond the range of numbers".to_owned());
-        }
-        Ok(number)
     }
 
     /// Holds a typed value against the range.
@@ -311,6 +299,17 @@ impl Column {
         let space = if unit.is_empty() { "" } else { " " };
         Err(format!("is outside {}{space}{unit}", self.range()))
     }
+}
+
+fn number(text: &str) -> Result<f64, String> {
+    let number: f64 = text.parse().map_err(|_| "is not a number".to_owned())?;
+    if number.is_nan() {
+        return Err("is not a number; leave the cell blank where the value is unknown".to_owned());
+    }
+    if number.is_infinite() {
+        return Err("is infinite or beyond the range of numbers".to_owned());
+    }
+    Ok(number)
 }
 
 /// The words of a choice as a reader says them: `a, b or c`.
