@@ -56,12 +56,17 @@ macro_rules! columns {
             pub in_service: Vec<bool>,
             /// Index of the load profile; `u32::MAX` = none.
             pub profile: Vec<u32>,
+            /// Index into `sites`; `u32::MAX` = unknown.
+            pub site: Vec<u32>,
+            /// The sites that occur.
+            pub sites: Names,
             /// Index into `terminals`.
             pub kind: Vec<u32>,
             /// The kinds of terminals that occur.
             pub terminals: Vec<Terminals>,
             $(pub $name: Vec<f64>,)+
             kinds: Kinds,
+            site_places: HashMap<String, u32>,
         }
 
         impl FleetColumns {
@@ -76,8 +81,17 @@ macro_rules! columns {
             }
 
             /// Adds a unit.
-            pub fn push(&mut self, unit: &str, row: i64, terminals: Terminals, facts: &UnitFacts) {
+            pub fn push(
+                &mut self,
+                unit: &str,
+                site: Option<&str>,
+                row: i64,
+                terminals: Terminals,
+                facts: &UnitFacts,
+            ) {
                 let kind = self.kind_of(terminals);
+                let site = site.map_or(u32::MAX, |site| self.site_of(site));
+                self.site.push(site);
                 self.unit.push(unit);
                 self.row.push(row);
                 self.in_service.push(facts.in_service);
@@ -89,6 +103,11 @@ macro_rules! columns {
             /// Adds all units of another part of the same fleet behind the own ones.
             pub fn append(&mut self, mut other: Self) {
                 let kinds: Vec<u32> = other.terminals.iter().map(|t| self.kind_of(*t)).collect();
+                let sites: Vec<u32> =
+                    (0..other.sites.len()).map(|i| self.site_of(other.sites.get(i))).collect();
+                self.site.extend(
+                    other.site.iter().map(|s| sites.get(*s as usize).copied().unwrap_or(u32::MAX)),
+                );
                 self.unit.append(&other.unit);
                 self.row.append(&mut other.row);
                 self.in_service.append(&mut other.in_service);
@@ -114,6 +133,7 @@ columns!(
     load_growth_pct,
     responsibility_pu,
     energised_hours,
+    power_factor,
     year_made,
     failure_cost,
     removal_cost,
@@ -129,6 +149,21 @@ impl FleetColumns {
     /// Whether there is none.
     pub fn is_empty(&self) -> bool {
         self.kind.is_empty()
+    }
+
+    /// Site of unit number `i`.
+    pub fn site(&self, i: usize) -> Option<&str> {
+        self.site.get(i).filter(|s| **s != u32::MAX).map(|s| self.sites.get(*s as usize))
+    }
+
+    fn site_of(&mut self, site: &str) -> u32 {
+        if let Some(place) = self.site_places.get(site) {
+            return *place;
+        }
+        let place = u32::try_from(self.sites.len()).unwrap_or(u32::MAX);
+        self.sites.push(site);
+        self.site_places.insert(site.to_owned(), place);
+        place
     }
 
     fn kind_of(&mut self, t: Terminals) -> u32 {

@@ -110,6 +110,7 @@ fn unit() -> impl Strategy<Value = UnitFacts> {
             load_growth_pct: d.1,
             responsibility_pu: d.2,
             energised_hours: d.3,
+            power_factor: f64::NAN,
             year_made,
             failure_cost: f.0,
             removal_cost: f.1,
@@ -158,7 +159,7 @@ proptest! {
             let terminals = Terminals {
                 phases: None, hv_kv: None, lv_kv: None, clock: None, rated_kva: facts.rated_kva,
             };
-            fleet.push(&format!("U{i}"), 0, terminals, facts);
+            fleet.push(&format!("U{i}"), None, 0, terminals, facts);
         }
         let kernel = Kernel::new(&ctx, &offers, &fleet).expect("has a life");
         let mut out = vec![Outcome::left_out(LeftOut::NoOffer); fleet.len()];
