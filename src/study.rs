@@ -6,6 +6,7 @@
 
 pub mod desk;
 pub mod error;
+pub mod explain;
 pub mod factors;
 pub mod figures;
 pub mod losses;
