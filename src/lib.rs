@@ -9,4 +9,5 @@
 //!    engine/             pure computation on plain data
 //! ```
 
+pub mod book;
 pub mod engine;
