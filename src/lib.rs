@@ -11,3 +11,4 @@
 
 pub mod book;
 pub mod engine;
+pub mod study;
