@@ -19,6 +19,9 @@ pub enum StudyError {
         /// What to do, led by "; ".
         hint: String,
     },
+    /// The book.
+    #[error("{0}")]
+    Book(#[from] crate::book::BookError),
     /// The work was stopped.
     #[error("stopped")]
     Stopped,
