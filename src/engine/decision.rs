@@ -1,1 +1,8 @@
 //! What to decide: keep or replace, and which bid.
+
+pub mod tender;
+
+/// Two present values within 1e-12 of the larger count as equal (methods, section 0).
+pub fn same_value(a: f64, b: f64) -> bool {
+    (a - b).abs() <= 1e-12 * a.abs().max(b.abs())
+}
