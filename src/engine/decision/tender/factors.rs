@@ -97,6 +97,13 @@ pub fn of_lot<R: Recorder>(
         factor_b_per_kw: state(&B, lot.factor_b_per_kw, own.factor_b_per_kw),
         factor_aux_per_kw: state(&AUX, lot.factor_aux_per_kw, own.factor_aux_per_kw),
     };
+    let values = [factors.factor_a_per_kw, factors.factor_b_per_kw, factors.factor_aux_per_kw];
+    if values.iter().any(|value| !value.is_finite()) {
+        let why =
+            "gives loss factors beyond the range of numbers over this horizon; check the rate";
+        let pct = basis.map_or(0.0, |basis| 100.0 * basis.assumptions.rate);
+        return Err(Refusal::new("discount_rate_pct", pct, why));
+    }
     Ok((factors, flags))
 }
 

@@ -19,10 +19,8 @@ pub struct Standing {
 pub struct Ranking {
     /// Admitted bids, least owning cost first.
     pub order: Vec<usize>,
-    /// How many at the head of the order lie in the near-tie band.
-    pub near_tied: usize,
-    /// The bid that leads: in the near-tie band the one of lowest price with adders.
-    pub recommended: Option<usize>,
+    /// The bids in the near-tie band, lowest price with adders first: the first of them leads.
+    pub band: Vec<usize>,
     /// How far the second lies above the first in percent; none with one bid, or where the first is not
     /// above zero.
     pub margin_pct: Option<f64>,
@@ -41,16 +39,13 @@ pub fn rank(bids: &[Standing], near_tie_pct: f64) -> Ranking {
         let cost = bids[**i].owning_cost;
         cost <= edge || same_value(cost, edge) || same_value(cost, least)
     };
-    let band: Vec<usize> = order.iter().take_while(in_band).copied().collect();
-    // The first of equal prices: the order breaks the tie.
-    let recommended = band.iter().copied().reduce(|lead, next| {
-        let (a, b) = (bids[lead].price_with_adders, bids[next].price_with_adders);
-        if b < a && !same_value(a, b) { next } else { lead }
-    });
+    let mut band: Vec<usize> = order.iter().take_while(in_band).copied().collect();
+    let place = |i: &usize| order.iter().position(|j| j == i);
+    sort_with_ties(&mut band, &|i| bids[i].price_with_adders, &|tied| tied.sort_by_key(place));
     let second = order.get(1).map(|&i| bids[i].owning_cost);
     let margin_pct =
         second.filter(|_| least > 0.0).map(|second| 100.0 * (second / least - 1.0).max(0.0));
-    Ranking { near_tied: band.len(), order, recommended, margin_pct }
+    Ranking { order, band, margin_pct }
 }
 
 /// Sorts by a value; runs that equal their first are handed on to be ordered by something else.
@@ -84,7 +79,7 @@ mod tests {
             [standing(0.3, 3.0), standing(cost, 2.0), standing(0.3, 2.0), standing(0.2, 9.0)];
         let ranking = rank(&bids, 0.0);
         assert_eq!(ranking.order, [3, 1, 2, 0]);
-        assert_eq!((ranking.near_tied, ranking.recommended), (1, Some(3)));
+        assert_eq!(ranking.band, [3]);
         assert!((ranking.margin_pct.expect("two bids") - 50.0).abs() < 1e-9);
     }
 
@@ -92,7 +87,7 @@ mod tests {
     fn lower_price_leads_inside_the_band() {
         let bids = [standing(100.0, 90.0), standing(102.0, 80.0), standing(103.0, 10.0)];
         let ranking = rank(&bids, 2.0);
-        assert_eq!((ranking.near_tied, ranking.recommended), (2, Some(1)));
+        assert_eq!(ranking.band, [1, 0]);
         assert_eq!(ranking.order, [0, 1, 2]);
     }
 
