@@ -276,12 +276,13 @@ fn cell(unit: &[Point], a_max: f64, b_max: f64) -> Cell {
     if corners.len() < 3 {
         return Cell::default();
     }
-    let first = (0..corners.len())
-        .min_by(|&i, &j| {
-            let ([u, v], [x, y]) = (corners[i], corners[j]);
-            u.total_cmp(&x).then(v.total_cmp(&y))
-        })
-        .unwrap_or(0);
+    // A border along the B axis has one A at both its ends, also after rounding.
+    let left = corners.iter().fold(f64::INFINITY, |left, corner| left.min(corner[0]));
+    for corner in corners.iter_mut().filter(|corner| corner[0] - left < ROUNDING) {
+        corner[0] = left;
+    }
+    let on_left = (0..corners.len()).filter(|&k| corners[k][0] == left);
+    let first = least(on_left, |k| corners[k][1]).unwrap_or(0);
     corners.rotate_left(first);
     Cell {
         share: area(&corners),
