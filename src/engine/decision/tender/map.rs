@@ -110,8 +110,11 @@ impl WinnerMap {
     pub fn borders(&self, planes: &[Plane], today: &LossFactors) -> Vec<Border> {
         let winners: Vec<usize> =
             (0..self.cells.len()).filter(|&i| !self.cells[i].polygon.is_empty()).collect();
-        let corners: Vec<Point> =
-            winners.iter().flat_map(|&i| self.cells[i].polygon.iter().copied()).collect();
+        let corners: Vec<(Point, Point)> = winners
+            .iter()
+            .flat_map(|&i| &self.cells[i].polygon)
+            .map(|&corner| (self.unit(corner), corner))
+            .collect();
         let mut borders = Vec::new();
         for &i in &winners {
             let polygon = &self.cells[i].polygon;
@@ -143,19 +146,22 @@ impl WinnerMap {
             .any(|(axis, &max)| from[axis] == to[axis] && (from[axis] == 0.0 || from[axis] == max))
     }
 
-    /// A segment split at the corners that lie inside it.
-    fn split(&self, from: Point, to: Point, corners: &[Point]) -> Vec<[Point; 2]> {
-        let unit = |p: Point| [p[0] / self.a_max, p[1] / self.b_max];
-        let (start, end) = (unit(from), unit(to));
+    /// A point in parts of the box.
+    fn unit(&self, [a, b]: Point) -> Point {
+        [a / self.a_max, b / self.b_max]
+    }
+
+    /// A segment split at the corners (each in parts of the box, and as it is) that lie inside it.
+    fn split(&self, from: Point, to: Point, corners: &[(Point, Point)]) -> Vec<[Point; 2]> {
+        let (start, end) = (self.unit(from), self.unit(to));
         let (du, dv) = (end[0] - start[0], end[1] - start[1]);
         let length = du.hypot(dv);
+        let (du, dv) = (du / length, dv / length);
         let mut inside: Vec<(f64, Point)> = corners
             .iter()
-            .filter_map(|&corner| {
-                let at = unit(corner);
+            .filter_map(|&(at, corner)| {
                 let (u, v) = (at[0] - start[0], at[1] - start[1]);
-                let along = (u * du + v * dv) / length;
-                let away = (u * dv - v * du) / length;
+                let (along, away) = (u * du + v * dv, u * dv - v * du);
                 let between = along > 100.0 * ROUNDING && along < length - 100.0 * ROUNDING;
                 (between && away.abs() < 100.0 * ROUNDING).then_some((along, corner))
             })
