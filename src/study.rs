@@ -3,6 +3,7 @@
 //! Faces get their figures here and nowhere else; a result is plain data that can be printed, drawn or
 //! written as JSON. Owns no screen, no file and no formula.
 
+pub mod settle;
 pub mod tender;
 
 use crate::engine::Refusal;

@@ -4,5 +4,6 @@ mod changes;
 mod map;
 mod map_reference;
 mod published;
+mod settlement;
 mod sheets;
 mod terms;

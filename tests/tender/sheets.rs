@@ -1,6 +1,6 @@
 //! Tender sheets and bases to fill in: every column blank but those a test is about.
 
-use ironhum::engine::columns::{Basis, Bid, Lot, Money, Tender, TenderRate, TenderSheet};
+use ironhum::engine::columns::{Basis, Bid, Lot, Measured, Money, Tender, TenderRate, TenderSheet};
 use ironhum::engine::economics::Assumptions;
 use ironhum::engine::loading::Market;
 
@@ -48,6 +48,19 @@ pub(crate) fn money(amount: f64) -> Money {
 /// A rate of a tender.
 pub(crate) fn rate(currency: &str, rate: f64) -> TenderRate {
     TenderRate { currency: currency.into(), rate }
+}
+
+/// A delivered unit of bid `bid`.
+pub(crate) fn measured(bid: &str, serial: &str, no_load_loss_w: f64, load_loss_w: f64) -> Measured {
+    Measured {
+        tender: "T".into(),
+        lot: "L".into(),
+        bid: bid.into(),
+        serial: serial.into(),
+        no_load_loss_w,
+        load_loss_w,
+        ..Measured::blank()
+    }
 }
 
 /// A basis in `currency` with a flat energy price.
