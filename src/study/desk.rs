@@ -72,7 +72,7 @@ impl Desk {
             EnergyPrice::Series(name) => {
                 let series = self.series.iter().find(|s| s.name == *name).ok_or_else(|| {
                     let known: Vec<&str> = self.series.iter().map(|s| s.name.as_str()).collect();
-                    StudyError::unknown("price series", name, known)
+                    StudyError::unknown("price series", name, "the book", known)
                 })?;
                 let both =
                     series.co2_kg_per_kwh.is_some() && self.sheet.basis.carbon_kg_per_kwh.is_some();

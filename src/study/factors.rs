@@ -9,7 +9,7 @@ use crate::engine::economics::loss_factors::{LossFactors, levelized, of_duty, pr
 use crate::engine::loading::{Duty, factors};
 use crate::engine::working::{Recorder, Silent, Working};
 use crate::study::explain::StepRow;
-use crate::study::{Desk, SCHEMA_VERSION, StudyError};
+use crate::study::{Desk, StudyError};
 
 /// The load for which factors are wanted. What is not stated is the fleet's own.
 #[derive(Clone, Debug, Default, PartialEq)]
@@ -30,7 +30,6 @@ pub struct LoadAsked {
 #[derive(Clone, Debug, PartialEq, Serialize)]
 #[expect(missing_docs, reason = "the keys of the result; `figures` says what they are")]
 pub struct Factors {
-    pub schema_version: u32,
     pub basis: String,
     pub currency: String,
     pub method: &'static str,
@@ -77,7 +76,7 @@ pub fn duty<R: Recorder>(
         Some(name) => {
             Some(desk.profiles.iter().position(|p| p.profile == *name).ok_or_else(|| {
                 let known: Vec<&str> = desk.profiles.iter().map(|p| p.profile.as_str()).collect();
-                StudyError::unknown("profile", name, known)
+                StudyError::unknown("profile", name, "the book", known)
             })?)
         }
     };
@@ -180,7 +179,6 @@ pub fn factors(desk: &Desk, asked: &LoadAsked) -> Result<Factors, StudyError> {
         }
     };
     Ok(Factors {
-        schema_version: SCHEMA_VERSION,
         basis: a.name.clone(),
         currency: a.currency.clone(),
         method: method.word(),
