@@ -112,10 +112,12 @@ pub fn bank_limit<R: Recorder>(w: &mut R, shares: &[Share], load_kva: f64) -> Re
 /// A transformer with the secondary voltage of its tap, for the current that circulates at no load.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Tapped {
-    /// Rating and circuit on its own rating and `voltage_v`.
+    /// Rating and circuit on its own rating.
     pub member: Member,
-    /// Secondary no-load voltage.
-    pub voltage_v: f64,
+    /// Rated secondary voltage, the base of the circuit.
+    pub rated_v: f64,
+    /// Secondary no-load voltage on the tap in use.
+    pub no_load_v: f64,
 }
 
 /// The current between two transformers of unequal ratio at no load.
@@ -159,26 +161,27 @@ pub fn circulating<R: Recorder>(
     let mut sum = Complex { re: 0.0, im: 0.0 };
     for t in [a, b] {
         positive("rated_kva", t.member.rated_kva, "must be above zero")?;
-        positive("voltage_v", t.voltage_v, "must be above zero")?;
-        let base = t.voltage_v * t.voltage_v / (1000.0 * t.member.rated_kva);
+        positive("rated_voltage_v", t.rated_v, "must be above zero")?;
+        positive("no_load_voltage_v", t.no_load_v, "must be above zero")?;
+        let base = t.rated_v * t.rated_v / (1000.0 * t.member.rated_kva);
         let z = t.member.circuit.impedance().scaled(base);
         let inputs =
-            [("z", t.member.circuit.z_pu()), ("V", t.voltage_v), ("S_r", t.member.rated_kva)];
+            [("z", t.member.circuit.z_pu()), ("V", t.rated_v), ("S_r", t.member.rated_kva)];
         w.step(&OHMS, &inputs, z.abs());
         sum = sum + z;
     }
     positive("impedance_pct", sum.abs(), "has no magnitude; nothing limits the current")?;
-    let difference = (a.voltage_v - b.voltage_v).abs();
+    let difference = (a.no_load_v - b.no_load_v).abs();
     let current = difference / (phases.root() * sum.abs());
     let inputs = [("ΔV", difference), ("m", phases.root()), ("Z_AB", sum.abs())];
     w.step(&CIRCULATING, &inputs, current);
     let over_rated =
-        |t: Tapped| current * phases.root() * t.voltage_v / (1000.0 * t.member.rated_kva);
+        |t: Tapped| current * phases.root() * t.rated_v / (1000.0 * t.member.rated_kva);
     Ok(Circulating {
         current_a: current,
         of_first_pu: over_rated(a),
         of_second_pu: over_rated(b),
-        mismatch_pu: difference / a.voltage_v.min(b.voltage_v),
+        mismatch_pu: difference / a.no_load_v.min(b.no_load_v),
     })
 }
 
