@@ -10,5 +10,6 @@
 //! ```
 
 pub mod book;
+pub mod cli;
 pub mod engine;
 pub mod study;

@@ -30,7 +30,6 @@ pub enum Colour {
 
 /// Which file a command takes in.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
-#[expect(missing_docs, reason = "the words of the import command")]
 pub enum Kind {
     Units,
     Tests,
