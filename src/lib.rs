@@ -11,3 +11,4 @@
 
 pub mod engine;
 pub mod study;
+pub mod tui;
