@@ -9,6 +9,7 @@
 //!    engine/             pure computation on plain data
 //! ```
 
+pub mod book;
 pub mod engine;
 pub mod study;
 pub mod tui;

@@ -2,8 +2,9 @@
 
 use std::sync::Arc;
 
+use crate::book::Book;
 use crate::engine::columns::{BasisSheet, Offer, Unit};
-use crate::engine::decision::fleet::{FleetColumns, Names};
+use crate::engine::decision::fleet::FleetColumns;
 use crate::engine::decision::{Candidate, Context, UnitFacts};
 use crate::engine::economics::Assumptions;
 use crate::engine::economics::assumptions::EnergyPrice;
@@ -31,6 +32,19 @@ pub struct Desk {
 }
 
 impl Desk {
+    /// Reads everything a question needs from a book; `basis` names one, else the only or current one counts.
+    ///
+    /// # Errors
+    /// The book fails or does not know the basis or its price series.
+    pub fn read(book: &Book, basis: Option<&str>) -> Result<Self, StudyError> {
+        let sheet = book.basis(basis)?;
+        let series = match &sheet.basis.price_series {
+            Some(name) => vec![book.price_series(name)?],
+            None => Vec::new(),
+        };
+        Self::new(book.fleet()?, book.offers()?, book.profiles()?, series, sheet)
+    }
+
     /// Lays out what was read from a book.
     ///
     /// # Errors
@@ -74,7 +88,7 @@ impl Desk {
             EnergyPrice::Series(name) => {
                 let series = self.series.iter().find(|s| s.name == *name).ok_or_else(|| {
                     let known: Vec<&str> = self.series.iter().map(|s| s.name.as_str()).collect();
-                    StudyError::unknown("price series", name, known)
+                    StudyError::unknown("price series", name, "the book", known)
                 })?;
                 let both =
                     series.co2_kg_per_kwh.is_some() && self.sheet.basis.carbon_kg_per_kwh.is_some();
@@ -102,10 +116,5 @@ impl Desk {
     /// Index of a unit in the fleet by its identifier.
     pub fn find(&self, unit: &str) -> Option<usize> {
         (0..self.fleet.len()).find(|&i| self.fleet.unit.get(i) == unit)
-    }
-
-    /// Sites in the order of [`FleetColumns::site`].
-    pub fn sites(&self) -> &Names {
-        &self.fleet.sites
     }
 }

@@ -10,7 +10,7 @@ use crate::engine::decision::place::resolve;
 use crate::engine::decision::{Context, LeftOut};
 use crate::engine::transformer::losses::annual_energy;
 use crate::engine::working::Silent;
-use crate::study::{Desk, SCHEMA_VERSION, StudyError, Watch};
+use crate::study::{Desk, StudyError, Watch};
 
 /// By what the ranking is ordered.
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
@@ -295,8 +295,7 @@ impl Serialize for RankResult<'_> {
     fn serialize<S: Serializer>(&self, serializer: S) -> Result<S::Ok, S::Error> {
         let (ranking, desk) = (self.ranking, self.desk);
         let a = &ranking.context.assumptions;
-        let mut result = serializer.serialize_struct("rank", 6)?;
-        result.serialize_field("schema_version", &SCHEMA_VERSION)?;
+        let mut result = serializer.serialize_struct("rank", 5)?;
         result.serialize_field("basis", &a.name)?;
         result.serialize_field("currency", &a.currency)?;
         let rows = Rows(ranking.order.len(), |place| ranking.row(desk, place));

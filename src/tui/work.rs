@@ -202,7 +202,7 @@ fn view(ranked: &Ranked, spec: ViewSpec, watch: &Watch) -> Result<View, StudyErr
     let (desk, ranking) = (&ranked.desk, &ranked.ranking);
     let fleet = &desk.fleet;
     let words: Vec<String> =
-        spec.filter.split_whitespace().take(32).map(str::to_lowercase).collect();
+        spec.filter.split_whitespace().map(str::to_lowercase).collect();
     let holds = |name: &str, word: &str| {
         if name.is_ascii() {
             let (name, word) = (name.as_bytes(), word.as_bytes());
@@ -212,18 +212,9 @@ fn view(ranked: &Ranked, spec: ViewSpec, watch: &Watch) -> Result<View, StudyErr
             name.to_lowercase().contains(word)
         }
     };
-    // Bits of the words that a site holds, found once for each site.
-    let held = |name: &str| {
-        words
-            .iter()
-            .enumerate()
-            .fold(0u32, |bits, (n, word)| bits | (u32::from(holds(name, word)) << n))
-    };
-    let all = u32::MAX.checked_shr(32 - u32::try_from(words.len()).unwrap_or(0)).unwrap_or(0);
-    let of_site: Vec<u32> = (0..fleet.sites.len()).map(|s| held(fleet.sites.get(s))).collect();
     let shown = |i: usize| {
-        let site = of_site.get(fleet.site[i] as usize).copied().unwrap_or(0);
-        site == all || (site | held(fleet.unit.get(i))) == all
+        let (unit, site) = (fleet.unit.get(i), fleet.site(i).unwrap_or(""));
+        words.iter().all(|word| holds(unit, word) || holds(site, word))
     };
     let mut places: Vec<u32> = match spec.by {
         By::Saving => (0..u32::try_from(ranking.order.len()).unwrap_or(u32::MAX)).collect(),
