@@ -5,6 +5,7 @@
 mod args;
 mod book;
 mod columns;
+mod dashboard;
 mod exit;
 mod factors;
 mod journal;
@@ -62,7 +63,8 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> Exit {
 
 fn dispatch(args: &Args, printer: &mut Printer) -> Result<Exit, Failure> {
     match &args.command {
-        None | Some(Command::Demo | Command::Import(_) | Command::Check) => todo!(),
+        None => dashboard::open(args),
+        Some(Command::Demo | Command::Import(_) | Command::Check) => todo!(),
         Some(Command::Losses(options)) => losses::losses(args, options, printer),
         Some(Command::Rank(options)) => rank::rank(args, options, printer),
         Some(Command::Factors(options)) => factors::factors(args, options, printer),

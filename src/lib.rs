@@ -13,3 +13,4 @@ pub mod book;
 pub mod cli;
 pub mod engine;
 pub mod study;
+pub mod tui;

@@ -94,7 +94,16 @@ fn engine_and_screens_do_no_input_or_output() {
     let banned: &[(&str, &[&str])] = &[
         (
             "engine",
-            &["std::fs", "std::env", "std::io", "std::time", "Utc::now", "Local::now", "rusqlite", "ratatui"],
+            &[
+                "std::fs",
+                "std::env",
+                "std::io",
+                "std::time",
+                "Utc::now",
+                "Local::now",
+                "rusqlite",
+                "ratatui",
+            ],
         ),
         ("tui", &["rusqlite", "std::fs", "calamine", "csv::"]),
     ];

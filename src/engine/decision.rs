@@ -3,6 +3,7 @@
 pub mod fit;
 pub mod fleet;
 pub mod keep_or_replace;
+pub mod parts;
 pub mod place;
 pub mod tender;
 

@@ -6,6 +6,7 @@ use serde_json::{Map, Value};
 use crate::engine::columns::{Column, Unit, Value as Cell};
 use crate::engine::decision::fit::fitting;
 use crate::engine::decision::keep_or_replace::{Decision, YearChoice, age, decide};
+use crate::engine::decision::parts::{PolicyCost, of_choice};
 use crate::engine::decision::place::{Place, resolve};
 use crate::engine::decision::{Context, LeftOut};
 use crate::engine::economics::running_cost;
@@ -61,6 +62,40 @@ pub fn decision(
     Ok(decide(&place, &desk.candidates, &fit, a)?
         .map(|decision| (place, decision))
         .ok_or(LeftOut::NoOffer))
+}
+
+/// What the choices of a decision cost, by what causes it: keeping, the best bought now, the best of all.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct ChoiceCosts {
+    /// Never replacing before a failure.
+    pub keep: PolicyCost,
+    /// The best offer bought now; none where none is open now.
+    pub now: Option<PolicyCost>,
+    /// The best choice; none where it is to keep.
+    pub best: Option<PolicyCost>,
+}
+
+/// Takes the choices of a decision apart.
+///
+/// # Errors
+/// The annuity rule without a life.
+pub fn choice_costs(
+    desk: &Desk,
+    context: &Context,
+    place: &Place,
+    decision: &Decision,
+) -> Result<ChoiceCosts, StudyError> {
+    let a = &context.assumptions;
+    let of = |choice: Option<YearChoice>| {
+        choice
+            .map(|c| of_choice(place, Some((&desk.candidates[c.offer], c.offset)), c.pv, a))
+            .transpose()
+    };
+    Ok(ChoiceCosts {
+        keep: of_choice(place, None, decision.keep_pv, a)?,
+        now: of(decision.now)?,
+        best: of(decision.best)?,
+    })
 }
 
 /// The decision as it is written in JSON.
