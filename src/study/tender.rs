@@ -2,6 +2,9 @@
 //!
 //! [`evaluate`] answers for a whole tender or one lot; [`working`] opens the figures of one bid. Amounts are
 //! per unit in the tender currency, factors per kW. The structs serialise with the names of the contract.
+//! [`mod@risk`] says how sure the winner is.
+
+pub mod risk;
 
 use serde::ser::SerializeMap as _;
 use serde::{Serialize, Serializer};
@@ -363,7 +366,7 @@ impl<'a> Assessed<'a> {
         }
     }
 
-    fn result(self, terms: &Terms, rank: Option<usize>, near_tie: bool) -> BidResult {
+    fn result(&self, terms: &Terms, rank: Option<usize>, near_tie: bool) -> BidResult {
         BidResult {
             rank,
             bid: self.bid.bid.clone(),
@@ -378,10 +381,45 @@ impl<'a> Assessed<'a> {
             lot_cost: self.on_terms.lot_cost(&mut Silent, terms),
             law: None,
             near_tie,
-            excluded: self.found.misses,
+            excluded: self.found.misses.clone(),
             flags: self.on_terms.flags.with(self.found.flags).keys(),
             losses: self.on_terms.losses,
         }
+    }
+}
+
+/// A lot with its bids assessed and ranked.
+struct Judged<'a> {
+    terms: Terms<'a>,
+    flags: Flags,
+    bids: Vec<Assessed<'a>>,
+    ranking: Ranking,
+    contest: Contest,
+}
+
+impl<'a> Judged<'a> {
+    fn new(
+        sheet: &'a TenderSheet,
+        basis: Option<&BasisForFactors>,
+        lot: &'a Lot,
+    ) -> Result<Self, StudyError> {
+        let (terms, flags) = terms(&mut Silent, sheet, basis, lot)?;
+        let bids = bids_of(sheet, &lot.lot).map(|bid| Assessed::new(&terms, bid));
+        let bids: Vec<Assessed> = bids.collect::<Result<_, _>>()?;
+        let standings: Vec<Standing> = bids.iter().map(Assessed::standing).collect();
+        let ranking = rank(&standings, terms.near_tie_pct);
+        let flags = flags.with_if(factors_look_per_watt(&bids), Flags::FACTOR_SCALE);
+        let contest = Contest::new(&bids, &ranking, &terms);
+        Ok(Self { terms, flags, bids, ranking, contest })
+    }
+
+    fn name(&self, bid: usize) -> String {
+        self.bids[bid].bid.bid.clone()
+    }
+
+    /// The name of the contest's bid `j`.
+    fn contestant(&self, j: usize) -> String {
+        self.name(self.contest.bids[j])
     }
 }
 
@@ -390,48 +428,31 @@ fn evaluate_lot(
     basis: Option<&BasisForFactors>,
     lot: &Lot,
 ) -> Result<LotResult, StudyError> {
-    let (terms, flags) = terms(&mut Silent, sheet, basis, lot)?;
-    let bids = bids_of(sheet, &lot.lot).map(|bid| Assessed::new(&terms, bid));
-    let bids: Vec<Assessed> = bids.collect::<Result<_, _>>()?;
-    let standings: Vec<Standing> = bids.iter().map(Assessed::standing).collect();
-    let ranking = rank(&standings, terms.near_tie_pct);
-    let flags = flags.with_if(factors_look_per_watt(&bids), Flags::FACTOR_SCALE);
-
-    let name = |i: usize| bids[i].bid.bid.clone();
-    let contest = Contest::new(&bids, &ranking, &terms);
-    let bidders = |j: usize| name(contest.bids[j]);
-    let map = contest.map(&ranking, bidders);
-    let borders = contest.borders(bidders);
-    let nearest_border = contest.nearest_border(bidders);
-    let changes = contest.changes(&bids, &terms, basis, bidders)?;
-
-    let near_tie_order = ranking.band.iter().map(|&i| name(i)).collect();
-    let least_owning_cost = ranking.order.first().map(|&i| name(i));
-    let recommended = ranking.band.first().map(|&i| name(i));
-    let mut results: Vec<(usize, BidResult)> = bids
-        .into_iter()
-        .enumerate()
-        .map(|(i, bid)| {
-            let place = ranking.order.iter().position(|&j| j == i);
-            let result = bid.result(&terms, place.map(|p| p + 1), ranking.band.contains(&i));
-            (place.unwrap_or(usize::MAX), result)
-        })
-        .collect();
-    results.sort_by_key(|(place, _)| *place);
+    let judged = Judged::new(sheet, basis, lot)?;
+    let Judged { terms, ranking, contest, .. } = &judged;
+    let contestant = |j| judged.contestant(j);
+    let map = WinnerMap::new(&contest.planes, &terms.factors);
+    let borders = contest.borders(&map, contestant);
+    let map = contest.map(&map, ranking, contestant);
+    let nearest_border = contest.nearest_border(contestant);
+    let changes = contest.changes(&judged.bids, terms, basis, contestant)?;
+    let result = |i: usize, rank| judged.bids[i].result(terms, rank, ranking.band.contains(&i));
+    let ranked = ranking.order.iter().enumerate().map(|(place, &i)| result(i, Some(place + 1)));
+    let excluded = (0..judged.bids.len()).filter(|i| !judged.bids[*i].found.misses.is_empty());
     Ok(LotResult {
         lot: lot.lot.clone(),
         quantity: terms.quantity(),
         factor_a_per_kw: terms.factors.factor_a_per_kw,
         factor_b_per_kw: terms.factors.factor_b_per_kw,
         factor_aux_per_kw: terms.factors.factor_aux_per_kw,
-        bids: results.into_iter().map(|(_, result)| result).collect(),
-        least_owning_cost,
-        recommended,
+        bids: ranked.chain(excluded.map(|i| result(i, None))).collect(),
+        least_owning_cost: ranking.order.first().map(|&i| judged.name(i)),
+        recommended: ranking.band.first().map(|&i| judged.name(i)),
         margin_pct: ranking.margin_pct,
         map,
         changes,
-        flags: flags.keys(),
-        near_tie_order,
+        flags: judged.flags.keys(),
+        near_tie_order: ranking.band.iter().map(|&i| judged.name(i)).collect(),
         borders,
         nearest_border,
         computed: Computed::by(lot),
@@ -455,7 +476,6 @@ struct Contest {
     /// Index of the winner into `planes`.
     winner: Option<usize>,
     factors: LossFactors,
-    map: WinnerMap,
 }
 
 impl Contest {
@@ -464,25 +484,24 @@ impl Contest {
         let bids: Vec<usize> = (0..assessed.len()).filter(admitted).collect();
         let planes: Vec<Plane> = bids.iter().map(|&i| assessed[i].on_terms.plane()).collect();
         let winner = ranking.order.first().and_then(|first| bids.iter().position(|i| i == first));
-        let map = WinnerMap::new(&planes, &terms.factors);
-        Self { bids, planes, winner, factors: terms.factors, map }
+        Self { bids, planes, winner, factors: terms.factors }
     }
 
-    fn map(&self, ranking: &Ranking, name: impl Fn(usize) -> String) -> MapResult {
+    fn map(&self, map: &WinnerMap, ranking: &Ranking, name: impl Fn(usize) -> String) -> MapResult {
         let cell = |i: &usize| {
             let j = self.bids.iter().position(|bid| bid == i)?;
-            let cell = &self.map.cells[j];
+            let cell = &map.cells[j];
             Some(CellResult { bid: name(j), share: cell.share, polygon: cell.polygon.clone() })
         };
         MapResult {
-            a_max: self.map.a_max,
-            b_max: self.map.b_max,
+            a_max: map.a_max,
+            b_max: map.b_max,
             bids: ranking.order.iter().filter_map(cell).collect(),
         }
     }
 
-    fn borders(&self, name: impl Fn(usize) -> String) -> Vec<BorderResult> {
-        let borders = self.map.borders(&self.planes, &self.factors);
+    fn borders(&self, map: &WinnerMap, name: impl Fn(usize) -> String) -> Vec<BorderResult> {
+        let borders = map.borders(&self.planes, &self.factors);
         let named = borders.into_iter().map(|border| BorderResult {
             bids: border.bids.map(&name),
             from: border.from,

@@ -3,7 +3,9 @@
 mod changes;
 mod map;
 mod map_reference;
+mod properties;
 mod published;
+mod risk;
 mod settlement;
 mod sheets;
 mod terms;
