@@ -2,8 +2,9 @@
 //!
 //! [`evaluate`] answers for a whole tender or one lot; [`working`] opens the figures of one bid. Amounts are
 //! per unit in the tender currency, factors per kW. The structs serialise with the names of the contract.
-//! [`mod@risk`] says how sure the winner is.
+//! [`mod@risk`] says how sure the winner is, [`mod@award`] what one bidder for all lots costs.
 
+pub mod award;
 pub mod risk;
 
 use serde::ser::SerializeMap as _;
@@ -16,7 +17,7 @@ use crate::engine::decision::tender::changes::{self, Change, Field};
 use crate::engine::decision::tender::factors::{Computed, of_lot};
 use crate::engine::decision::tender::limits::{self, Findings};
 use crate::engine::decision::tender::map::{Point, WinnerMap};
-use crate::engine::decision::tender::ranking::{Ranking, Standing, rank};
+use crate::engine::decision::tender::ranking::{self, Ranking, Standing, rank};
 use crate::engine::decision::tender::{Plane, Rates, Terms};
 use crate::engine::economics::loss_factors::LossFactors;
 use crate::engine::economics::owning_cost::OwningCost;
@@ -238,6 +239,24 @@ pub fn factors(
     Ok((terms.factors, working.into_steps()))
 }
 
+/// How far the second bid of a lot lies above the first, with its working; none with one bid.
+///
+/// # Errors
+/// As [`evaluate`].
+pub fn margin(
+    sheet: &TenderSheet,
+    basis: Option<&BasisForFactors>,
+    lot: &str,
+) -> Result<Option<(f64, Vec<Step>)>, StudyError> {
+    let judged = Judged::new(sheet, basis, find_lot(sheet, lot)?)?;
+    let [first, second, ..] = judged.ranking.order[..] else { return Ok(None) };
+    let mut working = Working::default();
+    let cost = |w: &mut Working, i: usize| judged.bids[i].on_terms.owning_cost(w).total();
+    let (first, second) = (cost(&mut working, first), cost(&mut working, second));
+    let margin = ranking::margin(&mut working, first, second);
+    Ok(margin.map(|margin| (margin, working.into_steps())))
+}
+
 /// The working of one bid; the last step of each is the figure.
 #[derive(Clone, Debug, PartialEq)]
 pub struct BidWorking {
@@ -379,7 +398,7 @@ impl<'a> Assessed<'a> {
             owning_cost: self.cost.total(),
             owning_cost_at_tolerance: self.on_terms.at_tolerance(&mut Silent, terms),
             lot_cost: self.on_terms.lot_cost(&mut Silent, terms),
-            law: None,
+            law: self.found.law,
             near_tie,
             excluded: self.found.misses.clone(),
             flags: self.on_terms.flags.with(self.found.flags).keys(),

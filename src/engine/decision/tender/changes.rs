@@ -1,7 +1,7 @@
 //! How far an input must move, all others held, before another bid becomes the cheapest to own.
 //!
 //! Closed form where the owning cost is linear in the input or in its square; the discount rate by a search
-//! from today's rate outward (see [`discount_rate`]). Moves are in the unit of the input.
+//! from today's rate outward (see [`DISCOUNT_RATES`]). Moves are in the unit of the input.
 
 use super::factors::{BasisForFactors, Computed, of_lot};
 use super::map::{Point, least};
