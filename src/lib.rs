@@ -11,4 +11,5 @@
 
 pub mod book;
 pub mod engine;
+pub mod exchange;
 pub mod study;

@@ -8,6 +8,7 @@ pub mod desk;
 pub mod error;
 pub mod factors;
 pub mod figures;
+pub mod intake;
 pub mod losses;
 pub mod rank;
 pub mod unit;

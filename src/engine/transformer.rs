@@ -3,3 +3,4 @@
 pub mod losses;
 pub mod temperature;
 pub mod vector_group;
+pub mod windings;
