@@ -1,5 +1,5 @@
 //! The program run as a person runs it, in an empty home, and the data files of the tests.
-#![expect(dead_code, reason = "each test file uses a part of it")]
+#![allow(dead_code, unreachable_pub, reason = "each test file uses a part of it")]
 
 use std::path::{Path, PathBuf};
 use std::process::{Command, Output, Stdio};

@@ -234,7 +234,8 @@ impl<'a> Kernel<'a> {
                 later = later.min(pv);
             }
         }
-        for t in latest + 1..=a.years {
+        let rest = if ages.fails { latest + 1 } else { a.years };
+        for t in rest..=a.years {
             own.pass(t, &mut before, &mut survival);
         }
         let keep_pv = before + survival * place.removal_less_scrap * h.payment[a.years];
@@ -338,24 +339,27 @@ struct OldUnit<'a> {
 }
 
 impl OldUnit<'_> {
-    /// Adds what year `t` costs (nothing at t = 0) to `before` and takes its failures from `survival`.
-    fn pass(&self, t: usize, before: &mut f64, survival: &mut f64) {
-        if t == 0 {
-            return;
-        }
+    /// What it costs to run from time `from` to time `to`, valued at time 0.
+    fn run(&self, from: usize, to: usize) -> f64 {
         let l = &self.place.losses;
-        let year = |tail: &[f64]| tail[t - 1] - tail[t];
-        let run = l.no_load_loss_w * year(&self.s.iron)
-            + per_kva2(l.load_loss_w, l.rated_kva) * year(&self.s.copper)
-            + l.auxiliary_loss_w * year(&self.s.auxiliary)
-            + self.ages.upkeep[t];
-        if self.ages.fails {
+        let between = |tail: &[f64]| tail[from] - tail[to];
+        l.no_load_loss_w * between(&self.s.iron)
+            + per_kva2(l.load_loss_w, l.rated_kva) * between(&self.s.copper)
+            + l.auxiliary_loss_w * between(&self.s.auxiliary)
+            + between(&self.ages.upkeep)
+    }
+
+    /// Brings `before`, the cost up to time `t`, and `survival`, the chance to be alive then, from `t` − 1 to
+    /// `t`. Without failures the cost is read off at once.
+    fn pass(&self, t: usize, before: &mut f64, survival: &mut f64) {
+        if !self.ages.fails {
+            *before = self.run(0, t);
+        } else if t > 0 {
             let h = self.ages.fail[t];
             *before += *survival
-                * (run + h * (self.place.failure_cost * self.payment[t] + self.forced[t]));
+                * (self.run(t - 1, t)
+                    + h * (self.place.failure_cost * self.payment[t] + self.forced[t]));
             *survival *= 1.0 - h;
-        } else {
-            *before += run;
         }
     }
 }

@@ -48,7 +48,7 @@ pub(super) struct Ages {
     pub(super) fails: bool,
     /// Failure probability in year k (index k, 0 unused).
     pub(super) fail: Vec<f64>,
-    /// d_k·upkeep of the old unit in year k (index k, 0 unused).
+    /// Σ_{k>t} d_k·upkeep of the old unit.
     pub(super) upkeep: Vec<f64>,
 }
 
@@ -59,13 +59,15 @@ impl Ages {
             std::iter::once(0.0).chain((1..=a.years).map(f)).collect::<Vec<f64>>()
         };
         let weibull = a.failure.filter(|_| year_made.is_some());
+        let mut upkeep = vec![0.0; a.years + 1];
+        for k in (1..=a.years).rev() {
+            let d = discounting::running(a.rate, k, a.cash_flow);
+            upkeep[k - 1] = upkeep[k] + d * running_cost::upkeep(&mut Silent, a, at(k));
+        }
         Self {
             fails: weibull.is_some(),
             fail: yearly(&|k| weibull.map_or(0.0, |m| m.fails_in_year(&mut Silent, at(k)))),
-            upkeep: yearly(&|k| {
-                discounting::running(a.rate, k, a.cash_flow)
-                    * running_cost::upkeep(&mut Silent, a, at(k))
-            }),
+            upkeep,
         }
     }
 }
