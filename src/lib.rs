@@ -9,5 +9,6 @@
 //!    engine/             pure computation on plain data
 //! ```
 
+pub mod book;
 pub mod engine;
 pub mod study;

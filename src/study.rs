@@ -1,55 +1,40 @@
-//! Questions a planner asks: each study joins what the book holds with what the engine computes.
+//! Questions a planner asks, answered from a book by the engine. The commands and the screens get their
+//! figures here and nowhere else; a result is plain data that can be printed, drawn or written as JSON.
 //!
-//! Faces get their figures here and nowhere else; a result is plain data that can be printed, drawn or
-//! written as JSON. Owns no screen, no file and no formula.
+//! [`Desk`] is what lies ready for a question: the fleet in columns, the offers, profiles, prices and a basis.
+//! It is filled from a book once; a changed assumption never reads the book again.
 
+pub mod desk;
+pub mod error;
+pub mod explain;
+pub mod factors;
+pub mod figures;
+pub mod losses;
+pub mod rank;
 pub mod settle;
 pub mod tender;
+pub mod unit;
+pub mod watch;
 
-use crate::engine::Refusal;
-use crate::engine::columns::nearest;
+use serde::Serialize;
 
-/// Why a study has no answer.
-#[derive(Clone, Debug, PartialEq, thiserror::Error)]
-#[non_exhaustive]
-pub enum StudyError {
-    /// The engine refuses an input.
-    #[error("{at}: {refusal}")]
-    Refused {
-        /// What it belongs to: the lot, the bid.
-        at: String,
-        /// The input and what to do about it.
-        refusal: Refusal,
-    },
-    /// Something was named that is not there.
-    #[error("{kind} {name} is not in {place}{}", near.as_ref().map(|n| format!("; did you mean {n}?")).unwrap_or_default())]
-    Unknown {
-        /// What kind of thing.
-        kind: &'static str,
-        /// Its name, as asked for.
-        name: String,
-        /// Where it was looked for.
-        place: String,
-        /// The known name nearest to it.
-        near: Option<String>,
-    },
+pub use desk::Desk;
+pub use error::StudyError;
+pub use watch::Watch;
+
+/// A result as a JSON document.
+#[derive(Clone, Copy, Debug, Serialize)]
+pub struct Document<T> {
+    /// Version of the names in the document.
+    pub schema_version: u32,
+    /// The result.
+    #[serde(flatten)]
+    pub result: T,
 }
 
-impl StudyError {
-    /// Puts a place in front of a refusal.
-    pub fn refused(at: impl Into<String>) -> impl FnOnce(Refusal) -> Self {
-        let at = at.into();
-        move |refusal| Self::Refused { at, refusal }
-    }
-
-    /// Something unknown, with the nearest known name.
-    pub fn unknown<'a>(
-        kind: &'static str,
-        name: &str,
-        place: impl Into<String>,
-        known: impl IntoIterator<Item = &'a str>,
-    ) -> Self {
-        let near = nearest(name, known).map(str::to_owned);
-        Self::Unknown { kind, name: name.to_owned(), place: place.into(), near }
+impl<T> Document<T> {
+    /// The document of a result.
+    pub const fn of(result: T) -> Self {
+        Self { schema_version: 1, result }
     }
 }

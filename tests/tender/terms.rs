@@ -222,7 +222,7 @@ fn working_ends_in_the_figures() {
     ] {
         assert_eq!(steps.last().map(|step| step.value.to_bits()), Some(figure.to_bits()));
     }
-    assert_eq!(margin(&sheet, None, "L"), Ok(None), "one bid has no margin");
+    assert!(matches!(margin(&sheet, None, "L"), Ok(None)), "one bid has no margin");
     sheet.bids.push(ironhum::engine::columns::Bid { bid: "B".into(), ..sheet.bids[0].clone() });
     sheet.bids[1].price = money(13_000.0);
     let result = evaluate(&sheet, None, None).expect("complete");

@@ -135,6 +135,7 @@ fn duty(lot: &Lot, basis: &BasisForFactors, absent: Computed) -> Result<(Duty, F
         loss_factor_pu: load("loss_factor_pu", lot.loss_factor_pu)?,
         energised_hours: assumptions.energised_hours,
         auxiliary_hours: assumptions.auxiliary_hours.unwrap_or(assumptions.energised_hours),
+        power_factor: None,
         responsibility_pu: assumptions.responsibility_pu.unwrap_or(1.0),
         no_load_price_per_kwh: prices.price_per_kwh,
         load_price_per_kwh: prices.price_per_kwh,

@@ -5,7 +5,7 @@
 //! a unit box, so that it is the same for every scale of money. Also: borders between cells.
 
 use super::Plane;
-use crate::engine::decision::same_value;
+use crate::engine::decision::equal_pv;
 use crate::engine::economics::loss_factors::LossFactors;
 
 /// Distances below this part of the box are rounding: such vertices are one, such cells are none.
@@ -62,7 +62,7 @@ impl Unit {
     fn same(&self, other: &Self) -> bool {
         [[0.0, 0.0], [1.0, 0.0], [0.0, 1.0], [1.0, 1.0]]
             .iter()
-            .all(|&corner| same_value(self.at(corner), other.at(corner)))
+            .all(|&corner| equal_pv(self.at(corner), other.at(corner)))
     }
 
     fn minus(&self, other: &Self) -> Self {

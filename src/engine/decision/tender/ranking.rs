@@ -1,7 +1,7 @@
 //! The order of admitted bids: least owning cost first, ties by price with adders, then by entry;
 //! and the near-tie band, inside which the lower price leads.
 
-use crate::engine::decision::same_value;
+use crate::engine::decision::equal_pv;
 use crate::engine::working::{Formula, Recorder, Silent};
 
 /// What the order of a bid depends on.
@@ -38,7 +38,7 @@ pub fn rank(bids: &[Standing], near_tie_pct: f64) -> Ranking {
     let edge = least + least.abs() * near_tie_pct / 100.0;
     let in_band = |i: &&usize| {
         let cost = bids[**i].owning_cost;
-        cost <= edge || same_value(cost, edge) || same_value(cost, least)
+        cost <= edge || equal_pv(cost, edge) || equal_pv(cost, least)
     };
     let mut band: Vec<usize> = order.iter().take_while(in_band).copied().collect();
     let place = |i: &usize| order.iter().position(|j| j == i);
@@ -75,7 +75,7 @@ fn sort_with_ties(
     let mut start = 0;
     while start < items.len() {
         let first = value(items[start]);
-        let run = items[start..].iter().take_while(|&&i| same_value(first, value(i))).count();
+        let run = items[start..].iter().take_while(|&&i| equal_pv(first, value(i))).count();
         order_tied(&mut items[start..start + run.max(1)]);
         start += run.max(1);
     }
