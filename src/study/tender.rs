@@ -18,10 +18,11 @@ use crate::engine::decision::tender::factors::{Computed, of_lot};
 use crate::engine::decision::tender::limits::{self, Findings};
 use crate::engine::decision::tender::map::{Point, WinnerMap};
 use crate::engine::decision::tender::ranking::{self, Ranking, Standing, rank};
-use crate::engine::decision::tender::{Plane, Rates, Terms};
+use crate::engine::decision::tender::{Plane, Rates, Terms, legal};
 use crate::engine::economics::loss_factors::LossFactors;
 use crate::engine::economics::owning_cost::OwningCost;
 use crate::engine::flags::Flags;
+use crate::engine::law::Verdict;
 use crate::engine::transformer::losses::Losses;
 use crate::engine::working::{Recorder, Silent, Step, Working};
 
@@ -308,6 +309,22 @@ pub fn working(
     })
 }
 
+/// What the law that the lot names says of a bid, with its working; none where none is named or the day of
+/// purchase is not known.
+///
+/// # Errors
+/// As [`working`], and a law that is not known.
+pub fn verdict(
+    sheet: &TenderSheet,
+    basis: Option<&BasisForFactors>,
+    lot: &str,
+    bid: &str,
+) -> Result<Option<Verdict>, StudyError> {
+    let (lot, bid) = (find_lot(sheet, lot)?, find_bid(sheet, lot, bid)?);
+    let (terms, _) = terms(&mut Silent, sheet, basis, lot)?;
+    before_the_law(&terms, bid, &bring(&mut Silent, &terms, bid)?)
+}
+
 pub(super) fn find_lot<'a>(sheet: &'a TenderSheet, lot: &str) -> Result<&'a Lot, StudyError> {
     sheet.lots.iter().find(|l| l.lot == lot).ok_or_else(|| {
         let known = sheet.lots.iter().map(|l| l.lot.as_str());
@@ -348,6 +365,7 @@ pub(super) fn terms<'a, R: Recorder>(
         factors,
         stray_share_pu: assumptions.map_or(0.0, |a| a.stray_share_pu),
         near_tie_pct: lot.near_tie_pct.or(assumptions.map(|a| a.near_tie_pct)).unwrap_or(0.0),
+        purchase: legal::purchase(&sheet.tender, assumptions.map(|a| a.first_year)),
     };
     Ok((terms, flags))
 }
@@ -362,6 +380,15 @@ pub(super) fn bring<R: Recorder>(
     comparable(w, terms, bid).map_err(|refusal| StudyError::Refused { at: at(), refusal })
 }
 
+fn before_the_law(
+    terms: &Terms,
+    bid: &Bid,
+    on_terms: &Comparable,
+) -> Result<Option<Verdict>, StudyError> {
+    legal::verdict(terms, bid, on_terms)
+        .map_err(StudyError::refused(format!("lot {}", terms.lot.lot)))
+}
+
 /// A bid with all that is known of it.
 struct Assessed<'a> {
     bid: &'a Bid,
@@ -374,7 +401,12 @@ impl<'a> Assessed<'a> {
     fn new(terms: &Terms, bid: &'a Bid) -> Result<Self, StudyError> {
         let on_terms = bring(&mut Silent, terms, bid)?;
         let cost = on_terms.owning_cost(&mut Silent);
-        Ok(Self { bid, on_terms, cost, found: limits::against(terms.lot, bid, &on_terms, None) })
+        let verdict = before_the_law(terms, bid, &on_terms)?;
+        let meets = verdict.as_ref().and_then(|verdict| verdict.meets);
+        let mut found = limits::against(terms.lot, bid, &on_terms, meets);
+        found.flags =
+            found.flags.with_if(verdict.is_some_and(|verdict| verdict.verify), Flags::VERIFY_LAW);
+        Ok(Self { bid, on_terms, cost, found })
     }
 
     fn standing(&self) -> Standing {
