@@ -1,8 +1,9 @@
-//! What to decide: keep or replace (one unit, or a fleet in columns), and which bid; and how sure the answer is.
+//! What to decide: keep or replace (one unit, or a fleet in columns), which bid, and how sure the answer is.
 
 pub mod fit;
 pub mod fleet;
 pub mod keep_or_replace;
+pub mod parts;
 pub mod place;
 pub mod tender;
 pub mod uncertainty;

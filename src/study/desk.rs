@@ -1,5 +1,7 @@
 //! What lies ready for a question: a fleet in columns, offers, profiles, prices and a basis.
 
+use std::sync::Arc;
+
 use crate::book::Book;
 use crate::engine::columns::{BasisSheet, Offer, Unit};
 use crate::engine::decision::fleet::FleetColumns;
@@ -10,21 +12,21 @@ use crate::engine::flags::Flags;
 use crate::engine::loading::{Market, PriceSeries, Profile, Ratios};
 use crate::study::StudyError;
 
-/// Everything a question needs, in memory.
+/// Everything a question needs, in memory. What is large is shared: a clone with another basis is cheap.
 #[derive(Clone, Debug)]
 pub struct Desk {
     /// The fleet in columns.
-    pub fleet: FleetColumns,
+    pub fleet: Arc<FleetColumns>,
     /// The offers, in catalogue order.
-    pub offers: Vec<Offer>,
+    pub offers: Arc<Vec<Offer>>,
     /// The offers ready to compute with, in the same order.
     pub candidates: Vec<Candidate>,
     /// The load profiles.
-    pub profiles: Vec<Profile>,
+    pub profiles: Arc<Vec<Profile>>,
     /// Their ratios.
     pub ratios: Vec<Ratios>,
     /// The price series of the book that the basis may name.
-    pub series: Vec<PriceSeries>,
+    pub series: Arc<Vec<PriceSeries>>,
     /// The basis.
     pub sheet: BasisSheet,
 }
@@ -36,11 +38,25 @@ impl Desk {
     /// The book fails or does not know the basis or its price series.
     pub fn read(book: &Book, basis: Option<&str>) -> Result<Self, StudyError> {
         let sheet = book.basis(basis)?;
-        let series = match &sheet.basis.price_series {
+        let series = Self::series_of(book, &sheet)?;
+        Self::new(book.fleet()?, book.offers()?, book.profiles()?, series, sheet)
+    }
+
+    /// Reads a basis with its profiles and prices, without the fleet and the offers: enough for loss factors.
+    ///
+    /// # Errors
+    /// As [`Desk::read`].
+    pub fn basis_only(book: &Book, basis: Option<&str>) -> Result<Self, StudyError> {
+        let sheet = book.basis(basis)?;
+        let series = Self::series_of(book, &sheet)?;
+        Self::new(FleetColumns::default(), Vec::new(), book.profiles()?, series, sheet)
+    }
+
+    fn series_of(book: &Book, sheet: &BasisSheet) -> Result<Vec<PriceSeries>, StudyError> {
+        Ok(match &sheet.basis.price_series {
             Some(name) => vec![book.price_series(name)?],
             None => Vec::new(),
-        };
-        Self::new(book.fleet()?, book.offers()?, book.profiles()?, series, sheet)
+        })
     }
 
     /// Lays out what was read from a book.
@@ -48,7 +64,7 @@ impl Desk {
     /// # Errors
     /// An offer whose losses contradict each other, a profile without a peak.
     pub fn new(
-        fleet: FleetColumns,
+        fleet: impl Into<Arc<FleetColumns>>,
         offers: Vec<Offer>,
         profiles: Vec<Profile>,
         series: Vec<PriceSeries>,
@@ -56,7 +72,21 @@ impl Desk {
     ) -> Result<Self, StudyError> {
         let candidates = offers.iter().map(Candidate::of_offer).collect::<Result<_, _>>()?;
         let ratios = profiles.iter().map(Profile::ratios).collect::<Result<_, _>>()?;
-        Ok(Self { fleet, offers, candidates, profiles, ratios, series, sheet })
+        Ok(Self {
+            fleet: fleet.into(),
+            offers: offers.into(),
+            candidates,
+            profiles: profiles.into(),
+            ratios,
+            series: series.into(),
+            sheet,
+        })
+    }
+
+    /// The same desk under another basis.
+    #[must_use]
+    pub fn with_basis(&self, sheet: BasisSheet) -> Self {
+        Self { sheet, ..self.clone() }
     }
 
     /// The basis resolved, with its prices: what the engine computes with.
