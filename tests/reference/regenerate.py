@@ -16,14 +16,17 @@ import finance
 import grid
 import power_flow
 import standard_types
+import tender_cloud
+import tender_map
 import thermal
 from common import NOT_COMPARED
 
 HERE = Path(__file__).resolve().parent
 # In order: later scripts read the CSV files of the earlier ones.
-SCRIPTS = [standard_types, bdew, annual_energy, power_flow, finance, grid, thermal]
+SCRIPTS = [standard_types, bdew, annual_energy, power_flow, finance, grid, thermal, tender_map,
+           tender_cloud]
 FILES = ["units.csv", "units.source.json", "profiles.csv", "profiles.source.json", "annual_energy.json",
-         "power_flow.json", "finance.json", "grid.json", "thermal.json"]
+         "power_flow.json", "finance.json", "grid.json", "thermal.json", "tender_map.json", "tender_cloud.json"]
 TOLERANCE = 1e-9
 SHOWN = 20
 

@@ -1,17 +1,16 @@
 """An independent simulation of a tender under uncertain inputs, as a reference for tests/tender/risk.rs.
 
-Needs numpy and scipy. Writes tests/reference/tender_cloud.json. Loss factors by present value (METHODS, section 5 of
-the project): year k = 1..N, discounted at year ends, peak load growing for Y years; generator, sampling and sums are
-numpy's own. The rank correlation is a normal copula. Bounds for quantiles are those of DRAWS draws at four standard
-errors.
+Writes tender_cloud.json. Loss factors by present value: year k = 1..N, discounted at year ends, peak load growing for
+Y years; generator, sampling and sums are numpy's own. The rank correlation is a normal copula. Bounds for quantiles
+are those of DRAWS draws at four standard errors.
 """
 
-import json
-import pathlib
+from pathlib import Path
 
 import numpy as np
-import scipy
 from scipy.stats import norm
+
+from common import folder_argument, versions, write_json
 
 DRAWS = 20_000  # of the run that is compared
 OWN = 1_000_000
@@ -37,7 +36,7 @@ def factors(rate, price, escalation, growth, demand, peak):
     return a, b, aux
 
 
-def main():
+def main(folder: Path) -> dict:
     rng = np.random.default_rng(57120)
     rate = rng.triangular(4.0, 6.0, 9.0, OWN) / 100
     # Price and escalation together: normals of the Pearson correlation that gives the rank correlation.
@@ -68,17 +67,16 @@ def main():
             step = 4 * np.sqrt(p * (1 - p) * (1 / DRAWS + 1 / OWN))
             bid[label] = [float(q) for q in np.quantile(cost[i], [p - step, p + step])]
         bids.append(bid)
-    result = {
-        "source": "numpy simulation, tests/reference/tender_cloud.py",
-        "versions": {"numpy": np.__version__, "scipy": scipy.__version__},
+    document = {
+        "source": "simulation with numpy's own generator (PCG64) and distributions",
+        "versions": versions("numpy", "scipy"),
         "own_draws": OWN,
         "compared_draws": DRAWS,
         "bids": bids,
     }
-    path = pathlib.Path(__file__).with_suffix(".json")
-    path.write_text(json.dumps(result, indent=1) + "\n")
-    print(json.dumps(bids, indent=1))
+    write_json(folder / "tender_cloud.json", document)
+    return {"bids": len(bids)}
 
 
 if __name__ == "__main__":
-    main()
+    print(main(folder_argument()))

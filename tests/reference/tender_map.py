@@ -1,17 +1,17 @@
 """Areas of the winner map from scipy's half-plane intersection, as a reference for tests/tender/map_reference.rs.
 
-Needs numpy and scipy. Writes tests/reference/tender_map.json. A bid is [constant, no_load_kw, load_kw]: its owning
+Writes tender_map.json. A bid is [constant, no_load_kw, load_kw]: its owning
 cost is constant + A*no_load_kw + B*load_kw; the box is 0..a_max x 0..b_max. Cells: scipy.spatial.HalfspaceIntersection
 (Qhull) about the Chebyshev centre found by scipy.optimize.linprog; area: scipy.spatial.ConvexHull.
 """
 
-import json
-import pathlib
+from pathlib import Path
 
 import numpy as np
-import scipy
 from scipy.optimize import linprog
 from scipy.spatial import ConvexHull, HalfspaceIntersection
+
+from common import folder_argument, versions, write_json
 
 BOX = np.array([[-1.0, 0.0, 0.0], [0.0, -1.0, 0.0], [1.0, 0.0, -1.0], [0.0, 1.0, -1.0]])
 
@@ -49,17 +49,20 @@ def lot(rng, n):
     return {"factor_a_per_kw": a, "factor_b_per_kw": b, "bids": bids.tolist(), "shares": shares}
 
 
-def main():
+def main(folder: Path) -> dict:
     rng = np.random.default_rng(1724)
-    result = {
-        "source": "scipy.spatial.HalfspaceIntersection and ConvexHull (Qhull), tests/reference/tender_map.py",
-        "versions": {"numpy": np.__version__, "scipy": scipy.__version__},
-        "lots": [lot(rng, n) for n in [1, 2, 3, 5, 8, 13, 21, 34, 60] * 4],
+    lots = [lot(rng, n) for n in [1, 2, 3, 5, 8, 13, 21, 34, 60] * 4]
+    worst = max(abs(sum(lot["shares"]) - 1) for lot in lots)
+    if worst > 1e-12:
+        raise ValueError(f"shares do not sum to 1: {worst}")
+    document = {
+        "source": "scipy.spatial.HalfspaceIntersection and ConvexHull (Qhull)",
+        "versions": versions("numpy", "scipy"),
+        "lots": lots,
     }
-    path = pathlib.Path(__file__).with_suffix(".json")
-    path.write_text(json.dumps(result, indent=1) + "\n")
-    print(max(abs(sum(lot["shares"]) - 1) for lot in result["lots"]))
+    write_json(folder / "tender_map.json", document)
+    return {"lots": len(lots)}
 
 
 if __name__ == "__main__":
-    main()
+    print(main(folder_argument()))

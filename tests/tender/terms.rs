@@ -1,7 +1,7 @@
 //! How bids come to one lot's terms: currency, quoted losses, temperature, another rating, limits. Numbers by hand.
 
-use ironhum::engine::columns::{Bid, Lot, Tolerance};
-use ironhum::study::tender::{BidResult, evaluate, margin, working};
+use ironhum::engine::columns::{Bid, Insulation, Lot, Tolerance};
+use ironhum::study::tender::{BidResult, evaluate, margin, verdict, working};
 
 use crate::sheets::{bid, lot, money, near, rate, sheet};
 
@@ -92,7 +92,7 @@ fn limits_exclude_by_key_and_equality_passes() {
         max_sound_db: Some(50.0),
         max_mass_kg: Some(2000.0),
         max_delivery_weeks: Some(30.0),
-        law: Some("some law".into()),
+        law: Some("eu-548-2014".into()),
         ..lot(400.0, 1000.0, 1000.0, 0.0)
     };
     let exact = Bid {
@@ -137,6 +137,44 @@ fn limits_exclude_by_key_and_equality_passes() {
     assert_eq!((poor.rank, poor.near_tie), (None, false));
     assert_eq!(poor.excluded, all);
     assert!(poor.flags.contains(&"quantity_short"));
+}
+
+/// Regulation (EU) 548/2014 as amended, table I.1, tier 2, 400 kVA liquid-immersed up to 24 kV: 387 W and
+/// 3250 W at 75 °C. The law in force on the day of the tender counts; no tolerance.
+#[test]
+fn the_law_excludes_what_it_forbids() {
+    let lot = Lot {
+        hv_kv: Some(20.0),
+        lv_kv: Some(0.4),
+        vector_group: Some("Dyn11".into()),
+        law: Some("eu-548-2014".into()),
+        ..lot(400.0, 1000.0, 1000.0, 0.0)
+    };
+    let quoted = |name, p0, pk| Bid {
+        vector_group: Some("Dyn5".into()),
+        insulation: Some(Insulation::Liquid),
+        reference_temp_c: Some(75.0),
+        ..bid(name, 9000.0, p0, pk)
+    };
+    let bids = vec![quoted("kept", 387.0, 3250.0), quoted("missed", 388.0, 3250.0)];
+    let mut sheet = sheet("EUR", lot, bids);
+    let undated = evaluate(&sheet, None, None).expect("complete").lots.remove(0);
+    assert!(undated.bids.iter().all(|bid| bid.flags.contains(&"law_not_checked")));
+    sheet.tender.dated = Some("2026-02-01".into());
+    let lot = evaluate(&sheet, None, None).expect("complete").lots.remove(0);
+    let [kept, missed] = lot.bids.as_slice() else { panic!("two bids") };
+    assert_eq!((kept.law, kept.rank, kept.excluded.len()), (Some(true), Some(1), 0));
+    assert_eq!((missed.law, missed.excluded.as_slice()), (Some(false), ["law"].as_slice()));
+    assert!(!kept.flags.contains(&"law_not_checked"));
+    let open = verdict(&sheet, None, "L", "missed").expect("known").expect("dated");
+    assert_eq!(open.limits[0].limit, 387.0);
+    // Tier 1 of 2015 allows 430 W and 4600 W.
+    sheet.tender.dated = Some("2020-02-01".into());
+    let lot = evaluate(&sheet, None, None).expect("complete").lots.remove(0);
+    assert!(lot.bids.iter().all(|bid| bid.law == Some(true)));
+    sheet.lots[0].law = Some("eu-549-2014".into());
+    let unknown = evaluate(&sheet, None, None).expect_err("no such law").to_string();
+    assert!(unknown.contains("eu-549-2014: is not known (nearest: eu-548-2014)"), "{unknown}");
 }
 
 /// The limit holds after correction: 4100 W at 85 °C are 3972 W at 75 °C.

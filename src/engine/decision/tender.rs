@@ -2,14 +2,15 @@
 //!
 //! The way of a bid: [`rates`] (its money in the tender currency) and [`bid`] (its losses at its rating and
 //! at the lot's temperature) bring it to the lot's terms; [`factors`] values a kW of loss; [`limits`] says
-//! what it misses; [`tolerance`] what losses above the guarantee may cost; [`ranking`] sets the order. [`map`]
-//! shows who wins at other factors, [`changes`] how far an input must move before another bid wins,
-//! [`risk`] how sure the winner is; [`settlement`] holds measured losses to the guarantee.
+//! what it misses, [`legal`] what the law says of it; [`tolerance`] what losses above the guarantee may cost;
+//! [`ranking`] sets the order. [`map`] shows who wins at other factors, [`changes`] how far an input must move
+//! before another bid wins, [`risk`] how sure the winner is; [`settlement`] holds measured losses to the guarantee.
 //! Owns no file and no basis; money is per unit in the tender currency, losses are in W, factors per kW.
 
 pub mod bid;
 pub mod changes;
 pub mod factors;
+pub mod legal;
 pub mod limits;
 pub mod map;
 pub mod ranking;
@@ -17,6 +18,8 @@ pub mod rates;
 pub mod risk;
 pub mod settlement;
 pub mod tolerance;
+
+use chrono::NaiveDate;
 
 use crate::engine::columns::{Lot, Tolerance};
 use crate::engine::economics::loss_factors::LossFactors;
@@ -38,6 +41,8 @@ pub struct Terms<'a> {
     pub stray_share_pu: f64,
     /// Bids within this of the least owning cost count as near-tied.
     pub near_tie_pct: f64,
+    /// The day of purchase, whose law counts.
+    pub purchase: Option<NaiveDate>,
 }
 
 impl Terms<'_> {

@@ -16,6 +16,8 @@ use crate::engine::working::{Formula, Recorder};
 pub struct Comparable {
     /// Losses at the bid's rating and the lot's reference temperature.
     pub losses: Losses,
+    /// Load loss at the bid's rating and the temperature at which it was quoted.
+    pub quoted_load_loss_w: f64,
     /// Price of one unit in the tender currency.
     pub price: f64,
     /// Freight, installation and other adders of one unit in the tender currency.
@@ -70,11 +72,12 @@ pub fn comparable<R: Recorder>(w: &mut R, terms: &Terms, bid: &Bid) -> Result<Co
     let p0 = Some(bid.no_load_loss_w);
     let (pk, total, aux) = (bid.load_loss_w, bid.total_loss_w, bid.auxiliary_loss_w);
     let mut losses = quoted(w, rated_kva, bid.loss_base_kva, p0, pk, total, aux)?;
+    let quoted_load_loss_w = losses.load_loss_w;
     let mut flags = quotation_flags(bid, rated_kva);
 
     match (bid.reference_temp_c, lot.reference_temp_c) {
         (Some(quoted_c), Some(lot_c)) if quoted_c != lot_c => {
-            let pk = losses.load_loss_w;
+            let pk = quoted_load_loss_w;
             let stray = terms.stray_share_pu * pk;
             let t0 = vanishing_temp_c(bid.winding_metal.unwrap_or(WindingMetal::Copper));
             losses.load_loss_w = load_loss_at(w, pk - stray, stray, t0, quoted_c, lot_c);
@@ -90,6 +93,7 @@ pub fn comparable<R: Recorder>(w: &mut R, terms: &Terms, bid: &Bid) -> Result<Co
     let ratio = lot.rated_kva / rated_kva;
     Ok(Comparable {
         losses,
+        quoted_load_loss_w,
         price: Rates::convert(w, bid.price.amount(), rate, "price"),
         added_cost: Rates::convert(w, adders.amount(), rate, "freight, installation, adders"),
         factors: factors_at(w, terms, rated_kva),

@@ -88,6 +88,7 @@ mod tests {
         };
         let on_terms = Comparable {
             losses,
+            quoted_load_loss_w: 1.0,
             price: 1.0,
             added_cost: 0.0,
             factors: LossFactors {
