@@ -8,6 +8,7 @@ mod backup;
 mod cells;
 mod change;
 mod error;
+mod fleet;
 mod journal;
 mod open;
 mod read;

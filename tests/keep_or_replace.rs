@@ -5,6 +5,14 @@
 //! a year, in which the unit fails or not). It is compared with V(0), with min(min J, R(0)) and with every
 //! choice. Source of the definitions: the project's methods page, section 7 (backward induction, Bellman 1957).
 
+#![expect(
+    clippy::cast_possible_wrap,
+    clippy::cast_possible_truncation,
+    clippy::cast_sign_loss,
+    clippy::cast_precision_loss,
+    reason = "small counts and calendar years"
+)]
+
 use ironhum::engine::columns::{Basis, CapitalRecovery, CashFlow};
 use ironhum::engine::decision::fit::{Terminals, fitting};
 use ironhum::engine::decision::fleet::{FleetColumns, Kernel, Outcome};

@@ -4,6 +4,7 @@ pub mod duty;
 pub mod factors;
 pub mod prices;
 pub mod profile;
+pub mod stepped;
 
 pub use duty::Duty;
 pub use prices::{Market, PriceSeries, Weights};

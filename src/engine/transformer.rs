@@ -1,6 +1,19 @@
-//! The transformer itself: losses at a load, vector group; nameplate from tests, circuit and thermal.
+//! The transformer itself: nameplate from tests, circuit, losses at a load, regulation, bank, fault, heat.
 
+pub mod ageing;
+pub mod circuit;
+mod complex;
+pub mod core_loss;
+pub mod efficiency;
+pub mod efficiency_index;
+pub mod fault;
+pub mod harmonics;
 pub mod losses;
+pub mod nameplate;
+pub mod parallel;
+pub mod regulation;
 pub mod temperature;
+pub mod thermal;
 pub mod vector_group;
+pub mod voltage_drop;
 pub mod windings;

@@ -83,3 +83,45 @@ figures! {
 pub fn figure(key: &str) -> Option<&'static Figure> {
     FIGURES.iter().find(|figure| figure.key == key)
 }
+
+/// A number for people: rounded, thousands apart by a space, a true minus.
+pub fn group(value: f64, places: usize) -> String {
+    let text = format!("{:.places$}", value.abs());
+    let (whole, fraction) = text.split_once('.').unwrap_or((&text, ""));
+    let mut out = String::new();
+    if value < 0.0 && text.bytes().any(|b| b.is_ascii_digit() && b != b'0') {
+        out.push('−');
+    }
+    for (i, digit) in whole.chars().enumerate() {
+        if i > 0 && (whole.len() - i).is_multiple_of(3) {
+            out.push(' ');
+        }
+        out.push(digit);
+    }
+    if !fraction.is_empty() {
+        out.push('.');
+        out.push_str(fraction);
+    }
+    out
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn numbers_for_people() {
+        assert_eq!(group(1_234_567.891, 1), "1 234 567.9");
+        assert_eq!(group(-999.5, 0), "−1 000");
+        assert_eq!(group(-0.4, 0), "0");
+        assert_eq!(group(0.0, 2), "0.00");
+    }
+
+    #[test]
+    fn keys_are_once() {
+        let mut keys: Vec<_> = FIGURES.iter().map(|f| f.key).collect();
+        keys.sort_unstable();
+        keys.dedup();
+        assert_eq!(keys.len(), FIGURES.len());
+    }
+}

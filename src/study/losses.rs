@@ -9,7 +9,7 @@ use crate::engine::economics::running_cost;
 use crate::engine::transformer::losses::{annual_efficiency_pct, annual_energy};
 use crate::engine::working::Silent;
 use crate::study::rank::LeftOutRow;
-use crate::study::{Desk, SCHEMA_VERSION, StudyError};
+use crate::study::{Desk, StudyError};
 
 /// Losses of a unit in year 1.
 #[derive(Clone, Debug, PartialEq, Serialize)]
@@ -46,7 +46,6 @@ pub struct LossesTotals {
 #[derive(Clone, Debug, PartialEq, Serialize)]
 #[expect(missing_docs, reason = "the keys of the result")]
 pub struct Losses<'a> {
-    pub schema_version: u32,
     pub basis: String,
     pub currency: String,
     pub year: i64,
@@ -111,7 +110,6 @@ pub fn losses(desk: &Desk) -> Result<Losses<'_>, StudyError> {
     }
     units.sort_by(|a, b| b.loss_cost.total_cmp(&a.loss_cost).then_with(|| a.unit.cmp(b.unit)));
     Ok(Losses {
-        schema_version: SCHEMA_VERSION,
         basis: context.assumptions.name,
         currency: context.assumptions.currency,
         year: context.assumptions.first_year,

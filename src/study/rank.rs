@@ -10,16 +10,40 @@ use crate::engine::decision::place::resolve;
 use crate::engine::decision::{Context, LeftOut};
 use crate::engine::transformer::losses::annual_energy;
 use crate::engine::working::Silent;
-use crate::study::{Desk, SCHEMA_VERSION, StudyError, Watch};
+use crate::study::{Desk, StudyError, Watch};
 
 /// By what the ranking is ordered.
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
 pub enum By {
-    /// What the best choice saves in present value.
+    /// What the best choice saves in present value, greatest first.
     #[default]
     Saving,
-    /// What a year's delay costs.
+    /// What a year's delay costs, greatest first.
     Waiting,
+    /// What keeping costs, greatest first.
+    Keep,
+    /// Rating, greatest first.
+    Rating,
+    /// Year of manufacture, oldest first, unknown last.
+    Made,
+    /// Identifier.
+    Unit,
+}
+
+impl By {
+    /// All orders with their words.
+    pub const WORDS: [(Self, &str); 6] = [
+        (Self::Saving, "saving"),
+        (Self::Waiting, "waiting"),
+        (Self::Keep, "keep"),
+        (Self::Rating, "rating"),
+        (Self::Made, "made"),
+        (Self::Unit, "unit"),
+    ];
+    /// The word of this order.
+    pub fn word(self) -> &'static str {
+        Self::WORDS.iter().find(|(by, _)| *by == self).map_or("", |(_, word)| word)
+    }
 }
 
 /// A ranked fleet: outcomes of all units, and the order.
@@ -141,13 +165,19 @@ fn sum_up(from: usize, out: &[Outcome]) -> (Totals, Vec<u32>) {
     (totals, left_out)
 }
 
-/// The ranked units, by the figure asked for (greatest first), then by the bytes of the identifier.
+/// The ranked units in the order asked for, then by the bytes of the identifier.
 fn order(desk: &Desk, outcomes: &[Outcome], by: By, top: Option<usize>) -> Vec<u32> {
     let figure = |i: u32| {
         let outcome = &outcomes[i as usize];
         match by {
             By::Saving => outcome.saving_pv(),
             By::Waiting => outcome.waiting_pv,
+            By::Keep => outcome.keep_pv,
+            By::Rating => desk.fleet.rated_kva[i as usize],
+            By::Made => Some(-desk.fleet.year_made[i as usize])
+                .filter(|made| !made.is_nan())
+                .unwrap_or(f64::NEG_INFINITY),
+            By::Unit => 0.0,
         }
     };
     let name = |i: u32| desk.fleet.unit.get(i as usize);
@@ -219,6 +249,16 @@ impl Ranking {
         })
     }
 
+    /// The ranked units in another order, as places in this ranking.
+    pub fn places(&self, desk: &Desk, by: By) -> Vec<u32> {
+        let mut place = vec![u32::MAX; self.outcomes.len()];
+        for (at, i) in (0u32..).zip(&self.order) {
+            place[*i as usize] = at;
+        }
+        let ordered = order(desk, &self.outcomes, by, None);
+        ordered.into_iter().map(|i| place[i as usize]).filter(|at| *at != u32::MAX).collect()
+    }
+
     /// Unit number `n` of those left out; none beyond the last.
     pub fn left_out_row<'a>(&self, desk: &'a Desk, n: usize) -> Option<LeftOutRow<'a>> {
         let i = *self.left_out.get(n)? as usize;
@@ -255,8 +295,7 @@ impl Serialize for RankResult<'_> {
     fn serialize<S: Serializer>(&self, serializer: S) -> Result<S::Ok, S::Error> {
         let (ranking, desk) = (self.ranking, self.desk);
         let a = &ranking.context.assumptions;
-        let mut result = serializer.serialize_struct("rank", 6)?;
-        result.serialize_field("schema_version", &SCHEMA_VERSION)?;
+        let mut result = serializer.serialize_struct("rank", 5)?;
         result.serialize_field("basis", &a.name)?;
         result.serialize_field("currency", &a.currency)?;
         let rows = Rows(ranking.order.len(), |place| ranking.row(desk, place));

@@ -9,8 +9,9 @@ mod sums;
 
 pub use columns::{FleetColumns, Names};
 
-use std::collections::HashMap;
 use std::ops::Range;
+
+use rustc_hash::FxHashMap;
 
 use super::equal_pv;
 use super::fit::{Candidate, fitting};
@@ -19,7 +20,7 @@ use crate::engine::Refusal;
 use crate::engine::economics::Assumptions;
 use crate::engine::flags::Flags;
 use crate::engine::working::Silent;
-use sums::{Ages, Caps, CapsByFailure, GrowthSums, Horizon};
+use sums::{Ages, Caps, CapsByFailure, Horizon, PriceSums};
 
 /// Units to a chunk. Fixed, so that totals are folded in the same order on any machine.
 pub const CHUNK: usize = 4096;
@@ -138,7 +139,7 @@ impl<'a> Kernel<'a> {
     /// Evaluates the units of `range` into `out`.
     pub fn evaluate(&self, fleet: &FleetColumns, range: Range<usize>, out: &mut [Outcome]) {
         let a = &self.ctx.assumptions;
-        let mut grown: HashMap<u64, GrowthSums> = HashMap::new();
+        let mut grown: FxHashMap<u64, PriceSums> = FxHashMap::default();
         let space = || vec![0.0; a.years + 1];
         let mut s = Scratch {
             series: Series { iron: space(), copper: space(), auxiliary: space() },
@@ -152,7 +153,7 @@ impl<'a> Kernel<'a> {
                 Ok(place) => {
                     let growth = grown
                         .entry(place.duty.load_growth_pu.to_bits())
-                        .or_insert_with(|| GrowthSums::new(a, place.duty.load_growth_pu));
+                        .or_insert_with(|| self.horizon.grown(a, place.duty.load_growth_pu));
                     self.unit(&place, &self.fits[fleet.kind[i] as usize], growth, &mut s)
                 }
             };
@@ -190,7 +191,7 @@ impl<'a> Kernel<'a> {
         }
     }
 
-    fn unit(&self, place: &Place, fit: &Fit, growth: &GrowthSums, space: &mut Scratch) -> Outcome {
+    fn unit(&self, place: &Place, fit: &Fit, growth: &PriceSums, space: &mut Scratch) -> Outcome {
         let a = &self.ctx.assumptions;
         let latest = a.latest;
         let h = &self.horizon;
@@ -367,14 +368,7 @@ struct Series {
 }
 
 impl Series {
-    fn fill(
-        &mut self,
-        place: &Place,
-        fit: &Fit,
-        a: &Assumptions,
-        h: &Horizon,
-        growth: &GrowthSums,
-    ) {
+    fn fill(&mut self, place: &Place, fit: &Fit, a: &Assumptions, h: &Horizon, growth: &PriceSums) {
         let d = &place.duty;
         let demand = a.demand_charge_per_kw_year / 1000.0;
         let hours = d.energised_hours / 1000.0;
@@ -386,7 +380,7 @@ impl Series {
         );
         let square = d.peak_kva * d.peak_kva;
         let loss_hours = square * hours * d.loss_factor_pu;
-        growth.sums.combine(
+        growth.combine(
             loss_hours * d.load_price_per_kwh,
             square * demand * (d.responsibility_pu * d.responsibility_pu),
             loss_hours * d.load_co2_kg_per_kwh,

@@ -1,4 +1,6 @@
-//! Failures: yearly probability from a Weibull age at failure.
+//! Failures: yearly probability from a Weibull age at failure; more of it in `survival`.
+
+mod survival;
 
 use crate::engine::working::{Formula, Recorder};
 

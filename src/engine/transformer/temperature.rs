@@ -1,5 +1,6 @@
 //! Load loss at another winding temperature (IEC 60076-1 Annex E, memory): I²R rises, stray falls.
 
+use crate::engine::Refusal;
 use crate::engine::columns::WindingMetal;
 use crate::engine::working::{Formula, Recorder};
 
@@ -43,6 +44,39 @@ pub fn load_loss_at<R: Recorder>(
     w.step(&RATIO, &[("T0", metal_t0_c), ("θ", to_c), ("θ_from", from_c)], x);
     let value = resistive_w * x + stray_w / x;
     w.close(&AT_TEMPERATURE, &[("P_I2R", resistive_w), ("P_stray", stray_w), ("x", x)], value)
+}
+
+const AT_REFERENCE: Formula = Formula {
+    name: "load loss at the reference temperature, stray part s of it",
+    symbol: "Pk",
+    formula: "P_test/((1−s)·x + s/x)",
+    unit: "W",
+    source: "IEC 60076-1 Annex E (memory), the split given at the reference temperature; methods, section 8",
+};
+
+/// Brings a load loss measured at `test_c` to `reference_c` where only the stray share of the loss at the
+/// reference temperature is known (W, °C).
+///
+/// # Errors
+/// A share outside 0 to 1.
+pub fn load_loss_at_reference<R: Recorder>(
+    w: &mut R,
+    measured_w: f64,
+    stray_share_pu: f64,
+    metal_t0_c: f64,
+    test_c: f64,
+    reference_c: f64,
+) -> Result<f64, Refusal> {
+    if !(0.0..=1.0).contains(&stray_share_pu) {
+        let why = "lies between 0 and 1: the stray part of the load loss at reference temperature";
+        return Err(Refusal::new("stray_share_pu", stray_share_pu, why));
+    }
+    w.open();
+    let x = (metal_t0_c + test_c) / (metal_t0_c + reference_c);
+    w.step(&RATIO, &[("T0", metal_t0_c), ("θ", test_c), ("θ_from", reference_c)], x);
+    let s = stray_share_pu;
+    let value = measured_w / ((1.0 - s) * x + s / x);
+    Ok(w.close(&AT_REFERENCE, &[("P_test", measured_w), ("s", s), ("x", x)], value))
 }
 
 #[cfg(test)]

@@ -1,4 +1,6 @@
-//! Vector groups: the clock number, and which ones can stand for each other.
+//! Vector groups: the clock number, which ones can stand for each other, and which are not computed with.
+
+use crate::engine::Refusal;
 
 /// The clock number at the end of a vector group like `Dyn11`; none where there is none up to 11.
 pub fn clock(vector_group: &str) -> Option<u8> {
@@ -20,6 +22,25 @@ pub fn agree(a: Option<&str>, b: Option<&str>) -> bool {
         (Some(a), Some(b)) => clocks_match(a, b),
         _ => true,
     }
+}
+
+/// Refuses the vector groups of auto-transformers (`YNa0`, `Ia0`) and of three-winding units (`YNyn0d11`).
+///
+/// # Errors
+/// Such a group: the methods hold for two separate windings.
+pub fn two_windings(vector_group: &str) -> Result<(), Refusal> {
+    let group = vector_group.trim().to_lowercase();
+    let refuse = |kind: &str| {
+        let why = format!(
+            "is the vector group of {kind}; only transformers with two separate windings are computed"
+        );
+        Err(Refusal::new("vector_group", vector_group, why))
+    };
+    let numbers = group.split(|c: char| !c.is_ascii_digit()).filter(|run| !run.is_empty()).count();
+    if numbers > 1 {
+        return refuse("a three-winding transformer");
+    }
+    if group.contains('a') { refuse("an auto-transformer") } else { Ok(()) }
 }
 
 #[cfg(test)]
@@ -44,5 +65,14 @@ mod tests {
         );
         assert!(agree(Some("Dyn11"), None) && agree(Some("odd"), Some("Dyn11")));
         assert!(!agree(Some("Dyn11"), Some("Yyn0")));
+    }
+
+    #[test]
+    fn other_kinds_are_refused_by_name() {
+        for group in ["Dyn11", "YNd5", "Yzn5", "Ii0", " yy0 "] {
+            assert!(two_windings(group).is_ok(), "{group}");
+        }
+        assert!(two_windings("YNa0").expect_err("auto").why.contains("auto-transformer"));
+        assert!(two_windings("YNyn0d11").expect_err("three").why.contains("three-winding"));
     }
 }

@@ -1,7 +1,7 @@
 //! A fleet in columns: the bare numbers of every unit side by side, NaN where unknown, and the kinds of
 //! terminals that occur. Filled from a book once; a changed basis never reads the book again.
 
-use std::collections::HashMap;
+use rustc_hash::FxHashMap;
 
 use crate::engine::decision::fit::Terminals;
 use crate::engine::decision::place::UnitFacts;
@@ -18,6 +18,10 @@ impl Names {
     pub fn push(&mut self, name: &str) {
         self.text.push_str(name);
         self.ends.push(u32::try_from(self.text.len()).unwrap_or(u32::MAX));
+    }
+    fn reserve(&mut self, more: usize) {
+        self.text.reserve(more.saturating_mul(8));
+        self.ends.reserve(more);
     }
     /// Name number `i`; "" beyond the last.
     pub fn get(&self, i: usize) -> &str {
@@ -40,7 +44,7 @@ impl Names {
 }
 
 /// Kinds of terminals while columns are filled.
-type Kinds = HashMap<(i64, u64, u64, u8, u64), u32>;
+type Kinds = FxHashMap<(i64, u64, u64, u8, u64), u32>;
 
 macro_rules! columns {
     ($($name:ident),+) => {
@@ -56,17 +60,14 @@ macro_rules! columns {
             pub in_service: Vec<bool>,
             /// Index of the load profile; `u32::MAX` = none.
             pub profile: Vec<u32>,
-            /// Index into `sites`; `u32::MAX` = unknown.
-            pub site: Vec<u32>,
-            /// The sites that occur.
-            pub sites: Names,
+            /// Where they stand; "" = unknown.
+            pub site: Names,
             /// Index into `terminals`.
             pub kind: Vec<u32>,
             /// The kinds of terminals that occur.
             pub terminals: Vec<Terminals>,
             $(pub $name: Vec<f64>,)+
             kinds: Kinds,
-            site_places: HashMap<String, u32>,
         }
 
         impl FleetColumns {
@@ -80,6 +81,17 @@ macro_rules! columns {
                 }
             }
 
+            /// Makes room for more units.
+            pub fn reserve(&mut self, more: usize) {
+                self.unit.reserve(more);
+                self.row.reserve(more);
+                self.in_service.reserve(more);
+                self.profile.reserve(more);
+                self.site.reserve(more);
+                self.kind.reserve(more);
+                $(self.$name.reserve(more);)+
+            }
+
             /// Adds a unit.
             pub fn push(
                 &mut self,
@@ -90,8 +102,7 @@ macro_rules! columns {
                 facts: &UnitFacts,
             ) {
                 let kind = self.kind_of(terminals);
-                let site = site.map_or(u32::MAX, |site| self.site_of(site));
-                self.site.push(site);
+                self.site.push(site.unwrap_or(""));
                 self.unit.push(unit);
                 self.row.push(row);
                 self.in_service.push(facts.in_service);
@@ -103,11 +114,7 @@ macro_rules! columns {
             /// Adds all units of another part of the same fleet behind the own ones.
             pub fn append(&mut self, mut other: Self) {
                 let kinds: Vec<u32> = other.terminals.iter().map(|t| self.kind_of(*t)).collect();
-                let sites: Vec<u32> =
-                    (0..other.sites.len()).map(|i| self.site_of(other.sites.get(i))).collect();
-                self.site.extend(
-                    other.site.iter().map(|s| sites.get(*s as usize).copied().unwrap_or(u32::MAX)),
-                );
+                self.site.append(&other.site);
                 self.unit.append(&other.unit);
                 self.row.append(&mut other.row);
                 self.in_service.append(&mut other.in_service);
@@ -153,17 +160,7 @@ impl FleetColumns {
 
     /// Site of unit number `i`.
     pub fn site(&self, i: usize) -> Option<&str> {
-        self.site.get(i).filter(|s| **s != u32::MAX).map(|s| self.sites.get(*s as usize))
-    }
-
-    fn site_of(&mut self, site: &str) -> u32 {
-        if let Some(place) = self.site_places.get(site) {
-            return *place;
-        }
-        let place = u32::try_from(self.sites.len()).unwrap_or(u32::MAX);
-        self.sites.push(site);
-        self.site_places.insert(site.to_owned(), place);
-        place
+        Some(self.site.get(i)).filter(|site| !site.is_empty())
     }
 
     fn kind_of(&mut self, t: Terminals) -> u32 {

@@ -8,15 +8,6 @@ use crate::engine::economics::{Assumptions, capital, discounting, running_cost};
 use crate::engine::loading::duty::growth;
 use crate::engine::working::Silent;
 
-/// Sums from year t+1 to the end, t = 0..N, of a yearly series given for k = 1..N.
-fn tails(years: usize, of_year: impl Fn(usize) -> f64) -> Vec<f64> {
-    let mut tail = vec![0.0; years + 1];
-    for t in (0..years).rev() {
-        tail[t] = tail[t + 1] + of_year(t + 1);
-    }
-    tail
-}
-
 /// Σ_{k>t} d_k·index_k by what is priced: energy, demand, carbon (with its price per kg).
 #[derive(Clone, Debug)]
 pub(super) struct PriceSums {
@@ -26,20 +17,19 @@ pub(super) struct PriceSums {
 }
 
 impl PriceSums {
-    fn new(a: &Assumptions, of_year: impl Fn(usize) -> f64) -> Self {
-        let series = |escalation: f64, factor: f64| {
-            tails(a.years, |k| {
-                factor
-                    * discounting::running(a.rate, k, a.cash_flow)
-                    * Assumptions::index(escalation, k)
-                    * of_year(k)
-            })
-        };
-        Self {
-            energy: series(a.energy_escalation, 1.0),
-            demand: series(a.demand_escalation, 1.0),
-            carbon: series(a.carbon_escalation, a.carbon_price_per_t / 1000.0),
+    /// Tails of the yearly series, each year multiplied by what `of_year` says.
+    fn new(years: &[[f64; 3]], of_year: impl Fn(usize) -> f64) -> Self {
+        let n = years.len();
+        let mut sums =
+            Self { energy: vec![0.0; n + 1], demand: vec![0.0; n + 1], carbon: vec![0.0; n + 1] };
+        for t in (0..n).rev() {
+            let [energy, demand, carbon] = years[t];
+            let factor = of_year(t + 1);
+            sums.energy[t] = sums.energy[t + 1] + energy * factor;
+            sums.demand[t] = sums.demand[t + 1] + demand * factor;
+            sums.carbon[t] = sums.carbon[t + 1] + carbon * factor;
         }
+        sums
     }
 
     /// energy·e + demand·d + carbon·c, for every t.
@@ -48,19 +38,6 @@ impl PriceSums {
         for (out, ((energy, demand), carbon)) in out.iter_mut().zip(series) {
             *out = energy * e + demand * d + carbon * c;
         }
-    }
-}
-
-/// The same with the squared growth of the load, for one growth rate.
-#[derive(Clone, Debug)]
-pub(super) struct GrowthSums {
-    pub(super) sums: PriceSums,
-}
-
-impl GrowthSums {
-    pub(super) fn new(a: &Assumptions, load_growth_pu: f64) -> Self {
-        let square = |k| growth(load_growth_pu, k, a.load_growth_years).powi(2);
-        Self { sums: PriceSums::new(a, square) }
     }
 }
 
@@ -99,6 +76,8 @@ const MADE: std::ops::RangeInclusive<i64> = 1880..=2100;
 /// Everything that depends on the basis alone.
 #[derive(Clone, Debug)]
 pub(super) struct Horizon {
+    /// d_k·index_k of energy, demand and carbon (with its price per kg), k = 1..N.
+    years: Vec<[f64; 3]>,
     /// Price sums without growth.
     pub(super) plain: PriceSums,
     /// v^t, t = 0..N.
@@ -121,8 +100,20 @@ impl Horizon {
         };
         #[expect(clippy::cast_precision_loss, reason = "calendar years")]
         let ages = MADE.map(|made| Ages::new(a, Some(made as f64))).collect();
+        let years: Vec<[f64; 3]> = (1..=n)
+            .map(|k| {
+                let d = discounting::running(a.rate, k, a.cash_flow);
+                let carbon = a.carbon_price_per_t / 1000.0;
+                [
+                    d * Assumptions::index(a.energy_escalation, k),
+                    d * Assumptions::index(a.demand_escalation, k),
+                    d * Assumptions::index(a.carbon_escalation, k) * carbon,
+                ]
+            })
+            .collect();
         Self {
-            plain: PriceSums::new(a, |_| 1.0),
+            plain: PriceSums::new(&years, |_| 1.0),
+            years,
             payment: (0..=n).map(|t| discounting::payment(a.rate, t)).collect(),
             upkeep_new: from(&|k, t| {
                 discounting::running(a.rate, k, a.cash_flow)
@@ -135,6 +126,11 @@ impl Horizon {
             ages,
             age_unknown: Ages::new(a, None),
         }
+    }
+
+    /// Price sums with the squared growth of the load, for one growth rate.
+    pub(super) fn grown(&self, a: &Assumptions, load_growth_pu: f64) -> PriceSums {
+        PriceSums::new(&self.years, |k| growth(load_growth_pu, k, a.load_growth_years).powi(2))
     }
 
     /// The ages of a unit made in a year; the range of `year_made` is that of its column fact.

@@ -1,0 +1,235 @@
+//! The "drop" voltage model (methods, section 2): iron at the operating voltage of the high-voltage side, copper
+//! with the current that flows at the voltage left on the low-voltage side, and the energy of a year from it.
+
+use super::circuit::{Circuit, PowerFactor};
+use super::losses::{Energy, Losses};
+use crate::engine::Refusal;
+use crate::engine::loading::Duty;
+use crate::engine::loading::duty::peak_of_year;
+use crate::engine::working::{Formula, Recorder};
+
+/// What the drop model needs beside losses and load.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Supply {
+    /// Series circuit of the transformer.
+    pub circuit: Circuit,
+    /// Voltage of the high-voltage side over rated, `operating_voltage_pu`.
+    pub v_hv_pu: f64,
+    /// Power factor of the load.
+    pub power_factor: PowerFactor,
+}
+
+const V_LV: Formula = Formula {
+    name: "voltage left on the low-voltage side",
+    symbol: "v_lv",
+    formula: "√u, u the larger root of u² + (2·β·(R·cosφ + X·sinφ) − v_hv²)·u + β²·Z² = 0",
+    unit: "pu",
+    source: "two-bus power flow of a constant-power load; methods, section 2",
+};
+
+/// Voltage left on the low-voltage side with `load_pu` of the rating drawn there (pu).
+///
+/// # Errors
+/// A load that the unit cannot carry at this voltage: no real root.
+pub fn low_side_voltage<R: Recorder>(
+    w: &mut R,
+    supply: &Supply,
+    load_pu: f64,
+) -> Result<f64, Refusal> {
+    let Circuit { r_pu, x_pu } = supply.circuit;
+    let (pf, v_hv) = (supply.power_factor, supply.v_hv_pu);
+    let z2 = r_pu * r_pu + x_pu * x_pu;
+    // u² − p·u + q = 0 with u = v_lv².
+    let p = v_hv * v_hv - 2.0 * load_pu * (r_pu * pf.cos + x_pu * pf.sin);
+    let q = load_pu * load_pu * z2;
+    let inside = p * p - 4.0 * q;
+    if p <= 0.0 || inside < 0.0 || inside.is_nan() {
+        let why = format!(
+            "cannot be carried at {v_hv} pu and an impedance of {:.4} pu: the voltage would collapse; lower the load, raise operating_voltage_pu or check impedance_pct",
+            z2.sqrt()
+        );
+        return Err(Refusal::new("load_pu", load_pu, why));
+    }
+    let value = (0.5 * (p + inside.sqrt())).sqrt();
+    let inputs = [
+        ("β", load_pu),
+        ("R", r_pu),
+        ("cosφ", pf.cos),
+        ("X", x_pu),
+        ("sinφ", pf.sin),
+        ("v_hv", v_hv),
+        ("Z", z2.sqrt()),
+    ];
+    Ok(w.step(&V_LV, &inputs, value))
+}
+
+const CURRENT: Formula = Formula {
+    name: "current over rated",
+    symbol: "i",
+    formula: "β/v_lv",
+    unit: "pu",
+    source: "methods, section 2",
+};
+
+/// Current over rated current at a load (pu).
+///
+/// # Errors
+/// As [`low_side_voltage`].
+pub fn current<R: Recorder>(w: &mut R, supply: &Supply, load_pu: f64) -> Result<f64, Refusal> {
+    w.open();
+    let v = low_side_voltage(w, supply, load_pu)?;
+    Ok(w.close(&CURRENT, &[("β", load_pu), ("v_lv", v)], load_pu / v))
+}
+
+/// What is known of the shape of a year's load.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum LoadShape<'a> {
+    /// Load-duration histogram: share of the hours and load over peak of each part.
+    Duration(&'a [(f64, f64)]),
+    /// Only the loss factor: the current is taken at the RMS load.
+    LossFactor(f64),
+}
+
+const MEAN_SQUARE: Formula = Formula {
+    name: "mean of the squared current over the load-duration histogram",
+    symbol: "i²_mean",
+    formula: "Σ share·(β·s/v_lv(β·s))²",
+    unit: "pu²",
+    source: "methods, section 2",
+};
+const AT_RMS: Formula = Formula {
+    name: "squared current at the RMS load",
+    symbol: "i²_mean",
+    formula: "(β_rms/v_lv)²",
+    unit: "pu²",
+    source: "methods, section 2: only the loss factor is known; β_rms = β·√LsF",
+};
+
+/// Mean of the squared current over rated in the hours of a year with its peak at `peak_pu` of the rating.
+///
+/// # Errors
+/// As [`low_side_voltage`].
+pub fn mean_square_current<R: Recorder>(
+    w: &mut R,
+    supply: &Supply,
+    peak_pu: f64,
+    shape: LoadShape<'_>,
+) -> Result<f64, Refusal> {
+    match shape {
+        LoadShape::Duration(parts) => {
+            w.open();
+            let mut sum = 0.0;
+            for (share, s) in parts {
+                let i = current(w, supply, peak_pu * s)?;
+                sum += share * (i * i);
+            }
+            Ok(w.close(&MEAN_SQUARE, &[("β", peak_pu)], sum))
+        }
+        LoadShape::LossFactor(loss_factor_pu) => {
+            w.open();
+            let rms = peak_pu * loss_factor_pu.sqrt();
+            let v = low_side_voltage(w, supply, rms)?;
+            let i = rms / v;
+            Ok(w.close(&AT_RMS, &[("β_rms", rms), ("v_lv", v)], i * i))
+        }
+    }
+}
+
+const NO_LOAD_ENERGY: Formula = Formula {
+    name: "energy of the no-load loss in a year at the operating voltage",
+    symbol: "E0",
+    formula: "P0·v_hv²·h/1000",
+    unit: "kWh",
+    source: "methods, sections 2 and 4 (drop voltage model)",
+};
+const LOAD_ENERGY: Formula = Formula {
+    name: "energy of the load loss in year k",
+    symbol: "Ek",
+    formula: "Pk·i²_mean·h/1000",
+    unit: "kWh",
+    source: "methods, sections 2 and 4 (drop voltage model)",
+};
+const AUXILIARY_ENERGY: Formula = Formula {
+    name: "energy of fans and pumps in a year",
+    symbol: "Ea",
+    formula: "P_aux·h_aux/1000",
+    unit: "kWh",
+    source: "methods, section 4",
+};
+
+/// Energy lost in year `k` under a duty, by the drop model; the counterpart of [`super::losses::annual_energy`].
+///
+/// # Errors
+/// As [`low_side_voltage`].
+pub fn annual_energy<R: Recorder>(
+    w: &mut R,
+    losses: &Losses,
+    supply: &Supply,
+    duty: &Duty,
+    shape: LoadShape<'_>,
+    k: usize,
+    growth_years: usize,
+) -> Result<Energy, Refusal> {
+    let (h, v) = (duty.energised_hours, supply.v_hv_pu);
+    let no_load = losses.no_load_loss_w * v * v * h / 1000.0;
+    w.step(&NO_LOAD_ENERGY, &[("P0", losses.no_load_loss_w), ("v_hv", v), ("h", h)], no_load);
+    w.open();
+    let peak = peak_of_year(w, duty, k, growth_years) / losses.rated_kva;
+    let square = mean_square_current(w, supply, peak, shape)?;
+    let load = losses.load_loss_w * square * h / 1000.0;
+    w.close(&LOAD_ENERGY, &[("Pk", losses.load_loss_w), ("i²_mean", square), ("h", h)], load);
+    let auxiliary = losses.auxiliary_loss_w * duty.auxiliary_hours / 1000.0;
+    if losses.auxiliary_loss_w > 0.0 {
+        let inputs = [("P_aux", losses.auxiliary_loss_w), ("h_aux", duty.auxiliary_hours)];
+        w.step(&AUXILIARY_ENERGY, &inputs, auxiliary);
+    }
+    Ok(Energy {
+        no_load_energy_kwh: no_load,
+        load_energy_kwh: load,
+        auxiliary_energy_kwh: auxiliary,
+    })
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::engine::transformer::regulation::source_voltage;
+    use crate::engine::working::Silent;
+
+    fn supply(pf: f64) -> Supply {
+        Supply {
+            circuit: Circuit { r_pu: 0.01, x_pu: 0.06 },
+            v_hv_pu: 1.0,
+            power_factor: PowerFactor::lagging(pf).expect("sound"),
+        }
+    }
+
+    /// The voltage that is left, put back into the series circuit, needs the source voltage again.
+    #[test]
+    fn root_satisfies_the_circuit() {
+        for pf in [1.0, 0.9, 0.8] {
+            for beta in [0.0, 0.3, 1.0, 1.4] {
+                let s = supply(pf);
+                let v = low_side_voltage(&mut Silent, &s, beta).expect("carried");
+                let back = source_voltage(&mut Silent, &s.circuit, beta, s.power_factor, v);
+                assert!((back.expect("sound") - 1.0).abs() < 1e-13);
+            }
+        }
+    }
+
+    #[test]
+    fn a_load_beyond_the_nose_is_refused() {
+        let refusal = low_side_voltage(&mut Silent, &supply(0.8), 9.0).expect_err("collapse");
+        assert!(refusal.why.contains("cannot be carried"));
+    }
+
+    /// With no impedance and rated voltage the drop model is the rated model.
+    #[test]
+    fn without_impedance_it_is_the_rated_model() {
+        let supply = Supply { circuit: Circuit { r_pu: 0.0, x_pu: 0.0 }, ..supply(0.9) };
+        let parts = [(0.75, 0.25), (0.25, 1.0)];
+        let square = |shape| mean_square_current(&mut Silent, &supply, 0.8, shape).expect("sound");
+        assert!((square(LoadShape::Duration(&parts)) - 0.64 * 0.296_875).abs() < 1e-15);
+        assert!((square(LoadShape::LossFactor(0.296_875)) - 0.64 * 0.296_875).abs() < 1e-15);
+    }
+}
