@@ -93,10 +93,9 @@ fn every_unit_equals_the_peers() {
     assert_eq!(first(short["units"].as_array().expect("rows")), wanted);
     assert_eq!(short["totals"], result["totals"]);
 
-    let totals: Value = serde_json::from_str(
-        &fs::read_to_string(data("peers/totals_10000.json")).expect("totals"),
-    )
-    .expect("is JSON");
+    let totals: Value =
+        serde_json::from_str(&fs::read_to_string(data("peers/totals_10000.json")).expect("totals"))
+            .expect("is JSON");
     assert_eq!(result["totals"]["units"], totals["units"]);
     assert_eq!(result["totals"]["units_saving"], totals["units_saving"]);
     for (ours, theirs) in
