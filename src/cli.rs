@@ -6,8 +6,10 @@ mod args;
 mod book;
 mod columns;
 mod dashboard;
+mod demo;
 mod exit;
 mod factors;
+mod import;
 mod journal;
 mod losses;
 mod print;
@@ -64,7 +66,9 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> Exit {
 fn dispatch(args: &Args, printer: &mut Printer) -> Result<Exit, Failure> {
     match &args.command {
         None => dashboard::open(args),
-        Some(Command::Demo | Command::Import(_) | Command::Check) => todo!(),
+        Some(Command::Demo) => demo::demo(args, printer),
+        Some(Command::Import(import)) => import::import(args, import, printer),
+        Some(Command::Check) => todo!(),
         Some(Command::Losses(options)) => losses::losses(args, options, printer),
         Some(Command::Rank(options)) => rank::rank(args, options, printer),
         Some(Command::Factors(options)) => factors::factors(args, options, printer),

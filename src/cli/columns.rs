@@ -2,10 +2,11 @@
 
 use serde::Serialize;
 
-use super::args::{Format, Kind};
+use super::args::Format;
 use super::exit::{Exit, Failure};
 use super::print::{Printer, TextColumn};
 use crate::engine::columns::{Basis, Bid, Column, Lot, Measured, Offer, Tender, TestReport, Unit};
+use crate::study::intake::What;
 
 #[derive(Serialize)]
 struct Row {
@@ -46,17 +47,17 @@ const SERIES: &[Column] = &[
     },
 ];
 
-pub(super) fn columns(what: Kind, printer: &mut Printer) -> std::result::Result<Exit, Failure> {
+pub(super) fn columns(what: What, printer: &mut Printer) -> std::result::Result<Exit, Failure> {
     let lists: &[&[Column]] = match what {
-        Kind::Units => &[Unit::COLUMNS],
-        Kind::Tests => &[TestReport::COLUMNS],
-        Kind::Profiles => &[&[SERIES[0]]],
-        Kind::Prices => &[SERIES],
-        Kind::Offers => &[Offer::COLUMNS],
-        Kind::Basis => &[Basis::COLUMNS],
-        Kind::Tender => &[Tender::COLUMNS, Lot::COLUMNS],
-        Kind::Bids => &[Bid::COLUMNS],
-        Kind::Measured => &[Measured::COLUMNS],
+        What::Units => &[Unit::COLUMNS],
+        What::Tests => &[TestReport::COLUMNS],
+        What::Profiles => &[&[SERIES[0]]],
+        What::Prices => &[SERIES],
+        What::Offers => &[Offer::COLUMNS],
+        What::Basis => &[Basis::COLUMNS],
+        What::Tender => &[Tender::COLUMNS, Lot::COLUMNS],
+        What::Bids => &[Bid::COLUMNS],
+        What::Measured => &[Measured::COLUMNS],
     };
     let rows = lists.iter().flat_map(|list| list.iter()).map(|c| Row {
         column: c.name,

@@ -9,7 +9,7 @@ use super::exit::{Exit, Failure};
 use super::print::Printer;
 use crate::exchange::Source;
 use crate::study::Watch;
-use crate::study::intake::{IntakeError, Options, Report, What, import as take_in};
+use crate::study::intake::{IntakeError, Options, Report, import as take_in};
 
 pub(super) fn import(
     args: &Args,
@@ -73,7 +73,8 @@ fn say(printer: &mut Printer, report: &Report, dry_run: bool) -> Result<(), Fail
     match printer.format {
         Format::Json => printer.json(report)?,
         Format::Csv => {
-            const KEYS: &[&str] = &["what", "file", "rows", "new", "changed", "same", "bad", "stored"];
+            const KEYS: &[&str] =
+                &["what", "file", "rows", "new", "changed", "same", "bad", "stored"];
             printer.csv(KEYS, std::iter::once(report))?;
         }
         Format::Text => {
