@@ -13,15 +13,17 @@ pub struct Rule {
     judge: fn(&[&Value]) -> Result<(), String>,
 }
 
+/// Most columns that one rule looks at.
+const MOST: usize = 3;
+
 /// Rules of units.
-pub const UNITS: &[Rule] =
-    &[LOSS_FACTOR, TOTAL_ABOVE_NO_LOAD, TOTAL_ABOVE_LOAD, VOLTAGES, TWO_WINDINGS];
+pub const UNITS: &[Rule] = &[LOSS_FACTOR, TOTAL_ABOVE_PARTS, VOLTAGES, TWO_WINDINGS];
 /// Rules of offers.
 pub const OFFERS: &[Rule] = &[VOLTAGES, TWO_WINDINGS];
 /// Rules of lots.
 pub const LOTS: &[Rule] = &[VOLTAGES, TWO_WINDINGS];
 /// Rules of bids.
-pub const BIDS: &[Rule] = &[LOAD_LOSS_KNOWN, TOTAL_ABOVE_NO_LOAD, TOTAL_ABOVE_LOAD, TWO_WINDINGS];
+pub const BIDS: &[Rule] = &[LOAD_LOSS_KNOWN, TOTAL_ABOVE_PARTS, TWO_WINDINGS];
 /// Where nothing holds between columns.
 pub const NONE: &[Rule] = &[];
 
@@ -32,12 +34,20 @@ const LOSS_FACTOR: Rule = Rule {
         _ => Ok(()),
     },
 };
-const TOTAL_ABOVE_NO_LOAD: Rule = Rule {
-    columns: &["total_loss_w", "no_load_loss_w"],
-    judge: |v| total_above(v, "no_load_loss_w"),
+const TOTAL_ABOVE_PARTS: Rule = Rule {
+    columns: &["total_loss_w", "no_load_loss_w", "load_loss_w"],
+    judge: |v| {
+        let Some(total) = number(v[0]) else { return Ok(()) };
+        let parts = [("no_load_loss_w", number(v[1])), ("load_loss_w", number(v[2]))];
+        match parts.into_iter().find(|(_, part)| part.is_some_and(|part| total < part)) {
+            Some((name, part)) => Err(format!(
+                "is below {name} {}; the total is no-load plus load loss",
+                part.unwrap_or_default()
+            )),
+            None => Ok(()),
+        }
+    },
 };
-const TOTAL_ABOVE_LOAD: Rule =
-    Rule { columns: &["total_loss_w", "load_loss_w"], judge: |v| total_above(v, "load_loss_w") };
 const VOLTAGES: Rule = Rule {
     columns: &["hv_kv", "lv_kv"],
     judge: |v| match (number(v[0]), number(v[1])) {
@@ -64,15 +74,6 @@ const LOAD_LOSS_KNOWN: Rule = Rule {
     },
 };
 
-fn total_above(v: &[&Value], part: &str) -> Result<(), String> {
-    match (number(v[0]), number(v[1])) {
-        (Some(total), Some(loss)) if total < loss => {
-            Err(format!("is below {part} {loss}; the total is no-load plus load loss"))
-        }
-        _ => Ok(()),
-    }
-}
-
 fn number(value: &Value) -> Option<f64> {
     if let Value::Real(number) = value { Some(*number) } else { None }
 }
@@ -92,7 +93,7 @@ impl Rules {
     /// Holds a record against the rules; `broken` hears the place of the column and why.
     pub fn judge(&self, record: &[Value], mut broken: impl FnMut(usize, String)) {
         for (rule, places) in &self.0 {
-            let mut values = [&Value::Blank; 2];
+            let mut values = [&Value::Blank; MOST];
             for (value, place) in values.iter_mut().zip(places) {
                 *value = &record[*place];
             }

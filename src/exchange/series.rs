@@ -44,8 +44,8 @@ pub enum Names<'a> {
     Any,
     /// These; the first is required. Others are passed over where `ignore_unknown`.
     Of {
-        /// The names.
-        known: &'a [&'a str],
+        /// The names, with the facts of their values.
+        known: &'a [Column],
         /// Whether to pass over others.
         ignore_unknown: bool,
     },
@@ -77,11 +77,11 @@ impl Series {
             if let Err(why) = axis.step(&row.cells()[0], row.line) {
                 problems.add(row.line, AXIS_NAMES[usize::from(!is_timed)], &row.cells()[0], why);
             }
-            for (place, column) in &mut places {
+            for (place, facts, column) in &mut places {
                 let cell = &row.cells()[*place];
                 let unread = row.unread.iter().find(|(at, _)| at == place).map(|(_, why)| *why);
                 match unread
-                    .map_or_else(|| number(rows.decimals(), cell), |why| Err(why.to_owned()))
+                    .map_or_else(|| number(facts, rows.decimals(), cell), |why| Err(why.to_owned()))
                 {
                     Ok(value) => {
                         if let Some(values) = &mut column.values {
@@ -95,7 +95,7 @@ impl Series {
                 }
             }
         }
-        let columns = places.into_iter().map(|(_, column)| column).collect();
+        let columns = places.into_iter().map(|(.., column)| column).collect();
         match axis.finish() {
             Ok(Some((step_minutes, first_timestamp))) => {
                 Ok(Some(Self { step_minutes, first_timestamp, columns }))
@@ -109,10 +109,12 @@ impl Series {
     }
 }
 
-/// A value of a series: any finite number; a blank is a gap.
-fn number(decimals: &mut Decimals, cell: &str) -> Result<f64, String> {
-    const ANY: Column = Column::real(f64::MIN, f64::MAX);
-    match decimals.plain(cell).and_then(|text| ANY.read(&text))? {
+/// The values of a profile: any finite number.
+const ANY: Column = Column::real(f64::MIN, f64::MAX);
+
+/// A value of a series; a blank is a gap.
+fn number(facts: &Column, decimals: &mut Decimals, cell: &str) -> Result<f64, String> {
+    match decimals.plain(cell).and_then(|text| facts.read(&text))? {
         Value::Real(value) => Ok(value),
         _ => Err("is a gap; every step needs a value".to_owned()),
     }
@@ -124,7 +126,7 @@ fn header(
     names: Names<'_>,
     map: &[(String, String)],
     problems: &mut Problems,
-) -> Option<Vec<(usize, SeriesColumn)>> {
+) -> Option<Vec<(usize, Column, SeriesColumn)>> {
     let before = problems.count();
     let line = header.line;
     check_map(header, map, line, problems);
@@ -133,39 +135,43 @@ fn header(
         let why = "the first column is timestamp or interval; rename it with --map";
         problems.add(line, first, "", why);
     }
-    let mut places: Vec<(usize, SeriesColumn)> = Vec::new();
+    let mut places: Vec<(usize, Column, SeriesColumn)> = Vec::new();
     for (at, cell) in header.cells().iter().enumerate().skip(1) {
         let name = mapped(cell.trim(), map);
         if let Err(why) = Column::id().required().read(name) {
             problems.add(line, ROW, cell, format!("a column's name {why}"));
             continue;
         }
-        if places.iter().any(|(_, column)| column.name == name) {
+        if places.iter().any(|(.., column)| column.name == name) {
             problems.add(line, name, cell, "stands twice in the header; keep one of the two");
         }
-        if let Names::Of { known, ignore_unknown } = names
-            && !known.contains(&name)
-        {
-            if !ignore_unknown {
+        let facts = match names {
+            Names::Any => Some(&ANY),
+            Names::Of { known, .. } => known.iter().find(|column| column.name == name),
+        };
+        match (facts, names) {
+            (Some(facts), _) => {
+                let values = SeriesColumn { name: name.to_owned(), values: Some(Vec::new()) };
+                places.push((at, *facts, values));
+            }
+            (None, Names::Of { known, ignore_unknown: false }) => {
+                let known: Vec<&str> = known.iter().map(|column| column.name).collect();
                 let hint = near(name, known.iter().copied())
                     .map_or_else(|| known.join(", "), |near| format!("did you mean {near}?"));
                 problems.add(line, name, "", format!("is no column of this file; {hint}"));
             }
-            continue;
+            (None, _) => {}
         }
-        places.push((at, SeriesColumn { name: name.to_owned(), values: Some(Vec::new()) }));
     }
-    if let Names::Of { known, .. } = names
-        && !places.iter().any(|(_, column)| column.name == known[0])
-    {
-        problems.add(line, known[0], "", "is required and is no column of the file");
-    } else if places.is_empty() {
-        problems.add(
-            line,
-            ROW,
-            "",
-            "the file has a first column only; one column of values is needed",
-        );
+    match names {
+        Names::Of { known: [first, ..], .. } if !places.iter().any(|p| p.1.name == first.name) => {
+            problems.add(line, first.name, "", "is required and is no column of the file");
+        }
+        _ if places.is_empty() => {
+            let why = "the file has a first column only; one column of values is needed";
+            problems.add(line, ROW, "", why);
+        }
+        _ => {}
     }
     (problems.count() == before).then_some(places)
 }

@@ -7,11 +7,11 @@ use crate::engine::loading::{PriceSeries, Profile};
 use crate::exchange::series::{Names, Series, SeriesColumn, holds_numbers};
 use crate::exchange::{Rows, Source};
 
-/// Columns of a price file, the required one first, with their ranges.
-const PRICES: [(&str, Column); 3] = [
-    ("price_per_kwh", Column::real(-1e6, 1e6)),
-    ("co2_kg_per_kwh", Column::real(0.0, 1e3)),
-    ("system_load", Column::real(-1e12, 1e12)),
+/// Columns of a price file, the required one first.
+const PRICES: [Column; 3] = [
+    Column { name: "price_per_kwh", ..Column::real(-1e6, 1e6) },
+    Column { name: "co2_kg_per_kwh", ..Column::real(0.0, 1e3) },
+    Column { name: "system_load", ..Column::real(-1e12, 1e12) },
 ];
 
 impl Intake<'_> {
@@ -49,9 +49,9 @@ impl Intake<'_> {
     pub(super) fn prices(mut self, book: &mut Book, source: Source) -> Result<Report, IntakeError> {
         let name = self.options.name.clone().or_else(|| source.stem().map(ToOwned::to_owned));
         let name = name.ok_or(IntakeError::NoName)?;
-        let known: Vec<&str> = PRICES.iter().map(|(name, _)| *name).collect();
         let ignore_unknown = self.options.ignore_unknown;
-        let Some(series) = self.series(source, Names::Of { known: &known, ignore_unknown })? else {
+        let Some(series) = self.series(source, Names::Of { known: &PRICES, ignore_unknown })?
+        else {
             return Ok(self.report(Tally::default()));
         };
         self.rows = 1;
@@ -60,16 +60,9 @@ impl Intake<'_> {
         }
         let mut columns: [Option<Vec<f64>>; 3] = [None, None, None];
         for SeriesColumn { name, values } in series.columns {
-            let Some(place) = known.iter().position(|known| *known == name) else { continue };
-            let values = values.unwrap_or_default();
-            let outside = values.iter().find_map(|value| {
-                let checked = PRICES[place].1.check(crate::engine::columns::Value::Real(*value));
-                checked.err().map(|why| (value.to_string(), why))
-            });
-            if let Some((value, why)) = outside {
-                self.problems.add(1, &name, &value, why);
+            if let Some(place) = PRICES.iter().position(|column| column.name == name) {
+                columns[place] = values;
             }
-            columns[place] = Some(values);
         }
         if !self.problems.is_empty() {
             (self.bad, self.is_unfit) = (1, true);
