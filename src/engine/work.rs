@@ -22,6 +22,7 @@ mod load;
 mod money;
 mod nameplate;
 mod owning;
+mod shape;
 
 use crate::engine::Refusal;
 use crate::engine::columns::{Value, nearest};

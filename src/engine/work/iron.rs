@@ -8,6 +8,7 @@ use crate::engine::transformer::efficiency::{self, LoadStep};
 use crate::engine::transformer::efficiency_index::{IndexLosses, peak_efficiency_index};
 use crate::engine::transformer::harmonics::{self, Harmonic, LoadLossParts};
 use crate::engine::transformer::losses::{Losses, at_current};
+use crate::engine::transformer::plausibility::lamination;
 
 pub(super) const CALCS: &[Calc] = &[
     EFFICIENCY,
@@ -175,7 +176,11 @@ calc! {
     |i, w| {
         let f = i.to_frequency_hz / i.from_frequency_hz;
         let (b, t) = (i.to_flux_t / i.from_flux_t, i.to_thickness_mm / i.from_thickness_mm);
-        Ok(result("eddy_loss_w", core_loss::eddy_at(w, i.eddy_loss_w, f, b, t)))
+        let sheets = [i.from_thickness_mm, i.to_thickness_mm];
+        let doubts: Vec<String> =
+            sheets.into_iter().filter_map(lamination).map(|doubt| doubt.to_string()).collect();
+        Ok(result("eddy_loss_w", core_loss::eddy_at(w, i.eddy_loss_w, f, b, t))
+            .and("doubts", doubts))
     }
 }
 

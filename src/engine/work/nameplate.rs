@@ -6,6 +6,7 @@ use crate::engine::Refusal;
 use crate::engine::columns::{Side, WindingMetal};
 use crate::engine::transformer::circuit::{self, Base, Carried};
 use crate::engine::transformer::nameplate::{self, Correction, Phases, Resistances, Test};
+use crate::engine::transformer::plausibility;
 use crate::engine::transformer::temperature::{
     load_loss_at, load_loss_at_reference, vanishing_temp_c,
 };
@@ -131,7 +132,11 @@ calc! {
                 .and("open_circuit_copper_w", lost)
                 .and("core_loss_w", open.power_w - lost);
         }
-        Ok(out)
+        let iron_w = open.map(|test| test.power_w);
+        let impedance = Some(100.0 * circuit.z_pu());
+        let doubts = plausibility::nameplate(i.rated_kva, impedance, iron_w, Some(at.load_loss_w));
+        let doubts: Vec<String> = doubts.iter().map(ToString::to_string).collect();
+        Ok(out.and("doubts", doubts))
     }
 }
 
