@@ -26,7 +26,7 @@ mod shape;
 
 use crate::engine::Refusal;
 use crate::engine::columns::{Value, nearest};
-use crate::engine::working::{Step, Working};
+use crate::engine::working::{Step, Working, flatten};
 
 pub use input::Input;
 pub use owning::Paid;
@@ -205,19 +205,17 @@ impl Calc {
         }
         let mut working = Working::default();
         let Results(result) = (self.run)(&values, &mut working)?;
-        for (name, datum) in &result {
-            let sound = match datum {
-                Datum::Number(x) => x.is_finite(),
-                Datum::Numbers(all) => all.iter().all(|x| x.is_finite()),
-                _ => true,
-            };
-            if !sound {
-                let why =
-                    "leaves the range of numbers with these inputs; check their sizes and units";
-                return Err(Refusal::new("result", name, why));
-            }
-        }
         let steps = working.into_steps();
+        let numbers = result.iter().flat_map(|(_, datum)| match datum {
+            Datum::Number(x) => std::slice::from_ref(x),
+            Datum::Numbers(all) => all,
+            _ => &[],
+        });
+        let values = flatten(&steps).into_iter().map(|step| step.value);
+        if !numbers.copied().chain(values).all(f64::is_finite) {
+            let why = "leaves the range of numbers with these inputs; check their sizes and units";
+            return Err(Refusal::new("result", "", why));
+        }
         Ok(Worked { calc: self.key, inputs: given, result, steps, source: self.source })
     }
 
