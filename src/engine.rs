@@ -12,6 +12,7 @@ pub mod law;
 pub mod loading;
 pub mod refusal;
 pub mod transformer;
+pub mod work;
 pub mod working;
 
 pub use refusal::Refusal;

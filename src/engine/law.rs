@@ -250,10 +250,21 @@ pub fn at_start_of(year: i64) -> Option<NaiveDate> {
 /// # Errors
 /// A key that is not known.
 pub fn check(key: &str, subject: &Subject, date: NaiveDate) -> Result<Verdict, Refusal> {
-    let law = named(key)?;
     let mut working = Working::default();
+    let verdict = judge(&mut working, key, subject, date)?;
+    Ok(Verdict { working: working.into_steps(), ..verdict })
+}
+
+/// The verdict, its steps stated to `w`.
+pub(crate) fn judge(
+    w: &mut Working,
+    key: &str,
+    subject: &Subject,
+    date: NaiveDate,
+) -> Result<Verdict, Refusal> {
+    let law = named(key)?;
     let mut notes = Vec::new();
-    let finding = (law.find)(&mut working, &mut notes, subject, date);
+    let finding = (law.find)(w, &mut notes, subject, date);
     let (meets, why, limits, confidence) = match finding {
         Finding::Free(why, confidence) => (Some(true), why, Vec::new(), confidence),
         Finding::Open(why, confidence) => (None, why, Vec::new(), confidence),
@@ -270,7 +281,7 @@ pub fn check(key: &str, subject: &Subject, date: NaiveDate) -> Result<Verdict, R
         notes,
         confidence,
         verify: confidence == Confidence::Memory,
-        working: working.into_steps(),
+        working: Vec::new(),
     })
 }
 

@@ -11,6 +11,7 @@ pub mod harmonics;
 pub mod losses;
 pub mod nameplate;
 pub mod parallel;
+pub mod plausibility;
 pub mod regulation;
 pub mod temperature;
 pub mod thermal;

@@ -122,10 +122,15 @@ const UNITS: &[(&str, &str)] = &[
     ("_pct", "%"),
     ("_pu", "pu"),
     ("_years", "years"),
+    ("_minutes", "min"),
     ("_weeks", "weeks"),
     ("_year", "year"),
     ("_hours", "h"),
     ("_ppm", "mg/kg"),
+    ("_kvar", "kvar"),
+    ("_deg", "°"),
+    ("_ka", "kA"),
+    ("_mm", "mm"),
     ("_kv", "kV"),
     ("_kw", "kW"),
     ("_hz", "Hz"),
@@ -138,6 +143,8 @@ const UNITS: &[(&str, &str)] = &[
     ("_c", "°C"),
     ("_cost", "money"),
     ("_value", "money"),
+    ("_k", "K"),
+    ("_t", "T"),
 ];
 
 impl Column {
@@ -207,7 +214,9 @@ impl Column {
         if !matches!(self.kind, Kind::Real(..) | Kind::Above(..) | Kind::Integer(..)) {
             return "";
         }
-        UNITS.iter().find(|(suffix, _)| self.name.ends_with(suffix)).map_or("", |(_, unit)| unit)
+        let bare = |suffix: &str| suffix.strip_prefix('_') == Some(self.name);
+        let found = UNITS.iter().find(|(suffix, _)| self.name.ends_with(suffix) || bare(suffix));
+        found.map_or("", |(_, unit)| unit)
     }
 
     /// The column's name in the book. Money is kept in whole thousandths there, and its name says so.

@@ -1,4 +1,5 @@
-//! Payback of a price premium: plain, discounted, and the price difference at which two choices cost the same.
+//! Payback of a price premium: plain, discounted; the yearly cost of a daily loss, and the price difference at which
+//! two choices cost the same.
 
 use super::interest::check_rate;
 use crate::engine::Refusal;
@@ -54,6 +55,20 @@ pub fn discounted<R: Recorder>(
         years += 1.0;
     }
     Ok(None)
+}
+
+const REPEATED: Formula = Formula {
+    name: "yearly cost of an energy lost again each day",
+    symbol: "C",
+    formula: "E·n·c",
+    unit: "money",
+    source: "annual cost method: Theraja Vol. III Ex 50.72",
+};
+
+/// Yearly cost of an energy (kWh) that is lost again on each of `days` days at a price per kWh.
+pub fn repeated_energy<R: Recorder>(w: &mut R, energy_kwh: f64, days: f64, price: f64) -> f64 {
+    let inputs = [("E", energy_kwh), ("n", days), ("c", price)];
+    w.step(&REPEATED, &inputs, energy_kwh * days * price)
 }
 
 const BREAK_EVEN: Formula = Formula {

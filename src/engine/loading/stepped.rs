@@ -77,6 +77,20 @@ pub fn implied_weight<R: Recorder>(
     Some(w.step(&WEIGHT, &inputs, (loss_factor_pu - square) / span))
 }
 
+const LOSS_ENERGY: Formula = Formula {
+    name: "energy of a loss that follows the square of the load",
+    symbol: "E",
+    formula: "P_peak·LsF·h",
+    unit: "kWh",
+    source: "definition of the loss factor",
+};
+
+/// Energy (kWh) of a loss of `peak_kw` at the peak, that follows the square of the load, in `hours`.
+pub fn loss_energy<R: Recorder>(w: &mut R, peak_kw: f64, loss_factor_pu: f64, hours: f64) -> f64 {
+    let inputs = [("P_peak", peak_kw), ("LsF", loss_factor_pu), ("h", hours)];
+    w.step(&LOSS_ENERGY, &inputs, peak_kw * loss_factor_pu * hours)
+}
+
 const MEAN: Formula = Formula {
     name: "mean load of the hours",
     symbol: "P_mean",
@@ -114,6 +128,28 @@ pub fn load_factor_of_energy<R: Recorder>(
     }
     let value = mean / peak_kw;
     Ok((mean, w.step(&LF_OF_ENERGY, &[("P_mean", mean), ("P_peak", peak_kw)], value)))
+}
+
+const ADDED_COST: Formula = Formula {
+    name: "yearly cost of a constant load that is added",
+    symbol: "C",
+    formula: "P·(12·c_month + h·c)",
+    unit: "money",
+    source: "Gonen Ex 2.8",
+};
+
+/// Yearly cost of a constant load of `kw`: capacity per kW and month, energy per kWh in `hours`.
+pub fn added_cost<R: Recorder>(
+    w: &mut R,
+    kw: f64,
+    capacity_per_kw_month: f64,
+    price_per_kwh: f64,
+    hours: f64,
+) -> f64 {
+    let value = kw * (12.0 * capacity_per_kw_month + hours * price_per_kwh);
+    let inputs =
+        [("P", kw), ("c_month", capacity_per_kw_month), ("h", hours), ("c", price_per_kwh)];
+    w.step(&ADDED_COST, &inputs, value)
 }
 
 const DIVERSITY: Formula = Formula {

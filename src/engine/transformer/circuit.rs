@@ -3,6 +3,7 @@
 
 use super::complex::Complex;
 use crate::engine::Refusal;
+use crate::engine::columns::choice;
 use crate::engine::working::{Formula, Recorder};
 
 /// Series impedance in per unit of the transformer's own rating.
@@ -54,6 +55,24 @@ impl PowerFactor {
     /// A power factor outside 0 to 1.
     pub fn leading(power_factor: f64) -> Result<Self, Refusal> {
         Self::lagging(power_factor).map(|pf| Self { sin: -pf.sin, ..pf })
+    }
+}
+
+choice! {
+    /// Whether the current of a load lags or leads its voltage.
+    LoadKind { Lagging = "lagging", Leading = "leading" }
+}
+
+impl LoadKind {
+    /// A power factor of this kind of load.
+    ///
+    /// # Errors
+    /// A power factor outside 0 to 1.
+    pub fn power_factor(self, power_factor: f64) -> Result<PowerFactor, Refusal> {
+        match self {
+            Self::Lagging => PowerFactor::lagging(power_factor),
+            Self::Leading => PowerFactor::leading(power_factor),
+        }
     }
 }
 

@@ -55,7 +55,7 @@ fn check(losses: &Losses) -> Result<(), Refusal> {
 
 const BEST_LOAD: Formula = Formula {
     name: "load of best efficiency",
-    symbol: "β*",
+    symbol: "β_best",
     formula: "√(P0/Pk)",
     unit: "pu",
     source: "copper equals iron there; methods, section 2",
@@ -91,7 +91,7 @@ const HALF: Formula = Formula {
 const COPPER_OF_BEST: Formula = Formula {
     name: "load loss at rated load",
     symbol: "Pk",
-    formula: "P0/β*²",
+    formula: "P0/β_best²",
     unit: "W",
     source: "methods, section 2",
 };
@@ -126,7 +126,7 @@ pub fn losses_of_best<R: Recorder>(
     let lost = loss_of(w, 1000.0 * rated_kva * load_pu * power_factor, efficiency_pu)?;
     let iron = w.step(&HALF, &[("P_loss", lost)], lost / 2.0);
     let copper = iron / (load_pu * load_pu);
-    w.step(&COPPER_OF_BEST, &[("P0", iron), ("β*", load_pu)], copper);
+    w.step(&COPPER_OF_BEST, &[("P0", iron), ("β_best", load_pu)], copper);
     Ok(Losses { rated_kva, no_load_loss_w: iron, load_loss_w: copper, auxiliary_loss_w: 0.0 })
 }
 
@@ -160,10 +160,24 @@ impl DayEnergy {
     }
 }
 
+const STEP_OUTPUT: Formula = Formula {
+    name: "energy delivered in a step",
+    symbol: "E",
+    formula: "P·Δt",
+    unit: "kWh",
+    source: "methods, section 2",
+};
+const STEP_COPPER: Formula = Formula {
+    name: "squared load times hours of a step",
+    symbol: "q",
+    formula: "(S/S_r)²·Δt",
+    unit: "h",
+    source: "copper by kVA; methods, section 2",
+};
 const OUTPUT: Formula = Formula {
     name: "energy delivered",
     symbol: "E_out",
-    formula: "Σ P·Δt",
+    formula: "Σ E",
     unit: "kWh",
     source: "methods, section 2",
 };
@@ -177,7 +191,7 @@ const IRON: Formula = Formula {
 const COPPER: Formula = Formula {
     name: "energy of the load loss: copper by kVA",
     symbol: "Ek",
-    formula: "Pk/1000·Σ (S/S_r)²·Δt",
+    formula: "Pk/1000·Σq",
     unit: "kWh",
     source: "methods, section 2",
 };
@@ -201,7 +215,8 @@ pub fn energies<R: Recorder>(
 ) -> Result<DayEnergy, Refusal> {
     check(losses)?;
     let (mut output, mut copper, mut hours) = (0.0, 0.0, 0.0);
-    for step in steps {
+    for (n, step) in steps.iter().enumerate() {
+        let about = || format!("step {}", n + 1);
         if step.kva < 0.0 || step.kw < 0.0 || step.hours < 0.0 {
             let why = "loads and hours cannot be negative";
             return Err(Refusal::new("load_kw", step.kw, why));
@@ -211,8 +226,12 @@ pub fn energies<R: Recorder>(
             return Err(Refusal::new("load_kw", step.kw, why));
         }
         let s = step.kva / losses.rated_kva;
-        output += step.kw * step.hours;
-        copper += s * s * step.hours;
+        let inputs = [("P", step.kw), ("Δt", step.hours)];
+        output += w.step(&STEP_OUTPUT, &inputs, step.kw * step.hours);
+        w.about(&about);
+        let inputs = [("S", step.kva), ("S_r", losses.rated_kva), ("Δt", step.hours)];
+        copper += w.step(&STEP_COPPER, &inputs, s * s * step.hours);
+        w.about(&about);
         hours += step.hours;
     }
     if hours > energised_hours * (1.0 + 1e-12) {
@@ -223,7 +242,7 @@ pub fn energies<R: Recorder>(
     let iron = losses.no_load_loss_w * energised_hours / 1000.0;
     w.step(&IRON, &[("P0", losses.no_load_loss_w), ("h", energised_hours)], iron);
     let load = losses.load_loss_w / 1000.0 * copper;
-    w.step(&COPPER, &[("Pk", losses.load_loss_w), ("S_r", losses.rated_kva)], load);
+    w.step(&COPPER, &[("Pk", losses.load_loss_w), ("Σq", copper)], load);
     Ok(DayEnergy { output_kwh: output, no_load_kwh: iron, load_kwh: load })
 }
 

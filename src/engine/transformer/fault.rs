@@ -104,7 +104,7 @@ const SERIES: Formula = Formula {
 const INTO_FAULT: Formula = Formula {
     name: "current in the feeding winding",
     symbol: "I",
-    formula: "V/(m·|Z_T + R_f·(V_r/V_far)²|)",
+    formula: "V/(m·√((R_T + R_f·(V_r/V_far)²)² + X_T²))",
     unit: "A",
     source: "series circuit; m is √3 between lines, else 1",
 };
@@ -137,6 +137,8 @@ pub fn into_fault<R: Recorder>(
     let inputs = [
         ("V", feed.applied_v),
         ("m", feed.phases.root()),
+        ("R_T", z.re),
+        ("X_T", z.im),
         ("R_f", fault_ohm),
         ("V_r", feed.rated_v),
         ("V_far", feed.far_v),

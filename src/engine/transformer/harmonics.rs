@@ -14,19 +14,26 @@ pub struct Harmonic {
     pub current: f64,
 }
 
+const EDDY_TERM: Formula = Formula {
+    name: "squared current times squared order of a harmonic",
+    symbol: "e_h",
+    formula: "(h·I_h)²",
+    unit: "",
+    source: "IEEE C57.110 (memory)",
+};
 const F_HL: Formula = Formula {
     name: "harmonic loss factor of winding eddy losses",
     symbol: "F_HL",
-    formula: "Σ(h·I_h)²/ΣI_h²",
+    formula: "Σe_h/Σi_h",
     unit: "",
-    source: "IEEE C57.110 (memory)",
+    source: "IEEE C57.110 (memory): Σ(h·I_h)²/ΣI_h², i_h = I_h²",
 };
 const F_STR: Formula = Formula {
     name: "harmonic loss factor of other stray losses",
     symbol: "F_STR",
-    formula: "Σ(h^0.8·I_h²)/ΣI_h²",
+    formula: "Σs_h/Σi_h",
     unit: "",
-    source: "IEEE C57.110 (memory)",
+    source: "IEEE C57.110 (memory): Σh^0.8·I_h²/ΣI_h²",
 };
 
 /// The harmonic loss factors: of winding eddy losses, of other stray losses.
@@ -45,11 +52,13 @@ pub fn loss_factors<R: Recorder>(w: &mut R, harmonics: &[Harmonic]) -> Result<(f
         }
         let i2 = current * current;
         square += i2;
-        eddy += order * order * i2;
+        eddy += w.step(&EDDY_TERM, &[("h", *order), ("I_h", *current)], order * order * i2);
         stray += order.powf(0.8) * i2;
     }
     positive("harmonic_current_pu", square, "give the current of each harmonic, one above zero")?;
-    Ok((w.step(&F_HL, &[], eddy / square), w.step(&F_STR, &[], stray / square)))
+    let f_hl = w.step(&F_HL, &[("Σe_h", eddy), ("Σi_h", square)], eddy / square);
+    let f_str = w.step(&F_STR, &[("Σs_h", stray), ("Σi_h", square)], stray / square);
+    Ok((f_hl, f_str))
 }
 
 /// How the loss at rated sinusoidal current is made up, in per unit of its I²R.

@@ -47,9 +47,9 @@ const ON_COMMON_BASE: Formula = Formula {
 const SHARE: Formula = Formula {
     name: "apparent power of a transformer of the bank",
     symbol: "|S_n|",
-    formula: "|S·conj((1/Z_n)/Σ(1/Z))|, for two units S·conj(Z_B/(Z_A+Z_B))",
+    formula: "S·Y_n/Y_sum",
     unit: "kVA",
-    source: "equal voltages at both ends; methods, section 2",
+    source: "S_n = S·conj(Y_n/ΣY) with Y = 1/Z, magnitudes shown; for two units S·conj(Z_B/(Z_A+Z_B)); methods, section 2",
 };
 
 /// How a bank shares a load of `load_kw` + j`load_kvar` at equal ratios.
@@ -84,7 +84,7 @@ pub fn sharing<R: Recorder>(
     let mut shares = Vec::with_capacity(members.len());
     for (n, (member, y)) in members.iter().zip(admittances).enumerate() {
         let s = load * (y / sum).conj();
-        w.step(&SHARE, &[("S", load.abs())], s.abs());
+        w.step(&SHARE, &[("S", load.abs()), ("Y_n", y.abs()), ("Y_sum", sum.abs())], s.abs());
         w.about(&|| format!("transformer {}", n + 1));
         shares.push(Share { kw: s.re, kvar: s.im, loading_pu: s.abs() / member.rated_kva });
     }

@@ -267,27 +267,34 @@ choice! {
     }
 }
 
-const OIL_STEP: Formula = Formula {
-    name: "top oil after the step",
+const OIL_EXACT: Formula = Formula {
+    name: "top oil after the step, τ = k11·τo",
     symbol: "θo",
-    formula: "θ_end + (θ_start − θ_end)·e, e = exp(−Δt/(k11·τo)) or 1 − Δt/(k11·τo)",
+    formula: "x_end + (x_start − x_end)·exp(−Δt/τ)",
     unit: "°C",
-    source: "IEC 60076-7, exponential or difference equations",
+    source: "IEC 60076-7, exponential equations",
 };
-const G1_STEP: Formula = Formula {
-    name: "first gradient after the step",
+const OIL_EULER: Formula = Formula {
+    formula: "x_end + (x_start − x_end)·(1 − Δt/τ)",
+    source: "IEC 60076-7, difference equations",
+    ..OIL_EXACT
+};
+const G1_EXACT: Formula = Formula {
+    name: "first gradient after the step, τ = k22·τw",
     symbol: "g1",
-    formula: "g_end + (g_start − g_end)·e, time constant k22·τw",
     unit: "K",
-    source: "IEC 60076-7, exponential or difference equations",
+    ..OIL_EXACT
 };
-const G2_STEP: Formula = Formula {
-    name: "second gradient after the step",
+const G1_EULER: Formula =
+    Formula { formula: OIL_EULER.formula, source: OIL_EULER.source, ..G1_EXACT };
+const G2_EXACT: Formula = Formula {
+    name: "second gradient after the step, τ = τo/k22",
     symbol: "g2",
-    formula: "g_end + (g_start − g_end)·e, time constant τo/k22",
     unit: "K",
-    source: "IEC 60076-7, exponential or difference equations",
+    ..OIL_EXACT
 };
+const G2_EULER: Formula =
+    Formula { formula: OIL_EULER.formula, source: OIL_EULER.source, ..G2_EXACT };
 
 /// The state after `minutes` of constant load `k` and ambient.
 ///
@@ -325,19 +332,19 @@ pub fn step<R: Recorder>(
     }
     w.open();
     let (oil, gradient) = targets(w, model, k, ambient_c);
-    let mut toward = |formula, start: f64, end: f64, tau: f64, names: [&'static str; 2]| {
-        let left = match scheme {
-            Scheme::Exact => (-minutes / tau).exp(),
-            Scheme::Euler => 1.0 - minutes / tau,
+    let mut toward = |formulas: [&'static Formula; 2], start: f64, end: f64, tau: f64| {
+        let (formula, left) = match scheme {
+            Scheme::Exact => (formulas[0], (-minutes / tau).exp()),
+            Scheme::Euler => (formulas[1], 1.0 - minutes / tau),
         };
-        let inputs = [(names[0], start), (names[1], end), ("e", left)];
+        let inputs = [("x_start", start), ("x_end", end), ("Δt", minutes), ("τ", tau)];
         w.step(formula, &inputs, end + (start - end) * left)
     };
-    let (theta, g) = (["θ_start", "θ_end"], ["g_start", "g_end"]);
+    let (first, second) = (c.k21 * gradient, (c.k21 - 1.0) * gradient);
     let state = State {
-        top_oil_c: toward(&OIL_STEP, state.top_oil_c, oil, oil_tau, theta),
-        gradient_1_k: toward(&G1_STEP, state.gradient_1_k, c.k21 * gradient, first_tau, g),
-        gradient_2_k: toward(&G2_STEP, state.gradient_2_k, (c.k21 - 1.0) * gradient, second_tau, g),
+        top_oil_c: toward([&OIL_EXACT, &OIL_EULER], state.top_oil_c, oil, oil_tau),
+        gradient_1_k: toward([&G1_EXACT, &G1_EULER], state.gradient_1_k, first, first_tau),
+        gradient_2_k: toward([&G2_EXACT, &G2_EULER], state.gradient_2_k, second, second_tau),
     };
     close_hot_spot(w, &state);
     Ok(state)

@@ -1,0 +1,93 @@
+//! What is doubtful about a nameplate by common practice (no source): warnings, never a rejection (methods,
+//! section 1).
+
+/// A value outside what is usual.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Doubt {
+    /// The quantity, by its name.
+    pub quantity: &'static str,
+    /// Its value.
+    pub value: f64,
+    /// What is usual.
+    pub why: String,
+}
+
+impl std::fmt::Display for Doubt {
+    fn fmt(&self, f: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
+        write!(f, "{} {}: {}", self.quantity, self.value, self.why)
+    }
+}
+
+/// Usual short-circuit impedances: up to this rating (kVA), from, to (%).
+const IMPEDANCE: [(f64, f64, f64); 3] =
+    [(2500.0, 1.5, 8.0), (30_000.0, 4.0, 12.0), (f64::INFINITY, 7.0, 20.0)];
+
+/// Winding resistances are below this (pu).
+const RESISTANCE_PU: f64 = 0.05;
+
+/// Rating above which a unit counts as large (kVA), and the efficiency it reaches at full load (%).
+const LARGE_KVA: f64 = 30_000.0;
+const LARGE_EFFICIENCY_PCT: f64 = 99.5;
+
+/// Doubts about a nameplate; what is blank is not looked at.
+pub fn nameplate(
+    rated_kva: f64,
+    impedance_pct: Option<f64>,
+    no_load_loss_w: Option<f64>,
+    load_loss_w: Option<f64>,
+) -> Vec<Doubt> {
+    let mut doubts = Vec::new();
+    let band = IMPEDANCE.iter().find(|(kva, ..)| rated_kva <= *kva);
+    if let (Some(z), Some((_, from, to))) = (impedance_pct, band)
+        && !(*from..=*to).contains(&z)
+    {
+        let why = format!("usual at {rated_kva} kVA are {from} to {to} %, rising with the voltage");
+        doubts.push(Doubt { quantity: "impedance_pct", value: z, why });
+    }
+    if let Some(pk) = load_loss_w
+        && pk / (1000.0 * rated_kva) >= RESISTANCE_PU
+    {
+        let why = format!(
+            "is {RESISTANCE_PU} pu of the rating or more; windings have less, large ones far less"
+        );
+        doubts.push(Doubt { quantity: "load_loss_w", value: pk, why });
+    }
+    if let (Some(p0), Some(pk)) = (no_load_loss_w, load_loss_w)
+        && rated_kva > LARGE_KVA
+    {
+        let efficiency = 100.0 / (1.0 + (p0 + pk) / (1000.0 * rated_kva));
+        if efficiency <= LARGE_EFFICIENCY_PCT {
+            let why = format!(
+                "gives {efficiency:.3} % at full load; large units reach more than {LARGE_EFFICIENCY_PCT} %"
+            );
+            doubts.push(Doubt { quantity: "load_loss_w", value: pk, why });
+        }
+    }
+    doubts
+}
+
+/// Doubt about the thickness of core sheets (mm) at 50 or 60 Hz.
+pub fn lamination(thickness_mm: f64) -> Option<Doubt> {
+    let why = "core sheets at 50 or 60 Hz are 0.2 to 1 mm thick".to_owned();
+    let doubt = Doubt { quantity: "thickness_mm", value: thickness_mm, why };
+    (!(0.2..=1.0).contains(&thickness_mm)).then_some(doubt)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn bands() {
+        let names = |kva, z, p0, pk| -> Vec<&str> {
+            nameplate(kva, z, p0, pk).iter().map(|d| d.quantity).collect()
+        };
+        assert!(names(400.0, Some(4.0), Some(600.0), Some(4000.0)).is_empty());
+        assert_eq!(names(400.0, Some(9.0), None, None), ["impedance_pct"]);
+        assert_eq!(names(2501.0, Some(3.0), None, None), ["impedance_pct"]);
+        assert!(names(40_000.0, Some(16.2), Some(18_000.0), Some(136_000.0)).is_empty());
+        assert_eq!(names(40_000.0, None, Some(80_000.0), Some(200_000.0)), ["load_loss_w"]);
+        assert_eq!(names(50.0, None, None, Some(2500.0)), ["load_loss_w"]);
+        assert!(lamination(0.27).is_none() && lamination(2.7).is_some());
+    }
+}
