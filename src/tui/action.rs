@@ -161,8 +161,8 @@ actions! {
     BASIS => {
         "less" Action::Less, [key(KeyCode::Left), char('-')], "less", "A small step down, or the word before.", shown;
         "more" Action::More, [key(KeyCode::Right), char('+'), char('=')], "more", "A small step up, or the next word.", shown;
-        "much-less" Action::MuchLess, [Key::shift(KeyCode::Left), char('<'), char(',')], "much less", "A step down ten times as large.", shown;
-        "much-more" Action::MuchMore, [Key::shift(KeyCode::Right), char('>'), char('.')], "much more", "A step up ten times as large.", shown;
+        "much-less" Action::MuchLess, [char('<'), char(','), Key::shift(KeyCode::Left)], "much less", "A step down ten times as large.", shown;
+        "much-more" Action::MuchMore, [char('>'), char('.'), Key::shift(KeyCode::Right)], "much more", "A step up ten times as large.", shown;
         "reset" Action::Reset, [char('r'), key(KeyCode::Delete)], "reset", "Put the assumption under the cursor back as it is stored.", shown;
         "reset-all" Action::ResetAll, [char('R'), key(KeyCode::F(8))], "reset all", "Put every assumption back as it is stored.", shown;
     }
@@ -185,7 +185,7 @@ actions! {
         "journal" Action::Go(Screen::Journal), [char('5')], "Journal", "What was changed in the book, by whom and why.";
         "next-screen" Action::NextScreen, [key(KeyCode::Tab)], "next screen", "The next screen.";
         "previous-screen" Action::PreviousScreen, [key(KeyCode::BackTab)], "previous screen", "The previous screen.";
-        "back" Action::Back, [key(KeyCode::Esc), key(KeyCode::Backspace)], "back", "Stop what is running; else close the innermost thing; else go back to the fleet.";
+        "back" Action::Back, [key(KeyCode::Esc), key(KeyCode::Backspace)], "back", "Stop what is running; else close the innermost thing; else go back to the fleet.", shown;
         "help" Action::Help, [char('?'), key(KeyCode::F(1))], "help", "All keys of this place, and what the bars mean.", shown;
         "quit" Action::Quit, [char('q'), key(KeyCode::F(10))], "quit", "Leave. Nothing that was not saved is stored.", shown;
         "interrupt" Action::Interrupt, [Key::ctrl('c')], "interrupt", "Leave at once, with exit code 130.";

@@ -83,6 +83,8 @@ pub struct App {
     /// The filter while it is typed.
     pub(super) typing: Option<Input>,
     pub(super) unit: unit::State,
+    /// The unit under the cursor of the fleet, where it is shown beside the list.
+    pub(super) glance: unit::State,
     pub(super) basis: basis::State,
     pub(super) journal: List,
     asking: Asking,
@@ -112,6 +114,7 @@ impl App {
             left_out: List::default(),
             typing: None,
             unit: unit::State::default(),
+            glance: unit::State::default(),
             basis: basis::State::default(),
             journal: List::default(),
             asking: Asking::default(),
@@ -291,6 +294,11 @@ impl App {
         }
     }
 
+    /// Whether there is something to go back from.
+    pub(super) fn can_go_back(&self) -> bool {
+        self.screen != Screen::Fleet || self.show_left_out || !self.wanted.filter.is_empty()
+    }
+
     fn go(&mut self, screen: Screen) {
         self.screen = screen;
         self.typing = None;
@@ -344,6 +352,12 @@ impl App {
         if self.screen == Screen::Fleet {
             self.fleet.settle(self.view.places.len(), height);
             self.left_out.settle(self.view.left_out.len(), height);
+            if let (true, Some(ranked), Some(i)) =
+                (frame::shows_detail(self), &self.ranked, self.under_cursor())
+                && !self.glance.shows(ranked, i)
+            {
+                self.glance.open(ranked, i);
+            }
         } else {
             self.step(Step::Lines(0));
         }

@@ -12,7 +12,7 @@ use super::theme::Part;
 
 /// The help in lines of at most `cells`.
 pub(super) fn lines(app: &App, cells: usize) -> Vec<Line<'static>> {
-    let theme = &app.theme;
+    let theme = app.theme;
     let places = [Place::On(app.screen), Place::Filter, Place::List, Place::Everywhere];
     let reachable = action::reachable(&[Place::On(app.screen), Place::List, Place::Everywhere]);
     let mut lines = Vec::new();

@@ -201,8 +201,7 @@ impl<L: FnOnce(&Watch) -> Result<Session, StudyError>> Worker<L> {
 fn view(ranked: &Ranked, spec: ViewSpec, watch: &Watch) -> Result<View, StudyError> {
     let (desk, ranking) = (&ranked.desk, &ranked.ranking);
     let fleet = &desk.fleet;
-    let words: Vec<String> =
-        spec.filter.split_whitespace().map(str::to_lowercase).collect();
+    let words: Vec<String> = spec.filter.split_whitespace().map(str::to_lowercase).collect();
     let holds = |name: &str, word: &str| {
         if name.is_ascii() {
             let (name, word) = (name.as_bytes(), word.as_bytes());
