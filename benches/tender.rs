@@ -3,12 +3,15 @@
 use std::hint::black_box;
 
 use criterion::{Criterion, criterion_group, criterion_main};
-use ironhum::engine::columns::{Basis, Bid, Lot, Money, Tender, TenderSheet};
+use ironhum::engine::columns::{
+    Basis, BasisRange, BasisSheet, Bid, Lot, Money, Tender, TenderSheet,
+};
 use ironhum::engine::decision::tender::Plane;
 use ironhum::engine::decision::tender::map::WinnerMap;
 use ironhum::engine::economics::Assumptions;
 use ironhum::engine::economics::loss_factors::LossFactors;
 use ironhum::engine::loading::Market;
+use ironhum::study::tender::risk::{Question, risk};
 use ironhum::study::tender::{BasisForFactors, evaluate};
 use rand::{RngExt as _, SeedableRng as _};
 use rand_chacha::ChaCha8Rng;
@@ -32,17 +35,18 @@ fn bids(count: usize) -> Vec<Bid> {
     (0..count).map(bid).collect()
 }
 
-fn tender(c: &mut Criterion) {
-    let basis = Basis {
+fn basis() -> Basis {
+    Basis {
         currency: "EUR".into(),
         horizon_years: 30,
         discount_rate_pct: 6.0,
         energy_price_per_kwh: Some(0.09),
         ..Basis::blank()
-    };
-    let assumptions = Assumptions::resolve(&basis).expect("complete basis");
-    let market = Market::flat(0.09, 0.0, 0);
-    let basis = BasisForFactors { assumptions: &assumptions, market: &market };
+    }
+}
+
+/// A tender of one lot whose factors come from the basis.
+fn sheet(count: usize) -> TenderSheet {
     let lot = Lot {
         lot: "L".into(),
         rated_kva: 630.0,
@@ -50,13 +54,21 @@ fn tender(c: &mut Criterion) {
         loss_factor_pu: Some(0.35),
         ..Lot::blank()
     };
-    let sheet = TenderSheet {
+    TenderSheet {
         tender: Tender { tender: "T".into(), currency: "EUR".into(), dated: None },
         rates: Vec::new(),
         lots: vec![lot],
-        bids: bids(500),
+        bids: bids(count),
         measured: Vec::new(),
-    };
+    }
+}
+
+fn tender(c: &mut Criterion) {
+    let basis = basis();
+    let assumptions = Assumptions::resolve(&basis).expect("complete basis");
+    let market = Market::flat(0.09, 0.0, 0);
+    let basis = BasisForFactors { assumptions: &assumptions, market: &market };
+    let sheet = sheet(500);
     let result = evaluate(&sheet, Some(&basis), None).expect("complete");
     let cells = result.lots[0].map.bids.iter().filter(|cell| cell.share > 0.0).count();
     let name = format!("500 bids, {cells} winners");
@@ -84,5 +96,28 @@ fn tender(c: &mut Criterion) {
     });
 }
 
-criterion_group!(benches, tender);
+/// A lot of 60 bids over 10,000 draws of two inputs.
+fn simulation(c: &mut Criterion) {
+    let basis = basis();
+    let assumptions = Assumptions::resolve(&basis).expect("complete basis");
+    let market = Market::flat(0.09, 0.0, 0);
+    let today = BasisForFactors { assumptions: &assumptions, market: &market };
+    let range = |quantity: &str, low, high| BasisRange {
+        quantity: quantity.into(),
+        low: Some(low),
+        high: Some(high),
+        ..BasisRange::blank()
+    };
+    let ranges =
+        vec![range("discount_rate_pct", 4.0, 9.0), range("energy_price_per_kwh", 0.06, 0.15)];
+    let basis = BasisSheet { basis, ranges, budgets: Vec::new() };
+    let sheet = sheet(60);
+    let question =
+        Question { basis: &basis, series: None, correlations: &[], seed: 1, draws: 10_000 };
+    c.bench_function("risk of 60 bids, 10,000 draws", |b| {
+        b.iter(|| risk(black_box(&sheet), &today, "L", &question));
+    });
+}
+
+criterion_group!(benches, tender, simulation);
 criterion_main!(benches);

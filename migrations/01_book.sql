@@ -2,7 +2,8 @@
 --
 -- Names of columns are those of the files (money in whole thousandths: <name>_milli); ranges are the physical
 -- ranges of the column facts, and a test holds both to the program's table. What ranking reads of a unit
--- stands first in its row, remarks last: SQLite reads a row only as far as it is asked to.
+-- stands first in its row, remarks last: SQLite reads a row only as far as it is asked to. Choices of more than
+-- two words are chains of OR: for a longer IN list SQLite builds a table anew for every row it checks.
 
 PRAGMA application_id = 0x49724875; -- "IrHu"
 
@@ -52,7 +53,7 @@ CREATE TABLE units (
     responsibility_pu REAL CHECK (responsibility_pu BETWEEN 0.0 AND 1.0),
     energised_hours REAL CHECK (energised_hours BETWEEN 0.0 AND 8784.0),
     in_service TEXT CHECK (in_service IN ('yes', 'no')),
-    winding_metal TEXT CHECK (winding_metal IN ('copper', 'aluminium', 'mixed')),
+    winding_metal TEXT CHECK (winding_metal = 'copper' OR winding_metal = 'aluminium' OR winding_metal = 'mixed'),
     vector_group TEXT,
     impedance_pct REAL CHECK (impedance_pct > 0.0 AND impedance_pct <= 60.0),
     failure_cost_milli INTEGER CHECK (failure_cost_milli BETWEEN 0 AND 1000000000000000),
@@ -67,8 +68,8 @@ CREATE TABLE units (
     hv_um_kv REAL CHECK (hv_um_kv > 0.0 AND hv_um_kv <= 1200.0),
     frequency_hz REAL CHECK (frequency_hz BETWEEN 10.0 AND 400.0),
     cooling TEXT,
-    mounting TEXT CHECK (mounting IN ('pole', 'pad', 'indoor', 'substation')),
-    tap_changer TEXT CHECK (tap_changer IN ('none', 'off-load', 'on-load')),
+    mounting TEXT CHECK (mounting = 'pole' OR mounting = 'pad' OR mounting = 'indoor' OR mounting = 'substation'),
+    tap_changer TEXT CHECK (tap_changer = 'none' OR tap_changer = 'off-load' OR tap_changer = 'on-load'),
     no_load_current_pct REAL CHECK (no_load_current_pct BETWEEN 0.0 AND 100.0),
     condition_pct REAL CHECK (condition_pct BETWEEN 0.0 AND 100.0),
     pcb_ppm REAL CHECK (pcb_ppm BETWEEN 0.0 AND 1000000.0),
@@ -107,7 +108,7 @@ CREATE TABLE offers (
     vector_group TEXT,
     cooling TEXT,
     insulation TEXT CHECK (insulation IN ('liquid', 'dry')),
-    winding_metal TEXT CHECK (winding_metal IN ('copper', 'aluminium', 'mixed')),
+    winding_metal TEXT CHECK (winding_metal = 'copper' OR winding_metal = 'aluminium' OR winding_metal = 'mixed'),
     impedance_pct REAL CHECK (impedance_pct > 0.0 AND impedance_pct <= 60.0),
     no_load_loss_w REAL NOT NULL CHECK (no_load_loss_w BETWEEN 0.0 AND 100000000.0),
     load_loss_w REAL NOT NULL CHECK (load_loss_w BETWEEN 0.0 AND 100000000.0),
@@ -179,7 +180,7 @@ CREATE TABLE basis_ranges (
     id INTEGER PRIMARY KEY,
     basis TEXT NOT NULL REFERENCES bases (name),
     quantity TEXT NOT NULL CHECK (length(quantity) > 0),
-    distribution TEXT CHECK (distribution IN ('triangular', 'uniform', 'normal', 'lognormal')),
+    distribution TEXT CHECK (distribution = 'triangular' OR distribution = 'uniform' OR distribution = 'normal' OR distribution = 'lognormal'),
     low REAL CHECK (low BETWEEN -1000000000000.0 AND 1000000000000.0),
     base REAL CHECK (base BETWEEN -1000000000000.0 AND 1000000000000.0),
     high REAL CHECK (high BETWEEN -1000000000000.0 AND 1000000000000.0),
@@ -237,7 +238,7 @@ CREATE TABLE lots (
     max_delivery_weeks REAL CHECK (max_delivery_weeks BETWEEN 0.0 AND 1000.0),
     law TEXT CHECK (length(law) > 0),
     near_tie_pct REAL CHECK (near_tie_pct BETWEEN 0.0 AND 100.0),
-    tolerance TEXT CHECK (tolerance IN ('iec', 'ieee', 'none')),
+    tolerance TEXT CHECK (tolerance = 'iec' OR tolerance = 'ieee' OR tolerance = 'none'),
     settlement TEXT CHECK (settlement IN ('unit', 'lot-mean')),
     UNIQUE (tender, lot)
 ) STRICT;
@@ -261,7 +262,7 @@ CREATE TABLE bids (
     impedance_pct REAL CHECK (impedance_pct > 0.0 AND impedance_pct <= 60.0),
     vector_group TEXT,
     insulation TEXT CHECK (insulation IN ('liquid', 'dry')),
-    winding_metal TEXT CHECK (winding_metal IN ('copper', 'aluminium', 'mixed')),
+    winding_metal TEXT CHECK (winding_metal = 'copper' OR winding_metal = 'aluminium' OR winding_metal = 'mixed'),
     freight_cost_milli INTEGER CHECK (freight_cost_milli BETWEEN 0 AND 1000000000000000),
     install_cost_milli INTEGER CHECK (install_cost_milli BETWEEN 0 AND 1000000000000000),
     adder_cost_milli INTEGER CHECK (adder_cost_milli BETWEEN -1000000000000000 AND 1000000000000000),

@@ -4,13 +4,19 @@
 
 mod args;
 mod book;
+mod columns;
 mod dashboard;
 mod demo;
 mod exit;
+mod factors;
 mod import;
+mod journal;
+mod losses;
 mod print;
-mod results;
+mod rank;
+mod tender;
 mod timings;
+mod unit;
 
 use std::ffi::OsString;
 use std::process::ExitCode;
@@ -62,14 +68,14 @@ fn dispatch(args: &Args, printer: &mut Printer) -> Result<Exit, Failure> {
         None => dashboard::open(args),
         Some(Command::Demo) => demo::demo(args, printer),
         Some(Command::Import(import)) => import::import(args, import, printer),
-        Some(Command::Check) => results::check(args, printer),
-        Some(Command::Losses(options)) => results::losses(args, options, printer),
-        Some(Command::Rank(options)) => results::rank(args, options, printer),
-        Some(Command::Factors(options)) => results::factors(args, options, printer),
-        Some(Command::Tender(options)) => results::tender(args, options, printer),
-        Some(Command::Unit(options)) => results::unit(args, options, printer),
-        Some(Command::Journal(options)) => results::journal(args, options, printer),
-        Some(Command::Columns { what }) => results::columns(*what, printer),
+        Some(Command::Check) => todo!(),
+        Some(Command::Losses(options)) => losses::losses(args, options, printer),
+        Some(Command::Rank(options)) => rank::rank(args, options, printer),
+        Some(Command::Factors(options)) => factors::factors(args, options, printer),
+        Some(Command::Tender(options)) => tender::tender(args, options, printer),
+        Some(Command::Unit(options)) => unit::unit(args, options, printer),
+        Some(Command::Journal(options)) => journal::journal(args, options, printer),
+        Some(Command::Columns { what }) => columns::columns(*what, printer),
         Some(Command::Backup { file }) => book::backup(args, file, printer),
         Some(Command::Completions { shell }) => {
             let mut text = Vec::new();

@@ -10,6 +10,8 @@
 //! ```
 
 pub mod book;
+pub mod cli;
 pub mod engine;
+pub mod exchange;
 pub mod study;
 pub mod tui;

@@ -9,6 +9,7 @@ pub mod error;
 pub mod explain;
 pub mod factors;
 pub mod figures;
+pub mod intake;
 pub mod losses;
 pub mod rank;
 pub mod settle;

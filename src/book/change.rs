@@ -140,6 +140,24 @@ impl Change<'_> {
         Ok(statement.exists(rusqlite::params_from_iter(key))?)
     }
 
+    /// Whether a tender can judge money of a currency: its own, or one of its rates.
+    ///
+    /// # Errors
+    /// The store fails.
+    pub fn knows_currency(&self, tender: &str, currency: &str) -> Result<bool> {
+        let own = "SELECT 1 FROM tenders WHERE tender = ?1 AND currency = ?2";
+        Ok(self.transaction.prepare_cached(own)?.exists([tender, currency])?
+            || self.has(&tables::TENDER_RATES, &[tender, currency])?)
+    }
+
+    /// The keys of a table, in order of entry.
+    ///
+    /// # Errors
+    /// The store fails.
+    pub fn names(&self, table: &Table) -> Result<Vec<String>> {
+        super::read::names(&self.transaction, table)
+    }
+
     /// Chooses the basis that counts where none is named.
     ///
     /// # Errors

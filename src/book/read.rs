@@ -1,6 +1,6 @@
 //! Reading records: typed, or row by row without building them (for a fleet of a million).
 
-use std::ops::ControlFlow;
+use std::ops::{ControlFlow, RangeInclusive};
 
 use rusqlite::types::ValueRef;
 use rusqlite::{Connection, OptionalExtension as _, Params, Row};
@@ -40,10 +40,15 @@ pub struct Counts {
 pub struct Cells<'r, 'stmt>(&'r Row<'stmt>);
 
 impl Cells<'_, '_> {
+    /// Number of the row in its table.
+    pub fn row(&self) -> i64 {
+        self.0.get_ref(0).ok().and_then(|id| id.as_i64().ok()).unwrap_or_default()
+    }
+
     /// A number; whole ones too. Money is in thousandths.
     #[expect(clippy::cast_precision_loss, reason = "ranges of whole columns are below 2^53")]
     pub fn number(&self, at: usize) -> Option<f64> {
-        match self.0.get_ref(at) {
+        match self.0.get_ref(at + 1) {
             Ok(ValueRef::Real(number)) => Some(number),
             Ok(ValueRef::Integer(number)) => Some(number as f64),
             _ => None,
@@ -52,7 +57,7 @@ impl Cells<'_, '_> {
 
     /// A whole number. Money is in thousandths.
     pub fn integer(&self, at: usize) -> Option<i64> {
-        match self.0.get_ref(at) {
+        match self.0.get_ref(at + 1) {
             Ok(ValueRef::Integer(number)) => Some(number),
             _ => None,
         }
@@ -60,7 +65,7 @@ impl Cells<'_, '_> {
 
     /// Text.
     pub fn text(&self, at: usize) -> Option<&str> {
-        match self.0.get_ref(at) {
+        match self.0.get_ref(at + 1) {
             Ok(ValueRef::Text(text)) => std::str::from_utf8(text).ok(),
             _ => None,
         }
@@ -68,6 +73,9 @@ impl Cells<'_, '_> {
 }
 
 impl Book {
+    /// The span of every row.
+    pub const ALL_ROWS: RangeInclusive<i64> = i64::MIN..=i64::MAX;
+
     /// The fleet, in order of entry.
     ///
     /// # Errors
@@ -173,8 +181,20 @@ impl Book {
         })
     }
 
-    /// Hands over the cells of the named columns row by row, in order of entry, until told to stop. Nothing is
-    /// built: the fast way through a large fleet.
+    /// The first and the last row number of a table; none where it is empty.
+    ///
+    /// # Errors
+    /// The store fails.
+    pub fn row_span(&self, table: &Table) -> Result<Option<RangeInclusive<i64>>> {
+        let sql = format!("SELECT min(id), max(id) FROM {}", table.name);
+        let ends: (Option<i64>, Option<i64>) =
+            self.connection.query_row(&sql, [], |row| Ok((row.get(0)?, row.get(1)?)))?;
+        Ok(ends.0.zip(ends.1).map(|(first, last)| first..=last))
+    }
+
+    /// Hands over the cells of the named columns, row by row within a span of row numbers ([`Book::ALL_ROWS`]), in
+    /// order of entry, until told to stop. Nothing is built: the fast way through a large fleet. Parts of a span can
+    /// be read side by side, each with a book of its own.
     ///
     /// # Errors
     /// The store fails. A name that the table does not have is a mistake of the caller and fails too.
@@ -182,16 +202,19 @@ impl Book {
         &self,
         table: &Table,
         columns: &[&str],
+        rows: RangeInclusive<i64>,
         mut take: impl FnMut(&Cells<'_, '_>) -> ControlFlow<()>,
     ) -> Result<()> {
         let sql_name = |name: &&str| {
             let column = table.columns.iter().find(|column| column.name == *name);
             column.map_or_else(|| (*name).to_owned(), Column::sql_name)
         };
-        let columns = columns.iter().map(sql_name).collect::<Vec<_>>().join(", ");
-        let sql = format!("SELECT {columns} FROM {} ORDER BY id", table.name);
+        let named = columns.iter().map(sql_name);
+        let columns = std::iter::once("id".to_owned()).chain(named).collect::<Vec<_>>().join(", ");
+        let sql =
+            format!("SELECT {columns} FROM {} WHERE id BETWEEN ?1 AND ?2 ORDER BY id", table.name);
         let mut statement = self.connection.prepare(&sql)?;
-        let mut rows = statement.query([])?;
+        let mut rows = statement.query([rows.start(), rows.end()])?;
         while let Some(row) = rows.next()? {
             if take(&Cells(row)).is_break() {
                 break;

@@ -2,6 +2,7 @@
 
 use std::fmt::Write as _;
 use std::fs;
+use std::ops::ControlFlow;
 
 use rusqlite::types::Value as Sql;
 use rusqlite_migration::M;
@@ -183,22 +184,22 @@ fn records_come_back_as_they_went_in() {
     assert_eq!(error, "the book has no unit T2; it has 007, T1, t1");
 
     let mut seen = Vec::new();
-    book.each(&UNITS, &["unit", "rated_kva", "failure_cost", "hv_kv"], |cells| {
+    assert_eq!(book.row_span(&UNITS).expect("span"), Some(1..=3));
+    assert_eq!(book.row_span(&OFFERS).expect("span"), None);
+    book.each(&UNITS, &["unit", "rated_kva", "failure_cost", "hv_kv"], 2..=3, |cells| {
         seen.push((
+            cells.row(),
             cells.text(0).map(ToOwned::to_owned),
             cells.number(1),
             cells.integer(2),
             cells.number(3),
         ));
-        if seen.len() == 2 {
-            std::ops::ControlFlow::Break(())
-        } else {
-            std::ops::ControlFlow::Continue(())
-        }
+        if seen.len() == 2 { ControlFlow::Break(()) } else { ControlFlow::Continue(()) }
     })
     .expect("each");
     assert_eq!(seen.len(), 2);
-    assert_eq!(seen[0], (Some("007".into()), Some(400.0), Some(1_234_500), None));
+    assert_eq!(seen[0], (2, Some("T1".into()), Some(400.0), Some(1_234_500), None));
+    assert!(book.each(&UNITS, &["no_such"], Book::ALL_ROWS, |_| ControlFlow::Break(())).is_err());
 }
 
 #[test]

@@ -2,7 +2,10 @@
 
 use std::path::PathBuf;
 
+use clap::builder::{PossibleValuesParser, TypedValueParser};
 use clap::{Parser, Subcommand, ValueEnum};
+
+use crate::study::intake::What;
 
 /// How results are written.
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
@@ -26,21 +29,6 @@ pub enum Colour {
     Always,
     /// Never.
     Never,
-}
-
-/// Which file a command takes in.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
-#[expect(missing_docs, reason = "the words of the import command")]
-pub enum Kind {
-    Units,
-    Tests,
-    Profiles,
-    Prices,
-    Offers,
-    Basis,
-    Tender,
-    Bids,
-    Measured,
 }
 
 /// Transformer losses and owning cost: which units to replace, when and with what, and which bid to take.
@@ -108,7 +96,8 @@ pub enum Command {
     /// Say what columns a file has: name, unit, range, what a blank means
     Columns {
         /// The file
-        what: Kind,
+        #[arg(value_parser = kind())]
+        what: What,
     },
     /// Write a consistent copy of the book
     Backup {
@@ -124,11 +113,18 @@ pub enum Command {
     Man,
 }
 
+/// The kinds of files, as typed.
+fn kind() -> impl TypedValueParser<Value = What> {
+    PossibleValuesParser::new(What::WORDS.iter().map(|(word, _)| *word))
+        .try_map(|word| What::from_word(&word).ok_or("is no kind of file"))
+}
+
 /// Options of `import`.
 #[derive(Clone, Debug, clap::Args)]
 pub struct Import {
     /// What the file holds
-    pub what: Kind,
+    #[arg(value_parser = kind())]
+    pub what: What,
     /// The file; - reads standard input
     pub file: PathBuf,
     /// Rename a column of the file

@@ -51,11 +51,8 @@ pub(super) fn open_to_write(args: &Args) -> Result<Opened, Failure> {
 
 pub(super) fn make_parent(path: &Path) -> Result<(), Failure> {
     match path.parent() {
-        Some(parent) if !parent.as_os_str().is_empty() => {
-            std::fs::create_dir_all(parent).map_err(|error| {
-                Failure::new(Exit::Failed, format!("{}: {error}", parent.display()))
-            })
-        }
+        Some(parent) if !parent.as_os_str().is_empty() => std::fs::create_dir_all(parent)
+            .map_err(|error| Failure::new(Exit::Failed, format!("{}: {error}", parent.display()))),
         _ => Ok(()),
     }
 }

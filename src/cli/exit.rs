@@ -88,7 +88,8 @@ impl From<BookError> for Failure {
 impl From<StudyError> for Failure {
     fn from(error: StudyError) -> Self {
         let exit = match error {
-            StudyError::Refused(_) => Exit::Rejected,
+            StudyError::Book(error) => return error.into(),
+            StudyError::Refused { .. } => Exit::Rejected,
             StudyError::Unknown { .. } => Exit::Usage,
             _ => Exit::Failed,
         };

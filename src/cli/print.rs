@@ -9,6 +9,7 @@ use unicode_width::UnicodeWidthStr as _;
 
 use super::args::Format;
 use super::exit::Failure;
+use crate::study::Document;
 use crate::study::figures::{figure, group};
 
 /// Writes results to standard output and problems to standard error.
@@ -76,7 +77,7 @@ impl Printer {
 
     /// Writes one JSON document.
     pub(super) fn json(&mut self, document: &impl Serialize) -> Result<(), Failure> {
-        serde_json::to_writer(&mut self.out, document)?;
+        serde_json::to_writer(&mut self.out, &Document::of(document))?;
         self.out.write_all(b"\n")?;
         Ok(())
     }
@@ -161,9 +162,7 @@ fn cell(value: &Value) -> String {
             format!("'{text}")
         }
         Value::String(text) => text.clone(),
-        Value::Array(list) => {
-            list.iter().map(cell).collect::<Vec<_>>().join(" ")
-        }
+        Value::Array(list) => list.iter().map(cell).collect::<Vec<_>>().join(" "),
         other => other.to_string(),
     }
 }
@@ -190,6 +189,8 @@ fn written(value: Option<&Value>, column: &TextColumn) -> (String, bool) {
 /// Text from outside with its control characters made visible.
 pub(super) fn clean(text: &str) -> String {
     text.chars()
-        .map(|c| if c.is_control() { char::from_u32(0x2400 + u32::from(c)).unwrap_or('␦') } else { c })
+        .map(|c| {
+            if c.is_control() { char::from_u32(0x2400 + u32::from(c)).unwrap_or('␦') } else { c }
+        })
         .collect()
 }

@@ -67,11 +67,7 @@ pub(super) fn rank(args: &Args, options: &Rank, printer: &mut Printer) -> Result
     Ok(Exit::Done)
 }
 
-pub(super) fn write(
-    desk: &Desk,
-    ranking: &Ranking,
-    printer: &mut Printer,
-) -> Result<(), Failure> {
+pub(super) fn write(desk: &Desk, ranking: &Ranking, printer: &mut Printer) -> Result<(), Failure> {
     let rows = (0..ranking.order.len()).filter_map(|place| ranking.row(desk, place));
     match printer.format {
         Format::Json => printer.json(&ranking.result(desk)),
@@ -93,7 +89,8 @@ pub(super) fn write(
             ))?;
             printer.line("")?;
             printer.table(&TextColumn::list(TEXT, &a.currency), rows)?;
-            let left_out = (0..ranking.left_out.len()).filter_map(|n| ranking.left_out_row(desk, n));
+            let left_out =
+                (0..ranking.left_out.len()).filter_map(|n| ranking.left_out_row(desk, n));
             write_left_out(printer, left_out)
         }
     }

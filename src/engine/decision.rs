@@ -1,4 +1,4 @@
-//! What to decide: keep or replace (one unit, or a fleet in columns), and which bid.
+//! What to decide: keep or replace (one unit, or a fleet in columns), which bid, and how sure the answer is.
 
 pub mod fit;
 pub mod fleet;
@@ -6,6 +6,7 @@ pub mod keep_or_replace;
 pub mod parts;
 pub mod place;
 pub mod tender;
+pub mod uncertainty;
 
 pub use fit::Candidate;
 pub use place::{Context, LeftOut, Place, UnitFacts};

@@ -38,11 +38,25 @@ impl Desk {
     /// The book fails or does not know the basis or its price series.
     pub fn read(book: &Book, basis: Option<&str>) -> Result<Self, StudyError> {
         let sheet = book.basis(basis)?;
-        let series = match &sheet.basis.price_series {
+        let series = Self::series_of(book, &sheet)?;
+        Self::new(book.fleet()?, book.offers()?, book.profiles()?, series, sheet)
+    }
+
+    /// Reads a basis with its profiles and prices, without the fleet and the offers: enough for loss factors.
+    ///
+    /// # Errors
+    /// As [`Desk::read`].
+    pub fn basis_only(book: &Book, basis: Option<&str>) -> Result<Self, StudyError> {
+        let sheet = book.basis(basis)?;
+        let series = Self::series_of(book, &sheet)?;
+        Self::new(FleetColumns::default(), Vec::new(), book.profiles()?, series, sheet)
+    }
+
+    fn series_of(book: &Book, sheet: &BasisSheet) -> Result<Vec<PriceSeries>, StudyError> {
+        Ok(match &sheet.basis.price_series {
             Some(name) => vec![book.price_series(name)?],
             None => Vec::new(),
-        };
-        Self::new(book.fleet()?, book.offers()?, book.profiles()?, series, sheet)
+        })
     }
 
     /// Lays out what was read from a book.

@@ -2,6 +2,10 @@
 //!
 //! [`evaluate`] answers for a whole tender or one lot; [`working`] opens the figures of one bid. Amounts are
 //! per unit in the tender currency, factors per kW. The structs serialise with the names of the contract.
+//! [`mod@risk`] says how sure the winner is, [`mod@award`] what one bidder for all lots costs.
+
+pub mod award;
+pub mod risk;
 
 use serde::ser::SerializeMap as _;
 use serde::{Serialize, Serializer};
@@ -13,7 +17,7 @@ use crate::engine::decision::tender::changes::{self, Change, Field};
 use crate::engine::decision::tender::factors::{Computed, of_lot};
 use crate::engine::decision::tender::limits::{self, Findings};
 use crate::engine::decision::tender::map::{Point, WinnerMap};
-use crate::engine::decision::tender::ranking::{Ranking, Standing, rank};
+use crate::engine::decision::tender::ranking::{self, Ranking, Standing, rank};
 use crate::engine::decision::tender::{Plane, Rates, Terms};
 use crate::engine::economics::loss_factors::LossFactors;
 use crate::engine::economics::owning_cost::OwningCost;
@@ -235,6 +239,24 @@ pub fn factors(
     Ok((terms.factors, working.into_steps()))
 }
 
+/// How far the second bid of a lot lies above the first, with its working; none with one bid.
+///
+/// # Errors
+/// As [`evaluate`].
+pub fn margin(
+    sheet: &TenderSheet,
+    basis: Option<&BasisForFactors>,
+    lot: &str,
+) -> Result<Option<(f64, Vec<Step>)>, StudyError> {
+    let judged = Judged::new(sheet, basis, find_lot(sheet, lot)?)?;
+    let [first, second, ..] = judged.ranking.order[..] else { return Ok(None) };
+    let mut working = Working::default();
+    let cost = |w: &mut Working, i: usize| judged.bids[i].on_terms.owning_cost(w).total();
+    let (first, second) = (cost(&mut working, first), cost(&mut working, second));
+    let margin = ranking::margin(&mut working, first, second);
+    Ok(margin.map(|margin| (margin, working.into_steps())))
+}
+
 /// The working of one bid; the last step of each is the figure.
 #[derive(Clone, Debug, PartialEq)]
 pub struct BidWorking {
@@ -363,7 +385,7 @@ impl<'a> Assessed<'a> {
         }
     }
 
-    fn result(self, terms: &Terms, rank: Option<usize>, near_tie: bool) -> BidResult {
+    fn result(&self, terms: &Terms, rank: Option<usize>, near_tie: bool) -> BidResult {
         BidResult {
             rank,
             bid: self.bid.bid.clone(),
@@ -376,12 +398,47 @@ impl<'a> Assessed<'a> {
             owning_cost: self.cost.total(),
             owning_cost_at_tolerance: self.on_terms.at_tolerance(&mut Silent, terms),
             lot_cost: self.on_terms.lot_cost(&mut Silent, terms),
-            law: None,
+            law: self.found.law,
             near_tie,
-            excluded: self.found.misses,
+            excluded: self.found.misses.clone(),
             flags: self.on_terms.flags.with(self.found.flags).keys(),
             losses: self.on_terms.losses,
         }
+    }
+}
+
+/// A lot with its bids assessed and ranked.
+struct Judged<'a> {
+    terms: Terms<'a>,
+    flags: Flags,
+    bids: Vec<Assessed<'a>>,
+    ranking: Ranking,
+    contest: Contest,
+}
+
+impl<'a> Judged<'a> {
+    fn new(
+        sheet: &'a TenderSheet,
+        basis: Option<&BasisForFactors>,
+        lot: &'a Lot,
+    ) -> Result<Self, StudyError> {
+        let (terms, flags) = terms(&mut Silent, sheet, basis, lot)?;
+        let bids = bids_of(sheet, &lot.lot).map(|bid| Assessed::new(&terms, bid));
+        let bids: Vec<Assessed> = bids.collect::<Result<_, _>>()?;
+        let standings: Vec<Standing> = bids.iter().map(Assessed::standing).collect();
+        let ranking = rank(&standings, terms.near_tie_pct);
+        let flags = flags.with_if(factors_look_per_watt(&bids), Flags::FACTOR_SCALE);
+        let contest = Contest::new(&bids, &ranking, &terms);
+        Ok(Self { terms, flags, bids, ranking, contest })
+    }
+
+    fn name(&self, bid: usize) -> String {
+        self.bids[bid].bid.bid.clone()
+    }
+
+    /// The name of the contest's bid `j`.
+    fn contestant(&self, j: usize) -> String {
+        self.name(self.contest.bids[j])
     }
 }
 
@@ -390,48 +447,31 @@ fn evaluate_lot(
     basis: Option<&BasisForFactors>,
     lot: &Lot,
 ) -> Result<LotResult, StudyError> {
-    let (terms, flags) = terms(&mut Silent, sheet, basis, lot)?;
-    let bids = bids_of(sheet, &lot.lot).map(|bid| Assessed::new(&terms, bid));
-    let bids: Vec<Assessed> = bids.collect::<Result<_, _>>()?;
-    let standings: Vec<Standing> = bids.iter().map(Assessed::standing).collect();
-    let ranking = rank(&standings, terms.near_tie_pct);
-    let flags = flags.with_if(factors_look_per_watt(&bids), Flags::FACTOR_SCALE);
-
-    let name = |i: usize| bids[i].bid.bid.clone();
-    let contest = Contest::new(&bids, &ranking, &terms);
-    let bidders = |j: usize| name(contest.bids[j]);
-    let map = contest.map(&ranking, bidders);
-    let borders = contest.borders(bidders);
-    let nearest_border = contest.nearest_border(bidders);
-    let changes = contest.changes(&bids, &terms, basis, bidders)?;
-
-    let near_tie_order = ranking.band.iter().map(|&i| name(i)).collect();
-    let least_owning_cost = ranking.order.first().map(|&i| name(i));
-    let recommended = ranking.band.first().map(|&i| name(i));
-    let mut results: Vec<(usize, BidResult)> = bids
-        .into_iter()
-        .enumerate()
-        .map(|(i, bid)| {
-            let place = ranking.order.iter().position(|&j| j == i);
-            let result = bid.result(&terms, place.map(|p| p + 1), ranking.band.contains(&i));
-            (place.unwrap_or(usize::MAX), result)
-        })
-        .collect();
-    results.sort_by_key(|(place, _)| *place);
+    let judged = Judged::new(sheet, basis, lot)?;
+    let Judged { terms, ranking, contest, .. } = &judged;
+    let contestant = |j| judged.contestant(j);
+    let map = WinnerMap::new(&contest.planes, &terms.factors);
+    let borders = contest.borders(&map, contestant);
+    let map = contest.map(&map, ranking, contestant);
+    let nearest_border = contest.nearest_border(contestant);
+    let changes = contest.changes(&judged.bids, terms, basis, contestant)?;
+    let result = |i: usize, rank| judged.bids[i].result(terms, rank, ranking.band.contains(&i));
+    let ranked = ranking.order.iter().enumerate().map(|(place, &i)| result(i, Some(place + 1)));
+    let excluded = (0..judged.bids.len()).filter(|i| !judged.bids[*i].found.misses.is_empty());
     Ok(LotResult {
         lot: lot.lot.clone(),
         quantity: terms.quantity(),
         factor_a_per_kw: terms.factors.factor_a_per_kw,
         factor_b_per_kw: terms.factors.factor_b_per_kw,
         factor_aux_per_kw: terms.factors.factor_aux_per_kw,
-        bids: results.into_iter().map(|(_, result)| result).collect(),
-        least_owning_cost,
-        recommended,
+        bids: ranked.chain(excluded.map(|i| result(i, None))).collect(),
+        least_owning_cost: ranking.order.first().map(|&i| judged.name(i)),
+        recommended: ranking.band.first().map(|&i| judged.name(i)),
         margin_pct: ranking.margin_pct,
         map,
         changes,
-        flags: flags.keys(),
-        near_tie_order,
+        flags: judged.flags.keys(),
+        near_tie_order: ranking.band.iter().map(|&i| judged.name(i)).collect(),
         borders,
         nearest_border,
         computed: Computed::by(lot),
@@ -455,7 +495,6 @@ struct Contest {
     /// Index of the winner into `planes`.
     winner: Option<usize>,
     factors: LossFactors,
-    map: WinnerMap,
 }
 
 impl Contest {
@@ -464,25 +503,24 @@ impl Contest {
         let bids: Vec<usize> = (0..assessed.len()).filter(admitted).collect();
         let planes: Vec<Plane> = bids.iter().map(|&i| assessed[i].on_terms.plane()).collect();
         let winner = ranking.order.first().and_then(|first| bids.iter().position(|i| i == first));
-        let map = WinnerMap::new(&planes, &terms.factors);
-        Self { bids, planes, winner, factors: terms.factors, map }
+        Self { bids, planes, winner, factors: terms.factors }
     }
 
-    fn map(&self, ranking: &Ranking, name: impl Fn(usize) -> String) -> MapResult {
+    fn map(&self, map: &WinnerMap, ranking: &Ranking, name: impl Fn(usize) -> String) -> MapResult {
         let cell = |i: &usize| {
             let j = self.bids.iter().position(|bid| bid == i)?;
-            let cell = &self.map.cells[j];
+            let cell = &map.cells[j];
             Some(CellResult { bid: name(j), share: cell.share, polygon: cell.polygon.clone() })
         };
         MapResult {
-            a_max: self.map.a_max,
-            b_max: self.map.b_max,
+            a_max: map.a_max,
+            b_max: map.b_max,
             bids: ranking.order.iter().filter_map(cell).collect(),
         }
     }
 
-    fn borders(&self, name: impl Fn(usize) -> String) -> Vec<BorderResult> {
-        let borders = self.map.borders(&self.planes, &self.factors);
+    fn borders(&self, map: &WinnerMap, name: impl Fn(usize) -> String) -> Vec<BorderResult> {
+        let borders = map.borders(&self.planes, &self.factors);
         let named = borders.into_iter().map(|border| BorderResult {
             bids: border.bids.map(&name),
             from: border.from,

@@ -1,7 +1,7 @@
 //! How bids come to one lot's terms: currency, quoted losses, temperature, another rating, limits. Numbers by hand.
 
 use ironhum::engine::columns::{Bid, Lot, Tolerance};
-use ironhum::study::tender::{BidResult, evaluate, working};
+use ironhum::study::tender::{BidResult, evaluate, margin, working};
 
 use crate::sheets::{bid, lot, money, near, rate, sheet};
 
@@ -222,6 +222,13 @@ fn working_ends_in_the_figures() {
     ] {
         assert_eq!(steps.last().map(|step| step.value.to_bits()), Some(figure.to_bits()));
     }
+    assert!(matches!(margin(&sheet, None, "L"), Ok(None)), "one bid has no margin");
+    sheet.bids.push(ironhum::engine::columns::Bid { bid: "B".into(), ..sheet.bids[0].clone() });
+    sheet.bids[1].price = money(13_000.0);
+    let result = evaluate(&sheet, None, None).expect("complete");
+    let (value, steps) = margin(&sheet, None, "L").expect("complete").expect("two bids");
+    assert_eq!(result.lots[0].margin_pct, Some(value));
+    assert_eq!(steps.last().map(|step| step.value), Some(value));
     let parts: Vec<f64> = open.owning_cost[0].steps.iter().map(|step| step.value).collect();
     assert_eq!(parts, [bid.no_load_cost, bid.load_cost, bid.auxiliary_cost]);
     let names: Vec<&str> = open.on_terms.iter().map(|step| step.formula.symbol).collect();

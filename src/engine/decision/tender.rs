@@ -3,8 +3,8 @@
 //! The way of a bid: [`rates`] (its money in the tender currency) and [`bid`] (its losses at its rating and
 //! at the lot's temperature) bring it to the lot's terms; [`factors`] values a kW of loss; [`limits`] says
 //! what it misses; [`tolerance`] what losses above the guarantee may cost; [`ranking`] sets the order. [`map`]
-//! shows who wins at other factors, [`changes`] how far an input must move before another bid wins;
-//! [`settlement`] holds measured losses to the guarantee.
+//! shows who wins at other factors, [`changes`] how far an input must move before another bid wins,
+//! [`risk`] how sure the winner is; [`settlement`] holds measured losses to the guarantee.
 //! Owns no file and no basis; money is per unit in the tender currency, losses are in W, factors per kW.
 
 pub mod bid;
@@ -14,6 +14,7 @@ pub mod limits;
 pub mod map;
 pub mod ranking;
 pub mod rates;
+pub mod risk;
 pub mod settlement;
 pub mod tolerance;
 

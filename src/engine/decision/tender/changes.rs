@@ -1,7 +1,7 @@
 //! How far an input must move, all others held, before another bid becomes the cheapest to own.
 //!
 //! Closed form where the owning cost is linear in the input or in its square; the discount rate by a search
-//! from today's rate outward (see [`discount_rate`]). Moves are in the unit of the input.
+//! from today's rate outward (see [`DISCOUNT_RATES`]). Moves are in the unit of the input.
 
 use super::factors::{BasisForFactors, Computed, of_lot};
 use super::map::{Point, least};
@@ -46,7 +46,28 @@ pub struct Field<'a> {
     pub factors: LossFactors,
 }
 
+/// Where today's winner stands at other factors.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct FieldStanding {
+    /// Its owning cost.
+    pub owning_cost: f64,
+    /// How far the best rival lies above it (below: negative); none without rivals.
+    pub lead: Option<f64>,
+    /// The cheapest to own; today's winner where the best rival is only as cheap.
+    pub cheapest: usize,
+}
+
 impl Field<'_> {
+    /// Where today's winner stands at other factors.
+    pub fn standing(&self, factors: &LossFactors) -> FieldStanding {
+        let best = self.leads(factors).reduce(|a, b| if b.1 < a.1 { b } else { a });
+        FieldStanding {
+            owning_cost: self.planes[self.winner].at(factors),
+            lead: best.map(|(_, lead)| lead),
+            cheapest: best.filter(|(_, lead)| *lead < 0.0).map_or(self.winner, |(j, _)| j),
+        }
+    }
+
     /// How far each rival lies above the winner.
     fn leads(&self, factors: &LossFactors) -> impl Iterator<Item = (usize, f64)> {
         let winner = self.planes[self.winner].at(factors);
@@ -201,9 +222,9 @@ fn discount_rate(
         assumptions.rate = rate;
         let basis = BasisForFactors { assumptions: &assumptions, ..*basis };
         let factors = of_lot(&mut Silent, lot, rates, Some(&basis))?.0;
-        let equal = 1e-12 * field.planes[field.winner].at(&factors).abs();
-        let least = field.leads(&factors).reduce(|a, b| if b.1 < a.1 { b } else { a });
-        Ok(least.filter(|(_, lead)| *lead < -equal).map(|(j, _)| j))
+        let standing = field.standing(&factors);
+        let equal = 1e-12 * standing.owning_cost.abs();
+        Ok(standing.lead.filter(|lead| *lead < -equal).map(|_| standing.cheapest))
     };
     let mut side = |end: f64| -> Result<Option<Move>, Refusal> {
         let mut kept = today;

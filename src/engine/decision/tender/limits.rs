@@ -11,6 +11,8 @@ use crate::engine::transformer::vector_group;
 pub struct Findings {
     /// Keys of the limits that it misses; empty = admitted.
     pub misses: Vec<&'static str>,
+    /// Whether it meets the law that the lot names; none where none is named or it is not known.
+    pub law: Option<bool>,
     /// Doubts.
     pub flags: Flags,
 }
@@ -42,10 +44,9 @@ pub fn against(lot: &Lot, bid: &Bid, on_terms: &Comparable, law: Option<bool>) -
     found.at_most("max_sound_db", bid.sound_db, lot.max_sound_db);
     found.at_most("max_mass_kg", bid.mass_kg, lot.max_mass_kg);
     found.at_most("max_delivery_weeks", bid.delivery_weeks, lot.max_delivery_weeks);
-    if lot.law.is_some() {
-        found.miss("law", law == Some(false));
-        found.doubt(law.is_none(), Flags::LAW_NOT_CHECKED);
-    }
+    found.law = law.filter(|_| lot.law.is_some());
+    found.miss("law", found.law == Some(false));
+    found.doubt(lot.law.is_some() && law.is_none(), Flags::LAW_NOT_CHECKED);
     let short = matches!((bid.quantity, lot.quantity), (Some(n), asked) if n < asked.unwrap_or(1));
     found.doubt(short, Flags::QUANTITY_SHORT);
     found
@@ -68,5 +69,46 @@ impl Findings {
             (None, Some(_)) => self.doubt(true, Flags::LIMIT_UNKNOWN),
             (_, None) => {}
         }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::engine::economics::loss_factors::LossFactors;
+    use crate::engine::transformer::losses::Losses;
+
+    #[test]
+    fn the_law_counts_where_the_lot_names_one() {
+        let losses = Losses {
+            rated_kva: 100.0,
+            no_load_loss_w: 1.0,
+            load_loss_w: 1.0,
+            auxiliary_loss_w: 0.0,
+        };
+        let on_terms = Comparable {
+            losses,
+            price: 1.0,
+            added_cost: 0.0,
+            factors: LossFactors {
+                factor_a_per_kw: 1.0,
+                factor_b_per_kw: 1.0,
+                factor_aux_per_kw: 1.0,
+            },
+            load_weight: 1.0,
+            flags: Flags::NONE,
+        };
+        let lot = |law: Option<&str>| Lot {
+            rated_kva: 100.0,
+            law: law.map(str::to_owned),
+            ..Lot::blank()
+        };
+        let bid = Bid::blank();
+        let of = |name, law| against(&lot(name), &bid, &on_terms, law);
+        let poor = of(Some("eu"), Some(false));
+        assert_eq!((poor.misses, poor.law), (vec!["law"], Some(false)));
+        assert_eq!(of(Some("eu"), Some(true)).misses.len(), 0);
+        assert_eq!(of(Some("eu"), None).flags, Flags::LAW_NOT_CHECKED);
+        assert_eq!(of(None, Some(false)), Findings::default());
     }
 }

@@ -2,6 +2,7 @@
 //! and the near-tie band, inside which the lower price leads.
 
 use crate::engine::decision::equal_pv;
+use crate::engine::working::{Formula, Recorder, Silent};
 
 /// What the order of a bid depends on.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -43,9 +44,25 @@ pub fn rank(bids: &[Standing], near_tie_pct: f64) -> Ranking {
     let place = |i: &usize| order.iter().position(|j| j == i);
     sort_with_ties(&mut band, &|i| bids[i].price_with_adders, &|tied| tied.sort_by_key(place));
     let second = order.get(1).map(|&i| bids[i].owning_cost);
-    let margin_pct =
-        second.filter(|_| least > 0.0).map(|second| 100.0 * (second / least - 1.0).max(0.0));
+    let margin_pct = second.and_then(|second| margin(&mut Silent, least, second));
     Ranking { order, band, margin_pct }
+}
+
+const MARGIN: Formula = Formula {
+    name: "how far the second bid lies above the first",
+    symbol: "margin",
+    formula: "100·(second/first − 1)",
+    unit: "%",
+    source: "methods, section 8",
+};
+
+/// How far the second owning cost lies above the first in percent; none where the first is not above zero.
+pub fn margin<R: Recorder>(w: &mut R, first: f64, second: f64) -> Option<f64> {
+    (first > 0.0).then(|| {
+        // Bids that tie to rounding are in another order than their costs.
+        let value = 100.0 * (second / first - 1.0).max(0.0);
+        w.step(&MARGIN, &[("second", second), ("first", first)], value)
+    })
 }
 
 /// Sorts by a value; runs that equal their first are handed on to be ordered by something else.
