@@ -91,6 +91,10 @@ pub enum Action {
     NextUnit,
     PreviousUnit,
     Table,
+    NextLot,
+    PreviousLot,
+    NextTender,
+    TenderView,
     Less,
     More,
     MuchLess,
@@ -137,6 +141,7 @@ const fn key(code: KeyCode) -> Key {
 }
 const FLEET: Place = Place::On(Screen::Fleet);
 const UNIT: Place = Place::On(Screen::Unit);
+const TENDER: Place = Place::On(Screen::Tender);
 const BASIS: Place = Place::On(Screen::Basis);
 
 actions! {
@@ -157,6 +162,12 @@ actions! {
         "next-unit" Action::NextUnit, [key(KeyCode::Right), char('n')], "next unit", "The next unit of the list.", shown;
         "previous-unit" Action::PreviousUnit, [key(KeyCode::Left), char('p')], "previous", "The previous unit of the list.", shown;
         "table" Action::Table, [char('t'), key(KeyCode::F(3))], "chart/table", "Show the years as a table instead of a chart, and back.", shown;
+    }
+    TENDER => {
+        "next-lot" Action::NextLot, [key(KeyCode::Right), char('n')], "next lot", "The next lot of the tender.", shown;
+        "previous-lot" Action::PreviousLot, [key(KeyCode::Left), char('p')], "previous", "The previous lot of the tender.", shown;
+        "tender-view" Action::TenderView, [char('m'), key(KeyCode::F(3))], "map/changes", "In turn: the bids, the map of who wins at other factors, what must move before another wins.", shown;
+        "next-tender" Action::NextTender, [char('t'), key(KeyCode::F(4))], "next tender", "The next tender of the book.";
     }
     BASIS => {
         "less" Action::Less, [key(KeyCode::Left), char('-')], "less", "A small step down, or the word before.", shown;

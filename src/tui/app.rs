@@ -14,7 +14,7 @@ use super::list::{List, Step};
 use super::session::{JournalLine, Session};
 use super::theme::Theme;
 use super::work::{Answer, Done, Job, Kind, Question, Ranked, View, ViewSpec};
-use super::{basis, frame, help, unit};
+use super::{basis, frame, help, tender, unit};
 use crate::study::rank::By;
 use crate::study::{StudyError, Watch};
 
@@ -85,6 +85,7 @@ pub struct App {
     pub(super) unit: unit::State,
     /// The unit under the cursor of the fleet, where it is shown beside the list.
     pub(super) glance: unit::State,
+    pub(super) tender: tender::State,
     pub(super) basis: basis::State,
     pub(super) journal: List,
     asking: Asking,
@@ -115,6 +116,7 @@ impl App {
             typing: None,
             unit: unit::State::default(),
             glance: unit::State::default(),
+            tender: tender::State::default(),
             basis: basis::State::default(),
             journal: List::default(),
             asking: Asking::default(),
@@ -265,6 +267,15 @@ impl App {
             Action::NextUnit => self.neighbour(Step::Lines(1)),
             Action::PreviousUnit => self.neighbour(Step::Lines(-1)),
             Action::Table => self.unit.table = !self.unit.table,
+            Action::NextLot => self.tender.turn(self.lots(), 1),
+            Action::PreviousLot => {
+                let lots = self.lots();
+                self.tender.turn(lots, lots.saturating_sub(1));
+            }
+            Action::NextTender => {
+                self.tender.next_tender(self.ranked.as_ref().map_or(0, |r| r.tenders.len()));
+            }
+            Action::TenderView => self.tender.view = self.tender.view.next(),
             Action::Less => self.nudge(-1, false),
             Action::More => self.nudge(1, false),
             Action::MuchLess => self.nudge(-1, true),
@@ -310,6 +321,12 @@ impl App {
         }
     }
 
+    /// Lots of the tender that is shown.
+    fn lots(&self) -> usize {
+        let result = tender::shown(self).and_then(|tender| tender.result.as_ref().ok());
+        result.map_or(0, |result| result.lots.len())
+    }
+
     fn turn(&mut self, by: usize) {
         let at = Screen::ALL.iter().position(|(screen, _)| *screen == self.screen).unwrap_or(0);
         self.go(Screen::ALL[(at + by) % Screen::ALL.len()].0);
@@ -329,7 +346,7 @@ impl App {
             Screen::Unit => return self.unit.facts.scroll(step, len, height),
             Screen::Basis => &mut self.basis.list,
             Screen::Journal => &mut self.journal,
-            Screen::Tender => return,
+            Screen::Tender => &mut self.tender.list,
         };
         list.step(step, len, height);
     }
@@ -342,7 +359,7 @@ impl App {
             Screen::Unit => unit::facts_len(self),
             Screen::Basis => basis::len(),
             Screen::Journal => self.opened.as_ref().map_or(0, |o| o.journal.len()),
-            Screen::Tender => 0,
+            Screen::Tender => tender::len(self),
         }
     }
 

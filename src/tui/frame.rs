@@ -11,7 +11,7 @@ use ratatui::widgets::{Clear, Widget as _};
 use super::action::{self, Action, ActionDef, Screen};
 use super::app::App;
 use super::theme;
-use super::{basis, fleet, help, journal, text, unit};
+use super::{basis, fleet, help, journal, tender, text, unit};
 
 /// The smallest terminal in which the screens are drawn.
 pub(super) const LEAST: Size = Size { width: 60, height: 16 };
@@ -50,7 +50,7 @@ pub(super) fn list_height(app: &App) -> usize {
         Screen::Fleet => fleet::rows(app, body),
         Screen::Unit => unit::draw::areas(body).facts.height,
         Screen::Basis => basis::draw::areas(body).list.height.saturating_sub(1),
-        Screen::Tender => 0,
+        Screen::Tender => tender::draw::rows(app, body),
         Screen::Journal => body.height.saturating_sub(journal::AROUND),
     })
 }
@@ -119,7 +119,7 @@ impl App {
                     Screen::Unit => unit::draw::draw(self, parts.body, buffer),
                     Screen::Basis => basis::draw::draw(self, parts.body, buffer),
                     Screen::Journal => journal::draw(self, parts.body, buffer),
-                    Screen::Tender => {}
+                    Screen::Tender => tender::draw::draw(self, parts.body, buffer),
                 }
             }
             cursor = self.status(parts.status, buffer);
@@ -205,13 +205,15 @@ impl App {
     }
 
     fn context(&self, area: Rect, buffer: &mut Buffer) {
+        let ascii = self.theme.caps().ascii;
         let mut spans = vec![Span::raw(" ")];
         let mut room = usize::from(area.width).saturating_sub(1);
         let reachable = action::reachable(&self.places());
         let useful = |def: &ActionDef| def.action != Action::Back || self.can_go_back();
         let shown: Vec<_> = reachable.iter().filter(|(def, _)| def.shown && useful(def)).collect();
         // The last ones (help, quit) always find room.
-        let wide = |n: &usize| shown[*n].1[0].name().chars().count() + shown[*n].0.title.len() + 3;
+        let wide =
+            |n: &usize| shown[*n].1[0].name(ascii).chars().count() + shown[*n].0.title.len() + 3;
         let mut keep: Vec<usize> = Vec::new();
         let order =
             (shown.len().saturating_sub(2)..shown.len()).chain(0..shown.len().saturating_sub(2));
@@ -224,7 +226,7 @@ impl App {
         keep.sort_unstable();
         for n in keep {
             let (def, keys) = shown[n];
-            spans.push(Span::styled(keys[0].name(), self.theme.key()));
+            spans.push(Span::styled(keys[0].name(ascii), self.theme.key()));
             spans.push(Span::raw(format!(" {}  ", def.title)));
         }
         put_line(buffer, area, 0, &Line::from(spans));

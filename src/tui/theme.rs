@@ -108,6 +108,17 @@ impl Theme {
         if self.caps.ascii { '>' } else { '▶' }
     }
 
+    /// The fill of region number `n` of a map: neighbours in rank differ.
+    pub fn region_fill(self, n: usize) -> char {
+        const SHADES: [char; 6] = ['░', '·', '▒', ' ', '▓', '-'];
+        const ASCII: [char; 6] = ['.', ' ', ':', '-', '+', ','];
+        match (self.coloured(), self.caps.ascii) {
+            (true, false) => '▒',
+            (false, false) => SHADES[n % SHADES.len()],
+            (_, true) => ASCII[n % ASCII.len()],
+        }
+    }
+
     /// Colour of region number `n` of a map.
     pub fn region(self, n: usize) -> Style {
         const SIXTEEN: [Color; 6] = [
