@@ -9,4 +9,9 @@
 //!    engine/             pure computation on plain data
 //! ```
 
+pub mod book;
+pub mod cli;
 pub mod engine;
+pub mod exchange;
+pub mod study;
+pub mod tui;

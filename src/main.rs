@@ -1,3 +1,7 @@
 //! The program `ironhum`.
 
-fn main() {}
+use std::process::ExitCode;
+
+fn main() -> ExitCode {
+    ironhum::cli::main()
+}

@@ -17,3 +17,4 @@ pub mod temperature;
 pub mod thermal;
 pub mod vector_group;
 pub mod voltage_drop;
+pub mod windings;

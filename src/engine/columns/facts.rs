@@ -109,9 +109,11 @@ const UNITS: &[(&str, &str)] = &[
     ("_per_kw_year", "money/(kW·year)"),
     ("_per_customer", "money/customer"),
     ("_cost_per_kw", "money/kW"),
+    ("_kg_per_kwh", "kg/kWh"),
     ("_per_kwh", "/kWh"),
     ("_per_kw", "money/kW"),
     ("_per_t", "money/t"),
+    ("upkeep_per_year", "money/year"),
     ("_per_year", "per year"),
     ("_kva", "kVA"),
     ("_mva", "MVA"),
@@ -141,6 +143,8 @@ const UNITS: &[(&str, &str)] = &[
     ("_c", "°C"),
     ("_k", "K"),
     ("_t", "T"),
+    ("_cost", "money"),
+    ("_value", "money"),
 ];
 
 impl Column {

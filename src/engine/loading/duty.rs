@@ -17,6 +17,8 @@ pub struct Duty {
     pub energised_hours: f64,
     /// Hours of fans and pumps.
     pub auxiliary_hours: f64,
+    /// Power factor of the load, where known.
+    pub power_factor: Option<f64>,
     /// Load at the system peak over own peak, PRF.
     pub responsibility_pu: f64,
     /// Price of a kWh of constant loss, c̄0.

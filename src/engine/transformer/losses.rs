@@ -175,6 +175,43 @@ pub fn annual_energy<R: Recorder>(
     Energy { no_load_energy_kwh: no_load, load_energy_kwh: load, auxiliary_energy_kwh: auxiliary }
 }
 
+const EFFICIENCY: Formula = Formula {
+    name: "efficiency over a year, by energy",
+    symbol: "η",
+    formula: "100·W/(W + E0 + Ek + Ea)",
+    unit: "%",
+    source: "all-day efficiency over a year; methods, section 2",
+};
+const DELIVERED: Formula = Formula {
+    name: "energy delivered in year 1",
+    symbol: "W",
+    formula: "S_1·LF·cosφ·h",
+    unit: "kWh",
+    source: "methods, section 2",
+};
+
+/// Efficiency of year 1 by energy (%), at the power factor of the duty or 1; none where the load factor is not
+/// known or nothing is delivered.
+pub fn annual_efficiency_pct<R: Recorder>(w: &mut R, energy: &Energy, duty: &Duty) -> Option<f64> {
+    let lf = duty.load_factor_pu?;
+    let pf = duty.power_factor.unwrap_or(1.0);
+    let delivered = duty.peak_kva * lf * pf * duty.energised_hours;
+    if delivered <= 0.0 {
+        return None;
+    }
+    w.open();
+    let inputs = [("S_1", duty.peak_kva), ("LF", lf), ("cosφ", pf), ("h", duty.energised_hours)];
+    w.step(&DELIVERED, &inputs, delivered);
+    let value = 100.0 * delivered / (delivered + energy.total_kwh());
+    let inputs = [
+        ("W", delivered),
+        ("E0", energy.no_load_energy_kwh),
+        ("Ek", energy.load_energy_kwh),
+        ("Ea", energy.auxiliary_energy_kwh),
+    ];
+    Some(w.close(&EFFICIENCY, &inputs, value))
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;

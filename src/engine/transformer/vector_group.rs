@@ -29,18 +29,10 @@ pub fn agree(a: Option<&str>, b: Option<&str>) -> bool {
 /// # Errors
 /// Such a group: the methods hold for two separate windings.
 pub fn two_windings(vector_group: &str) -> Result<(), Refusal> {
-    let group = vector_group.trim().to_lowercase();
-    let refuse = |kind: &str| {
-        let why = format!(
-            "is the vector group of {kind}; only transformers with two separate windings are computed"
-        );
-        Err(Refusal::new("vector_group", vector_group, why))
-    };
-    let numbers = group.split(|c: char| !c.is_ascii_digit()).filter(|run| !run.is_empty()).count();
-    if numbers > 1 {
-        return refuse("a three-winding transformer");
+    match super::windings::refused(vector_group.trim()) {
+        Some(why) => Err(Refusal::new("vector_group", vector_group, why)),
+        None => Ok(()),
     }
-    if group.contains('a') { refuse("an auto-transformer") } else { Ok(()) }
 }
 
 #[cfg(test)]
@@ -69,10 +61,12 @@ mod tests {
 
     #[test]
     fn other_kinds_are_refused_by_name() {
-        for group in ["Dyn11", "YNd5", "Yzn5", "Ii0", " yy0 "] {
+        for group in ["Dyn11", "YNd5", "Yzn5", "Ii0", " Yy0 "] {
             assert!(two_windings(group).is_ok(), "{group}");
         }
         assert!(two_windings("YNa0").expect_err("auto").why.contains("auto-transformer"));
-        assert!(two_windings("YNyn0d11").expect_err("three").why.contains("three-winding"));
+        assert!(
+            two_windings("YNyn0d11").expect_err("three").why.contains("three or more windings")
+        );
     }
 }

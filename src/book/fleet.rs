@@ -1,0 +1,199 @@
+//! The fleet in columns, read in one pass; a large book is read by every core at once, each a range of rows.
+
+use std::ops::RangeInclusive;
+
+use rusqlite::Connection;
+use rusqlite::types::ValueRef;
+use rustc_hash::FxHashMap;
+
+use super::open::flags;
+use super::{Access, Book, Result};
+use crate::engine::columns::{Column, Kind, Unit};
+use crate::engine::decision::UnitFacts;
+use crate::engine::decision::fit::Terminals;
+use crate::engine::decision::fleet::FleetColumns;
+use crate::engine::transformer::vector_group;
+
+/// Rows below which one connection reads everything.
+const SMALL: i64 = 50_000;
+
+/// The columns read, in this order; numbers first.
+const NUMBERS: &[&str] = &[
+    "rated_kva",
+    "no_load_loss_w",
+    "load_loss_w",
+    "peak_kva",
+    "load_growth_pct",
+    "hv_kv",
+    "lv_kv",
+    "year_made",
+    "phases",
+    "loss_base_kva",
+    "total_loss_w",
+    "auxiliary_loss_w",
+    "auxiliary_hours",
+    "load_factor_pu",
+    "loss_factor_pu",
+    "responsibility_pu",
+    "energised_hours",
+    "power_factor",
+    "failure_cost",
+    "removal_cost",
+    "scrap_value",
+    "customers",
+];
+const TEXTS: &[&str] = &["unit", "profile", "site", "vector_group", "in_service"];
+
+fn column(name: &str) -> Option<&'static Column> {
+    Unit::COLUMNS.iter().find(|column| column.name == name)
+}
+
+impl Book {
+    /// The fleet in columns, in order of entry. Profiles are numbered as [`Book::profiles`] gives them.
+    ///
+    /// # Errors
+    /// The store fails.
+    pub fn fleet(&self) -> Result<FleetColumns> {
+        let profiles: FxHashMap<String, u32> =
+            (0_u32..).zip(self.profile_names()?).map(|(number, name)| (name, number)).collect();
+        let ends = "SELECT ifnull(min(id), 0), ifnull(max(id), -1) FROM units";
+        let (first, last): (i64, i64) =
+            self.connection.query_row(ends, [], |row| Ok((row.get(0)?, row.get(1)?)))?;
+        let (Some(path), true) = (&self.path, last - first > SMALL) else {
+            return read(&self.connection, &profiles, first..=last, 0);
+        };
+        let parts = std::thread::available_parallelism().map_or(1, usize::from).min(8);
+        let step = (last - first) / i64::try_from(parts).unwrap_or(1) + 1;
+        let ranges = (0_i64..).take(parts).map(|n| {
+            let from = first + n * step;
+            from..=(from + step - 1).min(last)
+        });
+        let all = usize::try_from(last - first + 1).unwrap_or(0);
+        let profiles = &profiles;
+        let mut fleet: Option<FleetColumns> = None;
+        std::thread::scope(|scope| {
+            let readers: Vec<_> = ranges
+                .map(|range| {
+                    // The first part takes the others in: room for all is made there.
+                    let room = if *range.start() == first { all } else { 0 };
+                    scope.spawn(move || {
+                        let connection =
+                            Connection::open_with_flags(path, flags(Access::ReadOnly))?;
+                        connection.pragma_update(None, "mmap_size", 1_i64 << 36)?;
+                        read(&connection, profiles, range, room)
+                    })
+                })
+                .collect();
+            for reader in readers {
+                let part = reader.join().unwrap_or_else(|lost| std::panic::resume_unwind(lost))?;
+                match &mut fleet {
+                    None => fleet = Some(part),
+                    Some(fleet) => fleet.append(part),
+                }
+            }
+            Ok(())
+        })
+        .map(|()| fleet.unwrap_or_default())
+    }
+}
+
+fn read(
+    connection: &Connection,
+    profiles: &FxHashMap<String, u32>,
+    range: RangeInclusive<i64>,
+    room: usize,
+) -> Result<FleetColumns> {
+    let names: Vec<String> =
+        NUMBERS.iter().chain(TEXTS).filter_map(|name| column(name).map(Column::sql_name)).collect();
+    let sql = format!(
+        "SELECT {}, id FROM units WHERE id BETWEEN ?1 AND ?2 ORDER BY id",
+        names.join(", ")
+    );
+    let scale: Vec<f64> = NUMBERS
+        .iter()
+        .map(|name| match column(name).map(|c| c.kind) {
+            Some(Kind::Money(..)) => 1000.0,
+            _ => 1.0,
+        })
+        .collect();
+    let mut statement = connection.prepare(&sql)?;
+    let mut rows = statement.query([range.start(), range.end()])?;
+    let mut fleet = FleetColumns::default();
+    let size = usize::try_from(range.end() - range.start() + 1).unwrap_or(0);
+    fleet.reserve(room.max(size));
+    let mut numbers = [f64::NAN; NUMBERS.len()];
+    while let Some(row) = rows.next()? {
+        for (i, number) in numbers.iter_mut().enumerate() {
+            #[expect(clippy::cast_precision_loss, reason = "whole columns are below 2^53")]
+            let value = match row.get_ref(i)? {
+                ValueRef::Real(value) => value,
+                ValueRef::Integer(value) => value as f64 / scale[i],
+                _ => f64::NAN,
+            };
+            *number = value;
+        }
+        let text = |i: usize| match row.get_ref(NUMBERS.len() + i) {
+            Ok(ValueRef::Text(text)) => std::str::from_utf8(text).ok(),
+            _ => None,
+        };
+        let profile = text(1).and_then(|name| profiles.get(name).copied()).unwrap_or(u32::MAX);
+        let [
+            rated_kva,
+            no_load_loss_w,
+            load_loss_w,
+            peak_kva,
+            load_growth_pct,
+            hv_kv,
+            lv_kv,
+            year_made,
+            phases,
+            loss_base_kva,
+            total_loss_w,
+            auxiliary_loss_w,
+            auxiliary_hours,
+            load_factor_pu,
+            loss_factor_pu,
+            responsibility_pu,
+            energised_hours,
+            power_factor,
+            failure_cost,
+            removal_cost,
+            scrap_value,
+            customers,
+        ] = numbers;
+        let known = |value: f64| (!value.is_nan()).then_some(value);
+        let terminals = Terminals {
+            #[expect(clippy::cast_possible_truncation, reason = "1 or 3")]
+            phases: known(phases).map(|n| n as i64),
+            hv_kv: known(hv_kv),
+            lv_kv: known(lv_kv),
+            clock: text(3).and_then(vector_group::clock),
+            rated_kva,
+        };
+        let facts = UnitFacts {
+            in_service: text(4) != Some("no"),
+            rated_kva,
+            loss_base_kva,
+            no_load_loss_w,
+            load_loss_w,
+            total_loss_w,
+            auxiliary_loss_w,
+            auxiliary_hours,
+            peak_kva,
+            load_factor_pu,
+            loss_factor_pu,
+            load_growth_pct,
+            responsibility_pu,
+            energised_hours,
+            power_factor,
+            year_made,
+            failure_cost,
+            removal_cost,
+            scrap_value,
+            customers,
+            profile,
+        };
+        fleet.push(text(0).unwrap_or(""), text(2), row.get(names.len())?, terminals, &facts);
+    }
+    Ok(fleet)
+}

@@ -1,0 +1,161 @@
+//! Opening a book: is it one, of which version, and bringing an older one up to date (backed up first).
+
+use std::path::{Path, PathBuf};
+use std::time::Duration;
+
+use rusqlite::{Connection, OpenFlags, TransactionBehavior};
+use rusqlite_migration::{M, Migrations};
+
+use super::error::PATIENCE_SECONDS;
+use super::{Book, BookError, Result};
+
+/// What a book is opened for.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Access {
+    /// Reading; the file is not touched.
+    ReadOnly,
+    /// Reading and writing a book that is there.
+    ReadWrite,
+    /// The same, and an empty book is made where there is none.
+    Create,
+}
+
+/// Marks an SQLite file as a book: "IrHu", as in the first migration.
+const APPLICATION_ID: i64 = 0x4972_4875;
+
+/// Every step from nothing to this version. Never changed, only added to.
+pub(super) const STEPS: &[M<'static>] =
+    &[M::up(include_str!("../../migrations/01_book.sql")).foreign_key_check()];
+
+impl Book {
+    /// Opens a book.
+    ///
+    /// # Errors
+    /// There is none, it is something else, of a newer version, write-protected or locked by another program.
+    pub fn open(path: impl AsRef<Path>, access: Access) -> Result<Self> {
+        Self::open_with(path.as_ref(), access, STEPS)
+    }
+
+    /// An empty book in memory, gone when it is dropped.
+    ///
+    /// # Errors
+    /// The store fails.
+    pub fn in_memory() -> Result<Self> {
+        let mut connection = Connection::open_in_memory()?;
+        settle(&connection)?;
+        Migrations::from_slice(STEPS).to_latest(&mut connection)?;
+        Ok(Self { connection, path: None })
+    }
+
+    pub(super) fn open_with(path: &Path, access: Access, steps: &[M<'_>]) -> Result<Self> {
+        let not_a_book = |why| BookError::NotABook { path: path.to_owned(), why };
+        match std::fs::metadata(path) {
+            Ok(meta) if meta.is_dir() => return Err(not_a_book("it is a directory")),
+            Err(error) if error.kind() == std::io::ErrorKind::NotFound => {
+                if access != Access::Create {
+                    return Err(BookError::Missing { path: path.to_owned() });
+                }
+            }
+            Err(source) => return Err(BookError::File { path: path.to_owned(), source }),
+            Ok(_) => {}
+        }
+        // Looked at read-only first, so that what is not ours is never written to.
+        if path.exists() {
+            let book = Connection::open_with_flags(path, flags(Access::ReadOnly))?;
+            settle(&book)?;
+            let version = recognise(&book).map_err(|error| match error {
+                Recognised::Other(why) => not_a_book(why),
+                Recognised::Failed(error) => error.into(),
+            })?;
+            let program = i64::try_from(steps.len()).unwrap_or(i64::MAX);
+            match version {
+                Some(book) if book > program => {
+                    return Err(BookError::Newer { path: path.to_owned(), book, program });
+                }
+                Some(old) if old < program && access == Access::ReadOnly => {
+                    return Err(BookError::Older { path: path.to_owned(), book: old, program });
+                }
+                Some(old) if old < program => {
+                    Self { connection: book, path: Some(path.to_owned()) }
+                        .backup(&free_name(path, program))?;
+                }
+                None if access != Access::Create => return Err(not_a_book("it is empty")),
+                Some(_) if access == Access::ReadOnly => {
+                    return Ok(Self { connection: book, path: Some(path.to_owned()) });
+                }
+                _ => {}
+            }
+        }
+        let mut connection = Connection::open_with_flags(path, flags(access))?;
+        settle(&connection)?;
+        connection.pragma_update(None, "journal_mode", "WAL")?;
+        connection.set_transaction_behavior(TransactionBehavior::Immediate);
+        let migrations = Migrations::from_slice(steps);
+        if let Err(error) = migrations.to_latest(&mut connection) {
+            // Another program may have brought the book up to date in the same moment.
+            if migrations.pending_migrations(&connection)? != 0 {
+                return Err(error.into());
+            }
+        }
+        Ok(Self { connection, path: Some(path.to_owned()) })
+    }
+}
+
+pub(super) fn flags(access: Access) -> OpenFlags {
+    // No URI and no shared cache: a path is a path.
+    OpenFlags::SQLITE_OPEN_NO_MUTEX
+        | match access {
+            Access::ReadOnly => OpenFlags::SQLITE_OPEN_READ_ONLY,
+            Access::ReadWrite => OpenFlags::SQLITE_OPEN_READ_WRITE,
+            Access::Create => OpenFlags::SQLITE_OPEN_READ_WRITE | OpenFlags::SQLITE_OPEN_CREATE,
+        }
+}
+
+/// What holds for every connection. A book may come from anyone: nothing in its schema is trusted.
+fn settle(connection: &Connection) -> Result<()> {
+    connection.busy_timeout(Duration::from_secs(PATIENCE_SECONDS))?;
+    connection.set_prepared_statement_cache_capacity(64);
+    connection.pragma_update(None, "foreign_keys", true)?;
+    connection.pragma_update(None, "trusted_schema", false)?;
+    Ok(())
+}
+
+enum Recognised {
+    Other(&'static str),
+    Failed(rusqlite::Error),
+}
+
+/// The version of a book; none for an empty file.
+fn recognise(connection: &Connection) -> std::result::Result<Option<i64>, Recognised> {
+    let number = |sql: &str| connection.query_row(sql, [], |row| row.get::<_, i64>(0));
+    let read = || {
+        Ok::<_, rusqlite::Error>((
+            number("SELECT count(*) FROM sqlite_schema")?,
+            number("PRAGMA application_id")?,
+            number("PRAGMA user_version")?,
+        ))
+    };
+    match read() {
+        Ok((_, APPLICATION_ID, version)) => Ok(Some(version)),
+        Ok((0, 0, 0)) => Ok(None),
+        Ok(_) => Err(Recognised::Other("it is a database of another program")),
+        Err(error) if error.sqlite_error_code() == Some(rusqlite::ErrorCode::NotADatabase) => {
+            Err(Recognised::Other("it is no SQLite file"))
+        }
+        Err(error) => Err(Recognised::Failed(error)),
+    }
+}
+
+/// A name for the backup before a migration that is not taken yet.
+fn free_name(path: &Path, version: i64) -> PathBuf {
+    let named = |tail: String| {
+        let mut name = path.as_os_str().to_owned();
+        name.push(format!(".before-v{version}{tail}"));
+        PathBuf::from(name)
+    };
+    let mut tries = (2_u32..).map(|n| named(format!("-{n}")));
+    std::iter::once(named(String::new()))
+        .chain(&mut tries)
+        .find(|name| !name.exists())
+        .unwrap_or_else(|| named(String::new()))
+}

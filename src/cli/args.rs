@@ -1,0 +1,243 @@
+//! What can be typed: the tree of commands and options, from which help, completions and the manual are made.
+
+use std::path::PathBuf;
+
+use clap::builder::{PossibleValuesParser, TypedValueParser};
+use clap::{Parser, Subcommand, ValueEnum};
+
+use crate::study::intake::What;
+
+/// How results are written.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
+pub enum Format {
+    /// For people: rounded, with units.
+    #[default]
+    Text,
+    /// The main table, full precision.
+    Csv,
+    /// One document, full precision.
+    Json,
+}
+
+/// When colour is used.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
+pub enum Colour {
+    /// Where the terminal has it and NO_COLOR is not set.
+    #[default]
+    Auto,
+    /// Always.
+    Always,
+    /// Never.
+    Never,
+}
+
+/// Transformer losses and owning cost: which units to replace, when and with what, and which bid to take.
+///
+/// Screening economics, not switching or loading instructions. Work on energised or oil-filled plant, PCB
+/// handling, loading beyond nameplate and protection settings follow local codes, manufacturer instructions
+/// and licensed engineers.
+#[derive(Clone, Debug, Parser)]
+#[command(
+    name = "ironhum",
+    version,
+    arg_required_else_help = false,
+    after_help = "Without a command the dashboard opens on the book.\n\
+                  Exit status: 0 done, 1 could not be done, 2 wrong use, 3 input rejected, \
+                  4 no feasible solution, 128+n on signal n."
+)]
+pub struct Args {
+    /// What to do; without a command the dashboard opens.
+    #[command(subcommand)]
+    pub command: Option<Command>,
+    /// The book (an SQLite file); else $IRONHUM_BOOK, else book.sqlite in the data directory
+    #[arg(long, global = true, value_name = "FILE", env = "IRONHUM_BOOK")]
+    pub book: Option<PathBuf>,
+    /// The basis; else the book's only or current one
+    #[arg(long, global = true, value_name = "NAME")]
+    pub basis: Option<String>,
+    /// How results are written
+    #[arg(long, global = true, value_enum, default_value_t)]
+    pub format: Format,
+    /// Change nothing
+    #[arg(long, global = true)]
+    pub read_only: bool,
+    /// Print phase times as one JSON line on standard error
+    #[arg(long, global = true)]
+    pub timings: bool,
+    /// When colour is used on the screens
+    #[arg(long, global = true, value_enum, default_value_t)]
+    pub color: Colour,
+    /// Draw screens with ASCII characters only
+    #[arg(long, global = true)]
+    pub ascii: bool,
+}
+
+/// The commands.
+#[derive(Clone, Debug, Subcommand)]
+pub enum Command {
+    /// Make a fresh demo book and open it; without a terminal print its ranking and tender result
+    Demo,
+    /// Take a file in: CSV, TSV, semicolon with decimal comma, XLSX; basis and tender are TOML
+    Import(Import),
+    /// List everything doubtful in the book: missing, estimated, implausible, contradictory
+    Check,
+    /// Annual energy and cost of losses of each unit, in year 1 of the basis
+    Losses(Shown),
+    /// Rank the units: what to replace, when and with what
+    Rank(Rank),
+    /// The capitalised loss factors A, B and auxiliary of a basis, or of a lot
+    Factors(Factors),
+    /// Evaluate the bids of a tender
+    Tender(Tender),
+    /// One unit's dossier
+    Unit(Unit),
+    /// Who changed what, when, from what and why
+    Journal(Journal),
+    /// Say what columns a file has: name, unit, range, what a blank means
+    Columns {
+        /// The file
+        #[arg(value_parser = kind())]
+        what: What,
+    },
+    /// Write a consistent copy of the book
+    Backup {
+        /// The copy; must not exist
+        file: PathBuf,
+    },
+    /// Print the completions of a shell
+    Completions {
+        /// The shell
+        shell: clap_complete::Shell,
+    },
+    /// Print the manual page
+    Man,
+}
+
+/// The kinds of files, as typed.
+fn kind() -> impl TypedValueParser<Value = What> {
+    PossibleValuesParser::new(What::WORDS.iter().map(|(word, _)| *word))
+        .try_map(|word| What::from_word(&word).ok_or("is no kind of file"))
+}
+
+/// Options of `import`.
+#[derive(Clone, Debug, clap::Args)]
+pub struct Import {
+    /// What the file holds
+    #[arg(value_parser = kind())]
+    pub what: What,
+    /// The file; - reads standard input
+    pub file: PathBuf,
+    /// Rename a column of the file
+    #[arg(long, value_name = "THEIRS=OURS")]
+    pub map: Vec<String>,
+    /// Pass over unknown columns
+    #[arg(long)]
+    pub ignore_unknown: bool,
+    /// Store the good rows, leave the bad ones
+    #[arg(long)]
+    pub skip_bad: bool,
+    /// Write the bad rows with their reasons to a file
+    #[arg(long, value_name = "FILE")]
+    pub rejects: Option<PathBuf>,
+    /// Store nothing, say what would change
+    #[arg(long)]
+    pub dry_run: bool,
+    /// A blank cell erases the old value
+    #[arg(long)]
+    pub clear_blank: bool,
+    /// Name of the price series (else the file's name)
+    #[arg(long, value_name = "NAME")]
+    pub name: Option<String>,
+    /// Why, for the journal
+    #[arg(long, value_name = "TEXT")]
+    pub why: Option<String>,
+}
+
+/// How much of a table is shown.
+#[derive(Clone, Debug, Default, clap::Args)]
+pub struct Shown {
+    /// Show only the first N
+    #[arg(long, value_name = "N")]
+    pub top: Option<usize>,
+}
+
+/// By what the ranking is ordered.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
+pub enum RankBy {
+    /// What the best choice saves.
+    #[default]
+    Saving,
+    /// What a year's delay costs.
+    Waiting,
+}
+
+/// Options of `rank`.
+#[derive(Clone, Debug, Default, clap::Args)]
+pub struct Rank {
+    /// Show only the first N
+    #[arg(long, value_name = "N")]
+    pub top: Option<usize>,
+    /// The figure that orders the ranking
+    #[arg(long, value_enum, default_value_t)]
+    pub by: RankBy,
+}
+
+/// Options of `factors`.
+#[derive(Clone, Debug, Default, clap::Args)]
+pub struct Factors {
+    /// Factors of a lot of this tender
+    #[arg(long, value_name = "TENDER", requires = "lot")]
+    pub tender: Option<String>,
+    /// The lot
+    #[arg(long, value_name = "LOT", requires = "tender")]
+    pub lot: Option<String>,
+    /// Peak load of year 1 over the rating
+    #[arg(long, value_name = "PU")]
+    pub peak_pu: Option<f64>,
+    /// Loss factor of the load
+    #[arg(long, value_name = "PU")]
+    pub loss_factor: Option<f64>,
+    /// Load factor of the load, where its loss factor is not known
+    #[arg(long, value_name = "PU")]
+    pub load_factor: Option<f64>,
+    /// Profile of the load
+    #[arg(long, value_name = "NAME")]
+    pub profile: Option<String>,
+    /// Yearly growth of the load
+    #[arg(long, value_name = "PCT", allow_negative_numbers = true)]
+    pub load_growth: Option<f64>,
+    /// Show how each factor comes about
+    #[arg(long)]
+    pub working: bool,
+}
+
+/// Options of `tender`.
+#[derive(Clone, Debug, clap::Args)]
+pub struct Tender {
+    /// The tender
+    pub tender: String,
+    /// Only this lot
+    #[arg(long, value_name = "LOT")]
+    pub lot: Option<String>,
+    /// Show how each figure comes about
+    #[arg(long)]
+    pub working: bool,
+}
+
+/// Options of `unit`.
+#[derive(Clone, Debug, clap::Args)]
+pub struct Unit {
+    /// The unit
+    pub unit: String,
+    /// Show how each figure comes about
+    #[arg(long)]
+    pub working: bool,
+}
+
+/// Options of `journal`.
+#[derive(Clone, Debug, clap::Args)]
+pub struct Journal {
+    /// Show the latest N entries
+    #[arg(long, value_name = "N", default_value_t = 100)]
+    pub top: usize,
+}

@@ -1,0 +1,77 @@
+//! Which book is meant, how it is opened, and who writes to it.
+
+use std::path::{Path, PathBuf};
+
+use etcetera::BaseStrategy as _;
+
+use super::args::Args;
+use super::exit::{Exit, Failure};
+use super::print::Printer;
+use crate::book::{Access, Actor, Book};
+
+/// A book with its path.
+pub(super) struct Opened {
+    pub(super) book: Book,
+    pub(super) path: PathBuf,
+}
+
+/// The directory in which the program keeps its own books.
+pub(super) fn data_directory() -> Result<PathBuf, Failure> {
+    let strategy = etcetera::choose_base_strategy().map_err(|_| {
+        Failure::new(Exit::Failed, "no home directory is known; name the book with --book FILE")
+    })?;
+    Ok(strategy.data_dir().join("ironhum"))
+}
+
+/// The book that is meant.
+pub(super) fn path(args: &Args) -> Result<PathBuf, Failure> {
+    match &args.book {
+        Some(path) => Ok(path.clone()),
+        None => Ok(data_directory()?.join("book.sqlite")),
+    }
+}
+
+/// Opens the book for reading.
+pub(super) fn open_to_read(args: &Args) -> Result<Opened, Failure> {
+    let path = path(args)?;
+    let book = Book::open(&path, Access::ReadOnly)?;
+    Ok(Opened { book, path })
+}
+
+/// Opens the book for writing; makes it where there is none.
+pub(super) fn open_to_write(args: &Args) -> Result<Opened, Failure> {
+    if args.read_only {
+        return Err(Failure::new(Exit::Usage, "--read-only: this command changes the book"));
+    }
+    let path = path(args)?;
+    make_parent(&path)?;
+    let book = Book::open(&path, Access::Create)?;
+    Ok(Opened { book, path })
+}
+
+pub(super) fn make_parent(path: &Path) -> Result<(), Failure> {
+    match path.parent() {
+        Some(parent) if !parent.as_os_str().is_empty() => std::fs::create_dir_all(parent)
+            .map_err(|error| Failure::new(Exit::Failed, format!("{}: {error}", parent.display()))),
+        _ => Ok(()),
+    }
+}
+
+/// Who writes, and when.
+pub(super) fn actor(why: Option<String>) -> Actor {
+    let name = |key| std::env::var(key).ok().filter(|name| !name.is_empty());
+    let who = name("USER").or_else(|| name("LOGNAME")).or_else(|| name("USERNAME"));
+    Actor {
+        who: who.unwrap_or_else(|| "unknown".to_owned()),
+        at: chrono::Utc::now().format("%Y-%m-%dT%H:%M:%SZ").to_string(),
+        why,
+    }
+}
+
+/// `ironhum backup FILE`.
+pub(super) fn backup(args: &Args, file: &Path, printer: &mut Printer) -> Result<Exit, Failure> {
+    let Opened { book, path } = open_to_read(args)?;
+    book.backup(file)?;
+    printer.complain(&format!("{} is copied to {}", path.display(), file.display()));
+    Ok(Exit::Done)
+}

@@ -1,0 +1,105 @@
+//! `ironhum` alone: the dashboard on a book.
+
+use std::io::IsTerminal as _;
+use std::path::{Path, PathBuf};
+
+use super::args::{Args, Colour};
+use super::book;
+use super::exit::{Exit, Failure};
+use crate::book::{Access, Book, JournalEntry};
+use crate::study::{Desk, StudyError};
+use crate::tui::{self, Caps, ColourWish, ExitReason, JournalLine, Session};
+
+/// Entries of the journal that are shown.
+const JOURNAL: usize = 1000;
+
+/// Opens the dashboard on the book that is meant.
+pub(super) fn open(args: &Args) -> Result<Exit, Failure> {
+    if !on_terminal() {
+        let text = "the dashboard needs a terminal for input and output; without one use a command, \
+                    for instance: ironhum rank --format csv";
+        return Err(Failure::new(Exit::Usage, text));
+    }
+    let path = book::path(args)?;
+    if args.book.is_none() && !path.exists() {
+        let text = format!(
+            "there is no book at {} yet\n  ironhum demo                    shows a demo book\n  \
+             ironhum import units FILE       makes your own",
+            path.display()
+        );
+        return Err(Failure::new(Exit::Failed, text));
+    }
+    on(args, path)
+}
+
+/// Whether input and output are terminals and nobody automates.
+pub(super) fn on_terminal() -> bool {
+    std::io::stdin().is_terminal() && std::io::stdout().is_terminal()
+}
+
+/// Opens the dashboard on the book at `path`.
+pub(super) fn on(args: &Args, path: PathBuf) -> Result<Exit, Failure> {
+    // What is no book is said before the screen is taken.
+    drop(Book::open(&path, Access::ReadOnly)?);
+    let wish = match args.color {
+        Colour::Auto => ColourWish::Auto,
+        Colour::Always => ColourWish::Always,
+        Colour::Never => ColourWish::Never,
+    };
+    let caps = Caps::of(|name| std::env::var(name).ok(), wish, args.ascii);
+    let basis = args.basis.clone();
+    let reason = tui::run(move |_| session(&path, basis.as_deref()), caps)
+        .map_err(|error| Failure::new(Exit::Failed, error.to_string()))?;
+    Ok(match reason {
+        ExitReason::Quit => Exit::Done,
+        ExitReason::Signal(n) => Exit::Signal(u8::try_from(n).unwrap_or(0)),
+    })
+}
+
+fn session(path: &Path, basis: Option<&str>) -> Result<Session, StudyError> {
+    let book = Book::open(path, Access::ReadOnly)?;
+    let desk = Desk::read(&book, basis)?;
+    let tenders = book
+        .tenders()?
+        .iter()
+        .map(|tender| book.tender(&tender.tender))
+        .collect::<Result<_, _>>()?;
+    let journal = book.journal(JOURNAL)?.into_iter().map(line).collect();
+    let name = path.file_name().map(|name| name.to_string_lossy().into_owned());
+    Ok(Session {
+        title: name.unwrap_or_default(),
+        desk,
+        basis_source: "book".to_owned(),
+        tenders,
+        journal,
+        record: Some(Box::new(move |unit| book.unit(unit).ok())),
+    })
+}
+
+fn line(entry: JournalEntry) -> JournalLine {
+    let key = entry.key.map(|key| format!(" {key}")).unwrap_or_default();
+    let count = entry.what.get("rows").and_then(serde_json::Value::as_u64);
+    let rows = count.filter(|n| *n != 1).map(|n| format!(" ({n} rows)")).unwrap_or_default();
+    JournalLine {
+        at: entry.at,
+        who: entry.who,
+        what: format!("{} {}{key}{rows}", entry.action, entry.kind),
+        details: details(&entry.what),
+        source: entry.source.unwrap_or_default(),
+        why: entry.why.unwrap_or_default(),
+    }
+}
+
+/// `column old → new` for each changed column.
+fn details(what: &serde_json::Value) -> String {
+    let text = |value: &serde_json::Value| match value {
+        serde_json::Value::Null => "blank".to_owned(),
+        serde_json::Value::String(text) => text.clone(),
+        other => other.to_string(),
+    };
+    let Some(columns) = what.as_object() else { return String::new() };
+    let moved = columns.iter().filter_map(|(column, change)| {
+        Some(format!("{column} {} → {}", text(change.get("old")?), text(change.get("new")?)))
+    });
+    moved.collect::<Vec<_>>().join(", ")
+}

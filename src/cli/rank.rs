@@ -1,0 +1,127 @@
+//! `ironhum rank`: the units by what replacing them saves.
+
+use super::args::{Args, Format, Rank, RankBy};
+use super::book::{self, Opened};
+use super::exit::{Exit, Failure};
+use super::print::{Printer, TextColumn};
+use super::timings::Timings;
+use crate::study::figures::group;
+use crate::study::rank::{By, LeftOutRow, Ranking, rank as ask};
+use crate::study::{Desk, Watch};
+
+const KEYS: &[&str] = &[
+    "rank",
+    "unit",
+    "site",
+    "rated_kva",
+    "year_made",
+    "peak_pu",
+    "keep_pv",
+    "now_offer",
+    "now_pv",
+    "best_offer",
+    "best_year_offset",
+    "best_year",
+    "best_pv",
+    "saving_pv",
+    "waiting_pv",
+    "payback_years",
+    "capital",
+    "energy_saved_kwh",
+    "co2_saved_kg",
+    "flags",
+];
+const TEXT: &[&str] = &[
+    "rank",
+    "unit",
+    "site",
+    "rated_kva",
+    "year_made",
+    "best_offer",
+    "best_year",
+    "saving_pv",
+    "waiting_pv",
+    "payback_years",
+];
+
+pub(super) fn rank(args: &Args, options: &Rank, printer: &mut Printer) -> Result<Exit, Failure> {
+    let mut timings = Timings::start(args.timings);
+    let Opened { book, .. } = book::open_to_read(args)?;
+    timings.phase("open");
+    let desk = Desk::read(&book, args.basis.as_deref())?;
+    timings.phase("read");
+    let by = match options.by {
+        RankBy::Saving => By::Saving,
+        RankBy::Waiting => By::Waiting,
+    };
+    let ranking = ask(&desk, by, options.top, &Watch::default())?;
+    timings.phase("rank");
+    write(&desk, &ranking, printer)?;
+    printer.flush()?;
+    timings.phase("write");
+    // The columns of a large fleet are given back by the end of the process faster than one by one.
+    std::mem::forget((desk, ranking));
+    if let Some(line) = timings.finish() {
+        printer.complain(&line);
+    }
+    Ok(Exit::Done)
+}
+
+pub(super) fn write(desk: &Desk, ranking: &Ranking, printer: &mut Printer) -> Result<(), Failure> {
+    let rows = (0..ranking.order.len()).filter_map(|place| ranking.row(desk, place));
+    match printer.format {
+        Format::Json => printer.json(&ranking.result(desk)),
+        Format::Csv => printer.csv(KEYS, rows),
+        Format::Text => {
+            let a = &ranking.context.assumptions;
+            let t = &ranking.totals;
+            printer.line(format!(
+                "Basis {}: {} units ranked over {} years, {} of them save by replacing.",
+                a.name, t.units, a.years, t.units_saving
+            ))?;
+            printer.line(format!(
+                "Present value {c} {}: keep all {}, best {}, saving {}.",
+                a.first_year,
+                group(t.keep_pv, 0),
+                group(t.best_pv, 0),
+                group(t.saving_pv, 0),
+                c = a.currency,
+            ))?;
+            printer.line("")?;
+            printer.table(&TextColumn::list(TEXT, &a.currency), rows)?;
+            let left_out =
+                (0..ranking.left_out.len()).filter_map(|n| ranking.left_out_row(desk, n));
+            write_left_out(printer, left_out)
+        }
+    }
+}
+
+/// The units left out, by reason.
+pub(super) fn write_left_out<'a>(
+    printer: &mut Printer,
+    rows: impl Iterator<Item = LeftOutRow<'a>>,
+) -> Result<(), Failure> {
+    let mut reasons: Vec<(&str, Vec<&str>)> = Vec::new();
+    for row in rows {
+        match reasons.iter_mut().find(|(why, _)| *why == row.why) {
+            Some((_, units)) => units.push(row.unit),
+            None => reasons.push((row.why, vec![row.unit])),
+        }
+    }
+    if reasons.is_empty() {
+        return Ok(());
+    }
+    printer.line("")?;
+    let total: usize = reasons.iter().map(|(_, units)| units.len()).sum();
+    printer.line(format!("{total} units are left out:"))?;
+    for (why, units) in reasons {
+        let named: Vec<&str> = units.iter().take(12).copied().collect();
+        let more = match units.len().saturating_sub(named.len()) {
+            0 => String::new(),
+            more => format!(" and {more} more"),
+        };
+        printer.line(format!("  {:>4}  {why}", units.len()))?;
+        printer.line(format!("        {}{more}", named.join(", ")))?;
+    }
+    Ok(())
+}

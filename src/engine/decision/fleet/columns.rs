@@ -1,0 +1,202 @@
+//! A fleet in columns: the bare numbers of every unit side by side, NaN where unknown, and the kinds of
+//! terminals that occur. Filled from a book once; a changed basis never reads the book again.
+
+use rustc_hash::FxHashMap;
+
+use crate::engine::decision::fit::Terminals;
+use crate::engine::decision::place::UnitFacts;
+
+/// Many short names end to end.
+#[derive(Clone, Debug, Default)]
+pub struct Names {
+    text: String,
+    ends: Vec<u32>,
+}
+
+impl Names {
+    /// Adds a name.
+    pub fn push(&mut self, name: &str) {
+        self.text.push_str(name);
+        self.ends.push(u32::try_from(self.text.len()).unwrap_or(u32::MAX));
+    }
+    fn reserve(&mut self, more: usize) {
+        self.text.reserve(more.saturating_mul(8));
+        self.ends.reserve(more);
+    }
+    /// Name number `i`; "" beyond the last.
+    pub fn get(&self, i: usize) -> &str {
+        let from = if i == 0 { 0 } else { self.ends.get(i - 1).map_or(0, |e| *e as usize) };
+        self.ends.get(i).and_then(|end| self.text.get(from..*end as usize)).unwrap_or("")
+    }
+    /// Number of names.
+    pub fn len(&self) -> usize {
+        self.ends.len()
+    }
+    /// Whether there is none.
+    pub fn is_empty(&self) -> bool {
+        self.ends.is_empty()
+    }
+    fn append(&mut self, other: &Self) {
+        let shift = u32::try_from(self.text.len()).unwrap_or(u32::MAX);
+        self.text.push_str(&other.text);
+        self.ends.extend(other.ends.iter().map(|end| end + shift));
+    }
+}
+
+/// Kinds of terminals while columns are filled.
+type Kinds = FxHashMap<(i64, u64, u64, u8, u64), u32>;
+
+macro_rules! columns {
+    ($($name:ident),+) => {
+        /// A fleet in columns. The fields are named as the columns of `Unit`.
+        #[derive(Clone, Debug, Default)]
+        #[expect(missing_docs, reason = "named as the columns of `Unit`, whose facts say what they are")]
+        pub struct FleetColumns {
+            /// Identifiers.
+            pub unit: Names,
+            /// Row of the unit in the book.
+            pub row: Vec<i64>,
+            /// Whether it is in service.
+            pub in_service: Vec<bool>,
+            /// Index of the load profile; `u32::MAX` = none.
+            pub profile: Vec<u32>,
+            /// Where they stand; "" = unknown.
+            pub site: Names,
+            /// Index into `terminals`.
+            pub kind: Vec<u32>,
+            /// The kinds of terminals that occur.
+            pub terminals: Vec<Terminals>,
+            $(pub $name: Vec<f64>,)+
+            kinds: Kinds,
+        }
+
+        impl FleetColumns {
+            /// The facts of unit number `i`.
+            #[inline]
+            pub fn facts(&self, i: usize) -> UnitFacts {
+                UnitFacts {
+                    in_service: self.in_service[i],
+                    profile: self.profile[i],
+                    $($name: self.$name[i],)+
+                }
+            }
+
+            /// Makes room for more units.
+            pub fn reserve(&mut self, more: usize) {
+                self.unit.reserve(more);
+                self.row.reserve(more);
+                self.in_service.reserve(more);
+                self.profile.reserve(more);
+                self.site.reserve(more);
+                self.kind.reserve(more);
+                $(self.$name.reserve(more);)+
+            }
+
+            /// Adds a unit.
+            pub fn push(
+                &mut self,
+                unit: &str,
+                site: Option<&str>,
+                row: i64,
+                terminals: Terminals,
+                facts: &UnitFacts,
+            ) {
+                let kind = self.kind_of(terminals);
+                self.site.push(site.unwrap_or(""));
+                self.unit.push(unit);
+                self.row.push(row);
+                self.in_service.push(facts.in_service);
+                self.profile.push(facts.profile);
+                self.kind.push(kind);
+                $(self.$name.push(facts.$name);)+
+            }
+
+            /// Adds all units of another part of the same fleet behind the own ones.
+            pub fn append(&mut self, mut other: Self) {
+                let kinds: Vec<u32> = other.terminals.iter().map(|t| self.kind_of(*t)).collect();
+                self.site.append(&other.site);
+                self.unit.append(&other.unit);
+                self.row.append(&mut other.row);
+                self.in_service.append(&mut other.in_service);
+                self.profile.append(&mut other.profile);
+                self.kind.extend(other.kind.iter().map(|kind| kinds[*kind as usize]));
+                $(self.$name.append(&mut other.$name);)+
+            }
+        }
+    };
+}
+
+columns!(
+    rated_kva,
+    loss_base_kva,
+    no_load_loss_w,
+    load_loss_w,
+    total_loss_w,
+    auxiliary_loss_w,
+    auxiliary_hours,
+    peak_kva,
+    load_factor_pu,
+    loss_factor_pu,
+    load_growth_pct,
+    responsibility_pu,
+    energised_hours,
+    power_factor,
+    year_made,
+    failure_cost,
+    removal_cost,
+    scrap_value,
+    customers
+);
+
+impl FleetColumns {
+    /// Number of units.
+    pub fn len(&self) -> usize {
+        self.kind.len()
+    }
+    /// Whether there is none.
+    pub fn is_empty(&self) -> bool {
+        self.kind.is_empty()
+    }
+
+    /// Site of unit number `i`.
+    pub fn site(&self, i: usize) -> Option<&str> {
+        Some(self.site.get(i)).filter(|site| !site.is_empty())
+    }
+
+    fn kind_of(&mut self, t: Terminals) -> u32 {
+        let volts = |v: Option<f64>| v.map_or(u64::MAX, f64::to_bits);
+        let key = (
+            t.phases.unwrap_or(0),
+            volts(t.hv_kv),
+            volts(t.lv_kv),
+            t.clock.unwrap_or(u8::MAX),
+            t.rated_kva.to_bits(),
+        );
+        let next = u32::try_from(self.terminals.len()).unwrap_or(u32::MAX);
+        let terminals = &mut self.terminals;
+        *self.kinds.entry(key).or_insert_with(|| {
+            terminals.push(t);
+            next
+        })
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn names_stand_end_to_end() {
+        let mut names = Names::default();
+        names.push("T1");
+        names.push("");
+        let mut more = Names::default();
+        more.push("Übergang");
+        names.append(&more);
+        assert_eq!(
+            (names.get(0), names.get(1), names.get(2), names.get(3)),
+            ("T1", "", "Übergang", "")
+        );
+        assert_eq!(names.len(), 3);
+    }
+}

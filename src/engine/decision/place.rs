@@ -1,0 +1,267 @@
+//! A unit made ready to compute with: its losses, its duty, its age, what its failure and removal cost.
+//!
+//! [`UnitFacts`] are the bare numbers of a unit, NaN where unknown, the same whether one unit was read or a
+//! million columns; [`resolve`] is the one place where blanks fall to profile, basis and default.
+
+use crate::engine::columns::{Unit, YesNo};
+use crate::engine::economics::Assumptions;
+use crate::engine::flags::Flags;
+use crate::engine::loading::{Duty, Market, Ratios, factors};
+use crate::engine::transformer::losses::{Losses, quoted};
+use crate::engine::working::Recorder;
+
+/// The bare numbers of a unit; NaN = unknown.
+#[derive(Clone, Copy, Debug, PartialEq)]
+#[expect(missing_docs, reason = "named as the columns of `Unit`, whose facts say what they are")]
+pub struct UnitFacts {
+    pub in_service: bool,
+    pub rated_kva: f64,
+    pub loss_base_kva: f64,
+    pub no_load_loss_w: f64,
+    pub load_loss_w: f64,
+    pub total_loss_w: f64,
+    pub auxiliary_loss_w: f64,
+    pub auxiliary_hours: f64,
+    pub peak_kva: f64,
+    pub load_factor_pu: f64,
+    pub loss_factor_pu: f64,
+    pub load_growth_pct: f64,
+    pub responsibility_pu: f64,
+    pub energised_hours: f64,
+    pub power_factor: f64,
+    pub year_made: f64,
+    pub failure_cost: f64,
+    pub removal_cost: f64,
+    pub scrap_value: f64,
+    pub customers: f64,
+    /// Index of the load profile; `u32::MAX` = none.
+    pub profile: u32,
+}
+
+fn known(value: f64) -> Option<f64> {
+    if value.is_nan() { None } else { Some(value) }
+}
+
+impl UnitFacts {
+    /// The facts of a unit; `profile` is the index of its profile.
+    #[expect(clippy::cast_precision_loss, reason = "years and customers are small")]
+    pub fn of_unit(unit: &Unit, profile: Option<usize>) -> Self {
+        let real = |value: Option<f64>| value.unwrap_or(f64::NAN);
+        let money = |value: Option<crate::engine::columns::Money>| {
+            value.map_or(f64::NAN, crate::engine::columns::Money::amount)
+        };
+        Self {
+            in_service: unit.in_service != Some(YesNo::No),
+            rated_kva: unit.rated_kva,
+            loss_base_kva: real(unit.loss_base_kva),
+            no_load_loss_w: real(unit.no_load_loss_w),
+            load_loss_w: real(unit.load_loss_w),
+            total_loss_w: real(unit.total_loss_w),
+            auxiliary_loss_w: real(unit.auxiliary_loss_w),
+            auxiliary_hours: real(unit.auxiliary_hours),
+            peak_kva: real(unit.peak_kva),
+            load_factor_pu: real(unit.load_factor_pu),
+            loss_factor_pu: real(unit.loss_factor_pu),
+            load_growth_pct: real(unit.load_growth_pct),
+            responsibility_pu: real(unit.responsibility_pu),
+            energised_hours: real(unit.energised_hours),
+            power_factor: real(unit.power_factor),
+            year_made: unit.year_made.map_or(f64::NAN, |y| y as f64),
+            failure_cost: money(unit.failure_cost),
+            removal_cost: money(unit.removal_cost),
+            scrap_value: money(unit.scrap_value),
+            customers: unit.customers.map_or(f64::NAN, |n| n as f64),
+            profile: profile.and_then(|p| u32::try_from(p).ok()).unwrap_or(u32::MAX),
+        }
+    }
+}
+
+/// What a basis brings to every unit: assumptions, prices, and the ratios of the profiles.
+#[derive(Clone, Debug)]
+pub struct Context {
+    /// The assumptions.
+    pub assumptions: Assumptions,
+    /// The prices.
+    pub market: Market,
+    /// Ratios of the profiles, in the order of the profiles.
+    pub ratios: Vec<Ratios>,
+    /// Flags of the basis that every unit carries.
+    pub flags: Flags,
+}
+
+/// A unit ready to compute with.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Place {
+    /// Losses of the unit that stands there.
+    pub losses: Losses,
+    /// What the place asks.
+    pub duty: Duty,
+    /// Year of manufacture of the unit that stands there.
+    pub year_made: Option<f64>,
+    /// What its failure costs besides the replacement, F.
+    pub failure_cost: f64,
+    /// Removal less scrap.
+    pub removal_less_scrap: f64,
+    /// What is doubtful.
+    pub flags: Flags,
+}
+
+/// Why a unit cannot be computed.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[repr(u8)]
+pub enum LeftOut {
+    /// Out of service.
+    OutOfService = 1,
+    /// Both losses blank.
+    LossesBlank,
+    /// No-load loss blank.
+    NoLoadLossBlank,
+    /// Load loss blank.
+    LoadLossBlank,
+    /// Total loss below a part of it.
+    TotalBelowPart,
+    /// No peak load.
+    PeakBlank,
+    /// Nothing says how the load runs over the year.
+    ShapeBlank,
+    /// Load and loss factor cannot belong together.
+    ShapeImpossible,
+    /// No offer fits or is open.
+    NoOffer,
+    /// Named profile is not in the book (only while columns are built by hand).
+    ProfileUnknown,
+}
+
+impl LeftOut {
+    /// The reason in a sentence that says what to do.
+    pub const fn why(self) -> &'static str {
+        match self {
+            Self::OutOfService => "is not in service",
+            Self::LossesBlank => {
+                "no_load_loss_w and load_loss_w are blank; import them, or set estimate_missing in the basis"
+            }
+            Self::NoLoadLossBlank => {
+                "no_load_loss_w is blank; import it, or set estimate_missing in the basis"
+            }
+            Self::LoadLossBlank => {
+                "load_loss_w and total_loss_w are blank; import one, or set estimate_missing in the basis"
+            }
+            Self::TotalBelowPart => "total_loss_w is below one of its parts; correct it",
+            Self::PeakBlank => "peak_kva is blank; import it",
+            Self::ShapeBlank => {
+                "profile, loss_factor_pu and load_factor_pu are blank; one of them is needed"
+            }
+            Self::ShapeImpossible => {
+                "loss_factor_pu lies outside load_factor_pu² … load_factor_pu; correct one of them"
+            }
+            Self::NoOffer => {
+                "no offer fits: phases, voltages, vector group, size window, loading limit, lead time or law"
+            }
+            Self::ProfileUnknown => "its profile is not in the book; import it",
+        }
+    }
+}
+
+/// Fills the blanks of a unit from profile, basis and default (methods, sections 0 and 3).
+///
+/// # Errors
+/// Why the unit cannot be computed.
+pub fn resolve<R: Recorder>(w: &mut R, f: &UnitFacts, ctx: &Context) -> Result<Place, LeftOut> {
+    let a = &ctx.assumptions;
+    let mut flags = ctx.flags;
+    if !f.in_service {
+        return Err(LeftOut::OutOfService);
+    }
+    let (p0, pk, total) = (known(f.no_load_loss_w), known(f.load_loss_w), known(f.total_loss_w));
+    let missing = match (p0, pk, total) {
+        (None, None, _) => Some(LeftOut::LossesBlank),
+        (None, Some(_), None) => Some(LeftOut::NoLoadLossBlank),
+        (Some(_), None, None) => Some(LeftOut::LoadLossBlank),
+        _ => None,
+    };
+    if let Some(missing) = missing {
+        return Err(missing);
+    }
+    let base = known(f.loss_base_kva);
+    let losses = quoted(w, f.rated_kva, base, p0, pk, total, known(f.auxiliary_loss_w))
+        .map_err(|_| LeftOut::TotalBelowPart)?;
+    flags = flags
+        .with_if(pk.is_none(), Flags::LOAD_LOSS_FROM_TOTAL)
+        .with_if(base.is_some_and(|b| b != f.rated_kva), Flags::LOSS_BASE_DIFFERS)
+        .with_if(losses.load_loss_w < losses.no_load_loss_w, Flags::LOSSES_SWAPPED);
+    if let (Some(p0), Some(pk), Some(total)) = (p0, pk, total) {
+        flags = flags.with_if((p0 + pk - total).abs() > 0.01 * total, Flags::LOSSES_CONTRADICT);
+    }
+
+    let Some(peak_kva) = known(f.peak_kva) else { return Err(LeftOut::PeakBlank) };
+    let (lf, lsf) = (known(f.load_factor_pu), known(f.loss_factor_pu));
+    if let (Some(lf), Some(lsf)) = (lf, lsf)
+        && factors::check(lf, lsf).is_err()
+    {
+        return Err(LeftOut::ShapeImpossible);
+    }
+    let profile = if f.profile == u32::MAX {
+        None
+    } else {
+        Some((
+            ctx.ratios.get(f.profile as usize).ok_or(LeftOut::ProfileUnknown)?,
+            ctx.market.profiles.get(f.profile as usize).ok_or(LeftOut::ProfileUnknown)?,
+        ))
+    };
+    let (load_factor_pu, loss_factor_pu) = match (profile, lsf, lf) {
+        (Some((ratios, _)), ..) => {
+            let apart = |given: Option<f64>, of_profile: f64| {
+                given.is_some_and(|g| (g - of_profile).abs() > 0.05)
+            };
+            flags = flags.with_if(
+                apart(lf, ratios.load_factor_pu) || apart(lsf, ratios.loss_factor_pu),
+                Flags::LOADING_CONTRADICTS,
+            );
+            (Some(ratios.load_factor_pu), ratios.loss_factor_pu)
+        }
+        (None, Some(lsf), lf) => (lf, lsf),
+        (None, None, Some(lf)) => {
+            flags = flags.with(Flags::LOSS_FACTOR_ESTIMATED);
+            (Some(lf), factors::loss_factor(w, lf, a.loss_factor_weight_pu))
+        }
+        (None, None, None) => return Err(LeftOut::ShapeBlank),
+    };
+    let constant = &ctx.market.constant;
+    let load = profile.map_or(constant, |(_, weights)| weights);
+    let responsibility =
+        known(f.responsibility_pu).or(load.responsibility_pu).or(a.responsibility_pu);
+    let energised_hours = known(f.energised_hours).unwrap_or(a.energised_hours);
+    let year_made = known(f.year_made);
+    flags = flags
+        .with_if(profile.is_none() && ctx.market.series, Flags::PRICE_NOT_WEIGHTED)
+        .with_if(peak_kva > f.rated_kva, Flags::OVERLOADED)
+        .with_if(year_made.is_none() && a.failure.is_some(), Flags::YEAR_MADE_BLANK)
+        .with_if(
+            responsibility.is_none() && a.demand_charge_per_kw_year > 0.0,
+            Flags::RESPONSIBILITY_DEFAULT,
+        );
+    let duty = Duty {
+        peak_kva,
+        load_growth_pu: known(f.load_growth_pct).map_or(a.load_growth, |pct| pct / 100.0),
+        load_factor_pu,
+        loss_factor_pu,
+        energised_hours,
+        auxiliary_hours: known(f.auxiliary_hours).or(a.auxiliary_hours).unwrap_or(energised_hours),
+        power_factor: known(f.power_factor),
+        responsibility_pu: responsibility.unwrap_or(1.0),
+        no_load_price_per_kwh: constant.price_per_kwh,
+        load_price_per_kwh: load.price_per_kwh,
+        no_load_co2_kg_per_kwh: constant.co2_kg_per_kwh,
+        load_co2_kg_per_kwh: load.co2_kg_per_kwh,
+    };
+    Ok(Place {
+        losses,
+        duty,
+        year_made,
+        failure_cost: known(f.failure_cost).unwrap_or(a.failure_cost)
+            + a.failure_cost_per_customer * known(f.customers).unwrap_or(0.0),
+        removal_less_scrap: known(f.removal_cost).unwrap_or(a.removal_cost)
+            - known(f.scrap_value).unwrap_or(a.scrap_value),
+        flags,
+    })
+}

@@ -1,0 +1,343 @@
+//! How far an input must move, all others held, before another bid becomes the cheapest to own.
+//!
+//! Closed form where the owning cost is linear in the input or in its square; the discount rate by a search
+//! from today's rate outward (see [`DISCOUNT_RATES`]). Moves are in the unit of the input.
+
+use super::factors::{BasisForFactors, Computed, of_lot};
+use super::map::{Point, least};
+use super::{Plane, Rates};
+use crate::engine::Refusal;
+use crate::engine::columns::Lot;
+use crate::engine::economics::loss_factors::LossFactors;
+use crate::engine::working::Silent;
+
+/// Where the winner changes on one side of today's value.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Move {
+    /// How far the input moves, not negative.
+    pub by: f64,
+    /// Its value there.
+    pub to: f64,
+    /// The bid that wins from there on.
+    pub bid: usize,
+}
+
+/// How far one input must move.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Change {
+    /// Name of the input.
+    pub quantity: &'static str,
+    /// Today's value.
+    pub base: f64,
+    /// Downwards; none where the winner never changes.
+    pub down: Option<Move>,
+    /// Upwards; none where the winner never changes.
+    pub up: Option<Move>,
+}
+
+/// The bids that compete, the winner among them, and today's factors.
+#[derive(Clone, Copy, Debug)]
+pub struct Field<'a> {
+    /// The bids.
+    pub planes: &'a [Plane],
+    /// Index of the winner.
+    pub winner: usize,
+    /// The factors.
+    pub factors: LossFactors,
+}
+
+/// Where today's winner stands at other factors.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct FieldStanding {
+    /// Its owning cost.
+    pub owning_cost: f64,
+    /// How far the best rival lies above it (below: negative); none without rivals.
+    pub lead: Option<f64>,
+    /// The cheapest to own; today's winner where the best rival is only as cheap.
+    pub cheapest: usize,
+}
+
+impl Field<'_> {
+    /// Where today's winner stands at other factors.
+    pub fn standing(&self, factors: &LossFactors) -> FieldStanding {
+        let best = self.leads(factors).reduce(|a, b| if b.1 < a.1 { b } else { a });
+        FieldStanding {
+            owning_cost: self.planes[self.winner].at(factors),
+            lead: best.map(|(_, lead)| lead),
+            cheapest: best.filter(|(_, lead)| *lead < 0.0).map_or(self.winner, |(j, _)| j),
+        }
+    }
+
+    /// How far each rival lies above the winner.
+    fn leads(&self, factors: &LossFactors) -> impl Iterator<Item = (usize, f64)> {
+        let winner = self.planes[self.winner].at(factors);
+        let others = self.planes.iter().enumerate().filter(|&(j, _)| j != self.winner);
+        others.map(move |(j, plane)| (j, plane.at(factors) - winner))
+    }
+
+    /// The change of an input in which each rival's lead is linear; `slope` is that of a rival's lead.
+    fn linear(
+        &self,
+        quantity: &'static str,
+        base: f64,
+        least_value: f64,
+        slope: impl Fn(&Plane, &Plane) -> f64,
+    ) -> Change {
+        let mut change = Change { quantity, base, down: None, up: None };
+        let nearer = |side: &mut Option<Move>, by: f64, to: f64, bid: usize| {
+            if side.is_none_or(|other| by < other.by) {
+                *side = Some(Move { by, to, bid });
+            }
+        };
+        for (j, lead) in self.leads(&self.factors) {
+            let slope = slope(&self.planes[j], &self.planes[self.winner]);
+            // A tie that the order has broken can leave a lead below zero by rounding.
+            let by = lead.max(0.0) / slope.abs();
+            if slope < 0.0 && by.is_finite() {
+                nearer(&mut change.up, by, base + by, j);
+            } else if slope > 0.0 && by.is_finite() && base - by >= least_value {
+                nearer(&mut change.down, by, base - by, j);
+            }
+        }
+        change
+    }
+
+    /// A, B and A_aux.
+    pub fn of_factors(&self) -> [Change; 3] {
+        let f = &self.factors;
+        [
+            self.linear("factor_a_per_kw", f.factor_a_per_kw, 0.0, |rival, winner| {
+                rival.no_load_kw - winner.no_load_kw
+            }),
+            self.linear("factor_b_per_kw", f.factor_b_per_kw, 0.0, |rival, winner| {
+                rival.load_kw - winner.load_kw
+            }),
+            self.linear("factor_aux_per_kw", f.factor_aux_per_kw, 0.0, |rival, winner| {
+                rival.auxiliary_kw - winner.auxiliary_kw
+            }),
+        ]
+    }
+
+    /// What the winner itself quotes: price, no-load and load loss (W, at its rating). `own` are its factors.
+    pub fn of_winner(
+        &self,
+        price: f64,
+        no_load_loss_w: f64,
+        load_loss_w: f64,
+        own: &LossFactors,
+    ) -> [Change; 3] {
+        let (a, b) = (own.factor_a_per_kw, own.factor_b_per_kw);
+        [
+            self.linear("price", price, 0.0, |_, _| -1.0),
+            self.linear("no_load_loss_w", no_load_loss_w, 0.0, |_, _| -a / 1000.0),
+            self.linear("load_loss_w", load_loss_w, 0.0, |_, _| -b / 1000.0),
+        ]
+    }
+
+    /// What the factors are computed from: discount rate, mean energy price, and the load where B is computed.
+    ///
+    /// # Errors
+    /// The factors cannot be computed.
+    pub fn of_basis(
+        &self,
+        lot: &Lot,
+        rates: &Rates,
+        basis: &BasisForFactors,
+    ) -> Result<Vec<Change>, Refusal> {
+        let mut changes =
+            vec![discount_rate(self, lot, rates, basis)?, energy_price(self, lot, rates, basis)?];
+        if let (true, Some(peak)) = (Computed::by(lot).b, lot.peak_pu) {
+            changes.push(load(self, peak, lot, rates, basis)?);
+        }
+        Ok(changes)
+    }
+}
+
+/// The factors are linear in the energy price, in both methods.
+fn energy_price(
+    field: &Field,
+    lot: &Lot,
+    rates: &Rates,
+    basis: &BasisForFactors,
+) -> Result<Change, Refusal> {
+    let mut market = basis.market.clone();
+    let mut at = |price: f64| {
+        market.constant.price_per_kwh = price;
+        let basis = BasisForFactors { market: &market, ..*basis };
+        of_lot(&mut Silent, lot, rates, Some(&basis)).map(|(factors, _)| factors)
+    };
+    let (free, one) = (at(0.0)?, at(1.0)?);
+    let a = one.factor_a_per_kw - free.factor_a_per_kw;
+    let b = one.factor_b_per_kw - free.factor_b_per_kw;
+    let aux = one.factor_aux_per_kw - free.factor_aux_per_kw;
+    let base = basis.market.constant.price_per_kwh;
+    Ok(field.linear("energy_price_per_kwh", base, 0.0, |rival, winner| {
+        a * (rival.no_load_kw - winner.no_load_kw)
+            + b * (rival.load_kw - winner.load_kw)
+            + aux * (rival.auxiliary_kw - winner.auxiliary_kw)
+    }))
+}
+
+/// B is proportional to the square of the load, in both methods; A and A_aux do not depend on it.
+fn load(
+    field: &Field,
+    peak_pu: f64,
+    lot: &Lot,
+    rates: &Rates,
+    basis: &BasisForFactors,
+) -> Result<Change, Refusal> {
+    let full = Lot { peak_pu: Some(1.0), ..lot.clone() };
+    let b_at_rated = of_lot(&mut Silent, &full, rates, Some(basis))?.0.factor_b_per_kw;
+    let [_, factor_b, _] = field.of_factors();
+    let moved = |b: Move| {
+        let to = (b.to / b_at_rated).sqrt();
+        to.is_finite().then(|| Move { by: (to - peak_pu).abs(), to, bid: b.bid })
+    };
+    Ok(Change {
+        quantity: "peak_pu",
+        base: peak_pu,
+        down: factor_b.down.and_then(moved),
+        up: factor_b.up.and_then(moved),
+    })
+}
+
+/// Discount rates between which a change of the winner is looked for, as fractions: 0 and 100 %.
+pub const DISCOUNT_RATES: [f64; 2] = [0.0, 1.0];
+/// How closely the discount rate at which the winner changes is found, in percentage points.
+pub const DISCOUNT_RATE_TOLERANCE_PCT: f64 = 1e-9;
+/// Steps of the search on each side; they widen with the distance from today's rate.
+const STEPS: u32 = 64;
+
+/// The discount rate at which the winner changes, looked for between 0 and 100 % in 64 steps on each side and
+/// bisected to 1e-9 percentage points.
+fn discount_rate(
+    field: &Field,
+    lot: &Lot,
+    rates: &Rates,
+    basis: &BasisForFactors,
+) -> Result<Change, Refusal> {
+    let today = basis.assumptions.rate;
+    let mut assumptions = basis.assumptions.clone();
+    let mut ahead = |rate: f64| -> Result<Option<usize>, Refusal> {
+        assumptions.rate = rate;
+        let basis = BasisForFactors { assumptions: &assumptions, ..*basis };
+        let factors = of_lot(&mut Silent, lot, rates, Some(&basis))?.0;
+        let standing = field.standing(&factors);
+        let equal = 1e-12 * standing.owning_cost.abs();
+        Ok(standing.lead.filter(|lead| *lead < -equal).map(|_| standing.cheapest))
+    };
+    let mut side = |end: f64| -> Result<Option<Move>, Refusal> {
+        let mut kept = today;
+        for step in 1..=STEPS {
+            let part = f64::from(step) / f64::from(STEPS);
+            let rate = today + (end - today) * part * part;
+            if let Some(mut bid) = ahead(rate)? {
+                let mut lost = rate;
+                while (lost - kept).abs() > 0.5 * DISCOUNT_RATE_TOLERANCE_PCT / 100.0 {
+                    let middle = 0.5 * (kept + lost);
+                    if let Some(winner) = ahead(middle)? {
+                        (lost, bid) = (middle, winner);
+                    } else {
+                        kept = middle;
+                    }
+                }
+                let by = 100.0 * (lost - today).abs();
+                return Ok(Some(Move { by, to: 100.0 * lost, bid }));
+            }
+            kept = rate;
+        }
+        Ok(None)
+    };
+    let [lowest, highest] = DISCOUNT_RATES;
+    Ok(Change {
+        quantity: "discount_rate_pct",
+        base: 100.0 * today,
+        down: if today > lowest { side(lowest)? } else { None },
+        up: if today < highest { side(highest)? } else { None },
+    })
+}
+
+/// The nearest pair (A, B) at which another bid is as cheap to own.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct NearestBorder {
+    /// Where it lies.
+    pub at: Point,
+    /// How far from today's pair, √(ΔA² + ΔB²), in money per kW.
+    pub distance_per_kw: f64,
+    /// The bid beyond it.
+    pub bid: usize,
+}
+
+/// The point of the quadrant A, B ≥ 0 nearest to today's at which another bid is as cheap as the winner.
+pub fn nearest_border(field: &Field) -> Option<NearestBorder> {
+    let today = [field.factors.factor_a_per_kw, field.factors.factor_b_per_kw];
+    let winner = field.planes[field.winner];
+    let mut found: Vec<NearestBorder> = Vec::new();
+    for (bid, lead) in field.leads(&field.factors) {
+        let rival = field.planes[bid];
+        let (p, q) = (rival.no_load_kw - winner.no_load_kw, rival.load_kw - winner.load_kw);
+        let lead = lead.max(0.0);
+        // The foot of the line lead = 0, and where the line meets the axes.
+        let step = lead / (p * p + q * q);
+        let foot = [today[0] - step * p, today[1] - step * q];
+        let constant = lead - p * today[0] - q * today[1];
+        for at in [foot, [0.0, -constant / q], [-constant / p, 0.0]] {
+            if at.iter().all(|x| x.is_finite() && *x >= 0.0) {
+                let distance_per_kw = (at[0] - today[0]).hypot(at[1] - today[1]);
+                found.push(NearestBorder { at, distance_per_kw, bid });
+            }
+        }
+    }
+    least(0..found.len(), |i| found[i].distance_per_kw).map(|i| found[i])
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn plane(fixed: f64, no_load_kw: f64, load_kw: f64) -> Plane {
+        Plane { fixed, no_load_kw, load_kw, auxiliary_kw: 0.0 }
+    }
+    fn field(planes: &[Plane], winner: usize, a: f64, b: f64) -> Field<'_> {
+        let factors =
+            LossFactors { factor_a_per_kw: a, factor_b_per_kw: b, factor_aux_per_kw: 0.0 };
+        Field { planes, winner, factors }
+    }
+
+    /// By hand: 1 wins from A = 1000 on; 2 needs B above 3000 − A/2.
+    #[test]
+    fn moves_end_at_the_borders() {
+        let planes = [plane(5000.0, 3.0, 4.0), plane(6000.0, 2.0, 4.0), plane(9000.0, 2.5, 3.0)];
+        let field = field(&planes, 1, 2000.0, 500.0);
+        let [a, b, aux] = field.of_factors();
+        assert_eq!(a.down, Some(Move { by: 1000.0, to: 1000.0, bid: 0 }));
+        assert_eq!(a.up, None, "bid 2 has more iron than the winner");
+        assert_eq!(b.up, Some(Move { by: 3500.0, to: 4000.0, bid: 2 }));
+        assert_eq!((b.down, aux.down, aux.up), (None, None, None));
+        let [price, iron, copper] = field.of_winner(6000.0, 2000.0, 4000.0, &field.factors);
+        assert_eq!(price.up, Some(Move { by: 1000.0, to: 7000.0, bid: 0 }));
+        assert_eq!(iron.up.map(|up| up.by), Some(500.0));
+        assert_eq!(copper.up.map(|up| up.by), Some(2000.0));
+        assert_eq!((price.down, iron.down, copper.down), (None, None, None));
+        let border = nearest_border(&field).expect("has rivals");
+        assert_eq!((border.at, border.distance_per_kw, border.bid), ([1000.0, 500.0], 1000.0, 0));
+    }
+
+    /// The foot of the border line lies outside the quadrant: the border is met on the axis.
+    #[test]
+    fn nearest_border_stays_in_the_quadrant() {
+        let planes = [plane(0.0, 1.0, 1.0), plane(100.0, 1.0 - 0.5, 1.0 + 0.5)];
+        // lead = 100 − 0.5 A + 0.5 B; today (10, 5): the foot would have B below zero.
+        let border = nearest_border(&field(&planes, 0, 10.0, 5.0)).expect("one rival");
+        assert_eq!(border.at, [200.0, 0.0]);
+        assert_eq!(nearest_border(&field(&planes[..1], 0, 1.0, 1.0)), None);
+    }
+
+    #[test]
+    fn a_tie_is_a_border() {
+        let planes = [plane(10.0, 1.0, 1.0), plane(5.0, 2.0, 1.0)];
+        let [a, ..] = field(&planes, 0, 5.0, 1.0).of_factors();
+        assert_eq!(a.down.map(|down| down.by), Some(0.0));
+        assert_eq!(a.up, None);
+    }
+}

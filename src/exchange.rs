@@ -1,0 +1,25 @@
+//! Files in: delimited text, workbooks, TOML sheets. What is wrong in them is said by line, column and value.
+//!
+//! [`Source`] is where bytes come from, bounded; [`Rows`] are the rows of a text file or a workbook alike;
+//! [`Layout`] fits their header to the column facts and turns cells into values; [`series`] reads years of
+//! equal steps, [`sheets`] reads basis and tender files. Nothing here writes to a book or looks into one.
+
+mod delimited;
+mod layout;
+mod number;
+pub mod problem;
+mod recognise;
+pub mod rejects;
+mod rows;
+pub mod rules;
+pub mod series;
+pub mod sheets;
+mod source;
+mod workbook;
+
+pub use layout::{Fault, Layout, holds_numbers};
+pub use number::Decimals;
+pub use problem::{Problem, Problems};
+pub use recognise::{Decimal, Delimiter, Encoding, Hints, Recognised};
+pub use rows::{ReadError, Row, Rows};
+pub use source::{Source, SourceError};

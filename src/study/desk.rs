@@ -1,0 +1,134 @@
+//! What lies ready for a question: a fleet in columns, offers, profiles, prices and a basis.
+
+use std::sync::Arc;
+
+use crate::book::Book;
+use crate::engine::columns::{BasisSheet, Offer, Unit};
+use crate::engine::decision::fleet::FleetColumns;
+use crate::engine::decision::{Candidate, Context, UnitFacts};
+use crate::engine::economics::Assumptions;
+use crate::engine::economics::assumptions::EnergyPrice;
+use crate::engine::flags::Flags;
+use crate::engine::loading::{Market, PriceSeries, Profile, Ratios};
+use crate::study::StudyError;
+
+/// Everything a question needs, in memory. What is large is shared: a clone with another basis is cheap.
+#[derive(Clone, Debug)]
+pub struct Desk {
+    /// The fleet in columns.
+    pub fleet: Arc<FleetColumns>,
+    /// The offers, in catalogue order.
+    pub offers: Arc<Vec<Offer>>,
+    /// The offers ready to compute with, in the same order.
+    pub candidates: Vec<Candidate>,
+    /// The load profiles.
+    pub profiles: Arc<Vec<Profile>>,
+    /// Their ratios.
+    pub ratios: Vec<Ratios>,
+    /// The price series of the book that the basis may name.
+    pub series: Arc<Vec<PriceSeries>>,
+    /// The basis.
+    pub sheet: BasisSheet,
+}
+
+impl Desk {
+    /// Reads everything a question needs from a book; `basis` names one, else the only or current one counts.
+    ///
+    /// # Errors
+    /// The book fails or does not know the basis or its price series.
+    pub fn read(book: &Book, basis: Option<&str>) -> Result<Self, StudyError> {
+        let sheet = book.basis(basis)?;
+        let series = Self::series_of(book, &sheet)?;
+        Self::new(book.fleet()?, book.offers()?, book.profiles()?, series, sheet)
+    }
+
+    /// Reads a basis with its profiles and prices, without the fleet and the offers: enough for loss factors.
+    ///
+    /// # Errors
+    /// As [`Desk::read`].
+    pub fn basis_only(book: &Book, basis: Option<&str>) -> Result<Self, StudyError> {
+        let sheet = book.basis(basis)?;
+        let series = Self::series_of(book, &sheet)?;
+        Self::new(FleetColumns::default(), Vec::new(), book.profiles()?, series, sheet)
+    }
+
+    fn series_of(book: &Book, sheet: &BasisSheet) -> Result<Vec<PriceSeries>, StudyError> {
+        Ok(match &sheet.basis.price_series {
+            Some(name) => vec![book.price_series(name)?],
+            None => Vec::new(),
+        })
+    }
+
+    /// Lays out what was read from a book.
+    ///
+    /// # Errors
+    /// An offer whose losses contradict each other, a profile without a peak.
+    pub fn new(
+        fleet: impl Into<Arc<FleetColumns>>,
+        offers: Vec<Offer>,
+        profiles: Vec<Profile>,
+        series: Vec<PriceSeries>,
+        sheet: BasisSheet,
+    ) -> Result<Self, StudyError> {
+        let candidates = offers.iter().map(Candidate::of_offer).collect::<Result<_, _>>()?;
+        let ratios = profiles.iter().map(Profile::ratios).collect::<Result<_, _>>()?;
+        Ok(Self {
+            fleet: fleet.into(),
+            offers: offers.into(),
+            candidates,
+            profiles: profiles.into(),
+            ratios,
+            series: series.into(),
+            sheet,
+        })
+    }
+
+    /// The same desk under another basis.
+    #[must_use]
+    pub fn with_basis(&self, sheet: BasisSheet) -> Self {
+        Self { sheet, ..self.clone() }
+    }
+
+    /// The basis resolved, with its prices: what the engine computes with.
+    ///
+    /// # Errors
+    /// What the engine refuses of the basis; a price series that is not in the book.
+    pub fn context(&self) -> Result<Context, StudyError> {
+        let a = Assumptions::resolve(&self.sheet.basis)?;
+        let (market, flags) = match &a.energy_price {
+            EnergyPrice::Flat(price) => {
+                (Market::flat(*price, a.carbon_kg_per_kwh, self.profiles.len()), Flags::NONE)
+            }
+            EnergyPrice::Series(name) => {
+                let series = self.series.iter().find(|s| s.name == *name).ok_or_else(|| {
+                    let known: Vec<&str> = self.series.iter().map(|s| s.name.as_str()).collect();
+                    StudyError::unknown("price series", name, "the book", known)
+                })?;
+                let both =
+                    series.co2_kg_per_kwh.is_some() && self.sheet.basis.carbon_kg_per_kwh.is_some();
+                let market = Market::of_series(series, &self.profiles, a.carbon_kg_per_kwh)?;
+                (market, Flags::NONE.with_if(both, Flags::CARBON_SERIES))
+            }
+        };
+        Ok(Context { assumptions: a, market, ratios: self.ratios.clone(), flags })
+    }
+
+    /// The name of an offer by its index.
+    pub fn offer_name(&self, candidate: usize) -> &str {
+        self.offers.get(candidate).map_or("", |offer| &offer.offer)
+    }
+
+    /// The facts of a unit record against the profiles on the desk.
+    pub fn facts(&self, unit: &Unit) -> UnitFacts {
+        let profile = unit
+            .profile
+            .as_deref()
+            .and_then(|name| self.profiles.iter().position(|p| p.profile == name));
+        UnitFacts::of_unit(unit, profile)
+    }
+
+    /// Index of a unit in the fleet by its identifier.
+    pub fn find(&self, unit: &str) -> Option<usize> {
+        (0..self.fleet.len()).find(|&i| self.fleet.unit.get(i) == unit)
+    }
+}

@@ -1,0 +1,45 @@
+//! The working of a figure as results carry it: steps with formula, numbers put in, value, unit and source.
+
+use serde::Serialize;
+
+use crate::engine::working::Step;
+
+/// One step of a working.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct StepRow {
+    /// What it gives.
+    pub name: String,
+    /// Symbol and formula.
+    pub formula: String,
+    /// The formula with the numbers put in.
+    pub substituted: String,
+    /// The value in full precision.
+    pub value: f64,
+    /// Unit of the value.
+    pub unit: &'static str,
+    /// Where the formula is published.
+    pub source: &'static str,
+    /// The steps that gave the numbers put in.
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    pub steps: Vec<StepRow>,
+}
+
+impl StepRow {
+    /// The rows of a tree of steps.
+    pub fn tree(steps: &[Step]) -> Vec<Self> {
+        let row = |step: &Step| Self {
+            name: if step.of.is_empty() {
+                step.formula.name.to_owned()
+            } else {
+                format!("{}: {}", step.formula.name, step.of)
+            },
+            formula: format!("{} = {}", step.formula.symbol, step.formula.formula),
+            substituted: step.substituted.clone(),
+            value: step.value,
+            unit: step.formula.unit,
+            source: step.formula.source,
+            steps: Self::tree(&step.steps),
+        };
+        steps.iter().map(row).collect()
+    }
+}

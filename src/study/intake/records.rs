@@ -1,0 +1,263 @@
+//! Files of records: units, test reports, offers, bids, measured units. Row by row, never the whole file.
+
+use std::collections::{HashMap, HashSet};
+
+use super::{Intake, IntakeError, Report, What};
+use crate::book::tables::{BIDS, LOTS, MEASURED, OFFERS, TENDERS, TEST_REPORTS, UNITS};
+use crate::book::{Book, Change, Table, Tally};
+use crate::engine::columns::{Value, nearest};
+use crate::exchange::rejects::Rejects;
+use crate::exchange::rules::{self, Rule, Rules};
+use crate::exchange::{Fault, Layout, Row, Rows, Source, holds_numbers};
+
+/// Rows between two looks at whether the work is still wanted.
+const LOOK: u64 = 1024;
+
+impl Intake<'_> {
+    pub(super) fn records(
+        mut self,
+        book: &mut Book,
+        source: Source,
+    ) -> Result<Report, IntakeError> {
+        let (table, rules) = shape(self.what);
+        let size = source.size();
+        let numeric = holds_numbers(table.columns, &self.options.map);
+        let opened = Rows::open(source, self.options.hints, &numeric);
+        drop(numeric);
+        let mut rows = match opened {
+            Ok(rows) => rows,
+            Err(error) => {
+                self.unfit(error)?;
+                return Ok(self.report(Tally::default()));
+            }
+        };
+        self.recognised = Some(rows.recognised());
+        let (map, ignore_unknown) = (&self.options.map, self.options.ignore_unknown);
+        let layout =
+            Layout::fit(rows.header(), table.columns, map, ignore_unknown, &mut self.problems);
+        if !self.problems.is_empty() {
+            self.is_unfit = true;
+            return Ok(self.report(Tally::default()));
+        }
+        let mut rejects = match self.options.rejects.take() {
+            Some(to) => Some(Rejects::begin(to, layout.names()).map_err(IntakeError::Rejects)?),
+            None => None,
+        };
+        self.watch.expect(size.and_then(|size| usize::try_from(size).ok()).unwrap_or(0));
+
+        let change = book.change(self.actor, Some(&self.file))?;
+        let mut upsert = change.upsert(table, None, &layout.present(), self.options.clear_blank)?;
+        let rules = Rules::of(rules, table.columns);
+        let mut ties = Ties::of(self.what, table, &change)?;
+        let mut twice = Twice::of(table);
+        let (mut row, mut values, mut faults) = (Row::default(), Vec::new(), Vec::new());
+        loop {
+            match rows.next(&mut row) {
+                Ok(true) => {}
+                Ok(false) => break,
+                Err(error) => {
+                    self.unfit(error)?;
+                    break;
+                }
+            }
+            self.rows += 1;
+            if self.rows.is_multiple_of(LOOK) {
+                self.look(&rows)?;
+            }
+            faults.clear();
+            layout.values(&row, rows.decimals(), &mut values, &mut faults);
+            twice.check(&layout, &row, &mut faults);
+            if faults.is_empty() {
+                let known = upsert.look_up(&mut values)?;
+                let fault = |place: usize, why: String| {
+                    let cell = layout.cell(&row, place);
+                    let value =
+                        if cell.is_empty() { shown(&values[place]) } else { cell.to_owned() };
+                    Fault { column: table.columns[place].name, value, why }
+                };
+                rules.judge(&values, |place, why| faults.push(fault(place, why)));
+                ties.judge(&values, |place, why| faults.push(fault(place, why)))?;
+                if faults.is_empty() {
+                    upsert.put(known, &values)?;
+                }
+            }
+            if !faults.is_empty() {
+                self.bad += 1;
+                for fault in &faults {
+                    self.problems.add(row.line, fault.column, &fault.value, fault.why.as_str());
+                }
+                if let Some(rejects) = &mut rejects {
+                    rejects
+                        .add(row.cells(), row.line, &reasons(&faults))
+                        .map_err(IntakeError::Rejects)?;
+                }
+            }
+        }
+        self.look(&rows)?;
+        self.recognised = Some(rows.recognised());
+        if let Some(rejects) = rejects {
+            rejects.finish().map_err(IntakeError::Rejects)?;
+        }
+        drop(upsert);
+        drop(ties);
+        let tally = change.tally();
+        if self.stays() {
+            change.commit()?;
+        }
+        Ok(self.report(tally))
+    }
+
+    /// Says how far it is, and stops where that is asked for.
+    fn look(&self, rows: &Rows) -> Result<(), IntakeError> {
+        if self.watch.is_stopped() {
+            return Err(IntakeError::Stopped);
+        }
+        let bytes = rows.bytes().and_then(|bytes| usize::try_from(bytes).ok()).unwrap_or(0);
+        let (done, _) = self.watch.progress();
+        self.watch.advance(bytes.saturating_sub(done));
+        Ok(())
+    }
+}
+
+fn shape(what: What) -> (&'static Table, &'static [Rule]) {
+    match what {
+        What::Tests => (&TEST_REPORTS, rules::NONE),
+        What::Offers => (&OFFERS, rules::OFFERS),
+        What::Bids => (&BIDS, rules::BIDS),
+        What::Measured => (&MEASURED, rules::NONE),
+        _ => (&UNITS, rules::UNITS),
+    }
+}
+
+fn reasons(faults: &[Fault]) -> String {
+    let one = |fault: &Fault| format!("{} {}: {}", fault.column, fault.value, fault.why);
+    faults.iter().map(one).collect::<Vec<_>>().join("; ")
+}
+
+fn shown(value: &Value) -> String {
+    match value {
+        Value::Blank => String::new(),
+        Value::Text(text) => text.clone(),
+        Value::Integer(number) => number.to_string(),
+        Value::Real(number) => number.to_string(),
+        Value::Money(money) => money.to_string(),
+    }
+}
+
+/// Notices a key that stands twice in one file.
+struct Twice {
+    key: Vec<usize>,
+    column: &'static str,
+    lines: HashMap<String, u64>,
+}
+
+impl Twice {
+    fn of(table: &Table) -> Self {
+        let key = table.key.iter().filter_map(|name| table.position(name)).collect();
+        Self { key, column: table.key[table.key.len() - 1], lines: HashMap::new() }
+    }
+
+    fn check(&mut self, layout: &Layout, row: &Row, faults: &mut Vec<Fault>) {
+        let mut cells = self.key.iter().map(|place| layout.cell(row, *place));
+        let mut key = cells.next().unwrap_or_default().to_owned();
+        for cell in cells {
+            key.push('\u{1f}');
+            key.push_str(cell);
+        }
+        if key.is_empty() {
+            return;
+        }
+        match self.lines.entry(key) {
+            std::collections::hash_map::Entry::Vacant(free) => {
+                free.insert(row.line);
+            }
+            std::collections::hash_map::Entry::Occupied(taken) => faults.push(Fault {
+                column: self.column,
+                value: taken.key().replace('\u{1f}', "/"),
+                why: format!("stands on line {} already", taken.get()),
+            }),
+        }
+    }
+}
+
+/// What a record names and the book must know.
+struct Ties<'c> {
+    change: &'c Change<'c>,
+    what: What,
+    profiles: HashSet<String>,
+    /// Places of the naming columns.
+    places: Vec<usize>,
+}
+
+impl<'c> Ties<'c> {
+    fn of(what: What, table: &Table, change: &'c Change<'c>) -> Result<Self, IntakeError> {
+        let columns: &[&str] = match what {
+            What::Units => &["profile"],
+            What::Tests => &["unit"],
+            What::Bids => &["tender", "lot", "currency"],
+            What::Measured => &["tender", "lot", "bid"],
+            _ => &[],
+        };
+        let profiles = match what {
+            What::Units => change.profile_names()?.into_iter().collect(),
+            _ => HashSet::new(),
+        };
+        let places = columns.iter().filter_map(|name| table.position(name)).collect();
+        Ok(Self { change, what, profiles, places })
+    }
+
+    fn judge(
+        &mut self,
+        values: &[Value],
+        mut broken: impl FnMut(usize, String),
+    ) -> Result<(), IntakeError> {
+        let text = |at: usize| match self.places.get(at).map(|place| &values[*place]) {
+            Some(Value::Text(text)) => Some(text.as_str()),
+            _ => None,
+        };
+        match self.what {
+            What::Units => {
+                if let Some(profile) = text(0).filter(|name| !self.profiles.contains(*name)) {
+                    let known = self.profiles.iter().map(String::as_str).collect();
+                    broken(self.places[0], unknown("profile", profile, known));
+                }
+            }
+            What::Tests => {
+                let unit = text(0).unwrap_or_default();
+                if !self.change.has(&UNITS, &[unit])? {
+                    broken(self.places[0], unknown("unit", unit, Vec::new()));
+                }
+            }
+            What::Bids | What::Measured => {
+                let (tender, lot) = (text(0).unwrap_or_default(), text(1).unwrap_or_default());
+                if !self.change.has(&TENDERS, &[tender])? {
+                    let known = self.change.names(&TENDERS)?;
+                    let known = known.iter().map(String::as_str).collect();
+                    broken(self.places[0], unknown("tender", tender, known));
+                } else if !self.change.has(&LOTS, &[tender, lot])? {
+                    broken(self.places[1], format!("is no lot of tender {tender} in the book"));
+                } else if self.what == What::Bids {
+                    if let Some(currency) = text(2)
+                        && !self.change.knows_currency(tender, currency)?
+                    {
+                        let why = format!(
+                            "has no rate in tender {tender}; add it below [rates] and import the tender again"
+                        );
+                        broken(self.places[2], why);
+                    }
+                } else if !self.change.has(&BIDS, &[tender, lot, text(2).unwrap_or_default()])? {
+                    broken(self.places[2], format!("is no bid for {tender}/{lot} in the book"));
+                }
+            }
+            _ => {}
+        }
+        Ok(())
+    }
+}
+
+fn unknown(kind: &str, name: &str, known: Vec<&str>) -> String {
+    match nearest(name, known) {
+        Some(near) => format!("is no {kind} of the book; did you mean {near}?"),
+        None => format!("is no {kind} of the book; import it first"),
+    }
+}

@@ -1,0 +1,78 @@
+//! Basis and tender files. A basis that the engine would refuse is not let in.
+
+use super::{Intake, IntakeError, Report};
+use crate::book::{Book, BookError, Change, Tally};
+use crate::engine::columns::TenderSheet;
+use crate::engine::economics::Assumptions;
+use crate::exchange::sheets::{self, Sheet};
+use crate::exchange::{Problems, Recognised, Source};
+
+impl Intake<'_> {
+    pub(super) fn basis(mut self, book: &mut Book, source: Source) -> Result<Report, IntakeError> {
+        let Some(sheet) = self.sheet(source, sheets::basis)? else {
+            return Ok(self.report(Tally::default()));
+        };
+        self.rows = 1 + (sheet.content.ranges.len() + sheet.content.budgets.len()) as u64;
+        let basis = &sheet.content.basis;
+        if let Err(refusal) = Assumptions::resolve(basis) {
+            let line = sheet.line(refusal.quantity);
+            self.problems.add(line, refusal.quantity, &refusal.value, refusal.why);
+        }
+        let change = book.change(self.actor, Some(&self.file))?;
+        let saved = change.save_basis(&sheet.content);
+        self.settle(change, saved, &sheet)
+    }
+
+    pub(super) fn tender(mut self, book: &mut Book, source: Source) -> Result<Report, IntakeError> {
+        let Some(sheet) = self.sheet(source, sheets::tender)? else {
+            return Ok(self.report(Tally::default()));
+        };
+        let TenderSheet { rates, lots, .. } = &sheet.content;
+        self.rows = 1 + (rates.len() + lots.len()) as u64;
+        let change = book.change(self.actor, Some(&self.file))?;
+        let saved = change.save_tender(&sheet.content);
+        self.settle(change, saved, &sheet)
+    }
+
+    fn sheet<T>(
+        &mut self,
+        source: Source,
+        read: fn(&str, &mut Problems) -> Option<Sheet<T>>,
+    ) -> Result<Option<Sheet<T>>, IntakeError> {
+        self.recognised = Some(Recognised::Toml);
+        // A sheet is taken as a whole: there is no bad row to leave.
+        self.is_unfit = true;
+        match sheets::text(source) {
+            Ok(text) => Ok(read(&text, &mut self.problems)),
+            Err(error) => {
+                self.unfit(error)?;
+                Ok(None)
+            }
+        }
+    }
+
+    /// Commits what was saved, or says why it cannot be.
+    fn settle<T>(
+        mut self,
+        change: Change<'_>,
+        saved: Result<(), BookError>,
+        sheet: &Sheet<T>,
+    ) -> Result<Report, IntakeError> {
+        match saved {
+            Ok(()) => {}
+            Err(error @ BookError::Unknown { kind: "price series", .. }) => {
+                let line = sheet.line("price_series");
+                self.problems.add(line, "price_series", "", error.to_string());
+            }
+            Err(error @ BookError::InUse { .. }) => {
+                self.problems.add(1, "lot", "", error.to_string());
+            }
+            Err(error) => return Err(error.into()),
+        }
+        let tally = change.tally();
+        if self.stays() {
+            change.commit()?;
+        }
+        Ok(self.report(tally))
+    }
+}

@@ -1,0 +1,308 @@
+//! Which units to replace, when and with what: the fleet ranked by what the best choice saves.
+
+use rayon::prelude::*;
+use serde::ser::{SerializeSeq, SerializeStruct};
+use serde::{Serialize, Serializer};
+
+use crate::engine::decision::fleet::{CHUNK, Kernel, Outcome};
+use crate::engine::decision::keep_or_replace::payback_years;
+use crate::engine::decision::place::resolve;
+use crate::engine::decision::{Context, LeftOut};
+use crate::engine::transformer::losses::annual_energy;
+use crate::engine::working::Silent;
+use crate::study::{Desk, StudyError, Watch};
+
+/// By what the ranking is ordered.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub enum By {
+    /// What the best choice saves in present value, greatest first.
+    #[default]
+    Saving,
+    /// What a year's delay costs, greatest first.
+    Waiting,
+    /// What keeping costs, greatest first.
+    Keep,
+    /// Rating, greatest first.
+    Rating,
+    /// Year of manufacture, oldest first, unknown last.
+    Made,
+    /// Identifier.
+    Unit,
+}
+
+impl By {
+    /// All orders with their words.
+    pub const WORDS: [(Self, &str); 6] = [
+        (Self::Saving, "saving"),
+        (Self::Waiting, "waiting"),
+        (Self::Keep, "keep"),
+        (Self::Rating, "rating"),
+        (Self::Made, "made"),
+        (Self::Unit, "unit"),
+    ];
+    /// The word of this order.
+    pub fn word(self) -> &'static str {
+        Self::WORDS.iter().find(|(by, _)| *by == self).map_or("", |(_, word)| word)
+    }
+}
+
+/// A ranked fleet: outcomes of all units, and the order.
+#[derive(Clone, Debug)]
+pub struct Ranking {
+    /// The resolved basis.
+    pub context: Context,
+    /// One outcome for each unit of the desk's fleet.
+    pub outcomes: Vec<Outcome>,
+    /// Indices of ranked units, best first; only the first of them where a top was asked for.
+    pub order: Vec<u32>,
+    /// Indices of the units left out, in book order.
+    pub left_out: Vec<u32>,
+    /// Sums over all ranked units.
+    pub totals: Totals,
+}
+
+/// Sums over all ranked units.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Serialize)]
+pub struct Totals {
+    /// Units ranked.
+    pub units: usize,
+    /// Sum of keep_pv.
+    pub keep_pv: f64,
+    /// Sum of best_pv.
+    pub best_pv: f64,
+    /// Sum of saving_pv.
+    pub saving_pv: f64,
+    /// Units of which the saving is above 0.
+    pub units_saving: usize,
+}
+
+/// A line of the ranking.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+#[expect(missing_docs, reason = "the keys of the result; `figures` says what they are")]
+pub struct RankRow<'a> {
+    pub rank: usize,
+    pub unit: &'a str,
+    pub site: Option<&'a str>,
+    pub rated_kva: f64,
+    pub year_made: Option<i64>,
+    pub peak_pu: f64,
+    pub keep_pv: f64,
+    pub now_offer: Option<&'a str>,
+    pub now_pv: Option<f64>,
+    pub best_offer: Option<&'a str>,
+    pub best_year_offset: Option<u16>,
+    pub best_year: Option<i64>,
+    pub best_pv: f64,
+    pub saving_pv: f64,
+    pub waiting_pv: f64,
+    pub payback_years: Option<f64>,
+    pub capital: Option<f64>,
+    pub energy_saved_kwh: Option<f64>,
+    pub co2_saved_kg: Option<f64>,
+    pub flags: Vec<&'static str>,
+}
+
+/// A unit that could not be ranked.
+#[derive(Clone, Copy, Debug, PartialEq, Serialize)]
+#[expect(missing_docs, reason = "the keys of the result")]
+pub struct LeftOutRow<'a> {
+    pub unit: &'a str,
+    pub why: &'static str,
+}
+
+/// Ranks the fleet of a desk. `top` keeps only the first so many in order; the totals are over all.
+///
+/// # Errors
+/// What the engine refuses of the basis; a stopped watch.
+pub fn rank(desk: &Desk, by: By, top: Option<usize>, watch: &Watch) -> Result<Ranking, StudyError> {
+    let context = desk.context()?;
+    let n = desk.fleet.len();
+    let mut outcomes = vec![Outcome::left_out(LeftOut::NoOffer); n];
+    let kernel = Kernel::new(&context, &desk.candidates, &desk.fleet)?;
+    watch.expect(n);
+    let parts: Vec<(Totals, Vec<u32>)> = outcomes
+        .par_chunks_mut(CHUNK)
+        .enumerate()
+        .map(|(chunk, out)| {
+            let from = chunk * CHUNK;
+            if !watch.is_stopped() {
+                kernel.evaluate(&desk.fleet, from..from + out.len(), out);
+                watch.advance(out.len());
+            }
+            sum_up(from, out)
+        })
+        .collect();
+    if watch.is_stopped() {
+        return Err(StudyError::Stopped);
+    }
+    let (mut totals, mut left_out) = (Totals::default(), Vec::new());
+    for (part, out) in parts {
+        totals.units += part.units;
+        totals.keep_pv += part.keep_pv;
+        totals.best_pv += part.best_pv;
+        totals.saving_pv += part.saving_pv;
+        totals.units_saving += part.units_saving;
+        left_out.extend(out);
+    }
+    let order = order(desk, &outcomes, by, top);
+    Ok(Ranking { context, outcomes, order, left_out, totals })
+}
+
+fn sum_up(from: usize, out: &[Outcome]) -> (Totals, Vec<u32>) {
+    let (mut totals, mut left_out) = (Totals::default(), Vec::new());
+    for (i, outcome) in out.iter().enumerate() {
+        if outcome.left_out.is_some() {
+            left_out.push(u32::try_from(from + i).unwrap_or(u32::MAX));
+            continue;
+        }
+        let saving = outcome.saving_pv();
+        totals.units += 1;
+        totals.keep_pv += outcome.keep_pv;
+        totals.best_pv += outcome.best_pv;
+        totals.saving_pv += saving;
+        totals.units_saving += usize::from(saving > 0.0);
+    }
+    (totals, left_out)
+}
+
+/// The ranked units in the order asked for, then by the bytes of the identifier.
+fn order(desk: &Desk, outcomes: &[Outcome], by: By, top: Option<usize>) -> Vec<u32> {
+    let figure = |i: u32| {
+        let outcome = &outcomes[i as usize];
+        match by {
+            By::Saving => outcome.saving_pv(),
+            By::Waiting => outcome.waiting_pv,
+            By::Keep => outcome.keep_pv,
+            By::Rating => desk.fleet.rated_kva[i as usize],
+            By::Made => Some(-desk.fleet.year_made[i as usize])
+                .filter(|made| !made.is_nan())
+                .unwrap_or(f64::NEG_INFINITY),
+            By::Unit => 0.0,
+        }
+    };
+    let name = |i: u32| desk.fleet.unit.get(i as usize);
+    let before = |a: &(f64, u32), b: &(f64, u32)| {
+        b.0.total_cmp(&a.0).then_with(|| name(a.1).as_bytes().cmp(name(b.1).as_bytes()))
+    };
+    let mut keyed: Vec<(f64, u32)> = (0..u32::try_from(outcomes.len()).unwrap_or(u32::MAX))
+        .filter(|&i| outcomes[i as usize].left_out.is_none())
+        .map(|i| (figure(i), i))
+        .collect();
+    if let Some(top) = top.filter(|&top| top < keyed.len()) {
+        if top > 0 {
+            keyed.select_nth_unstable_by(top - 1, before);
+        }
+        keyed.truncate(top);
+    }
+    keyed.par_sort_unstable_by(before);
+    keyed.into_iter().map(|(_, i)| i).collect()
+}
+
+impl Ranking {
+    /// Line number `place` (0 = best) of the ranking; none beyond its end.
+    pub fn row<'a>(&self, desk: &'a Desk, place: usize) -> Option<RankRow<'a>> {
+        let i = *self.order.get(place)? as usize;
+        let outcome = &self.outcomes[i];
+        let facts = desk.fleet.facts(i);
+        let resolved = resolve(&mut Silent, &facts, &self.context).ok()?;
+        let a = &self.context.assumptions;
+        let offer = |o: u32| (o != Outcome::NONE).then(|| desk.offer_name(o as usize));
+        let t = outcome.best_year_offset;
+        let candidate = (outcome.best_offer != Outcome::NONE)
+            .then(|| &desk.candidates[outcome.best_offer as usize]);
+        let saved = candidate.map(|c| {
+            let k = usize::from(t) + 1;
+            let year =
+                |losses| annual_energy(&mut Silent, losses, &resolved.duty, k, a.load_growth_years);
+            let (old, new) = (year(&resolved.losses), year(&c.losses));
+            let co2 = |e: &crate::engine::transformer::losses::Energy| {
+                (e.no_load_energy_kwh + e.auxiliary_energy_kwh)
+                    * resolved.duty.no_load_co2_kg_per_kwh
+                    + e.load_energy_kwh * resolved.duty.load_co2_kg_per_kwh
+            };
+            (old.total_kwh() - new.total_kwh(), co2(&old) - co2(&new))
+        });
+        #[expect(clippy::cast_possible_truncation, reason = "a calendar year")]
+        let year_made = (!facts.year_made.is_nan()).then_some(facts.year_made as i64);
+        Some(RankRow {
+            rank: place + 1,
+            unit: desk.fleet.unit.get(i),
+            site: desk.fleet.site(i),
+            rated_kva: facts.rated_kva,
+            year_made,
+            peak_pu: facts.peak_kva / facts.rated_kva,
+            keep_pv: outcome.keep_pv,
+            now_offer: offer(outcome.now_offer),
+            now_pv: (!outcome.now_pv.is_nan()).then_some(outcome.now_pv),
+            best_offer: offer(outcome.best_offer),
+            best_year_offset: candidate.map(|_| t),
+            best_year: candidate.map(|_| a.first_year + i64::from(t)),
+            best_pv: outcome.best_pv,
+            saving_pv: outcome.saving_pv(),
+            waiting_pv: outcome.waiting_pv,
+            payback_years: candidate
+                .and_then(|c| payback_years(&mut Silent, &resolved, c, usize::from(t), a)),
+            capital: candidate.map(crate::engine::decision::Candidate::price_installed),
+            energy_saved_kwh: saved.map(|(energy, _)| energy),
+            co2_saved_kg: saved.map(|(_, co2)| co2),
+            flags: outcome.flags.keys(),
+        })
+    }
+
+    /// The ranked units in another order, as places in this ranking.
+    pub fn places(&self, desk: &Desk, by: By) -> Vec<u32> {
+        let mut place = vec![u32::MAX; self.outcomes.len()];
+        for (at, i) in (0u32..).zip(&self.order) {
+            place[*i as usize] = at;
+        }
+        let ordered = order(desk, &self.outcomes, by, None);
+        ordered.into_iter().map(|i| place[i as usize]).filter(|at| *at != u32::MAX).collect()
+    }
+
+    /// Unit number `n` of those left out; none beyond the last.
+    pub fn left_out_row<'a>(&self, desk: &'a Desk, n: usize) -> Option<LeftOutRow<'a>> {
+        let i = *self.left_out.get(n)? as usize;
+        let why = self.outcomes[i].left_out?.why();
+        Some(LeftOutRow { unit: desk.fleet.unit.get(i), why })
+    }
+
+    /// The result as it is written in JSON; rows are made while they are written.
+    pub fn result<'a>(&'a self, desk: &'a Desk) -> RankResult<'a> {
+        RankResult { ranking: self, desk }
+    }
+}
+
+/// The JSON result of a ranking.
+#[derive(Clone, Copy, Debug)]
+pub struct RankResult<'a> {
+    ranking: &'a Ranking,
+    desk: &'a Desk,
+}
+
+struct Rows<F>(usize, F);
+
+impl<T: Serialize, F: Fn(usize) -> Option<T>> Serialize for Rows<F> {
+    fn serialize<S: Serializer>(&self, serializer: S) -> Result<S::Ok, S::Error> {
+        let mut rows = serializer.serialize_seq(Some(self.0))?;
+        for row in (0..self.0).filter_map(&self.1) {
+            rows.serialize_element(&row)?;
+        }
+        rows.end()
+    }
+}
+
+impl Serialize for RankResult<'_> {
+    fn serialize<S: Serializer>(&self, serializer: S) -> Result<S::Ok, S::Error> {
+        let (ranking, desk) = (self.ranking, self.desk);
+        let a = &ranking.context.assumptions;
+        let mut result = serializer.serialize_struct("rank", 5)?;
+        result.serialize_field("basis", &a.name)?;
+        result.serialize_field("currency", &a.currency)?;
+        let rows = Rows(ranking.order.len(), |place| ranking.row(desk, place));
+        result.serialize_field("units", &rows)?;
+        let left_out = Rows(ranking.left_out.len(), |n| ranking.left_out_row(desk, n));
+        result.serialize_field("left_out", &left_out)?;
+        result.serialize_field("totals", &ranking.totals)?;
+        result.end()
+    }
+}

@@ -1,0 +1,113 @@
+//! Awarding several lots: each to its own winner, or all to one bidder, and what the second costs more.
+//!
+//! A bidder's package is its cheapest admitted bid in every lot. Amounts are owning costs of whole lots in the
+//! tender currency.
+
+use serde::Serialize;
+
+use super::{BidResult, LotResult, TenderResult};
+
+/// How a tender may be awarded.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct AwardResult {
+    /// The tender.
+    pub tender: String,
+    /// Currency of all amounts.
+    pub currency: String,
+    /// Each lot to the bid of least owning cost.
+    pub by_lot: Package,
+    /// All lots to one bidder: those who cover most lots first, then the cheapest.
+    pub packages: Vec<BidderPackage>,
+}
+
+/// Bids for several lots.
+#[derive(Clone, Debug, Default, PartialEq, Serialize)]
+pub struct Package {
+    /// The bids, in order of the lots.
+    pub bids: Vec<PackageBid>,
+    /// Lots without an admitted bid.
+    pub lots_missing: Vec<String>,
+    /// Owning cost of the lots that are covered.
+    pub lot_cost: f64,
+}
+
+/// One bid of a package.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct PackageBid {
+    /// The lot.
+    pub lot: String,
+    /// The bid.
+    pub bid: String,
+    /// Who bids.
+    pub bidder: Option<String>,
+    /// Owning cost of the lot.
+    pub lot_cost: f64,
+}
+
+/// All lots to one bidder.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct BidderPackage {
+    /// The bidder.
+    pub bidder: String,
+    /// Its bids.
+    #[serde(flatten)]
+    pub package: Package,
+    /// What the package costs above the winners of the same lots.
+    pub above_by_lot: f64,
+}
+
+impl Package {
+    /// The cheapest admitted bid of each lot among those that `by` takes.
+    fn of(lots: &[LotResult], by: impl Fn(&BidResult) -> bool) -> Self {
+        let mut package = Self::default();
+        for lot in lots {
+            // Bids are in rank order, so the first one is the cheapest.
+            let Some(bid) = lot.bids.iter().find(|bid| bid.rank.is_some() && by(bid)) else {
+                package.lots_missing.push(lot.lot.clone());
+                continue;
+            };
+            package.lot_cost += bid.lot_cost;
+            package.bids.push(PackageBid {
+                lot: lot.lot.clone(),
+                bid: bid.bid.clone(),
+                bidder: bid.bidder.clone(),
+                lot_cost: bid.lot_cost,
+            });
+        }
+        package
+    }
+}
+
+/// Compares awarding each lot on its own with awarding all to one bidder.
+pub fn award(tender: &TenderResult) -> AwardResult {
+    let by_lot = Package::of(&tender.lots, |_| true);
+    let mut bidders: Vec<&str> = tender
+        .lots
+        .iter()
+        .flat_map(|lot| &lot.bids)
+        .filter(|bid| bid.rank.is_some())
+        .filter_map(|bid| bid.bidder.as_deref())
+        .collect();
+    bidders.sort_unstable();
+    bidders.dedup();
+    let mut packages: Vec<BidderPackage> = bidders
+        .into_iter()
+        .map(|bidder| {
+            let package = Package::of(&tender.lots, |bid| bid.bidder.as_deref() == Some(bidder));
+            let covered = |bid: &&PackageBid| package.bids.iter().any(|own| own.lot == bid.lot);
+            let winners: f64 = by_lot.bids.iter().filter(covered).map(|bid| bid.lot_cost).sum();
+            let above_by_lot = package.lot_cost - winners;
+            BidderPackage { bidder: bidder.to_owned(), package, above_by_lot }
+        })
+        .collect();
+    packages.sort_by(|a, b| {
+        let covered = b.package.bids.len().cmp(&a.package.bids.len());
+        covered.then(a.package.lot_cost.total_cmp(&b.package.lot_cost))
+    });
+    AwardResult {
+        tender: tender.tender.clone(),
+        currency: tender.currency.clone(),
+        by_lot,
+        packages,
+    }
+}

@@ -1,0 +1,185 @@
+//! What the evaluation of a tender answers: plain data that serialises with the names of the contract.
+//!
+//! Amounts are per unit in the tender currency, factors per kW. Fields beyond the contract are for screens and
+//! reports and are not serialised.
+
+use serde::ser::SerializeMap as _;
+use serde::{Serialize, Serializer};
+
+use crate::engine::decision::tender::factors::Computed;
+use crate::engine::decision::tender::map::Point;
+use crate::engine::transformer::losses::Losses;
+
+/// The evaluation of a tender.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct TenderResult {
+    /// The tender.
+    pub tender: String,
+    /// Currency of all amounts.
+    pub currency: String,
+    /// Its lots, in order of entry.
+    pub lots: Vec<LotResult>,
+}
+
+/// The evaluation of a lot.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct LotResult {
+    /// The lot.
+    pub lot: String,
+    /// Number of units.
+    pub quantity: i64,
+    /// Value of a kW of no-load loss.
+    pub factor_a_per_kw: f64,
+    /// Value of a kW of load loss at the lot's rating.
+    pub factor_b_per_kw: f64,
+    /// Value of a kW of auxiliary loss.
+    pub factor_aux_per_kw: f64,
+    /// Bids in rank order; excluded ones follow in order of entry.
+    pub bids: Vec<BidResult>,
+    /// The bid of least owning cost.
+    pub least_owning_cost: Option<String>,
+    /// The bid that leads: of the near-tied ones that of lowest price with adders.
+    pub recommended: Option<String>,
+    /// How far the second lies above the first in percent.
+    pub margin_pct: Option<f64>,
+    /// Who wins at other factors.
+    pub map: MapResult,
+    /// How far inputs must move before another bid is the cheapest to own.
+    pub changes: Changes,
+    /// What is doubtful about the lot.
+    pub flags: Vec<&'static str>,
+    /// The near-tied bids, lowest price with adders first: the order beside the rank order.
+    #[serde(skip)]
+    pub near_tie_order: Vec<String>,
+    /// Lines between the cells of the map.
+    #[serde(skip)]
+    pub borders: Vec<BorderResult>,
+    /// The nearest pair (A, B) at which another bid is as cheap.
+    #[serde(skip)]
+    pub nearest_border: Option<NearestBorderResult>,
+    /// Which factors come from the basis.
+    #[serde(skip)]
+    pub computed: Computed,
+}
+
+/// The evaluation of a bid; amounts per unit in the tender currency.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct BidResult {
+    /// Place by owning cost; none for an excluded bid.
+    pub rank: Option<usize>,
+    /// The bid.
+    pub bid: String,
+    /// Who bids.
+    pub bidder: Option<String>,
+    /// Price.
+    pub price: f64,
+    /// Capitalised no-load loss.
+    pub no_load_cost: f64,
+    /// Capitalised load loss.
+    pub load_cost: f64,
+    /// Capitalised auxiliary loss.
+    pub auxiliary_cost: f64,
+    /// Freight, installation and other adders.
+    pub added_cost: f64,
+    /// The sum of the parts.
+    pub owning_cost: f64,
+    /// The worst that the tolerance allows.
+    pub owning_cost_at_tolerance: f64,
+    /// The owning cost of all units of the lot.
+    pub lot_cost: f64,
+    /// Whether it meets the law that the lot names; none where none is named or it is not known.
+    pub law: Option<bool>,
+    /// Whether it lies in the near-tie band; true for the first too.
+    pub near_tie: bool,
+    /// Keys of the limits that it misses.
+    pub excluded: Vec<&'static str>,
+    /// What is doubtful about it.
+    pub flags: Vec<&'static str>,
+    /// Its losses at its rating and the lot's reference temperature: what the figures are computed from.
+    #[serde(skip)]
+    pub losses: Losses,
+}
+
+/// The winner map of a lot.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct MapResult {
+    /// The box reaches from 0 to this A.
+    pub a_max: f64,
+    /// The box reaches from 0 to this B.
+    pub b_max: f64,
+    /// The admitted bids in rank order.
+    pub bids: Vec<CellResult>,
+}
+
+/// The part of the map that a bid wins.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct CellResult {
+    /// The bid.
+    pub bid: String,
+    /// Part of the box.
+    pub share: f64,
+    /// Corners [A, B], counter-clockwise from the least A, then least B; empty where it wins nowhere.
+    pub polygon: Vec<Point>,
+}
+
+/// A line between the cells of two bids.
+#[derive(Clone, Debug, PartialEq)]
+pub struct BorderResult {
+    /// The bids on its sides.
+    pub bids: [String; 2],
+    /// One end [A, B].
+    pub from: Point,
+    /// The other end [A, B].
+    pub to: Point,
+}
+
+/// The pair (A, B) nearest to today's at which another bid is as cheap to own.
+#[derive(Clone, Debug, PartialEq)]
+pub struct NearestBorderResult {
+    /// The pair [A, B].
+    pub at: Point,
+    /// How far away, √(ΔA² + ΔB²).
+    pub distance_per_kw: f64,
+    /// The bid beyond it.
+    pub bid: String,
+}
+
+/// How far inputs must move before the winner changes. As JSON: name → [down, up], each a distance in the unit
+/// of the input or null where the winner never changes.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Changes(pub Vec<ChangeResult>);
+
+/// How far one input must move.
+#[derive(Clone, Debug, PartialEq)]
+pub struct ChangeResult {
+    /// Name of the input.
+    pub quantity: &'static str,
+    /// Today's value.
+    pub base: f64,
+    /// Downwards.
+    pub down: Option<MoveResult>,
+    /// Upwards.
+    pub up: Option<MoveResult>,
+}
+
+/// Where the winner changes.
+#[derive(Clone, Debug, PartialEq)]
+pub struct MoveResult {
+    /// How far the input moves.
+    pub by: f64,
+    /// Its value there.
+    pub to: f64,
+    /// The bid that wins from there on.
+    pub bid: String,
+}
+
+impl Serialize for Changes {
+    fn serialize<S: Serializer>(&self, serializer: S) -> Result<S::Ok, S::Error> {
+        let mut map = serializer.serialize_map(Some(self.0.len()))?;
+        for change in &self.0 {
+            let by = |side: &Option<MoveResult>| side.as_ref().map(|side| side.by);
+            map.serialize_entry(change.quantity, &[by(&change.down), by(&change.up)])?;
+        }
+        map.end()
+    }
+}

@@ -1,0 +1,515 @@
+//! The state of the dashboard and how it changes: an event becomes an action, an action changes the state and
+//! may ask the worker something. Nothing here draws, waits or touches the terminal.
+
+use std::sync::Arc;
+
+use ratatui::crossterm::event::{KeyEvent, KeyEventKind};
+use ratatui::layout::Size;
+use tui_input::{Input, InputRequest};
+
+use super::action::{self, Action, Place, Screen};
+use super::caps::Caps;
+use super::keys::Key;
+use super::list::{List, Step};
+use super::session::{JournalLine, Session};
+use super::theme::Theme;
+use super::work::{Answer, Done, Job, Kind, Question, Ranked, View, ViewSpec};
+use super::{basis, frame, help, unit};
+use crate::study::rank::By;
+use crate::study::{StudyError, Watch};
+
+/// Why the dashboard was left.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum ExitReason {
+    /// The user left.
+    Quit,
+    /// A signal asked for it, or Ctrl-C (as SIGINT).
+    Signal(i32),
+}
+
+impl ExitReason {
+    /// The exit code of the program: 0, or 128 and the number of the signal.
+    pub fn code(self) -> u8 {
+        match self {
+            Self::Quit => 0,
+            Self::Signal(n) => u8::try_from(128 + n).unwrap_or(u8::MAX),
+        }
+    }
+}
+
+/// What is being waited for.
+#[derive(Debug)]
+pub(super) struct Busy {
+    pub(super) what: &'static str,
+    pub(super) watch: Arc<Watch>,
+}
+
+/// Questions on their way: the newest number of each kind.
+#[derive(Debug, Default)]
+struct Asking {
+    generation: [u64; Kind::COUNT],
+    busy: [Option<Busy>; Kind::COUNT],
+    outbox: Vec<Job>,
+}
+
+/// What was opened.
+#[derive(Debug)]
+pub(super) struct Opened {
+    pub(super) title: String,
+    pub(super) basis_source: String,
+    pub(super) journal: Vec<JournalLine>,
+}
+
+/// The state of the dashboard.
+#[derive(Debug)]
+pub struct App {
+    pub(super) theme: Theme,
+    pub(super) size: Size,
+    pub(super) screen: Screen,
+    /// First line of the help that is shown; none = closed.
+    pub(super) help: Option<List>,
+    pub(super) message: Option<String>,
+    pub(super) opened: Option<Opened>,
+    /// The fleet under the basis as it is stored.
+    pub(super) stored: Option<Arc<Ranked>>,
+    /// The fleet under the basis as it stands now.
+    pub(super) ranked: Option<Arc<Ranked>>,
+    pub(super) view: View,
+    /// The view that was asked for last.
+    pub(super) wanted: ViewSpec,
+    pub(super) fleet: List,
+    pub(super) show_left_out: bool,
+    pub(super) left_out: List,
+    /// The filter while it is typed.
+    pub(super) typing: Option<Input>,
+    pub(super) unit: unit::State,
+    pub(super) basis: basis::State,
+    pub(super) journal: List,
+    asking: Asking,
+    exit: Option<Result<ExitReason, StudyError>>,
+    /// The terminal is to be handed to the shell.
+    pub(super) suspend: bool,
+    /// Everything is to be drawn anew.
+    pub(super) redraw: bool,
+}
+
+impl App {
+    /// A dashboard that has asked for what it is to show.
+    pub fn new(caps: Caps, size: Size) -> Self {
+        let mut app = Self {
+            theme: Theme::new(caps),
+            size,
+            screen: Screen::Fleet,
+            help: None,
+            message: None,
+            opened: None,
+            stored: None,
+            ranked: None,
+            view: View::default(),
+            wanted: ViewSpec::default(),
+            fleet: List::default(),
+            show_left_out: false,
+            left_out: List::default(),
+            typing: None,
+            unit: unit::State::default(),
+            basis: basis::State::default(),
+            journal: List::default(),
+            asking: Asking::default(),
+            exit: None,
+            suspend: false,
+            redraw: false,
+        };
+        app.ask("Reading the book", Question::Open);
+        app
+    }
+
+    /// The screen that is shown.
+    pub fn screen(&self) -> Screen {
+        self.screen
+    }
+
+    /// How the dashboard was left; none while it runs.
+    pub fn take_exit(&mut self) -> Option<Result<ExitReason, StudyError>> {
+        self.exit.take()
+    }
+
+    /// Takes the questions that were asked since.
+    pub fn take_questions(&mut self) -> Vec<Job> {
+        std::mem::take(&mut self.asking.outbox)
+    }
+
+    /// Whether something is being waited for.
+    pub fn is_busy(&self) -> bool {
+        self.busy().is_some()
+    }
+
+    pub(super) fn busy(&self) -> Option<&Busy> {
+        self.asking.busy.iter().flatten().next()
+    }
+
+    /// Asks the worker; an older question of the kind is stopped.
+    pub(super) fn ask(&mut self, what: &'static str, question: Question) {
+        let kind = question.kind() as usize;
+        if let Some(older) = self.asking.busy[kind].take() {
+            older.watch.stop();
+        }
+        self.asking.generation[kind] += 1;
+        let watch = Arc::new(Watch::default());
+        self.asking.busy[kind] = Some(Busy { what, watch: Arc::clone(&watch) });
+        self.asking.outbox.push(Job { generation: self.asking.generation[kind], watch, question });
+    }
+
+    /// The places in which a key is looked up, innermost first.
+    pub fn places(&self) -> Vec<Place> {
+        if self.help.is_some() {
+            vec![Place::Help, Place::List, Place::Everywhere]
+        } else if self.typing.is_some() {
+            vec![Place::Filter]
+        } else {
+            vec![Place::On(self.screen), Place::List, Place::Everywhere]
+        }
+    }
+
+    /// Takes a key press.
+    pub fn key(&mut self, event: KeyEvent) {
+        if event.kind != KeyEventKind::Press {
+            return;
+        }
+        let key = Key::of(event);
+        let action = action::of_key(&self.places(), key);
+        match (action, &mut self.typing) {
+            (Some(action), _) => self.act(action),
+            (None, Some(input)) if self.help.is_none() => match edit(key) {
+                Some(request) => {
+                    input.handle(request);
+                    self.filter_typed();
+                }
+                None => {
+                    // Keys that type nothing still do what they do everywhere.
+                    if let Some(action) =
+                        action::of_key(&[Place::Everywhere], key).filter(|_| key.typed().is_none())
+                    {
+                        self.act(action);
+                    }
+                }
+            },
+            _ => {}
+        }
+        self.settle();
+    }
+
+    /// Takes pasted text: into the filter while it is typed, else nowhere.
+    pub fn paste(&mut self, text: &str) {
+        if let Some(input) = &mut self.typing {
+            for c in text.chars().filter(|c| !c.is_control()).take(200) {
+                input.handle(InputRequest::InsertChar(c));
+            }
+            self.filter_typed();
+            self.settle();
+        }
+    }
+
+    /// Takes a new size of the terminal.
+    pub fn resize(&mut self, size: Size) {
+        self.size = size;
+        self.settle();
+    }
+
+    /// Does an action.
+    pub fn act(&mut self, action: Action) {
+        self.message = None;
+        match action {
+            Action::Quit => self.exit = Some(Ok(ExitReason::Quit)),
+            Action::Interrupt => self.exit = Some(Ok(ExitReason::Signal(2))),
+            Action::Suspend => self.suspend = true,
+            Action::Redraw => self.redraw = true,
+            Action::Help => self.help = Some(List::default()),
+            Action::Back => self.back(),
+            Action::Go(screen) => self.go(screen),
+            Action::NextScreen => self.turn(1),
+            Action::PreviousScreen => self.turn(Screen::ALL.len() - 1),
+            Action::Up => self.step(Step::Lines(-1)),
+            Action::Down => self.step(Step::Lines(1)),
+            Action::PageUp => self.step(Step::Pages(-1)),
+            Action::PageDown => self.step(Step::Pages(1)),
+            Action::First => self.step(Step::First),
+            Action::Last => self.step(Step::Last),
+            Action::Open => {
+                if let Some(i) = self.under_cursor() {
+                    self.open_unit(i);
+                    self.screen = Screen::Unit;
+                }
+            }
+            Action::Filter => {
+                self.typing = Some(Input::new(self.wanted.filter.clone()));
+            }
+            Action::FilterKeep => self.typing = None,
+            Action::FilterDrop => {
+                self.typing = None;
+                self.show(ViewSpec { filter: String::new(), ..self.wanted.clone() });
+            }
+            Action::FilterErase => {
+                self.typing = Some(Input::default());
+                self.filter_typed();
+            }
+            Action::Sort => {
+                let at = By::WORDS.iter().position(|(by, _)| *by == self.wanted.by).unwrap_or(0);
+                let by = By::WORDS[(at + 1) % By::WORDS.len()].0;
+                self.show_left_out = false;
+                self.show(ViewSpec { by, ..self.wanted.clone() });
+            }
+            Action::LeftOut => self.show_left_out = !self.show_left_out,
+            Action::NextUnit => self.neighbour(Step::Lines(1)),
+            Action::PreviousUnit => self.neighbour(Step::Lines(-1)),
+            Action::Table => self.unit.table = !self.unit.table,
+            Action::Less => self.nudge(-1, false),
+            Action::More => self.nudge(1, false),
+            Action::MuchLess => self.nudge(-1, true),
+            Action::MuchMore => self.nudge(1, true),
+            Action::Reset => self.reset(false),
+            Action::ResetAll => self.reset(true),
+        }
+        self.settle();
+    }
+
+    /// Stops what runs; else closes the innermost thing; else goes back to the fleet.
+    fn back(&mut self) {
+        if self.help.take().is_some() {
+            return;
+        }
+        let ranking = Kind::Rank as usize;
+        if let Some(busy) = self.asking.busy[ranking].take() {
+            busy.watch.stop();
+            self.asking.generation[ranking] += 1;
+            self.stopped();
+        } else if self.screen != Screen::Fleet {
+            self.screen = Screen::Fleet;
+        } else if self.show_left_out {
+            self.show_left_out = false;
+        } else if !self.wanted.filter.is_empty() {
+            self.show(ViewSpec { filter: String::new(), ..self.wanted.clone() });
+        }
+    }
+
+    fn go(&mut self, screen: Screen) {
+        self.screen = screen;
+        self.typing = None;
+        if screen == Screen::Unit
+            && let Some(i) = self.under_cursor()
+            && self.unit.index.is_none()
+        {
+            self.open_unit(i);
+        }
+    }
+
+    fn turn(&mut self, by: usize) {
+        let at = Screen::ALL.iter().position(|(screen, _)| *screen == self.screen).unwrap_or(0);
+        self.go(Screen::ALL[(at + by) % Screen::ALL.len()].0);
+    }
+
+    fn step(&mut self, step: Step) {
+        let height = frame::list_height(self);
+        if let Some(mut list) = self.help {
+            list.scroll(step, help::lines(self, usize::from(self.size.width)).len(), height);
+            self.help = Some(list);
+            return;
+        }
+        let len = self.len();
+        let list = match self.screen {
+            Screen::Fleet if self.show_left_out => &mut self.left_out,
+            Screen::Fleet => &mut self.fleet,
+            Screen::Unit => return self.unit.facts.scroll(step, len, height),
+            Screen::Basis => &mut self.basis.list,
+            Screen::Journal => &mut self.journal,
+            Screen::Tender => return,
+        };
+        list.step(step, len, height);
+    }
+
+    /// Lines of the list on the screen.
+    fn len(&self) -> usize {
+        match self.screen {
+            Screen::Fleet if self.show_left_out => self.view.left_out.len(),
+            Screen::Fleet => self.view.places.len(),
+            Screen::Unit => unit::facts_len(self),
+            Screen::Basis => basis::len(),
+            Screen::Journal => self.opened.as_ref().map_or(0, |o| o.journal.len()),
+            Screen::Tender => 0,
+        }
+    }
+
+    /// Keeps every cursor in its list and its window.
+    fn settle(&mut self) {
+        let height = frame::list_height(self);
+        if self.screen == Screen::Fleet {
+            self.fleet.settle(self.view.places.len(), height);
+            self.left_out.settle(self.view.left_out.len(), height);
+        } else {
+            self.step(Step::Lines(0));
+        }
+    }
+
+    /// The unit under the cursor of the fleet.
+    pub(super) fn under_cursor(&self) -> Option<usize> {
+        let ranking = &self.ranked.as_ref()?.ranking;
+        if self.show_left_out {
+            let n = *self.view.left_out.get(self.left_out.cursor)?;
+            return ranking.left_out.get(n as usize).map(|i| *i as usize);
+        }
+        let place = *self.view.places.get(self.fleet.cursor)?;
+        ranking.order.get(place as usize).map(|i| *i as usize)
+    }
+
+    fn neighbour(&mut self, step: Step) {
+        let list = if self.show_left_out { &mut self.left_out } else { &mut self.fleet };
+        let len = if self.show_left_out { &self.view.left_out } else { &self.view.places }.len();
+        let height = list.cursor.saturating_sub(list.offset) + 1;
+        list.step(step, len, height);
+        if let Some(i) = self.under_cursor() {
+            self.open_unit(i);
+        }
+    }
+
+    /// Shows a unit on its screen.
+    fn open_unit(&mut self, i: usize) {
+        let Some(ranked) = self.ranked.clone() else { return };
+        if self.unit.index != Some(i) {
+            self.unit.facts = List::default();
+            self.unit.record = None;
+            let name = ranked.desk.fleet.unit.get(i).to_owned();
+            self.ask("Reading the unit", Question::Record(name));
+        }
+        self.unit.open(&ranked, i);
+    }
+
+    /// Asks for another view of the ranked fleet.
+    fn show(&mut self, spec: ViewSpec) {
+        if self.wanted == spec {
+            return;
+        }
+        self.wanted = spec.clone();
+        if let Some(ranked) = &self.ranked {
+            self.ask("Looking through the fleet", Question::View(Arc::clone(ranked), spec));
+        }
+    }
+
+    fn filter_typed(&mut self) {
+        let filter = self.typing.as_ref().map_or("", Input::value).to_owned();
+        self.show(ViewSpec { filter, ..self.wanted.clone() });
+    }
+
+    /// Takes an answer of the worker; one that is not the newest of its kind is dropped.
+    pub fn done(&mut self, done: Done) {
+        let kind = done.kind as usize;
+        if done.generation != self.asking.generation[kind] {
+            return;
+        }
+        self.asking.busy[kind] = None;
+        match done.answer {
+            Ok(Answer::Opened(session)) => self.take_session(*session),
+            Ok(Answer::Ranked(ranked, view)) => {
+                if self.stored.is_none() {
+                    self.stored = Some(Arc::clone(&ranked));
+                }
+                let unit = self.under_cursor();
+                self.basis.in_effect(&ranked.desk.sheet.basis);
+                self.ranked = Some(Arc::clone(&ranked));
+                if view.spec != self.wanted {
+                    let spec = self.wanted.clone();
+                    self.ask(
+                        "Looking through the fleet",
+                        Question::View(Arc::clone(&ranked), spec),
+                    );
+                }
+                self.look(view, unit);
+                if let Some(i) = self.unit.index {
+                    self.unit.open(&ranked, i);
+                }
+            }
+            Ok(Answer::View(ranked, view)) => {
+                if self.ranked.as_ref().is_some_and(|now| Arc::ptr_eq(now, &ranked)) {
+                    let unit = self.under_cursor();
+                    self.look(view, unit);
+                }
+            }
+            Ok(Answer::Record(unit, record)) => self.unit.take_record(&unit, record),
+            Err(error) if done.kind == Kind::Open => self.exit = Some(Err(error)),
+            Err(error) if self.ranked.is_none() => self.exit = Some(Err(error)),
+            Err(StudyError::Stopped) => self.stopped(),
+            Err(error) => {
+                self.message = Some(error.to_string());
+                self.basis.refused();
+            }
+        }
+        self.settle();
+    }
+
+    fn take_session(&mut self, session: Session) {
+        let Session { title, desk, basis_source, journal, .. } = session;
+        self.opened = Some(Opened { title, basis_source, journal });
+        self.basis.open(&desk);
+        self.ask("Ranking the fleet", Question::Rank(Box::new(desk), self.wanted.clone()));
+    }
+
+    /// Shows a view, with the cursor on the unit where it was.
+    fn look(&mut self, view: View, unit: Option<usize>) {
+        self.view = view;
+        let Some(ranked) = &self.ranked else { return };
+        if let Some(i) = unit.filter(|_| !self.show_left_out) {
+            let place = ranked.place[i];
+            let line = self.view.places.iter().position(|p| *p == place);
+            let shift = self.fleet.cursor.saturating_sub(self.fleet.offset);
+            self.fleet.cursor = line.unwrap_or(0);
+            self.fleet.offset = self.fleet.cursor.saturating_sub(shift);
+        }
+    }
+
+    /// What was asked for was stopped: back to what is known.
+    fn stopped(&mut self) {
+        if let Some(ranked) = &self.ranked {
+            self.basis.back_to(&ranked.desk.sheet.basis);
+            self.message = Some("Stopped. The figures are those of before.".to_owned());
+        } else {
+            self.exit = Some(Ok(ExitReason::Quit));
+        }
+    }
+
+    fn nudge(&mut self, steps: i32, large: bool) {
+        let Some(ranked) = &self.ranked else { return };
+        match self.basis.nudge(&ranked.desk, steps, large) {
+            Ok(()) => self.rank_draft(),
+            Err(why) => self.message = Some(why),
+        }
+    }
+
+    fn reset(&mut self, all: bool) {
+        if self.basis.reset(all) {
+            self.rank_draft();
+        } else {
+            self.message = Some("It stands as it is stored.".to_owned());
+        }
+    }
+
+    fn rank_draft(&mut self) {
+        let (Some(ranked), Some(sheet)) = (&self.ranked, self.basis.sheet()) else { return };
+        let desk = ranked.desk.with_basis(sheet);
+        self.ask("Ranking the fleet", Question::Rank(Box::new(desk), self.wanted.clone()));
+    }
+}
+
+/// What a key does to a line of text.
+fn edit(key: Key) -> Option<InputRequest> {
+    use ratatui::crossterm::event::KeyCode;
+    if let Some(c) = key.typed() {
+        return Some(InputRequest::InsertChar(c));
+    }
+    match (key.code, key.modifiers.is_empty()) {
+        (KeyCode::Backspace, true) => Some(InputRequest::DeletePrevChar),
+        (KeyCode::Delete, true) => Some(InputRequest::DeleteNextChar),
+        (KeyCode::Left, true) => Some(InputRequest::GoToPrevChar),
+        (KeyCode::Right, true) => Some(InputRequest::GoToNextChar),
+        (KeyCode::Home, true) => Some(InputRequest::GoToStart),
+        (KeyCode::End, true) => Some(InputRequest::GoToEnd),
+        _ => None,
+    }
+}

@@ -1,0 +1,157 @@
+//! A line chart over years with its minimum marked and a line to compare with.
+
+use ratatui::buffer::Buffer;
+use ratatui::layout::Rect;
+use ratatui::symbols::Marker;
+use ratatui::text::Line;
+use ratatui::widgets::Widget as _;
+use ratatui::widgets::canvas::{Canvas, Line as Stroke, Points};
+
+use super::bar::round_scale;
+use super::caps::Marks;
+use super::frame::{put, put_line};
+use super::text;
+use super::theme::{Part, Theme};
+
+/// A value to compare with.
+#[derive(Clone, Copy, Debug)]
+pub(super) struct Reference {
+    pub(super) word: &'static str,
+    pub(super) value: f64,
+}
+
+/// Draws points over years, the least of them marked. The reference is drawn where it does not crush the line.
+#[expect(clippy::cast_precision_loss, reason = "calendar years")]
+pub(super) fn draw(
+    theme: &Theme,
+    points: &[(i64, f64)],
+    reference: &Reference,
+    area: Rect,
+    buffer: &mut Buffer,
+) {
+    let (Some(first), Some(last)) = (points.first(), points.last()) else { return };
+    let Some(least) = points.iter().min_by(|a, b| a.1.total_cmp(&b.1)) else { return };
+    let most = points.iter().map(|p| p.1).fold(f64::NEG_INFINITY, f64::max);
+    let spread = (most - least.1).max(1e-9 * most.abs()).max(1e-9);
+    let near = reference.value < most + 2.0 * spread && reference.value > least.1 - 2.0 * spread;
+    let (mut low, mut high) = (least.1, most);
+    if near {
+        (low, high) = (low.min(reference.value), high.max(reference.value));
+    }
+    // Whole steps of a round size, at least one and at most four of them.
+    let step = round_scale((high - low).max(spread) / 4.0);
+    (low, high) = ((low / step).floor() * step, (high / step).ceil() * step);
+    if high <= low {
+        high = low + step;
+    }
+    let labels = [low, high].map(|y| text::number(y, 0).len());
+    let margin = u16::try_from(labels[0].max(labels[1]) + 2).unwrap_or(u16::MAX);
+    if area.height < 4 || area.width < margin + 12 {
+        let line = format!(" least in {}: {}", least.0, text::number(least.1, 0));
+        put(buffer, area, 0, &line, theme.plain());
+        return;
+    }
+    let plot = Rect {
+        x: area.x + margin + 1,
+        width: area.width - margin - 2,
+        height: area.height - 2,
+        ..area
+    };
+    let row = |y: f64| {
+        let share = (high - y) / (high - low);
+        #[expect(
+            clippy::cast_possible_truncation,
+            clippy::cast_sign_loss,
+            reason = "inside the plot"
+        )]
+        let row = (share * f64::from(plot.height - 1)).round().max(0.0) as u16;
+        row.min(plot.height - 1)
+    };
+    let mut tick = low;
+    while tick <= high + step / 2.0 {
+        let label = text::right(&text::number(tick, 0), usize::from(margin) - 1);
+        put(buffer, area, row(tick), &format!("{label} ┤"), theme.muted());
+        tick += step;
+    }
+    for y in 0..plot.height {
+        if let Some(cell) = buffer.cell_mut((plot.x - 1, plot.y + y))
+            && cell.symbol() == " "
+        {
+            cell.set_char('│');
+        }
+    }
+    let (x0, x1) =
+        (first.0 as f64, if last.0 > first.0 { last.0 as f64 } else { first.0 as f64 + 1.0 });
+    let style = theme.part(Part::Iron);
+    let colour = style.fg.unwrap_or_default();
+    let marker = match (theme.caps().ascii, theme.caps().marks) {
+        (false, Marks::Braille) => Marker::Braille,
+        _ => Marker::Dot,
+    };
+    let dots: Vec<(f64, f64)> = (0..plot.width)
+        .filter(|x| x % 3 != 2)
+        .map(|x| {
+            (x0 + (x1 - x0) * f64::from(x) / f64::from(plot.width.max(2) - 1), reference.value)
+        })
+        .collect();
+    Canvas::default()
+        .marker(marker)
+        .x_bounds([x0, x1])
+        .y_bounds([low, high])
+        .paint(|ctx| {
+            if near {
+                ctx.draw(&Points::new(&dots, theme.part(Part::Price).fg.unwrap_or_default()));
+                ctx.layer();
+            }
+            for pair in points.windows(2) {
+                ctx.draw(&Stroke::new(
+                    pair[0].0 as f64,
+                    pair[0].1,
+                    pair[1].0 as f64,
+                    pair[1].1,
+                    colour,
+                ));
+            }
+            ctx.layer();
+            ctx.print(least.0 as f64, least.1, Line::styled("◆", theme.heading()));
+        })
+        .render(plot, buffer);
+    let word = if near {
+        let above = row(reference.value);
+        let word = format!(" {} {} ", reference.word, text::number(reference.value, 0));
+        let wide = u16::try_from(word.len()).unwrap_or(0);
+        if plot.width > wide {
+            let at = Rect { x: plot.right() - wide, width: wide, ..plot };
+            put(buffer, at, above, &word, theme.muted());
+        }
+        String::new()
+    } else {
+        let side = if reference.value > high { "above" } else { "below" };
+        format!("{} {} is {side} the chart", reference.word, text::number(reference.value, 0))
+    };
+    let axis = format!("└{}", "─".repeat(usize::from(plot.width)));
+    put(
+        buffer,
+        Rect { x: plot.x - 1, width: plot.width + 1, ..area },
+        plot.height,
+        &axis,
+        theme.plain(),
+    );
+    let ends = format!("{}", first.0);
+    put(
+        buffer,
+        Rect { x: plot.x, width: plot.width, ..area },
+        plot.height + 1,
+        &ends,
+        theme.muted(),
+    );
+    let ends = format!("{}", last.0);
+    let end = Rect { x: plot.right().saturating_sub(4), width: plot.width.min(4), ..area };
+    put(buffer, end, plot.height + 1, &ends, theme.muted());
+    let least = format!("◆ least in {}: {}   {word}", least.0, text::number(least.1, 0));
+    let wide = u16::try_from(text::width(&least)).unwrap_or(0);
+    if plot.width > wide + 12 {
+        let at = Rect { x: plot.x + (plot.width - wide) / 2, width: wide, ..area };
+        put_line(buffer, at, plot.height + 1, &Line::styled(least, theme.heading()));
+    }
+}

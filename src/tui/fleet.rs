@@ -1,0 +1,343 @@
+//! The fleet screen: the ranking as a table with a cost bar, the units left out, the unit under the cursor
+//! beside it. Only the visible lines are made.
+
+use ratatui::buffer::Buffer;
+use ratatui::layout::Rect;
+use ratatui::text::{Line, Span};
+
+use super::app::App;
+use super::bar::{self, Parts};
+use super::frame::{put, put_line, select};
+use super::text;
+use super::theme::{Part, Theme};
+use super::words::currency_in;
+use super::work::Ranked;
+use crate::study::figures::{Figure, figure};
+use crate::study::losses;
+use crate::study::rank::{By, RankRow};
+
+/// Lines above the list: headings, units.
+pub(super) const HEADER: u16 = 2;
+
+/// Where the parts of the screen stand.
+pub(super) struct Areas {
+    pub(super) list: Rect,
+    pub(super) detail: Option<Rect>,
+}
+
+/// Lays the screen out: the unit under the cursor stands beside the list where there is room.
+pub(super) fn areas(body: Rect) -> Areas {
+    if body.width < 120 {
+        return Areas { list: body, detail: None };
+    }
+    let wide = 44;
+    let list = Rect { width: body.width - wide - 1, ..body };
+    let detail = Rect { x: list.right() + 1, width: wide, ..body };
+    Areas { list, detail: Some(detail) }
+}
+
+/// A column of the table.
+struct Column {
+    key: &'static str,
+    /// Flush right.
+    number: bool,
+    /// Columns of the highest rank give way first.
+    rank: u8,
+    /// Widest.
+    most: usize,
+}
+
+const COLUMNS: [Column; 12] = [
+    Column { key: "rank", number: true, rank: 0, most: 9 },
+    Column { key: "unit", number: false, rank: 0, most: 16 },
+    Column { key: "site", number: false, rank: 4, most: 18 },
+    Column { key: "rated_kva", number: true, rank: 2, most: 9 },
+    Column { key: "year_made", number: true, rank: 5, most: 4 },
+    Column { key: "peak_pu", number: true, rank: 6, most: 6 },
+    Column { key: "keep_pv", number: true, rank: 7, most: 14 },
+    Column { key: "saving_pv", number: true, rank: 0, most: 14 },
+    Column { key: "waiting_pv", number: true, rank: 8, most: 14 },
+    Column { key: "best_year", number: true, rank: 1, most: 5 },
+    Column { key: "best_offer", number: false, rank: 3, most: 14 },
+    Column { key: "flags", number: true, rank: 9, most: 5 },
+];
+
+/// Cells of the narrowest and the widest bar.
+const BAR: (usize, usize) = (16, 40);
+
+fn cell(row: &RankRow, key: &str) -> String {
+    let money = |value: f64| text::number(value, 0);
+    let whole = |n: Option<i64>| n.map_or(String::new(), |n| n.to_string());
+    match key {
+        "rank" => text::count(row.rank),
+        "unit" => row.unit.to_owned(),
+        "site" => row.site.unwrap_or("").to_owned(),
+        "rated_kva" => text::plain(row.rated_kva, 1),
+        "year_made" => whole(row.year_made),
+        "peak_pu" => text::number(row.peak_pu, 2),
+        "keep_pv" => money(row.keep_pv),
+        "saving_pv" => money(row.saving_pv),
+        "waiting_pv" => money(row.waiting_pv),
+        "best_year" => row.best_year.map_or("never".to_owned(), |year| year.to_string()),
+        "best_offer" => row.best_offer.unwrap_or("").to_owned(),
+        "flags" if row.flags.is_empty() => String::new(),
+        "flags" => format!("!{}", row.flags.len()),
+        _ => String::new(),
+    }
+}
+
+fn year_cost(ranked: &Ranked, i: usize) -> Option<Parts> {
+    let row = losses::of_unit(&ranked.desk, &ranked.ranking.context, i).ok()?;
+    Some(bar::parts(0.0, row.cost.no_load, row.cost.load, row.cost.auxiliary))
+}
+
+/// Draws the screen.
+pub(super) fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
+    let Some(ranked) = &app.ranked else { return };
+    let areas = areas(area);
+    if app.show_left_out {
+        left_out(app, ranked, areas.list, buffer);
+    } else {
+        ranking(app, ranked, areas.list, buffer);
+    }
+    if let Some(detail) = areas.detail {
+        beside(app, ranked, detail, buffer);
+    }
+}
+
+fn ranking(app: &App, ranked: &Ranked, area: Rect, buffer: &mut Buffer) {
+    let (theme, list) = (&app.theme, app.fleet);
+    let height = area.height.saturating_sub(HEADER);
+    let currency = text::cut(&ranked.desk.sheet.basis.currency, 8);
+    let visible = app.view.places.iter().skip(list.offset).take(usize::from(height));
+    let rows: Vec<(RankRow, Option<Parts>)> = visible
+        .filter_map(|place| {
+            let i = *ranked.ranking.order.get(*place as usize)? as usize;
+            Some((ranked.ranking.row(&ranked.desk, *place as usize)?, year_cost(ranked, i)))
+        })
+        .collect();
+    if rows.is_empty() {
+        let said = if app.view.spec.filter.is_empty() {
+            " No unit could be ranked. Press x to see why each is left out."
+        } else {
+            " No ranked unit has these words in its name or site. Esc shows all again."
+        };
+        put(buffer, area, 1, said, theme.muted());
+        return;
+    }
+    let figures: Vec<(&Column, &Figure)> =
+        COLUMNS.iter().filter_map(|c| Some((c, figure(c.key)?))).collect();
+    let cells: Vec<Vec<String>> = rows
+        .iter()
+        .map(|(row, _)| figures.iter().map(|(c, _)| cell(row, c.key)).collect())
+        .collect();
+    let unit = |figure: &Figure| currency_in(figure.unit, &currency);
+    let widths: Vec<usize> = figures
+        .iter()
+        .enumerate()
+        .map(|(n, (column, figure))| {
+            let content = cells.iter().map(|row| text::width(&row[n])).max().unwrap_or(0);
+            // Headings of narrow columns do not widen them beyond what is needed to read them.
+            let heading = text::width(figure.heading).max(text::width(&unit(figure)));
+            content.min(column.most).max(heading)
+        })
+        .collect();
+    // Columns give way, the least important first, until the bar fits.
+    let room = usize::from(area.width).saturating_sub(2);
+    let mut kept: Vec<usize> = (0..figures.len()).collect();
+    let used = |kept: &[usize]| kept.iter().map(|n| widths[*n] + 2).sum::<usize>();
+    while used(&kept) + BAR.0 > room {
+        let Some(least) = kept.iter().copied().max_by_key(|n| figures[*n].0.rank) else { break };
+        if figures[least].0.rank == 0 {
+            break;
+        }
+        kept.retain(|n| *n != least);
+    }
+    let cells_of_bar = room.saturating_sub(used(&kept)).min(BAR.1);
+    let scale = bar::round_scale(
+        rows.iter().filter_map(|r| r.1).map(|c| bar::whole(&c)).fold(0.0, f64::max),
+    );
+
+    let join = |texts: &mut dyn Iterator<Item = (usize, String)>| {
+        texts.fold("  ".to_owned(), |mut line, (n, shown)| {
+            let shown = if figures[n].0.number {
+                text::right(&shown, widths[n])
+            } else {
+                text::left(&shown, widths[n])
+            };
+            line.push_str(&shown);
+            line.push_str("  ");
+            line
+        })
+    };
+    let headings = join(&mut kept.iter().map(|n| (*n, figures[*n].1.heading.to_owned())));
+    let units = join(&mut kept.iter().map(|n| (*n, unit(figures[*n].1))));
+    let mut above = vec![Span::styled(headings, theme.heading()), Span::raw("losses: ")];
+    above.extend(bar::legend(theme, &[(Part::Iron, "iron"), (Part::Copper, "copper")]));
+    put_line(buffer, area, 0, &Line::from(above));
+    let scale_said = format!("full: {} {currency} a year", text::number(scale, 0));
+    put(buffer, area, 1, &format!("{units}{scale_said}"), theme.muted());
+
+    for (y, (shown, (_, cost))) in (HEADER..).zip(cells.iter().zip(&rows)) {
+        let at_cursor = list.offset + usize::from(y - HEADER) == list.cursor;
+        let mark = if at_cursor { theme.mark() } else { ' ' };
+        let line = join(&mut kept.iter().map(|n| (*n, shown[*n].clone())));
+        let line = format!("{mark}{}", line.get(1..).unwrap_or(""));
+        let wide = u16::try_from(text::width(&line)).unwrap_or(u16::MAX);
+        put(buffer, area, y, &line, theme.plain());
+        if at_cursor {
+            // The bar keeps its colours: reversed it would read as another one.
+            select(
+                buffer,
+                Rect {
+                    y: area.y + y,
+                    width: wide.saturating_sub(1).min(area.width),
+                    height: 1,
+                    ..area
+                },
+            );
+        }
+        if let Some(cost) = cost {
+            let at = Rect {
+                x: area.x + wide.min(area.width),
+                width: area.width.saturating_sub(wide),
+                ..area
+            };
+            let cells = u16::try_from(cells_of_bar).unwrap_or(0);
+            put_line(buffer, at, y, &Line::from(bar::bar(theme, cost, scale, cells)));
+        }
+    }
+}
+
+fn left_out(app: &App, ranked: &Ranked, area: Rect, buffer: &mut Buffer) {
+    let (theme, list) = (&app.theme, app.left_out);
+    let height = area.height.saturating_sub(HEADER);
+    if app.view.left_out.is_empty() {
+        put(buffer, area, 1, " No unit is left out. Press x for the ranking.", theme.muted());
+        return;
+    }
+    let row = |unit: &str, site: &str, why: &str| {
+        format!(" {}  {}  {}", text::left(unit, 12), text::left(site, 16), text::clean(why))
+    };
+    put(
+        buffer,
+        area,
+        0,
+        &format!(" {}", row("unit", "site", "why it is left out")),
+        theme.heading(),
+    );
+    let visible = app.view.left_out.iter().enumerate().skip(list.offset).take(usize::from(height));
+    for (y, (at, n)) in (HEADER..).zip(visible) {
+        let Some(out) = ranked.ranking.left_out_row(&ranked.desk, *n as usize) else { continue };
+        let i = ranked.ranking.left_out[*n as usize] as usize;
+        let site = ranked.desk.fleet.site(i).unwrap_or("");
+        let mark = if at == list.cursor { theme.mark() } else { ' ' };
+        put(buffer, area, y, &format!("{mark}{}", row(out.unit, site, out.why)), theme.plain());
+        if at == list.cursor {
+            select(buffer, Rect { y: area.y + y, height: 1, ..area });
+        }
+    }
+}
+
+/// The unit under the cursor, in short.
+fn beside(app: &App, ranked: &Ranked, area: Rect, buffer: &mut Buffer) {
+    for y in 0..area.height {
+        put(buffer, Rect { x: area.x - 1, width: 1, ..area }, y, "│", app.theme.muted());
+    }
+    let Some(i) = app.under_cursor() else { return };
+    let area = Rect { x: area.x + 1, width: area.width.saturating_sub(1), ..area };
+    for (y, line) in (0..area.height).zip(detail(&app.theme, ranked, i, usize::from(area.width))) {
+        put_line(buffer, area, y, &line);
+    }
+}
+
+fn detail(theme: &Theme, ranked: &Ranked, i: usize, cells: usize) -> Vec<Line<'static>> {
+    let fleet = &ranked.desk.fleet;
+    let currency = text::cut(&ranked.desk.sheet.basis.currency, 8);
+    let mut lines = vec![
+        Line::styled(text::cut(fleet.unit.get(i), cells), theme.heading()),
+        Line::raw(text::cut(fleet.site(i).unwrap_or(""), cells)),
+        Line::default(),
+    ];
+    let place = ranked.place[i] as usize;
+    let Some(row) = ranked.ranking.row(&ranked.desk, place) else {
+        let why =
+            ranked.ranking.outcomes[i].left_out.map_or("", crate::engine::decision::LeftOut::why);
+        lines.extend(text::wrap(&format!("left out: {why}"), cells).into_iter().map(Line::raw));
+        return lines;
+    };
+    let mut fact = |key: &str, value: Option<String>| {
+        if let (Some(value), Some(figure)) = (value, figure(key)) {
+            let unit = currency_in(figure.unit, &currency);
+            let value = format!("{} {}", text::cut(&value, 18), text::left(&unit, 5));
+            let room = cells.saturating_sub(text::width(&value) + 1);
+            lines.push(Line::raw(format!("{} {value}", text::left(figure.heading, room))));
+        }
+    };
+    let money = |value: f64| Some(text::number(value, 0));
+    fact("rank", Some(text::count(row.rank)));
+    fact("rated_kva", Some(text::plain(row.rated_kva, 1)));
+    fact("year_made", row.year_made.map(|y| y.to_string()));
+    fact("peak_pu", Some(text::number(row.peak_pu, 2)));
+    fact("keep_pv", money(row.keep_pv));
+    fact("now_pv", row.now_pv.and_then(money));
+    fact("now_offer", row.now_offer.map(str::to_owned));
+    fact("best_pv", money(row.best_pv));
+    fact("best_offer", row.best_offer.map(str::to_owned));
+    fact("best_year", row.best_year.map(|y| y.to_string()));
+    fact("saving_pv", money(row.saving_pv));
+    fact("waiting_pv", money(row.waiting_pv));
+    fact("payback_years", row.payback_years.map(|y| text::number(y, 1)));
+    fact("capital", row.capital.and_then(money));
+    fact("energy_saved_kwh", row.energy_saved_kwh.map(|e| text::number(e, 0)));
+    fact("co2_saved_kg", row.co2_saved_kg.map(|c| text::number(c, 0)));
+    if let Ok(year) = losses::of_unit(&ranked.desk, &ranked.ranking.context, i) {
+        lines.push(Line::default());
+        let said = format!("losses {} {currency} a year", text::number(year.loss_cost, 0));
+        lines.push(Line::raw(said));
+        let cost = bar::parts(0.0, year.cost.no_load, year.cost.load, year.cost.auxiliary);
+        let wide = u16::try_from(cells).unwrap_or(u16::MAX);
+        lines.push(Line::from(bar::bar(theme, &cost, bar::whole(&cost), wide)));
+        let iron = text::number(year.cost.no_load, 0);
+        let copper = text::number(year.cost.load, 0);
+        lines.push(Line::raw(format!("iron {iron}   copper {copper}")));
+    }
+    if !row.flags.is_empty() {
+        lines.push(Line::default());
+    }
+    for meaning in ranked.ranking.outcomes[i].flags.meanings() {
+        for (n, said) in text::wrap(meaning, cells.saturating_sub(2)).into_iter().enumerate() {
+            let mark = Span::styled(if n == 0 { "! " } else { "  " }, theme.warning());
+            lines.push(Line::from(vec![mark, Span::raw(said)]));
+        }
+    }
+    lines
+}
+
+/// The sums, in the status line.
+pub(super) fn status(app: &App) -> Line<'static> {
+    let Some(ranked) = &app.ranked else { return Line::default() };
+    let (ranking, currency) = (&ranked.ranking, &ranked.desk.sheet.basis.currency);
+    let shown = if app.show_left_out { app.view.left_out.len() } else { app.view.places.len() };
+    let mut said = format!(
+        " {} ranked, {} left out",
+        text::count(ranking.order.len()),
+        text::count(ranking.left_out.len())
+    );
+    if !app.view.spec.filter.is_empty() {
+        said = format!(" {} shown of{said}", text::count(shown));
+    }
+    if app.view.spec.by != By::Saving {
+        said.push_str(&format!(", by {}", app.view.spec.by.word()));
+    }
+    let t = ranking.totals;
+    let money = |value: f64| text::number(value, 0);
+    said.push_str(&format!(
+        "   all: keep {}  best {}  saving {} {}",
+        money(t.keep_pv),
+        money(t.best_pv),
+        money(t.saving_pv),
+        text::cut(currency, 8)
+    ));
+    Line::raw(said)
+}

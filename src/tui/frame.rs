@@ -1,0 +1,227 @@
+//! The frame around every screen: title line, body, status line, context line; the help over it. Helpers to put
+//! cleaned text into the buffer.
+
+use ratatui::Frame;
+use ratatui::buffer::Buffer;
+use ratatui::layout::{Rect, Size};
+use ratatui::style::{Modifier, Style};
+use ratatui::text::{Line, Span};
+
+use super::action::{self, Screen};
+use super::app::App;
+use super::theme;
+use super::{basis, fleet, help, journal, text, unit};
+
+/// The smallest terminal in which the screens are drawn.
+pub(super) const LEAST: Size = Size { width: 60, height: 16 };
+
+/// The parts of the terminal.
+pub(super) struct Areas {
+    pub(super) title: Rect,
+    pub(super) body: Rect,
+    pub(super) status: Rect,
+    pub(super) context: Rect,
+}
+
+/// Cuts the terminal into its parts.
+pub(super) fn areas(area: Rect) -> Areas {
+    let line = |y: u16| Rect {
+        y: area.y + y.min(area.height),
+        height: u16::from(y < area.height),
+        ..area
+    };
+    let height = area.height;
+    Areas {
+        title: line(0),
+        body: Rect { y: area.y + height.min(1), height: height.saturating_sub(3), ..area },
+        status: line(height.saturating_sub(2)),
+        context: line(height.saturating_sub(1)),
+    }
+}
+
+/// Lines of the list or text that the keys move in.
+pub(super) fn list_height(app: &App) -> usize {
+    let body = areas(Rect::from(app.size)).body;
+    if app.help.is_some() {
+        return usize::from(body.height);
+    }
+    usize::from(match app.screen {
+        Screen::Fleet => fleet::areas(body).list.height.saturating_sub(fleet::HEADER),
+        Screen::Unit => unit::draw::areas(body).facts.height,
+        Screen::Basis => basis::draw::areas(body).list.height.saturating_sub(1),
+        Screen::Tender => 0,
+        Screen::Journal => body.height.saturating_sub(journal::AROUND),
+    })
+}
+
+/// Puts text at the start of line `y` of an area: cleaned, cut to its width.
+pub(super) fn put(buffer: &mut Buffer, area: Rect, y: u16, shown: &str, style: Style) {
+    let area = area.intersection(buffer.area);
+    if y < area.height && area.width > 0 {
+        let cut = text::cut(shown, usize::from(area.width));
+        buffer.set_stringn(area.x, area.y + y, cut, usize::from(area.width), style);
+    }
+}
+
+/// Puts a line at line `y` of an area; its text is clean already.
+pub(super) fn put_line(buffer: &mut Buffer, area: Rect, y: u16, line: &Line) {
+    let area = area.intersection(buffer.area);
+    if y < area.height && area.width > 0 {
+        buffer.set_line(area.x, area.y + y, line, area.width);
+    }
+}
+
+/// Puts a line flush right at line `y` of an area.
+pub(super) fn put_right(buffer: &mut Buffer, area: Rect, y: u16, line: &Line) {
+    let wide = u16::try_from(line.width()).unwrap_or(u16::MAX).min(area.width);
+    put_line(buffer, Rect { x: area.right() - wide, width: wide, ..area }, y, line);
+}
+
+impl App {
+    /// Draws the state.
+    pub fn draw(&self, frame: &mut Frame) {
+        let area = frame.area();
+        let cursor = self.draw_into(area, frame.buffer_mut());
+        if let Some(cursor) = cursor {
+            frame.set_cursor_position(cursor);
+        }
+    }
+
+    fn draw_into(&self, area: Rect, buffer: &mut Buffer) -> Option<(u16, u16)> {
+        let mut cursor = None;
+        if area.width < LEAST.width || area.height < LEAST.height {
+            let (w, h) = (LEAST.width, LEAST.height);
+            let notice = format!("{}x{}: needs {w}x{h}; q quits", area.width, area.height);
+            put(buffer, area, 0, &notice, self.theme.plain());
+        } else {
+            let parts = areas(area);
+            self.title(parts.title, buffer);
+            if self.help.is_some() {
+                help::draw(self, parts.body, buffer);
+            } else if self.ranked.is_none() {
+                self.first_frame(parts.body, buffer);
+            } else {
+                match self.screen {
+                    Screen::Fleet => fleet::draw(self, parts.body, buffer),
+                    Screen::Unit => unit::draw::draw(self, parts.body, buffer),
+                    Screen::Basis => basis::draw::draw(self, parts.body, buffer),
+                    Screen::Journal => journal::draw(self, parts.body, buffer),
+                    Screen::Tender => {}
+                }
+            }
+            cursor = self.status(parts.status, buffer);
+            self.context(parts.context, buffer);
+        }
+        theme::settle(self.theme.caps(), buffer);
+        cursor
+    }
+
+    fn title(&self, area: Rect, buffer: &mut Buffer) {
+        let mut spans = vec![Span::styled(" ironhum ", self.theme.heading())];
+        for (n, (screen, title)) in (1..).zip(Screen::ALL) {
+            let tab = if screen == self.screen {
+                Span::styled(format!("[{n} {title}]"), self.theme.heading())
+            } else {
+                Span::raw(format!(" {n} {title} "))
+            };
+            spans.push(tab);
+        }
+        let tabs = Line::from(spans);
+        put_line(buffer, area, 0, &tabs);
+        let Some(opened) = &self.opened else { return };
+        let room = usize::from(area.width).saturating_sub(tabs.width() + 3);
+        let mut right = Vec::new();
+        if self.basis.is_changed() {
+            right.push(Span::styled("basis changed ", self.theme.changed()));
+        }
+        let used: usize = right.iter().map(Span::width).sum();
+        let name = self.ranked.as_ref().map_or("", |r| &r.desk.sheet.basis.name);
+        let both = format!("{name}  {} ", opened.title);
+        let both =
+            if text::width(&both) > room.saturating_sub(used) { format!("{name} ") } else { both };
+        right.push(Span::raw(text::cut(&both, room.saturating_sub(used))));
+        put_right(buffer, area, 0, &Line::from(right));
+    }
+
+    fn first_frame(&self, area: Rect, buffer: &mut Buffer) {
+        let Some(busy) = self.busy() else { return };
+        put(buffer, area, 1, &format!(" {}", progress(busy.what, &busy.watch)), self.theme.plain());
+    }
+
+    fn status(&self, area: Rect, buffer: &mut Buffer) -> Option<(u16, u16)> {
+        if let Some(input) = self.typing.as_ref().filter(|_| self.help.is_none()) {
+            let room = usize::from(area.width.saturating_sub(24));
+            let scroll = input.visual_scroll(room.saturating_sub(1));
+            let typed: String = text::clean(input.value()).chars().skip(scroll).collect();
+            let shown = self.view.places.len() + self.view.left_out.len();
+            put(
+                buffer,
+                area,
+                0,
+                &format!(" filter: {}", text::cut(&typed, room)),
+                self.theme.heading(),
+            );
+            let found = Line::raw(format!("{} found ", text::count(shown)));
+            put_right(buffer, area, 0, &found);
+            let x = area.x
+                + 9
+                + u16::try_from(input.visual_cursor().saturating_sub(scroll)).unwrap_or(0);
+            return (x < area.right() && area.height > 0).then_some((x, area.y));
+        }
+        if let Some(message) = &self.message {
+            put(buffer, area, 0, &format!(" {message}"), self.theme.warning());
+        } else if let Some(busy) = self.busy().filter(|_| self.ranked.is_some()) {
+            let line = format!(" {}   Esc stops", progress(busy.what, &busy.watch));
+            put(buffer, area, 0, &line, self.theme.plain());
+        } else if self.ranked.is_some() && self.help.is_none() {
+            let line = match self.screen {
+                Screen::Fleet => fleet::status(self),
+                Screen::Basis => basis::draw::status(self),
+                _ => Line::default(),
+            };
+            put_line(buffer, area, 0, &line);
+        }
+        None
+    }
+
+    fn context(&self, area: Rect, buffer: &mut Buffer) {
+        let mut spans = vec![Span::raw(" ")];
+        let mut room = usize::from(area.width).saturating_sub(1);
+        let reachable = action::reachable(&self.places());
+        let shown: Vec<_> = reachable.iter().filter(|(def, _)| def.shown).collect();
+        // The last ones (help, quit) always find room.
+        let wide = |n: &usize| shown[*n].1[0].name().chars().count() + shown[*n].0.title.len() + 3;
+        let mut keep: Vec<usize> = Vec::new();
+        let order =
+            (shown.len().saturating_sub(2)..shown.len()).chain(0..shown.len().saturating_sub(2));
+        for n in order {
+            if wide(&n) <= room {
+                room -= wide(&n);
+                keep.push(n);
+            }
+        }
+        keep.sort_unstable();
+        for n in keep {
+            let (def, keys) = shown[n];
+            spans.push(Span::styled(keys[0].name(), self.theme.key()));
+            spans.push(Span::raw(format!(" {}  ", def.title)));
+        }
+        put_line(buffer, area, 0, &Line::from(spans));
+    }
+}
+
+/// What runs, and how far it is.
+fn progress(what: &str, watch: &crate::study::Watch) -> String {
+    match watch.progress() {
+        (_, 0) => format!("{what} …"),
+        (done, total) => {
+            format!("{what} … {} of {}", text::count(done.min(total)), text::count(total))
+        }
+    }
+}
+
+/// The style of a line under the cursor: what was there, reversed.
+pub(super) fn select(buffer: &mut Buffer, area: Rect) {
+    let area = area.intersection(buffer.area);
+    buffer.set_style(area, Style::new().add_modifier(Modifier::REVERSED));
+}

@@ -1,0 +1,235 @@
+//! Long work off the event loop: questions to a worker, answers back, the newest of a kind winning.
+//!
+//! A question carries a generation; the one who asked keeps only the answer of the newest. Nothing here draws.
+
+use std::sync::Arc;
+use std::sync::mpsc::{Receiver, TryRecvError};
+
+use rayon::prelude::*;
+
+use super::session::{RecordReader, Session};
+use crate::engine::columns::Unit;
+use crate::study::rank::{self, By, Ranking};
+use crate::study::{Desk, StudyError, Watch};
+
+/// A fleet ranked under one basis.
+#[derive(Debug)]
+pub struct Ranked {
+    /// What was ranked.
+    pub desk: Desk,
+    /// The ranking by saving.
+    pub ranking: Ranking,
+    /// Place of each unit in it; `u32::MAX` where it is left out.
+    pub place: Vec<u32>,
+}
+
+impl Ranked {
+    fn new(desk: Desk, watch: &Watch) -> Result<Self, StudyError> {
+        let ranking = rank::rank(&desk, By::Saving, None, watch)?;
+        let mut place = vec![u32::MAX; desk.fleet.len()];
+        for (at, i) in (0u32..).zip(&ranking.order) {
+            place[*i as usize] = at;
+        }
+        Ok(Self { desk, ranking, place })
+    }
+}
+
+/// Which units are shown, in which order.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct ViewSpec {
+    /// What was typed into the filter.
+    pub filter: String,
+    /// The order.
+    pub by: By,
+}
+
+/// The units that are shown.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct View {
+    /// What was asked.
+    pub spec: ViewSpec,
+    /// Places in the ranking.
+    pub places: Vec<u32>,
+    /// Which of those left out, as numbers in [`Ranking::left_out`].
+    pub left_out: Vec<u32>,
+}
+
+/// A question to the worker.
+#[derive(Debug)]
+pub enum Question {
+    /// Read what is to be shown.
+    Open,
+    /// Rank a desk.
+    Rank(Box<Desk>, ViewSpec),
+    /// Filter and order a ranked fleet.
+    View(Arc<Ranked>, ViewSpec),
+    /// The whole record of a unit.
+    Record(String),
+}
+
+/// The kinds of questions; a newer one of a kind replaces an older.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[expect(missing_docs, reason = "named as the questions")]
+pub enum Kind {
+    Open,
+    Rank,
+    View,
+    Record,
+}
+
+impl Kind {
+    /// Number of kinds.
+    pub const COUNT: usize = 4;
+}
+
+impl Question {
+    /// Its kind.
+    pub fn kind(&self) -> Kind {
+        match self {
+            Self::Open => Kind::Open,
+            Self::Rank(..) => Kind::Rank,
+            Self::View(..) => Kind::View,
+            Self::Record(_) => Kind::Record,
+        }
+    }
+}
+
+/// A question on its way.
+#[derive(Debug)]
+pub struct Job {
+    /// Number among those of its kind.
+    pub generation: u64,
+    /// By which it is stopped.
+    pub watch: Arc<Watch>,
+    /// The question.
+    pub question: Question,
+}
+
+/// An answer.
+#[derive(Debug)]
+pub enum Answer {
+    /// What was opened.
+    Opened(Box<Session>),
+    /// A ranked fleet and what is shown of it.
+    Ranked(Arc<Ranked>, View),
+    /// What is shown of a ranked fleet.
+    View(Arc<Ranked>, View),
+    /// A record.
+    Record(String, Option<Box<Unit>>),
+}
+
+/// An answer with its question's number.
+#[derive(Debug)]
+pub struct Done {
+    /// Kind of the question.
+    pub kind: Kind,
+    /// Number of the question.
+    pub generation: u64,
+    /// The answer, or why there is none.
+    pub answer: Result<Answer, StudyError>,
+}
+
+/// The worker: what it needs to answer.
+pub struct Worker<L> {
+    loader: Option<L>,
+    record: Option<RecordReader>,
+}
+
+impl<L: FnOnce(&Watch) -> Result<Session, StudyError>> Worker<L> {
+    /// A worker that opens with `loader`.
+    pub fn new(loader: L) -> Self {
+        Self { loader: Some(loader), record: None }
+    }
+
+    /// Answers one question.
+    pub fn answer(&mut self, job: Job) -> Done {
+        let (kind, generation) = (job.question.kind(), job.generation);
+        Done { kind, generation, answer: self.think(job.question, &job.watch) }
+    }
+
+    fn think(&mut self, question: Question, watch: &Watch) -> Result<Answer, StudyError> {
+        match question {
+            Question::Open => {
+                let loader = self.loader.take().ok_or(StudyError::Stopped)?;
+                let mut session = loader(watch)?;
+                self.record = session.record.take();
+                Ok(Answer::Opened(Box::new(session)))
+            }
+            Question::Rank(desk, spec) => {
+                let ranked = Arc::new(Ranked::new(*desk, watch)?);
+                let view = view(&ranked, spec, watch)?;
+                Ok(Answer::Ranked(ranked, view))
+            }
+            Question::View(ranked, spec) => {
+                let view = view(&ranked, spec, watch)?;
+                Ok(Answer::View(ranked, view))
+            }
+            Question::Record(unit) => {
+                let record = self.record.as_mut().and_then(|read| read(&unit)).map(Box::new);
+                Ok(Answer::Record(unit, record))
+            }
+        }
+    }
+
+    /// Answers until nobody asks any more. Of waiting questions only the newest of each kind is answered.
+    pub fn serve(mut self, questions: &Receiver<Job>, reply: impl Fn(Done)) {
+        let mut waiting: Vec<Job> = Vec::new();
+        loop {
+            if waiting.is_empty() {
+                match questions.recv() {
+                    Ok(job) => waiting.push(job),
+                    Err(_) => return,
+                }
+            }
+            loop {
+                match questions.try_recv() {
+                    Ok(job) => {
+                        waiting.retain(|older| older.question.kind() != job.question.kind());
+                        waiting.push(job);
+                    }
+                    Err(TryRecvError::Empty) => break,
+                    Err(TryRecvError::Disconnected) => return,
+                }
+            }
+            let job = waiting.remove(0);
+            reply(self.answer(job));
+        }
+    }
+}
+
+/// Units whose identifier or site holds every word of the filter (whatever the case), in the order asked for.
+fn view(ranked: &Ranked, spec: ViewSpec, watch: &Watch) -> Result<View, StudyError> {
+    let (desk, ranking) = (&ranked.desk, &ranked.ranking);
+    let fleet = &desk.fleet;
+    let words: Vec<String> = spec.filter.split_whitespace().map(str::to_lowercase).collect();
+    let holds = |name: &str, word: &str| {
+        if name.is_ascii() {
+            let (name, word) = (name.as_bytes(), word.as_bytes());
+            name.len() >= word.len()
+                && name.windows(word.len()).any(|part| part.eq_ignore_ascii_case(word))
+        } else {
+            name.to_lowercase().contains(word)
+        }
+    };
+    let shown = |i: usize| {
+        let (unit, site) = (fleet.unit.get(i), fleet.site(i).unwrap_or(""));
+        words.iter().all(|word| holds(unit, word) || holds(site, word))
+    };
+    let mut places: Vec<u32> = match spec.by {
+        By::Saving => (0..u32::try_from(ranking.order.len()).unwrap_or(u32::MAX)).collect(),
+        by => ranking.places(desk, by),
+    };
+    let mut left_out: Vec<u32> =
+        (0..u32::try_from(ranking.left_out.len()).unwrap_or(u32::MAX)).collect();
+    if watch.is_stopped() {
+        return Err(StudyError::Stopped);
+    }
+    if !words.is_empty() {
+        places = places
+            .into_par_iter()
+            .filter(|place| shown(ranking.order[*place as usize] as usize))
+            .collect();
+        left_out.retain(|n| shown(ranking.left_out[*n as usize] as usize));
+    }
+    Ok(View { spec, places, left_out })
+}
