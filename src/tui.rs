@@ -20,6 +20,7 @@ pub mod keys;
 pub mod list;
 pub mod run;
 pub mod session;
+mod tender;
 mod terminal;
 pub mod text;
 pub mod theme;

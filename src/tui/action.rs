@@ -91,6 +91,10 @@ pub enum Action {
     NextUnit,
     PreviousUnit,
     Table,
+    NextLot,
+    PreviousLot,
+    NextTender,
+    TenderView,
     Less,
     More,
     MuchLess,
@@ -137,6 +141,7 @@ const fn key(code: KeyCode) -> Key {
 }
 const FLEET: Place = Place::On(Screen::Fleet);
 const UNIT: Place = Place::On(Screen::Unit);
+const TENDER: Place = Place::On(Screen::Tender);
 const BASIS: Place = Place::On(Screen::Basis);
 
 actions! {
@@ -158,11 +163,17 @@ actions! {
         "previous-unit" Action::PreviousUnit, [key(KeyCode::Left), char('p')], "previous", "The previous unit of the list.", shown;
         "table" Action::Table, [char('t'), key(KeyCode::F(3))], "chart/table", "Show the years as a table instead of a chart, and back.", shown;
     }
+    TENDER => {
+        "next-lot" Action::NextLot, [key(KeyCode::Right), char('n')], "next lot", "The next lot of the tender.", shown;
+        "previous-lot" Action::PreviousLot, [key(KeyCode::Left), char('p')], "previous", "The previous lot of the tender.", shown;
+        "tender-view" Action::TenderView, [char('m'), key(KeyCode::F(3))], "map/changes", "In turn: the bids, the map of who wins at other factors, what must move before another wins.", shown;
+        "next-tender" Action::NextTender, [char('t'), key(KeyCode::F(4))], "next tender", "The next tender of the book.";
+    }
     BASIS => {
         "less" Action::Less, [key(KeyCode::Left), char('-')], "less", "A small step down, or the word before.", shown;
         "more" Action::More, [key(KeyCode::Right), char('+'), char('=')], "more", "A small step up, or the next word.", shown;
-        "much-less" Action::MuchLess, [Key::shift(KeyCode::Left), char('<'), char(',')], "much less", "A step down ten times as large.", shown;
-        "much-more" Action::MuchMore, [Key::shift(KeyCode::Right), char('>'), char('.')], "much more", "A step up ten times as large.", shown;
+        "much-less" Action::MuchLess, [char('<'), char(','), Key::shift(KeyCode::Left)], "much less", "A step down ten times as large.", shown;
+        "much-more" Action::MuchMore, [char('>'), char('.'), Key::shift(KeyCode::Right)], "much more", "A step up ten times as large.", shown;
         "reset" Action::Reset, [char('r'), key(KeyCode::Delete)], "reset", "Put the assumption under the cursor back as it is stored.", shown;
         "reset-all" Action::ResetAll, [char('R'), key(KeyCode::F(8))], "reset all", "Put every assumption back as it is stored.", shown;
     }
@@ -185,7 +196,7 @@ actions! {
         "journal" Action::Go(Screen::Journal), [char('5')], "Journal", "What was changed in the book, by whom and why.";
         "next-screen" Action::NextScreen, [key(KeyCode::Tab)], "next screen", "The next screen.";
         "previous-screen" Action::PreviousScreen, [key(KeyCode::BackTab)], "previous screen", "The previous screen.";
-        "back" Action::Back, [key(KeyCode::Esc), key(KeyCode::Backspace)], "back", "Stop what is running; else close the innermost thing; else go back to the fleet.";
+        "back" Action::Back, [key(KeyCode::Esc), key(KeyCode::Backspace)], "back", "Stop what is running; else close the innermost thing; else go back to the fleet.", shown;
         "help" Action::Help, [char('?'), key(KeyCode::F(1))], "help", "All keys of this place, and what the bars mean.", shown;
         "quit" Action::Quit, [char('q'), key(KeyCode::F(10))], "quit", "Leave. Nothing that was not saved is stored.", shown;
         "interrupt" Action::Interrupt, [Key::ctrl('c')], "interrupt", "Leave at once, with exit code 130.";

@@ -14,7 +14,7 @@ use super::list::{List, Step};
 use super::session::{JournalLine, Session};
 use super::theme::Theme;
 use super::work::{Answer, Done, Job, Kind, Question, Ranked, View, ViewSpec};
-use super::{basis, frame, help, unit};
+use super::{basis, frame, help, tender, unit};
 use crate::study::rank::By;
 use crate::study::{StudyError, Watch};
 
@@ -83,6 +83,9 @@ pub struct App {
     /// The filter while it is typed.
     pub(super) typing: Option<Input>,
     pub(super) unit: unit::State,
+    /// The unit under the cursor of the fleet, where it is shown beside the list.
+    pub(super) glance: unit::State,
+    pub(super) tender: tender::State,
     pub(super) basis: basis::State,
     pub(super) journal: List,
     asking: Asking,
@@ -112,6 +115,8 @@ impl App {
             left_out: List::default(),
             typing: None,
             unit: unit::State::default(),
+            glance: unit::State::default(),
+            tender: tender::State::default(),
             basis: basis::State::default(),
             journal: List::default(),
             asking: Asking::default(),
@@ -262,6 +267,15 @@ impl App {
             Action::NextUnit => self.neighbour(Step::Lines(1)),
             Action::PreviousUnit => self.neighbour(Step::Lines(-1)),
             Action::Table => self.unit.table = !self.unit.table,
+            Action::NextLot => self.tender.turn(self.lots(), 1),
+            Action::PreviousLot => {
+                let lots = self.lots();
+                self.tender.turn(lots, lots.saturating_sub(1));
+            }
+            Action::NextTender => {
+                self.tender.next_tender(self.ranked.as_ref().map_or(0, |r| r.tenders.len()));
+            }
+            Action::TenderView => self.tender.view = self.tender.view.next(),
             Action::Less => self.nudge(-1, false),
             Action::More => self.nudge(1, false),
             Action::MuchLess => self.nudge(-1, true),
@@ -291,6 +305,11 @@ impl App {
         }
     }
 
+    /// Whether there is something to go back from.
+    pub(super) fn can_go_back(&self) -> bool {
+        self.screen != Screen::Fleet || self.show_left_out || !self.wanted.filter.is_empty()
+    }
+
     fn go(&mut self, screen: Screen) {
         self.screen = screen;
         self.typing = None;
@@ -300,6 +319,12 @@ impl App {
         {
             self.open_unit(i);
         }
+    }
+
+    /// Lots of the tender that is shown.
+    fn lots(&self) -> usize {
+        let result = tender::shown(self).and_then(|tender| tender.result.as_ref().ok());
+        result.map_or(0, |result| result.lots.len())
     }
 
     fn turn(&mut self, by: usize) {
@@ -321,7 +346,7 @@ impl App {
             Screen::Unit => return self.unit.facts.scroll(step, len, height),
             Screen::Basis => &mut self.basis.list,
             Screen::Journal => &mut self.journal,
-            Screen::Tender => return,
+            Screen::Tender => &mut self.tender.list,
         };
         list.step(step, len, height);
     }
@@ -334,7 +359,7 @@ impl App {
             Screen::Unit => unit::facts_len(self),
             Screen::Basis => basis::len(),
             Screen::Journal => self.opened.as_ref().map_or(0, |o| o.journal.len()),
-            Screen::Tender => 0,
+            Screen::Tender => tender::len(self),
         }
     }
 
@@ -344,6 +369,12 @@ impl App {
         if self.screen == Screen::Fleet {
             self.fleet.settle(self.view.places.len(), height);
             self.left_out.settle(self.view.left_out.len(), height);
+            if let (true, Some(ranked), Some(i)) =
+                (frame::shows_detail(self), &self.ranked, self.under_cursor())
+                && !self.glance.shows(ranked, i)
+            {
+                self.glance.open(ranked, i);
+            }
         } else {
             self.step(Step::Lines(0));
         }

@@ -36,7 +36,7 @@ pub fn round_scale(value: f64) -> f64 {
 const EIGHTHS: [char; 8] = ['█', '▏', '▎', '▍', '▌', '▋', '▊', '▉'];
 
 /// The bar in `cells` cells, `scale` filling all of them. Exactly `cells` wide.
-pub fn bar(theme: &Theme, parts: &Parts, scale: f64, cells: u16) -> Vec<Span<'static>> {
+pub fn bar(theme: Theme, parts: &Parts, scale: f64, cells: u16) -> Vec<Span<'static>> {
     #[expect(
         clippy::cast_possible_truncation,
         clippy::cast_sign_loss,
@@ -81,7 +81,7 @@ pub fn bar(theme: &Theme, parts: &Parts, scale: f64, cells: u16) -> Vec<Span<'st
 }
 
 /// What the fills of a bar mean, in one line.
-pub fn legend(theme: &Theme, shown: &[(Part, &'static str)]) -> Vec<Span<'static>> {
+pub fn legend(theme: Theme, shown: &[(Part, &'static str)]) -> Vec<Span<'static>> {
     shown
         .iter()
         .flat_map(|(part, word)| {
@@ -99,7 +99,7 @@ mod tests {
     use crate::tui::caps::{Caps, Colours};
 
     fn drawn(caps: Caps, parts: &Parts, cells: u16) -> String {
-        bar(&Theme::new(caps), parts, 100.0, cells).iter().map(|s| s.content.as_ref()).collect()
+        bar(Theme::new(caps), parts, 100.0, cells).iter().map(|s| s.content.as_ref()).collect()
     }
 
     #[test]

@@ -56,9 +56,8 @@ impl Caps {
         let able = if many { Colours::Many } else { Colours::Sixteen };
         let colours = match wish {
             ColourWish::Never => Colours::None,
-            ColourWish::Always => able,
             ColourWish::Auto if set("NO_COLOR").is_some() || term == "dumb" => Colours::None,
-            ColourWish::Auto => able,
+            ColourWish::Auto | ColourWish::Always => able,
         };
         let locale = ["LC_ALL", "LC_CTYPE", "LANG"].into_iter().find_map(set).unwrap_or_default();
         let utf8 = locale.to_lowercase().replace('-', "").contains("utf8");

@@ -9,7 +9,7 @@ use ratatui::widgets::canvas::{Canvas, Line as Stroke, Points};
 
 use super::bar::round_scale;
 use super::caps::Marks;
-use super::frame::{put, put_line};
+use super::frame::{put, put_line, put_over};
 use super::text;
 use super::theme::{Part, Theme};
 
@@ -23,7 +23,7 @@ pub(super) struct Reference {
 /// Draws points over years, the least of them marked. The reference is drawn where it does not crush the line.
 #[expect(clippy::cast_precision_loss, reason = "calendar years")]
 pub(super) fn draw(
-    theme: &Theme,
+    theme: Theme,
     points: &[(i64, f64)],
     reference: &Reference,
     area: Rect,
@@ -57,6 +57,12 @@ pub(super) fn draw(
         height: area.height - 2,
         ..area
     };
+    let marker = match (theme.caps().ascii, theme.caps().marks) {
+        (false, Marks::Braille) => Marker::Braille,
+        _ => Marker::Dot,
+    };
+    // The line of cells in which the canvas sets a dot of this height.
+    let dots = if marker == Marker::Braille { 4 } else { 1 };
     let row = |y: f64| {
         let share = (high - y) / (high - low);
         #[expect(
@@ -64,8 +70,8 @@ pub(super) fn draw(
             clippy::cast_sign_loss,
             reason = "inside the plot"
         )]
-        let row = (share * f64::from(plot.height - 1)).round().max(0.0) as u16;
-        row.min(plot.height - 1)
+        let dot = (share * f64::from(plot.height * dots - 1)).round().max(0.0) as u16;
+        (dot / dots).min(plot.height - 1)
     };
     let mut tick = low;
     while tick <= high + step / 2.0 {
@@ -84,11 +90,7 @@ pub(super) fn draw(
         (first.0 as f64, if last.0 > first.0 { last.0 as f64 } else { first.0 as f64 + 1.0 });
     let style = theme.part(Part::Iron);
     let colour = style.fg.unwrap_or_default();
-    let marker = match (theme.caps().ascii, theme.caps().marks) {
-        (false, Marks::Braille) => Marker::Braille,
-        _ => Marker::Dot,
-    };
-    let dots: Vec<(f64, f64)> = (0..plot.width)
+    let dotted: Vec<(f64, f64)> = (0..plot.width)
         .filter(|x| x % 3 != 2)
         .map(|x| {
             (x0 + (x1 - x0) * f64::from(x) / f64::from(plot.width.max(2) - 1), reference.value)
@@ -100,7 +102,7 @@ pub(super) fn draw(
         .y_bounds([low, high])
         .paint(|ctx| {
             if near {
-                ctx.draw(&Points::new(&dots, theme.part(Part::Price).fg.unwrap_or_default()));
+                ctx.draw(&Points::new(&dotted, theme.part(Part::Price).fg.unwrap_or_default()));
                 ctx.layer();
             }
             for pair in points.windows(2) {
@@ -112,17 +114,27 @@ pub(super) fn draw(
                     colour,
                 ));
             }
-            ctx.layer();
-            ctx.print(least.0 as f64, least.1, Line::styled("◆", theme.heading()));
         })
         .render(plot, buffer);
+    let column = {
+        let (dots, share) = (if dots == 4 { 2 } else { 1 }, (least.0 as f64 - x0) / (x1 - x0));
+        #[expect(
+            clippy::cast_possible_truncation,
+            clippy::cast_sign_loss,
+            reason = "inside the plot"
+        )]
+        let dot = (share * f64::from(plot.width * dots - 1)).round().max(0.0) as u16;
+        (dot / dots).min(plot.width - 1)
+    };
+    let at = Rect { x: plot.x + column, width: 1, ..plot };
+    put_over(buffer, at, row(least.1), "◆", theme.heading());
     let word = if near {
         let above = row(reference.value);
         let word = format!(" {} {} ", reference.word, text::number(reference.value, 0));
         let wide = u16::try_from(word.len()).unwrap_or(0);
         if plot.width > wide {
             let at = Rect { x: plot.right() - wide, width: wide, ..plot };
-            put(buffer, at, above, &word, theme.muted());
+            put_over(buffer, at, above, &word, theme.muted());
         }
         String::new()
     } else {
@@ -149,8 +161,9 @@ pub(super) fn draw(
     let end = Rect { x: plot.right().saturating_sub(4), width: plot.width.min(4), ..area };
     put(buffer, end, plot.height + 1, &ends, theme.muted());
     let least = format!("◆ least in {}: {}   {word}", least.0, text::number(least.1, 0));
+    let least = least.trim_end().to_owned();
     let wide = u16::try_from(text::width(&least)).unwrap_or(0);
-    if plot.width > wide + 12 {
+    if plot.width >= wide + 10 {
         let at = Rect { x: plot.x + (plot.width - wide) / 2, width: wide, ..area };
         put_line(buffer, at, plot.height + 1, &Line::styled(least, theme.heading()));
     }

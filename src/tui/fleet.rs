@@ -9,9 +9,11 @@ use super::app::App;
 use super::bar::{self, Parts};
 use super::frame::{put, put_line, select};
 use super::text;
-use super::theme::{Part, Theme};
+use super::theme::Part;
+use super::unit::{LEGEND, choices, scale};
 use super::words::currency_in;
 use super::work::Ranked;
+use crate::engine::decision::LeftOut;
 use crate::study::figures::{Figure, figure};
 use crate::study::losses;
 use crate::study::rank::{By, RankRow};
@@ -34,6 +36,16 @@ pub(super) fn areas(body: Rect) -> Areas {
     let list = Rect { width: body.width - wide - 1, ..body };
     let detail = Rect { x: list.right() + 1, width: wide, ..body };
     Areas { list, detail: Some(detail) }
+}
+
+/// Lines below the units left out that say the whole reason, where nothing beside the list does.
+const REASON: u16 = 3;
+
+/// Lines of the list.
+pub(super) fn rows(app: &App, body: Rect) -> u16 {
+    let areas = areas(body);
+    let below = if app.show_left_out && areas.detail.is_none() { REASON } else { 0 };
+    areas.list.height.saturating_sub(HEADER + below)
 }
 
 /// A column of the table.
@@ -63,7 +75,7 @@ const COLUMNS: [Column; 12] = [
 ];
 
 /// Cells of the narrowest and the widest bar.
-const BAR: (usize, usize) = (16, 40);
+const BAR: (usize, usize) = (20, 40);
 
 fn cell(row: &RankRow, key: &str) -> String {
     let money = |value: f64| text::number(value, 0);
@@ -96,7 +108,7 @@ pub(super) fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
     let Some(ranked) = &app.ranked else { return };
     let areas = areas(area);
     if app.show_left_out {
-        left_out(app, ranked, areas.list, buffer);
+        left_out(app, ranked, areas.list, rows(app, area), buffer);
     } else {
         ranking(app, ranked, areas.list, buffer);
     }
@@ -106,7 +118,7 @@ pub(super) fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
 }
 
 fn ranking(app: &App, ranked: &Ranked, area: Rect, buffer: &mut Buffer) {
-    let (theme, list) = (&app.theme, app.fleet);
+    let (theme, list) = (app.theme, app.fleet);
     let height = area.height.saturating_sub(HEADER);
     let currency = text::cut(&ranked.desk.sheet.basis.currency, 8);
     let visible = app.view.places.iter().skip(list.offset).take(usize::from(height));
@@ -172,10 +184,11 @@ fn ranking(app: &App, ranked: &Ranked, area: Rect, buffer: &mut Buffer) {
     };
     let headings = join(&mut kept.iter().map(|n| (*n, figures[*n].1.heading.to_owned())));
     let units = join(&mut kept.iter().map(|n| (*n, unit(figures[*n].1))));
-    let mut above = vec![Span::styled(headings, theme.heading()), Span::raw("losses: ")];
+    let mut above = vec![Span::styled(headings, theme.heading())];
     above.extend(bar::legend(theme, &[(Part::Iron, "iron"), (Part::Copper, "copper")]));
     put_line(buffer, area, 0, &Line::from(above));
-    let scale_said = format!("full: {} {currency} a year", text::number(scale, 0));
+    let scale_said = format!("full {} {currency}/year", text::number(scale, 0));
+    let scale_said = text::right(&scale_said, cells_of_bar);
     put(buffer, area, 1, &format!("{units}{scale_said}"), theme.muted());
 
     for (y, (shown, (_, cost))) in (HEADER..).zip(cells.iter().zip(&rows)) {
@@ -209,9 +222,8 @@ fn ranking(app: &App, ranked: &Ranked, area: Rect, buffer: &mut Buffer) {
     }
 }
 
-fn left_out(app: &App, ranked: &Ranked, area: Rect, buffer: &mut Buffer) {
-    let (theme, list) = (&app.theme, app.left_out);
-    let height = area.height.saturating_sub(HEADER);
+fn left_out(app: &App, ranked: &Ranked, area: Rect, height: u16, buffer: &mut Buffer) {
+    let (theme, list) = (app.theme, app.left_out);
     if app.view.left_out.is_empty() {
         put(buffer, area, 1, " No unit is left out. Press x for the ranking.", theme.muted());
         return;
@@ -235,6 +247,11 @@ fn left_out(app: &App, ranked: &Ranked, area: Rect, buffer: &mut Buffer) {
         put(buffer, area, y, &format!("{mark}{}", row(out.unit, site, out.why)), theme.plain());
         if at == list.cursor {
             select(buffer, Rect { y: area.y + y, height: 1, ..area });
+            let below = Rect { y: area.y + HEADER + height, ..area }.intersection(area);
+            let said = text::wrap(out.why, usize::from(area.width.saturating_sub(3)));
+            for (y, said) in (1..below.height).zip(said) {
+                put(buffer, below, y, &format!("  {said}"), theme.plain());
+            }
         }
     }
 }
@@ -246,26 +263,41 @@ fn beside(app: &App, ranked: &Ranked, area: Rect, buffer: &mut Buffer) {
     }
     let Some(i) = app.under_cursor() else { return };
     let area = Rect { x: area.x + 1, width: area.width.saturating_sub(1), ..area };
-    for (y, line) in (0..area.height).zip(detail(&app.theme, ranked, i, usize::from(area.width))) {
+    for (y, line) in (0..area.height).zip(detail(app, ranked, i, usize::from(area.width))) {
         put_line(buffer, area, y, &line);
     }
 }
 
-fn detail(theme: &Theme, ranked: &Ranked, i: usize, cells: usize) -> Vec<Line<'static>> {
-    let fleet = &ranked.desk.fleet;
+/// The unit under the cursor in lines.
+fn detail(app: &App, ranked: &Ranked, i: usize, cells: usize) -> Vec<Line<'static>> {
+    let (theme, fleet) = (app.theme, &ranked.desk.fleet);
     let currency = text::cut(&ranked.desk.sheet.basis.currency, 8);
     let mut lines = vec![
         Line::styled(text::cut(fleet.unit.get(i), cells), theme.heading()),
         Line::raw(text::cut(fleet.site(i).unwrap_or(""), cells)),
         Line::default(),
     ];
-    let place = ranked.place[i] as usize;
-    let Some(row) = ranked.ranking.row(&ranked.desk, place) else {
-        let why =
-            ranked.ranking.outcomes[i].left_out.map_or("", crate::engine::decision::LeftOut::why);
-        lines.extend(text::wrap(&format!("left out: {why}"), cells).into_iter().map(Line::raw));
+    let Some(row) = ranked.ranking.row(&ranked.desk, ranked.place[i] as usize) else {
+        let why = ranked.ranking.outcomes[i].left_out.map_or("", LeftOut::why);
+        let said = text::wrap(&format!("left out: {why}"), cells);
+        lines.extend(said.into_iter().map(Line::raw));
         return lines;
     };
+    if let Some(Ok(known)) = app.glance.dossier.as_ref().map(|dossier| &dossier.known) {
+        let choices = choices(&ranked.desk, known, ranked.ranking.context.assumptions.first_year);
+        let scale = scale(&choices);
+        for choice in choices {
+            let said = format!("{} {}", text::left(&choice.word, 13), text::cut(&choice.offer, 14));
+            let pv = choice.pv.map_or("none open".to_owned(), |pv| text::number(pv, 0));
+            let room = cells.saturating_sub(text::width(&said) + 1);
+            lines.push(Line::raw(format!("{said} {}", text::right(&pv, room))));
+            let wide = u16::try_from(cells).unwrap_or(u16::MAX);
+            let bar = choice.cost.map(|cost| bar::bar(theme, &cost, scale, wide));
+            lines.push(Line::from(bar.unwrap_or_default()));
+        }
+        lines.push(Line::from(bar::legend(theme, &LEGEND)));
+        lines.push(Line::default());
+    }
     let mut fact = |key: &str, value: Option<String>| {
         if let (Some(value), Some(figure)) = (value, figure(key)) {
             let unit = currency_in(figure.unit, &currency);
@@ -274,33 +306,18 @@ fn detail(theme: &Theme, ranked: &Ranked, i: usize, cells: usize) -> Vec<Line<'s
             lines.push(Line::raw(format!("{} {value}", text::left(figure.heading, room))));
         }
     };
-    let money = |value: f64| Some(text::number(value, 0));
-    fact("rank", Some(text::count(row.rank)));
+    let number = |value: f64| Some(text::number(value, 0));
     fact("rated_kva", Some(text::plain(row.rated_kva, 1)));
-    fact("year_made", row.year_made.map(|y| y.to_string()));
+    fact("year_made", row.year_made.map(|year| year.to_string()));
     fact("peak_pu", Some(text::number(row.peak_pu, 2)));
-    fact("keep_pv", money(row.keep_pv));
-    fact("now_pv", row.now_pv.and_then(money));
-    fact("now_offer", row.now_offer.map(str::to_owned));
-    fact("best_pv", money(row.best_pv));
-    fact("best_offer", row.best_offer.map(str::to_owned));
-    fact("best_year", row.best_year.map(|y| y.to_string()));
-    fact("saving_pv", money(row.saving_pv));
-    fact("waiting_pv", money(row.waiting_pv));
-    fact("payback_years", row.payback_years.map(|y| text::number(y, 1)));
-    fact("capital", row.capital.and_then(money));
-    fact("energy_saved_kwh", row.energy_saved_kwh.map(|e| text::number(e, 0)));
-    fact("co2_saved_kg", row.co2_saved_kg.map(|c| text::number(c, 0)));
+    fact("saving_pv", number(row.saving_pv));
+    fact("waiting_pv", number(row.waiting_pv));
+    fact("payback_years", row.payback_years.map(|years| text::number(years, 1)));
+    fact("capital", row.capital.and_then(number));
+    fact("energy_saved_kwh", row.energy_saved_kwh.and_then(number));
+    fact("co2_saved_kg", row.co2_saved_kg.and_then(number));
     if let Ok(year) = losses::of_unit(&ranked.desk, &ranked.ranking.context, i) {
-        lines.push(Line::default());
-        let said = format!("losses {} {currency} a year", text::number(year.loss_cost, 0));
-        lines.push(Line::raw(said));
-        let cost = bar::parts(0.0, year.cost.no_load, year.cost.load, year.cost.auxiliary);
-        let wide = u16::try_from(cells).unwrap_or(u16::MAX);
-        lines.push(Line::from(bar::bar(theme, &cost, bar::whole(&cost), wide)));
-        let iron = text::number(year.cost.no_load, 0);
-        let copper = text::number(year.cost.load, 0);
-        lines.push(Line::raw(format!("iron {iron}   copper {copper}")));
+        fact("loss_cost", number(year.loss_cost));
     }
     if !row.flags.is_empty() {
         lines.push(Line::default());
@@ -314,30 +331,30 @@ fn detail(theme: &Theme, ranked: &Ranked, i: usize, cells: usize) -> Vec<Line<'s
     lines
 }
 
-/// The sums, in the status line.
-pub(super) fn status(app: &App) -> Line<'static> {
-    let Some(ranked) = &app.ranked else { return Line::default() };
+/// The counts and the sums, in the status line.
+pub(super) fn status(app: &App) -> (Line<'static>, Line<'static>) {
+    let Some(ranked) = &app.ranked else { return Default::default() };
     let (ranking, currency) = (&ranked.ranking, &ranked.desk.sheet.basis.currency);
     let shown = if app.show_left_out { app.view.left_out.len() } else { app.view.places.len() };
-    let mut said = format!(
-        " {} ranked, {} left out",
-        text::count(ranking.order.len()),
-        text::count(ranking.left_out.len())
-    );
-    if !app.view.spec.filter.is_empty() {
-        said = format!(" {} shown of{said}", text::count(shown));
-    }
-    if app.view.spec.by != By::Saving {
-        said.push_str(&format!(", by {}", app.view.spec.by.word()));
-    }
+    let (ranks, out) = (text::count(ranking.order.len()), text::count(ranking.left_out.len()));
+    let said = match app.view.spec.filter.as_str() {
+        "" => format!("{ranks} ranked, {out} left out"),
+        filter => format!("{} with {:?}", text::count(shown), text::cut(filter, 16)),
+    };
+    let by = match app.view.spec.by {
+        By::Saving => String::new(),
+        _ if app.show_left_out => String::new(),
+        by => format!(", by {}", by.word()),
+    };
+    let said = format!(" {said}{by}");
     let t = ranking.totals;
     let money = |value: f64| text::number(value, 0);
-    said.push_str(&format!(
-        "   all: keep {}  best {}  saving {} {}",
+    let sums = format!(
+        "all, {}: keep {}  best {}  saving {} ",
+        text::cut(currency, 8),
         money(t.keep_pv),
         money(t.best_pv),
-        money(t.saving_pv),
-        text::cut(currency, 8)
-    ));
-    Line::raw(said)
+        money(t.saving_pv)
+    );
+    (Line::raw(said), Line::raw(sums))
 }

@@ -6,11 +6,12 @@ use ratatui::buffer::Buffer;
 use ratatui::layout::{Rect, Size};
 use ratatui::style::{Modifier, Style};
 use ratatui::text::{Line, Span};
+use ratatui::widgets::{Clear, Widget as _};
 
-use super::action::{self, Screen};
+use super::action::{self, Action, ActionDef, Screen};
 use super::app::App;
 use super::theme;
-use super::{basis, fleet, help, journal, text, unit};
+use super::{basis, fleet, help, journal, tender, text, unit};
 
 /// The smallest terminal in which the screens are drawn.
 pub(super) const LEAST: Size = Size { width: 60, height: 16 };
@@ -46,12 +47,17 @@ pub(super) fn list_height(app: &App) -> usize {
         return usize::from(body.height);
     }
     usize::from(match app.screen {
-        Screen::Fleet => fleet::areas(body).list.height.saturating_sub(fleet::HEADER),
+        Screen::Fleet => fleet::rows(app, body),
         Screen::Unit => unit::draw::areas(body).facts.height,
         Screen::Basis => basis::draw::areas(body).list.height.saturating_sub(1),
-        Screen::Tender => 0,
+        Screen::Tender => tender::draw::rows(app, body),
         Screen::Journal => body.height.saturating_sub(journal::AROUND),
     })
+}
+
+/// Whether the unit under the cursor stands beside the fleet.
+pub(super) fn shows_detail(app: &App) -> bool {
+    fleet::areas(areas(Rect::from(app.size)).body).detail.is_some()
 }
 
 /// Puts text at the start of line `y` of an area: cleaned, cut to its width.
@@ -61,6 +67,13 @@ pub(super) fn put(buffer: &mut Buffer, area: Rect, y: u16, shown: &str, style: S
         let cut = text::cut(shown, usize::from(area.width));
         buffer.set_stringn(area.x, area.y + y, cut, usize::from(area.width), style);
     }
+}
+
+/// Puts text over what was drawn there: nothing of its look remains.
+pub(super) fn put_over(buffer: &mut Buffer, area: Rect, y: u16, shown: &str, style: Style) {
+    let line = Rect { y: area.y.saturating_add(y), height: u16::from(y < area.height), ..area };
+    Clear.render(line.intersection(buffer.area), buffer);
+    put(buffer, area, y, shown, style);
 }
 
 /// Puts a line at line `y` of an area; its text is clean already.
@@ -106,7 +119,7 @@ impl App {
                     Screen::Unit => unit::draw::draw(self, parts.body, buffer),
                     Screen::Basis => basis::draw::draw(self, parts.body, buffer),
                     Screen::Journal => journal::draw(self, parts.body, buffer),
-                    Screen::Tender => {}
+                    Screen::Tender => tender::draw::draw(self, parts.body, buffer),
                 }
             }
             cursor = self.status(parts.status, buffer);
@@ -129,18 +142,22 @@ impl App {
         let tabs = Line::from(spans);
         put_line(buffer, area, 0, &tabs);
         let Some(opened) = &self.opened else { return };
-        let room = usize::from(area.width).saturating_sub(tabs.width() + 3);
-        let mut right = Vec::new();
-        if self.basis.is_changed() {
-            right.push(Span::styled("basis changed ", self.theme.changed()));
-        }
-        let used: usize = right.iter().map(Span::width).sum();
+        let room = usize::from(area.width).saturating_sub(tabs.width() + 1);
         let name = self.ranked.as_ref().map_or("", |r| &r.desk.sheet.basis.name);
-        let both = format!("{name}  {} ", opened.title);
-        let both =
-            if text::width(&both) > room.saturating_sub(used) { format!("{name} ") } else { both };
-        right.push(Span::raw(text::cut(&both, room.saturating_sub(used))));
-        put_right(buffer, area, 0, &Line::from(right));
+        let (name, title) = (text::cut(name, 24), text::cut(&opened.title, 32));
+        let (changed, style) = if self.basis.is_changed() {
+            ("basis changed  ", self.theme.changed())
+        } else {
+            ("", self.theme.plain())
+        };
+        // The most that there is room for.
+        for said in [format!("{name}  {title} "), format!("{name} "), String::new()] {
+            let line = Line::from(vec![Span::styled(changed, style), Span::raw(said)]);
+            if line.width() <= room {
+                put_right(buffer, area, 0, &line);
+                return;
+            }
+        }
     }
 
     fn first_frame(&self, area: Rect, buffer: &mut Buffer) {
@@ -174,23 +191,29 @@ impl App {
             let line = format!(" {}   Esc stops", progress(busy.what, &busy.watch));
             put(buffer, area, 0, &line, self.theme.plain());
         } else if self.ranked.is_some() && self.help.is_none() {
-            let line = match self.screen {
+            let (left, right) = match self.screen {
                 Screen::Fleet => fleet::status(self),
-                Screen::Basis => basis::draw::status(self),
-                _ => Line::default(),
+                Screen::Basis => (basis::draw::status(self), Line::default()),
+                _ => Default::default(),
             };
-            put_line(buffer, area, 0, &line);
+            put_line(buffer, area, 0, &left);
+            if left.width() + right.width() < usize::from(area.width) {
+                put_right(buffer, area, 0, &right);
+            }
         }
         None
     }
 
     fn context(&self, area: Rect, buffer: &mut Buffer) {
+        let ascii = self.theme.caps().ascii;
         let mut spans = vec![Span::raw(" ")];
         let mut room = usize::from(area.width).saturating_sub(1);
         let reachable = action::reachable(&self.places());
-        let shown: Vec<_> = reachable.iter().filter(|(def, _)| def.shown).collect();
+        let useful = |def: &ActionDef| def.action != Action::Back || self.can_go_back();
+        let shown: Vec<_> = reachable.iter().filter(|(def, _)| def.shown && useful(def)).collect();
         // The last ones (help, quit) always find room.
-        let wide = |n: &usize| shown[*n].1[0].name().chars().count() + shown[*n].0.title.len() + 3;
+        let wide =
+            |n: &usize| shown[*n].1[0].name(ascii).chars().count() + shown[*n].0.title.len() + 3;
         let mut keep: Vec<usize> = Vec::new();
         let order =
             (shown.len().saturating_sub(2)..shown.len()).chain(0..shown.len().saturating_sub(2));
@@ -203,7 +226,7 @@ impl App {
         keep.sort_unstable();
         for n in keep {
             let (def, keys) = shown[n];
-            spans.push(Span::styled(keys[0].name(), self.theme.key()));
+            spans.push(Span::styled(keys[0].name(ascii), self.theme.key()));
             spans.push(Span::raw(format!(" {}  ", def.title)));
         }
         put_line(buffer, area, 0, &Line::from(spans));

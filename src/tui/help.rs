@@ -12,7 +12,8 @@ use super::theme::Part;
 
 /// The help in lines of at most `cells`.
 pub(super) fn lines(app: &App, cells: usize) -> Vec<Line<'static>> {
-    let theme = &app.theme;
+    let theme = app.theme;
+    let ascii = theme.caps().ascii;
     let places = [Place::On(app.screen), Place::Filter, Place::List, Place::Everywhere];
     let reachable = action::reachable(&[Place::On(app.screen), Place::List, Place::Everywhere]);
     let mut lines = Vec::new();
@@ -33,7 +34,7 @@ pub(super) fn lines(app: &App, cells: usize) -> Vec<Line<'static>> {
         }
         lines.push(Line::styled(format!(" {}", place.title()), theme.heading()));
         for (def, keys) in here {
-            let keys: Vec<String> = keys.iter().map(|key| key.name()).collect();
+            let keys: Vec<String> = keys.iter().map(|key| key.name(ascii)).collect();
             let keys = text::left(&keys.join("  "), 20);
             let said = text::wrap(def.help, cells.saturating_sub(24));
             for (n, said) in said.into_iter().enumerate() {

@@ -12,7 +12,7 @@ pub(super) const AROUND: u16 = 5;
 
 /// Draws the screen.
 pub(super) fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
-    let theme = &app.theme;
+    let theme = app.theme;
     let lines = app.opened.as_ref().map_or(&[][..], |opened| &opened.journal);
     if lines.is_empty() {
         put(buffer, area, 1, " Nothing was written into this book yet.", theme.muted());

@@ -47,8 +47,8 @@ impl Key {
         }
     }
 
-    /// How it is written for people.
-    pub fn name(self) -> String {
+    /// How it is written for people; arrows in words where only ASCII can be shown.
+    pub fn name(self, ascii: bool) -> String {
         let code = match self.code {
             KeyCode::Char(' ') => "Space".to_owned(),
             KeyCode::Char(c) => c.to_string(),
@@ -62,10 +62,10 @@ impl Key {
             KeyCode::End => "End".to_owned(),
             KeyCode::PageUp => "PgUp".to_owned(),
             KeyCode::PageDown => "PgDn".to_owned(),
-            KeyCode::Up => "↑".to_owned(),
-            KeyCode::Down => "↓".to_owned(),
-            KeyCode::Left => "←".to_owned(),
-            KeyCode::Right => "→".to_owned(),
+            KeyCode::Up => if ascii { "Up" } else { "↑" }.to_owned(),
+            KeyCode::Down => if ascii { "Down" } else { "↓" }.to_owned(),
+            KeyCode::Left => if ascii { "Left" } else { "←" }.to_owned(),
+            KeyCode::Right => if ascii { "Right" } else { "→" }.to_owned(),
             KeyCode::F(n) => format!("F{n}"),
             other => format!("{other:?}"),
         };

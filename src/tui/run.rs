@@ -17,7 +17,7 @@ use signal_hook::iterator::Signals;
 use super::app::{App, ExitReason};
 use super::caps::Caps;
 use super::session::Session;
-use super::terminal::Held;
+use super::terminal::{Held, is_held};
 use super::work::{Done, Job, Worker};
 use crate::study::{StudyError, Watch};
 
@@ -151,13 +151,13 @@ fn event_loop(
         }
         let since = drawn.map_or(FRAME, |at| at.elapsed());
         let wait = if changed && since >= FRAME {
-            if held.is_held() {
+            if is_held() {
                 held.terminal.draw(|frame| app.draw(frame))?;
             }
             (drawn, changed) = (Some(Instant::now()), false);
             continue;
         } else if changed {
-            Some(FRAME - since)
+            Some(FRAME.saturating_sub(since))
         } else if app.is_busy() {
             Some(PROGRESS)
         } else {

@@ -45,11 +45,6 @@ impl Held {
         Ok(Self { terminal })
     }
 
-    /// Whether it is still held: a panic elsewhere gives it back.
-    pub(super) fn is_held(&self) -> bool {
-        HELD.load(Ordering::SeqCst)
-    }
-
     /// Gives the terminal to the shell, stops this process, and takes the terminal again when continued.
     pub(super) fn suspend(&mut self) -> io::Result<()> {
         give_back();
@@ -63,6 +58,11 @@ impl Held {
         seize()?;
         self.terminal.clear()
     }
+}
+
+/// Whether the terminal is held: a panic of any thread gives it back.
+pub(super) fn is_held() -> bool {
+    HELD.load(Ordering::SeqCst)
 }
 
 impl Drop for Held {

@@ -34,16 +34,16 @@ impl Theme {
     }
 
     /// What the terminal can show.
-    pub fn caps(&self) -> Caps {
+    pub fn caps(self) -> Caps {
         self.caps
     }
 
     /// Whether there are colours.
-    pub fn coloured(&self) -> bool {
+    pub fn coloured(self) -> bool {
         self.caps.colours != Colours::None
     }
 
-    fn fg(&self, sixteen: Color, many: u8) -> Style {
+    fn fg(self, sixteen: Color, many: u8) -> Style {
         match self.caps.colours {
             Colours::None => Style::new(),
             Colours::Sixteen => Style::new().fg(sixteen),
@@ -52,36 +52,35 @@ impl Theme {
     }
 
     /// Plain text.
-    #[expect(clippy::unused_self, reason = "one of the roles")]
-    pub fn plain(&self) -> Style {
+    pub fn plain(self) -> Style {
         Style::new()
     }
     /// A heading.
-    pub fn heading(&self) -> Style {
+    pub fn heading(self) -> Style {
         Style::new().add_modifier(Modifier::BOLD)
     }
     /// What may be passed over at first.
-    pub fn muted(&self) -> Style {
+    pub fn muted(self) -> Style {
         Style::new().add_modifier(Modifier::DIM)
     }
     /// A key to press.
-    pub fn key(&self) -> Style {
+    pub fn key(self) -> Style {
         self.fg(Color::Blue, 32).add_modifier(Modifier::BOLD)
     }
     /// The line the cursor is on.
-    pub fn selected(&self) -> Style {
+    pub fn selected(self) -> Style {
         Style::new().add_modifier(Modifier::REVERSED)
     }
     /// What is doubtful or went wrong.
-    pub fn warning(&self) -> Style {
+    pub fn warning(self) -> Style {
         self.fg(Color::Yellow, 172).add_modifier(Modifier::BOLD)
     }
     /// What was changed and is not stored.
-    pub fn changed(&self) -> Style {
+    pub fn changed(self) -> Style {
         self.fg(Color::Magenta, 133).add_modifier(Modifier::BOLD)
     }
     /// Part of a cost.
-    pub fn part(&self, part: Part) -> Style {
+    pub fn part(self, part: Part) -> Style {
         match part {
             Part::Price => self.fg(Color::DarkGray, 245),
             Part::Iron => self.fg(Color::Blue, 32),
@@ -91,11 +90,10 @@ impl Theme {
     }
 
     /// The fill of a part: solid where its colour tells it apart, a pattern where there is none.
-    pub fn fill(&self, part: Part) -> char {
+    pub fn fill(self, part: Part) -> char {
         match (part, self.coloured(), self.caps.ascii) {
-            (_, true, false) => '█',
+            (_, true, false) | (Part::Iron, false, false) => '█',
             (Part::Price, false, false) => '░',
-            (Part::Iron, false, false) => '█',
             (Part::Copper, false, false) => '▒',
             (Part::Other, false, false) => '▚',
             (Part::Price, _, true) => '.',
@@ -106,12 +104,23 @@ impl Theme {
     }
 
     /// The mark before the selected line.
-    pub fn mark(&self) -> char {
+    pub fn mark(self) -> char {
         if self.caps.ascii { '>' } else { '▶' }
     }
 
+    /// The fill of region number `n` of a map: neighbours in rank differ.
+    pub fn region_fill(self, n: usize) -> char {
+        const SHADES: [char; 6] = ['░', '·', '▒', ' ', '▓', '-'];
+        const ASCII: [char; 6] = ['.', ' ', ':', '-', '+', ','];
+        match (self.coloured(), self.caps.ascii) {
+            (true, false) => '▒',
+            (false, false) => SHADES[n % SHADES.len()],
+            (_, true) => ASCII[n % ASCII.len()],
+        }
+    }
+
     /// Colour of region number `n` of a map.
-    pub fn region(&self, n: usize) -> Style {
+    pub fn region(self, n: usize) -> Style {
         const SIXTEEN: [Color; 6] = [
             Color::Blue,
             Color::Yellow,
@@ -135,19 +144,16 @@ fn ascii(c: char) -> char {
         '…' => '~',
         '·' | '•' => '.',
         '×' => 'x',
-        '←' | '‹' => '<',
-        '→' | '›' | '▶' => '>',
+        '←' | '‹' | '≤' => '<',
+        '→' | '›' | '▶' | '≥' => '>',
         '↑' => '^',
         '↓' => 'v',
         '²' => '2',
         '◆' => '@',
-        '≤' => '<',
-        '≥' => '>',
         'Ω' => 'O',
         'η' => 'n',
-        '°' => ' ',
         '\u{2801}'..='\u{28FF}' => '*',
-        '\u{2800}' | '\u{a0}' | '\u{2009}' | '\u{202f}' => ' ',
+        '°' | '\u{2800}' | '\u{a0}' | '\u{2009}' | '\u{202f}' => ' ',
         _ => '?',
     }
 }

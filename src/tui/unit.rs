@@ -6,11 +6,15 @@ mod facts;
 use std::sync::Arc;
 
 use super::app::App;
+use super::bar::{self, Parts};
 use super::list::List;
+use super::theme::Part;
 use super::work::Ranked;
 use crate::engine::columns::Unit;
 use crate::engine::decision::Place;
-use crate::engine::decision::keep_or_replace::Decision;
+use crate::engine::decision::keep_or_replace::{Decision, YearChoice};
+use crate::engine::decision::parts::PolicyCost;
+use crate::study::Desk;
 use crate::study::unit::{ChoiceCosts, choice_costs, decision};
 
 /// State of the screen.
@@ -61,6 +65,12 @@ impl State {
         self.dossier = Some(Dossier { ranked: Arc::clone(ranked), index: i, known });
     }
 
+    /// Whether it already shows this unit under this basis.
+    pub(super) fn shows(&self, ranked: &Arc<Ranked>, i: usize) -> bool {
+        let dossier = self.dossier.as_ref();
+        dossier.is_some_and(|d| d.index == i && Arc::ptr_eq(&d.ranked, ranked))
+    }
+
     /// Takes the record of a unit, if it is still the one that is shown.
     pub(super) fn take_record(&mut self, unit: &str, record: Option<Box<Unit>>) {
         if let (Some(dossier), Some(i)) = (&self.dossier, self.index)
@@ -69,6 +79,69 @@ impl State {
             self.record = record;
         }
     }
+}
+
+/// One of the choices that stand against each other.
+pub(super) struct Choice {
+    pub(super) word: String,
+    pub(super) offer: String,
+    /// Its present value; none where no offer is open.
+    pub(super) pv: Option<f64>,
+    pub(super) cost: Option<Parts>,
+}
+
+/// What the fills of the bars of choices mean.
+pub(super) const LEGEND: [(Part, &str); 4] = [
+    (Part::Price, "price"),
+    (Part::Iron, "iron"),
+    (Part::Copper, "copper"),
+    (Part::Other, "other"),
+];
+
+/// Keeping, replacing now, and the best of all.
+pub(super) fn choices(desk: &Desk, known: &Known, first_year: i64) -> [Choice; 3] {
+    let split = |cost: PolicyCost| {
+        let other = cost.auxiliary + cost.upkeep + cost.failures;
+        bar::parts(cost.capital, cost.no_load, cost.load, other)
+    };
+    let offer = |choice: Option<YearChoice>| {
+        choice.map_or("", |choice| desk.offer_name(choice.offer)).to_owned()
+    };
+    let (decision, costs) = (&known.decision, &known.costs);
+    let when = match decision.best {
+        Some(choice) => format!("best in {}", year(first_year, &choice)),
+        None => "best never".to_owned(),
+    };
+    [
+        Choice {
+            word: "keep".to_owned(),
+            offer: String::new(),
+            pv: Some(decision.keep_pv),
+            cost: Some(split(costs.keep)),
+        },
+        Choice {
+            word: "now".to_owned(),
+            offer: offer(decision.now),
+            pv: decision.now.map(|choice| choice.pv),
+            cost: costs.now.map(split),
+        },
+        Choice {
+            word: when,
+            offer: offer(decision.best),
+            pv: Some(decision.best_pv),
+            cost: Some(split(costs.best.unwrap_or(costs.keep))),
+        },
+    ]
+}
+
+/// The scale that choices share.
+pub(super) fn scale(choices: &[Choice]) -> f64 {
+    choices.iter().filter_map(|c| c.cost).map(|cost| bar::whole(&cost)).fold(0.0, f64::max)
+}
+
+/// The calendar year of a choice.
+fn year(first_year: i64, choice: &YearChoice) -> i64 {
+    first_year + i64::try_from(choice.offset).unwrap_or(0)
 }
 
 /// Lines of the facts.

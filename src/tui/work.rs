@@ -8,8 +8,10 @@ use std::sync::mpsc::{Receiver, TryRecvError};
 use rayon::prelude::*;
 
 use super::session::{RecordReader, Session};
-use crate::engine::columns::Unit;
+use crate::engine::columns::{TenderSheet, Unit};
+use crate::engine::decision::Context;
 use crate::study::rank::{self, By, Ranking};
+use crate::study::tender::{self, BasisForFactors, TenderResult};
 use crate::study::{Desk, StudyError, Watch};
 
 /// A fleet ranked under one basis.
@@ -21,16 +23,36 @@ pub struct Ranked {
     pub ranking: Ranking,
     /// Place of each unit in it; `u32::MAX` where it is left out.
     pub place: Vec<u32>,
+    /// The tenders under the same basis.
+    pub tenders: Vec<Evaluated>,
+}
+
+/// A tender and what its bids come to.
+#[derive(Debug)]
+pub struct Evaluated {
+    /// The tender.
+    pub sheet: Arc<TenderSheet>,
+    /// Its evaluation, or why there is none.
+    pub result: Result<TenderResult, String>,
 }
 
 impl Ranked {
-    fn new(desk: Desk, watch: &Watch) -> Result<Self, StudyError> {
+    fn new(desk: Desk, tenders: &[Arc<TenderSheet>], watch: &Watch) -> Result<Self, StudyError> {
         let ranking = rank::rank(&desk, By::Saving, None, watch)?;
+        let Context { assumptions, market, .. } = &ranking.context;
+        let basis = BasisForFactors { assumptions, market };
+        let tenders = tenders
+            .iter()
+            .map(|sheet| Evaluated {
+                sheet: Arc::clone(sheet),
+                result: tender::evaluate(sheet, Some(&basis), None).map_err(|e| e.to_string()),
+            })
+            .collect();
         let mut place = vec![u32::MAX; desk.fleet.len()];
         for (at, i) in (0u32..).zip(&ranking.order) {
             place[*i as usize] = at;
         }
-        Ok(Self { desk, ranking, place })
+        Ok(Self { desk, ranking, place, tenders })
     }
 }
 
@@ -133,12 +155,13 @@ pub struct Done {
 pub struct Worker<L> {
     loader: Option<L>,
     record: Option<RecordReader>,
+    tenders: Vec<Arc<TenderSheet>>,
 }
 
 impl<L: FnOnce(&Watch) -> Result<Session, StudyError>> Worker<L> {
     /// A worker that opens with `loader`.
     pub fn new(loader: L) -> Self {
-        Self { loader: Some(loader), record: None }
+        Self { loader: Some(loader), record: None, tenders: Vec::new() }
     }
 
     /// Answers one question.
@@ -153,10 +176,11 @@ impl<L: FnOnce(&Watch) -> Result<Session, StudyError>> Worker<L> {
                 let loader = self.loader.take().ok_or(StudyError::Stopped)?;
                 let mut session = loader(watch)?;
                 self.record = session.record.take();
+                self.tenders = session.tenders.drain(..).map(Arc::new).collect();
                 Ok(Answer::Opened(Box::new(session)))
             }
             Question::Rank(desk, spec) => {
-                let ranked = Arc::new(Ranked::new(*desk, watch)?);
+                let ranked = Arc::new(Ranked::new(*desk, &self.tenders, watch)?);
                 let view = view(&ranked, spec, watch)?;
                 Ok(Answer::Ranked(ranked, view))
             }

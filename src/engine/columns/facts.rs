@@ -141,10 +141,10 @@ const UNITS: &[(&str, &str)] = &[
     ("_a", "A"),
     ("_h", "h"),
     ("_c", "°C"),
-    ("_k", "K"),
-    ("_t", "T"),
     ("_cost", "money"),
     ("_value", "money"),
+    ("_k", "K"),
+    ("_t", "T"),
 ];
 
 impl Column {

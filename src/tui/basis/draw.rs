@@ -8,7 +8,7 @@ use crate::engine::columns::{Basis, Column, Value};
 use crate::tui::app::App;
 use crate::tui::frame::{put, select};
 use crate::tui::text;
-use crate::tui::words::{currency_in, label, unit_of};
+use crate::tui::words::{currency_in, unit_of};
 use crate::tui::work::Ranked;
 
 /// Where the parts of the screen stand.
@@ -70,12 +70,12 @@ fn shown(column: &Column, value: &Value) -> String {
 fn blank(column: &Column) -> String {
     match (column.required, column.blank) {
         (_, "") => "none".to_owned(),
-        (_, what) => what.replace('_', " "),
+        (_, what) => what.to_owned(),
     }
 }
 
 fn list(app: &App, area: Rect, buffer: &mut Buffer) {
-    let theme = &app.theme;
+    let theme = app.theme;
     let currency = currency(app);
     let row = |name: &str, value: &str, unit: &str, from: &str| {
         format!(
@@ -104,7 +104,7 @@ fn list(app: &App, area: Rect, buffer: &mut Buffer) {
         } else {
             currency_in(unit_of(column), &currency)
         };
-        let mut line = row(&label(column), &said, &unit, from);
+        let mut line = row(column.name, &said, &unit, from);
         if n == list.cursor {
             line.replace_range(0..1, &theme.mark().to_string());
             style = theme.plain();
@@ -123,21 +123,24 @@ fn currency(app: &App) -> String {
 
 fn about(app: &App, area: Rect, buffer: &mut Buffer) {
     let Some(column) = Basis::COLUMNS.get(app.basis.list.cursor) else { return };
-    let mut said = column.meaning.to_owned();
-    let range = column.range();
-    if !range.is_empty() {
-        said.push_str(&format!(" ({range})"));
-    }
-    if !column.required && !column.blank.is_empty() {
-        said.push_str(&format!("; blank: {}", column.blank.replace('_', " ")));
-    }
-    if let Some(stored) = app.basis.stored.get(app.basis.list.cursor)
-        && app.basis.draft.get(app.basis.list.cursor) != Some(stored)
+    let mut said = Vec::new();
+    if let (Some(stored), Some(now)) =
+        (app.basis.stored.get(app.basis.list.cursor), app.basis.draft.get(app.basis.list.cursor))
+        && now != stored
     {
-        let stored =
-            if *stored == Value::Blank { "blank".to_owned() } else { shown(column, stored) };
-        said = format!("stored: {stored}; {said}");
+        let blank = *stored == Value::Blank;
+        let stored = if blank { "blank".to_owned() } else { shown(column, stored) };
+        said.push(format!("stored: {stored}"));
     }
+    let range = column.range();
+    said.push(match range.as_str() {
+        "" => column.meaning.to_owned(),
+        range => format!("{} ({range})", column.meaning),
+    });
+    if !column.blank.is_empty() {
+        said.push(format!("blank: {}", column.blank));
+    }
+    let said = said.join("; ");
     for (y, line) in
         (0..area.height).zip(text::wrap(&said, usize::from(area.width.saturating_sub(4))))
     {
@@ -146,7 +149,7 @@ fn about(app: &App, area: Rect, buffer: &mut Buffer) {
 }
 
 fn moved(app: &App, stored: &Ranked, now: &Ranked, area: Rect, buffer: &mut Buffer) {
-    let theme = &app.theme;
+    let theme = app.theme;
     let currency = currency(app);
     let (before, after) = (stored.ranking.totals, now.ranking.totals);
     let row = |name: &str, before: &str, after: &str| {
@@ -174,7 +177,7 @@ fn moved(app: &App, stored: &Ranked, now: &Ranked, area: Rect, buffer: &mut Buff
 
 /// The head of the ranking, with the place that each unit had under the stored basis.
 fn ranks(app: &App, stored: &Ranked, now: &Ranked, area: Rect, buffer: &mut Buffer) {
-    let theme = &app.theme;
+    let theme = app.theme;
     let row = |place: &str, was: &str, unit: &str, saving: &str| {
         format!(
             " {} {}  {} {}",

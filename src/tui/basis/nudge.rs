@@ -98,11 +98,10 @@ fn start(column: &Column, draft: &[Value]) -> Value {
 fn step(column: &Column, stored: &Value) -> f64 {
     match unit_of(column) {
         "%" => 0.1,
-        "pu" => 0.01,
         "years" => 1.0,
         "h" => 10.0,
         "/kWh" => 0.001,
-        "kg/kWh" => 0.01,
+        "pu" | "kg/kWh" => 0.01,
         _ => match stored {
             Value::Real(x) if *x > 0.0 => round_scale(*x) / 100.0,
             _ => 1.0,

@@ -7,12 +7,12 @@ use crate::study::figures::figure;
 use crate::study::{Desk, losses};
 use crate::tui::app::App;
 use crate::tui::text;
-use crate::tui::words::{label, unit_of, with_unit};
+use crate::tui::words::{unit_of, with_unit};
 
 /// The facts in lines of at most `cells`.
 pub(super) fn lines(app: &App, cells: usize) -> Vec<Line<'static>> {
     let (Some(dossier), Some(i)) = (&app.unit.dossier, app.unit.index) else { return Vec::new() };
-    let theme = &app.theme;
+    let theme = app.theme;
     let desk = &dossier.ranked.desk;
     let currency = &desk.sheet.basis.currency;
     let mut lines = Vec::new();
@@ -52,7 +52,7 @@ pub(super) fn lines(app: &App, cells: usize) -> Vec<Line<'static>> {
     lines.push(Line::styled("Record", theme.heading()));
     for (column, value) in Unit::COLUMNS.iter().zip(record.values()) {
         if !matches!(column.name, "unit" | "site") && value != Value::Blank {
-            lines.push(fact(&label(column), &shown(column, &value, currency), cells));
+            lines.push(fact(column.name, &shown(column, &value, currency), cells));
         }
     }
     lines

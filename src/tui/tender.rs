@@ -1,0 +1,88 @@
+//! The tender screen: bids by owning cost, what is out and why, who wins at other factors, what would change the
+//! winner. State here; drawing in `draw`, the winner map in `map`.
+
+pub(super) mod draw;
+mod map;
+
+use super::app::App;
+use super::list::List;
+use super::work::Evaluated;
+use crate::engine::columns::Lot;
+use crate::study::tender::LotResult;
+
+/// What is shown where there is no room for everything.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub(super) enum View {
+    /// The bids.
+    #[default]
+    Bids,
+    /// The winner map.
+    Map,
+    /// How far inputs must move before another bid wins.
+    Changes,
+}
+
+impl View {
+    /// The next one.
+    pub(super) fn next(self) -> Self {
+        match self {
+            Self::Bids => Self::Map,
+            Self::Map => Self::Changes,
+            Self::Changes => Self::Bids,
+        }
+    }
+}
+
+/// State of the screen.
+#[derive(Debug, Default)]
+pub(super) struct State {
+    /// Which tender.
+    pub(super) tender: usize,
+    /// Which of its lots.
+    pub(super) lot: usize,
+    /// The bids of the lot.
+    pub(super) list: List,
+    pub(super) view: View,
+}
+
+impl State {
+    /// Shows another lot; `by` goes round.
+    pub(super) fn turn(&mut self, lots: usize, by: usize) {
+        if lots > 0 {
+            self.lot = (self.lot + by) % lots;
+            self.list = List::default();
+        }
+    }
+
+    /// Shows the next tender.
+    pub(super) fn next_tender(&mut self, tenders: usize) {
+        if tenders > 0 {
+            *self =
+                Self { tender: (self.tender + 1) % tenders, view: self.view, ..Self::default() };
+        }
+    }
+}
+
+/// The tender that is shown.
+pub(super) fn shown(app: &App) -> Option<&Evaluated> {
+    app.ranked.as_ref()?.tenders.get(app.tender.tender)
+}
+
+/// The lot that is shown, with what it asks.
+fn lot(app: &App) -> Option<(&Lot, &LotResult)> {
+    let evaluated = shown(app)?;
+    let result = evaluated.result.as_ref().ok()?.lots.get(app.tender.lot)?;
+    let lot = evaluated.sheet.lots.iter().find(|lot| lot.lot == result.lot)?;
+    Some((lot, result))
+}
+
+/// Number of bids of the lot.
+pub(super) fn len(app: &App) -> usize {
+    lot(app).map_or(0, |(_, result)| result.bids.len())
+}
+
+/// The sign of a bid in the map: its place, then letters.
+fn sign(place: usize) -> char {
+    let digits = "123456789abcdefghijklmnopqrstuvwxyz";
+    digits.chars().nth(place.wrapping_sub(1)).unwrap_or('#')
+}
