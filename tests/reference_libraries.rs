@@ -284,6 +284,7 @@ fn capitalised_factors() {
         };
         let assumptions = Assumptions::resolve(&basis).expect("sound");
         let duty = Duty {
+            power_factor: None,
             peak_kva: n(row, "peak_pu"),
             load_growth_pu: n(row, "load_growth"),
             load_factor_pu: None,
