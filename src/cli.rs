@@ -14,9 +14,11 @@ mod journal;
 mod losses;
 mod print;
 mod rank;
+mod settle;
 mod tender;
 mod timings;
 mod unit;
+mod work;
 
 use std::ffi::OsString;
 use std::process::ExitCode;
@@ -74,6 +76,8 @@ fn dispatch(args: &Args, printer: &mut Printer) -> Result<Exit, Failure> {
         Some(Command::Factors(options)) => factors::factors(args, options, printer),
         Some(Command::Tender(options)) => tender::tender(args, options, printer),
         Some(Command::Unit(options)) => unit::unit(args, options, printer),
+        Some(Command::Settle(options)) => settle::settle(args, options, printer),
+        Some(Command::Work(options)) => work::work(options, printer),
         Some(Command::Journal(options)) => journal::journal(args, options, printer),
         Some(Command::Columns { what }) => columns::columns(*what, printer),
         Some(Command::Backup { file }) => book::backup(args, file, printer),

@@ -17,6 +17,7 @@ pub mod settle;
 pub mod tender;
 pub mod unit;
 pub mod watch;
+pub mod work;
 
 use serde::Serialize;
 

@@ -32,9 +32,9 @@ fn fleet() -> Program {
     let mut profiles = format!("interval,{}\n", header[2..].join(","));
     let mut prices = "interval,price_per_kwh\n".to_owned();
     for (i, row) in rows.iter().enumerate() {
-        profiles.push_str(&format!("{},{}\n", i + 1, row[2..].join(",")));
+        profiles += &format!("{},{}\n", i + 1, row[2..].join(","));
         let price: f64 = row[1].parse().expect("a price");
-        prices.push_str(&format!("{},{}\n", i + 1, price / 1000.0));
+        prices += &format!("{},{}\n", i + 1, price / 1000.0);
     }
     program.import("profiles", &program.write("profiles.csv", &profiles), &[]);
     program.import("prices", &program.write("prices.csv", &prices), &["--name", "hourly"]);

@@ -284,12 +284,14 @@ fn capitalised_factors() {
         };
         let assumptions = Assumptions::resolve(&basis).expect("sound");
         let duty = Duty {
+            power_factor: None,
             peak_kva: n(row, "peak_pu"),
             load_growth_pu: n(row, "load_growth"),
             load_factor_pu: None,
             loss_factor_pu: n(row, "loss_factor_pu"),
             energised_hours: n(row, "hours"),
             auxiliary_hours: n(row, "auxiliary_hours"),
+            power_factor: None,
             responsibility_pu: n(row, "responsibility_pu"),
             no_load_price_per_kwh: n(row, "no_load_price_per_kwh"),
             load_price_per_kwh: n(row, "load_price_per_kwh"),

@@ -89,8 +89,12 @@ pub enum Command {
     Factors(Factors),
     /// Evaluate the bids of a tender
     Tender(Tender),
+    /// Measured against guaranteed losses of a tender: excess, penalty, beyond tolerance or not
+    Settle(Tender),
     /// One unit's dossier
     Unit(Unit),
+    /// One trade calculation with its working shown; without a name list them
+    Work(Work),
     /// Who changed what, when, from what and why
     Journal(Journal),
     /// Say what columns a file has: name, unit, range, what a blank means
@@ -121,6 +125,7 @@ fn kind() -> impl TypedValueParser<Value = What> {
 
 /// Options of `import`.
 #[derive(Clone, Debug, clap::Args)]
+#[expect(clippy::struct_excessive_bools, reason = "each is a switch that can be typed")]
 pub struct Import {
     /// What the file holds
     #[arg(value_parser = kind())]
@@ -213,6 +218,7 @@ pub struct Factors {
 
 /// Options of `tender`.
 #[derive(Clone, Debug, clap::Args)]
+#[expect(clippy::struct_field_names, reason = "the words that are typed")]
 pub struct Tender {
     /// The tender
     pub tender: String,
@@ -232,6 +238,16 @@ pub struct Unit {
     /// Show how each figure comes about
     #[arg(long)]
     pub working: bool,
+}
+
+/// Options of `work`.
+#[derive(Clone, Debug, clap::Args)]
+pub struct Work {
+    /// The calculation; without it all are listed with their inputs
+    pub calc: Option<String>,
+    /// Inputs as name=value; lists as name=1,2,3
+    #[arg(value_name = "NAME=VALUE", allow_negative_numbers = true)]
+    pub inputs: Vec<String>,
 }
 
 /// Options of `journal`.

@@ -47,6 +47,8 @@ const SERIES: &[Column] = &[
     },
 ];
 
+const KEYS: &[&str] = &["column", "unit", "required", "range", "blank", "meaning"];
+
 pub(super) fn columns(what: What, printer: &mut Printer) -> std::result::Result<Exit, Failure> {
     let lists: &[&[Column]] = match what {
         What::Units => &[Unit::COLUMNS],
@@ -67,7 +69,6 @@ pub(super) fn columns(what: What, printer: &mut Printer) -> std::result::Result<
         blank: c.blank,
         meaning: c.meaning,
     });
-    const KEYS: &[&str] = &["column", "unit", "required", "range", "blank", "meaning"];
     match printer.format {
         Format::Json => printer.json(&Result { columns: rows.collect() })?,
         Format::Csv => printer.csv(KEYS, rows)?,

@@ -66,7 +66,8 @@ impl Printer {
     }
 
     /// Says something on standard error; that nobody listens there is no reason to fail.
-    pub(super) fn complain(&mut self, text: &str) {
+    #[expect(clippy::unused_self, reason = "the printer is the one who speaks")]
+    pub(super) fn complain(&self, text: &str) {
         let mut lines = String::new();
         for line in text.lines() {
             lines.push_str(&clean(line));

@@ -44,7 +44,7 @@ struct Line<'a> {
     bid: &'a BidResult,
 }
 
-/// Evaluates a tender of a book; the basis is needed only where a lot leaves factors to it.
+/// Evaluates a tender of a book.
 pub(super) fn of_book(
     args: &Args,
     book: &Book,
@@ -52,26 +52,34 @@ pub(super) fn of_book(
     lot: Option<&str>,
 ) -> Result<(TenderSheet, Option<Context>, TenderResult), Failure> {
     let sheet = book.tender(tender)?;
+    let context = context_for(args, book, &sheet)?;
+    let result = evaluate(&sheet, basis(context.as_ref()).as_ref(), lot)?;
+    Ok((sheet, context, result))
+}
+
+/// The basis of a tender; needed only where a lot leaves factors to it.
+pub(super) fn context_for(
+    args: &Args,
+    book: &Book,
+    sheet: &TenderSheet,
+) -> Result<Option<Context>, Failure> {
     let lacking = |lot: &crate::engine::columns::Lot| {
         lot.factor_a_per_kw.is_none()
             || lot.factor_b_per_kw.is_none()
             || lot.factor_aux_per_kw.is_none()
     };
-    let context = if sheet.lots.iter().any(lacking) {
-        match Desk::basis_only(book, args.basis.as_deref()) {
-            Ok(desk) => Some(desk.context()?),
-            // Without any basis the evaluation says which factor is missing.
-            Err(_) if args.basis.is_none() => None,
-            Err(error) => return Err(error.into()),
-        }
-    } else {
-        None
-    };
-    let result = evaluate(&sheet, basis(context.as_ref()).as_ref(), lot)?;
-    Ok((sheet, context, result))
+    if !sheet.lots.iter().any(lacking) && args.basis.is_none() {
+        return Ok(None);
+    }
+    match Desk::basis_only(book, args.basis.as_deref()) {
+        Ok(desk) => Ok(Some(desk.context()?)),
+        // Without any basis the evaluation says which factor is missing.
+        Err(_) if args.basis.is_none() => Ok(None),
+        Err(error) => Err(error.into()),
+    }
 }
 
-fn basis(context: Option<&Context>) -> Option<BasisForFactors<'_>> {
+pub(super) fn basis(context: Option<&Context>) -> Option<BasisForFactors<'_>> {
     context.map(|context| BasisForFactors {
         assumptions: &context.assumptions,
         market: &context.market,

@@ -38,7 +38,7 @@ flags! {
     20, DROP_AT_RMS, "drop_at_rms", "voltage drop at the RMS load: no profile to integrate over";
     21, RESPONSIBILITY_DEFAULT, "responsibility_default", "demand charge at full own peak: no responsibility_pu and no system load are known";
     22, LOSSES_SWAPPED, "losses_swapped", "the load loss is below the no-load loss: were they exchanged?";
-    23, LAW_NOT_CHECKED, "law_not_checked", "the lot names a law that could not be held against this bid; it passes";
+    23, LAW_NOT_CHECKED, "law_not_checked", "the law that is named could not be held against an offer or bid; it passes";
     24, QUANTITY_SHORT, "quantity_short", "the bid offers fewer units than the lot asks for";
 }
 

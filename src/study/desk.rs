@@ -9,6 +9,7 @@ use crate::engine::decision::{Candidate, Context, UnitFacts};
 use crate::engine::economics::Assumptions;
 use crate::engine::economics::assumptions::EnergyPrice;
 use crate::engine::flags::Flags;
+use crate::engine::law::{self, Subject};
 use crate::engine::loading::{Market, PriceSeries, Profile, Ratios};
 use crate::study::StudyError;
 
@@ -20,7 +21,7 @@ pub struct Desk {
     /// The offers, in catalogue order.
     pub offers: Arc<Vec<Offer>>,
     /// The offers ready to compute with, in the same order.
-    pub candidates: Vec<Candidate>,
+    candidates: Vec<Candidate>,
     /// The load profiles.
     pub profiles: Arc<Vec<Profile>>,
     /// Their ratios.
@@ -110,7 +111,44 @@ impl Desk {
                 (market, Flags::NONE.with_if(both, Flags::CARBON_SERIES))
             }
         };
-        Ok(Context { assumptions: a, market, ratios: self.ratios.clone(), flags })
+        let (candidates, law_flags) = self.candidates_under(&a)?;
+        let ratios = self.ratios.clone();
+        Ok(Context { assumptions: a, market, ratios, candidates, flags: flags.with(law_flags) })
+    }
+
+    /// The candidates as a basis sees them: where it names a law, whether each meets it in each year of
+    /// purchase. What cannot be told passes; the flags say so.
+    ///
+    /// # Errors
+    /// A law that is not known.
+    fn candidates_under(&self, a: &Assumptions) -> Result<(Vec<Candidate>, Flags), StudyError> {
+        let mut candidates = self.candidates.clone();
+        let Some(law) = &a.law else { return Ok((candidates, Flags::NONE)) };
+        law::named(law)?;
+        let dates: Vec<_> = (a.first_year..).take(a.years).map_while(law::at_start_of).collect();
+        let mut flags = Flags::NONE;
+        for (offer, candidate) in self.offers.iter().zip(&mut candidates) {
+            let losses = &candidate.losses;
+            let subject = Subject {
+                phases: offer.phases,
+                hv_kv: offer.hv_kv,
+                lv_kv: offer.lv_kv,
+                insulation: offer.insulation,
+                winding_metal: offer.winding_metal,
+                reference_temp_c: offer.reference_temp_c,
+                stray_share_pu: a.stray_share_pu,
+                ..Subject::new(losses.rated_kva, losses.no_load_loss_w, losses.load_loss_w)
+            };
+            candidate.lawful.clear();
+            for date in &dates {
+                let verdict = law::check(law, &subject, *date)?;
+                flags = flags
+                    .with_if(verdict.meets.is_none(), Flags::LAW_NOT_CHECKED)
+                    .with_if(verdict.verify, Flags::VERIFY_LAW);
+                candidate.lawful.push(verdict.meets.unwrap_or(true));
+            }
+        }
+        Ok((candidates, flags))
     }
 
     /// The name of an offer by its index.

@@ -27,19 +27,21 @@ pub struct StepRow {
 impl StepRow {
     /// The rows of a tree of steps.
     pub fn tree(steps: &[Step]) -> Vec<Self> {
-        let row = |step: &Step| Self {
-            name: if step.of.is_empty() {
-                step.formula.name.to_owned()
-            } else {
-                format!("{}: {}", step.formula.name, step.of)
-            },
+        let row = |step: &Step| Self { steps: Self::tree(&step.steps), ..Self::alone(step) };
+        steps.iter().map(row).collect()
+    }
+
+    /// One step without its parts.
+    pub fn alone(step: &Step) -> Self {
+        let name = step.formula.name;
+        Self {
+            name: if step.of.is_empty() { name.to_owned() } else { format!("{name}: {}", step.of) },
             formula: format!("{} = {}", step.formula.symbol, step.formula.formula),
             substituted: step.substituted.clone(),
             value: step.value,
             unit: step.formula.unit,
             source: step.formula.source,
-            steps: Self::tree(&step.steps),
-        };
-        steps.iter().map(row).collect()
+            steps: Vec::new(),
+        }
     }
 }

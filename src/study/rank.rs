@@ -118,7 +118,7 @@ pub fn rank(desk: &Desk, by: By, top: Option<usize>, watch: &Watch) -> Result<Ra
     let context = desk.context()?;
     let n = desk.fleet.len();
     let mut outcomes = vec![Outcome::left_out(LeftOut::NoOffer); n];
-    let kernel = Kernel::new(&context, &desk.candidates, &desk.fleet)?;
+    let kernel = Kernel::new(&context, &context.candidates, &desk.fleet)?;
     watch.expect(n);
     let parts: Vec<(Totals, Vec<u32>)> = outcomes
         .par_chunks_mut(CHUNK)
@@ -209,7 +209,7 @@ impl Ranking {
         let offer = |o: u32| (o != Outcome::NONE).then(|| desk.offer_name(o as usize));
         let t = outcome.best_year_offset;
         let candidate = (outcome.best_offer != Outcome::NONE)
-            .then(|| &desk.candidates[outcome.best_offer as usize]);
+            .then(|| &self.context.candidates[outcome.best_offer as usize]);
         let saved = candidate.map(|c| {
             let k = usize::from(t) + 1;
             let year =

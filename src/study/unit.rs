@@ -58,8 +58,8 @@ pub fn decision(
     };
     let terminals = &desk.fleet.terminals[desk.fleet.kind[i] as usize];
     let a = &context.assumptions;
-    let fit = fitting(terminals, &desk.candidates, a.offer_sizes);
-    Ok(decide(&place, &desk.candidates, &fit, a)?
+    let fit = fitting(terminals, &context.candidates, a.offer_sizes);
+    Ok(decide(&place, &context.candidates, &fit, a)?
         .map(|decision| (place, decision))
         .ok_or(LeftOut::NoOffer))
 }
@@ -80,7 +80,6 @@ pub struct ChoiceCosts {
 /// # Errors
 /// The annuity rule without a life.
 pub fn choice_costs(
-    desk: &Desk,
     context: &Context,
     place: &Place,
     decision: &Decision,
@@ -88,7 +87,7 @@ pub fn choice_costs(
     let a = &context.assumptions;
     let of = |choice: Option<YearChoice>| {
         choice
-            .map(|c| of_choice(place, Some((&desk.candidates[c.offer], c.offset)), c.pv, a))
+            .map(|c| of_choice(place, Some((&context.candidates[c.offer], c.offset)), c.pv, a))
             .transpose()
     };
     Ok(ChoiceCosts {

@@ -55,7 +55,7 @@ impl State {
     pub(super) fn open(&mut self, ranked: &Arc<Ranked>, i: usize) {
         let (desk, context) = (&ranked.desk, &ranked.ranking.context);
         let known = match decision(desk, context, i) {
-            Ok(Ok((place, decision))) => choice_costs(desk, context, &place, &decision)
+            Ok(Ok((place, decision))) => choice_costs(context, &place, &decision)
                 .map(|costs| Box::new(Known { place, decision, costs }))
                 .map_err(|error| error.to_string()),
             Ok(Err(why)) => Err(why.why().to_owned()),

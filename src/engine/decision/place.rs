@@ -4,6 +4,7 @@
 //! million columns; [`resolve`] is the one place where blanks fall to profile, basis and default.
 
 use crate::engine::columns::{Unit, YesNo};
+use crate::engine::decision::fit::Candidate;
 use crate::engine::economics::Assumptions;
 use crate::engine::flags::Flags;
 use crate::engine::loading::{Duty, Market, Ratios, factors};
@@ -85,6 +86,8 @@ pub struct Context {
     pub market: Market,
     /// Ratios of the profiles, in the order of the profiles.
     pub ratios: Vec<Ratios>,
+    /// The offers as the basis sees them (law), in catalogue order.
+    pub candidates: Vec<Candidate>,
     /// Flags of the basis that every unit carries.
     pub flags: Flags,
 }

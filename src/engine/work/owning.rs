@@ -112,6 +112,7 @@ calc! {
             ..Basis::blank()
         })?;
         let duty = Duty {
+            power_factor: None,
             peak_kva: i.peak_pu,
             load_growth_pu: rate("load_growth_pct", i.load_growth_pct)?,
             load_factor_pu: i.load_factor_pu,

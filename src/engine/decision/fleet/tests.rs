@@ -136,6 +136,7 @@ fn context(basis: &Basis) -> Context {
             series: true,
         },
         ratios: vec![ratios(0.5, 0.3), ratios(0.7, 0.55)],
+        candidates: Vec::new(),
         flags: Flags::NONE,
     }
 }

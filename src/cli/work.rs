@@ -1,0 +1,83 @@
+//! `ironhum work`: one trade calculation with its working shown.
+
+use super::args::{Format, Work};
+use super::exit::{Exit, Failure};
+use super::factors::working;
+use super::print::{Printer, TextColumn};
+use crate::study::work::{CalcRow, InputRow, list, work as ask};
+
+#[derive(serde::Serialize)]
+struct List {
+    calcs: Vec<CalcRow>,
+}
+
+pub(super) fn work(options: &Work, printer: &mut Printer) -> Result<Exit, Failure> {
+    match &options.calc {
+        None => catalogue(printer, list(None)?),
+        Some(calc) if options.inputs.is_empty() => catalogue(printer, list(Some(calc))?),
+        Some(calc) => run(printer, calc, &options.inputs),
+    }
+}
+
+fn run(printer: &mut Printer, calc: &str, inputs: &[String]) -> Result<Exit, Failure> {
+    let result = ask(calc, inputs)?;
+    match printer.format {
+        Format::Json => printer.json(&result)?,
+        Format::Csv => {
+            printer.csv(
+                &["name", "formula", "substituted", "value", "unit", "source"],
+                result.steps.iter(),
+            )?;
+        }
+        Format::Text => {
+            for (name, value) in &result.result {
+                let value = value.as_str().map_or_else(|| value.to_string(), str::to_owned);
+                printer.line(format!("{name:<28} {value}"))?;
+            }
+            printer.line("")?;
+            working(printer, &result.steps, 0)?;
+            printer.line("")?;
+            printer.line(format!("Source: {}", result.source))?;
+        }
+    }
+    Ok(Exit::Done)
+}
+
+fn catalogue(printer: &mut Printer, calcs: Vec<CalcRow>) -> Result<Exit, Failure> {
+    match printer.format {
+        Format::Json => printer.json(&List { calcs })?,
+        Format::Csv => printer.csv(&["calc", "summary", "source"], calcs.iter())?,
+        Format::Text => {
+            for calc in &calcs {
+                printer.line(format!("{}: {}", calc.calc, calc.summary))?;
+                if calcs.len() > 1 {
+                    let names = calc.inputs.iter().map(short).collect::<Vec<_>>().join(" ");
+                    printer.line(format!("    {names}"))?;
+                } else {
+                    let columns: Vec<TextColumn> = ["name", "unit", "range", "default", "meaning"]
+                        .iter()
+                        .map(|key| TextColumn {
+                            key,
+                            heading: (*key).to_owned(),
+                            unit: String::new(),
+                            places: 0,
+                        })
+                        .collect();
+                    printer.table(&columns, calc.inputs.iter())?;
+                }
+                printer.line(format!("    source: {}", calc.source))?;
+            }
+        }
+    }
+    Ok(Exit::Done)
+}
+
+/// `name=` of an input; in brackets where it may be left out.
+fn short(input: &InputRow) -> String {
+    let list = if input.list { ",…" } else { "" };
+    if input.required {
+        format!("{}={list}", input.name)
+    } else {
+        format!("[{}={}{list}]", input.name, input.default)
+    }
+}
