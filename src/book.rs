@@ -27,7 +27,7 @@ pub use change::{Actor, Change, Tally};
 pub use error::BookError;
 pub use journal::JournalEntry;
 pub use open::Access;
-pub use read::{Cells, Counts};
+pub use read::Counts;
 pub use tables::Table;
 pub use upsert::{Known, Outcome, Upsert};
 

@@ -4,6 +4,7 @@
 //! [`Desk`] is what lies ready for a question: the fleet in columns, the offers, profiles, prices and a basis.
 //! It is filled from a book once; a changed assumption never reads the book again.
 
+pub mod check;
 pub mod desk;
 pub mod error;
 pub mod explain;

@@ -2,7 +2,6 @@
 
 use std::ops::ControlFlow;
 
-use rusqlite::types::ValueRef;
 use rusqlite::{Connection, OptionalExtension as _, Params, Row};
 use serde::Serialize;
 
@@ -33,38 +32,6 @@ pub struct Counts {
     pub measured: u64,
     /// Entries of the journal.
     pub journal: u64,
-}
-
-/// The asked-for cells of one row, borrowed from the store.
-#[derive(Debug)]
-pub struct Cells<'r, 'stmt>(&'r Row<'stmt>);
-
-impl Cells<'_, '_> {
-    /// A number; whole ones too. Money is in thousandths.
-    #[expect(clippy::cast_precision_loss, reason = "ranges of whole columns are below 2^53")]
-    pub fn number(&self, at: usize) -> Option<f64> {
-        match self.0.get_ref(at) {
-            Ok(ValueRef::Real(number)) => Some(number),
-            Ok(ValueRef::Integer(number)) => Some(number as f64),
-            _ => None,
-        }
-    }
-
-    /// A whole number. Money is in thousandths.
-    pub fn integer(&self, at: usize) -> Option<i64> {
-        match self.0.get_ref(at) {
-            Ok(ValueRef::Integer(number)) => Some(number),
-            _ => None,
-        }
-    }
-
-    /// Text.
-    pub fn text(&self, at: usize) -> Option<&str> {
-        match self.0.get_ref(at) {
-            Ok(ValueRef::Text(text)) => std::str::from_utf8(text).ok(),
-            _ => None,
-        }
-    }
 }
 
 impl Book {
@@ -173,31 +140,16 @@ impl Book {
         })
     }
 
-    /// Hands over the cells of the named columns row by row, in order of entry, until told to stop. Nothing is
-    /// built: the fast way through a large table.
+    /// Hands over the units one by one, in order of entry, until told to stop: a large fleet need not lie in memory.
     ///
     /// # Errors
-    /// The store fails. A name that the table does not have is a mistake of the caller and fails too.
-    pub fn each(
-        &self,
-        table: &Table,
-        columns: &[&str],
-        mut take: impl FnMut(&Cells<'_, '_>) -> ControlFlow<()>,
-    ) -> Result<()> {
-        let sql_name = |name: &&str| {
-            let column = table.columns.iter().find(|column| column.name == *name);
-            column.map_or_else(|| (*name).to_owned(), Column::sql_name)
-        };
-        let columns = columns.iter().map(sql_name).collect::<Vec<_>>().join(", ");
-        let sql = format!("SELECT {columns} FROM {} ORDER BY id", table.name);
-        let mut statement = self.connection.prepare(&sql)?;
-        let mut rows = statement.query([])?;
-        while let Some(row) = rows.next()? {
-            if take(&Cells(row)).is_break() {
-                break;
-            }
-        }
-        Ok(())
+    /// The store fails.
+    pub fn each_unit(&self, mut take: impl FnMut(Unit) -> ControlFlow<()>) -> Result<()> {
+        let table = &tables::UNITS;
+        scan(&self.connection, table, "", [], |row, values| {
+            let unit = Unit::from_values(&values);
+            Ok(take(unit.ok_or(BookError::Damaged { table: table.name, row })?))
+        })
     }
 
     /// The error of a name that is not there.
@@ -234,25 +186,27 @@ pub(super) fn records<T>(
     let mut all = Vec::new();
     scan(connection, table, condition, params, |row, values| {
         all.push(from(&values).ok_or(BookError::Damaged { table: table.name, row })?);
-        Ok(())
+        Ok(ControlFlow::Continue(()))
     })?;
     Ok(all)
 }
 
-/// Hands over the bare values that a condition leaves, with their row numbers.
+/// Hands over the bare values that a condition leaves, with their row numbers, until told to stop.
 pub(super) fn scan(
     connection: &Connection,
     table: &Table,
     condition: &str,
     params: impl Params,
-    mut take: impl FnMut(i64, Vec<Value>) -> Result<()>,
+    mut take: impl FnMut(i64, Vec<Value>) -> Result<ControlFlow<()>>,
 ) -> Result<()> {
     let columns = table.columns.iter().map(Column::sql_name).collect::<Vec<_>>().join(", ");
     let sql = format!("SELECT id, {columns} FROM {} {condition} ORDER BY id", table.name);
     let mut statement = connection.prepare_cached(&sql)?;
     let mut rows = statement.query(params)?;
     while let Some(row) = rows.next()? {
-        take(row.get(0)?, values(table, row, 1)?)?;
+        if take(row.get(0)?, values(table, row, 1)?)?.is_break() {
+            break;
+        }
     }
     Ok(())
 }

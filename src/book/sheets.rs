@@ -2,6 +2,8 @@
 //!
 //! A sheet states all there is: what it leaves blank becomes blank, a part that it no longer names is removed.
 
+use std::ops::ControlFlow;
+
 use super::{Actor, Book, BookError, Change, Result, Table, cells, read, tables};
 use crate::engine::columns::{
     Basis, BasisBudget, BasisRange, BasisSheet, Bid, Lot, Measured, Tender, TenderRate,
@@ -138,7 +140,7 @@ impl Change<'_> {
             if !parts.iter().any(|part| part[place] == values[place]) {
                 gone.push((id, values));
             }
-            Ok(())
+            Ok(ControlFlow::Continue(()))
         })?;
         for (id, values) in gone {
             let key = cells::key(&values[place]);

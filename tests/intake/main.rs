@@ -1,5 +1,6 @@
 //! Taking files in: what goes in comes out, what is wrong is told by line, and then nothing is changed.
 
+mod check;
 mod faults;
 mod formats;
 mod records;

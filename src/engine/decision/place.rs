@@ -165,6 +165,30 @@ impl LeftOut {
     }
 }
 
+/// Whether the total loss and its two parts differ by more than 1 % (W).
+pub fn losses_contradict(
+    no_load_loss_w: Option<f64>,
+    load_loss_w: Option<f64>,
+    total_loss_w: Option<f64>,
+) -> bool {
+    match (no_load_loss_w, load_loss_w, total_loss_w) {
+        (Some(p0), Some(pk), Some(total)) => (p0 + pk - total).abs() > 0.01 * total,
+        _ => false,
+    }
+}
+
+/// Whether a load or loss factor given beside a profile differs from the profile's by more than 0.05.
+pub fn loading_contradicts(
+    ratios: &Ratios,
+    load_factor_pu: Option<f64>,
+    loss_factor_pu: Option<f64>,
+) -> bool {
+    let apart = |given: Option<f64>, of_profile: f64| {
+        given.is_some_and(|given| (given - of_profile).abs() > 0.05)
+    };
+    apart(load_factor_pu, ratios.load_factor_pu) || apart(loss_factor_pu, ratios.loss_factor_pu)
+}
+
 /// Fills the blanks of a unit from profile, basis and default (methods, sections 0 and 3).
 ///
 /// # Errors
@@ -192,9 +216,7 @@ pub fn resolve<R: Recorder>(w: &mut R, f: &UnitFacts, ctx: &Context) -> Result<P
         .with_if(pk.is_none(), Flags::LOAD_LOSS_FROM_TOTAL)
         .with_if(base.is_some_and(|b| b != f.rated_kva), Flags::LOSS_BASE_DIFFERS)
         .with_if(losses.load_loss_w < losses.no_load_loss_w, Flags::LOSSES_SWAPPED);
-    if let (Some(p0), Some(pk), Some(total)) = (p0, pk, total) {
-        flags = flags.with_if((p0 + pk - total).abs() > 0.01 * total, Flags::LOSSES_CONTRADICT);
-    }
+    flags = flags.with_if(losses_contradict(p0, pk, total), Flags::LOSSES_CONTRADICT);
 
     let Some(peak_kva) = known(f.peak_kva) else { return Err(LeftOut::PeakBlank) };
     let (lf, lsf) = (known(f.load_factor_pu), known(f.loss_factor_pu));
@@ -213,13 +235,7 @@ pub fn resolve<R: Recorder>(w: &mut R, f: &UnitFacts, ctx: &Context) -> Result<P
     };
     let (load_factor_pu, loss_factor_pu) = match (profile, lsf, lf) {
         (Some((ratios, _)), ..) => {
-            let apart = |given: Option<f64>, of_profile: f64| {
-                given.is_some_and(|g| (g - of_profile).abs() > 0.05)
-            };
-            flags = flags.with_if(
-                apart(lf, ratios.load_factor_pu) || apart(lsf, ratios.loss_factor_pu),
-                Flags::LOADING_CONTRADICTS,
-            );
+            flags = flags.with_if(loading_contradicts(ratios, lf, lsf), Flags::LOADING_CONTRADICTS);
             (Some(ratios.load_factor_pu), ratios.loss_factor_pu)
         }
         (None, Some(lsf), lf) => (lf, lsf),

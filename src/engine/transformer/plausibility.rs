@@ -66,6 +66,31 @@ pub fn nameplate(
     doubts
 }
 
+/// Figures of a nameplate that cannot all be right (losses at the rating); what is blank is not looked at.
+pub fn contradictions(
+    rated_kva: f64,
+    impedance_pct: Option<f64>,
+    no_load_current_pct: Option<f64>,
+    no_load_loss_w: Option<f64>,
+    load_loss_w: Option<f64>,
+) -> Vec<Doubt> {
+    let mut doubts = Vec::new();
+    let percent = |loss_w: f64| 100.0 * loss_w / (1000.0 * rated_kva);
+    if let (Some(z), Some(r)) = (impedance_pct, load_loss_w.map(percent))
+        && z < r
+    {
+        let why = format!("is below the winding resistance of {r:.3} % that the load loss states");
+        doubts.push(Doubt { quantity: "impedance_pct", value: z, why });
+    }
+    if let (Some(i0), Some(iw)) = (no_load_current_pct, no_load_loss_w.map(percent))
+        && i0 < iw
+    {
+        let why = format!("is below the {iw:.3} % that the no-load loss alone draws");
+        doubts.push(Doubt { quantity: "no_load_current_pct", value: i0, why });
+    }
+    doubts
+}
+
 /// Doubt about the thickness of core sheets (mm) at 50 or 60 Hz.
 pub fn lamination(thickness_mm: f64) -> Option<Doubt> {
     let why = "core sheets at 50 or 60 Hz are 0.2 to 1 mm thick".to_owned();
@@ -76,6 +101,17 @@ pub fn lamination(thickness_mm: f64) -> Option<Doubt> {
 #[cfg(test)]
 mod tests {
     use super::*;
+
+    #[test]
+    fn what_cannot_be() {
+        let names = |z, i0, p0, pk| -> Vec<&str> {
+            contradictions(100.0, z, i0, p0, pk).iter().map(|d| d.quantity).collect()
+        };
+        assert_eq!(names(Some(2.9), None, None, Some(3000.0)), ["impedance_pct"]);
+        assert_eq!(names(None, Some(0.49), Some(500.0), None), ["no_load_current_pct"]);
+        assert!(names(Some(3.0), Some(0.5), Some(500.0), Some(3000.0)).is_empty());
+        assert!(names(Some(0.1), Some(0.1), None, None).is_empty());
+    }
 
     #[test]
     fn bands() {

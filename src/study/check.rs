@@ -1,0 +1,372 @@
+//! Everything doubtful in a book: missing, estimated, implausible, contradictory. Tells; changes nothing.
+
+use std::ops::ControlFlow;
+
+use serde::Serialize;
+
+use crate::book::{Book, BookError};
+use crate::engine::columns::{Basis, Bid, Lot, Offer, Unit, YesNo};
+use crate::engine::decision::LeftOut;
+use crate::engine::decision::place::{loading_contradicts, losses_contradict};
+use crate::engine::economics::Assumptions;
+use crate::engine::flags::Flags;
+use crate::engine::loading::{Profile, Ratios};
+use crate::engine::transformer::losses::quoted;
+use crate::engine::transformer::{plausibility, vector_group};
+use crate::engine::working::Silent;
+use crate::study::{Desk, StudyError, Watch};
+
+/// Peak over rating above which a load is implausible (per unit).
+const OVERLOAD_PU: f64 = 1.2;
+/// A discount rate below this many percent was perhaps meant as a fraction.
+const FRACTION_PCT: f64 = 0.5;
+/// Units between two looks at whether the work is still wanted.
+const LOOK: usize = 4096;
+
+/// What kind of doubt.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash, Serialize)]
+#[serde(rename_all = "lowercase")]
+pub enum Kind {
+    /// Not known, and something is not computed without it.
+    Missing,
+    /// Not known, and made up from something else.
+    Estimated,
+    /// Possible, but rare.
+    Implausible,
+    /// Two figures that cannot both be right.
+    Contradictory,
+}
+
+impl Kind {
+    /// The word of a kind.
+    pub const fn word(self) -> &'static str {
+        match self {
+            Self::Missing => "missing",
+            Self::Estimated => "estimated",
+            Self::Implausible => "implausible",
+            Self::Contradictory => "contradictory",
+        }
+    }
+}
+
+/// One doubt.
+#[derive(Clone, Debug, PartialEq, Eq, Serialize)]
+pub struct Doubt {
+    /// What it is about: `unit`, `offer`, `bid` or `basis`.
+    pub subject: &'static str,
+    /// Its key.
+    pub key: String,
+    /// The column.
+    pub column: &'static str,
+    /// What kind of doubt.
+    pub kind: Kind,
+    /// What is doubtful, in words.
+    pub what: String,
+}
+
+/// Goes through a book: units, offers, bids, bases, each in order of entry. `basis` names the one that the fleet is
+/// held against; else the only or chosen one counts, and without one what depends on it is passed over.
+///
+/// # Errors
+/// The book fails, does not know the named basis, or the work was stopped.
+pub fn check(book: &Book, basis: Option<&str>, watch: &Watch) -> Result<Vec<Doubt>, StudyError> {
+    let sheet = match book.basis(basis) {
+        Ok(sheet) => Some(sheet),
+        Err(BookError::WhichBasis { .. }) => None,
+        Err(error) => return Err(error.into()),
+    };
+    let basis = sheet.as_ref().map(|sheet| &sheet.basis);
+    let counts = book.counts()?;
+    watch.expect(usize::try_from(counts.units).unwrap_or(0));
+    let mut doubts = Doubts(Vec::new());
+    let profiles = Profiles::of(&book.profiles()?);
+    let mut seen = 0;
+    book.each_unit(|unit| {
+        seen += 1;
+        if seen % LOOK == 0 {
+            watch.advance(LOOK);
+            if watch.is_stopped() {
+                return ControlFlow::Break(());
+            }
+        }
+        doubts.unit(&unit, &profiles, basis);
+        ControlFlow::Continue(())
+    })?;
+    if watch.is_stopped() {
+        return Err(StudyError::Stopped);
+    }
+    for offer in book.offers()? {
+        doubts.offer(&offer, basis);
+    }
+    for tender in book.tenders()? {
+        let sheet = book.tender(&tender.tender)?;
+        for bid in &sheet.bids {
+            doubts.bid(bid, sheet.lots.iter().find(|lot| lot.lot == bid.lot));
+        }
+    }
+    let names = book.bases()?;
+    if names.is_empty() {
+        let what = "the book has no basis; import one: ironhum import basis FILE";
+        doubts.add(("basis", ""), "name", Kind::Missing, what);
+    }
+    for name in names {
+        doubts.basis(book, &name)?;
+    }
+    Ok(doubts.0)
+}
+
+/// The figures of a nameplate that units, offers and bids share.
+#[derive(Default)]
+struct Plate {
+    rated_kva: f64,
+    loss_base_kva: Option<f64>,
+    no_load_loss_w: Option<f64>,
+    load_loss_w: Option<f64>,
+    total_loss_w: Option<f64>,
+    impedance_pct: Option<f64>,
+    no_load_current_pct: Option<f64>,
+}
+
+/// The profiles of the book with their ratios.
+struct Profiles(Vec<(String, Ratios)>);
+
+impl Profiles {
+    fn of(profiles: &[Profile]) -> Self {
+        let known = profiles.iter().filter_map(|p| Some((p.profile.clone(), p.ratios().ok()?)));
+        Self(known.collect())
+    }
+
+    fn ratios(&self, name: &str) -> Option<&Ratios> {
+        self.0.iter().find(|(known, _)| known == name).map(|(_, ratios)| ratios)
+    }
+}
+
+struct Doubts(Vec<Doubt>);
+
+impl Doubts {
+    fn add(
+        &mut self,
+        (subject, key): (&'static str, &str),
+        column: &'static str,
+        kind: Kind,
+        what: impl Into<String>,
+    ) {
+        self.0.push(Doubt { subject, key: key.to_owned(), column, kind, what: what.into() });
+    }
+
+    /// A flag of the engine, in its own words.
+    fn flag(&mut self, of: (&'static str, &str), column: &'static str, kind: Kind, flag: Flags) {
+        for meaning in flag.meanings() {
+            self.add(of, column, kind, meaning);
+        }
+    }
+
+    fn unit(&mut self, unit: &Unit, profiles: &Profiles, basis: Option<&Basis>) {
+        let of = ("unit", unit.unit.as_str());
+        if unit.in_service != Some(YesNo::No) {
+            self.missing_of_unit(of, unit, basis);
+        }
+        self.plate(
+            of,
+            &Plate {
+                rated_kva: unit.rated_kva,
+                loss_base_kva: unit.loss_base_kva,
+                no_load_loss_w: unit.no_load_loss_w,
+                load_loss_w: unit.load_loss_w,
+                total_loss_w: unit.total_loss_w,
+                impedance_pct: unit.impedance_pct,
+                no_load_current_pct: unit.no_load_current_pct,
+            },
+            unit.vector_group.as_deref(),
+        );
+        let ratios = unit.profile.as_deref().and_then(|name| profiles.ratios(name));
+        if ratios.is_some_and(|r| loading_contradicts(r, unit.load_factor_pu, unit.loss_factor_pu))
+        {
+            self.flag(of, "profile", Kind::Contradictory, Flags::LOADING_CONTRADICTS);
+        }
+        if let Some(peak) = unit.peak_kva.filter(|peak| *peak > OVERLOAD_PU * unit.rated_kva) {
+            let percent = 100.0 * peak / unit.rated_kva;
+            let what = format!("{peak} kVA is {percent:.0} % of the rating");
+            self.add(of, "peak_kva", Kind::Implausible, what);
+        }
+        if let (Some(um), Some(hv)) = (unit.hv_um_kv, unit.hv_kv)
+            && um < hv
+        {
+            let what = format!("{um} kV is below the rated voltage of {hv} kV");
+            self.add(of, "hv_um_kv", Kind::Contradictory, what);
+        }
+        let Some(basis) = basis else { return };
+        let first_year = basis.first_year;
+        if let Some(made) = unit.year_made.filter(|made| *made > first_year) {
+            let what =
+                format!("{made} is after the first year {first_year} of basis {}", basis.name);
+            self.add(of, "year_made", Kind::Contradictory, what);
+        }
+        if let Some(year) = unit.replace_by_year.filter(|year| *year < first_year) {
+            let what =
+                format!("{year} is before the first year {first_year} of basis {}", basis.name);
+            self.add(of, "replace_by_year", Kind::Contradictory, what);
+        }
+    }
+
+    fn missing_of_unit(&mut self, of: (&'static str, &str), unit: &Unit, basis: Option<&Basis>) {
+        use Kind::{Estimated, Missing};
+        let (p0, pk, total) = (unit.no_load_loss_w, unit.load_loss_w, unit.total_loss_w);
+        match (p0, pk, total) {
+            (None, None, _) => self.add(of, "no_load_loss_w", Missing, LeftOut::LossesBlank.why()),
+            (None, _, None) => {
+                self.add(of, "no_load_loss_w", Missing, LeftOut::NoLoadLossBlank.why());
+            }
+            (_, None, None) => self.add(of, "load_loss_w", Missing, LeftOut::LoadLossBlank.why()),
+            (_, None, Some(_)) => {
+                self.flag(of, "load_loss_w", Estimated, Flags::LOAD_LOSS_FROM_TOTAL);
+            }
+            _ => {}
+        }
+        if unit.peak_kva.is_none() {
+            self.add(of, "peak_kva", Missing, LeftOut::PeakBlank.why());
+        }
+        match (&unit.profile, unit.loss_factor_pu, unit.load_factor_pu) {
+            (None, None, None) => self.add(of, "profile", Missing, LeftOut::ShapeBlank.why()),
+            (None, None, Some(_)) => {
+                self.flag(of, "loss_factor_pu", Estimated, Flags::LOSS_FACTOR_ESTIMATED);
+            }
+            _ => {}
+        }
+        for (column, voltage) in [("hv_kv", unit.hv_kv), ("lv_kv", unit.lv_kv)] {
+            if voltage.is_none() {
+                self.flag(of, column, Missing, Flags::VOLTAGE_BLANK);
+            }
+        }
+        if unit.phases.is_none() {
+            self.flag(of, "phases", Missing, Flags::PHASES_BLANK);
+        }
+        let has_failures = basis.is_some_and(|basis| basis.failure_scale_years.is_some());
+        if unit.year_made.is_none() && has_failures {
+            self.flag(of, "year_made", Missing, Flags::YEAR_MADE_BLANK);
+        }
+    }
+
+    /// What nameplates of units, offers and bids share.
+    fn plate(&mut self, of: (&'static str, &str), plate: &Plate, group: Option<&str>) {
+        let zero = "is 0 W; a loss that is not known is left blank";
+        for (column, loss) in
+            [("no_load_loss_w", plate.no_load_loss_w), ("load_loss_w", plate.load_loss_w)]
+        {
+            if loss == Some(0.0) {
+                self.add(of, column, Kind::Implausible, zero);
+            }
+        }
+        let kva = plate.rated_kva;
+        let losses = quoted(
+            &mut Silent,
+            kva,
+            plate.loss_base_kva,
+            plate.no_load_loss_w,
+            plate.load_loss_w,
+            plate.total_loss_w,
+            None,
+        );
+        let (iron, copper) = match losses {
+            Ok(losses) => (Some(losses.no_load_loss_w), Some(losses.load_loss_w)),
+            Err(_) => (plate.no_load_loss_w, None),
+        };
+        let (z, i0) = (plate.impedance_pct, plate.no_load_current_pct);
+        for odd in plausibility::nameplate(kva, z, iron, copper) {
+            self.add(of, odd.quantity, Kind::Implausible, format!("{} {}", odd.value, odd.why));
+        }
+        for odd in plausibility::contradictions(kva, z, i0, iron, copper) {
+            self.add(of, odd.quantity, Kind::Contradictory, format!("{} {}", odd.value, odd.why));
+        }
+        let (p0, pk, total) = (plate.no_load_loss_w, plate.load_loss_w, plate.total_loss_w);
+        if losses_contradict(p0, pk, total) {
+            self.flag(of, "total_loss_w", Kind::Contradictory, Flags::LOSSES_CONTRADICT);
+        }
+        if p0.zip(pk).is_some_and(|(p0, pk)| pk < p0) {
+            self.flag(of, "load_loss_w", Kind::Implausible, Flags::LOSSES_SWAPPED);
+        }
+        if group.is_some_and(|group| vector_group::clock(group).is_none()) {
+            self.flag(of, "vector_group", Kind::Implausible, Flags::VECTOR_GROUP_UNREAD);
+        }
+    }
+
+    fn offer(&mut self, offer: &Offer, basis: Option<&Basis>) {
+        let of = ("offer", offer.offer.as_str());
+        self.plate(
+            of,
+            &Plate {
+                rated_kva: offer.rated_kva,
+                loss_base_kva: offer.loss_base_kva,
+                no_load_loss_w: Some(offer.no_load_loss_w),
+                load_loss_w: Some(offer.load_loss_w),
+                impedance_pct: offer.impedance_pct,
+                ..Plate::default()
+            },
+            offer.vector_group.as_deref(),
+        );
+        let needs_life = basis.is_some_and(|basis| {
+            basis.capital_recovery != Some(crate::engine::columns::CapitalRecovery::Full)
+                && basis.life_years.is_none()
+        });
+        if offer.life_years.is_none() && needs_life {
+            self.flag(of, "life_years", Kind::Missing, Flags::NO_LIFE);
+        }
+        if offer.price.0 == 0 {
+            self.add(of, "price", Kind::Implausible, "costs nothing");
+        }
+    }
+
+    fn bid(&mut self, bid: &Bid, lot: Option<&Lot>) {
+        let key = format!("{}/{}/{}", bid.tender, bid.lot, bid.bid);
+        let of = ("bid", key.as_str());
+        let Some(rated_kva) = bid.rated_kva.or(lot.map(|lot| lot.rated_kva)) else { return };
+        self.plate(
+            of,
+            &Plate {
+                rated_kva,
+                loss_base_kva: bid.loss_base_kva,
+                no_load_loss_w: Some(bid.no_load_loss_w),
+                load_loss_w: bid.load_loss_w,
+                total_loss_w: bid.total_loss_w,
+                impedance_pct: bid.impedance_pct,
+                no_load_current_pct: None,
+            },
+            bid.vector_group.as_deref(),
+        );
+        if bid.load_loss_w.is_none() {
+            self.flag(of, "load_loss_w", Kind::Estimated, Flags::LOAD_LOSS_FROM_TOTAL);
+        }
+        if bid.reference_temp_c.is_none() && lot.is_some_and(|lot| lot.reference_temp_c.is_some()) {
+            self.flag(of, "reference_temp_c", Kind::Missing, Flags::NO_REFERENCE_TEMP);
+        }
+        if bid.price.0 == 0 {
+            self.add(of, "price", Kind::Implausible, "costs nothing");
+        }
+    }
+
+    fn basis(&mut self, book: &Book, name: &str) -> Result<(), StudyError> {
+        let desk = Desk::basis_only(book, Some(name))?;
+        let of = ("basis", name);
+        match desk.context() {
+            Ok(_) => {}
+            Err(StudyError::Refused { refusal, .. }) => {
+                self.add(of, refusal.quantity, Kind::Contradictory, refusal.to_string());
+            }
+            Err(error) => return Err(error),
+        }
+        let rate = desk.sheet.basis.discount_rate_pct;
+        if rate > 0.0 && rate < FRACTION_PCT {
+            let what =
+                format!("{rate} % a year is very low; rates are in percent, 6 is six percent");
+            self.add(of, "discount_rate_pct", Kind::Implausible, what);
+        }
+        if let Ok(a) = Assumptions::resolve(&desk.sheet.basis)
+            && a.demand_charge_per_kw_year > 0.0
+            && a.responsibility_pu.is_none()
+            && !desk.series.iter().any(|series| series.system_load.is_some())
+        {
+            self.flag(of, "responsibility_pu", Kind::Estimated, Flags::RESPONSIBILITY_DEFAULT);
+        }
+        Ok(())
+    }
+}
