@@ -307,6 +307,9 @@ impl App {
 
     /// Whether there is something to go back from.
     pub(super) fn can_go_back(&self) -> bool {
+        if self.help.is_some() {
+            return false;
+        }
         self.screen != Screen::Fleet || self.show_left_out || !self.wanted.filter.is_empty()
     }
 
@@ -482,8 +485,13 @@ impl App {
         self.ask("Ranking the fleet", Question::Rank(Box::new(desk), self.wanted.clone()));
     }
 
-    /// Shows a view, with the cursor on the unit where it was.
+    /// Shows a view, with the cursor on the unit where it was; in another order it starts at the top.
     fn look(&mut self, view: View, unit: Option<usize>) {
+        if view.spec.by != self.view.spec.by {
+            self.fleet = List::default();
+            self.view = view;
+            return;
+        }
         self.view = view;
         let Some(ranked) = &self.ranked else { return };
         if let Some(i) = unit.filter(|_| !self.show_left_out) {

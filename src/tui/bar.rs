@@ -20,13 +20,13 @@ pub fn whole(parts: &Parts) -> f64 {
     parts.iter().map(|(_, value)| value.max(0.0)).sum()
 }
 
-/// The smallest of 1, 2, 5, 10, 20 … that is not below `value`: a scale that stays put while figures move.
+/// The smallest round number that is not below `value`: a scale that stays put while figures move.
 pub fn round_scale(value: f64) -> f64 {
     if !value.is_finite() || value <= 0.0 {
         return 1.0;
     }
     let decade = 10f64.powf(value.log10().floor());
-    [1.0, 2.0, 5.0, 10.0]
+    [1.0, 1.2, 1.5, 2.0, 2.5, 3.0, 4.0, 5.0, 6.0, 8.0, 10.0]
         .into_iter()
         .map(|step| step * decade)
         .find(|scale| *scale >= value * (1.0 - 1e-12))
@@ -119,7 +119,7 @@ mod tests {
     fn scale_is_round() {
         assert_eq!(round_scale(1.0), 1.0);
         assert_eq!(round_scale(1_700.0), 2_000.0);
-        assert_eq!(round_scale(51.0), 100.0);
+        assert_eq!(round_scale(51.0), 60.0);
         assert_eq!(round_scale(0.0), 1.0);
         assert_eq!(round_scale(f64::NAN), 1.0);
     }

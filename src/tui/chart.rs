@@ -7,7 +7,6 @@ use ratatui::text::Line;
 use ratatui::widgets::Widget as _;
 use ratatui::widgets::canvas::{Canvas, Line as Stroke, Points};
 
-use super::bar::round_scale;
 use super::caps::Marks;
 use super::frame::{put, put_line, put_over};
 use super::text;
@@ -18,6 +17,13 @@ use super::theme::{Part, Theme};
 pub(super) struct Reference {
     pub(super) word: &'static str,
     pub(super) value: f64,
+}
+
+/// The smallest of 1, 2, 5, 10, 20 … that is not below `value`: steps that are easy to read off.
+fn round_step(value: f64) -> f64 {
+    let decade = 10f64.powf(value.log10().floor());
+    let steps = [1.0, 2.0, 5.0, 10.0].map(|step| step * decade);
+    steps.into_iter().find(|step| *step >= value).unwrap_or(value)
 }
 
 /// Draws points over years, the least of them marked. The reference is drawn where it does not crush the line.
@@ -39,12 +45,12 @@ pub(super) fn draw(
         (low, high) = (low.min(reference.value), high.max(reference.value));
     }
     // Whole steps of a round size, at least one and at most four of them.
-    let step = round_scale((high - low).max(spread) / 4.0);
+    let step = round_step((high - low).max(spread) / 4.0);
     (low, high) = ((low / step).floor() * step, (high / step).ceil() * step);
     if high <= low {
         high = low + step;
     }
-    let labels = [low, high].map(|y| text::number(y, 0).len());
+    let labels = [low, high].map(|y| text::width(&text::number(y, 0)));
     let margin = u16::try_from(labels[0].max(labels[1]) + 2).unwrap_or(u16::MAX);
     if area.height < 4 || area.width < margin + 12 {
         let line = format!(" least in {}: {}", least.0, text::number(least.1, 0));
@@ -131,7 +137,7 @@ pub(super) fn draw(
     let word = if near {
         let above = row(reference.value);
         let word = format!(" {} {} ", reference.word, text::number(reference.value, 0));
-        let wide = u16::try_from(word.len()).unwrap_or(0);
+        let wide = u16::try_from(text::width(&word)).unwrap_or(0);
         if plot.width > wide {
             let at = Rect { x: plot.right() - wide, width: wide, ..plot };
             put_over(buffer, at, above, &word, theme.muted());

@@ -154,13 +154,24 @@ fn ranking(app: &App, ranked: &Ranked, area: Rect, buffer: &mut Buffer) {
             content.min(column.most).max(heading)
         })
         .collect();
-    // Columns give way, the least important first, until the bar fits.
+    // Columns give way, the least important first, until the bar fits. What the list is ordered by stays.
+    let ordered_by = match app.view.spec.by {
+        By::Saving | By::Unit => "",
+        By::Waiting => "waiting_pv",
+        By::Keep => "keep_pv",
+        By::Rating => "rated_kva",
+        By::Made => "year_made",
+    };
+    let rank = |n: usize| {
+        let column = figures[n].0;
+        if column.key == ordered_by { 0 } else { column.rank }
+    };
     let room = usize::from(area.width).saturating_sub(2);
     let mut kept: Vec<usize> = (0..figures.len()).collect();
     let used = |kept: &[usize]| kept.iter().map(|n| widths[*n] + 2).sum::<usize>();
     while used(&kept) + BAR.0 > room {
-        let Some(least) = kept.iter().copied().max_by_key(|n| figures[*n].0.rank) else { break };
-        if figures[least].0.rank == 0 {
+        let Some(least) = kept.iter().copied().max_by_key(|n| rank(*n)) else { break };
+        if rank(least) == 0 {
             break;
         }
         kept.retain(|n| *n != least);
@@ -331,8 +342,8 @@ fn detail(app: &App, ranked: &Ranked, i: usize, cells: usize) -> Vec<Line<'stati
     lines
 }
 
-/// The counts and the sums, in the status line.
-pub(super) fn status(app: &App) -> (Line<'static>, Line<'static>) {
+/// The counts, and the sums over all ranked units: the most of them that there is room for, in the status line.
+pub(super) fn status(app: &App) -> (Line<'static>, Vec<Line<'static>>) {
     let Some(ranked) = &app.ranked else { return Default::default() };
     let (ranking, currency) = (&ranked.ranking, &ranked.desk.sheet.basis.currency);
     let shown = if app.show_left_out { app.view.left_out.len() } else { app.view.places.len() };
@@ -347,14 +358,14 @@ pub(super) fn status(app: &App) -> (Line<'static>, Line<'static>) {
         by => format!(", by {}", by.word()),
     };
     let said = format!(" {said}{by}");
-    let t = ranking.totals;
+    let totals = ranking.totals;
     let money = |value: f64| text::number(value, 0);
-    let sums = format!(
-        "all, {}: keep {}  best {}  saving {} ",
-        text::cut(currency, 8),
-        money(t.keep_pv),
-        money(t.best_pv),
-        money(t.saving_pv)
-    );
-    (Line::raw(said), Line::raw(sums))
+    let (keep, best) = (money(totals.keep_pv), money(totals.best_pv));
+    let (saving, currency) = (money(totals.saving_pv), text::cut(currency, 8));
+    let sums = [
+        format!("all, {currency}: keep {keep}  best {best}  saving {saving} "),
+        format!("{currency}: keep {keep} best {best} saving {saving} "),
+        format!("saving {saving} {currency} "),
+    ];
+    (Line::raw(said), sums.into_iter().map(Line::raw).collect())
 }

@@ -8,7 +8,7 @@ use ratatui::style::{Modifier, Style};
 use ratatui::text::{Line, Span};
 use ratatui::widgets::{Clear, Widget as _};
 
-use super::action::{self, Action, ActionDef, Screen};
+use super::action::{self, ActionDef, Screen};
 use super::app::App;
 use super::theme;
 use super::{basis, fleet, help, journal, tender, text, unit};
@@ -40,9 +40,15 @@ pub(super) fn areas(area: Rect) -> Areas {
     }
 }
 
+/// The body of the terminal. In a smaller one than is drawn in, the layout stays that of the smallest.
+pub(super) fn body(app: &App) -> Rect {
+    let (width, height) = (app.size.width.max(LEAST.width), app.size.height.max(LEAST.height));
+    areas(Rect { x: 0, y: 0, width, height }).body
+}
+
 /// Lines of the list or text that the keys move in.
 pub(super) fn list_height(app: &App) -> usize {
-    let body = areas(Rect::from(app.size)).body;
+    let body = body(app);
     if app.help.is_some() {
         return usize::from(body.height);
     }
@@ -57,7 +63,7 @@ pub(super) fn list_height(app: &App) -> usize {
 
 /// Whether the unit under the cursor stands beside the fleet.
 pub(super) fn shows_detail(app: &App) -> bool {
-    fleet::areas(areas(Rect::from(app.size)).body).detail.is_some()
+    fleet::areas(body(app)).detail.is_some()
 }
 
 /// Puts text at the start of line `y` of an area: cleaned, cut to its width.
@@ -190,18 +196,35 @@ impl App {
         } else if let Some(busy) = self.busy().filter(|_| self.ranked.is_some()) {
             let line = format!(" {}   Esc stops", progress(busy.what, &busy.watch));
             put(buffer, area, 0, &line, self.theme.plain());
-        } else if self.ranked.is_some() && self.help.is_none() {
+        } else if self.ranked.is_some() {
             let (left, right) = match self.screen {
+                _ if self.help.is_some() => (Line::default(), vec![self.more()]),
                 Screen::Fleet => fleet::status(self),
-                Screen::Basis => (basis::draw::status(self), Line::default()),
-                _ => Default::default(),
+                Screen::Basis => (basis::draw::status(self), Vec::new()),
+                Screen::Unit => (Line::default(), vec![self.more()]),
+                Screen::Tender | Screen::Journal => Default::default(),
             };
             put_line(buffer, area, 0, &left);
-            if left.width() + right.width() < usize::from(area.width) {
-                put_right(buffer, area, 0, &right);
+            let room = usize::from(area.width).saturating_sub(left.width());
+            if let Some(right) = right.iter().find(|line| line.width() < room) {
+                put_right(buffer, area, 0, right);
             }
         }
         None
+    }
+
+    /// Says that a text goes on below what is seen of it.
+    fn more(&self) -> Line<'static> {
+        let (from, lines) = match self.help {
+            Some(help) => (help.cursor, help::lines(self, usize::from(self.size.width)).len()),
+            None => (self.unit.facts.cursor, unit::facts_len(self)),
+        };
+        let below = lines.saturating_sub(from + list_height(self));
+        if below == 0 {
+            return Line::default();
+        }
+        let arrow = if self.theme.caps().ascii { "Down" } else { "↓" };
+        Line::styled(format!("{arrow} {below} more lines "), self.theme.muted())
     }
 
     fn context(&self, area: Rect, buffer: &mut Buffer) {
@@ -209,7 +232,7 @@ impl App {
         let mut spans = vec![Span::raw(" ")];
         let mut room = usize::from(area.width).saturating_sub(1);
         let reachable = action::reachable(&self.places());
-        let useful = |def: &ActionDef| def.action != Action::Back || self.can_go_back();
+        let useful = |def: &ActionDef| def.id != "back" || self.can_go_back();
         let shown: Vec<_> = reachable.iter().filter(|(def, _)| def.shown && useful(def)).collect();
         // The last ones (help, quit) always find room.
         let wide =

@@ -74,7 +74,7 @@ pub fn wrap(text: &str, cells: usize) -> Vec<String> {
     if cells == 0 {
         return lines;
     }
-    for word in text.split_whitespace() {
+    for word in text.split(' ').filter(|word| !word.is_empty()) {
         let wide = word.width();
         if used > 0 && used + 1 + wide > cells {
             lines.push(std::mem::take(&mut line));
@@ -100,6 +100,9 @@ pub fn wrap(text: &str, cells: usize) -> Vec<String> {
     lines
 }
 
+/// Stands between groups of digits: a space at which no line is broken.
+const GROUP: char = '\u{a0}';
+
 /// A number with `places` decimals, its whole part in groups of three: `1 234 567.8`.
 pub fn number(value: f64, places: usize) -> String {
     let plain = format!("{value:.places$}");
@@ -113,7 +116,7 @@ pub fn number(value: f64, places: usize) -> String {
     let mut out = String::from(sign);
     for (at, digit) in whole.chars().enumerate() {
         if at > 0 && (whole.len() - at).is_multiple_of(3) {
-            out.push(' ');
+            out.push(GROUP);
         }
         out.push(digit);
     }
@@ -143,14 +146,15 @@ mod tests {
 
     #[test]
     fn numbers_stand_in_groups() {
-        assert_eq!(number(1234567.89, 1), "1 234 567.9");
-        assert_eq!(number(1234.0, 0), "1 234");
+        let spaced = |text: String| text.replace(GROUP, " ");
+        assert_eq!(spaced(number(1234567.89, 1)), "1 234 567.9");
+        assert_eq!(spaced(number(1234.0, 0)), "1 234");
         assert_eq!(number(999.4, 0), "999");
-        assert_eq!(number(12345.0, 0), "12 345");
         assert_eq!(number(-0.2, 0), "0");
-        assert_eq!(number(-123456.0, 0), "-123 456");
+        assert_eq!(spaced(number(-123456.0, 0)), "-123 456");
         assert_eq!(plain(1.50, 3), "1.5");
         assert_eq!(plain(100.0, 2), "100");
+        assert_eq!(wrap(&format!("a {}", number(1234.0, 0)), 5), ["a", "1\u{a0}234"]);
     }
 
     #[test]
@@ -167,7 +171,8 @@ mod tests {
     #[test]
     fn nothing_from_outside_steers_the_terminal() {
         assert_eq!(clean("T\u{1b}[2J1\u{202e}x\u{9b}"), "T\u{FFFD}[2J1\u{FFFD}x\u{FFFD}");
-        assert_eq!(wrap("one two\nthree", 7), ["one two", "three"]);
+        assert_eq!(wrap("one two three", 7), ["one two", "three"]);
+        assert_eq!(wrap("one\ntwo", 9), ["one\u{FFFD}two"]);
         assert_eq!(wrap("abcdefgh", 3), ["abc", "def", "gh"]);
         assert!(wrap("a", 0).is_empty());
     }

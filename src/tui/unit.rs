@@ -146,6 +146,6 @@ fn year(first_year: i64, choice: &YearChoice) -> i64 {
 
 /// Lines of the facts.
 pub(super) fn facts_len(app: &App) -> usize {
-    let size = draw::areas(super::frame::areas(app.size.into()).body).facts;
+    let size = draw::areas(super::frame::body(app)).facts;
     facts::lines(app, usize::from(size.width)).len()
 }

@@ -153,7 +153,8 @@ fn moved(app: &App, stored: &Ranked, now: &Ranked, area: Rect, buffer: &mut Buff
     let currency = currency(app);
     let (before, after) = (stored.ranking.totals, now.ranking.totals);
     let row = |name: &str, before: &str, after: &str| {
-        format!("  {} {} {}", text::left(name, 14), text::right(before, 14), text::right(after, 14))
+        let name = text::left(name, 12);
+        format!(" {name} {} {}", text::right(before, 13), text::right(after, 13))
     };
     put(buffer, area, 0, &row("whole fleet", "stored basis", "now"), theme.heading());
     let money = |value: f64| text::number(value, 0);

@@ -32,11 +32,11 @@ pub(in crate::tui) struct Areas {
 }
 
 /// Lays the screen out.
-fn areas(body: Rect, view: View) -> Areas {
+fn areas(body: Rect, view: View, bids: usize) -> Areas {
     let head = Rect { height: body.height.min(2), ..body };
     let rest = Rect { y: body.y + head.height, height: body.height - head.height, ..body };
     if rest.width >= 120 {
-        let left = Rect { width: rest.width - rest.width * 2 / 5 - 2, ..rest };
+        let left = Rect { width: rest.width - rest.width * 9 / 20 - 2, ..rest };
         let right = Rect { x: left.right() + 2, width: rest.width - left.width - 2, ..rest };
         let (map, changes) = match (rest.height >= 30, view) {
             (true, _) => {
@@ -46,13 +46,13 @@ fn areas(body: Rect, view: View) -> Areas {
             (false, View::Changes) => (None, Some(right)),
             (false, _) => (Some(right), None),
         };
-        let (list, details) = split(left);
+        let (list, details) = split(left, bids);
         return Areas { head, list, details, map, changes };
     }
     let none = Rect { height: 0, ..rest };
     match view {
         View::Bids => {
-            let (list, details) = split(rest);
+            let (list, details) = split(rest, bids);
             Areas { head, list, details, map: None, changes: None }
         }
         View::Map => Areas { head, list: none, details: none, map: Some(rest), changes: None },
@@ -60,14 +60,16 @@ fn areas(body: Rect, view: View) -> Areas {
     }
 }
 
-fn split(area: Rect) -> (Rect, Rect) {
-    let list = Rect { height: area.height.saturating_sub(DETAILS), ..area };
-    (list, Rect { y: list.bottom(), height: area.height - list.height, ..area })
+/// The bids, and right below them the details.
+fn split(area: Rect, bids: usize) -> (Rect, Rect) {
+    let wanted = u16::try_from(bids).unwrap_or(u16::MAX).saturating_add(HEADER);
+    let list = Rect { height: area.height.saturating_sub(DETAILS).min(wanted), ..area };
+    (list, Rect { y: list.bottom(), height: DETAILS.min(area.height - list.height), ..area })
 }
 
 /// Lines of the list of bids.
 pub(in crate::tui) fn rows(app: &App, body: Rect) -> u16 {
-    areas(body, app.tender.view).list.height.saturating_sub(HEADER)
+    areas(body, app.tender.view, super::len(app)).list.height.saturating_sub(HEADER)
 }
 
 /// Draws the screen.
@@ -88,7 +90,7 @@ pub(in crate::tui) fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
         }
         return;
     }
-    let areas = areas(area, app.tender.view);
+    let areas = areas(area, app.tender.view, super::len(app));
     let Some((asked, result)) = lot(app) else {
         put(buffer, area, 1, " This tender has no lot.", theme.muted());
         return;
@@ -118,16 +120,20 @@ fn head(app: &App, asked: &Lot, lot: &LotResult, currency: &str, area: Rect, buf
         Span::raw(format!("  {} x {} kVA", lot.quantity, text::plain(asked.rated_kva, 1))),
     ]);
     put_line(buffer, area, 0, &line);
-    let of = |computed: bool| if computed { "basis" } else { "tender" };
-    let factor = |word: &str, value: f64, computed: bool| {
-        format!("{word} {} ({})", text::number(value, 2), of(computed))
-    };
-    let said = [
-        factor("A", lot.factor_a_per_kw, lot.computed.a),
-        factor("B", lot.factor_b_per_kw, lot.computed.b),
-        factor("A aux", lot.factor_aux_per_kw, lot.computed.aux),
+    let from = |computed: bool| if computed { "the basis" } else { "the tender" };
+    let factors = [
+        ("A", lot.factor_a_per_kw, lot.computed.a),
+        ("B", lot.factor_b_per_kw, lot.computed.b),
+        ("A aux", lot.factor_aux_per_kw, lot.computed.aux),
     ];
-    put(buffer, area, 1, &format!(" {currency}/kW of loss: {}", said.join("  ")), theme.plain());
+    let alike = factors.iter().all(|factor| factor.2 == lot.computed.a);
+    let said = factors.map(|(word, value, computed)| {
+        let value = format!("{word} {}", text::number(value, 2));
+        if alike { value } else { format!("{value} of {}", from(computed)) }
+    });
+    let all = if alike { format!(", from {}", from(lot.computed.a)) } else { String::new() };
+    let said = format!(" a kW of loss in {currency}: {}{all}", said.join("  "));
+    put(buffer, area, 1, &said, theme.plain());
 }
 
 fn cost(bid: &BidResult) -> Parts {
@@ -146,8 +152,8 @@ fn bids(app: &App, lot: &LotResult, currency: &str, area: Rect, buffer: &mut Buf
     let money = |value: f64| text::number(value, 0);
     let row = |bid: &BidResult| {
         let place = match (bid.rank, bid.near_tie) {
-            (Some(rank), true) => format!("={}", sign(rank)),
-            (Some(rank), false) => sign(rank).to_string(),
+            (Some(rank), true) if lot.near_tie_order.len() > 1 => format!("={}", sign(rank)),
+            (Some(rank), _) => sign(rank).to_string(),
             (None, _) => "out".to_owned(),
         };
         [
@@ -166,15 +172,15 @@ fn bids(app: &App, lot: &LotResult, currency: &str, area: Rect, buffer: &mut Buf
     let widths: Vec<usize> = (0..keys.len())
         .map(|n| {
             let content = rows.iter().map(|(_, cells)| text::width(&cells[n])).max().unwrap_or(0);
-            content.min(16).max(text::width(headings[n])).max(units[n].len())
+            content.min(16).max(text::width(headings[n])).max(text::width(&units[n]))
         })
         .collect();
     // The worst within the tolerance gives way first, then the bidder.
     let room = usize::from(area.width).saturating_sub(2);
     let mut kept: Vec<usize> = (0..keys.len()).collect();
     let used = |kept: &[usize]| kept.iter().map(|n| widths[*n] + 2).sum::<usize>();
-    for gives_way in [5, 2] {
-        if used(&kept) + 16 > room {
+    for (gives_way, bar) in [(5, 28), (2, 16)] {
+        if used(&kept) + bar > room {
             kept.retain(|n| *n != gives_way);
         }
     }
@@ -244,7 +250,7 @@ fn details(app: &App, lot: &LotResult, currency: &str, area: Rect, buffer: &mut 
         let sum = format!("{} = {} {currency} a unit", parts.join(" + "), money(bid.owning_cost));
         lines.extend(text::wrap(&sum, cells).into_iter().map(|l| (l, theme.plain())));
         let said = format!(
-            "at tolerance {}   whole lot {} {currency}   losses {} W iron, {} W copper",
+            "at tolerance {}; whole lot {} {currency}; losses {} W iron, {} W copper",
             money(bid.owning_cost_at_tolerance),
             money(bid.lot_cost),
             text::plain(bid.losses.no_load_loss_w, 1),
@@ -302,13 +308,7 @@ fn unit(quantity: &str, currency: &str) -> String {
 }
 
 fn changes(theme: Theme, lot: &LotResult, currency: &str, area: Rect, buffer: &mut Buffer) {
-    put(
-        buffer,
-        area,
-        0,
-        " What must move, alone, before another bid is the cheapest to own",
-        theme.heading(),
-    );
+    put(buffer, area, 0, " What must move, alone, before another bid wins", theme.heading());
     let value = |x: f64| {
         let size = x.abs();
         let places = if size >= 100.0 {
@@ -324,12 +324,13 @@ fn changes(theme: Theme, lot: &LotResult, currency: &str, area: Rect, buffer: &m
         Some(side) => format!("{} {}", value(side.to), text::cut(&side.bid, 8)),
         None => "never".to_owned(),
     };
+    let units = if area.width < 66 { 0 } else { 9 };
+    let wide = (usize::from(area.width).saturating_sub(34 + units) / 2).clamp(9, 22);
     let row = |name: &str, unit: &str, now: &str, down: &str, up: &str| {
-        let wide = (usize::from(area.width).saturating_sub(48) / 2).clamp(13, 22);
         format!(
-            " {} {} {} {} {}",
+            " {} {}{} {} {}",
             text::left(name, 20),
-            text::left(unit, 10),
+            text::left(unit, units),
             text::right(now, 9),
             text::right(down, wide),
             text::right(up, wide)

@@ -21,7 +21,7 @@ pub(super) fn draw(theme: Theme, lot: &LotResult, currency: &str, area: Rect, bu
         return;
     }
     let (top, zero) = (text::number(map.b_max, 0), "0");
-    let margin = u16::try_from(top.len() + 2).unwrap_or(u16::MAX);
+    let margin = u16::try_from(text::width(&top) + 2).unwrap_or(u16::MAX);
     let legend = legend(theme, lot, &winners, usize::from(area.width));
     let below = u16::try_from(legend.len()).unwrap_or(0).min(6);
     // Title and the name of B above, the axis, its labels and the legend below.

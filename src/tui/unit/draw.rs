@@ -96,7 +96,7 @@ fn choices(theme: Theme, dossier: &Dossier, known: &Known, area: Rect, buffer: &
     let rows = super::choices(desk, known, a.first_year);
     let scale = super::scale(&rows);
     let pv = |value: Option<f64>| value.map_or("none open".to_owned(), |v| text::number(v, 0));
-    let wide = rows.iter().map(|row| pv(row.pv).len()).max().unwrap_or(0);
+    let wide = rows.iter().map(|row| text::width(&pv(row.pv))).max().unwrap_or(0);
     let offers = rows.iter().map(|row| text::width(&row.offer)).max().unwrap_or(0).min(14);
     for (y, row) in (1..).zip(rows) {
         let mut spans = vec![Span::raw(format!(
@@ -150,7 +150,7 @@ fn table(theme: Theme, dossier: &Dossier, known: &Known, area: Rect, buffer: &mu
     let years = &known.decision.years;
     let least = years.iter().map(|c| c.pv).fold(f64::INFINITY, f64::min);
     let value = |pv: f64| text::number(pv, 0);
-    let wide = years.iter().map(|c| value(c.pv).len()).max().unwrap_or(0).max(8);
+    let wide = years.iter().map(|c| text::width(&value(c.pv))).max().unwrap_or(0).max(8);
     let rows = usize::from(area.height.saturating_sub(1)).max(1);
     // As many columns of years as are needed and fit.
     let column = 5 + 2 + wide + 2 + 12 + 4;

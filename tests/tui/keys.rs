@@ -1,0 +1,290 @@
+//! State before, keys, state after, as a person sees them.
+
+use ironhum::tui::work::{Answer, Question};
+use ironhum::tui::{App, ExitReason, Screen};
+
+use crate::bench::{Bench, PLAIN};
+
+fn bench() -> Bench {
+    Bench::demo(PLAIN, 80, 24)
+}
+
+fn number(text: &str) -> f64 {
+    text.replace(' ', "").parse().unwrap_or_else(|_| panic!("{text:?} is a number"))
+}
+
+#[test]
+fn cursor_moves_both_ways() {
+    let mut bench = bench();
+    assert!(bench.cursor().contains("ZW-T1"));
+    assert!(bench.keys("<Down>j").cursor().contains("FE-T1"));
+    assert!(bench.keys("k<Up>").cursor().contains("ZW-T1"));
+    assert!(bench.keys("<End>").cursor().contains("210 "));
+    assert!(bench.keys("<PageUp>").cursor().contains("192 "));
+    assert!(bench.keys("g").cursor().contains("ZW-T1"));
+}
+
+#[test]
+fn filter_is_live_on_unit_and_site_and_keeps_the_cursor_on_its_unit() {
+    let mut bench = bench();
+    bench.keys("/zq-");
+    assert!(bench.cursor().contains("ZQ-0105"), "{}", bench.screen());
+    bench.keys("<Ctrl-u>zelmory quay");
+    assert!(bench.cursor().contains("ZQ-"), "{}", bench.screen());
+    let units = |bench: &Bench| bench.lines().iter().filter(|line| line.contains("ZQ-")).count();
+    assert!(units(&bench) > 3);
+    // q is text here, not a command.
+    bench.keys("q");
+    assert!(bench.app.take_exit().is_none());
+    assert!(bench.screen().contains("No ranked unit has these words"));
+    bench.keys("<Backspace><Down><Enter>");
+    let kept = bench.cursor();
+    bench.keys("<Esc>");
+    assert!(bench.screen().contains("210 ranked, 36 left out"));
+    let unit = kept.split_whitespace().nth(2).unwrap();
+    assert!(bench.cursor().contains(unit), "{kept} / {}", bench.cursor());
+}
+
+#[test]
+fn pasted_text_goes_into_the_filter_only() {
+    let mut bench = bench();
+    bench.app.paste("q3");
+    assert_eq!(bench.app.screen(), Screen::Fleet);
+    assert!(bench.app.take_exit().is_none());
+    bench.keys("/");
+    bench.app.paste("ZQ\n-");
+    bench.work();
+    assert!(bench.screen().contains("filter: ZQ-"), "{}", bench.screen());
+}
+
+#[test]
+fn order_goes_round() {
+    let mut bench = bench();
+    let first = bench.cursor();
+    for by in ["waiting", "keep", "rating", "made", "unit"] {
+        bench.keys("s");
+        assert!(bench.screen().contains(&format!(", by {by}")), "{}", bench.screen());
+    }
+    // Another order starts at its top.
+    assert!(bench.cursor().contains(" 007 "), "{}", bench.cursor());
+    assert_eq!(bench.keys("s").cursor(), first);
+}
+
+#[test]
+fn left_out_units_say_why() {
+    let mut bench = bench();
+    bench.keys("x");
+    let screen = bench.screen();
+    assert!(screen.contains("why it is left out"));
+    // The whole reason of the one under the cursor, however narrow the list.
+    assert!(screen.contains("import one, or set"), "{screen}");
+    assert!(!bench.keys("<Esc>").screen().contains("why it is left out"));
+}
+
+#[test]
+fn a_unit_opens_and_its_neighbours_follow() {
+    let mut bench = bench();
+    bench.keys("<Down><Enter>");
+    assert_eq!(bench.app.screen(), Screen::Unit);
+    assert!(bench.lines()[1].contains("OD-T1"));
+    assert!(bench.keys("<Right>").lines()[1].contains("FE-T1"));
+    assert!(bench.keys("p<Left>").lines()[1].contains("ZW-T1"));
+    assert!(bench.keys("t").screen().contains("least"));
+    bench.keys("<Esc>");
+    assert_eq!(bench.app.screen(), Screen::Fleet);
+}
+
+#[test]
+fn digits_and_tab_lead_to_the_screens() {
+    let mut bench = bench();
+    for (keys, screen) in [
+        ("2", Screen::Unit),
+        ("3", Screen::Tender),
+        ("4", Screen::Basis),
+        ("5", Screen::Journal),
+        ("1", Screen::Fleet),
+        ("<Tab>", Screen::Unit),
+        ("<BackTab><BackTab>", Screen::Journal),
+    ] {
+        bench.keys(keys);
+        assert_eq!(bench.app.screen(), screen, "{keys}");
+        assert!(!bench.screen().contains("needs"));
+    }
+}
+
+#[test]
+fn leaving_says_how() {
+    let exit = |keys: &str| -> Option<u8> {
+        let mut bench = bench();
+        bench.keys(keys);
+        bench.app.take_exit().map(|exit| exit.unwrap().code())
+    };
+    assert_eq!(exit("q"), Some(0));
+    assert_eq!(exit("<Ctrl-c>"), Some(130));
+    assert_eq!(exit("/<Ctrl-c>"), Some(130));
+    assert_eq!(exit("?q"), None, "closes the help");
+    assert_eq!(exit("?qq"), Some(0));
+    assert_eq!(exit("<Esc>"), None);
+    assert_eq!(ExitReason::Signal(15).code(), 143);
+}
+
+#[test]
+fn tender_shows_lots_map_and_moves() {
+    let mut bench = bench();
+    bench.keys("3");
+    assert!(bench.screen().contains("lot L1 (1 of 2)"));
+    assert!(bench.screen().contains("misses max_no_load_loss_w"));
+    assert!(bench.keys("n").screen().contains("lot L2 (2 of 2)"));
+    assert!(bench.keys("p").screen().contains("lot L1 (1 of 2)"));
+    assert!(bench.keys("m").screen().contains("◆ today"));
+    assert!(bench.keys("m").screen().contains("discount_rate_pct"));
+    assert!(bench.keys("m").screen().contains("owning cost"));
+}
+
+/// A row of the totals on the basis screen: before and after.
+fn totals(bench: &Bench, name: &str) -> (f64, f64) {
+    let line = bench.lines().into_iter().find(|line| line.trim_start().starts_with(name)).unwrap();
+    let cells: Vec<char> = line.chars().collect();
+    let cell = |from: usize, to: usize| number(cells[from..to].iter().collect::<String>().trim());
+    (cell(13, 27), cell(27, 41))
+}
+
+#[test]
+fn a_nudge_moves_the_ranking_and_reset_brings_it_back() {
+    let mut bench = bench();
+    bench.keys("4");
+    let (stored, now) = totals(&bench, "saving EUR");
+    assert_eq!(stored, now);
+    bench.keys("<Down><Down>>");
+    assert!(bench.cursor().contains("discount_rate_pct") && bench.cursor().contains("7 %"));
+    let (same, higher) = totals(&bench, "saving EUR");
+    assert_eq!(same, stored);
+    assert!(higher < stored, "dearer money makes replacing worth less: {higher} < {stored}");
+    assert!(bench.lines()[0].contains("basis changed"));
+    // Smaller steps add up to a large one; the last bit of the figures is the same.
+    let screen = bench.screen();
+    bench.keys("r<Right><Right><Right><Right><Right>+++++");
+    assert_eq!(bench.screen(), screen);
+    // The fleet and an open unit follow.
+    bench.keys("12");
+    let changed = bench.screen();
+    bench.keys("4R2");
+    assert_ne!(bench.screen(), changed);
+    assert!(!bench.lines()[0].contains("basis changed"));
+    assert_eq!(totals(bench.keys("4"), "saving EUR"), (stored, stored));
+}
+
+#[test]
+fn the_tender_follows_the_basis() {
+    let mut bench = bench();
+    let line =
+        |bench: &Bench| bench.lines().into_iter().find(|l| l.contains("a kW of loss")).unwrap();
+    let before = line(bench.keys("3"));
+    let after = line(bench.keys("4<Down><Down>>3"));
+    assert_ne!(before, after);
+}
+
+#[test]
+fn words_and_blanks_can_be_nudged_and_ends_are_told() {
+    let mut bench = bench();
+    bench.keys("4<Down><Down><Down><Right>");
+    assert!(bench.cursor().contains("year-end"), "{}", bench.cursor());
+    bench.keys("<Left>");
+    assert!(bench.cursor().contains("mid-year"));
+    // energy_price_per_kwh: blank, because a series is named.
+    bench.keys("<Down><Right>");
+    assert!(bench.screen().contains("A price series is named"));
+    // horizon_years goes down to 1 and no further.
+    bench.keys("<Up><Up><Up><<<<<");
+    assert!(bench.cursor().contains("1 years"), "{}", bench.cursor());
+    assert!(bench.screen().contains("end of its range: 1 … 200"));
+}
+
+#[test]
+fn what_cannot_be_computed_is_told_and_the_figures_stay() {
+    let mut session = crate::demo::session();
+    session.desk.sheet.basis.factor_method = None;
+    session.desk.sheet.basis.fixed_charge_rate_pct = None;
+    let mut bench = Bench::on(PLAIN, 80, 24, session);
+    bench.keys("4");
+    let before = totals(&bench, "saving EUR");
+    for _ in 0..60 {
+        if bench.cursor().contains("factor_method") {
+            break;
+        }
+        bench.keys("<Down>");
+    }
+    bench.keys("<Right>");
+    assert!(bench.screen().contains("fixed_charge_rate_pct: is required"), "{}", bench.screen());
+    assert_eq!(totals(&bench, "saving EUR"), before);
+    bench.keys("<Up>");
+    assert!(
+        bench.screen().contains("The figures are of the last basis that could be computed with")
+    );
+    bench.keys("<Down>r");
+    assert!(!bench.lines()[0].contains("basis changed"));
+}
+
+#[test]
+fn esc_stops_a_ranking_and_the_assumption_goes_back() {
+    let mut bench = bench();
+    bench.keys("4<Down><Down>");
+    bench.press(">");
+    assert!(bench.app.is_busy());
+    let job = bench.app.take_questions().pop().unwrap();
+    assert!(bench.screen().contains("Ranking the fleet"));
+    bench.press("<Esc>");
+    assert!(job.watch.is_stopped());
+    assert!(!bench.app.is_busy());
+    assert!(bench.screen().contains("Stopped."), "{}", bench.screen());
+    assert!(bench.cursor().contains("6 %"));
+    // Its late answer changes nothing.
+    let before = bench.screen();
+    bench.answer(job);
+    assert_eq!(bench.screen(), before);
+}
+
+#[test]
+fn late_answers_of_older_questions_are_dropped() {
+    let mut bench = bench();
+    bench.keys("4<Down><Down>");
+    bench.press(">");
+    let older = bench.app.take_questions().pop().unwrap();
+    bench.press(">");
+    let newer = bench.app.take_questions().pop().unwrap();
+    assert!(older.watch.is_stopped(), "the older one is called off");
+    bench.answer(newer);
+    let screen = bench.screen();
+    assert!(bench.cursor().contains("8 %"));
+    bench.answer(older);
+    assert_eq!(bench.screen(), screen);
+}
+
+#[test]
+fn keys_before_the_data_do_no_harm() {
+    let mut app = App::new(PLAIN, ratatui::layout::Size { width: 80, height: 24 });
+    for c in "12345sxtmr<>+-jkgG/?".chars() {
+        app.key(ratatui::crossterm::event::KeyEvent::from(
+            ratatui::crossterm::event::KeyCode::Char(c),
+        ));
+    }
+    let questions = app.take_questions();
+    assert!(matches!(questions[..], [ironhum::tui::work::Job { question: Question::Open, .. }]));
+}
+
+#[test]
+fn a_book_that_cannot_be_read_ends_the_dashboard_with_its_message() {
+    use ironhum::study::StudyError;
+    use ironhum::tui::work::Worker;
+    let mut app = App::new(PLAIN, ratatui::layout::Size { width: 80, height: 24 });
+    let mut worker = Worker::new(|_: &ironhum::study::Watch| {
+        Err(StudyError::unknown("basis", "b", "the book", ["a"]))
+    });
+    for job in app.take_questions() {
+        let done = worker.answer(job);
+        assert!(!matches!(done.answer, Ok(Answer::Opened(_))));
+        app.done(done);
+    }
+    let error = app.take_exit().unwrap().unwrap_err();
+    assert_eq!(error.to_string(), "basis b is not in the book; it holds a");
+}
