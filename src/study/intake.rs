@@ -3,6 +3,7 @@
 //! One way for every kind of file: read, hold against facts, rules and what the book knows, put, and at the end
 //! either commit or leave no trace. A trial (`dry_run`) goes the same way and never commits.
 
+mod ahead;
 mod records;
 mod series;
 mod sheets;

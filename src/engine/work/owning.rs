@@ -119,7 +119,6 @@ calc! {
             loss_factor_pu,
             energised_hours: i.energised_hours,
             auxiliary_hours: i.auxiliary_hours.unwrap_or(i.energised_hours),
-            power_factor: None,
             responsibility_pu,
             no_load_price_per_kwh: i.energy_price_per_kwh,
             load_price_per_kwh: i.load_price_per_kwh.unwrap_or(i.energy_price_per_kwh),
