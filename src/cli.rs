@@ -4,6 +4,7 @@
 
 mod args;
 mod book;
+mod check;
 mod columns;
 mod dashboard;
 mod demo;
@@ -70,7 +71,7 @@ fn dispatch(args: &Args, printer: &mut Printer) -> Result<Exit, Failure> {
         None => dashboard::open(args),
         Some(Command::Demo) => demo::demo(args, printer),
         Some(Command::Import(import)) => import::import(args, import, printer),
-        Some(Command::Check) => todo!(),
+        Some(Command::Check) => check::check(args, printer),
         Some(Command::Losses(options)) => losses::losses(args, options, printer),
         Some(Command::Rank(options)) => rank::rank(args, options, printer),
         Some(Command::Factors(options)) => factors::factors(args, options, printer),

@@ -291,7 +291,6 @@ fn capitalised_factors() {
             loss_factor_pu: n(row, "loss_factor_pu"),
             energised_hours: n(row, "hours"),
             auxiliary_hours: n(row, "auxiliary_hours"),
-            power_factor: None,
             responsibility_pu: n(row, "responsibility_pu"),
             no_load_price_per_kwh: n(row, "no_load_price_per_kwh"),
             load_price_per_kwh: n(row, "load_price_per_kwh"),
