@@ -58,11 +58,6 @@ impl What {
     pub fn word(self) -> &'static str {
         Self::WORDS.iter().find(|(_, what)| *what == self).map_or("", |(word, _)| word)
     }
-
-    /// The kind of a word.
-    pub fn from_word(word: &str) -> Option<Self> {
-        Self::WORDS.iter().find(|(known, _)| *known == word).map(|(_, what)| *what)
-    }
 }
 
 /// How a file is taken in.
