@@ -366,11 +366,16 @@ fn ascii_where_the_locale_is_not_utf8() {
     assert!(bytes.is_ascii());
 }
 
-/// The dashboard with a reader that panics: run by the test below in a pseudo-terminal.
+/// Says that this process is the child of the test below.
+const CHILD: &str = "IRONHUM_TEST_CHILD_THAT_PANICS";
+
+/// The dashboard with a reader that panics: the test below runs it in a pseudo-terminal.
 #[test]
-#[ignore = "run by the test of the panic"]
-#[expect(clippy::exit, reason = "its exit code is what the test looks at")]
+#[expect(clippy::exit, reason = "the exit status is what the parent looks at")]
 fn child_that_panics() {
+    if std::env::var_os(CHILD).is_none() {
+        return;
+    }
     let loader = |_: &ironhum::study::Watch| -> Result<_, _> {
         std::thread::sleep(Duration::from_millis(300));
         panic!("the loader broke")
@@ -383,8 +388,8 @@ fn child_that_panics() {
 #[test]
 fn a_panic_gives_the_terminal_back_before_its_message() {
     let mut command = CommandBuilder::new(std::env::current_exe().expect("is known"));
-    command.args(["--exact", "child_that_panics", "--ignored", "--nocapture"]);
-    let mut pty = Pty::start(command, &[], 80, 24);
+    command.args(["--exact", "child_that_panics", "--nocapture"]);
+    let mut pty = Pty::start(command, &[(CHILD, "1")], 80, 24);
     assert_eq!(pty.wait(), 70);
     pty.is_given_back();
     let text = String::from_utf8_lossy(&pty.bytes()).into_owned();

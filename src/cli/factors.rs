@@ -78,7 +78,10 @@ pub(super) fn working(
     for step in steps {
         printer.line(format!("{indent}{}", step.name))?;
         printer.line(format!("{indent}  {}", step.formula))?;
-        printer.line(format!("{indent}  = {}", step.substituted))?;
+        // A sum over years has no numbers of its own to put in.
+        if !step.formula.ends_with(&step.substituted) {
+            printer.line(format!("{indent}  = {}", step.substituted))?;
+        }
         printer.line(format!("{indent}  = {} {}   [{}]", step.value, step.unit, step.source))?;
         working(printer, &step.steps, depth + 1)?;
     }

@@ -7,7 +7,7 @@ use super::args::{Args, Format, Import};
 use super::book::{self, Opened};
 use super::exit::{Exit, Failure};
 use super::print::Printer;
-use crate::exchange::Source;
+use crate::exchange::{Hints, Source};
 use crate::study::Watch;
 use crate::study::intake::{IntakeError, Options, Report, import as take_in};
 
@@ -41,7 +41,11 @@ pub(super) fn import(
         dry_run: options.dry_run,
         rejects,
         name: options.name.clone(),
-        ..Options::default()
+        hints: Hints {
+            delimiter: options.delimiter,
+            decimal: options.decimal,
+            encoding: options.encoding,
+        },
     };
     let actor = book::actor(options.why.clone());
     let report = take_in(&mut book, options.what, source, intake, &actor, &Watch::default())?;
