@@ -4,7 +4,7 @@ use std::fs::File;
 use std::io::BufWriter;
 
 use super::args::{Args, Format, Import};
-use super::book::{self, Opened};
+use super::book;
 use super::exit::{Exit, Failure};
 use super::print::Printer;
 use crate::exchange::{Hints, Source};
@@ -23,7 +23,11 @@ pub(super) fn import(
         Source::open(&options.file)
     }
     .map_err(|error| Failure::new(Exit::Failed, error.to_string()))?;
-    let Opened { mut book, .. } = book::open_to_write(args)?;
+    let mut book = if options.dry_run && !book::path(args)?.exists() {
+        Book::in_memory()?
+    } else {
+        book::open_to_write(args)?.book
+    };
     let rejects = match &options.rejects {
         None => None,
         Some(path) => {
