@@ -30,6 +30,8 @@ const KEYS: &[&str] = &[
     "energy_saved_kwh",
     "co2_saved_kg",
     "flags",
+    "rank_low",
+    "rank_high",
 ];
 const TEXT: &[&str] = &[
     "rank",
@@ -88,7 +90,18 @@ pub(super) fn write(desk: &Desk, ranking: &Ranking, printer: &mut Printer) -> Re
                 c = a.currency,
             ))?;
             printer.line("")?;
-            printer.table(&TextColumn::list(TEXT, &a.currency), rows)?;
+            let mut columns = TextColumn::list(TEXT, &a.currency);
+            let estimated = ranking.could_stand.len();
+            if estimated > 0 {
+                columns.extend(TextColumn::list(&["rank_low", "rank_high"], &a.currency));
+            }
+            printer.table(&columns, rows)?;
+            if estimated > 0 {
+                printer.line("")?;
+                printer.line(format!(
+                    "{estimated} units have estimated losses: \"if low\" and \"if high\" are their places with losses at the ends of the 95 % interval."
+                ))?;
+            }
             let left_out =
                 (0..ranking.left_out.len()).filter_map(|n| ranking.left_out_row(desk, n));
             write_left_out(printer, left_out)

@@ -13,6 +13,7 @@ use crate::engine::economics::running_cost;
 use crate::engine::transformer::circuit::{PowerFactor, magnetising, of_nameplate};
 use crate::engine::transformer::{efficiency, regulation};
 use crate::engine::working::{Silent, Working};
+use crate::study::estimate::EstimatedRow;
 use crate::study::explain::StepRow;
 use crate::study::losses::{LossesRow, of_unit};
 use crate::study::{Desk, StudyError};
@@ -176,6 +177,8 @@ pub struct Dossier<'a> {
     pub best_load_pu: Option<f64>,
     pub loading: Option<LoadingRow>,
     pub losses: Option<LossesRow<'a>>,
+    /// The losses that its nameplate leaves blank.
+    pub estimated: Option<EstimatedRow>,
     pub keep_or_replace: Option<KeepOrReplace<'a>>,
     /// Why it cannot be ranked.
     pub left_out: Option<&'static str>,
@@ -250,6 +253,7 @@ pub fn dossier<'a>(desk: &'a Desk, unit: &Unit) -> Result<Dossier<'a>, StudyErro
             load_price_per_kwh: place.duty.load_price_per_kwh,
         }),
         losses: of_unit(desk, &context, i).ok(),
+        estimated: EstimatedRow::of(&context, &desk.fleet.facts(i)),
         keep_or_replace: decided.ok().map(|(_, d)| keep_or_replace(desk, &context, &d)),
         left_out,
         flags: flags.keys(),
