@@ -94,7 +94,7 @@ pub fn duty<R: Recorder>(
         }
     };
     let constant = context.market.constant;
-    let load = profile.map_or(constant, |p| context.market.profiles[p]);
+    let load = profile.map_or_else(|| Ok(constant), |p| context.market.profiles[p].clone())?;
     Ok(Duty {
         peak_kva: asked.peak_pu.unwrap_or(1.0),
         load_growth_pu: asked.load_growth_pct.map_or(a.load_growth, |pct| pct / 100.0),
