@@ -44,4 +44,18 @@ impl StepRow {
             steps: Vec::new(),
         }
     }
+
+    /// A working as lines, `depth` steps in: parts indented below the figure that they give.
+    pub fn lines(rows: &[Self], depth: usize) -> Vec<String> {
+        let indent = "    ".repeat(depth);
+        let mut lines = Vec::new();
+        for row in rows {
+            lines.push(format!("{indent}{}", row.name));
+            lines.push(format!("{indent}  {}", row.formula));
+            lines.push(format!("{indent}  = {}", row.substituted));
+            lines.push(format!("{indent}  = {} {}   [{}]", row.value, row.unit, row.source));
+            lines.extend(Self::lines(&row.steps, depth + 1));
+        }
+        lines
+    }
 }

@@ -194,7 +194,7 @@ pub fn factors(desk: &Desk, asked: &LoadAsked) -> Result<Factors, StudyError> {
     })
 }
 
-fn differs(own: &LossFactors, other: &LossFactors, method: &'static str) -> OtherMethod {
+pub(super) fn differs(own: &LossFactors, other: &LossFactors, method: &'static str) -> OtherMethod {
     let pct = |own: f64, other: f64| if own == 0.0 { 0.0 } else { 100.0 * (other / own - 1.0) };
     OtherMethod {
         method,
