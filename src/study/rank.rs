@@ -8,6 +8,7 @@ use crate::engine::decision::fleet::{CHUNK, Kernel, Outcome};
 use crate::engine::decision::keep_or_replace::payback_years;
 use crate::engine::decision::place::resolve;
 use crate::engine::decision::{Context, LeftOut};
+use crate::engine::flags::Flags;
 use crate::engine::transformer::losses::annual_energy;
 use crate::engine::working::Silent;
 use crate::study::{Desk, StudyError, Watch};
@@ -245,7 +246,13 @@ impl Ranking {
             capital: candidate.map(crate::engine::decision::Candidate::price_installed),
             energy_saved_kwh: saved.map(|(energy, _)| energy),
             co2_saved_kg: saved.map(|(_, co2)| co2),
-            flags: outcome.flags.keys(),
+            flags: outcome
+                .flags
+                .with_if(
+                    candidate.is_some_and(|c| c.overloaded(&resolved.duty, usize::from(t), a)),
+                    Flags::OFFER_OVERLOADED,
+                )
+                .keys(),
         })
     }
 
