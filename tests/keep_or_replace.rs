@@ -326,6 +326,7 @@ fn engine(c: &Case) -> (Context, Vec<Candidate>, UnitFacts, Terminals) {
         .offers
         .iter()
         .map(|o| Candidate {
+            offer: String::new(),
             losses: Losses {
                 rated_kva: o.kva,
                 no_load_loss_w: o.p0,

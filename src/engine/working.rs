@@ -57,6 +57,8 @@ pub trait Recorder {
     fn close(&mut self, formula: &'static Formula, inputs: &[(&str, f64)], value: f64) -> f64;
     /// Says what the step stated last is about.
     fn about(&mut self, of: &dyn Fn() -> String);
+    /// Whether anything is kept of what is stated: what is known already is computed again only for a listener.
+    fn listens(&self) -> bool;
 }
 
 /// Computes without a word.
@@ -76,6 +78,10 @@ impl Recorder for Silent {
     }
     #[inline(always)]
     fn about(&mut self, _: &dyn Fn() -> String) {}
+    #[inline(always)]
+    fn listens(&self) -> bool {
+        false
+    }
 }
 
 /// Keeps every step.
@@ -129,6 +135,10 @@ impl Recorder for Working {
         if let Some(step) = self.place().last_mut() {
             step.of = of();
         }
+    }
+
+    fn listens(&self) -> bool {
+        true
     }
 }
 

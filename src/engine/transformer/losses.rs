@@ -34,6 +34,15 @@ impl Energy {
     pub fn total_kwh(&self) -> f64 {
         self.no_load_energy_kwh + self.load_energy_kwh + self.auxiliary_energy_kwh
     }
+
+    /// The three with their symbols.
+    pub const fn inputs(&self) -> [(&'static str, f64); 3] {
+        [
+            ("E0", self.no_load_energy_kwh),
+            ("Ek", self.load_energy_kwh),
+            ("Ea", self.auxiliary_energy_kwh),
+        ]
+    }
 }
 
 const LOAD_LOSS_AT_RATING: Formula = Formula {

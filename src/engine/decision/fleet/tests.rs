@@ -67,6 +67,7 @@ fn offer() -> impl Strategy<Value = Candidate> {
         prop_oneof![2 => Just(Vec::new()), 1 => prop::collection::vec(any::<bool>(), 12)],
     )
         .prop_map(|(rated_kva, l, p, life_years, lead_time_years, lawful)| Candidate {
+            offer: String::new(),
             losses: Losses {
                 rated_kva,
                 no_load_loss_w: l.0,
