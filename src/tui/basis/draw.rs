@@ -204,16 +204,19 @@ fn ranks(app: &App, stored: &Ranked, now: &Ranked, area: Rect, buffer: &mut Buff
 
 /// Where the basis came from, in the status line.
 pub(in crate::tui) fn status(app: &App) -> Line<'static> {
-    let source = app.opened.as_ref().map_or("", |opened| &opened.basis_source);
+    let Some(opened) = &app.opened else { return Line::default() };
+    let source = text::cut(&opened.basis_source, 40);
     let said = if app.basis.is_refused() {
         " The figures are of the last basis that could be computed with."
+    } else if app.basis.is_changed() && opened.can_save {
+        " Changed on this screen only; w stores it."
     } else if app.basis.is_changed() {
-        " Changed on this screen only; nothing is stored."
+        " Changed on this screen only."
     } else {
         " As stored."
     };
     Line::from(vec![
         Span::raw(said.to_owned()),
-        Span::styled(format!("  From {}.", text::cut(source, 40)), app.theme.muted()),
+        Span::styled(format!("  Basis from: {source}."), app.theme.muted()),
     ])
 }
