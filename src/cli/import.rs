@@ -7,6 +7,7 @@ use super::args::{Args, Format, Import};
 use super::book;
 use super::exit::{Exit, Failure};
 use super::print::Printer;
+use crate::book::Book;
 use crate::exchange::{Hints, Source};
 use crate::study::Watch;
 use crate::study::intake::{IntakeError, Options, Report, import as take_in};

@@ -34,7 +34,7 @@ pub(in crate::tui) fn areas(body: Rect) -> Areas {
     let list = Rect { height: body.height.saturating_sub(9), ..body };
     let about = Rect { y: list.bottom(), height: (body.height - list.height).min(2), ..body };
     let below = Rect { y: about.bottom(), height: body.bottom() - about.bottom(), ..body };
-    let half = below.width / 2 + 6;
+    let half = if below.width < 78 { below.width } else { below.width / 2 + 6 };
     let moved = Rect { width: half, ..below };
     let ranks = Rect { x: below.x + half, width: below.width - half, ..below };
     Areas { list, about, moved, ranks }
@@ -77,13 +77,14 @@ fn blank(column: &Column) -> String {
 fn list(app: &App, area: Rect, buffer: &mut Buffer) {
     let theme = app.theme;
     let currency = currency(app);
+    let (values, origins) = if area.width < 76 { (14, 0) } else { (20, 8) };
     let row = |name: &str, value: &str, unit: &str, from: &str| {
         format!(
             "  {} {} {} {}",
-            text::left(name, 28),
-            text::right(value, 20),
+            text::left(name, 26),
+            text::right(value, values),
             text::left(unit, 14),
-            text::left(from, 8)
+            text::left(from, origins)
         )
     };
     put(buffer, area, 0, &row("assumption", "value", "", "from"), theme.heading());
