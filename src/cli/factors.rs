@@ -74,16 +74,8 @@ pub(super) fn working(
     steps: &[StepRow],
     depth: usize,
 ) -> Result<(), Failure> {
-    let indent = "    ".repeat(depth);
-    for step in steps {
-        printer.line(format!("{indent}{}", step.name))?;
-        printer.line(format!("{indent}  {}", step.formula))?;
-        // A sum over years has no numbers of its own to put in.
-        if !step.formula.ends_with(&step.substituted) {
-            printer.line(format!("{indent}  = {}", step.substituted))?;
-        }
-        printer.line(format!("{indent}  = {} {}   [{}]", step.value, step.unit, step.source))?;
-        working(printer, &step.steps, depth + 1)?;
+    for line in StepRow::lines(steps, depth) {
+        printer.line(line)?;
     }
     Ok(())
 }

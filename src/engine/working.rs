@@ -102,6 +102,11 @@ impl Working {
         self.done
     }
 
+    /// Takes over steps that were stated elsewhere.
+    pub fn append(&mut self, steps: impl IntoIterator<Item = Step>) {
+        self.place().extend(steps);
+    }
+
     fn place(&mut self) -> &mut Vec<Step> {
         self.open.last_mut().unwrap_or(&mut self.done)
     }

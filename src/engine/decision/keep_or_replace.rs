@@ -42,8 +42,6 @@ pub struct Decision {
     pub now: Option<YearChoice>,
     /// The best choice after now; none where it is never.
     pub later: Option<YearChoice>,
-    /// What a year's delay costs at least; 0 where now is not best.
-    pub waiting_pv: f64,
     /// The best offer at each delay at which one is open.
     pub years: Vec<YearChoice>,
     /// V(0) by the backward recursion; equal to `best_pv`, kept to show it.
@@ -54,8 +52,35 @@ pub struct Decision {
 
 impl Decision {
     /// keep_pv − best_pv, never below 0.
-    pub fn saving_pv(&self) -> f64 {
-        saving_pv(&mut Silent, self.keep_pv, self.best_pv)
+    pub fn saving_pv<R: Recorder>(&self, w: &mut R) -> f64 {
+        let inputs = [("keep", self.keep_pv), ("best", self.best_pv)];
+        w.step(&SAVING, &inputs, (self.keep_pv - self.best_pv).max(0.0))
+    }
+
+    /// What a year's delay costs at least: the least of all later choices and never, less now; 0 where now is not
+    /// best.
+    pub fn waiting_pv<R: Recorder>(&self, w: &mut R) -> f64 {
+        if self.best.is_none_or(|best| best.offset > 0) {
+            return w.step(&NO_WAITING, &[], 0.0);
+        }
+        let later = self.later.map_or(self.keep_pv, |choice| choice.pv);
+        let inputs = [("later", later), ("now", self.best_pv)];
+        w.step(&WAITING, &inputs, (later - self.best_pv).max(0.0))
+    }
+
+    /// Years of delay of the best choice; none where it is never.
+    pub fn best_delay<R: Recorder>(&self, w: &mut R) -> Option<f64> {
+        #[expect(clippy::cast_precision_loss, reason = "at most 200 years")]
+        let t = self.best?.offset as f64;
+        Some(w.step(&BEST_DELAY, &[], t))
+    }
+
+    /// Calendar year of the best choice; none where it is never.
+    pub fn best_year<R: Recorder>(&self, w: &mut R, first_year: i64) -> Option<f64> {
+        let t = self.best_delay(w)?;
+        #[expect(clippy::cast_precision_loss, reason = "a calendar year")]
+        let first_year = first_year as f64;
+        Some(w.step(&BEST_YEAR, &[("first_year", first_year), ("t", t)], first_year + t))
     }
 }
 
@@ -120,12 +145,6 @@ impl Valuation<'_> {
             best,
             now: years.first().filter(|c| c.offset == 0).copied(),
             later,
-            waiting_pv: match best {
-                Some(YearChoice { offset: 0, .. }) => {
-                    waiting_pv(&mut Silent, later.map_or(keep_pv, |c| c.pv), best_pv)
-                }
-                _ => 0.0,
-            },
             years,
             recursion_pv: self.recursion_pv()?,
             flags: self.place.flags.with_if(self.relaxed, Flags::LAW_RELAXED),
@@ -172,13 +191,22 @@ const WAITING: Formula = Formula {
     unit: "money",
     source: "methods, section 7",
 };
-
-/// What the best choice saves, never below 0.
-pub fn saving_pv<R: Recorder>(w: &mut R, keep_pv: f64, best_pv: f64) -> f64 {
-    w.step(&SAVING, &[("keep", keep_pv), ("best", best_pv)], (keep_pv - best_pv).max(0.0))
-}
-
-/// What a year's delay costs at least where buying now is best: the least of all later choices and never, less now.
-pub fn waiting_pv<R: Recorder>(w: &mut R, later_pv: f64, now_pv: f64) -> f64 {
-    w.step(&WAITING, &[("later", later_pv), ("now", now_pv)], (later_pv - now_pv).max(0.0))
-}
+const NO_WAITING: Formula = Formula {
+    name: "what a year's delay costs: nothing, to buy now is not best",
+    formula: "0",
+    ..WAITING
+};
+const BEST_DELAY: Formula = Formula {
+    name: "delay of the best choice",
+    symbol: "t",
+    formula: "the t of the least J(t, c), where that is less than keeping",
+    unit: "years",
+    source: "methods, section 7",
+};
+const BEST_YEAR: Formula = Formula {
+    name: "year of the best choice",
+    symbol: "year",
+    formula: "first_year + t",
+    unit: "",
+    source: "methods, section 7",
+};

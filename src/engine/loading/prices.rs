@@ -2,6 +2,7 @@
 
 use super::profile::Profile;
 use crate::engine::Refusal;
+use crate::engine::working::{Formula, Recorder, Silent};
 
 /// Energy prices of a year in equal steps, with emission factors and the load of the whole system where known.
 #[derive(Clone, Debug, PartialEq)]
@@ -40,6 +41,98 @@ pub struct Market {
     pub series: bool,
 }
 
+const SOURCE: &str = "methods, section 3";
+const PRICE: Formula = Formula {
+    name: "mean price of a constant loss",
+    symbol: "c0",
+    formula: "Σ_t p_t/n",
+    unit: "money/kWh",
+    source: SOURCE,
+};
+const LOAD_PRICE: Formula = Formula {
+    name: "mean price of a load loss that follows the profile",
+    symbol: "ck",
+    formula: "Σ_t p_t·s_t²/Σ_t s_t²",
+    unit: "money/kWh",
+    source: SOURCE,
+};
+const CO2: Formula = Formula {
+    name: "mean CO2 of a constant loss",
+    symbol: "κ0",
+    formula: "Σ_t κ_t/n",
+    unit: "kg/kWh",
+    source: SOURCE,
+};
+const LOAD_CO2: Formula = Formula {
+    name: "mean CO2 of a load loss that follows the profile",
+    symbol: "κk",
+    formula: "Σ_t κ_t·s_t²/Σ_t s_t²",
+    unit: "kg/kWh",
+    source: SOURCE,
+};
+const RESPONSIBILITY: Formula = Formula {
+    name: "load at the first hour of greatest system load over own peak",
+    symbol: "PRF",
+    formula: "s_t/s_max",
+    unit: "pu",
+    source: SOURCE,
+};
+
+impl PriceSeries {
+    /// What a constant loss pays, c̄0 and κ̄0; `co2_kg_per_kwh` counts where the series has no emission factors.
+    pub fn constant<R: Recorder>(&self, w: &mut R, co2_kg_per_kwh: f64) -> Weights {
+        let mut state = |formula, values: &[f64]| {
+            #[expect(
+                clippy::cast_precision_loss,
+                reason = "a year has at most half a million steps"
+            )]
+            let n = values.len() as f64;
+            w.step(formula, &[("n", n)], mean(values))
+        };
+        Weights {
+            price_per_kwh: state(&PRICE, &self.price_per_kwh),
+            co2_kg_per_kwh: self
+                .co2_kg_per_kwh
+                .as_deref()
+                .map_or(co2_kg_per_kwh, |values| state(&CO2, values)),
+            responsibility_pu: None,
+        }
+    }
+
+    /// What a load loss that follows a profile pays, c̄k and κ̄k, and the share of own peak at the system peak.
+    ///
+    /// # Errors
+    /// A profile of another step or length than the series.
+    pub fn following<R: Recorder>(
+        &self,
+        w: &mut R,
+        profile: &Profile,
+        co2_kg_per_kwh: f64,
+    ) -> Result<Weights, Refusal> {
+        let (steps, minutes) = (self.price_per_kwh.len(), self.step_minutes);
+        if profile.values.len() != steps || profile.step_minutes != minutes {
+            let why = format!(
+                "has {} steps of {} min, the price series {} has {steps} of {minutes} min; bring both to one step and length",
+                profile.values.len(),
+                profile.step_minutes,
+                self.name,
+            );
+            return Err(Refusal::new("profile", &profile.profile, why));
+        }
+        let peak = profile.ratios(&mut Silent)?.peak;
+        let mut state =
+            |formula, values: &[f64]| w.step(formula, &[], weighted(values, &profile.values));
+        let price_per_kwh = state(&LOAD_PRICE, &self.price_per_kwh);
+        let co2 = self.co2_kg_per_kwh.as_deref();
+        let co2_kg_per_kwh = co2.map_or(co2_kg_per_kwh, |values| state(&LOAD_CO2, values));
+        let responsibility_pu = self.system_load.as_deref().map(first_greatest).map(|step| {
+            let load = profile.values[step].abs();
+            w.step(&RESPONSIBILITY, &[("s_t", load), ("s_max", peak)], load / peak)
+        });
+        Ok(Weights { price_per_kwh, co2_kg_per_kwh, responsibility_pu })
+    }
+}
+
 impl Market {
     /// A flat price: every loss pays the same.
     pub fn flat(price_per_kwh: f64, co2_kg_per_kwh: f64, profiles: usize) -> Self {
@@ -57,42 +150,12 @@ impl Market {
         profiles: &[Profile],
         co2_kg_per_kwh: f64,
     ) -> Result<Self, Refusal> {
-        let mut market = Self {
-            constant: Weights {
-                price_per_kwh: mean(&series.price_per_kwh),
-                co2_kg_per_kwh: series.co2_kg_per_kwh.as_deref().map_or(co2_kg_per_kwh, mean),
-                responsibility_pu: None,
-            },
-            profiles: Vec::with_capacity(profiles.len()),
+        let following = |profile| series.following(&mut Silent, profile, co2_kg_per_kwh);
+        Ok(Self {
+            constant: series.constant(&mut Silent, co2_kg_per_kwh),
+            profiles: profiles.iter().map(following).collect::<Result<_, _>>()?,
             series: true,
-        };
-        let peak_step = series.system_load.as_deref().map(first_greatest);
-        for profile in profiles {
-            if profile.values.len() != series.price_per_kwh.len()
-                || profile.step_minutes != series.step_minutes
-            {
-                let why = format!(
-                    "has {} steps of {} min, the price series {} has {} of {} min; bring both to one step and length",
-                    profile.values.len(),
-                    profile.step_minutes,
-                    series.name,
-                    series.price_per_kwh.len(),
-                    series.step_minutes
-                );
-                return Err(Refusal::new("profile", &profile.profile, why));
-            }
-            let peak = profile.ratios()?.peak;
-            let load_weighted = |values: &[f64]| weighted(values, &profile.values);
-            market.profiles.push(Weights {
-                price_per_kwh: load_weighted(&series.price_per_kwh),
-                co2_kg_per_kwh: series
-                    .co2_kg_per_kwh
-                    .as_deref()
-                    .map_or(co2_kg_per_kwh, load_weighted),
-                responsibility_pu: peak_step.map(|step| profile.values[step].abs() / peak),
-            });
-        }
-        Ok(market)
+        })
     }
 }
 

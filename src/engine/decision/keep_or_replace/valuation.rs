@@ -1,11 +1,11 @@
 //! What every choice at one place costs: J(t, c) and R(0) of methods section 7, each a sum over years that a
 //! [`Recorder`] can take down to the running cost of a single year.
 
-use super::age;
 use super::formulas::{
     BUYING, CHOICE, END, FAILURE, FAILURES, FORCED, FORCED_PRICE, KEEP, NEW_FAILURE, NEW_FAILURES,
     NEW_MID_YEAR, NEW_YEAR, NEW_YEARS, OLD_MID_YEAR, OLD_YEAR, OLD_YEARS, PURCHASE, STANDS,
 };
+use super::{YearChoice, age};
 use crate::engine::Refusal;
 use crate::engine::columns::CashFlow;
 use crate::engine::decision::fit::Candidate;
@@ -230,6 +230,23 @@ impl<'a> Valuation<'a> {
         w.close(&CHOICE, &inputs, run + fail + stands * buying);
         w.about(&|| self.bought(c, t));
         Ok(run + fail + stands * buying)
+    }
+
+    /// The present value of a choice among the offers that fit; none = never.
+    ///
+    /// # Errors
+    /// The annuity rule without a life; an offer that does not fit.
+    pub fn policy_pv<R: Recorder>(
+        &self,
+        w: &mut R,
+        choice: Option<YearChoice>,
+    ) -> Result<f64, Refusal> {
+        let Some(choice) = choice else { return self.keep_pv(w) };
+        let Some(c) = self.fitting.iter().position(|&c| c == choice.offer) else {
+            let name = self.candidates.get(choice.offer).map_or("", |c| &c.offer);
+            return Err(Refusal::new("offer", name, "does not fit the unit"));
+        };
+        self.choice_pv(w, c, choice.offset)
     }
 
     fn bought(&self, c: usize, t: usize) -> String {
