@@ -285,9 +285,9 @@ pub struct Settle {
 pub struct Unit {
     /// The unit
     pub unit: String,
-    /// Show how each figure comes about
-    #[arg(long)]
-    pub working: bool,
+    /// Show how each figure comes about, or the one that is named
+    #[arg(long, value_name = "FIGURE", num_args = 0..=1, default_missing_value = "")]
+    pub working: Option<String>,
 }
 
 /// Options of `work`.

@@ -132,7 +132,8 @@ struct Profiles(Vec<(String, Ratios)>);
 
 impl Profiles {
     fn of(profiles: &[Profile]) -> Self {
-        let known = profiles.iter().filter_map(|p| Some((p.profile.clone(), p.ratios().ok()?)));
+        let known =
+            profiles.iter().filter_map(|p| Some((p.profile.clone(), p.ratios(&mut Silent).ok()?)));
         Self(known.collect())
     }
 

@@ -12,6 +12,7 @@ use crate::engine::economics::assumptions::EnergyPrice;
 use crate::engine::flags::Flags;
 use crate::engine::law::{self, Subject};
 use crate::engine::loading::{Market, PriceSeries, Profile, Ratios};
+use crate::engine::working::Silent;
 use crate::study::StudyError;
 
 /// How often a book is read again that others write to meanwhile.
@@ -84,7 +85,7 @@ impl Desk {
         sheet: BasisSheet,
     ) -> Result<Self, StudyError> {
         let candidates = offers.iter().map(Candidate::of_offer).collect::<Result<_, _>>()?;
-        let ratios = profiles.iter().map(Profile::ratios).collect::<Result<_, _>>()?;
+        let ratios = profiles.iter().map(|p| p.ratios(&mut Silent)).collect::<Result<_, _>>()?;
         Ok(Self {
             fleet: fleet.into(),
             offers: offers.into(),
