@@ -315,7 +315,7 @@ fn engine(c: &Case) -> (Context, Vec<Candidate>, UnitFacts, Terminals) {
         assumptions: Assumptions::resolve(&basis).expect("a good basis"),
         market: Market {
             constant: Weights { price_per_kwh: c.price, ..Weights::default() },
-            profiles: vec![Weights { price_per_kwh: c.price, ..Weights::default() }],
+            profiles: vec![Ok(Weights { price_per_kwh: c.price, ..Weights::default() })],
             series: false,
         },
         ratios: vec![Ratios { peak: 1.0, load_factor_pu: c.lsf, loss_factor_pu: c.lsf }],

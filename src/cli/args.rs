@@ -91,7 +91,7 @@ pub enum Command {
     /// Evaluate the bids of a tender
     Tender(Tender),
     /// Measured against guaranteed losses of a tender: excess, penalty, beyond tolerance or not
-    Settle(Tender),
+    Settle(Settle),
     /// One unit's dossier
     Unit(Unit),
     /// One trade calculation with its working shown; without a name list them
@@ -240,6 +240,39 @@ pub struct Tender {
     #[arg(long, value_name = "LOT")]
     pub lot: Option<String>,
     /// Show how each figure comes about
+    #[arg(long)]
+    pub working: bool,
+    /// How its risk is drawn.
+    #[command(flatten)]
+    pub risk: Risk,
+}
+
+/// How sure the winner is.
+#[derive(Clone, Debug, Default, clap::Args)]
+pub struct Risk {
+    /// Say how sure the winner is under the ranges of the basis
+    #[arg(long = "risk", id = "risk")]
+    pub wanted: bool,
+    /// Number of draws
+    #[arg(long, value_name = "N", default_value_t = 10_000, requires = "risk")]
+    pub draws: usize,
+    /// Seed of the draws; the same seed gives the same figures
+    #[arg(long, value_name = "S", default_value_t = 1, requires = "risk")]
+    pub seed: u64,
+    /// Two inputs that move together, with their rank correlation from -1 to 1
+    #[arg(long, value_name = "INPUT,INPUT,RHO", requires = "risk")]
+    pub correlate: Vec<String>,
+}
+
+/// Options of `settle`.
+#[derive(Clone, Debug, clap::Args)]
+pub struct Settle {
+    /// The tender
+    pub tender: String,
+    /// Only this lot
+    #[arg(long, value_name = "LOT")]
+    pub lot: Option<String>,
+    /// Show how each penalty comes about
     #[arg(long)]
     pub working: bool,
 }

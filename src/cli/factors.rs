@@ -8,6 +8,7 @@ use crate::study::Desk;
 use crate::study::explain::StepRow;
 use crate::study::factors::{LoadAsked, factors as ask};
 use crate::study::figures::group;
+use crate::study::tender::{Case, letter};
 
 const KEYS: &[&str] =
     &["basis", "method", "factor_a_per_kw", "factor_b_per_kw", "factor_aux_per_kw"];
@@ -18,6 +19,15 @@ pub(super) fn factors(
     printer: &mut Printer,
 ) -> Result<Exit, Failure> {
     let Opened { book, .. } = book::open_to_read(args)?;
+    if let (Some(tender), Some(lot)) = (&options.tender, &options.lot) {
+        let result = Case::read(&book, tender, args.basis.as_deref())?.factors(lot)?;
+        match printer.format {
+            Format::Json => printer.json(&result)?,
+            Format::Csv => printer.csv(KEYS, std::iter::once(&result))?,
+            Format::Text => printer.letter(&letter::lot_factors(&result, options.working))?,
+        }
+        return Ok(Exit::Done);
+    }
     let desk = Desk::read(&book, args.basis.as_deref())?;
     let asked = LoadAsked {
         peak_pu: options.peak_pu,

@@ -2,16 +2,16 @@
 
 use serde::Serialize;
 
-use super::args::{Args, Format, Tender};
+use super::args::{Args, Format, Settle};
 use super::book::{self, Opened};
 use super::exit::{Exit, Failure};
 use super::factors::working as write_working;
 use super::print::{Printer, TextColumn};
-use super::tender::{basis, context_for};
 use crate::study::explain::StepRow;
 use crate::study::figures::group;
 use crate::study::losses::flag_meaning;
 use crate::study::settle::{LotSettlement, UnitSettlement, settle as ask, working};
+use crate::study::tender::Case;
 
 const KEYS: &[&str] = &[
     "lot",
@@ -42,14 +42,13 @@ struct Line<'a> {
 
 pub(super) fn settle(
     args: &Args,
-    options: &Tender,
+    options: &Settle,
     printer: &mut Printer,
 ) -> Result<Exit, Failure> {
     let Opened { book, .. } = book::open_to_read(args)?;
-    let sheet = book.tender(&options.tender)?;
-    let context = context_for(args, &book, &sheet)?;
-    let basis = basis(context.as_ref());
-    let result = ask(&sheet, basis.as_ref(), options.lot.as_deref())?;
+    let case = Case::read(&book, &options.tender, args.basis.as_deref())?;
+    let (sheet, basis) = (&case.sheet, case.basis());
+    let result = ask(sheet, basis.as_ref(), options.lot.as_deref())?;
     match printer.format {
         Format::Json => printer.json(&result)?,
         Format::Csv => {
@@ -70,7 +69,7 @@ pub(super) fn settle(
                 if options.working {
                     for unit in &lot.units {
                         let steps =
-                            working(&sheet, basis.as_ref(), &lot.lot, &lot.bid, &unit.serial)?;
+                            working(sheet, basis.as_ref(), &lot.lot, &lot.bid, &unit.serial)?;
                         printer.line("")?;
                         printer.line(format!("Unit {}", unit.serial))?;
                         write_working(printer, &StepRow::tree(&steps), 0)?;

@@ -108,7 +108,7 @@ impl Desk {
                 })?;
                 let both =
                     series.co2_kg_per_kwh.is_some() && self.sheet.basis.carbon_kg_per_kwh.is_some();
-                let market = Market::of_series(series, &self.profiles, a.carbon_kg_per_kwh)?;
+                let market = Market::of_series(series, &self.profiles, a.carbon_kg_per_kwh);
                 (market, Flags::NONE.with_if(both, Flags::CARBON_SERIES))
             }
         };

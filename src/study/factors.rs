@@ -94,7 +94,7 @@ pub fn duty<R: Recorder>(
         }
     };
     let constant = context.market.constant;
-    let load = profile.map_or(constant, |p| context.market.profiles[p]);
+    let load = profile.map_or_else(|| Ok(constant), |p| context.market.profiles[p].clone())?;
     Ok(Duty {
         peak_kva: asked.peak_pu.unwrap_or(1.0),
         load_growth_pu: asked.load_growth_pct.map_or(a.load_growth, |pct| pct / 100.0),
@@ -194,7 +194,7 @@ pub fn factors(desk: &Desk, asked: &LoadAsked) -> Result<Factors, StudyError> {
     })
 }
 
-fn differs(own: &LossFactors, other: &LossFactors, method: &'static str) -> OtherMethod {
+pub(super) fn differs(own: &LossFactors, other: &LossFactors, method: &'static str) -> OtherMethod {
     let pct = |own: f64, other: f64| if own == 0.0 { 0.0 } else { 100.0 * (other / own - 1.0) };
     OtherMethod {
         method,

@@ -74,6 +74,11 @@ figures! {
     "auxiliary_excess_w" "aux excess" "W" 0 "measured above guaranteed auxiliary loss";
     "penalty" "penalty" "money" 0 "what the excess losses are worth";
     "beyond_tolerance" "beyond" "" 0 "beyond the tolerance of the lot";
+    "probability_pu" "cheapest" "pu" 3 "part of the draws in which the bid is the cheapest to own";
+    "mean_regret" "mean regret" "money" 0 "mean of what the bid costs above the cheapest of each draw";
+    "owning_cost_p5" "P5" "money" 0 "owning cost that 5 % of the draws stay below";
+    "owning_cost_p50" "P50" "money" 0 "median owning cost";
+    "owning_cost_p95" "P95" "money" 0 "owning cost that 95 % of the draws stay below";
     "factor_a_per_kw" "A" "money/kW" 2 "value of a kW of no-load loss, once";
     "factor_b_per_kw" "B" "money/kW" 2 "value of a kW of load loss at rated load, once";
     "factor_aux_per_kw" "A aux" "money/kW" 2 "value of a kW of auxiliary loss, once";

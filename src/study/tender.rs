@@ -5,6 +5,9 @@
 //! [`mod@risk`] says how sure the winner is, [`mod@award`] what one bidder for all lots costs.
 
 pub mod award;
+mod case;
+mod factors;
+pub mod letter;
 mod results;
 pub mod risk;
 
@@ -24,6 +27,8 @@ use crate::engine::law::Verdict;
 use crate::engine::working::{Recorder, Silent, Step, Working};
 
 pub use crate::engine::decision::tender::BasisForFactors;
+pub use case::{Case, Draws};
+pub use factors::{InCurrency, LegalLimit, LotFactors, lot_factors};
 pub use results::*;
 
 /// Evaluates the bids of a tender: of one lot, or of all.
@@ -43,10 +48,12 @@ pub fn evaluate(
         find_lot(sheet, &bid.lot)?;
     }
     let lots = lots.into_iter().map(|lot| evaluate_lot(sheet, basis, lot));
+    let lots: Vec<LotResult> = lots.collect::<Result<_, _>>()?;
     Ok(TenderResult {
         tender: sheet.tender.tender.clone(),
         currency: sheet.tender.currency.clone(),
-        lots: lots.collect::<Result<_, _>>()?,
+        awards: award::awards(&lots),
+        lots,
     })
 }
 
@@ -330,7 +337,9 @@ fn evaluate_lot(
         near_tie_order: ranking.band.iter().map(|&i| judged.name(i)).collect(),
         borders,
         nearest_border,
+        near_tie_pct: terms.near_tie_pct,
         computed: Computed::by(lot),
+        risk: None,
     })
 }
 

@@ -14,7 +14,6 @@ use ratatui::layout::Size;
 use signal_hook::consts::{SIGCONT, SIGHUP, SIGINT, SIGTERM, SIGTSTP};
 use signal_hook::iterator::Signals;
 
-use super::action::Action;
 use super::app::{App, ExitReason, Wish};
 use super::caps::Caps;
 use super::session::Session;
@@ -176,7 +175,10 @@ fn event_loop(
             Err(RecvTimeoutError::Disconnected) | Ok(Event::WorkerDied) => {
                 return Err(TuiError::Worker);
             }
-            Ok(Event::Signal(SIGTSTP)) => app.act(Action::Suspend),
+            Ok(Event::Signal(SIGTSTP)) => {
+                held.suspend()?;
+                app.resize(size_now());
+            }
             // Continued from outside: the shell may have drawn over it.
             Ok(Event::Signal(SIGCONT)) => held.resume()?,
             Ok(Event::Signal(signal)) => return Ok(ExitReason::Signal(signal)),
@@ -188,9 +190,10 @@ fn event_loop(
         }
         changed = true;
         match app.take_wish() {
+            // The signal comes back as an event, and stops who started this program too (cargo, a script).
             Some(Wish::Suspend) => {
-                held.suspend()?;
-                app.resize(size_now());
+                rustix::process::kill_current_process_group(rustix::process::Signal::TSTP)
+                    .map_err(io::Error::from)?;
             }
             Some(Wish::Redraw) => held.terminal.clear()?,
             None => {}

@@ -136,6 +136,8 @@ pub enum LeftOut {
     NoOffer,
     /// Named profile is not in the book (only while columns are built by hand).
     ProfileUnknown,
+    /// Its profile cannot be laid beside the price series.
+    ProfileUnfit,
 }
 
 impl LeftOut {
@@ -162,6 +164,9 @@ impl LeftOut {
             }
             Self::NoOffer => {
                 "no offer fits: phases, voltages, vector group, size window, loading limit, lead time or law"
+            }
+            Self::ProfileUnfit => {
+                "its profile and the price series differ in step, length or start; bring both to one"
             }
             Self::ProfileUnknown => "its profile is not in the book; import it",
         }
@@ -243,7 +248,11 @@ pub fn resolve<R: Recorder>(w: &mut R, f: &UnitFacts, ctx: &Context) -> Result<P
     } else {
         Some((
             ctx.ratios.get(f.profile as usize).ok_or(LeftOut::ProfileUnknown)?,
-            ctx.market.profiles.get(f.profile as usize).ok_or(LeftOut::ProfileUnknown)?,
+            match ctx.market.profiles.get(f.profile as usize) {
+                Some(Ok(weights)) => weights,
+                Some(Err(_)) => return Err(LeftOut::ProfileUnfit),
+                None => return Err(LeftOut::ProfileUnknown),
+            },
         ))
     };
     let of_profile = profile.map(|(ratios, _)| ratios);

@@ -10,6 +10,8 @@ pub struct Profile {
     pub profile: String,
     /// Length of a step in minutes.
     pub step_minutes: u32,
+    /// Time of the first step, ISO 8601; none where the steps are only numbered.
+    pub first_timestamp: Option<String>,
     /// Load of each step, at any scale.
     pub values: Vec<f64>,
 }
@@ -100,7 +102,8 @@ mod tests {
     #[test]
     fn two_level_curve() {
         let values = [vec![100.0; 6], vec![-25.0; 18]].concat();
-        let profile = Profile { profile: "two".into(), step_minutes: 60, values };
+        let profile =
+            Profile { profile: "two".into(), step_minutes: 60, first_timestamp: None, values };
         let ratios = profile.ratios(&mut Silent).expect("has a peak");
         assert_eq!((ratios.load_factor_pu, ratios.loss_factor_pu), (0.4375, 0.296_875));
         assert_eq!(profile.load_duration(4), vec![(0.75, 0.25), (0.25, 1.0)]);
@@ -108,7 +111,12 @@ mod tests {
 
     #[test]
     fn dead_profile_is_refused() {
-        let dead = |values| Profile { profile: "dead".into(), step_minutes: 60, values };
+        let dead = |values| Profile {
+            profile: "dead".into(),
+            step_minutes: 60,
+            first_timestamp: None,
+            values,
+        };
         assert!(dead(vec![0.0; 5]).ratios(&mut Silent).is_err());
         assert!(dead(vec![]).ratios(&mut Silent).is_err());
     }

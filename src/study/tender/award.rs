@@ -5,15 +5,11 @@
 
 use serde::Serialize;
 
-use super::{BidResult, LotResult, TenderResult};
+use super::{BidResult, LotResult};
 
-/// How a tender may be awarded.
-#[derive(Clone, Debug, PartialEq, Serialize)]
-pub struct AwardResult {
-    /// The tender.
-    pub tender: String,
-    /// Currency of all amounts.
-    pub currency: String,
+/// How the lots may be awarded.
+#[derive(Clone, Debug, Default, PartialEq, Serialize)]
+pub struct Awards {
     /// Each lot to the bid of least owning cost.
     pub by_lot: Package,
     /// All lots to one bidder: those who cover most lots first, then the cheapest.
@@ -79,10 +75,9 @@ impl Package {
 }
 
 /// Compares awarding each lot on its own with awarding all to one bidder.
-pub fn award(tender: &TenderResult) -> AwardResult {
-    let by_lot = Package::of(&tender.lots, |_| true);
-    let mut bidders: Vec<&str> = tender
-        .lots
+pub fn awards(lots: &[LotResult]) -> Awards {
+    let by_lot = Package::of(lots, |_| true);
+    let mut bidders: Vec<&str> = lots
         .iter()
         .flat_map(|lot| &lot.bids)
         .filter(|bid| bid.rank.is_some())
@@ -93,7 +88,7 @@ pub fn award(tender: &TenderResult) -> AwardResult {
     let mut packages: Vec<BidderPackage> = bidders
         .into_iter()
         .map(|bidder| {
-            let package = Package::of(&tender.lots, |bid| bid.bidder.as_deref() == Some(bidder));
+            let package = Package::of(lots, |bid| bid.bidder.as_deref() == Some(bidder));
             let covered = |bid: &&PackageBid| package.bids.iter().any(|own| own.lot == bid.lot);
             let winners: f64 = by_lot.bids.iter().filter(covered).map(|bid| bid.lot_cost).sum();
             let above_by_lot = package.lot_cost - winners;
@@ -104,10 +99,5 @@ pub fn award(tender: &TenderResult) -> AwardResult {
         let covered = b.package.bids.len().cmp(&a.package.bids.len());
         covered.then(a.package.lot_cost.total_cmp(&b.package.lot_cost))
     });
-    AwardResult {
-        tender: tender.tender.clone(),
-        currency: tender.currency.clone(),
-        by_lot,
-        packages,
-    }
+    Awards { by_lot, packages }
 }

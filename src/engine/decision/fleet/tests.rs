@@ -133,7 +133,7 @@ fn context(basis: &Basis) -> Context {
         assumptions: Assumptions::resolve(basis).expect("a good basis"),
         market: Market {
             constant: weights(0.1),
-            profiles: vec![weights(0.11), weights(0.13)],
+            profiles: vec![Ok(weights(0.11)), Ok(weights(0.13))],
             series: true,
         },
         ratios: vec![ratios(0.5, 0.3), ratios(0.7, 0.55)],
