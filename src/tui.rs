@@ -32,4 +32,4 @@ pub use action::{ACTIONS, Action, Screen};
 pub use app::{App, ExitReason};
 pub use caps::{Caps, ColourWish, Colours, Marks};
 pub use run::{TuiError, run};
-pub use session::{JournalLine, RecordReader, Session};
+pub use session::{BasisWriter, JournalLine, RecordReader, Session};

@@ -26,7 +26,7 @@ struct Pty {
     master: Box<dyn MasterPty + Send>,
     keyboard: Box<dyn std::io::Write + Send>,
     output: Arc<Mutex<Output>>,
-    _home: tempfile::TempDir,
+    home: tempfile::TempDir,
 }
 
 impl Pty {
@@ -74,7 +74,7 @@ impl Pty {
             }
         });
         let keyboard = pair.master.take_writer().expect("a keyboard");
-        Self { child, master: pair.master, keyboard, output, _home: home }
+        Self { child, master: pair.master, keyboard, output, home }
     }
 
     fn screen(&self) -> String {
@@ -210,6 +210,34 @@ fn a_signal_while_reading_leaves_too() {
 }
 
 #[test]
+fn a_terminal_that_is_gone_ends_it() {
+    let home = tempfile::tempdir().expect("a folder");
+    let mut command = CommandBuilder::new(env!("CARGO_BIN_EXE_ironhum"));
+    command.arg("demo");
+    command.env_clear();
+    command.env("HOME", home.path());
+    command.env("TERM", "xterm");
+    let pair = native_pty_system().openpty(PtySize::default()).expect("a pseudo-terminal");
+    let mut child = pair.slave.spawn_command(command).expect("starts");
+    drop(pair.slave);
+    // Read here and not in a thread, so that the last handle of the terminal can be dropped.
+    let mut reader = pair.master.try_clone_reader().expect("a reader");
+    let mut screen = vt100::Parser::new(cells(24), cells(80), 0);
+    while !screen.screen().contents().contains(READY) {
+        let mut bytes = [0; 1024];
+        let n = reader.read(&mut bytes).expect("runs");
+        screen.process(&bytes[..n]);
+    }
+    drop(reader);
+    drop(pair.master);
+    let start = Instant::now();
+    while child.try_wait().expect("can be waited for").is_none() {
+        assert!(start.elapsed() < PATIENCE, "it does not end");
+        std::thread::sleep(Duration::from_millis(10));
+    }
+}
+
+#[test]
 fn suspended_and_continued() {
     for by_key in [true, false] {
         let mut pty = Pty::demo(&[]);
@@ -254,6 +282,30 @@ fn any_size_of_the_terminal() {
     pty.type_in("q");
     assert_eq!(pty.wait(), 0);
     pty.is_given_back();
+}
+
+#[test]
+fn a_changed_basis_is_stored_with_its_old_value_in_the_journal() {
+    let mut pty = Pty::demo(&[]);
+    pty.until_shown(READY);
+    pty.type_in("4\u{1b}[B\u{1b}[B>");
+    pty.until_shown("basis changed");
+    pty.type_in("w");
+    pty.until_shown("w again stores");
+    pty.type_in("w");
+    pty.until_shown("Stored.");
+    pty.type_in("5");
+    pty.until_shown("changed basis plan-2027");
+    pty.type_in("q");
+    assert_eq!(pty.wait(), 0);
+    let book = pty.home.path().join("ironhum").join("demo.sqlite");
+    let journal = std::process::Command::new(env!("CARGO_BIN_EXE_ironhum"))
+        .args(["journal", "--format", "json", "--book"])
+        .arg(book)
+        .output()
+        .expect("runs");
+    let journal = String::from_utf8_lossy(&journal.stdout).into_owned();
+    assert!(journal.contains("discount_rate_pct") && journal.contains("dashboard"), "{journal}");
 }
 
 /// The parameters of all sequences that set how text looks.
@@ -314,10 +366,16 @@ fn ascii_where_the_locale_is_not_utf8() {
     assert!(bytes.is_ascii());
 }
 
-/// The dashboard with a reader that panics: run by the test below in a pseudo-terminal.
+/// Says that this process is the child of the test below.
+const CHILD: &str = "IRONHUM_TEST_CHILD_THAT_PANICS";
+
+/// The dashboard with a reader that panics: the test below runs it in a pseudo-terminal.
 #[test]
-#[ignore = "run by the test of the panic"]
+#[expect(clippy::exit, reason = "the exit status is what the parent looks at")]
 fn child_that_panics() {
+    if std::env::var_os(CHILD).is_none() {
+        return;
+    }
     let loader = |_: &ironhum::study::Watch| -> Result<_, _> {
         std::thread::sleep(Duration::from_millis(300));
         panic!("the loader broke")
@@ -330,8 +388,8 @@ fn child_that_panics() {
 #[test]
 fn a_panic_gives_the_terminal_back_before_its_message() {
     let mut command = CommandBuilder::new(std::env::current_exe().expect("is known"));
-    command.args(["--exact", "child_that_panics", "--ignored", "--nocapture"]);
-    let mut pty = Pty::start(command, &[], 80, 24);
+    command.args(["--exact", "child_that_panics", "--nocapture"]);
+    let mut pty = Pty::start(command, &[(CHILD, "1")], 80, 24);
     assert_eq!(pty.wait(), 70);
     pty.is_given_back();
     let text = String::from_utf8_lossy(&pty.bytes()).into_owned();

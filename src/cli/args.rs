@@ -5,6 +5,7 @@ use std::path::PathBuf;
 use clap::builder::{PossibleValuesParser, TypedValueParser};
 use clap::{Parser, Subcommand, ValueEnum};
 
+use crate::exchange::{Decimal, Delimiter, Encoding};
 use crate::study::intake::What;
 
 /// How results are written.
@@ -100,7 +101,7 @@ pub enum Command {
     /// Say what columns a file has: name, unit, range, what a blank means
     Columns {
         /// The file
-        #[arg(value_parser = kind())]
+        #[arg(value_parser = one_of(&What::WORDS))]
         what: What,
     },
     /// Write a consistent copy of the book
@@ -117,10 +118,14 @@ pub enum Command {
     Man,
 }
 
-/// The kinds of files, as typed.
-fn kind() -> impl TypedValueParser<Value = What> {
-    PossibleValuesParser::new(What::WORDS.iter().map(|(word, _)| *word))
-        .try_map(|word| What::from_word(&word).ok_or("is no kind of file"))
+/// One word of a list, as typed.
+fn one_of<T: Clone + Send + Sync + 'static>(
+    words: &'static [(&'static str, T)],
+) -> impl TypedValueParser<Value = T> {
+    PossibleValuesParser::new(words.iter().map(|(word, _)| *word)).try_map(|typed| {
+        let found = words.iter().find(|(word, _)| *word == typed);
+        found.map(|(_, value)| value.clone()).ok_or("is no word of the list")
+    })
 }
 
 /// Options of `import`.
@@ -128,7 +133,7 @@ fn kind() -> impl TypedValueParser<Value = What> {
 #[expect(clippy::struct_excessive_bools, reason = "each is a switch that can be typed")]
 pub struct Import {
     /// What the file holds
-    #[arg(value_parser = kind())]
+    #[arg(value_parser = one_of(&What::WORDS))]
     pub what: What,
     /// The file; - reads standard input
     pub file: PathBuf,
@@ -153,6 +158,15 @@ pub struct Import {
     /// Name of the price series (else the file's name)
     #[arg(long, value_name = "NAME")]
     pub name: Option<String>,
+    /// What parts the cells (else recognised)
+    #[arg(long, value_name = "WORD", value_parser = one_of(Delimiter::WORDS))]
+    pub delimiter: Option<Delimiter>,
+    /// The decimal sign (else recognised)
+    #[arg(long, value_name = "WORD", value_parser = one_of(Decimal::WORDS))]
+    pub decimal: Option<Decimal>,
+    /// The encoding of the text (else recognised)
+    #[arg(long, value_name = "WORD", value_parser = one_of(Encoding::WORDS))]
+    pub encoding: Option<Encoding>,
     /// Why, for the journal
     #[arg(long, value_name = "TEXT")]
     pub why: Option<String>,

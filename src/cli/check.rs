@@ -23,13 +23,7 @@ pub(super) fn check(args: &Args, printer: &mut Printer) -> std::result::Result<E
         Format::Json => printer.json(&Result { doubts })?,
         Format::Csv => printer.csv(KEYS, doubts.iter())?,
         Format::Text => {
-            let columns = KEYS.iter().map(|key| TextColumn {
-                key,
-                heading: (*key).to_owned(),
-                unit: String::new(),
-                places: 0,
-            });
-            printer.table(&columns.collect::<Vec<_>>(), doubts.iter())?;
+            printer.table(&TextColumn::plain_list(KEYS), doubts.iter())?;
             printer.line("")?;
             printer.line(format!("{} doubtful points.", doubts.len()))?;
         }

@@ -73,13 +73,7 @@ pub(super) fn columns(what: What, printer: &mut Printer) -> std::result::Result<
         Format::Json => printer.json(&Result { columns: rows.collect() })?,
         Format::Csv => printer.csv(KEYS, rows)?,
         Format::Text => {
-            let headings = KEYS.iter().map(|key| TextColumn {
-                key,
-                heading: (*key).to_owned(),
-                unit: String::new(),
-                places: 0,
-            });
-            printer.table(&headings.collect::<Vec<_>>(), rows)?;
+            printer.table(&TextColumn::plain_list(KEYS), rows)?;
         }
     }
     Ok(Exit::Done)

@@ -8,7 +8,7 @@ use super::book;
 use super::exit::{Exit, Failure};
 use crate::book::{Access, Book, JournalEntry};
 use crate::study::{Desk, StudyError};
-use crate::tui::{self, Caps, ColourWish, ExitReason, JournalLine, Session};
+use crate::tui::{self, BasisWriter, Caps, ColourWish, ExitReason, JournalLine, Session};
 
 /// Entries of the journal that are shown.
 const JOURNAL: usize = 1000;
@@ -48,7 +48,8 @@ pub(super) fn on(args: &Args, path: PathBuf) -> Result<Exit, Failure> {
     };
     let caps = Caps::of(|name| std::env::var(name).ok(), wish, args.ascii);
     let basis = args.basis.clone();
-    let reason = tui::run(move |_| session(&path, basis.as_deref()), caps)
+    let may_write = !args.read_only;
+    let reason = tui::run(move |_| session(&path, basis.as_deref(), may_write), caps)
         .map_err(|error| Failure::new(Exit::Failed, error.to_string()))?;
     Ok(match reason {
         ExitReason::Quit => Exit::Done,
@@ -56,7 +57,7 @@ pub(super) fn on(args: &Args, path: PathBuf) -> Result<Exit, Failure> {
     })
 }
 
-fn session(path: &Path, basis: Option<&str>) -> Result<Session, StudyError> {
+fn session(path: &Path, basis: Option<&str>, may_write: bool) -> Result<Session, StudyError> {
     let book = Book::open(path, Access::ReadOnly)?;
     let desk = Desk::read(&book, basis)?;
     let tenders = book
@@ -64,7 +65,17 @@ fn session(path: &Path, basis: Option<&str>) -> Result<Session, StudyError> {
         .iter()
         .map(|tender| book.tender(&tender.tender))
         .collect::<Result<_, _>>()?;
-    let journal = book.journal(JOURNAL)?.into_iter().map(line).collect();
+    let lines = |book: &Book| -> Result<Vec<JournalLine>, StudyError> {
+        Ok(book.journal(JOURNAL)?.into_iter().map(line).collect())
+    };
+    let journal = lines(&book)?;
+    let own = path.to_owned();
+    // Opened for writing only while it writes: another program may write meanwhile.
+    let save: BasisWriter = Box::new(move |sheet| {
+        let mut book = Book::open(&own, Access::ReadWrite)?;
+        book.save_basis(sheet, &book::actor(Some("changed on the dashboard".to_owned())))?;
+        lines(&book)
+    });
     let name = path.file_name().map(|name| name.to_string_lossy().into_owned());
     Ok(Session {
         title: name.unwrap_or_default(),
@@ -73,6 +84,7 @@ fn session(path: &Path, basis: Option<&str>) -> Result<Session, StudyError> {
         tenders,
         journal,
         record: Some(Box::new(move |unit| book.unit(unit).ok())),
+        save: may_write.then_some(save),
     })
 }
 

@@ -4,10 +4,11 @@ use std::fs::File;
 use std::io::BufWriter;
 
 use super::args::{Args, Format, Import};
-use super::book::{self, Opened};
+use super::book;
 use super::exit::{Exit, Failure};
 use super::print::Printer;
-use crate::exchange::Source;
+use crate::book::Book;
+use crate::exchange::{Hints, Source};
 use crate::study::Watch;
 use crate::study::intake::{IntakeError, Options, Report, import as take_in};
 
@@ -23,7 +24,11 @@ pub(super) fn import(
         Source::open(&options.file)
     }
     .map_err(|error| Failure::new(Exit::Failed, error.to_string()))?;
-    let Opened { mut book, .. } = book::open_to_write(args)?;
+    let mut book = if options.dry_run && !book::path(args)?.exists() {
+        Book::in_memory()?
+    } else {
+        book::open_to_write(args)?.book
+    };
     let rejects = match &options.rejects {
         None => None,
         Some(path) => {
@@ -41,7 +46,11 @@ pub(super) fn import(
         dry_run: options.dry_run,
         rejects,
         name: options.name.clone(),
-        ..Options::default()
+        hints: Hints {
+            delimiter: options.delimiter,
+            decimal: options.decimal,
+            encoding: options.encoding,
+        },
     };
     let actor = book::actor(options.why.clone());
     let report = take_in(&mut book, options.what, source, intake, &actor, &Watch::default())?;

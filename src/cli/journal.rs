@@ -35,17 +35,8 @@ pub(super) fn journal(
         Format::Json => printer.json(&Result { entries: &entries })?,
         Format::Csv => printer.csv(KEYS, lines)?,
         Format::Text => {
-            let columns: Vec<TextColumn> =
-                ["at", "who", "action", "kind", "key", "source", "change"]
-                    .iter()
-                    .map(|key| TextColumn {
-                        key,
-                        heading: (*key).to_owned(),
-                        unit: String::new(),
-                        places: 0,
-                    })
-                    .collect();
-            printer.table(&columns, lines)?;
+            let keys = ["at", "who", "action", "kind", "key", "source", "change"];
+            printer.table(&TextColumn::plain_list(&keys), lines)?;
         }
     }
     Ok(Exit::Done)

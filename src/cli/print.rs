@@ -40,6 +40,14 @@ impl TextColumn {
             places: figure.map_or(2, |f| f.places),
         }
     }
+    /// A column that is called as its key.
+    pub(super) fn plain(key: &'static str) -> Self {
+        Self { key, heading: key.to_owned(), unit: String::new(), places: 0 }
+    }
+    /// Several columns that are called as their keys.
+    pub(super) fn plain_list(keys: &[&'static str]) -> Vec<Self> {
+        keys.iter().map(|key| Self::plain(key)).collect()
+    }
     /// Several columns.
     pub(super) fn list(keys: &[&'static str], currency: &str) -> Vec<Self> {
         keys.iter().map(|key| Self::of(key, currency)).collect()

@@ -54,16 +54,8 @@ fn catalogue(printer: &mut Printer, calcs: Vec<CalcRow>) -> Result<Exit, Failure
                     let names = calc.inputs.iter().map(short).collect::<Vec<_>>().join(" ");
                     printer.line(format!("    {names}"))?;
                 } else {
-                    let columns: Vec<TextColumn> = ["name", "unit", "range", "default", "meaning"]
-                        .iter()
-                        .map(|key| TextColumn {
-                            key,
-                            heading: (*key).to_owned(),
-                            unit: String::new(),
-                            places: 0,
-                        })
-                        .collect();
-                    printer.table(&columns, calc.inputs.iter())?;
+                    let keys = ["name", "unit", "range", "default", "meaning"];
+                    printer.table(&TextColumn::plain_list(&keys), calc.inputs.iter())?;
                 }
                 printer.line(format!("    source: {}", calc.source))?;
             }

@@ -17,7 +17,9 @@ pub enum Delimiter {
 }
 
 impl Delimiter {
-    pub(super) const ALL: [Self; 3] = [Self::Comma, Self::Semicolon, Self::Tab];
+    /// The delimiters with their words.
+    pub const WORDS: &'static [(&'static str, Self)] =
+        &[("comma", Self::Comma), ("semicolon", Self::Semicolon), ("tab", Self::Tab)];
 
     pub(super) fn byte(self) -> u8 {
         match self {
@@ -37,7 +39,7 @@ impl Delimiter {
                 b'\n' | b'\r' if !quoted && count != [0; 3] => break,
                 _ if quoted => {}
                 byte => {
-                    for (delimiter, count) in Self::ALL.iter().zip(&mut count) {
+                    for ((_, delimiter), count) in Self::WORDS.iter().zip(&mut count) {
                         *count += usize::from(delimiter.byte() == *byte);
                     }
                 }
@@ -61,6 +63,12 @@ pub enum Decimal {
     Comma,
 }
 
+impl Decimal {
+    /// The decimal signs with their words.
+    pub const WORDS: &'static [(&'static str, Self)] =
+        &[("point", Self::Point), ("comma", Self::Comma)];
+}
+
 /// How characters are kept.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize)]
 pub enum Encoding {
@@ -79,6 +87,14 @@ pub enum Encoding {
 }
 
 impl Encoding {
+    /// The encodings with their words.
+    pub const WORDS: &'static [(&'static str, Self)] = &[
+        ("utf-8", Self::Utf8),
+        ("utf-16le", Self::Utf16Le),
+        ("utf-16be", Self::Utf16Be),
+        ("windows-1252", Self::Windows1252),
+    ];
+
     /// The encoding that a byte-order mark states, with the length of the mark.
     pub(super) fn of_mark(head: &[u8]) -> Option<(Self, usize)> {
         match head {

@@ -52,7 +52,10 @@ impl StepRow {
         for row in rows {
             lines.push(format!("{indent}{}", row.name));
             lines.push(format!("{indent}  {}", row.formula));
-            lines.push(format!("{indent}  = {}", row.substituted));
+            // What has no numbers of its own to put in is not said twice.
+            if !row.formula.ends_with(&row.substituted) {
+                lines.push(format!("{indent}  = {}", row.substituted));
+            }
             lines.push(format!("{indent}  = {} {}   [{}]", row.value, row.unit, row.source));
             lines.extend(Self::lines(&row.steps, depth + 1));
         }

@@ -3,6 +3,7 @@
 //! One way for every kind of file: read, hold against facts, rules and what the book knows, put, and at the end
 //! either commit or leave no trace. A trial (`dry_run`) goes the same way and never commits.
 
+mod ahead;
 mod records;
 mod series;
 mod sheets;
@@ -56,11 +57,6 @@ impl What {
     /// The word of a kind.
     pub fn word(self) -> &'static str {
         Self::WORDS.iter().find(|(_, what)| *what == self).map_or("", |(word, _)| word)
-    }
-
-    /// The kind of a word.
-    pub fn from_word(word: &str) -> Option<Self> {
-        Self::WORDS.iter().find(|(known, _)| *known == word).map(|(_, what)| *what)
     }
 }
 

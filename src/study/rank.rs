@@ -173,8 +173,8 @@ fn order(desk: &Desk, outcomes: &[Outcome], by: By, top: Option<usize>) -> Vec<u
             By::Saving => outcome.saving_pv(),
             By::Waiting => outcome.waiting_pv,
             By::Keep => outcome.keep_pv,
-            By::Rating => desk.fleet.rated_kva[i as usize],
-            By::Made => Some(-desk.fleet.year_made[i as usize])
+            By::Rating => desk.fleet.rated_kva.get(i as usize),
+            By::Made => Some(-desk.fleet.year_made.get(i as usize))
                 .filter(|made| !made.is_nan())
                 .unwrap_or(f64::NEG_INFINITY),
             By::Unit => 0.0,

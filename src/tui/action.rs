@@ -101,6 +101,7 @@ pub enum Action {
     MuchMore,
     Reset,
     ResetAll,
+    Save,
 }
 
 /// One line of the table.
@@ -172,10 +173,11 @@ actions! {
     BASIS => {
         "less" Action::Less, [key(KeyCode::Left), char('-')], "less", "A small step down, or the word before.", shown;
         "more" Action::More, [key(KeyCode::Right), char('+'), char('=')], "more", "A small step up, or the next word.", shown;
-        "much-less" Action::MuchLess, [char('<'), char(','), Key::shift(KeyCode::Left)], "much less", "A step down ten times as large.", shown;
-        "much-more" Action::MuchMore, [char('>'), char('.'), Key::shift(KeyCode::Right)], "much more", "A step up ten times as large.", shown;
+        "much-less" Action::MuchLess, [char('<'), char(','), Key::shift(KeyCode::Left)], "far less", "A step down ten times as large.", shown;
+        "much-more" Action::MuchMore, [char('>'), char('.'), Key::shift(KeyCode::Right)], "far more", "A step up ten times as large.", shown;
+        "store" Action::Save, [char('w'), key(KeyCode::F(2))], "store", "Store the changed assumptions in the book; asks once more. The journal keeps the old ones.", shown;
         "reset" Action::Reset, [char('r'), key(KeyCode::Delete)], "reset", "Put the assumption under the cursor back as it is stored.", shown;
-        "reset-all" Action::ResetAll, [char('R'), key(KeyCode::F(8))], "reset all", "Put every assumption back as it is stored.", shown;
+        "reset-all" Action::ResetAll, [char('R'), key(KeyCode::F(8))], "reset all", "Put every assumption back as it is stored.";
     }
     Place::List => {
         "up" Action::Up, [key(KeyCode::Up), char('k')], "up", "One line up.";
@@ -198,7 +200,7 @@ actions! {
         "previous-screen" Action::PreviousScreen, [key(KeyCode::BackTab)], "previous screen", "The previous screen.";
         "back" Action::Back, [key(KeyCode::Esc), key(KeyCode::Backspace)], "back", "Stop what is running; else close the innermost thing; else go back to the fleet.", shown;
         "help" Action::Help, [char('?'), key(KeyCode::F(1))], "help", "All keys of this place, and what the bars mean.", shown;
-        "quit" Action::Quit, [char('q'), key(KeyCode::F(10))], "quit", "Leave. Nothing that was not saved is stored.", shown;
+        "quit" Action::Quit, [char('q'), key(KeyCode::F(10))], "quit", "Leave. What was changed and not stored is forgotten.", shown;
         "interrupt" Action::Interrupt, [Key::ctrl('c')], "interrupt", "Leave at once, with exit code 130.";
         "suspend" Action::Suspend, [Key::ctrl('z')], "suspend", "Back to the shell; `fg` continues.";
         "redraw" Action::Redraw, [Key::ctrl('l'), key(KeyCode::F(5))], "redraw", "Draw the whole screen anew.";

@@ -14,7 +14,8 @@ use super::list::{List, Step};
 use super::session::{JournalLine, Session};
 use super::theme::Theme;
 use super::work::{Answer, Done, Job, Kind, Question, Ranked, View, ViewSpec};
-use super::{basis, frame, help, tender, unit};
+use super::{basis, frame, help, tender, text, unit};
+use crate::engine::columns::BasisSheet;
 use crate::study::rank::By;
 use crate::study::{StudyError, Watch};
 
@@ -35,6 +36,15 @@ impl ExitReason {
             Self::Signal(n) => u8::try_from(128 + n).unwrap_or(u8::MAX),
         }
     }
+}
+
+/// What the loop is to do with the terminal.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Wish {
+    /// Hand it to the shell.
+    Suspend,
+    /// Draw everything anew.
+    Redraw,
 }
 
 /// What is being waited for.
@@ -58,6 +68,7 @@ pub(super) struct Opened {
     pub(super) title: String,
     pub(super) basis_source: String,
     pub(super) journal: Vec<JournalLine>,
+    pub(super) can_save: bool,
 }
 
 /// The state of the dashboard.
@@ -90,10 +101,10 @@ pub struct App {
     pub(super) journal: List,
     asking: Asking,
     exit: Option<Result<ExitReason, StudyError>>,
-    /// The terminal is to be handed to the shell.
-    pub(super) suspend: bool,
-    /// Everything is to be drawn anew.
-    pub(super) redraw: bool,
+    /// Leaves when what is being stored is stored.
+    leaving: bool,
+    /// What the loop is to do with the terminal.
+    wish: Option<Wish>,
 }
 
 impl App {
@@ -121,8 +132,8 @@ impl App {
             journal: List::default(),
             asking: Asking::default(),
             exit: None,
-            suspend: false,
-            redraw: false,
+            leaving: false,
+            wish: None,
         };
         app.ask("Reading the book", Question::Open);
         app
@@ -136,6 +147,11 @@ impl App {
     /// How the dashboard was left; none while it runs.
     pub fn take_exit(&mut self) -> Option<Result<ExitReason, StudyError>> {
         self.exit.take()
+    }
+
+    /// Takes what is to be done with the terminal.
+    pub fn take_wish(&mut self) -> Option<Wish> {
+        self.wish.take()
     }
 
     /// Takes the questions that were asked since.
@@ -223,11 +239,13 @@ impl App {
     /// Does an action.
     pub fn act(&mut self, action: Action) {
         self.message = None;
+        let storing = std::mem::take(&mut self.basis.storing);
         match action {
+            Action::Quit if self.is_storing() => self.leaving = true,
             Action::Quit => self.exit = Some(Ok(ExitReason::Quit)),
             Action::Interrupt => self.exit = Some(Ok(ExitReason::Signal(2))),
-            Action::Suspend => self.suspend = true,
-            Action::Redraw => self.redraw = true,
+            Action::Suspend => self.wish = Some(Wish::Suspend),
+            Action::Redraw => self.wish = Some(Wish::Redraw),
             Action::Help => self.help = Some(List::default()),
             Action::Back => self.back(),
             Action::Go(screen) => self.go(screen),
@@ -282,6 +300,7 @@ impl App {
             Action::MuchMore => self.nudge(1, true),
             Action::Reset => self.reset(false),
             Action::ResetAll => self.reset(true),
+            Action::Save => self.save(storing),
         }
         self.settle();
     }
@@ -314,11 +333,11 @@ impl App {
     }
 
     fn go(&mut self, screen: Screen) {
-        self.screen = screen;
+        let from = std::mem::replace(&mut self.screen, screen);
         self.typing = None;
         if screen == Screen::Unit
+            && (from == Screen::Fleet || self.unit.index.is_none())
             && let Some(i) = self.under_cursor()
-            && self.unit.index.is_none()
         {
             self.open_unit(i);
         }
@@ -440,7 +459,7 @@ impl App {
         }
         self.asking.busy[kind] = None;
         match done.answer {
-            Ok(Answer::Opened(session)) => self.take_session(*session),
+            Ok(Answer::Opened(session, can_save)) => self.take_session(*session, can_save),
             Ok(Answer::Ranked(ranked, view)) => {
                 if self.stored.is_none() {
                     self.stored = Some(Arc::clone(&ranked));
@@ -467,20 +486,24 @@ impl App {
                 }
             }
             Ok(Answer::Record(unit, record)) => self.unit.take_record(&unit, record),
+            Ok(Answer::Saved(sheet, journal)) => self.saved(*sheet, journal),
             Err(error) if done.kind == Kind::Open => self.exit = Some(Err(error)),
             Err(error) if self.ranked.is_none() => self.exit = Some(Err(error)),
             Err(StudyError::Stopped) => self.stopped(),
             Err(error) => {
                 self.message = Some(error.to_string());
-                self.basis.refused();
+                self.leaving = false;
+                if done.kind == Kind::Rank {
+                    self.basis.refused();
+                }
             }
         }
         self.settle();
     }
 
-    fn take_session(&mut self, session: Session) {
+    fn take_session(&mut self, session: Session, can_save: bool) {
         let Session { title, desk, basis_source, journal, .. } = session;
-        self.opened = Some(Opened { title, basis_source, journal });
+        self.opened = Some(Opened { title, basis_source, journal, can_save });
         self.basis.open(&desk);
         self.ask("Ranking the fleet", Question::Rank(Box::new(desk), self.wanted.clone()));
     }
@@ -514,6 +537,9 @@ impl App {
     }
 
     fn nudge(&mut self, steps: i32, large: bool) {
+        if self.is_storing() {
+            return;
+        }
         let Some(ranked) = &self.ranked else { return };
         match self.basis.nudge(&ranked.desk, steps, large) {
             Ok(()) => self.rank_draft(),
@@ -521,11 +547,58 @@ impl App {
         }
     }
 
+    /// What is being stored stays as it is until it is stored.
+    fn is_storing(&mut self) -> bool {
+        let storing = self.asking.busy[Kind::Save as usize].is_some();
+        if storing {
+            self.message = Some("The basis is being stored; one moment.".to_owned());
+        }
+        storing
+    }
+
     fn reset(&mut self, all: bool) {
+        if self.is_storing() {
+            return;
+        }
         if self.basis.reset(all) {
             self.rank_draft();
         } else {
             self.message = Some("It stands as it is stored.".to_owned());
+        }
+    }
+
+    /// Stores the changed basis; the first time it only asks.
+    fn save(&mut self, asked_before: bool) {
+        let (Some(sheet), Some(ranked)) = (self.basis.sheet(), &self.ranked) else { return };
+        let name = text::cut(&ranked.desk.sheet.basis.name, 24);
+        let changes = match self.basis.changes() {
+            1 => "1 change".to_owned(),
+            n => format!("{n} changes"),
+        };
+        self.message = Some(if !self.opened.as_ref().is_some_and(|opened| opened.can_save) {
+            "The book is open for reading only; nothing can be stored.".to_owned()
+        } else if !self.basis.is_changed() {
+            "Nothing was changed.".to_owned()
+        } else if !self.basis.is_in_effect() {
+            "The ranking is not of these assumptions yet; nothing was stored.".to_owned()
+        } else if asked_before {
+            self.ask("Storing the basis", Question::Save(Box::new(sheet)));
+            return;
+        } else {
+            self.basis.storing = true;
+            format!("Store {changes} in basis {name}? w again stores, any other key does not.")
+        });
+    }
+
+    fn saved(&mut self, sheet: BasisSheet, journal: Vec<JournalLine>) {
+        self.basis.is_stored(sheet);
+        self.stored.clone_from(&self.ranked);
+        if let Some(opened) = &mut self.opened {
+            opened.journal = journal;
+        }
+        self.message = Some("Stored. The journal keeps the values of before.".to_owned());
+        if self.leaving {
+            self.exit = Some(Ok(ExitReason::Quit));
         }
     }
 

@@ -21,6 +21,8 @@ pub(super) struct State {
     effect: Vec<Value>,
     /// The draft could not be computed with.
     refused: bool,
+    /// Storing was asked for and waits for the second key.
+    pub(super) storing: bool,
 }
 
 /// Number of assumptions.
@@ -42,6 +44,22 @@ impl State {
     /// Whether the basis differs from the stored one.
     pub(super) fn is_changed(&self) -> bool {
         self.draft != self.stored
+    }
+
+    /// Number of changed assumptions.
+    pub(super) fn changes(&self) -> usize {
+        self.draft.iter().zip(&self.stored).filter(|(draft, stored)| draft != stored).count()
+    }
+
+    /// A basis is stored now.
+    pub(super) fn is_stored(&mut self, sheet: BasisSheet) {
+        self.stored = sheet.basis.values();
+        self.sheet = Some(sheet);
+    }
+
+    /// Whether the figures on the screens are of the draft.
+    pub(super) fn is_in_effect(&self) -> bool {
+        self.draft == self.effect
     }
 
     /// Whether the draft could not be computed with: the figures are of another basis.

@@ -18,7 +18,7 @@ pub(super) fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
         put(buffer, area, 1, " Nothing was written into this book yet.", theme.muted());
         return;
     }
-    let when = 17;
+    let when = lines.iter().map(|line| text::width(&line.at)).max().unwrap_or(0).clamp(10, 20);
     let who = lines.iter().map(|line| text::width(&line.who)).max().unwrap_or(0).clamp(3, 16);
     let row = |at: &str, by: &str, what: &str| {
         format!(" {}  {}  {}", text::left(at, when), text::left(by, who), text::clean(what))

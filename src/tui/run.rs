@@ -14,7 +14,7 @@ use ratatui::layout::Size;
 use signal_hook::consts::{SIGCONT, SIGHUP, SIGINT, SIGTERM, SIGTSTP};
 use signal_hook::iterator::Signals;
 
-use super::app::{App, ExitReason};
+use super::app::{App, ExitReason, Wish};
 use super::caps::Caps;
 use super::session::Session;
 use super::terminal::{Held, is_held};
@@ -175,7 +175,10 @@ fn event_loop(
             Err(RecvTimeoutError::Disconnected) | Ok(Event::WorkerDied) => {
                 return Err(TuiError::Worker);
             }
-            Ok(Event::Signal(SIGTSTP)) => app.suspend = true,
+            Ok(Event::Signal(SIGTSTP)) => {
+                held.suspend()?;
+                app.resize(size_now());
+            }
             // Continued from outside: the shell may have drawn over it.
             Ok(Event::Signal(SIGCONT)) => held.resume()?,
             Ok(Event::Signal(signal)) => return Ok(ExitReason::Signal(signal)),
@@ -186,12 +189,14 @@ fn event_loop(
             Ok(Event::Done(done)) => app.done(done),
         }
         changed = true;
-        if std::mem::take(&mut app.suspend) {
-            held.suspend()?;
-            app.resize(size_now());
-        }
-        if std::mem::take(&mut app.redraw) {
-            held.terminal.clear()?;
+        match app.take_wish() {
+            // The signal comes back as an event, and stops who started this program too (cargo, a script).
+            Some(Wish::Suspend) => {
+                rustix::process::kill_current_process_group(rustix::process::Signal::TSTP)
+                    .map_err(io::Error::from)?;
+            }
+            Some(Wish::Redraw) => held.terminal.clear()?,
+            None => {}
         }
         if let Some(exit) = app.take_exit() {
             return Ok(exit?);

@@ -3,11 +3,14 @@
 
 use std::fmt;
 
-use crate::engine::columns::{TenderSheet, Unit};
-use crate::study::Desk;
+use crate::engine::columns::{BasisSheet, TenderSheet, Unit};
+use crate::study::{Desk, StudyError};
 
 /// Reads the whole record of a unit by its identifier; none where it cannot.
 pub type RecordReader = Box<dyn FnMut(&str) -> Option<Unit> + Send>;
+
+/// Stores a changed basis and gives the journal as it stands then, newest first.
+pub type BasisWriter = Box<dyn FnMut(&BasisSheet) -> Result<Vec<JournalLine>, StudyError> + Send>;
 
 /// What the dashboard is opened with.
 pub struct Session {
@@ -23,6 +26,8 @@ pub struct Session {
     pub journal: Vec<JournalLine>,
     /// Reads what the columns of the fleet do not hold (cooling, feeder, note …).
     pub record: Option<RecordReader>,
+    /// Stores a changed basis; none where nothing may be written.
+    pub save: Option<BasisWriter>,
 }
 
 impl fmt::Debug for Session {

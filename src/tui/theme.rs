@@ -73,7 +73,7 @@ impl Theme {
     }
     /// What is doubtful or went wrong.
     pub fn warning(self) -> Style {
-        self.fg(Color::Yellow, 172).add_modifier(Modifier::BOLD)
+        self.fg(Color::Red, 166).add_modifier(Modifier::BOLD)
     }
     /// What was changed and is not stored.
     pub fn changed(self) -> Style {

@@ -7,8 +7,8 @@ use std::sync::mpsc::{Receiver, TryRecvError};
 
 use rayon::prelude::*;
 
-use super::session::{RecordReader, Session};
-use crate::engine::columns::{TenderSheet, Unit};
+use super::session::{BasisWriter, JournalLine, RecordReader, Session};
+use crate::engine::columns::{BasisSheet, TenderSheet, Unit};
 use crate::engine::decision::Context;
 use crate::study::rank::{self, By, Ranking};
 use crate::study::tender::{self, BasisForFactors, TenderResult};
@@ -87,6 +87,8 @@ pub enum Question {
     View(Arc<Ranked>, ViewSpec),
     /// The whole record of a unit.
     Record(String),
+    /// Store a basis.
+    Save(Box<BasisSheet>),
 }
 
 /// The kinds of questions; a newer one of a kind replaces an older.
@@ -97,11 +99,12 @@ pub enum Kind {
     Rank,
     View,
     Record,
+    Save,
 }
 
 impl Kind {
     /// Number of kinds.
-    pub const COUNT: usize = 4;
+    pub const COUNT: usize = 5;
 }
 
 impl Question {
@@ -112,6 +115,7 @@ impl Question {
             Self::Rank(..) => Kind::Rank,
             Self::View(..) => Kind::View,
             Self::Record(_) => Kind::Record,
+            Self::Save(_) => Kind::Save,
         }
     }
 }
@@ -130,14 +134,16 @@ pub struct Job {
 /// An answer.
 #[derive(Debug)]
 pub enum Answer {
-    /// What was opened.
-    Opened(Box<Session>),
+    /// What was opened, and whether a basis can be stored.
+    Opened(Box<Session>, bool),
     /// A ranked fleet and what is shown of it.
     Ranked(Arc<Ranked>, View),
     /// What is shown of a ranked fleet.
     View(Arc<Ranked>, View),
     /// A record.
     Record(String, Option<Box<Unit>>),
+    /// The basis is stored; the journal as it stands now.
+    Saved(Box<BasisSheet>, Vec<JournalLine>),
 }
 
 /// An answer with its question's number.
@@ -155,13 +161,14 @@ pub struct Done {
 pub struct Worker<L> {
     loader: Option<L>,
     record: Option<RecordReader>,
+    save: Option<BasisWriter>,
     tenders: Vec<Arc<TenderSheet>>,
 }
 
 impl<L: FnOnce(&Watch) -> Result<Session, StudyError>> Worker<L> {
     /// A worker that opens with `loader`.
     pub fn new(loader: L) -> Self {
-        Self { loader: Some(loader), record: None, tenders: Vec::new() }
+        Self { loader: Some(loader), record: None, save: None, tenders: Vec::new() }
     }
 
     /// Answers one question.
@@ -177,7 +184,8 @@ impl<L: FnOnce(&Watch) -> Result<Session, StudyError>> Worker<L> {
                 let mut session = loader(watch)?;
                 self.record = session.record.take();
                 self.tenders = session.tenders.drain(..).map(Arc::new).collect();
-                Ok(Answer::Opened(Box::new(session)))
+                self.save = session.save.take();
+                Ok(Answer::Opened(Box::new(session), self.save.is_some()))
             }
             Question::Rank(desk, spec) => {
                 let ranked = Arc::new(Ranked::new(*desk, &self.tenders, watch)?);
@@ -191,6 +199,11 @@ impl<L: FnOnce(&Watch) -> Result<Session, StudyError>> Worker<L> {
             Question::Record(unit) => {
                 let record = self.record.as_mut().and_then(|read| read(&unit)).map(Box::new);
                 Ok(Answer::Record(unit, record))
+            }
+            Question::Save(sheet) => {
+                let save = self.save.as_mut().ok_or(StudyError::Stopped)?;
+                let journal = save(&sheet)?;
+                Ok(Answer::Saved(sheet, journal))
             }
         }
     }

@@ -5,6 +5,7 @@ use std::fmt::Write as _;
 use ironhum::engine::columns::Unit;
 use ironhum::exchange::{Decimal, Delimiter, Encoding, Hints};
 use ironhum::study::intake::{Options, What};
+use proptest::prelude::*;
 use rust_xlsxwriter::{ExcelDateTime, Format, Workbook};
 
 use crate::support::{Desk, problems};
@@ -207,4 +208,74 @@ fn what_is_no_table_is_refused_in_words() {
     assert!(refused(&mut desk, &dir).ends_with("is a directory; name a file in it"));
     assert!(refused(&mut desk, &dir.join("none.csv")).starts_with("there is no file"));
     assert_eq!(desk.dump(), before);
+}
+
+/// Text that looks like a file of ours, with odd bytes in it.
+fn oddly_written() -> impl Strategy<Value = Vec<u8>> {
+    let piece = prop_oneof![
+        proptest::sample::select(vec![
+            "unit",
+            "rated_kva",
+            "interval",
+            "timestamp",
+            "price",
+            "lot",
+            ",",
+            ";",
+            "\t",
+            "\n",
+            "\r\n",
+            "\"",
+            "1,5",
+            "1.5",
+            "-1e9",
+            "NaN",
+            "[[lot]]",
+            "[budget]",
+            "[range.",
+            "]",
+            "=",
+            "'",
+            "a",
+            "2027-03-31",
+            "\u{feff}",
+            "\u{202e}",
+            "é",
+            "{",
+            "}",
+        ])
+        .prop_map(|text| text.as_bytes().to_vec()),
+        proptest::collection::vec(any::<u8>(), 1..4),
+    ];
+    proptest::collection::vec(piece, 0..60).prop_map(|pieces| pieces.concat())
+}
+
+proptest! {
+    #![proptest_config(ProptestConfig::with_cases(64))]
+    #[test]
+    fn any_bytes_are_judged(bytes in oddly_written(), marked in 0..4_u8) {
+        let mark: &[u8] = match marked {
+            0 => b"\xFF\xFE",
+            1 => b"PK\x03\x04",
+            2 => b"\xEF\xBB\xBF",
+            _ => b"",
+        };
+        let bytes = [mark, &bytes].concat();
+        let mut desk = Desk::empty();
+        for (_, what) in What::WORDS {
+            let before = desk.dump();
+            let options = Options { name: Some("n".into()), ..Options::default() };
+            let report = desk.bytes(what, "odd", &bytes, options);
+            prop_assert_eq!(report.rejected, !report.problems.is_empty());
+            for line in problems(&report).lines() {
+                prop_assert!(line.starts_with("odd:"), "{}", line);
+                prop_assert!(!line.contains('\u{1b}') && !line.contains('\u{202e}'), "{}", line);
+            }
+            if report.stored {
+                prop_assert!(report.bad == 0);
+            } else {
+                prop_assert_eq!(&desk.dump(), &before);
+            }
+        }
+    }
 }

@@ -56,6 +56,7 @@ pub(crate) fn session() -> Session {
         tenders: demo.tenders.clone(),
         journal: journal(),
         record: Some(Box::new(move |unit| units.get(unit).cloned())),
+        save: None,
     }
 }
 

@@ -282,9 +282,61 @@ fn a_book_that_cannot_be_read_ends_the_dashboard_with_its_message() {
     });
     for job in app.take_questions() {
         let done = worker.answer(job);
-        assert!(!matches!(done.answer, Ok(Answer::Opened(_))));
+        assert!(!matches!(done.answer, Ok(Answer::Opened(..))));
         app.done(done);
     }
     let error = app.take_exit().unwrap().unwrap_err();
     assert_eq!(error.to_string(), "basis b is not in the book; it holds a");
+}
+
+/// A session that stores into a list.
+fn storing() -> (Bench, std::sync::Arc<std::sync::Mutex<Vec<f64>>>) {
+    let stored = std::sync::Arc::new(std::sync::Mutex::new(Vec::new()));
+    let into = std::sync::Arc::clone(&stored);
+    let mut session = crate::demo::session();
+    session.save = Some(Box::new(move |sheet| {
+        into.lock().unwrap().push(sheet.basis.discount_rate_pct);
+        let what = "changed basis plan-2027".to_owned();
+        Ok(vec![ironhum::tui::JournalLine { what, ..Default::default() }])
+    }));
+    (Bench::on(PLAIN, 80, 24, session), stored)
+}
+
+#[test]
+fn a_basis_is_stored_only_when_asked_twice() {
+    let (mut bench, stored) = storing();
+    bench.keys("4<Down><Down>w");
+    assert!(bench.screen().contains("Nothing was changed."));
+    bench.keys(">").keys("w");
+    assert!(bench.screen().contains("Store 1 change in basis plan-2027? w again stores"));
+    bench.keys("<Up>w<Down>");
+    assert!(stored.lock().unwrap().is_empty(), "another key came between");
+    bench.keys("ww");
+    assert_eq!(*stored.lock().unwrap(), [7.0]);
+    assert!(bench.screen().contains("Stored."));
+    assert!(!bench.lines()[0].contains("basis changed"));
+    let (before, now) = totals(&bench, "saving EUR");
+    assert_eq!(before, now, "what is stored is what is compared with");
+    bench.keys("5");
+    assert_eq!(bench.lines().iter().filter(|line| line.contains("plan-2027 ")).count(), 1);
+}
+
+#[test]
+fn leaving_waits_for_what_is_being_stored() {
+    let (mut bench, stored) = storing();
+    bench.keys("4<Down><Down>>");
+    bench.press("wwq");
+    assert!(bench.app.take_exit().is_none());
+    bench.press(">");
+    assert!(bench.cursor().contains("7 %"), "what is being stored stays");
+    bench.work();
+    assert_eq!(*stored.lock().unwrap(), [7.0]);
+    assert_eq!(bench.app.take_exit().unwrap().unwrap(), ExitReason::Quit);
+}
+
+#[test]
+fn a_book_for_reading_stores_nothing() {
+    let mut bench = bench();
+    bench.keys("4<Down><Down>>ww");
+    assert!(bench.screen().contains("open for reading only"), "{}", bench.screen());
 }

@@ -2,6 +2,7 @@
 
 use std::collections::{HashMap, HashSet};
 
+use super::ahead::{Batch, Read, read_ahead};
 use super::{Intake, IntakeError, Report, What};
 use crate::book::tables::{BIDS, LOTS, MEASURED, OFFERS, TENDERS, TEST_REPORTS, UNITS};
 use crate::book::{Book, Change, Table, Tally};
@@ -9,9 +10,6 @@ use crate::engine::columns::{Value, nearest};
 use crate::exchange::rejects::Rejects;
 use crate::exchange::rules::{self, Rule, Rules};
 use crate::exchange::{Fault, Layout, Row, Rows, Source, holds_numbers};
-
-/// Rows between two looks at whether the work is still wanted.
-const LOOK: u64 = 1024;
 
 impl Intake<'_> {
     pub(super) fn records(
@@ -49,51 +47,41 @@ impl Intake<'_> {
         let mut upsert = change.upsert(table, None, &layout.present(), self.options.clear_blank)?;
         let rules = Rules::of(rules, table.columns);
         let mut ties = Ties::of(self.what, table, &change)?;
-        let mut twice = Twice::of(table);
-        let (mut row, mut values, mut faults) = (Row::default(), Vec::new(), Vec::new());
-        loop {
-            match rows.next(&mut row) {
-                Ok(true) => {}
-                Ok(false) => break,
-                Err(error) => {
-                    self.unfit(error)?;
-                    break;
-                }
-            }
-            self.rows += 1;
-            if self.rows.is_multiple_of(LOOK) {
-                self.look(&rows)?;
-            }
-            faults.clear();
-            layout.values(&row, rows.decimals(), &mut values, &mut faults);
-            twice.check(&layout, &row, &mut faults);
-            if faults.is_empty() {
-                let known = upsert.look_up(&mut values)?;
-                let fault = |place: usize, why: String| {
-                    let cell = layout.cell(&row, place);
-                    let value =
-                        if cell.is_empty() { shown(&values[place]) } else { cell.to_owned() };
-                    Fault { column: table.columns[place].name, value, why }
-                };
-                rules.judge(&values, |place, why| faults.push(fault(place, why)));
-                ties.judge(&values, |place, why| faults.push(fault(place, why)))?;
+        let put = |batch: &mut Batch| -> Result<(), IntakeError> {
+            self.look(batch.bytes)?;
+            for Read { row, values, faults } in batch.rows() {
+                self.rows += 1;
                 if faults.is_empty() {
-                    upsert.put(known, &values)?;
+                    let known = upsert.look_up(values)?;
+                    let fault = |place: usize, why: String| {
+                        let cell = layout.cell(row, place);
+                        let value =
+                            if cell.is_empty() { shown(&values[place]) } else { cell.to_owned() };
+                        Fault { column: table.columns[place].name, value, why }
+                    };
+                    rules.judge(values, |place, why| faults.push(fault(place, why)));
+                    ties.judge(values, |place, why| faults.push(fault(place, why)))?;
+                    if faults.is_empty() {
+                        upsert.put(known, values)?;
+                        continue;
+                    }
                 }
-            }
-            if !faults.is_empty() {
                 self.bad += 1;
-                for fault in &faults {
+                for fault in faults.iter() {
                     self.problems.add(row.line, fault.column, &fault.value, fault.why.as_str());
                 }
                 if let Some(rejects) = &mut rejects {
                     rejects
-                        .add(row.cells(), row.line, &reasons(&faults))
+                        .add(row.cells(), row.line, &reasons(faults))
                         .map_err(IntakeError::Rejects)?;
                 }
             }
-        }
-        self.look(&rows)?;
+            match batch.end.take() {
+                Some(Err(error)) => self.unfit(error),
+                Some(Ok(())) | None => Ok(()),
+            }
+        };
+        read_ahead(&mut rows, &layout, Twice::of(table), put)?;
         self.recognised = Some(rows.recognised());
         if let Some(rejects) = rejects {
             rejects.finish().map_err(IntakeError::Rejects)?;
@@ -108,13 +96,12 @@ impl Intake<'_> {
     }
 
     /// Says how far it is, and stops where that is asked for.
-    fn look(&self, rows: &Rows) -> Result<(), IntakeError> {
+    fn look(&self, bytes: u64) -> Result<(), IntakeError> {
         if self.watch.is_stopped() {
             return Err(IntakeError::Stopped);
         }
-        let bytes = rows.bytes().and_then(|bytes| usize::try_from(bytes).ok()).unwrap_or(0);
         let (done, _) = self.watch.progress();
-        self.watch.advance(bytes.saturating_sub(done));
+        self.watch.advance(usize::try_from(bytes).unwrap_or(0).saturating_sub(done));
         Ok(())
     }
 }
@@ -145,7 +132,7 @@ fn shown(value: &Value) -> String {
 }
 
 /// Notices a key that stands twice in one file.
-struct Twice {
+pub(super) struct Twice {
     key: Vec<usize>,
     column: &'static str,
     lines: HashMap<String, u64>,
@@ -157,7 +144,7 @@ impl Twice {
         Self { key, column: table.key[table.key.len() - 1], lines: HashMap::new() }
     }
 
-    fn check(&mut self, layout: &Layout, row: &Row, faults: &mut Vec<Fault>) {
+    pub(super) fn check(&mut self, layout: &Layout, row: &Row, faults: &mut Vec<Fault>) {
         let mut cells = self.key.iter().map(|place| layout.cell(row, *place));
         let mut key = cells.next().unwrap_or_default().to_owned();
         for cell in cells {

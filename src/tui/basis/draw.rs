@@ -34,7 +34,7 @@ pub(in crate::tui) fn areas(body: Rect) -> Areas {
     let list = Rect { height: body.height.saturating_sub(9), ..body };
     let about = Rect { y: list.bottom(), height: (body.height - list.height).min(2), ..body };
     let below = Rect { y: about.bottom(), height: body.bottom() - about.bottom(), ..body };
-    let half = below.width / 2 + 6;
+    let half = if below.width < 78 { below.width } else { below.width / 2 + 6 };
     let moved = Rect { width: half, ..below };
     let ranks = Rect { x: below.x + half, width: below.width - half, ..below };
     Areas { list, about, moved, ranks }
@@ -77,13 +77,14 @@ fn blank(column: &Column) -> String {
 fn list(app: &App, area: Rect, buffer: &mut Buffer) {
     let theme = app.theme;
     let currency = currency(app);
+    let (values, origins) = if area.width < 76 { (14, 0) } else { (20, 8) };
     let row = |name: &str, value: &str, unit: &str, from: &str| {
         format!(
             "  {} {} {} {}",
-            text::left(name, 28),
-            text::right(value, 20),
+            text::left(name, 26),
+            text::right(value, values),
             text::left(unit, 14),
-            text::left(from, 8)
+            text::left(from, origins)
         )
     };
     put(buffer, area, 0, &row("assumption", "value", "", "from"), theme.heading());
@@ -204,16 +205,19 @@ fn ranks(app: &App, stored: &Ranked, now: &Ranked, area: Rect, buffer: &mut Buff
 
 /// Where the basis came from, in the status line.
 pub(in crate::tui) fn status(app: &App) -> Line<'static> {
-    let source = app.opened.as_ref().map_or("", |opened| &opened.basis_source);
+    let Some(opened) = &app.opened else { return Line::default() };
+    let source = text::cut(&opened.basis_source, 40);
     let said = if app.basis.is_refused() {
         " The figures are of the last basis that could be computed with."
+    } else if app.basis.is_changed() && opened.can_save {
+        " Changed on this screen only; w stores it."
     } else if app.basis.is_changed() {
-        " Changed on this screen only; nothing is stored."
+        " Changed on this screen only."
     } else {
         " As stored."
     };
     Line::from(vec![
         Span::raw(said.to_owned()),
-        Span::styled(format!("  From {}.", text::cut(source, 40)), app.theme.muted()),
+        Span::styled(format!("  Basis from: {source}."), app.theme.muted()),
     ])
 }

@@ -60,10 +60,11 @@ fn areas(body: Rect, view: View, bids: usize) -> Areas {
     }
 }
 
-/// The bids, and right below them the details.
+/// The bids, and right below them the details; where it is tight the bids get the larger half.
 fn split(area: Rect, bids: usize) -> (Rect, Rect) {
     let wanted = u16::try_from(bids).unwrap_or(u16::MAX).saturating_add(HEADER);
-    let list = Rect { height: area.height.saturating_sub(DETAILS).min(wanted), ..area };
+    let most = area.height.saturating_sub(DETAILS).max(area.height / 2 + 1).min(area.height);
+    let list = Rect { height: wanted.min(most), ..area };
     (list, Rect { y: list.bottom(), height: DETAILS.min(area.height - list.height), ..area })
 }
 

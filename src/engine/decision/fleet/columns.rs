@@ -43,6 +43,50 @@ impl Names {
     }
 }
 
+/// A column of numbers, NaN where unknown. As long as nothing is known it takes no room.
+#[derive(Clone, Debug, Default)]
+pub struct Numbers {
+    /// Empty while every number is unknown, else one for each unit.
+    known: Vec<f64>,
+    len: usize,
+    room: usize,
+}
+
+impl Numbers {
+    /// Number `i`; NaN where it is unknown.
+    #[inline]
+    pub fn get(&self, i: usize) -> f64 {
+        self.known.get(i).copied().unwrap_or(f64::NAN)
+    }
+    fn reserve(&mut self, more: usize) {
+        self.room = self.len + more;
+    }
+    #[inline]
+    fn push(&mut self, number: f64) {
+        if !self.known.is_empty() || !number.is_nan() {
+            self.fill();
+            self.known.push(number);
+        }
+        self.len += 1;
+    }
+    /// Makes the numbers that stand for nothing so far.
+    #[inline]
+    fn fill(&mut self) {
+        if self.known.len() < self.len || self.known.capacity() == 0 {
+            self.known.reserve(self.room);
+            self.known.resize(self.len, f64::NAN);
+        }
+    }
+    fn append(&mut self, other: &mut Self) {
+        if !self.known.is_empty() || !other.known.is_empty() {
+            self.fill();
+            other.fill();
+            self.known.append(&mut other.known);
+        }
+        self.len += other.len;
+    }
+}
+
 /// Kinds of terminals while columns are filled.
 type Kinds = FxHashMap<(i64, u64, u64, u8, u64), u32>;
 
@@ -66,7 +110,7 @@ macro_rules! columns {
             pub kind: Vec<u32>,
             /// The kinds of terminals that occur.
             pub terminals: Vec<Terminals>,
-            $(pub $name: Vec<f64>,)+
+            $(pub $name: Numbers,)+
             kinds: Kinds,
         }
 
@@ -77,7 +121,7 @@ macro_rules! columns {
                 UnitFacts {
                     in_service: self.in_service[i],
                     profile: self.profile[i],
-                    $($name: self.$name[i],)+
+                    $($name: self.$name.get(i),)+
                 }
             }
 
@@ -184,6 +228,30 @@ impl FleetColumns {
 #[cfg(test)]
 mod tests {
     use super::*;
+
+    #[test]
+    fn a_column_without_a_number_takes_no_room() {
+        let nan = f64::NAN;
+        let column = |numbers: &[f64]| {
+            let mut column = Numbers::default();
+            column.reserve(9);
+            for number in numbers {
+                column.push(*number);
+            }
+            column
+        };
+        let all = |c: &Numbers| (0..c.len).map(|i| c.get(i).to_bits()).collect::<Vec<_>>();
+        let bits = |numbers: &[f64]| numbers.iter().map(|x| x.to_bits()).collect::<Vec<_>>();
+        assert_eq!(column(&[nan, nan]).known.capacity(), 0);
+        assert_eq!(all(&column(&[nan, 1.0, nan])), bits(&[nan, 1.0, nan]));
+        for (a, b) in
+            [(&[nan, nan][..], &[nan][..]), (&[nan], &[2.0]), (&[1.0], &[nan, nan]), (&[], &[3.0])]
+        {
+            let mut joined = column(a);
+            joined.append(&mut column(b));
+            assert_eq!(all(&joined), bits(&[a, b].concat()));
+        }
+    }
 
     #[test]
     fn names_stand_end_to_end() {
