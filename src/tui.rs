@@ -12,6 +12,7 @@ pub mod bar;
 mod basis;
 pub mod caps;
 mod chart;
+pub mod extent;
 mod fleet;
 mod frame;
 mod help;

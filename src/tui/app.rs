@@ -198,6 +198,11 @@ impl App {
         }
         let key = Key::of(event);
         let action = action::of_key(&self.places(), key);
+        // Any key but the one that stores takes the question away.
+        if self.basis.storing && action != Some(Action::Save) {
+            self.basis.storing = false;
+            self.message = None;
+        }
         match (action, &mut self.typing) {
             (Some(action), _) => self.act(action),
             (None, Some(input)) if self.help.is_none() => match edit(key) {
@@ -315,6 +320,8 @@ impl App {
             busy.watch.stop();
             self.asking.generation[ranking] += 1;
             self.stopped();
+        } else if tender::can_go_back(self) {
+            self.tender.view = tender::View::Bids;
         } else if self.screen != Screen::Fleet {
             self.screen = Screen::Fleet;
         } else if self.show_left_out {
@@ -365,7 +372,13 @@ impl App {
         let list = match self.screen {
             Screen::Fleet if self.show_left_out => &mut self.left_out,
             Screen::Fleet => &mut self.fleet,
-            Screen::Unit => return self.unit.facts.scroll(step, len, height),
+            Screen::Unit => {
+                match unit::table_len(self) {
+                    Some((lines, seen)) => self.unit.years.scroll(step, lines, seen),
+                    None => self.unit.facts.scroll(step, len, height),
+                }
+                return;
+            }
             Screen::Basis => &mut self.basis.list,
             Screen::Journal => &mut self.journal,
             Screen::Tender => &mut self.tender.list,
@@ -428,6 +441,7 @@ impl App {
         let Some(ranked) = self.ranked.clone() else { return };
         if self.unit.index != Some(i) {
             self.unit.facts = List::default();
+            self.unit.years = List::default();
             self.unit.record = None;
             let name = ranked.desk.fleet.unit.get(i).to_owned();
             self.ask("Reading the unit", Question::Record(name));
@@ -543,7 +557,7 @@ impl App {
         let Some(ranked) = &self.ranked else { return };
         match self.basis.nudge(&ranked.desk, steps, large) {
             Ok(()) => self.rank_draft(),
-            Err(why) => self.message = Some(why),
+            Err(why) => self.message = Some(self.theme.spell(&why).into_owned()),
         }
     }
 

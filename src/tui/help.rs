@@ -68,8 +68,15 @@ pub(super) fn lines(app: &App, cells: usize) -> Vec<Line<'static>> {
             lines.push(Line::from(vec![Span::raw("  "), fill, Span::raw(format!("  {said}"))]));
         }
     }
-    let said = "All bars of a list are drawn to one scale, which stands above them. These are screening economics, \
-                not switching or loading instructions: work on energised or oil-filled plant, PCB handling, loading \
+    let mark = theme.goes_on();
+    let said = format!(
+        "All bars of a list are drawn to one scale, which stands above them; a longer one ends in {mark}."
+    );
+    lines.extend(
+        text::wrap(&said, cells.saturating_sub(3)).into_iter().map(|l| Line::raw(format!("  {l}"))),
+    );
+    let said = "Screening economics, not switching or loading instructions. A verdict on a law is a screening aid: \
+                local law and licensed practice decide. Work on energised or oil-filled plant, PCB handling, loading \
                 beyond nameplate and protection settings follow local codes, manufacturer instructions and \
                 licensed engineers.";
     lines.push(Line::default());

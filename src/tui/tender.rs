@@ -4,7 +4,9 @@
 pub(super) mod draw;
 mod map;
 
+use super::action::Screen;
 use super::app::App;
+use super::frame;
 use super::list::List;
 use super::work::Evaluated;
 use crate::engine::columns::Lot;
@@ -74,6 +76,16 @@ fn lot(app: &App) -> Option<(&Lot, &LotResult)> {
     let result = evaluated.result.as_ref().ok()?.lots.get(app.tender.lot)?;
     let lot = evaluated.sheet.lots.iter().find(|lot| lot.lot == result.lot)?;
     Some((lot, result))
+}
+
+/// Whether bids, map and changes are all seen at once: turning shows nothing else.
+pub(super) fn shows_all(app: &App) -> bool {
+    draw::shows_all(frame::body(app))
+}
+
+/// Whether something else than the bids is seen, from which they can be gone back to.
+pub(super) fn can_go_back(app: &App) -> bool {
+    app.screen == Screen::Tender && app.tender.view != View::Bids && !shows_all(app)
 }
 
 /// Number of bids of the lot.

@@ -7,9 +7,12 @@ use std::sync::mpsc::{Receiver, TryRecvError};
 
 use rayon::prelude::*;
 
+use super::bar;
+use super::extent::Extent;
 use super::session::{BasisWriter, JournalLine, RecordReader, Session};
 use crate::engine::columns::{BasisSheet, TenderSheet, Unit};
 use crate::engine::decision::Context;
+use crate::study::losses;
 use crate::study::rank::{self, By, Ranking};
 use crate::study::tender::{self, BasisForFactors, TenderResult};
 use crate::study::{Desk, StudyError, Watch};
@@ -23,6 +26,10 @@ pub struct Ranked {
     pub ranking: Ranking,
     /// Place of each unit in it; `u32::MAX` where it is left out.
     pub place: Vec<u32>,
+    /// How wide its columns are.
+    pub extent: Extent,
+    /// Cost of the losses of year 1 of each unit; 0 where it is left out.
+    pub year_costs: Vec<f32>,
     /// The tenders under the same basis.
     pub tenders: Vec<Evaluated>,
 }
@@ -52,7 +59,14 @@ impl Ranked {
         for (at, i) in (0u32..).zip(&ranking.order) {
             place[*i as usize] = at;
         }
-        Ok(Self { desk, ranking, place, tenders })
+        let extent = Extent::of(&desk, &ranking);
+        let cost = |i: usize| losses::of_unit(&desk, &ranking.context, i).map(|row| row.cost);
+        #[expect(clippy::cast_possible_truncation, reason = "for the scale of bars")]
+        let year_costs = (0..desk.fleet.len())
+            .into_par_iter()
+            .map(|i| cost(i).map_or(0.0, |cost| bar::whole(&bar::of_year(&cost)) as f32))
+            .collect();
+        Ok(Self { desk, ranking, place, extent, year_costs, tenders })
     }
 }
 
@@ -74,6 +88,8 @@ pub struct View {
     pub places: Vec<u32>,
     /// Which of those left out, as numbers in [`Ranking::left_out`].
     pub left_out: Vec<u32>,
+    /// What a full bar of the list stands for.
+    pub scale: f64,
 }
 
 /// A question to the worker.
@@ -268,5 +284,14 @@ fn view(ranked: &Ranked, spec: ViewSpec, watch: &Watch) -> Result<View, StudyErr
             .collect();
         left_out.retain(|n| shown(ranking.left_out[*n as usize] as usize));
     }
-    Ok(View { spec, places, left_out })
+    let cost = |place: &u32| f64::from(ranked.year_costs[ranking.order[*place as usize] as usize]);
+    let mut costs: Vec<f64> = places.par_iter().map(cost).collect();
+    // Nearly all bars are seen whole: a few large units do not make all others too short to read.
+    let nearly_all = (costs.len() * 19 / 20).min(costs.len().saturating_sub(1));
+    let scale = if costs.is_empty() {
+        1.0
+    } else {
+        bar::round_scale(*costs.select_nth_unstable_by(nearly_all, f64::total_cmp).1)
+    };
+    Ok(View { spec, places, left_out, scale })
 }

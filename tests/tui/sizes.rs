@@ -155,7 +155,7 @@ fn too_small_says_so_and_keeps_the_state() {
     bench.keys("<Down><Down>");
     let before = bench.screen();
     bench.resize(40, 10);
-    assert_eq!(bench.screen().trim_end(), "40x10: needs 60x16; q quits");
+    assert_eq!(bench.screen().trim_end(), "q quits; needs 60x16, not 40x10");
     bench.resize(80, 24);
     assert_eq!(bench.screen(), before);
 }

@@ -21,6 +21,10 @@ const HEADER: u16 = 2;
 /// Lines below the bids: the one under the cursor, the near-tied ones.
 const DETAILS: u16 = 9;
 
+/// Least body in which something stands beside the bids, and in which all of it does.
+const WIDE: u16 = 120;
+const HIGH: u16 = 32;
+
 /// Where the parts of the screen stand.
 pub(in crate::tui) struct Areas {
     head: Rect,
@@ -31,14 +35,19 @@ pub(in crate::tui) struct Areas {
     changes: Option<Rect>,
 }
 
+/// Whether the body has room for bids, map and changes at once.
+pub(super) fn shows_all(body: Rect) -> bool {
+    body.width >= WIDE && body.height >= HIGH
+}
+
 /// Lays the screen out.
 fn areas(body: Rect, view: View, bids: usize) -> Areas {
     let head = Rect { height: body.height.min(2), ..body };
     let rest = Rect { y: body.y + head.height, height: body.height - head.height, ..body };
-    if rest.width >= 120 {
+    if rest.width >= WIDE {
         let left = Rect { width: rest.width - rest.width * 9 / 20 - 2, ..rest };
         let right = Rect { x: left.right() + 2, width: rest.width - left.width - 2, ..rest };
-        let (map, changes) = match (rest.height >= 30, view) {
+        let (map, changes) = match (body.height >= HIGH, view) {
             (true, _) => {
                 let map = Rect { height: rest.height - 13, ..right };
                 (Some(map), Some(Rect { y: map.bottom(), height: 13, ..right }))

@@ -52,7 +52,8 @@ pub(super) fn lines(app: &App, cells: usize) -> Vec<Line<'static>> {
     lines.push(Line::styled("Record", theme.heading()));
     for (column, value) in Unit::COLUMNS.iter().zip(record.values()) {
         if !matches!(column.name, "unit" | "site") && value != Value::Blank {
-            lines.push(fact(column.name, &shown(column, &value, currency), cells));
+            let shown = shown(column, &value, currency);
+            lines.push(fact(column.name, &theme.spell(&shown), cells));
         }
     }
     lines
