@@ -45,6 +45,8 @@ pub enum Place {
     Filter,
     /// In the help.
     Help,
+    /// In the panel that opens a figure.
+    Working,
 }
 
 impl Place {
@@ -55,6 +57,7 @@ impl Place {
             Self::List => "Moving",
             Self::Filter => "While typing a filter",
             Self::Help => "In the help",
+            Self::Working => "In the working of a figure",
             Self::On(screen) => {
                 Screen::ALL.iter().find(|(s, _)| *s == screen).map_or("", |(_, title)| title)
             }
@@ -82,6 +85,10 @@ pub enum Action {
     First,
     Last,
     Open,
+    Working,
+    NextFigure,
+    PreviousFigure,
+    Copy,
     Filter,
     FilterKeep,
     FilterDrop,
@@ -155,6 +162,7 @@ actions! {
     }
     FLEET => {
         "open" Action::Open, [key(KeyCode::Enter), char('o')], "open", "Open the unit under the cursor.", shown;
+        "fleet-working" Action::Working, [char('e'), key(KeyCode::F(6))], "explain", "How the losses of the unit under the cursor come about, step by step.";
         "filter" Action::Filter, [char('/'), char('f')], "filter", "Show only units whose name or site holds the words that you type.", shown;
         "sort" Action::Sort, [char('s'), key(KeyCode::F(4))], "sort", "Order by saving, cost of waiting, cost of keeping, rating, age, name.", shown;
         "left-out" Action::LeftOut, [char('x'), key(KeyCode::F(3))], "left out", "Show the units that could not be ranked, with the reason; again: the ranking.", shown;
@@ -162,11 +170,13 @@ actions! {
     UNIT => {
         "next-unit" Action::NextUnit, [key(KeyCode::Right), char('n')], "next unit", "The next unit of the list.", shown;
         "previous-unit" Action::PreviousUnit, [key(KeyCode::Left), char('p')], "previous", "The previous unit of the list.", shown;
+        "unit-working" Action::Working, [char('e'), key(KeyCode::F(6))], "explain", "How the figures come about, step by step.", shown;
         "table" Action::Table, [char('t'), key(KeyCode::F(3))], "chart/table", "Show the years as a table instead of a chart, and back.", shown;
     }
     TENDER => {
         "next-lot" Action::NextLot, [key(KeyCode::Right), char('n')], "next lot", "The next lot of the tender.", shown;
         "previous-lot" Action::PreviousLot, [key(KeyCode::Left), char('p')], "previous", "The previous lot of the tender.", shown;
+        "bid-working" Action::Working, [char('e'), key(KeyCode::F(6))], "explain", "How the figures of the bid under the cursor come about, step by step.", shown;
         "tender-view" Action::TenderView, [char('m'), key(KeyCode::F(3))], "map/changes", "In turn: the bids, the map of who wins at other factors, what must move before another wins.", shown;
         "next-tender" Action::NextTender, [char('t'), key(KeyCode::F(4))], "next tender", "The next tender of the book.";
     }
@@ -189,6 +199,12 @@ actions! {
     }
     Place::Help => {
         "help-close" Action::Back, [key(KeyCode::Esc), char('?'), key(KeyCode::F(1)), char('q'), key(KeyCode::Enter)], "close", "Close the help.", shown;
+    }
+    Place::Working => {
+        "working-close" Action::Back, [key(KeyCode::Esc), char('e'), char('q'), key(KeyCode::F(6)), key(KeyCode::Enter), key(KeyCode::Backspace)], "close", "Close the working.", shown;
+        "next-figure" Action::NextFigure, [key(KeyCode::Right), char('n')], "next figure", "The working of the next figure.", shown;
+        "previous-figure" Action::PreviousFigure, [key(KeyCode::Left), char('p')], "previous", "The working of the figure before.", shown;
+        "copy" Action::Copy, [char('y'), char('c')], "copy", "Hand the working to the terminal as text to be copied.", shown;
     }
     Place::Everywhere => {
         "fleet" Action::Go(Screen::Fleet), [char('1')], "Fleet", "The fleet, ranked by what replacing saves.";

@@ -14,7 +14,7 @@ use super::list::{List, Step};
 use super::session::{JournalLine, Session};
 use super::theme::Theme;
 use super::work::{Answer, Done, Job, Kind, Question, Ranked, View, ViewSpec};
-use super::{basis, frame, help, tender, text, unit};
+use super::{basis, frame, help, tender, text, unit, working};
 use crate::engine::columns::BasisSheet;
 use crate::study::rank::By;
 use crate::study::{StudyError, Watch};
@@ -39,12 +39,14 @@ impl ExitReason {
 }
 
 /// What the loop is to do with the terminal.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[derive(Clone, Debug, PartialEq, Eq)]
 pub enum Wish {
     /// Hand it to the shell.
     Suspend,
     /// Draw everything anew.
     Redraw,
+    /// Write this to it.
+    Write(String),
 }
 
 /// What is being waited for.
@@ -79,6 +81,8 @@ pub struct App {
     pub(super) screen: Screen,
     /// First line of the help that is shown; none = closed.
     pub(super) help: Option<List>,
+    /// How a figure comes about; none = closed.
+    pub(super) working: Option<working::Panel>,
     pub(super) message: Option<String>,
     pub(super) opened: Option<Opened>,
     /// The fleet under the basis as it is stored.
@@ -115,6 +119,7 @@ impl App {
             size,
             screen: Screen::Fleet,
             help: None,
+            working: None,
             message: None,
             opened: None,
             stored: None,
@@ -186,6 +191,8 @@ impl App {
             vec![Place::Help, Place::List, Place::Everywhere]
         } else if self.typing.is_some() {
             vec![Place::Filter]
+        } else if self.working.is_some() {
+            vec![Place::Working, Place::List, Place::Everywhere]
         } else {
             vec![Place::On(self.screen), Place::List, Place::Everywhere]
         }
@@ -268,6 +275,18 @@ impl App {
                     self.screen = Screen::Unit;
                 }
             }
+            Action::Working => match working::open(self) {
+                Some(Ok(panel)) => self.working = Some(panel),
+                Some(Err(error)) => self.message = Some(error.to_string()),
+                None => {}
+            },
+            Action::NextFigure | Action::PreviousFigure => {
+                if let Some(panel) = &mut self.working {
+                    let back = panel.len().saturating_sub(1);
+                    panel.turn(if action == Action::NextFigure { 1 } else { back });
+                }
+            }
+            Action::Copy => self.copy(),
             Action::Filter => {
                 self.typing = Some(Input::new(self.wanted.filter.clone()));
             }
@@ -312,7 +331,7 @@ impl App {
 
     /// Stops what runs; else closes the innermost thing; else goes back to the fleet.
     fn back(&mut self) {
-        if self.help.take().is_some() {
+        if self.help.take().is_some() || self.working.take().is_some() {
             return;
         }
         let ranking = Kind::Rank as usize;
@@ -333,7 +352,7 @@ impl App {
 
     /// Whether there is something to go back from.
     pub(super) fn can_go_back(&self) -> bool {
-        if self.help.is_some() {
+        if self.help.is_some() || self.working.is_some() {
             return false;
         }
         self.screen != Screen::Fleet || self.show_left_out || !self.wanted.filter.is_empty()
@@ -342,6 +361,7 @@ impl App {
     fn go(&mut self, screen: Screen) {
         let from = std::mem::replace(&mut self.screen, screen);
         self.typing = None;
+        self.working = None;
         if screen == Screen::Unit
             && (from == Screen::Fleet || self.unit.index.is_none())
             && let Some(i) = self.under_cursor()
@@ -366,6 +386,12 @@ impl App {
         if let Some(mut list) = self.help {
             list.scroll(step, help::lines(self, usize::from(self.size.width)).len(), height);
             self.help = Some(list);
+            return;
+        }
+        if let Some(mut panel) = self.working.take() {
+            let lines = working::lines(self, &panel, usize::from(self.size.width)).len();
+            panel.list.scroll(step, lines, height);
+            self.working = Some(panel);
             return;
         }
         let len = self.len();
@@ -401,7 +427,9 @@ impl App {
     /// Keeps every cursor in its list and its window.
     fn settle(&mut self) {
         let height = frame::list_height(self);
-        if self.screen == Screen::Fleet {
+        if self.working.is_some() || self.help.is_some() {
+            self.step(Step::Lines(0));
+        } else if self.screen == Screen::Fleet {
             self.fleet.settle(self.view.places.len(), height);
             self.left_out.settle(self.view.left_out.len(), height);
             if let (true, Some(ranked), Some(i)) =
@@ -433,6 +461,20 @@ impl App {
         list.step(step, len, height);
         if let Some(i) = self.under_cursor() {
             self.open_unit(i);
+        }
+    }
+
+    /// Hands the opened working to the terminal as text.
+    fn copy(&mut self) {
+        let Some(panel) = &self.working else { return };
+        match self.theme.caps().clipboard.sequence(&panel.text()) {
+            Ok(sequence) => {
+                self.wish = Some(Wish::Write(sequence));
+                let said =
+                    "Handed to the terminal; if nothing arrives, it takes no text from programs.";
+                self.message = Some(said.to_owned());
+            }
+            Err(why) => self.message = Some(why),
         }
     }
 
@@ -481,6 +523,8 @@ impl App {
                 let unit = self.under_cursor();
                 self.basis.in_effect(&ranked.desk.sheet.basis);
                 self.ranked = Some(Arc::clone(&ranked));
+                // What it explains is of another basis.
+                self.working = None;
                 if view.spec != self.wanted {
                     let spec = self.wanted.clone();
                     self.ask(

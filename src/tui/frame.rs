@@ -11,7 +11,7 @@ use ratatui::widgets::{Clear, Widget as _};
 use super::action::{self, Action, ActionDef, Place, Screen};
 use super::app::App;
 use super::theme;
-use super::{basis, fleet, help, journal, tender, text, unit};
+use super::{basis, fleet, help, journal, tender, text, unit, working};
 
 /// The smallest terminal in which the screens are drawn.
 pub(super) const LEAST: Size = Size { width: 60, height: 16 };
@@ -51,6 +51,9 @@ pub(super) fn list_height(app: &App) -> usize {
     let body = body(app);
     if app.help.is_some() {
         return usize::from(body.height);
+    }
+    if app.working.is_some() {
+        return usize::from(body.height.saturating_sub(working::HEADER));
     }
     usize::from(match app.screen {
         Screen::Fleet => fleet::rows(app, body),
@@ -119,6 +122,8 @@ impl App {
                 help::draw(self, parts.body, buffer);
             } else if self.ranked.is_none() {
                 self.first_frame(parts.body, buffer);
+            } else if let Some(panel) = &self.working {
+                working::draw(self, panel, parts.body, buffer);
             } else {
                 match self.screen {
                     Screen::Fleet => fleet::draw(self, parts.body, buffer),
@@ -199,6 +204,7 @@ impl App {
         } else if self.ranked.is_some() {
             let (left, right) = match self.screen {
                 _ if self.help.is_some() => (Line::default(), vec![self.more()]),
+                _ if self.working.is_some() => (self.caution(), vec![self.more()]),
                 Screen::Fleet => fleet::status(self),
                 Screen::Basis => (basis::draw::status(self), Vec::new()),
                 Screen::Unit => (self.caution(), vec![self.more()]),
@@ -228,6 +234,12 @@ impl App {
     fn more(&self) -> Line<'static> {
         let (from, lines) = match self.help {
             Some(help) => (help.cursor, help::lines(self, usize::from(self.size.width)).len()),
+            None if self.working.is_some() => {
+                let panel = self.working.as_ref();
+                let cells = usize::from(self.size.width);
+                let lines = panel.map_or(0, |p| working::lines(self, p, cells).len());
+                (panel.map_or(0, |p| p.list.cursor), lines)
+            }
             None => match unit::table_len(self) {
                 Some((lines, seen)) => {
                     return self.lines_below(lines - seen - self.unit.years.cursor);

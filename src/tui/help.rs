@@ -14,12 +14,13 @@ use super::theme::Part;
 pub(super) fn lines(app: &App, cells: usize) -> Vec<Line<'static>> {
     let theme = app.theme;
     let ascii = theme.caps().ascii;
-    let places = [Place::On(app.screen), Place::Filter, Place::List, Place::Everywhere];
-    let reachable = action::reachable(&[Place::On(app.screen), Place::List, Place::Everywhere]);
+    let here = if app.working.is_some() { Place::Working } else { Place::On(app.screen) };
+    let places = [here, Place::Filter, Place::List, Place::Everywhere];
+    let reachable = action::reachable(&[here, Place::List, Place::Everywhere]);
     let mut lines = Vec::new();
     for place in places {
         let here: Vec<_> = if place == Place::Filter {
-            if app.screen != action::Screen::Fleet {
+            if here != Place::On(action::Screen::Fleet) {
                 continue;
             }
             action::reachable(&[Place::Filter])

@@ -9,7 +9,7 @@ use super::app::App;
 use super::frame;
 use super::list::List;
 use super::work::Evaluated;
-use crate::engine::columns::Lot;
+use crate::engine::columns::{Lot, TenderSheet};
 use crate::study::tender::LotResult;
 
 /// What is shown where there is no room for everything.
@@ -86,6 +86,13 @@ pub(super) fn shows_all(app: &App) -> bool {
 /// Whether something else than the bids is seen, from which they can be gone back to.
 pub(super) fn can_go_back(app: &App) -> bool {
     app.screen == Screen::Tender && app.tender.view != View::Bids && !shows_all(app)
+}
+
+/// The bid under the cursor, with its tender and lot.
+pub(super) fn under_cursor(app: &App) -> Option<(&TenderSheet, &str, &str)> {
+    let (asked, result) = lot(app)?;
+    let bid = result.bids.get(app.tender.list.cursor)?;
+    Some((&shown(app)?.sheet, &asked.lot, &bid.bid))
 }
 
 /// Number of bids of the lot.

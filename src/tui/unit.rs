@@ -168,6 +168,12 @@ fn year(first_year: i64, choice: &YearChoice) -> i64 {
     first_year + i64::try_from(choice.offset).unwrap_or(0)
 }
 
+/// The record of a unit: as it was read, else what the columns of the fleet hold of it.
+pub(super) fn record(app: &App, desk: &Desk, i: usize) -> Unit {
+    let read = app.unit.record.as_deref().filter(|_| app.unit.index == Some(i));
+    read.cloned().unwrap_or_else(|| facts::of_columns(desk, i))
+}
+
 /// Lines of the facts.
 pub(super) fn facts_len(app: &App) -> usize {
     let size = draw::areas(super::frame::body(app), app.unit.table).facts;
