@@ -31,6 +31,7 @@ pub use exit::Exit;
 
 use exit::Failure;
 use print::Printer;
+use timings::Timings;
 
 /// Runs the program with the arguments of the process.
 pub fn main() -> ExitCode {
@@ -53,8 +54,12 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> Exit {
         }
     };
     let mut printer = Printer::new(args.format);
+    let timings = Timings::start(args.timings && !matches!(args.command, Some(Command::Rank(_))));
     let done = dispatch(&args, &mut printer);
     let flushed = printer.flush().map_err(Failure::from);
+    if let Some(line) = timings.finish() {
+        printer.complain(&line);
+    }
     match done.and_then(|exit| flushed.map(|()| exit)) {
         Ok(exit) => exit,
         Err(failure) => {

@@ -51,7 +51,7 @@ pub struct Args {
     #[command(subcommand)]
     pub command: Option<Command>,
     /// The book (an SQLite file); else $IRONHUM_BOOK, else book.sqlite in the data directory
-    #[arg(long, global = true, value_name = "FILE", env = "IRONHUM_BOOK")]
+    #[arg(long, global = true, value_name = "FILE")]
     pub book: Option<PathBuf>,
     /// The basis; else the book's only or current one
     #[arg(long, global = true, value_name = "NAME")]
@@ -155,6 +155,9 @@ pub struct Import {
     /// A blank cell erases the old value
     #[arg(long)]
     pub clear_blank: bool,
+    /// Make the basis the current one: what commands without --basis take
+    #[arg(long)]
+    pub current: bool,
     /// Name of the price series (else the file's name)
     #[arg(long, value_name = "NAME")]
     pub name: Option<String>,
@@ -215,16 +218,16 @@ pub struct Factors {
     pub peak_pu: Option<f64>,
     /// Loss factor of the load
     #[arg(long, value_name = "PU")]
-    pub loss_factor: Option<f64>,
+    pub loss_factor_pu: Option<f64>,
     /// Load factor of the load, where its loss factor is not known
     #[arg(long, value_name = "PU")]
-    pub load_factor: Option<f64>,
+    pub load_factor_pu: Option<f64>,
     /// Profile of the load
     #[arg(long, value_name = "NAME")]
     pub profile: Option<String>,
     /// Yearly growth of the load
     #[arg(long, value_name = "PCT", allow_negative_numbers = true)]
-    pub load_growth: Option<f64>,
+    pub load_growth_pct: Option<f64>,
     /// Show how each factor comes about
     #[arg(long)]
     pub working: bool,
@@ -282,9 +285,9 @@ pub struct Settle {
 pub struct Unit {
     /// The unit
     pub unit: String,
-    /// Show how each figure comes about
-    #[arg(long)]
-    pub working: bool,
+    /// Show how each figure comes about, or the one that is named
+    #[arg(long, value_name = "FIGURE", num_args = 0..=1, default_missing_value = "")]
+    pub working: Option<String>,
 }
 
 /// Options of `work`.

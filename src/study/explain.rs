@@ -19,6 +19,9 @@ pub struct StepRow {
     pub unit: &'static str,
     /// Where the formula is published.
     pub source: &'static str,
+    /// What the step is about where one formula is used several times: a year, an offer.
+    #[serde(skip)]
+    pub of: String,
     /// The steps that gave the numbers put in.
     #[serde(skip_serializing_if = "Vec::is_empty")]
     pub steps: Vec<StepRow>,
@@ -41,18 +44,33 @@ impl StepRow {
             value: step.value,
             unit: step.formula.unit,
             source: step.formula.source,
+            of: step.of.clone(),
             steps: Vec::new(),
         }
     }
 
-    /// A working as lines, `depth` steps in: parts indented below the figure that they give.
+    /// A working as lines, `depth` steps in: parts indented below the figure that they give. Of a row of years by
+    /// one formula the first is written in full, the others in a line each.
     pub fn lines(rows: &[Self], depth: usize) -> Vec<String> {
         let indent = "    ".repeat(depth);
         let mut lines = Vec::new();
-        for row in rows {
+        for (n, row) in rows.iter().enumerate() {
+            let again = n > 0 && !row.of.is_empty() && rows[n - 1].formula == row.formula;
+            if again && !row.steps.is_empty() {
+                let (of, value) = (&row.of, row.value);
+                lines.push(format!("{indent}{of}: {} = {value} {}", row.substituted, row.unit));
+                continue;
+            }
+            if let Some(symbol) = row.formula.strip_suffix(" = as stated") {
+                lines.push(format!("{indent}{symbol} = {} {}   {}", row.value, row.unit, row.name));
+                continue;
+            }
             lines.push(format!("{indent}{}", row.name));
             lines.push(format!("{indent}  {}", row.formula));
-            lines.push(format!("{indent}  = {}", row.substituted));
+            // A sum over years has no numbers of its own to put in.
+            if !row.formula.ends_with(&row.substituted) {
+                lines.push(format!("{indent}  = {}", row.substituted));
+            }
             lines.push(format!("{indent}  = {} {}   [{}]", row.value, row.unit, row.source));
             lines.extend(Self::lines(&row.steps, depth + 1));
         }

@@ -2,6 +2,7 @@
 
 use super::profile::Profile;
 use crate::engine::Refusal;
+use crate::engine::working::{Formula, Recorder, Silent};
 
 /// Energy prices of a year in equal steps, with emission factors and the load of the whole system where known.
 #[derive(Clone, Debug, PartialEq)]
@@ -43,6 +44,89 @@ pub struct Market {
     pub series: bool,
 }
 
+const SOURCE: &str = "methods, section 3";
+const PRICE: Formula = Formula {
+    name: "mean price of a constant loss",
+    symbol: "c0",
+    formula: "Σ_t p_t/n",
+    unit: "money/kWh",
+    source: SOURCE,
+};
+const LOAD_PRICE: Formula = Formula {
+    name: "mean price of a load loss that follows the profile",
+    symbol: "ck",
+    formula: "Σ_t p_t·s_t²/Σ_t s_t²",
+    unit: "money/kWh",
+    source: SOURCE,
+};
+const CO2: Formula = Formula {
+    name: "mean CO2 of a constant loss",
+    symbol: "κ0",
+    formula: "Σ_t κ_t/n",
+    unit: "kg/kWh",
+    source: SOURCE,
+};
+const LOAD_CO2: Formula = Formula {
+    name: "mean CO2 of a load loss that follows the profile",
+    symbol: "κk",
+    formula: "Σ_t κ_t·s_t²/Σ_t s_t²",
+    unit: "kg/kWh",
+    source: SOURCE,
+};
+const RESPONSIBILITY: Formula = Formula {
+    name: "load at the first hour of greatest system load over own peak",
+    symbol: "PRF",
+    formula: "s_t/s_max",
+    unit: "pu",
+    source: SOURCE,
+};
+
+impl PriceSeries {
+    /// What a constant loss pays, c̄0 and κ̄0; `co2_kg_per_kwh` counts where the series has no emission factors.
+    pub fn constant<R: Recorder>(&self, w: &mut R, co2_kg_per_kwh: f64) -> Weights {
+        let mut state = |formula, values: &[f64]| {
+            #[expect(
+                clippy::cast_precision_loss,
+                reason = "a year has at most half a million steps"
+            )]
+            let n = values.len() as f64;
+            w.step(formula, &[("n", n)], mean(values))
+        };
+        Weights {
+            price_per_kwh: state(&PRICE, &self.price_per_kwh),
+            co2_kg_per_kwh: self
+                .co2_kg_per_kwh
+                .as_deref()
+                .map_or(co2_kg_per_kwh, |values| state(&CO2, values)),
+            responsibility_pu: None,
+        }
+    }
+
+    /// What a load loss that follows a profile pays, c̄k and κ̄k, and the share of own peak at the system peak.
+    ///
+    /// # Errors
+    /// A profile of another step, length or start than the series.
+    pub fn following<R: Recorder>(
+        &self,
+        w: &mut R,
+        profile: &Profile,
+        co2_kg_per_kwh: f64,
+    ) -> Result<Weights, Refusal> {
+        beside(self, profile)?;
+        let peak = profile.ratios(&mut Silent)?.peak;
+        let mut state =
+            |formula, values: &[f64]| w.step(formula, &[], weighted(values, &profile.values));
+        let price_per_kwh = state(&LOAD_PRICE, &self.price_per_kwh);
+        let co2 = self.co2_kg_per_kwh.as_deref();
+        let co2_kg_per_kwh = co2.map_or(co2_kg_per_kwh, |values| state(&LOAD_CO2, values));
+        let responsibility_pu = self.system_load.as_deref().map(first_greatest).map(|step| {
+            let load = profile.values[step].abs();
+            w.step(&RESPONSIBILITY, &[("s_t", load), ("s_max", peak)], load / peak)
+        });
+        Ok(Weights { price_per_kwh, co2_kg_per_kwh, responsibility_pu })
+    }
+}
+
 impl Market {
     /// A flat price: every loss pays the same.
     pub fn flat(price_per_kwh: f64, co2_kg_per_kwh: f64, profiles: usize) -> Self {
@@ -55,27 +139,10 @@ impl Market {
     ///
     /// A profile of another step, length or start than the series is refused by itself.
     pub fn of_series(series: &PriceSeries, profiles: &[Profile], co2_kg_per_kwh: f64) -> Self {
-        let peak_step = series.system_load.as_deref().map(first_greatest);
-        let weights = |profile: &Profile| {
-            beside(series, profile)?;
-            let peak = profile.ratios()?.peak;
-            let load_weighted = |values: &[f64]| weighted(values, &profile.values);
-            Ok(Weights {
-                price_per_kwh: load_weighted(&series.price_per_kwh),
-                co2_kg_per_kwh: series
-                    .co2_kg_per_kwh
-                    .as_deref()
-                    .map_or(co2_kg_per_kwh, load_weighted),
-                responsibility_pu: peak_step.map(|step| profile.values[step].abs() / peak),
-            })
-        };
+        let following = |profile| series.following(&mut Silent, profile, co2_kg_per_kwh);
         Self {
-            constant: Weights {
-                price_per_kwh: mean(&series.price_per_kwh),
-                co2_kg_per_kwh: series.co2_kg_per_kwh.as_deref().map_or(co2_kg_per_kwh, mean),
-                responsibility_pu: None,
-            },
-            profiles: profiles.iter().map(weights).collect(),
+            constant: series.constant(&mut Silent, co2_kg_per_kwh),
+            profiles: profiles.iter().map(following).collect(),
             series: true,
         }
     }

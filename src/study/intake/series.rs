@@ -4,6 +4,7 @@ use super::{Intake, IntakeError, Report};
 use crate::book::{Book, Tally};
 use crate::engine::columns::Column;
 use crate::engine::loading::{PriceSeries, Profile};
+use crate::engine::working::Silent;
 use crate::exchange::series::{Names, Series, SeriesColumn, holds_numbers};
 use crate::exchange::{Rows, Source};
 
@@ -33,7 +34,7 @@ impl Intake<'_> {
             };
             let first_timestamp = first_timestamp.clone();
             let profile = Profile { profile: name, step_minutes, first_timestamp, values };
-            if let Err(refusal) = profile.ratios() {
+            if let Err(refusal) = profile.ratios(&mut Silent) {
                 self.bad += 1;
                 self.problems.add(1, &profile.profile, "", refusal.why);
                 continue;
