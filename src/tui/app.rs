@@ -283,7 +283,10 @@ impl App {
             Action::NextFigure | Action::PreviousFigure => {
                 if let Some(panel) = &mut self.working {
                     let back = panel.len().saturating_sub(1);
-                    panel.turn(if action == Action::NextFigure { 1 } else { back });
+                    let by = if action == Action::NextFigure { 1 } else { back };
+                    if let Err(error) = panel.turn(by) {
+                        self.message = Some(error.to_string());
+                    }
                 }
             }
             Action::Copy => self.copy(),

@@ -154,7 +154,7 @@ impl Theme {
 }
 
 /// Characters of units and formulas in words.
-const SPELT: [(&str, &str); 20] = [
+const SPELT: [(&str, &str); 21] = [
     ("°", "deg"),
     ("α", "alpha"),
     ("β", "beta"),
@@ -164,6 +164,7 @@ const SPELT: [(&str, &str); 20] = [
     ("κ", "kappa"),
     ("λ", "lambda"),
     ("Σ", "sum "),
+    ("Π", "product "),
     ("φ", "phi"),
     ("√", "sqrt"),
     ("²", "^2"),

@@ -219,6 +219,48 @@ fn where_nothing_can_be_bought_now_it_is_said_why_and_from_when() {
     assert!(bench.keys("1").screen().contains("now: none open before 2029: lead time"));
 }
 
+#[test]
+fn a_figure_of_a_bid_opens_and_is_copied() {
+    use ironhum::tui::app::Wish;
+    let mut bench = bench();
+    bench.keys("3<Down>");
+    let bid = bench.cursor().split_whitespace().nth(2).unwrap().to_owned();
+    bench.keys("e");
+    let screen = bench.screen();
+    assert!(screen.contains(&format!("bid {bid}")) && screen.contains("[owning cost]"), "{screen}");
+    assert!(screen.contains(" = "), "{screen}");
+    bench.keys("n");
+    assert!(bench.screen().contains("[at tolerance]"));
+    bench.keys("ny");
+    // "ol-2027-1, lot …" in base64.
+    let Some(Wish::Write(written)) = bench.app.take_wish() else { panic!("nothing was written") };
+    assert!(written.starts_with("\u{1b}]52;c;b2wtMjAyNy0x"), "{written:?}");
+    assert!(bench.screen().contains("Handed to the terminal"));
+    bench.keys("<Esc>");
+    assert_eq!(bench.app.screen(), Screen::Tender);
+    assert!(bench.cursor().contains(&bid));
+}
+
+#[test]
+fn every_figure_of_a_unit_opens_both_ways() {
+    let mut bench = bench();
+    bench.keys("<Down><Enter>").keys("e");
+    let first = bench.screen();
+    assert!(first.contains("unit OD-T1") && first.contains("saving_pv]"), "{first}");
+    let mut seen = std::collections::BTreeSet::new();
+    for _ in 0..100 {
+        let screen = bench.keys("<Right>").screen();
+        assert!(screen.contains(" = "), "{screen}");
+        seen.insert(bench.lines()[2].clone());
+    }
+    assert!(seen.len() > 10, "{seen:?}");
+    bench.keys("q").keys("e");
+    assert_eq!(bench.keys("<Right><Left>").screen(), first);
+    bench.keys("e<Esc>");
+    assert_eq!(bench.app.screen(), Screen::Fleet);
+    assert!(bench.keys("e").screen().contains("unit OD-T1"));
+}
+
 /// A row of the totals on the basis screen: before and after.
 fn totals(bench: &Bench, name: &str) -> (f64, f64) {
     let line = bench.lines().into_iter().find(|line| line.trim_start().starts_with(name)).unwrap();
