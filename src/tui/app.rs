@@ -193,9 +193,16 @@ impl App {
             vec![Place::Filter]
         } else if self.working.is_some() {
             vec![Place::Working, Place::List, Place::Everywhere]
+        } else if self.moves_inputs() {
+            vec![Place::WhatIf, Place::On(self.screen), Place::List, Place::Everywhere]
         } else {
             vec![Place::On(self.screen), Place::List, Place::Everywhere]
         }
+    }
+
+    /// Whether the inputs of a tender take the keys.
+    pub(super) fn moves_inputs(&self) -> bool {
+        self.screen == Screen::Tender && self.tender.what_if.open
     }
 
     /// Takes a key press.
@@ -321,6 +328,26 @@ impl App {
                 self.tender.next_tender(self.ranked.as_ref().map_or(0, |r| r.tenders.len()));
             }
             Action::TenderView => self.tender.view = self.tender.view.next(),
+            Action::WhatIf => {
+                self.tender.what_if.open = tender::under_cursor(self).is_some();
+                if !tender::shows_all(self) {
+                    self.tender.view = tender::View::Bids;
+                }
+            }
+            Action::Risk => self.ask_risk(),
+            Action::Less | Action::More | Action::MuchLess | Action::MuchMore
+                if self.moves_inputs() =>
+            {
+                let by = match action {
+                    Action::Less => -1,
+                    Action::More => 1,
+                    Action::MuchLess => -10,
+                    _ => 10,
+                };
+                self.move_input(tender::Move::By(by));
+            }
+            Action::Reset if self.moves_inputs() => self.move_input(tender::Move::Reset),
+            Action::ResetAll if self.moves_inputs() => self.move_input(tender::Move::ResetAll),
             Action::Less => self.nudge(-1, false),
             Action::More => self.nudge(1, false),
             Action::MuchLess => self.nudge(-1, true),
@@ -335,6 +362,10 @@ impl App {
     /// Stops what runs; else closes the innermost thing; else goes back to the fleet.
     fn back(&mut self) {
         if self.help.take().is_some() || self.working.take().is_some() {
+            return;
+        }
+        if self.moves_inputs() {
+            self.tender.what_if.open = false;
             return;
         }
         let ranking = Kind::Rank as usize;
@@ -410,6 +441,10 @@ impl App {
             }
             Screen::Basis => &mut self.basis.list,
             Screen::Journal => &mut self.journal,
+            Screen::Tender if self.tender.what_if.open => {
+                self.tender.what_if.list.step(step, tender::INPUTS, tender::INPUTS);
+                return self.tender.list.settle(len, height);
+            }
             Screen::Tender => &mut self.tender.list,
         };
         list.step(step, len, height);
@@ -524,10 +559,13 @@ impl App {
                     self.stored = Some(Arc::clone(&ranked));
                 }
                 let unit = self.under_cursor();
+                let bid = tender::under_cursor(self).map(|(_, _, bid)| bid.to_owned());
                 self.basis.in_effect(&ranked.desk.sheet.basis);
                 self.ranked = Some(Arc::clone(&ranked));
                 // What it explains is of another basis.
                 self.working = None;
+                tender::keep_on(self, &bid.unwrap_or_default());
+                self.evaluate_draft();
                 if view.spec != self.wanted {
                     let spec = self.wanted.clone();
                     self.ask(
@@ -547,6 +585,20 @@ impl App {
                 }
             }
             Ok(Answer::Record(unit, record)) => self.unit.take_record(&unit, record),
+            Ok(Answer::WhatIf(evaluated, number)) => {
+                if self.tender.counts(number) {
+                    let bid = tender::under_cursor(self).map(|(_, _, bid)| bid.to_owned());
+                    if let Err(why) = self.tender.what_if.take(evaluated) {
+                        self.message = Some(why);
+                    }
+                    tender::keep_on(self, &bid.unwrap_or_default());
+                }
+            }
+            Ok(Answer::Risk(risk, lot, number)) => {
+                if self.tender.counts(number) {
+                    self.tender.risk = Some((lot, risk));
+                }
+            }
             Ok(Answer::Saved(sheet, journal)) => self.saved(*sheet, journal),
             Err(error) if done.kind == Kind::Open => self.exit = Some(Err(error)),
             Err(error) if self.ranked.is_none() => self.exit = Some(Err(error)),
@@ -595,6 +647,33 @@ impl App {
         } else {
             self.exit = Some(Ok(ExitReason::Quit));
         }
+    }
+
+    /// Moves an input of the tender.
+    fn move_input(&mut self, how: tender::Move) {
+        match tender::move_input(self, how) {
+            Ok(()) => self.evaluate_draft(),
+            Err(why) => self.message = Some(self.theme.spell(&why).into_owned()),
+        }
+    }
+
+    /// Evaluates the tender that was changed on the screen, if one was.
+    fn evaluate_draft(&mut self) {
+        let number = self.tender.moved();
+        if let (Some(sheet), Some(ranked)) = (self.tender.what_if.sheet(), self.ranked.clone()) {
+            self.ask("Evaluating the tender", Question::WhatIf(ranked, sheet, number));
+        }
+    }
+
+    fn ask_risk(&mut self) {
+        let Some((lot, ranked)) =
+            tender::under_cursor(self).map(|(_, lot, _)| lot.to_owned()).zip(self.ranked.clone())
+        else {
+            return;
+        };
+        let Some(sheet) = tender::shown(self).map(|shown| Arc::clone(&shown.sheet)) else { return };
+        let number = self.tender.moved();
+        self.ask("Drawing the uncertain inputs", Question::Risk(ranked, sheet, lot, number));
     }
 
     fn nudge(&mut self, steps: i32, large: bool) {

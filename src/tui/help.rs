@@ -14,7 +14,13 @@ use super::theme::Part;
 pub(super) fn lines(app: &App, cells: usize) -> Vec<Line<'static>> {
     let theme = app.theme;
     let ascii = theme.caps().ascii;
-    let here = if app.working.is_some() { Place::Working } else { Place::On(app.screen) };
+    let here = if app.working.is_some() {
+        Place::Working
+    } else if app.moves_inputs() {
+        Place::WhatIf
+    } else {
+        Place::On(app.screen)
+    };
     let places = [here, Place::Filter, Place::List, Place::Everywhere];
     let reachable = action::reachable(&[here, Place::List, Place::Everywhere]);
     let mut lines = Vec::new();

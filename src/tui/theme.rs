@@ -122,6 +122,11 @@ impl Theme {
         if self.caps.ascii { '>' } else { '»' }
     }
 
+    /// The mark of a point that was drawn.
+    pub fn cloud(self) -> char {
+        if self.caps.ascii { 'o' } else { '•' }
+    }
+
     /// The mark before the selected line.
     pub fn mark(self) -> char {
         if self.caps.ascii { '>' } else { '▶' }

@@ -182,6 +182,9 @@ fn named(name: &str) -> KeyEvent {
         "Home" => KeyCode::Home,
         "End" => KeyCode::End,
         "Delete" => KeyCode::Delete,
+        name if name.starts_with('F') && name.len() > 1 => {
+            KeyCode::F(name[1..].parse().unwrap_or_else(|_| panic!("no key is named {name}")))
+        }
         name if name.len() == 1 => KeyCode::Char(name.chars().next().unwrap()),
         _ => panic!("no key is named {name}"),
     };

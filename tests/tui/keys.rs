@@ -219,6 +219,72 @@ fn where_nothing_can_be_bought_now_it_is_said_why_and_from_when() {
     assert!(bench.keys("1").screen().contains("now: none open before 2029: lead time"));
 }
 
+/// The bids in their order, by the words of their lines: place, bid, owning cost last but one.
+fn order(bench: &Bench) -> Vec<String> {
+    let rows = bench.lines().into_iter().skip(5);
+    rows.take_while(|line| !line.trim().is_empty())
+        .map(|line| line.replace(['▶', '='], " ").split_whitespace().nth(1).unwrap().to_owned())
+        .collect()
+}
+
+#[test]
+fn a_bid_moves_with_its_price_and_back() {
+    let mut bench = bench();
+    let before = bench.keys("3<Down>").screen();
+    let (was, bid) = (order(&bench), order(&bench)[1].clone());
+    bench.keys("v");
+    assert!(bench.screen().contains(&format!("What if, for bid {bid}")), "{}", bench.screen());
+    // Price is the third input; far dearer, it falls back, and the cursor stays with it.
+    bench.keys("<Down><Down>>>>");
+    assert!(bench.screen().contains("changed, not stored"), "{}", bench.screen());
+    assert_ne!(order(&bench), was);
+    assert!(order(&bench).iter().position(|b| *b == bid) > Some(1), "{}", bench.screen());
+    let cursor = bench.lines().into_iter().filter(|line| line.starts_with('▶'));
+    assert!(cursor.clone().any(|line| line.contains(&bid)), "{}", bench.screen());
+    // It stays when the inputs are closed, and follows the basis.
+    bench.keys("<Esc>");
+    assert!(bench.screen().contains("changed, not stored"));
+    bench.keys("4<Down><Down>>3");
+    assert!(bench.screen().contains("changed, not stored"));
+    bench.keys("4R3vr<Esc>");
+    assert_eq!(bench.screen(), before);
+}
+
+#[test]
+fn factors_can_be_moved_both_ways_and_all_put_back() {
+    let mut bench = bench();
+    let line =
+        |bench: &Bench| bench.lines().into_iter().find(|l| l.contains("a kW of loss")).unwrap();
+    let before = line(bench.keys("3v"));
+    let less = line(bench.keys("-"));
+    assert_ne!(less, before);
+    assert!(less.contains("of the tender") && less.contains("of the basis"), "{less}");
+    let more = line(bench.keys("<Right><Right>"));
+    assert_ne!(more, less);
+    // A loss never goes below nothing; what cannot be is told.
+    bench.keys("<End><Up>").keys(&"<".repeat(20));
+    assert!(bench.screen().contains("is outside 0"), "{}", bench.screen());
+    assert_eq!(line(bench.keys("R")), before);
+    assert!(!bench.screen().contains("not stored "));
+}
+
+#[test]
+fn how_sure_the_winner_is_is_drawn_and_falls_with_what_it_is_of() {
+    let mut bench = bench();
+    bench.keys("3u");
+    let screen = bench.screen();
+    assert!(screen.contains("of 10 000 draws (seed 1)"), "{screen}");
+    assert!(bench.lines()[3].contains("cheapest"), "{screen}");
+    assert!(bench.keys("m").screen().contains('•'), "{}", bench.screen());
+    // Of another basis, or with something moved, it no longer holds.
+    bench.keys("m").keys("m");
+    bench.keys("4<Down><Down>>3");
+    assert!(!bench.screen().contains("draws (seed"), "{}", bench.screen());
+    assert!(bench.keys("<F9>").screen().contains("draws (seed"));
+    bench.keys("v>");
+    assert!(!bench.keys("<Esc>").screen().contains("draws (seed"));
+}
+
 #[test]
 fn a_figure_of_a_bid_opens_and_is_copied() {
     use ironhum::tui::app::Wish;

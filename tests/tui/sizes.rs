@@ -5,7 +5,7 @@ use proptest::prelude::*;
 
 use crate::bench::{ASCII, Bench, COLOUR, PLAIN};
 
-const KEYS: [&str; 32] = [
+const KEYS: [&str; 34] = [
     "1",
     "2",
     "3",
@@ -36,6 +36,8 @@ const KEYS: [&str; 32] = [
     "<",
     "r",
     "e",
+    "v",
+    "u",
     "y",
     "R",
 ];
@@ -128,9 +130,10 @@ proptest! {
 fn every_screen_at_every_small_size() {
     for caps in [COLOUR, ASCII] {
         let mut bench = Bench::on(caps, 80, 24, hostile());
-        for keys in
-            ["1", "x", "<Enter>", "t", "e", "<Esc>", "3", "e", "<Esc>", "m", "m", "4", "5", "?"]
-        {
+        for keys in [
+            "1", "x", "<Enter>", "t", "e", "<Esc>", "3", "e", "<Esc>", "u", "m", "m", "v", ">",
+            "4", "5", "?",
+        ] {
             bench.keys(keys);
             for (width, height) in [
                 (0, 0),
