@@ -125,7 +125,7 @@ impl State {
             _ => Value::Real(next),
         };
         let value = line.column.check(value)?;
-        self.set(tender, sheet, line, [lot, bid], value);
+        self.set(tender, sheet, line, [lot, bid], &value);
         Ok(())
     }
 
@@ -135,7 +135,7 @@ impl State {
         sheet: &TenderSheet,
         line: &Line,
         [lot, bid]: [&str; 2],
-        value: Value,
+        value: &Value,
     ) {
         if self.draft.as_ref().is_none_or(|(n, _)| *n != tender) {
             self.draft = Some((tender, sheet.clone()));
@@ -184,7 +184,7 @@ impl State {
         let Some((lot, bid)) = find(sheet, at[0], at[1]) else { return };
         let values = if line.of == Of::Lot { lot.values() } else { bid.values() };
         if let Some(value) = values.into_iter().nth(line.at) {
-            self.set(tender, sheet, line, at, value);
+            self.set(tender, sheet, line, at, &value);
         }
     }
 
