@@ -6,14 +6,16 @@
 use serde::Serialize;
 
 use super::StudyError;
-use super::tender::{BasisForFactors, bids_of, bring, find_bid, find_lot, terms};
+use super::tender::{BasisForFactors, Case, bids_of, bring, find_bid, find_lot, terms};
 use crate::engine::columns::{Bid, Lot, Measured, Settlement, TenderSheet};
 use crate::engine::decision::tender::Terms;
 use crate::engine::decision::tender::bid::Comparable;
 use crate::engine::decision::tender::settlement::{
-    Delivered, Excess, beyond, delivered, mean, penalty,
+    Delivered, Excess, beyond, delivered, mean, mean_cost, penalty, penalty_of_mean,
+    penalty_of_units,
 };
-use crate::engine::working::{Silent, Step, Working};
+use crate::engine::working::{Recorder, Silent, Step, Working};
+use crate::study::explain::{Explained, nth, numbers};
 
 /// The settlement of a tender.
 #[derive(Clone, Debug, PartialEq, Serialize)]
@@ -116,15 +118,54 @@ pub fn working(
         StudyError::unknown("serial", serial, place, known)
     })?;
     let mut working = Working::default();
-    let (terms, bid) = (&guarantee.terms, guarantee.bid);
-    let promise = bring(&mut working, terms, bid)?;
-    let own = delivered(&mut working, terms, bid, &promise, unit).excess;
-    let counted = match guarantee.rule() {
-        Settlement::Unit => own,
-        Settlement::LotMean => mean(&mut working, &guarantee.excesses()),
-    };
-    penalty(&mut working, &promise.factors, &counted);
+    guarantee.state_penalty(&mut working, unit)?;
     Ok(working.into_steps())
+}
+
+/// The settlement of a tender as a result that can be opened.
+#[derive(Clone, Copy, Debug)]
+pub struct Settled<'a>(pub &'a Case);
+
+impl Explained for Settled<'_> {
+    fn called(&self) -> String {
+        format!("the settlement of tender {}", self.0.sheet.tender.tender)
+    }
+
+    fn figures(&self) -> Result<Vec<(String, f64)>, StudyError> {
+        let result = settle(&self.0.sheet, self.0.basis().as_ref(), None)?;
+        Ok(numbers(&result, &[], &[]))
+    }
+
+    fn state(&self, w: &mut Working, place: &[&str]) -> Result<(), StudyError> {
+        let (sheet, basis) = (&self.0.sheet, self.0.basis());
+        let result = settle(sheet, basis.as_ref(), None)?;
+        let ["lots", n, place @ ..] = place else { return Ok(()) };
+        let (settled, _) = nth(&result.lots, n)?;
+        let (lot, bid) =
+            (find_lot(sheet, &settled.lot)?, find_bid(sheet, &settled.lot, &settled.bid)?);
+        let guarantee = Guarantee::new(sheet, basis.as_ref(), lot, bid)?;
+        match place {
+            ["units", m, quantity] => {
+                let (_, m) = nth(&settled.units, m)?;
+                guarantee.state_unit(w, guarantee.units[m], quantity)
+            }
+            ["penalty"] => guarantee.state_lot_penalty(w, settled),
+            ["owning_cost_promised"] => {
+                let promise = bring(w, &guarantee.terms, bid)?;
+                promise.owning_cost(w);
+                Ok(())
+            }
+            _ => {
+                for unit in &guarantee.units {
+                    guarantee.as_delivered(&mut Silent, unit).owning_cost(w);
+                    w.about(&|| unit.serial.clone());
+                }
+                let costs = settled.units.iter().map(|unit| unit.owning_cost_delivered);
+                mean_cost(w, costs, settled.units.len());
+                Ok(())
+            }
+        }
+    }
 }
 
 fn measured_of<'a>(sheet: &'a TenderSheet, bid: &Bid) -> impl Iterator<Item = &'a Measured> {
@@ -173,28 +214,96 @@ impl<'a> Guarantee<'a> {
         };
         let units: Vec<UnitSettlement> =
             self.units.iter().map(|unit| self.settle_unit(unit, of_mean)).collect();
-        #[expect(clippy::cast_precision_loss, reason = "a lot has at most ten million units")]
-        let tested = units.len() as f64;
+        let tested = units.len();
         LotSettlement {
             lot: self.bid.lot.clone(),
             bid: self.bid.bid.clone(),
             penalty: of_mean.map_or_else(
-                || units.iter().map(|unit| unit.penalty).sum(),
-                |of_mean| of_mean * tested,
+                || penalty_of_units(&mut Silent, units.iter().map(|unit| unit.penalty)),
+                |of_mean| penalty_of_mean(&mut Silent, of_mean, tested),
             ),
             settlement: self.rule().word(),
             owning_cost_promised: self.promise.owning_cost(&mut Silent).total(),
-            owning_cost_delivered: units.iter().map(|unit| unit.owning_cost_delivered).sum::<f64>()
-                / tested,
+            owning_cost_delivered: mean_cost(
+                &mut Silent,
+                units.iter().map(|unit| unit.owning_cost_delivered),
+                tested,
+            ),
             units,
         }
+    }
+
+    /// A unit as a bid with the losses that were measured.
+    fn as_delivered<R: Recorder>(&self, w: &mut R, unit: &Measured) -> Comparable {
+        let delivered = delivered(w, &self.terms, self.bid, &self.promise, unit);
+        Comparable { losses: delivered.losses, ..self.promise }
+    }
+
+    /// States the penalty of a unit; under `lot-mean` its equal part of the lot's.
+    fn state_penalty(&self, w: &mut Working, unit: &Measured) -> Result<(), StudyError> {
+        let promise = bring(w, &self.terms, self.bid)?;
+        let own = delivered(w, &self.terms, self.bid, &promise, unit).excess;
+        let counted = match self.rule() {
+            Settlement::Unit => own,
+            Settlement::LotMean => mean(w, &self.excesses()),
+        };
+        penalty(w, &promise.factors, &counted);
+        Ok(())
+    }
+
+    fn state_lot_penalty(
+        &self,
+        w: &mut Working,
+        settled: &LotSettlement,
+    ) -> Result<(), StudyError> {
+        match (self.rule(), self.units.first()) {
+            (Settlement::LotMean, Some(unit)) => {
+                self.state_penalty(w, unit)?;
+                let of_mean = settled.units.first().map_or(0.0, |unit| unit.penalty);
+                penalty_of_mean(w, of_mean, settled.units.len());
+            }
+            _ => {
+                for unit in &self.units {
+                    let mut all = Working::default();
+                    self.state_penalty(&mut all, unit)?;
+                    w.append(all.into_steps().pop());
+                    w.about(&|| unit.serial.clone());
+                }
+                penalty_of_units(w, settled.units.iter().map(|unit| unit.penalty));
+            }
+        }
+        Ok(())
+    }
+
+    fn state_unit(
+        &self,
+        w: &mut Working,
+        unit: &Measured,
+        quantity: &str,
+    ) -> Result<(), StudyError> {
+        let of = match quantity {
+            "no_load_excess_w" => "no-load loss",
+            "load_excess_w" => "load loss",
+            "auxiliary_excess_w" => "auxiliary loss",
+            "penalty" => return self.state_penalty(w, unit),
+            _ => {
+                self.as_delivered(w, unit).owning_cost(w);
+                return Ok(());
+            }
+        };
+        let mut all = Working::default();
+        self.as_delivered(&mut all, unit);
+        // A measured load loss comes to the reference temperature first.
+        let wanted = |step: &Step| step.of == of || (of == "load loss" && step.of.is_empty());
+        w.append(all.into_steps().into_iter().filter(wanted));
+        Ok(())
     }
 
     fn settle_unit(&self, unit: &Measured, of_mean: Option<f64>) -> UnitSettlement {
         let delivered = self.delivered(unit);
         let (excess, factors) = (delivered.excess, &self.promise.factors);
         let (beyond_tolerance, rejectable) = beyond(&self.terms, &self.promise, &excess);
-        let as_delivered = Comparable { losses: delivered.losses, ..self.promise };
+        let as_delivered = self.as_delivered(&mut Silent, unit);
         UnitSettlement {
             serial: unit.serial.clone(),
             no_load_excess_w: excess.no_load_w,
