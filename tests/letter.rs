@@ -29,9 +29,12 @@ fn read(markdown: &str) -> (Vec<String>, Vec<String>) {
         match event {
             Event::Text(part) => text.push_str(&part),
             Event::End(
-                TagEnd::Heading(_) | TagEnd::Paragraph | TagEnd::Item | TagEnd::TableCell,
-            )
-            | Event::End(TagEnd::CodeBlock) => texts.push(std::mem::take(&mut text)),
+                TagEnd::Heading(_)
+                | TagEnd::Paragraph
+                | TagEnd::Item
+                | TagEnd::TableCell
+                | TagEnd::CodeBlock,
+            ) => texts.push(std::mem::take(&mut text)),
             Event::Start(
                 Tag::Heading { .. }
                 | Tag::Paragraph

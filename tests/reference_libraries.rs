@@ -2,7 +2,9 @@
 //! scipy) against the engine. The files in `tests/reference` say which library and version made them, and state
 //! their own tolerance; the transformers are the standard types of `units.csv`.
 
-use ironhum::engine::columns::{Basis, CapitalRecovery, CashFlow, FactorMethod};
+use ironhum::engine::columns::{
+    Basis, CapitalRecovery, CashFlow, FactorMethod, Insulation, WindingMetal,
+};
 use ironhum::engine::economics::Assumptions;
 use ironhum::engine::economics::discounting::{annuity, growing_annuity};
 use ironhum::engine::economics::failure::Weibull;
@@ -12,6 +14,7 @@ use ironhum::engine::economics::loss_factors::{levelized, present_value};
 use ironhum::engine::loading::Duty;
 use ironhum::engine::transformer::circuit::{Circuit, PowerFactor, of_nameplate};
 use ironhum::engine::transformer::efficiency::{at_load, best_load};
+use ironhum::engine::transformer::estimate::{Build, LossModel};
 use ironhum::engine::transformer::fault::{fault_current, fault_level};
 use ironhum::engine::transformer::losses::{Losses, at_current};
 use ironhum::engine::transformer::nameplate::Phases;
@@ -341,6 +344,43 @@ fn failures_and_best_loads() {
         {
             let eta = at_load(&mut Silent, &losses, best, pf).expect("sound");
             near(eta, n(row, name), 1e-9, row);
+        }
+    }
+}
+
+/// Missing losses: estimate and both ends of the interval to 1e-9 of numpy and scipy, from the same known units and
+/// with the same terms.
+#[test]
+fn estimated_losses() {
+    let file = read(include_str!("reference/estimate.json"));
+    assert!((n(&file, "coverage_of_2000_drawn_units") - 0.95).abs() < 0.015);
+    let build = |row: &Value| Build {
+        rated_kva: n(row, "rated_kva"),
+        year_made: row["year_made"].as_f64(),
+        winding_metal: row["winding_metal"].as_str().and_then(WindingMetal::from_word),
+        insulation: row["insulation"].as_str().and_then(Insulation::from_word),
+        phases: row["phases"].as_i64(),
+    };
+    for fleet in rows(&file, "fleets") {
+        let known = rows(fleet, "known").iter().map(|row| (build(row), n(row, "loss_w")));
+        let model = LossModel::learn("no-load loss", &known);
+        for asked in rows(fleet, "asked") {
+            let got = model.estimate(&mut Silent, &build(asked)).expect("enough units");
+            let terms: Vec<&str> = fleet["terms"]
+                .as_array()
+                .expect("a list")
+                .iter()
+                .filter_map(Value::as_str)
+                .collect();
+            assert_eq!(got.regression.terms(), terms);
+            assert_eq!(got.regression.units, rows(fleet, "known").len());
+            near(got.regression.exponent(), n(asked, "exponent"), 1e-9, asked);
+            for (got, want) in
+                [(got.loss_w, "loss_w"), (got.low_w, "low_w"), (got.high_w, "high_w")]
+            {
+                let want = n(asked, want);
+                assert!((got / want - 1.0).abs() < 1e-9, "{got} against {want}: {asked}");
+            }
         }
     }
 }

@@ -36,6 +36,9 @@ const SERIES: &str = "ossemar-zone";
 const TOP: usize = 20;
 
 pub(super) fn demo(args: &Args, printer: &mut Printer) -> Result<Exit, Failure> {
+    if args.read_only {
+        return Err(Failure::new(Exit::Usage, "--read-only: the demo makes a book"));
+    }
     let path = place(args)?;
     make(&path)?;
     if dashboard::on_terminal() {

@@ -31,10 +31,10 @@ pub(super) fn factors(
     let desk = Desk::read(&book, args.basis.as_deref())?;
     let asked = LoadAsked {
         peak_pu: options.peak_pu,
-        loss_factor_pu: options.loss_factor,
-        load_factor_pu: options.load_factor,
+        loss_factor_pu: options.loss_factor_pu,
+        load_factor_pu: options.load_factor_pu,
         profile: options.profile.clone(),
-        load_growth_pct: options.load_growth,
+        load_growth_pct: options.load_growth_pct,
     };
     let result = ask(&desk, &asked)?;
     match printer.format {

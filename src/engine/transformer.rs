@@ -6,6 +6,7 @@ mod complex;
 pub mod core_loss;
 pub mod efficiency;
 pub mod efficiency_index;
+pub mod estimate;
 pub mod fault;
 pub mod harmonics;
 pub mod losses;

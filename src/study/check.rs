@@ -349,7 +349,11 @@ impl Doubts {
         let desk = Desk::basis_only(book, Some(name))?;
         let of = ("basis", name);
         match desk.context() {
-            Ok(_) => {}
+            Ok(context) => {
+                for refusal in context.market.profiles.iter().filter_map(|p| p.as_ref().err()) {
+                    self.add(of, refusal.quantity, Kind::Contradictory, refusal.to_string());
+                }
+            }
             Err(StudyError::Refused { refusal, .. }) => {
                 self.add(of, refusal.quantity, Kind::Contradictory, refusal.to_string());
             }

@@ -3,7 +3,8 @@
 use std::sync::Arc;
 
 use crate::book::Book;
-use crate::engine::columns::{BasisSheet, Offer, Unit};
+use crate::engine::Refusal;
+use crate::engine::columns::{BasisSheet, CapitalRecovery, Offer, Unit};
 use crate::engine::decision::fleet::FleetColumns;
 use crate::engine::decision::{Candidate, Context, UnitFacts};
 use crate::engine::economics::Assumptions;
@@ -13,6 +14,9 @@ use crate::engine::law::{self, Subject};
 use crate::engine::loading::{Market, PriceSeries, Profile, Ratios};
 use crate::engine::working::Silent;
 use crate::study::StudyError;
+
+/// How often a book is read again that others write to meanwhile.
+const TRIES: usize = 5;
 
 /// Everything a question needs, in memory. What is large is shared: a clone with another basis is cheap.
 #[derive(Clone, Debug)]
@@ -39,9 +43,17 @@ impl Desk {
     /// # Errors
     /// The book fails or does not know the basis or its price series.
     pub fn read(book: &Book, basis: Option<&str>) -> Result<Self, StudyError> {
-        let sheet = book.basis(basis)?;
-        let series = Self::series_of(book, &sheet)?;
-        Self::new(book.fleet()?, book.offers()?, book.profiles()?, series, sheet)
+        // Several statements and connections read: once more where somebody wrote in between.
+        for _ in 0..TRIES {
+            let version = book.data_version()?;
+            let sheet = book.basis(basis)?;
+            let series = Self::series_of(book, &sheet)?;
+            let (fleet, offers, profiles) = (book.fleet()?, book.offers()?, book.profiles()?);
+            if book.data_version()? == version {
+                return Self::new(fleet, offers, profiles, series, sheet);
+            }
+        }
+        Err(StudyError::Busy)
     }
 
     /// Reads a basis with its profiles and prices, without the fleet and the offers: enough for loss factors.
@@ -112,6 +124,7 @@ impl Desk {
                 (market, Flags::NONE.with_if(both, Flags::CARBON_SERIES))
             }
         };
+        self.lives(&a)?;
         let (candidates, law_flags) = self.candidates_under(&a)?;
         let ratios = self.ratios.clone();
         Ok(Context { assumptions: a, market, ratios, candidates, flags: flags.with(law_flags) })
@@ -150,6 +163,21 @@ impl Desk {
             }
         }
         Ok((candidates, flags))
+    }
+
+    /// Holds that every offer has a life where capital is charged per year of service.
+    fn lives(&self, a: &Assumptions) -> Result<(), StudyError> {
+        let needed = a.capital_recovery == CapitalRecovery::Annuity && a.life_years.is_none();
+        match self.offers.iter().find(|offer| needed && offer.life_years.is_none()) {
+            None => Ok(()),
+            Some(offer) => {
+                let why = format!(
+                    "offer {} has none: give it there or in the basis, or choose capital_recovery \"full\"",
+                    offer.offer
+                );
+                Err(Refusal::new("life_years", "", why).into())
+            }
+        }
     }
 
     /// The name of an offer by its index.

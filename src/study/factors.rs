@@ -3,7 +3,7 @@
 use serde::Serialize;
 
 use crate::engine::Refusal;
-use crate::engine::columns::FactorMethod;
+use crate::engine::columns::{FactorMethod, Lot, Unit};
 use crate::engine::decision::Context;
 use crate::engine::decision::common_load::CommonLoad;
 use crate::engine::decision::place::resolve;
@@ -29,6 +29,27 @@ pub struct LoadAsked {
     pub profile: Option<String>,
     /// Yearly growth.
     pub load_growth_pct: Option<f64>,
+}
+
+impl LoadAsked {
+    /// Holds what is stated against the facts of the columns of a lot, which ask the same.
+    fn check(&self) -> Result<(), Refusal> {
+        let stated = [
+            ("peak_pu", self.peak_pu),
+            ("loss_factor_pu", self.loss_factor_pu),
+            ("load_factor_pu", self.load_factor_pu),
+            ("load_growth_pct", self.load_growth_pct),
+        ];
+        for (name, value) in stated {
+            let column = Lot::COLUMNS.iter().chain(Unit::COLUMNS).find(|c| c.name == name);
+            if let (Some(column), Some(value)) = (column, value) {
+                column
+                    .read(&value.to_string())
+                    .map_err(|why| Refusal::new(column.name, value, why))?;
+            }
+        }
+        Ok(())
+    }
 }
 
 /// The result.
@@ -103,6 +124,7 @@ impl Question<'_> {
     fn stated<R: Recorder>(&self, w: &mut R) -> Result<Duty, StudyError> {
         let (desk, context, asked) = (self.desk, self.context, self.asked);
         let a = &context.assumptions;
+        asked.check()?;
         let profile = match &asked.profile {
             None => None,
             Some(name) => {

@@ -8,6 +8,7 @@ use crate::engine::decision::fleet::{CHUNK, Kernel, Outcome};
 use crate::engine::decision::keep_or_replace::FirstYear;
 use crate::engine::decision::place::resolve;
 use crate::engine::decision::{Context, LeftOut};
+use crate::engine::flags::Flags;
 use crate::engine::working::Silent;
 use crate::study::{Desk, StudyError, Watch};
 
@@ -237,7 +238,13 @@ impl Ranking {
             capital: candidate.map(crate::engine::decision::Candidate::price_installed),
             energy_saved_kwh: first_year.map(|year| year.energy_saved_kwh(&mut Silent)),
             co2_saved_kg: first_year.map(|year| year.co2_saved_kg(&mut Silent)),
-            flags: outcome.flags.keys(),
+            flags: outcome
+                .flags
+                .with_if(
+                    candidate.is_some_and(|c| c.overloaded(&resolved.duty, usize::from(t), a)),
+                    Flags::OFFER_OVERLOADED,
+                )
+                .keys(),
         })
     }
 

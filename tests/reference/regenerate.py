@@ -12,6 +12,7 @@ from pathlib import Path
 
 import annual_energy
 import bdew
+import estimate
 import finance
 import grid
 import power_flow
@@ -24,9 +25,10 @@ from common import NOT_COMPARED
 HERE = Path(__file__).resolve().parent
 # In order: later scripts read the CSV files of the earlier ones.
 SCRIPTS = [standard_types, bdew, annual_energy, power_flow, finance, grid, thermal, tender_map,
-           tender_cloud]
+           tender_cloud, estimate]
 FILES = ["units.csv", "units.source.json", "profiles.csv", "profiles.source.json", "annual_energy.json",
-         "power_flow.json", "finance.json", "grid.json", "thermal.json", "tender_map.json", "tender_cloud.json"]
+         "power_flow.json", "finance.json", "grid.json", "thermal.json", "tender_map.json", "tender_cloud.json",
+         "estimate.json"]
 TOLERANCE = 1e-9
 SHOWN = 20
 

@@ -99,13 +99,21 @@ impl Candidate {
         t >= self.lead_time_years
     }
 
+    /// Whether the peak of a year after `t` is above its rating.
+    pub fn overloaded(&self, duty: &Duty, t: usize, a: &Assumptions) -> bool {
+        Self::highest_peak(duty, t, a) > self.losses.rated_kva * (1.0 + 1e-12)
+    }
+
+    /// Highest peak of the years after `t`: the load grows or shrinks steadily, so that of the last or first.
+    fn highest_peak(duty: &Duty, t: usize, a: &Assumptions) -> f64 {
+        let k = if duty.load_growth_pu > 0.0 { a.years } else { t + 1 };
+        duty.peak_kva * growth(duty.load_growth_pu, k, a.load_growth_years)
+    }
+
     /// Whether it carries the peak of every year after `t` within the loading limit.
     pub fn carries(&self, duty: &Duty, t: usize, a: &Assumptions) -> bool {
         let Some(limit) = a.loading_limit_pu else { return true };
-        // The load grows or shrinks steadily: its highest peak is that of the last or of the first year.
-        let k = if duty.load_growth_pu > 0.0 { a.years } else { t + 1 };
-        let peak = duty.peak_kva * growth(duty.load_growth_pu, k, a.load_growth_years);
-        peak <= limit * self.losses.rated_kva * (1.0 + 1e-12)
+        Self::highest_peak(duty, t, a) <= limit * self.losses.rated_kva * (1.0 + 1e-12)
     }
 }
 

@@ -11,6 +11,8 @@ const fn stated(name: &'static str, symbol: &'static str, unit: &'static str) ->
 pub const RATING: Formula = stated("rated power", "S_r", "kVA");
 /// Power factor of the load.
 pub const POWER_FACTOR: Formula = stated("power factor of the load", "cosφ", "pu");
+/// Load loss at the rating.
+pub const LOAD_LOSS: Formula = stated("load loss at the rating", "Pk", "W");
 /// Peak load of year 1.
 pub const PEAK: Formula = stated("peak load of year 1", "S_1", "kVA");
 /// Peak load of year 1 over the rating.

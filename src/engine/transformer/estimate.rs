@@ -1,0 +1,347 @@
+//! A loss that a nameplate leaves blank, estimated from transformers of which it is known: least squares of ln P on
+//! ln S_r, with vintage, winding metal, insulation and phases as further terms where there is enough data.
+//!
+//! The estimate is the geometric mean that the fit gives (half of such units lie below it); its interval is the
+//! prediction interval of one more unit (Student t), not that of the mean. The rules stand in the methods.
+
+mod least_squares;
+
+use statrs::distribution::{ContinuousCDF, StudentsT};
+
+use crate::engine::columns::{Insulation, WindingMetal};
+use crate::engine::working::{Formula, Recorder};
+use least_squares::{Dependent, LeastSquares, Solution};
+
+/// Known units asked for each term of the regression, the rating included.
+pub const UNITS_PER_TERM: usize = 5;
+/// Share of like units that the interval is meant to hold.
+pub const CONFIDENCE: f64 = 0.95;
+/// Residual standard deviations beyond which a known loss is set aside as misread.
+pub const SET_ASIDE: f64 = 4.0;
+/// A residual of ln P that is never set aside, however well the others agree.
+const NO_RESIDUAL: f64 = 1e-6;
+/// Ratings up to this many times beyond the known ones are estimated.
+pub const BEYOND: f64 = 2.0;
+
+/// What a transformer's losses go with.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Build {
+    /// Rated power.
+    pub rated_kva: f64,
+    /// Year of manufacture.
+    pub year_made: Option<f64>,
+    /// Winding metal; blank counts as copper.
+    pub winding_metal: Option<WindingMetal>,
+    /// Insulation; blank counts as liquid.
+    pub insulation: Option<Insulation>,
+    /// Number of phases; blank counts as three.
+    pub phases: Option<i64>,
+}
+
+/// A term of the regression beside its constant.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+enum Term {
+    Rating,
+    Vintage,
+    Aluminium,
+    Mixed,
+    Dry,
+    SinglePhase,
+}
+
+/// The terms beside the rating, in the order in which they are taken in.
+const FURTHER: [Term; 5] =
+    [Term::Vintage, Term::Aluminium, Term::Mixed, Term::Dry, Term::SinglePhase];
+/// A constant, every term, and the observed value.
+const WIDEST: usize = FURTHER.len() + 3;
+
+impl Term {
+    /// The value of the term for a transformer. Vintage counts in decades from 2000.
+    fn of(self, build: &Build) -> f64 {
+        let is = |yes: bool| f64::from(u8::from(yes));
+        match self {
+            Self::Rating => build.rated_kva.ln(),
+            Self::Vintage => build.year_made.map_or(0.0, |year| (year - 2000.0) / 10.0),
+            Self::Aluminium => is(build.winding_metal == Some(WindingMetal::Aluminium)),
+            Self::Mixed => is(build.winding_metal == Some(WindingMetal::Mixed)),
+            Self::Dry => is(build.insulation == Some(Insulation::Dry)),
+            Self::SinglePhase => is(build.phases == Some(1)),
+        }
+    }
+
+    /// The term in trade words.
+    const fn word(self) -> &'static str {
+        match self {
+            Self::Rating => "rating",
+            Self::Vintage => "year made",
+            Self::Aluminium => "aluminium windings",
+            Self::Mixed => "mixed windings",
+            Self::Dry => "dry-type",
+            Self::SinglePhase => "single phase",
+        }
+    }
+}
+
+/// Why a loss cannot be estimated.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Impossible {
+    /// Fewer than [`UNITS_PER_TERM`] units have it known.
+    TooFew,
+    /// All of these have the same rating.
+    OneRating,
+    /// The rating lies too far from theirs.
+    BeyondRatings,
+}
+
+/// A regression of one loss.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Regression {
+    terms: Vec<Term>,
+    solution: Solution,
+    /// Standard deviation of a residual of ln P, s.
+    deviation: f64,
+    /// Quantile of Student's t for the interval.
+    quantile: f64,
+    least_kva: f64,
+    greatest_kva: f64,
+    /// Units that it rests on.
+    pub units: usize,
+    /// Units whose loss is known but was set aside as misread.
+    pub set_aside: usize,
+}
+
+impl Regression {
+    /// The terms beside the constant, in trade words.
+    pub fn terms(&self) -> Vec<&'static str> {
+        self.terms.iter().map(|term| term.word()).collect()
+    }
+
+    /// Exponent of the rating: the loss goes with S_r to this power.
+    pub fn exponent(&self) -> f64 {
+        self.solution.coefficients.get(1).copied().unwrap_or_default()
+    }
+
+    /// Least squares over known units; with `dated`, those of known year, and vintage as a term.
+    fn fit<I>(known: &I, dated: bool) -> Result<Self, Impossible>
+    where
+        I: Iterator<Item = (Build, f64)> + Clone,
+    {
+        let known = known.clone().filter(|(build, loss)| {
+            *loss > 0.0 && build.rated_kva > 0.0 && (!dated || build.year_made.is_some())
+        });
+        let (mut units, mut with) = (0, [0; FURTHER.len()]);
+        for (build, _) in known.clone() {
+            units += 1;
+            for (count, term) in with.iter_mut().zip(FURTHER) {
+                *count += usize::from(term.of(&build) != 0.0);
+            }
+        }
+        let mut terms = vec![Term::Rating];
+        for (term, with) in FURTHER.into_iter().zip(with) {
+            let enough = match term {
+                Term::Vintage => dated,
+                _ => with >= UNITS_PER_TERM && units - with >= UNITS_PER_TERM,
+            };
+            if enough && units >= UNITS_PER_TERM * (terms.len() + 1) {
+                terms.push(term);
+            }
+        }
+        let first = Self::over(&known, terms.clone(), 0)?;
+        let apart = |(build, loss): &(Build, f64)| {
+            let residual = loss.ln() - first.solution.at(first.row(build, &mut [0.0; WIDEST]));
+            residual.abs() <= (SET_ASIDE * first.deviation).max(NO_RESIDUAL)
+        };
+        let kept = known.clone().filter(apart).count();
+        if kept == units {
+            return Ok(first);
+        }
+        Self::over(&known.filter(apart), terms, units - kept)
+    }
+
+    /// Least squares with given terms, less those that say nothing new.
+    fn over(
+        known: &(impl Iterator<Item = (Build, f64)> + Clone),
+        mut terms: Vec<Term>,
+        set_aside: usize,
+    ) -> Result<Self, Impossible> {
+        loop {
+            let width = terms.len() + 1;
+            let mut problem = LeastSquares::new(width);
+            let (mut least_kva, mut greatest_kva) = (f64::INFINITY, 0.0_f64);
+            for (build, loss) in known.clone() {
+                let mut row = [0.0; WIDEST];
+                fill(&terms, &build, &mut row);
+                row[width] = loss.ln();
+                problem.add(&mut row[..=width]);
+                least_kva = least_kva.min(build.rated_kva);
+                greatest_kva = greatest_kva.max(build.rated_kva);
+            }
+            let units = problem.rows();
+            if units < UNITS_PER_TERM {
+                return Err(Impossible::TooFew);
+            }
+            match problem.solve() {
+                Err(Dependent(0 | 1)) => return Err(Impossible::OneRating),
+                Err(Dependent(column)) => {
+                    terms.remove(column - 1);
+                }
+                Ok(solution) => {
+                    #[expect(clippy::cast_precision_loss, reason = "units of a fleet")]
+                    let freedom = (units - width) as f64;
+                    let quantile = StudentsT::new(0.0, 1.0, freedom)
+                        .map_or(f64::INFINITY, |t| t.inverse_cdf(0.5 + 0.5 * CONFIDENCE));
+                    let deviation = (solution.residual_square / freedom).sqrt();
+                    return Ok(Self {
+                        terms,
+                        solution,
+                        deviation,
+                        quantile,
+                        least_kva,
+                        greatest_kva,
+                        units,
+                        set_aside,
+                    });
+                }
+            }
+        }
+    }
+
+    /// The row of terms of a transformer, the constant first.
+    fn row<'a>(&self, build: &Build, space: &'a mut [f64; WIDEST]) -> &'a [f64] {
+        fill(&self.terms, build, space);
+        &space[..=self.terms.len()]
+    }
+
+    fn coefficient(&self, term: Term) -> f64 {
+        let at = self.terms.iter().position(|t| *t == term);
+        at.map_or(0.0, |at| self.solution.coefficients[at + 1])
+    }
+}
+
+/// The constant and the terms of a transformer.
+fn fill(terms: &[Term], build: &Build, row: &mut [f64; WIDEST]) {
+    row[0] = 1.0;
+    for (x, term) in row[1..].iter_mut().zip(terms) {
+        *x = term.of(build);
+    }
+}
+
+const ESTIMATE: Formula = Formula {
+    name: "loss estimated from the fleet's known units",
+    symbol: "P_est",
+    formula: "exp(b0 + b1·ln(S_r) + b2·(year − 2000)/10 + b3·aluminium + b4·mixed + b5·dry + b6·single_phase)",
+    unit: "W",
+    source: "least squares of ln P; geometric mean; methods, section 1",
+};
+const LOW: Formula = Formula {
+    name: "least loss of the 95 % prediction interval",
+    symbol: "P_low",
+    formula: "P_est·exp(−t·s·√(1 + h))",
+    unit: "W",
+    source: "prediction interval of least squares (Student t)",
+};
+const HIGH: Formula = Formula {
+    name: "greatest loss of the 95 % prediction interval",
+    symbol: "P_high",
+    formula: "P_est·exp(t·s·√(1 + h))",
+    unit: "W",
+    source: "prediction interval of least squares (Student t)",
+};
+
+/// An estimated loss at the rating.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Estimated<'a> {
+    /// The estimate, a geometric mean.
+    pub loss_w: f64,
+    /// Lower end of its interval.
+    pub low_w: f64,
+    /// Upper end of its interval.
+    pub high_w: f64,
+    /// What it rests on.
+    pub regression: &'a Regression,
+}
+
+/// How one loss goes with the build of a transformer, learnt from those of which it is known.
+#[derive(Clone, Debug, PartialEq)]
+pub struct LossModel {
+    /// Which loss, in trade words.
+    loss: &'static str,
+    /// From units of known year of manufacture, with vintage as a term.
+    dated: Result<Regression, Impossible>,
+    /// From all units, without vintage.
+    any: Result<Regression, Impossible>,
+}
+
+impl LossModel {
+    /// Learns from transformers of which the loss at the rating (W) is known; losses of 0 W are passed over.
+    pub fn learn<I>(loss: &'static str, known: &I) -> Self
+    where
+        I: Iterator<Item = (Build, f64)> + Clone,
+    {
+        Self { loss, dated: Regression::fit(known, true), any: Regression::fit(known, false) }
+    }
+
+    /// The regression for a transformer: with vintage where its year is known and the units of known year suffice
+    /// for that term.
+    ///
+    /// # Errors
+    /// Why there is none.
+    pub fn regression(&self, build: &Build) -> Result<&Regression, Impossible> {
+        let dated = self.dated.as_ref().ok().filter(|r| r.terms.contains(&Term::Vintage));
+        let regression = match dated.filter(|_| build.year_made.is_some()) {
+            Some(dated) => dated,
+            None => self.any.as_ref().map_err(|why| *why)?,
+        };
+        let near = regression.least_kva / BEYOND..=regression.greatest_kva * BEYOND;
+        if near.contains(&build.rated_kva) {
+            Ok(regression)
+        } else {
+            Err(Impossible::BeyondRatings)
+        }
+    }
+
+    /// Estimates the loss of a transformer.
+    ///
+    /// # Errors
+    /// Why it cannot be estimated.
+    pub fn estimate<R: Recorder>(
+        &self,
+        w: &mut R,
+        build: &Build,
+    ) -> Result<Estimated<'_>, Impossible> {
+        let regression = self.regression(build)?;
+        let mut space = [0.0; WIDEST];
+        let row = regression.row(build, &mut space);
+        let loss_w = regression.solution.at(row).exp();
+        let inputs = [
+            ("b0", regression.solution.coefficients[0]),
+            ("b1", regression.coefficient(Term::Rating)),
+            ("b2", regression.coefficient(Term::Vintage)),
+            ("b3", regression.coefficient(Term::Aluminium)),
+            ("b4", regression.coefficient(Term::Mixed)),
+            ("b5", regression.coefficient(Term::Dry)),
+            ("b6", regression.coefficient(Term::SinglePhase)),
+            ("S_r", build.rated_kva),
+            ("year", build.year_made.unwrap_or(2000.0)),
+            ("aluminium", Term::Aluminium.of(build)),
+            ("mixed", Term::Mixed.of(build)),
+            ("dry", Term::Dry.of(build)),
+            ("single_phase", Term::SinglePhase.of(build)),
+        ];
+        let about = || format!("{}, {} units", self.loss, regression.units);
+        w.step(&ESTIMATE, &inputs, loss_w);
+        w.about(&about);
+        let h = regression.solution.leverage(row);
+        let (t, s) = (regression.quantile, regression.deviation);
+        let inputs = [("P_est", loss_w), ("t", t), ("s", s), ("h", h)];
+        let half = t * s * (1.0 + h).sqrt();
+        let low_w = w.step(&LOW, &inputs, loss_w * (-half).exp());
+        w.about(&about);
+        let high_w = w.step(&HIGH, &inputs, loss_w * half.exp());
+        w.about(&about);
+        Ok(Estimated { loss_w, low_w, high_w, regression })
+    }
+}
+
+#[cfg(test)]
+mod tests;
