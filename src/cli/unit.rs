@@ -7,9 +7,10 @@ use super::factors::working;
 use super::print::{Printer, TextColumn};
 use crate::engine::columns;
 use crate::study::Desk;
+use crate::study::explain::{Explained as _, Opening};
 use crate::study::figures::group;
 use crate::study::losses::flag_meaning;
-use crate::study::unit::{Dossier, Opening, Question};
+use crate::study::unit::{Dossier, Question};
 
 pub(super) fn unit(args: &Args, options: &Unit, printer: &mut Printer) -> Result<Exit, Failure> {
     let Opened { book, .. } = book::open_to_read(args)?;
@@ -19,12 +20,13 @@ pub(super) fn unit(args: &Args, options: &Unit, printer: &mut Printer) -> Result
     let question = Question::new(&desk, &context, &unit)?;
     let mut dossier = question.dossier()?;
     let which = match options.working.as_deref() {
-        None => Opening::Short,
+        // Present values are taken down to the years, which is long: only where asked for.
+        None => Opening::Without("keep_or_replace"),
         Some("") => Opening::All,
         Some(figure) => Opening::One(figure),
     };
     if printer.format == Format::Json || options.working.is_some() {
-        dossier.working = question.workings(&dossier, which)?;
+        dossier.working = question.workings(which)?;
     }
     match printer.format {
         Format::Json => printer.json(&dossier)?,

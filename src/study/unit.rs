@@ -3,8 +3,6 @@
 
 mod workings;
 
-pub use workings::Opening;
-
 use serde::Serialize;
 use serde_json::{Map, Value};
 
@@ -20,7 +18,7 @@ use crate::engine::transformer::circuit::{
 use crate::engine::transformer::losses::Losses;
 use crate::engine::transformer::{efficiency, regulation};
 use crate::engine::working::{Recorder, Silent};
-use crate::study::explain::StepRow;
+use crate::study::explain::FigureWorking;
 use crate::study::losses::{LossesRow, of_unit};
 use crate::study::{Desk, StudyError};
 
@@ -184,15 +182,6 @@ pub struct Dossier<'a> {
     pub flags: Vec<&'static str>,
     /// How its figures come about, as far as they are opened.
     pub working: Vec<FigureWorking>,
-}
-
-/// How a figure of a dossier comes about; the last step is the figure.
-#[derive(Clone, Debug, PartialEq, Serialize)]
-pub struct FigureWorking {
-    /// Its place in the dossier, as `keep_or_replace.keep_pv` or `load_points.2.efficiency_pct`.
-    pub figure: String,
-    /// The steps.
-    pub steps: Vec<StepRow>,
 }
 
 /// Loads at which efficiency and regulation are shown (pu).

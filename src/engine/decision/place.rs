@@ -3,7 +3,7 @@
 //! [`UnitFacts`] are the bare numbers of a unit, NaN where unknown, the same whether one unit was read or a
 //! million columns; [`resolve`] is the one place where blanks fall to profile, basis and default.
 
-mod stated;
+pub mod stated;
 
 use crate::engine::columns::{Unit, YesNo};
 use crate::engine::decision::fit::Candidate;
