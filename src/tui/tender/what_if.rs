@@ -124,8 +124,9 @@ impl State {
             Kind::Money(..) => Value::Money(Money::parse(&format!("{next:.3}"))?),
             _ => Value::Real(next),
         };
-        let value = line.column.check(value)?;
-        self.set(tender, sheet, line, [lot, bid], value);
+        let name = line.column.name;
+        let value = line.column.check(value).map_err(|why| format!("{name} {why}."))?;
+        self.set(tender, sheet, line, [lot, bid], &value);
         Ok(())
     }
 
@@ -135,7 +136,7 @@ impl State {
         sheet: &TenderSheet,
         line: &Line,
         [lot, bid]: [&str; 2],
-        value: Value,
+        value: &Value,
     ) {
         if self.draft.as_ref().is_none_or(|(n, _)| *n != tender) {
             self.draft = Some((tender, sheet.clone()));
@@ -184,7 +185,7 @@ impl State {
         let Some((lot, bid)) = find(sheet, at[0], at[1]) else { return };
         let values = if line.of == Of::Lot { lot.values() } else { bid.values() };
         if let Some(value) = values.into_iter().nth(line.at) {
-            self.set(tender, sheet, line, at, value);
+            self.set(tender, sheet, line, at, &value);
         }
     }
 
