@@ -15,6 +15,7 @@ mod journal;
 mod losses;
 mod print;
 mod rank;
+mod report;
 mod settle;
 mod tender;
 mod timings;
@@ -83,6 +84,7 @@ fn dispatch(args: &Args, printer: &mut Printer) -> Result<Exit, Failure> {
         Some(Command::Tender(options)) => tender::tender(args, options, printer),
         Some(Command::Unit(options)) => unit::unit(args, options, printer),
         Some(Command::Settle(options)) => settle::settle(args, options, printer),
+        Some(Command::Report(options)) => report::report(args, options, printer),
         Some(Command::Work(options)) => work::work(options, printer),
         Some(Command::Journal(options)) => journal::journal(args, options, printer),
         Some(Command::Columns { what }) => columns::columns(*what, printer),

@@ -17,6 +17,7 @@ pub mod rules;
 pub mod series;
 pub mod sheets;
 mod source;
+pub mod target;
 mod workbook;
 
 pub use layout::{Fault, Layout, holds_numbers};

@@ -179,7 +179,6 @@ fn risk_says_what_it_lacks() {
         assert!(out.is_empty(), "{out}");
         (code, error)
     };
-    assert_eq!(refused(&["--draws", "5"]).0, Some(2), "only with --risk");
     let (code, error) = refused(&["--risk", "--draws", "0"]);
     assert_eq!(code, Some(3));
     assert!(error.contains("draws 0: must lie between 1 and 10000000"), "{error}");
@@ -193,4 +192,107 @@ fn risk_says_what_it_lacks() {
     let apart = program.done(&together);
     let pair = ["--correlate", "discount_rate_pct,energy_escalation_pct,0.9"];
     assert_ne!(program.done(&[&together[..], &pair].concat()), apart);
+}
+
+#[test]
+fn a_settlement_reads_as_a_letter() {
+    let program = demo();
+    let shown = program.done(&["settle", TENDER]);
+    let flat = shown.split_whitespace().collect::<Vec<_>>().join(" ");
+    for said in [
+        "Settlement of lot L1, bid O1 of Oskavend",
+        "8 of 60 units were measured. Guaranteed for one unit of 400 kVA: no-load loss 330 W, load loss 2 860 W at 75 °C.",
+        "A 15 218.65 (no-load loss), B 2 840.61 (load loss at 400 kVA)",
+        "0427-07 2027-05-19 326 2 467 22.5 2 842.3 −4.0 −17.7 0.00",
+        "Penalty: 1 622.79 EUR.",
+        "- 0427-04 may be rejected: no-load loss 16.97 % above, 15 % allowed.",
+        "! 0427-07, 0427-08: split_unknown:",
+        "a loss below its guarantee earns no credit",
+        "Cautions",
+    ] {
+        assert!(flat.contains(said), "{said}\n{shown}");
+    }
+    let one = program.done(&["settle", TENDER, "--serial", "0427-08"]);
+    assert_eq!(lines(&one, "Unit ").len(), 1, "{one}");
+    assert!(
+        one.contains("penalty = (A·max(0, ΔP0) + B·max(0, ΔPk) + A_aux·max(0, ΔPa))/1000"),
+        "{one}"
+    );
+    let json = program.json(&["settle", TENDER, "--format", "json"]);
+    let lot = &json["lots"][0];
+    assert_eq!(lot["guaranteed"]["load_loss_w"], 2860.0);
+    assert_eq!(lot["units"][3]["exceeds"][0]["loss"], "no-load loss");
+    let (code, _, error) = text(&program.run(&["settle", TENDER, "--serial", "0427-9"]));
+    assert_eq!(code, Some(2));
+    assert!(error.contains("did you mean 0427-0"), "{error}");
+}
+
+#[test]
+fn one_bid_is_answered_by_its_working() {
+    let program = demo();
+    let shown = program.done(&["tender", TENDER, "--lot", "L2", "--bid", "M1"]);
+    assert_eq!(lines(&shown, "Lot L2, bid ").len(), 1, "{shown}");
+    // 6 370 000 SEK at 0.0885, and 110 300 W from 85 to 75 °C.
+    assert!(shown.contains("= 6370000·0.0885"), "{shown}");
+    assert!(shown.contains("107553.6"), "{shown}");
+    let (code, out, error) =
+        text(&program.run(&["tender", TENDER, "--bid", "M2", "--format", "csv"]));
+    assert_eq!((code, out.as_str()), (Some(2), ""));
+    assert!(error.contains("bid M2 is not in tender ol-2027-1"), "{error}");
+}
+
+#[test]
+fn a_report_is_written_whole_and_the_same_again() {
+    let program = demo();
+    let file = program.home().join("report.md");
+    let name = file.to_string_lossy().into_owned();
+    let out = program.done(&["report", "tender", TENDER, &name]);
+    assert_eq!(out, "", "the file is the result");
+    let report = std::fs::read_to_string(&file).expect("is written");
+    assert_eq!(program.done(&["report", "tender", TENDER, "-"]), report);
+    for said in [
+        "# Tender ol-2027-1: bids compared by owning cost\n",
+        "\n### How the factors come about\n\n```text\n",
+        "\n| 1 | O1-ALT | Oskavend | 13 980 | 190 | 3 120 | 8 664 | 0 | 25 954 | 0 | 27 259 | 1 557 221 |\n",
+        "\n| M1 | Morruskel | 6 370 000 SEK | 110 300 | 85 | 25 000 | 10 400.0 | 107 553.6 | 1 500.0 | – |\n",
+        "\n| K1 | Kestavane | 541 000 EUR | 121 400 in total | 75 |",
+        "\n- Out: P1 misses max_no_load_loss_w (410 W, at most 387 W).\n",
+        "\nNear tie, within 1 % of the least owning cost. By owning cost: O1-ALT, O1.",
+        "\n| O1-ALT | 43.8 |\n",
+        "\n| discount rate | % | 6.000 | 1.443 | J1 | 6.972 | O1 |\n",
+        "\n10 000 draws of the factors from the ranges of basis plan-2027, seed 1:",
+        "\n## Settlement of lot L1, bid O1 of Oskavend\n",
+        "\nPenalty: 1 622.79 EUR.\n",
+        "\n## Cautions\n",
+    ] {
+        assert!(report.contains(said), "{said}\n{report}");
+    }
+    let seeded = program.done(&["report", "tender", TENDER, "-", "--seed", "2", "--lot", "L1"]);
+    assert!(seeded.contains("seed 2") && !seeded.contains("## Lot L2"), "{seeded}");
+    for (file, code, why) in [
+        ("report.html", 2, "name a file that ends in .md"),
+        ("no/such/folder/report.md", 1, "report.md: "),
+    ] {
+        let (exit, _, error) = text(&program.run(&["report", "tender", TENDER, file]));
+        assert_eq!(exit, Some(code), "{error}");
+        assert!(error.contains(why), "{error}");
+    }
+}
+
+/// What a bidder writes into its names never becomes markup, nor steers the terminal.
+#[test]
+fn hostile_names_stay_text() {
+    let program = demo();
+    let bids = "tender,lot,bid,bidder,price,no_load_loss_w,load_loss_w\n\
+                ol-2027-1,L1,X|1,\"<img src=x onerror=alert(1)> | [pay](https://example.invalid) **now**\",1,1,1\n\
+                ol-2027-1,L1,`Y`,=cmd() \u{202e}dnE,2,1,1\n";
+    program.import("bids", &program.write("bids.csv", bids), &[]);
+    let report = program.done(&["report", "tender", TENDER, "-"]);
+    let said = "| X&#124;1 | &lt;img src=x onerror=alert(1)&gt; &#124; \\[pay\\](https\\://example.invalid) \\*\\*now\\*\\* |";
+    assert!(report.contains(said), "{report}");
+    assert!(report.contains("\\`Y\\`"), "{report}");
+    assert!(!report.contains("<img") && !report.contains('\u{202e}'), "{report}");
+    let shown = program.done(&["tender", TENDER]);
+    assert!(shown.contains("=cmd() ␦dnE"), "{shown}");
+    assert!(!shown.contains('\u{202e}'), "{shown}");
 }

@@ -92,6 +92,8 @@ pub enum Command {
     Tender(Tender),
     /// Measured against guaranteed losses of a tender: excess, penalty, beyond tolerance or not
     Settle(Settle),
+    /// A report to hand on, as Markdown
+    Report(Report),
     /// One unit's dossier
     Unit(Unit),
     /// One trade calculation with its working shown; without a name list them
@@ -245,26 +247,59 @@ pub struct Tender {
     /// Show how each figure comes about
     #[arg(long)]
     pub working: bool,
-    /// How its risk is drawn.
+    /// Show the working of this bid only
+    #[arg(long, value_name = "BID")]
+    pub bid: Option<String>,
+    /// Say how sure the winner is under the ranges of the basis
+    #[arg(long)]
+    pub risk: bool,
+    /// How that is drawn.
     #[command(flatten)]
-    pub risk: Risk,
+    pub drawn: Drawn,
 }
 
-/// How sure the winner is.
+/// How a simulation is drawn. Any of these asks for one.
 #[derive(Clone, Debug, Default, clap::Args)]
-pub struct Risk {
-    /// Say how sure the winner is under the ranges of the basis
-    #[arg(long = "risk", id = "risk")]
-    pub wanted: bool,
-    /// Number of draws
-    #[arg(long, value_name = "N", default_value_t = 10_000, requires = "risk")]
-    pub draws: usize,
-    /// Seed of the draws; the same seed gives the same figures
-    #[arg(long, value_name = "S", default_value_t = 1, requires = "risk")]
-    pub seed: u64,
+pub struct Drawn {
+    /// Number of draws [default: 10000]
+    #[arg(long, value_name = "N")]
+    pub draws: Option<usize>,
+    /// Seed of the draws; the same seed gives the same figures [default: 1]
+    #[arg(long, value_name = "S")]
+    pub seed: Option<u64>,
     /// Two inputs that move together, with their rank correlation from -1 to 1
-    #[arg(long, value_name = "INPUT,INPUT,RHO", requires = "risk")]
+    #[arg(long, value_name = "INPUT,INPUT,RHO")]
     pub correlate: Vec<String>,
+}
+
+/// Options of `report`.
+#[derive(Clone, Debug, clap::Args)]
+pub struct Report {
+    /// What is reported
+    #[command(subcommand)]
+    pub what: Reported,
+}
+
+/// What can be reported.
+#[derive(Clone, Debug, Subcommand)]
+pub enum Reported {
+    /// The comparison of the bids of a tender, with factors, winner map, risk and settlement
+    Tender(ReportTender),
+}
+
+/// Options of `report tender`.
+#[derive(Clone, Debug, clap::Args)]
+pub struct ReportTender {
+    /// The tender
+    pub tender: String,
+    /// The Markdown file, ending in .md; - writes to standard output
+    pub file: PathBuf,
+    /// Only this lot
+    #[arg(long, value_name = "LOT")]
+    pub lot: Option<String>,
+    /// How the risk is drawn, where the basis names ranges.
+    #[command(flatten)]
+    pub drawn: Drawn,
 }
 
 /// Options of `settle`.
@@ -278,6 +313,9 @@ pub struct Settle {
     /// Show how each penalty comes about
     #[arg(long)]
     pub working: bool,
+    /// Show the working of this unit only
+    #[arg(long, value_name = "SERIAL")]
+    pub serial: Option<String>,
 }
 
 /// Options of `unit`.

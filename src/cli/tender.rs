@@ -3,12 +3,13 @@
 use serde::Serialize;
 use serde_json::{Map, Value};
 
-use super::args::{Args, Format, Risk, Tender};
+use super::args::{Args, Drawn, Format, Tender};
 use super::book::{self, Opened};
 use super::exit::{Exit, Failure};
 use super::factors::working as write_working;
 use super::print::Printer;
 use crate::engine::decision::uncertainty::RankCorrelation;
+use crate::study::StudyError;
 use crate::study::explain::StepRow;
 use crate::study::tender::{BidResult, Case, Draws, LotResult, TenderResult, letter, working};
 
@@ -73,13 +74,22 @@ pub(super) fn tender(
     let Opened { book, .. } = book::open_to_read(args)?;
     let case = Case::read(&book, &options.tender, args.basis.as_deref())?;
     let mut result = case.evaluate(options.lot.as_deref())?;
-    if options.risk.wanted {
-        case.add_risk(&mut result, &draws(&options.risk)?)?;
+    if let Some(only) = &options.bid {
+        let mut bids = result.lots.iter().flat_map(|lot| &lot.bids).map(|bid| bid.bid.as_str());
+        if !bids.clone().any(|bid| bid == only) {
+            let place = format!("tender {}", result.tender);
+            return Err(StudyError::unknown("bid", only, place, &mut bids).into());
+        }
+    }
+    let asked = draws(&options.drawn)?;
+    let risk = options.risk || asked != Draws::default();
+    if risk {
+        case.add_risk(&mut result, &asked)?;
     }
     match printer.format {
         Format::Json => printer.json(&result)?,
         Format::Csv => {
-            let keys = if options.risk.wanted { [KEYS, RISK_KEYS].concat() } else { KEYS.to_vec() };
+            let keys = if risk { [KEYS, RISK_KEYS].concat() } else { KEYS.to_vec() };
             let bids =
                 result.lots.iter().flat_map(|lot| lot.bids.iter().map(move |bid| (lot, bid)));
             let lines =
@@ -88,8 +98,8 @@ pub(super) fn tender(
         }
         Format::Text => {
             printer.letter(&letter::result(&case, &result))?;
-            if options.working {
-                write_workings(printer, &case, &result)?;
+            if options.working || options.bid.is_some() {
+                write_workings(printer, &case, &result, options.bid.as_deref())?;
             }
         }
     }
@@ -115,10 +125,12 @@ fn write_workings(
     printer: &mut Printer,
     case: &Case,
     result: &TenderResult,
+    only: Option<&str>,
 ) -> Result<(), Failure> {
     let basis = case.basis();
+    let wanted = |bid: &&BidResult| only.is_none_or(|only| only == bid.bid);
     for lot in &result.lots {
-        for bid in &lot.bids {
+        for bid in lot.bids.iter().filter(wanted) {
             let w = working(&case.sheet, basis.as_ref(), &lot.lot, &bid.bid)?;
             printer.line("")?;
             printer.line(format!("Lot {}, bid {}", lot.lot, bid.bid))?;
@@ -132,11 +144,12 @@ fn write_workings(
 }
 
 /// How the draws were asked for.
-pub(super) fn draws(options: &Risk) -> Result<Draws, Failure> {
+pub(super) fn draws(options: &Drawn) -> Result<Draws, Failure> {
     let correlations = options.correlate.iter().map(|text| correlation(text));
+    let usual = Draws::default();
     Ok(Draws {
-        draws: options.draws,
-        seed: options.seed,
+        draws: options.draws.unwrap_or(usual.draws),
+        seed: options.seed.unwrap_or(usual.seed),
         correlations: correlations.collect::<Result<_, _>>()?,
     })
 }

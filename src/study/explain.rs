@@ -67,7 +67,7 @@ impl StepRow {
             }
             lines.push(format!("{indent}{}", row.name));
             lines.push(format!("{indent}  {}", row.formula));
-            // A sum over years has no numbers of its own to put in.
+            // What has no numbers of its own to put in is not said twice.
             if !row.formula.ends_with(&row.substituted) {
                 lines.push(format!("{indent}  = {}", row.substituted));
             }

@@ -110,6 +110,16 @@ pub fn group(value: f64, places: usize) -> String {
     out
 }
 
+/// A number for people with as many places as it needs, three at most.
+pub fn short(value: f64) -> String {
+    let text = group(value, 3);
+    if text.contains('.') {
+        text.trim_end_matches('0').trim_end_matches('.').to_owned()
+    } else {
+        text
+    }
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;
@@ -120,6 +130,7 @@ mod tests {
         assert_eq!(group(-999.5, 0), "−1 000");
         assert_eq!(group(-0.4, 0), "0");
         assert_eq!(group(0.0, 2), "0.00");
+        assert_eq!([short(25_000.0), short(0.4), short(1.23456)], ["25 000", "0.4", "1.235"]);
     }
 
     #[test]

@@ -290,7 +290,8 @@ impl<'a> Judged<'a> {
         let bids: Vec<Assessed> = bids.collect::<Result<_, _>>()?;
         let standings: Vec<Standing> = bids.iter().map(Assessed::standing).collect();
         let ranking = rank(&standings, terms.near_tie_pct);
-        let flags = flags.with_if(factors_look_per_watt(&bids), Flags::FACTOR_SCALE);
+        let flags = flags
+            .with_if(factors_look_per_watt(bids.iter().map(|bid| &bid.cost)), Flags::FACTOR_SCALE);
         let contest = Contest::new(&bids, &ranking, &terms);
         Ok(Self { terms, flags, bids, ranking, contest })
     }
@@ -344,12 +345,21 @@ fn evaluate_lot(
 }
 
 /// Whether every bid's capitalised losses are under 1 % of its price.
-fn factors_look_per_watt(bids: &[Assessed]) -> bool {
-    let small = |bid: &Assessed| {
-        let cost = &bid.cost;
-        cost.no_load_cost + cost.load_cost + cost.auxiliary_cost < 0.01 * cost.price
-    };
-    !bids.is_empty() && bids.iter().all(small)
+fn factors_look_per_watt<'a>(costs: impl IntoIterator<Item = &'a OwningCost>) -> bool {
+    let mut costs = costs.into_iter().peekable();
+    costs.peek().is_some()
+        && costs.all(|c| c.no_load_cost + c.load_cost + c.auxiliary_cost < 0.01 * c.price)
+}
+
+/// Whether the factors of a lot look like money per W: where they do, it is said wherever the tender is shown.
+///
+/// # Errors
+/// A bid that cannot be brought to the lot's terms.
+pub(super) fn factor_scale(sheet: &TenderSheet, terms: &Terms) -> Result<bool, StudyError> {
+    let cost = |bid| Ok(bring(&mut Silent, terms, bid)?.owning_cost(&mut Silent));
+    let costs: Vec<OwningCost> =
+        bids_of(sheet, &terms.lot.lot).map(cost).collect::<Result<_, StudyError>>()?;
+    Ok(factors_look_per_watt(&costs))
 }
 
 /// The admitted bids as planes over the factors, in order of entry.

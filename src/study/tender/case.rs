@@ -8,6 +8,7 @@ use crate::engine::columns::TenderSheet;
 use crate::engine::decision::Context;
 use crate::engine::decision::tender::factors::Computed;
 use crate::engine::decision::uncertainty::RankCorrelation;
+use crate::study::settle::{SettleResult, settle};
 use crate::study::{Desk, StudyError};
 
 /// A tender and its basis.
@@ -27,6 +28,12 @@ pub struct Draws {
     pub seed: u64,
     /// Inputs that move together.
     pub correlations: Vec<RankCorrelation>,
+}
+
+impl Default for Draws {
+    fn default() -> Self {
+        Self { draws: 10_000, seed: 1, correlations: Vec::new() }
+    }
 }
 
 impl Case {
@@ -70,6 +77,11 @@ impl Case {
         self.basis.as_ref().map(|(desk, _)| desk.sheet.basis.name.as_str())
     }
 
+    /// Whether the basis says how far any input may lie.
+    pub fn has_ranges(&self) -> bool {
+        self.basis.as_ref().is_some_and(|(desk, _)| !desk.sheet.ranges.is_empty())
+    }
+
     /// Evaluates the bids of one lot, or of all.
     ///
     /// # Errors
@@ -84,6 +96,14 @@ impl Case {
     /// As [`evaluate`].
     pub fn factors(&self, lot: &str) -> Result<LotFactors, StudyError> {
         lot_factors(&self.sheet, self.basis().as_ref(), lot)
+    }
+
+    /// Settles the measured units of one lot, or of all.
+    ///
+    /// # Errors
+    /// As [`settle`].
+    pub fn settle(&self, lot: Option<&str>) -> Result<SettleResult, StudyError> {
+        settle(&self.sheet, self.basis().as_ref(), lot)
     }
 
     /// Says of each lot that has a ranked bid how sure its winner is.

@@ -3,11 +3,12 @@
 
 use serde::Serialize;
 
-use super::{BasisForFactors, factors, find_lot, terms};
+use super::{BasisForFactors, factor_scale, factors, find_lot, terms};
 use crate::engine::columns::{FactorMethod, Insulation, Lot, TenderSheet};
 use crate::engine::decision::tender::factors::{Computed, of_lot};
 use crate::engine::decision::tender::{Terms, legal};
 use crate::engine::economics::loss_factors::LossFactors;
+use crate::engine::flags::Flags;
 use crate::engine::law::Bound;
 use crate::engine::working::Silent;
 use crate::study::StudyError;
@@ -90,6 +91,7 @@ pub fn lot_factors(
     let lot = find_lot(sheet, lot)?;
     let (own, steps) = factors(sheet, basis, &lot.lot)?;
     let (terms, flags) = terms(&mut Silent, sheet, basis, lot)?;
+    let flags = flags.with_if(factor_scale(sheet, &terms)?, Flags::FACTOR_SCALE);
     let computed = Computed::by(lot);
     let used = basis.filter(|_| computed.any()).map(|basis| basis.assumptions);
     let keys = [

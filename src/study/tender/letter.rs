@@ -6,6 +6,7 @@
 mod bars;
 mod factors;
 mod lot;
+mod report;
 mod risk;
 
 use super::award::{BidderPackage, Package};
@@ -20,6 +21,7 @@ pub use factors::lot_factors;
 pub(super) use lot::{
     asks, changes, doubts, excluded, factor_scale, factors, map, near_tie, ranking, winner,
 };
+pub use report::report;
 pub(super) use risk::risk;
 
 /// The result of a tender for a terminal.
@@ -62,7 +64,7 @@ fn money(amount: f64) -> String {
 }
 
 /// A flag with its meaning.
-fn flag(key: &str) -> String {
+pub(in crate::study) fn flag(key: &str) -> String {
     format!("{key}: {}", flag_meaning(key).unwrap_or_default())
 }
 
@@ -105,4 +107,16 @@ pub(super) fn packages(letter: &mut Letter, result: &TenderResult) {
         ],
         std::iter::once(own).chain(awards.packages.iter().map(to_one)).collect(),
     );
+}
+
+/// What stays on every screen and in every report.
+const CAUTIONS: &str = "Screening economics, not switching or loading instructions. Work on energised or \
+    oil-filled plant, PCB handling, loading beyond nameplate and protection settings follow local codes, \
+    manufacturer instructions and licensed engineers. Legal tables are a screening aid: local law and licensed \
+    practice decide. Whether a penalty is due is for the contract to say.";
+
+/// The cautions, at the end of a letter.
+pub(in crate::study) fn cautions(letter: &mut Letter) {
+    letter.heading(2, "Cautions");
+    letter.text(CAUTIONS);
 }

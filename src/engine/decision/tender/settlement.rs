@@ -3,8 +3,9 @@
 //! Guaranteed losses are those of the bid on the lot's terms; measured load losses come to the lot's reference
 //! temperature first. Excess in W (below the guarantee: negative), penalties in the tender currency.
 
+use super::Terms;
 use super::bid::Comparable;
-use super::{Terms, tolerance};
+use super::tolerance::{self, Exceeded};
 use crate::engine::columns::{Bid, Measured, Tolerance, WindingMetal};
 use crate::engine::economics::loss_factors::LossFactors;
 use crate::engine::flags::Flags;
@@ -85,7 +86,7 @@ pub fn delivered<R: Recorder>(
     let mut flags = Flags::NONE;
     let load_loss_w = match (measured.test_temp_c, terms.lot.reference_temp_c) {
         (Some(test_c), Some(reference_c)) => {
-            flags = flags.with(Flags::SPLIT_UNKNOWN);
+            flags = flags.with_if(test_c != reference_c, Flags::SPLIT_UNKNOWN);
             let t0 = vanishing_temp_c(bid.winding_metal.unwrap_or(WindingMetal::Copper));
             let (test_w, stray) = (measured.load_loss_w, terms.stray_share_pu);
             load_loss_from_test(w, test_w, stray, t0, test_c, reference_c)
@@ -170,12 +171,13 @@ pub fn penalty<R: Recorder>(w: &mut R, factors: &LossFactors, excess: &Excess) -
     w.step(&PENALTY, &inputs, value)
 }
 
-/// Whether a unit is beyond the lot's tolerance, and whether it may be rejected for that: beyond the total of
+/// What of the lot's tolerance a unit exceeds, and whether it may be rejected for that: beyond the total of
 /// IEEE C57.12.00 the parties consult.
-pub fn beyond(terms: &Terms, guaranteed: &Comparable, excess: &Excess) -> (bool, bool) {
+pub fn beyond(terms: &Terms, guaranteed: &Comparable, excess: &Excess) -> (Vec<Exceeded>, bool) {
     let rule = terms.tolerance();
-    let beyond = tolerance::beyond(rule, &guaranteed.losses, excess.no_load_w, excess.load_w);
-    (beyond, beyond && rule != Tolerance::Ieee)
+    let found = tolerance::exceeded(rule, &guaranteed.losses, excess.no_load_w, excess.load_w);
+    let rejectable = !found.is_empty() && rule != Tolerance::Ieee;
+    (found, rejectable)
 }
 
 #[cfg(test)]

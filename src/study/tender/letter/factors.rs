@@ -1,11 +1,10 @@
 //! The factors of a lot as they go into the tender documents.
 
 use super::flag;
-use super::lot::figure;
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
 use crate::study::explain::StepRow;
-use crate::study::figures::group;
+use crate::study::figures::{group, short};
 use crate::study::tender::{InCurrency, LegalLimit, LotFactors};
 
 /// The published factors of a lot, with their working where it is wanted.
@@ -24,7 +23,7 @@ pub fn lot_factors(factors: &LotFactors, working: bool) -> Letter {
     });
     letter.text(format!(
         "Money per kW of loss, once, not per year. B holds for the load loss at {} kVA; for a bid of another rating it is B·(S_lot/S_bid)².",
-        figure(factors.rated_kva)
+        short(factors.rated_kva)
     ));
     let row = |of: &InCurrency| {
         let values = [of.factor_a_per_kw, of.factor_b_per_kw, of.factor_aux_per_kw];
@@ -69,7 +68,7 @@ fn legal(limit: &LegalLimit) -> String {
     let of = format!("Law {}, {} insulation", limit.law, limit.insulation);
     match (limit.quantity, limit.bound, limit.limit) {
         (Some(quantity), Some(bound), Some(value)) => {
-            format!("{of}: {quantity} {bound} {} ({}).{verify}", figure(value), limit.source)
+            format!("{of}: {quantity} {bound} {} ({}).{verify}", short(value), limit.source)
         }
         _ => format!("{of}: {}.{verify}", limit.source),
     }

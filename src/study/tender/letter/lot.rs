@@ -5,7 +5,7 @@ use crate::engine::columns::{Bid, Column as Fact, Lot};
 use crate::engine::flags::Flags;
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
-use crate::study::figures::group;
+use crate::study::figures::{group, short};
 use crate::study::tender::{BidResult, Case, ChangeResult, LotResult, MoveResult, TenderResult};
 use crate::study::tender::{bids_of, verdict};
 
@@ -29,7 +29,7 @@ impl<'a> About<'a> {
         Self { case, currency: &tender.currency, result, lot }
     }
 
-    fn bid(&self, name: &str) -> Option<&'a Bid> {
+    pub(super) fn bid(&self, name: &str) -> Option<&'a Bid> {
         bids_of(&self.case.sheet, &self.result.lot).find(|bid| bid.bid == name)
     }
 
@@ -38,26 +38,21 @@ impl<'a> About<'a> {
     }
 }
 
-/// A number as it was typed.
-pub(super) fn typed(value: f64) -> String {
-    format!("{value}")
-}
-
 /// What the lot asks.
 pub(in crate::study) fn asks(letter: &mut Letter, about: &About) {
     let result = about.result;
     letter.heading(2, format!("Lot {}", result.lot));
     let Some(lot) = about.lot else { return };
     let units = if result.quantity == 1 { "unit" } else { "units" };
-    let mut parts = vec![format!("{} {units} of {} kVA", result.quantity, figure(lot.rated_kva))];
+    let mut parts = vec![format!("{} {units} of {} kVA", result.quantity, short(lot.rated_kva))];
     match (lot.hv_kv, lot.lv_kv) {
-        (Some(hv), Some(lv)) => parts.push(format!("{}/{} kV", typed(hv), typed(lv))),
-        (Some(kv), None) | (None, Some(kv)) => parts.push(format!("{} kV", typed(kv))),
+        (Some(hv), Some(lv)) => parts.push(format!("{}/{} kV", short(hv), short(lv))),
+        (Some(kv), None) | (None, Some(kv)) => parts.push(format!("{} kV", short(kv))),
         (None, None) => {}
     }
     parts.extend(lot.vector_group.clone());
     parts.push(match lot.reference_temp_c {
-        Some(c) => format!("load losses compared at {} °C", typed(c)),
+        Some(c) => format!("load losses compared at {} °C", short(c)),
         None => "load losses compared as quoted".to_owned(),
     });
     parts.extend(lot.law.as_ref().map(|law| format!("law {law}")));
@@ -114,7 +109,8 @@ pub(in crate::study) fn ranking(letter: &mut Letter, about: &About) {
         "owning_cost_at_tolerance",
         "lot_cost",
     ];
-    let mut columns = vec![Column::figures("#", ""), Column::words("bid"), Column::words("bidder")];
+    let mut columns =
+        vec![Column::figures("rank", ""), Column::words("bid"), Column::words("bidder")];
     columns.extend(figures.map(|key| column(key, about.currency)));
     columns.insert(9, Column::figures("above first", about.currency));
     let row = |bid: &BidResult| {
@@ -167,7 +163,7 @@ pub(in crate::study) fn near_tie(letter: &mut Letter, about: &About) {
     let tied = about.ranked().filter(|bid| bid.near_tie).map(|bid| bid.bid.as_str());
     letter.text(format!(
         "Near tie, within {} % of the least owning cost. By owning cost: {}. By price with adders, which leads here: {}.",
-        typed(result.near_tie_pct),
+        short(result.near_tie_pct),
         tied.collect::<Vec<_>>().join(", "),
         result.near_tie_order.join(", ")
     ));
@@ -191,12 +187,12 @@ fn reason(about: &About, result: &BidResult, key: &str) -> String {
     let losses = &result.losses;
     let most = |offered: Option<f64>, limit: Option<f64>, unit: &str| {
         let (offered, limit) = (offered.unwrap_or(f64::NAN), limit.unwrap_or(f64::NAN));
-        format!("{} {unit}, at most {} {unit}", figure(offered), figure(limit))
+        format!("{} {unit}, at most {} {unit}", short(offered), short(limit))
     };
     let word = |text: &Option<String>| text.clone().unwrap_or_default();
     let why = match key {
         "rated_kva" => {
-            format!("{} kVA, at least {} kVA", figure(losses.rated_kva), figure(lot.rated_kva))
+            format!("{} kVA, at least {} kVA", short(losses.rated_kva), short(lot.rated_kva))
         }
         "vector_group" => {
             format!("{} cannot stand for {}", word(&bid.vector_group), word(&lot.vector_group))
@@ -205,9 +201,9 @@ fn reason(about: &About, result: &BidResult, key: &str) -> String {
         "max_load_loss_w" => most(Some(losses.load_loss_w), lot.max_load_loss_w, "W"),
         "impedance_pct" => format!(
             "{} %, {} % ± {} % of it",
-            figure(bid.impedance_pct.unwrap_or(f64::NAN)),
-            figure(lot.impedance_pct.unwrap_or(f64::NAN)),
-            figure(lot.impedance_tolerance_pct.unwrap_or(f64::NAN))
+            short(bid.impedance_pct.unwrap_or(f64::NAN)),
+            short(lot.impedance_pct.unwrap_or(f64::NAN)),
+            short(lot.impedance_tolerance_pct.unwrap_or(f64::NAN))
         ),
         "max_sound_db" => most(bid.sound_db, lot.max_sound_db, "dB"),
         "max_mass_kg" => most(bid.mass_kg, lot.max_mass_kg, "kg"),
@@ -217,7 +213,7 @@ fn reason(about: &About, result: &BidResult, key: &str) -> String {
             let asked = verdict(&about.case.sheet, basis.as_ref(), &lot.lot, &bid.bid);
             let missed = asked.ok().flatten().and_then(|verdict| {
                 let limit = verdict.limits.iter().find(|limit| !limit.meets())?;
-                let (value, bound) = (figure(limit.value), figure(limit.limit));
+                let (value, bound) = (short(limit.value), short(limit.limit));
                 Some(format!("{} {value} against {bound}, {}", limit.quantity, limit.source))
             });
             missed.unwrap_or_else(|| word(&lot.law))
@@ -225,16 +221,6 @@ fn reason(about: &About, result: &BidResult, key: &str) -> String {
         _ => return key.to_owned(),
     };
     format!("{key} ({why})")
-}
-
-/// A figure with as many places as it needs, three at most.
-pub(super) fn figure(value: f64) -> String {
-    let text = group(value, 3);
-    if text.contains('.') {
-        text.trim_end_matches('0').trim_end_matches('.').to_owned()
-    } else {
-        text
-    }
 }
 
 /// Who wins at other factors, and how far the nearest border is.

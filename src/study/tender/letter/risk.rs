@@ -1,11 +1,11 @@
 //! How sure the winner is: probabilities, regret, quantiles and the swing of each input.
 
 use super::bars::swing;
-use super::lot::{About, figure, unit_of};
+use super::lot::{About, unit_of};
 use super::{column, money};
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
-use crate::study::figures::group;
+use crate::study::figures::{group, short};
 use crate::study::tender::risk::{BidRisk, RiskResult, Swing};
 
 /// The section; nothing where no simulation was asked.
@@ -86,8 +86,8 @@ fn swings(letter: &mut Letter, about: &About, risk: &RiskResult) {
         vec![
             s.quantity.to_owned(),
             unit_of(s.quantity).replace("money", about.currency),
-            figure(s.low),
-            figure(s.high),
+            short(s.low),
+            short(s.high),
             money(s.owning_cost_low),
             money(s.owning_cost_high),
             swing(s.owning_cost_low, s.owning_cost_high, base, scale),
