@@ -9,6 +9,7 @@ use tui_input::{Input, InputRequest};
 
 use super::action::{self, Action, Place, Screen};
 use super::caps::Caps;
+use super::clipboard::Clipboard;
 use super::keys::Key;
 use super::list::{List, Step};
 use super::session::{JournalLine, Session};
@@ -508,8 +509,11 @@ impl App {
         match self.theme.caps().clipboard.sequence(&panel.text()) {
             Ok(sequence) => {
                 self.wish = Some(Wish::Write(sequence));
-                let said =
-                    "Handed to the terminal; if nothing arrives, it takes no text from programs.";
+                let said = if self.theme.caps().clipboard == Clipboard::Tmux {
+                    "Handed to tmux, which passes it on where its allow-passthrough is on."
+                } else {
+                    "Handed to the terminal; if nothing arrives, it takes no text from programs."
+                };
                 self.message = Some(said.to_owned());
             }
             Err(why) => self.message = Some(why),

@@ -159,7 +159,7 @@ impl Theme {
 }
 
 /// Characters of units and formulas in words.
-const SPELT: [(&str, &str); 21] = [
+const SPELT: [(&str, &str); 23] = [
     ("°", "deg"),
     ("α", "alpha"),
     ("β", "beta"),
@@ -178,6 +178,8 @@ const SPELT: [(&str, &str); 21] = [
     ("Δ", "delta "),
     ("Ω", "ohm"),
     ("′", "'"),
+    ("≤", "<="),
+    ("≥", ">="),
     ("₀", "0"),
     ("₁", "1"),
     ("₂", "2"),

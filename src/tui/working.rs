@@ -59,7 +59,8 @@ impl Panel {
         let Some(figure) = self.figures.get_mut(self.at) else { return Ok(()) };
         if let (Some((ranked, unit)), true) = (&self.unit, figure.lines.is_empty()) {
             let question = Question::new(&ranked.desk, &ranked.ranking.context, unit)?;
-            figure.lines = StepRow::lines(&question.working(&figure.title)?, 0);
+            let lines = StepRow::lines(&question.working(&figure.title)?, 0);
+            figure.lines = in_currency(lines, &ranked.desk.sheet.basis.currency);
         }
         Ok(())
     }
@@ -76,6 +77,17 @@ impl Panel {
         let head = format!("{}: {}", text::clean(&self.of), figure.title);
         std::iter::once(head).chain(lines).collect::<Vec<_>>().join("\n") + "\n"
     }
+}
+
+/// Steps with the currency for "money" in units.
+fn in_currency(lines: Vec<String>, currency: &str) -> Vec<String> {
+    let currency = text::cut(currency, 8);
+    let unit = |line: String| {
+        ["/kW", " [", "   "].iter().fold(line, |line, after| {
+            line.replace(&format!(" money{after}"), &format!(" {currency}{after}"))
+        })
+    };
+    lines.into_iter().map(unit).collect()
 }
 
 fn heading(key: &str) -> &'static str {
@@ -120,7 +132,11 @@ fn of_bid(app: &App, ranked: &Arc<Ranked>) -> Option<Result<Panel, StudyError>> 
     let working = crate::study::tender::working(sheet, Some(&basis), lot, bid);
     Some(working.map(|working| {
         let opened = |title: &str, steps: &[_]| {
-            let lines = StepRow::lines(&StepRow::tree(steps), 0);
+            let mut lines = StepRow::lines(&StepRow::tree(steps), 0);
+            // Where the basis is in another currency a step says "money" of either.
+            if sheet.tender.currency == context.assumptions.currency {
+                lines = in_currency(lines, &sheet.tender.currency);
+            }
             Figure { title: title.to_owned(), lines }
         };
         let figures = vec![

@@ -253,12 +253,11 @@ fn a_bid_moves_with_its_price_and_back() {
 #[test]
 fn factors_can_be_moved_both_ways_and_all_put_back() {
     let mut bench = bench();
-    let line =
-        |bench: &Bench| bench.lines().into_iter().find(|l| l.contains("a kW of loss")).unwrap();
+    let line = |bench: &Bench| bench.lines().into_iter().find(|l| l.contains("A aux")).unwrap();
     let before = line(bench.keys("3v"));
     let less = line(bench.keys("-"));
     assert_ne!(less, before);
-    assert!(less.contains("of the tender") && less.contains("of the basis"), "{less}");
+    assert!(less.contains("(tender)") && less.ends_with("(basis)"), "{less}");
     let more = line(bench.keys("<Right><Right>"));
     assert_ne!(more, less);
     // A loss never goes below nothing; what cannot be is told.
@@ -325,6 +324,17 @@ fn every_figure_of_a_unit_opens_both_ways() {
     bench.keys("e<Esc>");
     assert_eq!(bench.app.screen(), Screen::Fleet);
     assert!(bench.keys("e").screen().contains("unit OD-T1"));
+}
+
+#[test]
+fn in_ascii_units_and_ranges_are_spelt() {
+    let mut bench = Bench::demo(crate::bench::ASCII, 160, 50);
+    assert!(bench.keys("<Enter>").screen().contains("75 degC"), "{}", bench.screen());
+    assert!(bench.keys("4").screen().contains(" to 2200"), "{}", bench.screen());
+    let steps = bench.keys("3e").screen();
+    assert!(steps.contains("A*P0/1000"), "{steps}");
+    assert_eq!(steps.matches('?').count(), 1, "only the key of the help: {steps}");
+    assert!(steps.contains(" EUR [") && !steps.contains("money"), "{steps}");
 }
 
 /// A row of the totals on the basis screen: before and after.

@@ -114,8 +114,7 @@ pub(in crate::tui) fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
         details(app, result, &currency, areas.details, buffer);
     }
     if let Some(area) = areas.map {
-        let cloud = risk(app).map_or(&[][..], |risk| &risk.cloud);
-        map::draw(theme, result, cloud, &currency, area, buffer);
+        map::draw(theme, result, risk(app), &currency, area, buffer);
     }
     if let Some(area) = areas.changes {
         changes(theme, result, &currency, area, buffer);
@@ -150,10 +149,12 @@ fn head(app: &App, asked: &Lot, lot: &LotResult, currency: &str, area: Rect, buf
     let alike = factors.iter().all(|factor| factor.2 == lot.computed.a);
     let said = factors.map(|(word, value, computed)| {
         let value = format!("{word} {}", text::number(value, 2));
-        if alike { value } else { format!("{value} of {}", from(computed)) }
+        let short = if computed { "basis" } else { "tender" };
+        if alike { value } else { format!("{value} ({short})") }
     });
     let all = if alike { format!(", from {}", from(lot.computed.a)) } else { String::new() };
-    let said = format!(" a kW of loss in {currency}: {}{all}", said.join("  "));
+    let head = if alike { format!("a kW of loss in {currency}") } else { format!("{currency}/kW") };
+    let said = format!(" {head}: {}{all}", said.join("  "));
     put(buffer, area, 1, &said, theme.plain());
 }
 
@@ -211,7 +212,8 @@ fn bids(app: &App, lot: &LotResult, currency: &str, area: Rect, buffer: &mut Buf
     let room = usize::from(area.width).saturating_sub(2);
     let mut kept: Vec<usize> = (0..keys.len() - usize::from(risk.is_none())).collect();
     let used = |kept: &[usize]| kept.iter().map(|n| widths[*n] + 2).sum::<usize>();
-    for (gives_way, bar) in [(5, 28), (2, 16)] {
+    let bidder = if risk.is_some() { 26 } else { 16 };
+    for (gives_way, bar) in [(5, 28), (2, bidder)] {
         if used(&kept) + bar > room {
             kept.retain(|n| *n != gives_way);
         }

@@ -8,6 +8,7 @@ use ratatui::text::{Line, Span};
 
 use super::sign;
 use crate::study::tender::LotResult;
+use crate::study::tender::risk::RiskResult;
 use crate::tui::frame::{put, put_line, put_over, put_right};
 use crate::tui::text;
 use crate::tui::theme::Theme;
@@ -17,7 +18,7 @@ use crate::tui::theme::Theme;
 pub(super) fn draw(
     theme: Theme,
     lot: &LotResult,
-    cloud: &[[f64; 2]],
+    risk: Option<&RiskResult>,
     currency: &str,
     area: Rect,
     buffer: &mut Buffer,
@@ -38,6 +39,11 @@ pub(super) fn draw(
     let Some(height) = area.height.checked_sub(4 + below).filter(|h| *h >= 3) else { return };
     let Some(width) = area.width.checked_sub(margin + 1).filter(|w| *w >= 12) else { return };
     put(buffer, area, 1, &format!(" B, {currency}/kW"), theme.muted());
+    if let Some(risk) = risk {
+        let said =
+            format!("{} {} draws, seed {} ", theme.cloud(), text::count(risk.draws), risk.seed);
+        put_right(buffer, area, 1, &Line::styled(said, theme.muted()));
+    }
     let plot = Rect { x: area.x + margin, y: area.y + 2, width, height };
     for (y, label) in [(0, top.as_str()), (height - 1, zero)] {
         let line = format!("{} ", text::right(label, usize::from(margin) - 1));
@@ -56,6 +62,7 @@ pub(super) fn draw(
             cell.set_style(if on_lattice { theme.heading() } else { theme.region(n) });
         }
     }
+    let cloud = risk.map_or(&[][..], |risk| &risk.cloud);
     for (x, y) in drawn(cloud, [map.a_max, map.b_max], [width, height]) {
         if let Some(cell) = buffer.cell_mut((plot.x + x, plot.y + height - 1 - y)) {
             cell.set_char(theme.cloud());

@@ -124,7 +124,8 @@ impl State {
             Kind::Money(..) => Value::Money(Money::parse(&format!("{next:.3}"))?),
             _ => Value::Real(next),
         };
-        let value = line.column.check(value)?;
+        let name = line.column.name;
+        let value = line.column.check(value).map_err(|why| format!("{name} {why}."))?;
         self.set(tender, sheet, line, [lot, bid], &value);
         Ok(())
     }
