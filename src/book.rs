@@ -39,6 +39,8 @@ pub type Result<T> = std::result::Result<T, BookError>;
 pub struct Book {
     connection: Connection,
     path: Option<PathBuf>,
+    /// Whether the file lies where nothing can be written beside it: it is read as it stands.
+    frozen: bool,
 }
 
 impl Book {

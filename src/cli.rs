@@ -15,6 +15,7 @@ mod journal;
 mod losses;
 mod print;
 mod rank;
+mod report;
 mod settle;
 mod tender;
 mod timings;
@@ -31,6 +32,7 @@ pub use exit::Exit;
 
 use exit::Failure;
 use print::Printer;
+use timings::Timings;
 
 /// Runs the program with the arguments of the process.
 pub fn main() -> ExitCode {
@@ -53,8 +55,12 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> Exit {
         }
     };
     let mut printer = Printer::new(args.format);
+    let timings = Timings::start(args.timings && !matches!(args.command, Some(Command::Rank(_))));
     let done = dispatch(&args, &mut printer);
     let flushed = printer.flush().map_err(Failure::from);
+    if let Some(line) = timings.finish() {
+        printer.complain(&line);
+    }
     match done.and_then(|exit| flushed.map(|()| exit)) {
         Ok(exit) => exit,
         Err(failure) => {
@@ -78,6 +84,7 @@ fn dispatch(args: &Args, printer: &mut Printer) -> Result<Exit, Failure> {
         Some(Command::Tender(options)) => tender::tender(args, options, printer),
         Some(Command::Unit(options)) => unit::unit(args, options, printer),
         Some(Command::Settle(options)) => settle::settle(args, options, printer),
+        Some(Command::Report(options)) => report::report(args, options, printer),
         Some(Command::Work(options)) => work::work(options, printer),
         Some(Command::Journal(options)) => journal::journal(args, options, printer),
         Some(Command::Columns { what }) => columns::columns(*what, printer),

@@ -13,6 +13,7 @@ pub mod factors;
 pub mod figures;
 pub mod intake;
 pub mod losses;
+pub mod offers_open;
 pub mod rank;
 pub mod settle;
 pub mod tender;

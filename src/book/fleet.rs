@@ -6,8 +6,8 @@ use rusqlite::Connection;
 use rusqlite::types::ValueRef;
 use rustc_hash::FxHashMap;
 
-use super::open::flags;
-use super::{Access, Book, Result};
+use super::open::reader;
+use super::{Book, Result};
 use crate::engine::columns::{Column, Insulation, Kind, Unit, WindingMetal};
 use crate::engine::decision::UnitFacts;
 use crate::engine::decision::fit::Terminals;
@@ -70,7 +70,7 @@ impl Book {
             from..=(from + step - 1).min(last)
         });
         let all = usize::try_from(last - first + 1).unwrap_or(0);
-        let profiles = &profiles;
+        let (profiles, frozen) = (&profiles, self.frozen);
         let mut fleet: Option<FleetColumns> = None;
         std::thread::scope(|scope| {
             let readers: Vec<_> = ranges
@@ -78,8 +78,7 @@ impl Book {
                     // The first part takes the others in: room for all is made there.
                     let room = if *range.start() == first { all } else { 0 };
                     scope.spawn(move || {
-                        let connection =
-                            Connection::open_with_flags(path, flags(Access::ReadOnly))?;
+                        let connection = reader(path, frozen)?;
                         connection.pragma_update(None, "mmap_size", 1_i64 << 36)?;
                         read(&connection, profiles, range, room)
                     })

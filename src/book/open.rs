@@ -44,7 +44,7 @@ impl Book {
         let mut connection = Connection::open_in_memory()?;
         settle(&connection)?;
         Migrations::from_slice(STEPS).to_latest(&mut connection)?;
-        Ok(Self { connection, path: None })
+        Ok(Self { connection, path: None, frozen: false })
     }
 
     pub(super) fn open_with(path: &Path, access: Access, steps: &[M<'_>]) -> Result<Self> {
@@ -61,9 +61,18 @@ impl Book {
         }
         // Looked at read-only first, so that what is not ours is never written to.
         if path.exists() {
-            let book = Connection::open_with_flags(path, flags(Access::ReadOnly))?;
-            settle(&book)?;
-            let version = recognise(&book).map_err(|error| match error {
+            let mut book = reader(path, false)?;
+            let mut found = recognise(&book);
+            let mut frozen = false;
+            if matches!(&found, Err(Recognised::Failed(_)))
+                && access == Access::ReadOnly
+                && !has_log(path)
+            {
+                book = reader(path, true)?;
+                found = recognise(&book);
+                frozen = true;
+            }
+            let version = found.map_err(|error| match error {
                 Recognised::Other(why) => not_a_book(why),
                 Recognised::Failed(error) => error.into(),
             })?;
@@ -76,12 +85,12 @@ impl Book {
                     return Err(BookError::Older { path: path.to_owned(), book: old, program });
                 }
                 Some(old) if old < program => {
-                    Self { connection: book, path: Some(path.to_owned()) }
+                    Self { connection: book, path: Some(path.to_owned()), frozen }
                         .backup(&free_name(path, program))?;
                 }
                 None if access != Access::Create => return Err(not_a_book("it is empty")),
                 Some(_) if access == Access::ReadOnly => {
-                    return Ok(Self { connection: book, path: Some(path.to_owned()) });
+                    return Ok(Self { connection: book, path: Some(path.to_owned()), frozen });
                 }
                 _ => {}
             }
@@ -97,8 +106,30 @@ impl Book {
                 return Err(error.into());
             }
         }
-        Ok(Self { connection, path: Some(path.to_owned()) })
+        Ok(Self { connection, path: Some(path.to_owned()), frozen: false })
     }
+}
+
+/// A connection that only reads. `frozen` reads the file as it stands and writes nothing beside it, which a book
+/// needs that lies in a directory one may not write to.
+pub(super) fn reader(path: &Path, frozen: bool) -> Result<Connection> {
+    let connection = if frozen {
+        let plain = path.to_string_lossy();
+        let escaped = plain.replace('%', "%25").replace('?', "%3f").replace('#', "%23");
+        let flags = flags(Access::ReadOnly) | OpenFlags::SQLITE_OPEN_URI;
+        Connection::open_with_flags(format!("file:{escaped}?immutable=1"), flags)?
+    } else {
+        Connection::open_with_flags(path, flags(Access::ReadOnly))?
+    };
+    settle(&connection)?;
+    Ok(connection)
+}
+
+/// Whether changes wait in a log beside the book: then the file alone is not the whole.
+fn has_log(path: &Path) -> bool {
+    let mut log = path.as_os_str().to_owned();
+    log.push("-wal");
+    std::fs::metadata(PathBuf::from(log)).is_ok_and(|meta| meta.len() > 0)
 }
 
 pub(super) fn flags(access: Access) -> OpenFlags {

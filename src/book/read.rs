@@ -108,6 +108,14 @@ impl Book {
         }
     }
 
+    /// A number that changes whenever another connection changes the book.
+    ///
+    /// # Errors
+    /// The store fails.
+    pub fn data_version(&self) -> Result<i64> {
+        Ok(self.connection.query_row("PRAGMA data_version", [], |row| row.get(0))?)
+    }
+
     /// How much the book holds.
     ///
     /// # Errors

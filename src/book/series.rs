@@ -18,7 +18,7 @@ impl Book {
     /// # Errors
     /// The store fails.
     pub fn profiles(&self) -> Result<Vec<Profile>> {
-        let sql = "SELECT profile, step_minutes, load FROM profiles ORDER BY id";
+        let sql = "SELECT profile, step_minutes, load, first_timestamp FROM profiles ORDER BY id";
         let mut statement = self.connection.prepare_cached(sql)?;
         let profiles = statement.query_map([], profile)?.collect::<rusqlite::Result<_>>()?;
         Ok(profiles)
@@ -45,7 +45,8 @@ impl Book {
     /// # Errors
     /// The book has no such series, or the store fails.
     pub fn price_series(&self, name: &str) -> Result<PriceSeries> {
-        let sql = "SELECT name, step_minutes, price_per_kwh, co2_kg_per_kwh, system_load
+        let sql =
+            "SELECT name, step_minutes, price_per_kwh, co2_kg_per_kwh, system_load, first_timestamp
                    FROM price_series WHERE name = ?1";
         let mut statement = self.connection.prepare_cached(sql)?;
         match statement.query_row([name], prices).optional()? {
@@ -80,20 +81,21 @@ impl Change<'_> {
     ///
     /// # Errors
     /// The store fails.
-    pub fn put_profile(&self, profile: &Profile, first_timestamp: Option<&str>) -> Result<Outcome> {
+    pub fn put_profile(&self, profile: &Profile) -> Result<Outcome> {
         let steps = count(&profile.values);
         let key = &profile.profile;
         let store = &self.transaction;
         let known = store
             .prepare_cached(
-                "SELECT profile, step_minutes, load, id, first_timestamp FROM profiles WHERE profile = ?1",
+                "SELECT profile, step_minutes, load, first_timestamp, id FROM profiles WHERE profile = ?1",
             )?
             .query_row([key], |row| {
-                Ok((self::profile(row)?, row.get::<_, i64>(3)?, row.get::<_, Option<String>>(4)?))
+                Ok((self::profile(row)?, row.get::<_, i64>(4)?))
             })
             .optional()?;
         let load = bytes(&profile.values);
-        let Some((old, id, old_first)) = known else {
+        let first_timestamp = profile.first_timestamp.as_deref();
+        let Some((old, id)) = known else {
             store
                 .prepare_cached(
                     "INSERT INTO profiles (profile, step_minutes, steps, first_timestamp, load)
@@ -103,7 +105,7 @@ impl Change<'_> {
             self.count(PROFILE, Outcome::New, store.last_insert_rowid(), || key.clone());
             return Ok(Outcome::New);
         };
-        if old == *profile && old_first.as_deref() == first_timestamp {
+        if old == *profile {
             self.count(PROFILE, Outcome::Same, id, || key.clone());
             return Ok(Outcome::Same);
         }
@@ -120,7 +122,7 @@ impl Change<'_> {
             what: json!({
                 "step_minutes": { "old": old.step_minutes, "new": profile.step_minutes },
                 "steps": { "old": count(&old.values), "new": steps },
-                "first_timestamp": { "old": old_first, "new": first_timestamp },
+                "first_timestamp": { "old": old.first_timestamp, "new": first_timestamp },
             }),
             replaced: Some(&bytes(&old.values)),
         })?;
@@ -132,27 +134,24 @@ impl Change<'_> {
     ///
     /// # Errors
     /// The store fails.
-    pub fn put_price_series(
-        &self,
-        series: &PriceSeries,
-        first_timestamp: Option<&str>,
-    ) -> Result<Outcome> {
+    pub fn put_price_series(&self, series: &PriceSeries) -> Result<Outcome> {
         let price = bytes(&series.price_per_kwh);
         let co2 = series.co2_kg_per_kwh.as_deref().map(bytes);
         let load = series.system_load.as_deref().map(bytes);
         let steps = count(&series.price_per_kwh);
+        let first_timestamp = series.first_timestamp.as_deref();
         let key = &series.name;
         let store = &self.transaction;
         let known = store
             .prepare_cached(
-                "SELECT name, step_minutes, price_per_kwh, co2_kg_per_kwh, system_load, id, first_timestamp
+                "SELECT name, step_minutes, price_per_kwh, co2_kg_per_kwh, system_load, first_timestamp, id
                  FROM price_series WHERE name = ?1",
             )?
             .query_row([key], |row| {
-                Ok((prices(row)?, row.get::<_, i64>(5)?, row.get::<_, Option<String>>(6)?))
+                Ok((prices(row)?, row.get::<_, i64>(6)?))
             })
             .optional()?;
-        let Some((old, id, old_first)) = known else {
+        let Some((old, id)) = known else {
             store
                 .prepare_cached(
                     "INSERT INTO price_series
@@ -163,7 +162,7 @@ impl Change<'_> {
             self.count(PRICES, Outcome::New, store.last_insert_rowid(), || key.clone());
             return Ok(Outcome::New);
         };
-        if old == *series && old_first.as_deref() == first_timestamp {
+        if old == *series {
             self.count(PRICES, Outcome::Same, id, || key.clone());
             return Ok(Outcome::Same);
         }
@@ -194,7 +193,7 @@ impl Change<'_> {
             what: json!({
                 "step_minutes": { "old": old.step_minutes, "new": series.step_minutes },
                 "steps": { "old": count(&old.price_per_kwh), "new": steps },
-                "first_timestamp": { "old": old_first, "new": first_timestamp },
+                "first_timestamp": { "old": old.first_timestamp, "new": first_timestamp },
                 "has": { "old": parts(&old), "new": parts(series) },
             }),
             replaced: Some(&replaced),
@@ -227,6 +226,7 @@ fn profile(row: &Row<'_>) -> rusqlite::Result<Profile> {
         profile: row.get(0)?,
         step_minutes: row.get(1)?,
         values: doubles(row.get_ref(2)?.as_blob()?),
+        first_timestamp: row.get(3)?,
     })
 }
 
@@ -238,5 +238,6 @@ fn prices(row: &Row<'_>) -> rusqlite::Result<PriceSeries> {
         price_per_kwh: doubles(row.get_ref(2)?.as_blob()?),
         co2_kg_per_kwh: optional(3)?,
         system_load: optional(4)?,
+        first_timestamp: row.get(5)?,
     })
 }

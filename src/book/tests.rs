@@ -422,20 +422,26 @@ fn a_tender_is_saved_as_a_whole() {
 fn series_come_back_to_the_bit_and_old_values_stay_in_the_journal() {
     let mut book = Book::in_memory().expect("book");
     let values = vec![0.1 + 0.2, -5e-324, 1e300, 0.0];
-    let profile = Profile { profile: "rural".into(), step_minutes: 60, values };
+    let first_timestamp = Some("2026-01-01T00:00:00Z".to_owned());
+    let profile = Profile {
+        profile: "rural".into(),
+        step_minutes: 60,
+        first_timestamp: first_timestamp.clone(),
+        values,
+    };
     let prices = PriceSeries {
         name: "spot".into(),
         step_minutes: 60,
+        first_timestamp,
         price_per_kwh: vec![0.1, -0.2],
         co2_kg_per_kwh: None,
         system_load: Some(vec![1.0, 2.0]),
     };
     let put = |book: &mut Book, profile: &Profile, prices: &PriceSeries| {
         let change = book.change(&actor(), Some("hourly.csv")).expect("change");
-        let first = Some("2026-01-01T00:00:00Z");
         let outcomes = (
-            change.put_profile(profile, first).expect("profile"),
-            change.put_price_series(prices, first).expect("prices"),
+            change.put_profile(profile).expect("profile"),
+            change.put_price_series(prices).expect("prices"),
         );
         change.commit().expect("commit");
         outcomes

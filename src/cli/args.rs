@@ -51,7 +51,7 @@ pub struct Args {
     #[command(subcommand)]
     pub command: Option<Command>,
     /// The book (an SQLite file); else $IRONHUM_BOOK, else book.sqlite in the data directory
-    #[arg(long, global = true, value_name = "FILE", env = "IRONHUM_BOOK")]
+    #[arg(long, global = true, value_name = "FILE")]
     pub book: Option<PathBuf>,
     /// The basis; else the book's only or current one
     #[arg(long, global = true, value_name = "NAME")]
@@ -91,7 +91,9 @@ pub enum Command {
     /// Evaluate the bids of a tender
     Tender(Tender),
     /// Measured against guaranteed losses of a tender: excess, penalty, beyond tolerance or not
-    Settle(Tender),
+    Settle(Settle),
+    /// A report to hand on, as Markdown
+    Report(Report),
     /// One unit's dossier
     Unit(Unit),
     /// One trade calculation with its working shown; without a name list them
@@ -155,6 +157,9 @@ pub struct Import {
     /// A blank cell erases the old value
     #[arg(long)]
     pub clear_blank: bool,
+    /// Make the basis the current one: what commands without --basis take
+    #[arg(long)]
+    pub current: bool,
     /// Name of the price series (else the file's name)
     #[arg(long, value_name = "NAME")]
     pub name: Option<String>,
@@ -215,16 +220,16 @@ pub struct Factors {
     pub peak_pu: Option<f64>,
     /// Loss factor of the load
     #[arg(long, value_name = "PU")]
-    pub loss_factor: Option<f64>,
+    pub loss_factor_pu: Option<f64>,
     /// Load factor of the load, where its loss factor is not known
     #[arg(long, value_name = "PU")]
-    pub load_factor: Option<f64>,
+    pub load_factor_pu: Option<f64>,
     /// Profile of the load
     #[arg(long, value_name = "NAME")]
     pub profile: Option<String>,
     /// Yearly growth of the load
     #[arg(long, value_name = "PCT", allow_negative_numbers = true)]
-    pub load_growth: Option<f64>,
+    pub load_growth_pct: Option<f64>,
     /// Show how each factor comes about
     #[arg(long)]
     pub working: bool,
@@ -242,6 +247,75 @@ pub struct Tender {
     /// Show how each figure comes about
     #[arg(long)]
     pub working: bool,
+    /// Show the working of this bid only
+    #[arg(long, value_name = "BID")]
+    pub bid: Option<String>,
+    /// Say how sure the winner is under the ranges of the basis
+    #[arg(long)]
+    pub risk: bool,
+    /// How that is drawn.
+    #[command(flatten)]
+    pub drawn: Drawn,
+}
+
+/// How a simulation is drawn. Any of these asks for one.
+#[derive(Clone, Debug, Default, clap::Args)]
+pub struct Drawn {
+    /// Number of draws [default: 10000]
+    #[arg(long, value_name = "N")]
+    pub draws: Option<usize>,
+    /// Seed of the draws; the same seed gives the same figures [default: 1]
+    #[arg(long, value_name = "S")]
+    pub seed: Option<u64>,
+    /// Two inputs that move together, with their rank correlation from -1 to 1
+    #[arg(long, value_name = "INPUT,INPUT,RHO")]
+    pub correlate: Vec<String>,
+}
+
+/// Options of `report`.
+#[derive(Clone, Debug, clap::Args)]
+pub struct Report {
+    /// What is reported
+    #[command(subcommand)]
+    pub what: Reported,
+}
+
+/// What can be reported.
+#[derive(Clone, Debug, Subcommand)]
+pub enum Reported {
+    /// The comparison of the bids of a tender, with factors, winner map, risk and settlement
+    Tender(ReportTender),
+}
+
+/// Options of `report tender`.
+#[derive(Clone, Debug, clap::Args)]
+pub struct ReportTender {
+    /// The tender
+    pub tender: String,
+    /// The Markdown file, ending in .md; - writes to standard output
+    pub file: PathBuf,
+    /// Only this lot
+    #[arg(long, value_name = "LOT")]
+    pub lot: Option<String>,
+    /// How the risk is drawn, where the basis names ranges.
+    #[command(flatten)]
+    pub drawn: Drawn,
+}
+
+/// Options of `settle`.
+#[derive(Clone, Debug, clap::Args)]
+pub struct Settle {
+    /// The tender
+    pub tender: String,
+    /// Only this lot
+    #[arg(long, value_name = "LOT")]
+    pub lot: Option<String>,
+    /// Show how each penalty comes about
+    #[arg(long)]
+    pub working: bool,
+    /// Show the working of this unit only
+    #[arg(long, value_name = "SERIAL")]
+    pub serial: Option<String>,
 }
 
 /// Options of `unit`.
@@ -249,9 +323,9 @@ pub struct Tender {
 pub struct Unit {
     /// The unit
     pub unit: String,
-    /// Show how each figure comes about
-    #[arg(long)]
-    pub working: bool,
+    /// Show how each figure comes about, or the one that is named
+    #[arg(long, value_name = "FIGURE", num_args = 0..=1, default_missing_value = "")]
+    pub working: Option<String>,
 }
 
 /// Options of `work`.

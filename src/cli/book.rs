@@ -9,6 +9,9 @@ use super::exit::{Exit, Failure};
 use super::print::Printer;
 use crate::book::{Access, Actor, Book};
 
+/// Names the book where --book does not.
+const VARIABLE: &str = "IRONHUM_BOOK";
+
 /// A book with its path.
 pub(super) struct Opened {
     pub(super) book: Book,
@@ -25,9 +28,10 @@ pub(super) fn data_directory() -> Result<PathBuf, Failure> {
 
 /// The book that is meant.
 pub(super) fn path(args: &Args) -> Result<PathBuf, Failure> {
-    match &args.book {
-        Some(path) => Ok(path.clone()),
-        None => Ok(data_directory()?.join("book.sqlite")),
+    match (&args.book, std::env::var_os(VARIABLE).filter(|path| !path.is_empty())) {
+        (Some(path), _) => Ok(path.clone()),
+        (None, Some(path)) => Ok(path.into()),
+        (None, None) => Ok(data_directory()?.join("book.sqlite")),
     }
 }
 

@@ -9,11 +9,12 @@ use super::args::{Args, Format};
 use super::book::{actor, data_directory, make_parent};
 use super::exit::{Exit, Failure};
 use super::print::Printer;
-use super::{dashboard, rank, tender};
+use super::{dashboard, rank};
 use crate::book::{Access, Book};
 use crate::exchange::Source;
 use crate::study::intake::{Options, What, import};
 use crate::study::rank::{By, rank as ask};
+use crate::study::tender::{Case, letter};
 use crate::study::{Desk, Watch};
 
 static FILES: Dir<'_> = include_dir!("$CARGO_MANIFEST_DIR/demo-fleet");
@@ -35,6 +36,9 @@ const SERIES: &str = "ossemar-zone";
 const TOP: usize = 20;
 
 pub(super) fn demo(args: &Args, printer: &mut Printer) -> Result<Exit, Failure> {
+    if args.read_only {
+        return Err(Failure::new(Exit::Usage, "--read-only: the demo makes a book"));
+    }
     let path = place(args)?;
     make(&path)?;
     if dashboard::on_terminal() {
@@ -51,15 +55,16 @@ pub(super) fn demo(args: &Args, printer: &mut Printer) -> Result<Exit, Failure> 
             rank::write(&desk, &ranking, printer)?;
             for t in &tenders {
                 printer.line("")?;
-                tender::write(printer, &tender::of_book(args, &book, &t.tender, None)?.2)?;
+                let case = Case::read(&book, &t.tender, args.basis.as_deref())?;
+                printer.letter(&letter::result(&case, &case.evaluate(None)?))?;
             }
         }
         Format::Csv => rank::write(&desk, &ranking, printer)?,
         Format::Json => {
             let results = tenders
                 .iter()
-                .map(|t| Ok(tender::of_book(args, &book, &t.tender, None)?.2))
-                .collect::<Result<Vec<_>, Failure>>()?;
+                .map(|t| Case::read(&book, &t.tender, args.basis.as_deref())?.evaluate(None))
+                .collect::<Result<Vec<_>, _>>()?;
             printer.json(&serde_json::json!({
                 "rank": serde_json::to_value(ranking.result(&desk))?,
                 "tenders": serde_json::to_value(results)?,

@@ -8,6 +8,7 @@ use crate::study::Desk;
 use crate::study::explain::StepRow;
 use crate::study::factors::{LoadAsked, factors as ask};
 use crate::study::figures::group;
+use crate::study::tender::{Case, letter};
 
 const KEYS: &[&str] =
     &["basis", "method", "factor_a_per_kw", "factor_b_per_kw", "factor_aux_per_kw"];
@@ -18,13 +19,22 @@ pub(super) fn factors(
     printer: &mut Printer,
 ) -> Result<Exit, Failure> {
     let Opened { book, .. } = book::open_to_read(args)?;
+    if let (Some(tender), Some(lot)) = (&options.tender, &options.lot) {
+        let result = Case::read(&book, tender, args.basis.as_deref())?.factors(lot)?;
+        match printer.format {
+            Format::Json => printer.json(&result)?,
+            Format::Csv => printer.csv(KEYS, std::iter::once(&result))?,
+            Format::Text => printer.letter(&letter::lot_factors(&result, options.working))?,
+        }
+        return Ok(Exit::Done);
+    }
     let desk = Desk::read(&book, args.basis.as_deref())?;
     let asked = LoadAsked {
         peak_pu: options.peak_pu,
-        loss_factor_pu: options.loss_factor,
-        load_factor_pu: options.load_factor,
+        loss_factor_pu: options.loss_factor_pu,
+        load_factor_pu: options.load_factor_pu,
         profile: options.profile.clone(),
-        load_growth_pct: options.load_growth,
+        load_growth_pct: options.load_growth_pct,
     };
     let result = ask(&desk, &asked)?;
     match printer.format {
@@ -74,16 +84,8 @@ pub(super) fn working(
     steps: &[StepRow],
     depth: usize,
 ) -> Result<(), Failure> {
-    let indent = "    ".repeat(depth);
-    for step in steps {
-        printer.line(format!("{indent}{}", step.name))?;
-        printer.line(format!("{indent}  {}", step.formula))?;
-        // A sum over years has no numbers of its own to put in.
-        if !step.formula.ends_with(&step.substituted) {
-            printer.line(format!("{indent}  = {}", step.substituted))?;
-        }
-        printer.line(format!("{indent}  = {} {}   [{}]", step.value, step.unit, step.source))?;
-        working(printer, &step.steps, depth + 1)?;
+    for line in StepRow::lines(steps, depth) {
+        printer.line(line)?;
     }
     Ok(())
 }

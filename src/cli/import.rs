@@ -10,7 +10,7 @@ use super::print::Printer;
 use crate::book::Book;
 use crate::exchange::{Hints, Source};
 use crate::study::Watch;
-use crate::study::intake::{IntakeError, Options, Report, import as take_in};
+use crate::study::intake::{IntakeError, Options, Report, What, import as take_in};
 
 pub(super) fn import(
     args: &Args,
@@ -18,17 +18,19 @@ pub(super) fn import(
     printer: &mut Printer,
 ) -> Result<Exit, Failure> {
     let map = options.map.iter().map(|pair| renamed(pair)).collect::<Result<Vec<_>, _>>()?;
+    if options.current && options.what != What::Basis {
+        return Err(Failure::new(Exit::Usage, "--current goes with: import basis"));
+    }
     let source = if options.file.as_os_str() == "-" {
         Source::read("-", std::io::stdin())
     } else {
         Source::open(&options.file)
     }
     .map_err(|error| Failure::new(Exit::Failed, error.to_string()))?;
-    let mut book = if options.dry_run && !book::path(args)?.exists() {
-        Book::in_memory()?
-    } else {
-        book::open_to_write(args)?.book
-    };
+    let path = book::path(args)?;
+    let fresh = !path.exists();
+    let mut book =
+        if options.dry_run && fresh { Book::in_memory()? } else { book::open_to_write(args)?.book };
     let rejects = match &options.rejects {
         None => None,
         Some(path) => {
@@ -46,6 +48,7 @@ pub(super) fn import(
         dry_run: options.dry_run,
         rejects,
         name: options.name.clone(),
+        current: options.current,
         hints: Hints {
             delimiter: options.delimiter,
             decimal: options.decimal,
@@ -54,6 +57,11 @@ pub(super) fn import(
     };
     let actor = book::actor(options.why.clone());
     let report = take_in(&mut book, options.what, source, intake, &actor, &Watch::default())?;
+    if fresh && report.rejected && !options.dry_run {
+        // A book that holds nothing would only puzzle.
+        drop(book);
+        let _ = std::fs::remove_file(&path);
+    }
     say(printer, &report, options.dry_run)?;
     Ok(if report.rejected { Exit::Rejected } else { Exit::Done })
 }
@@ -89,7 +97,9 @@ fn say(printer: &mut Printer, report: &Report, dry_run: bool) -> Result<(), Fail
         Format::Text => {
             let t = report.tally;
             let what = report.what.word();
-            if report.rejected {
+            if report.rejected && report.rows <= 1 {
+                printer.complain("nothing was stored: the file itself is wrong; correct it");
+            } else if report.rejected {
                 printer.complain(&format!(
                     "nothing was stored: {} of {} {what} rows are wrong; correct them, or leave them with --skip-bad",
                     report.bad, report.rows

@@ -35,7 +35,7 @@ pub(super) fn journal(
         Format::Json => printer.json(&Result { entries: &entries })?,
         Format::Csv => printer.csv(KEYS, lines)?,
         Format::Text => {
-            let keys = ["at", "who", "action", "kind", "key", "source", "change"];
+            let keys = ["at", "who", "action", "kind", "key", "source", "why", "change"];
             printer.table(&TextColumn::plain_list(&keys), lines)?;
         }
     }

@@ -9,6 +9,7 @@ use unicode_width::UnicodeWidthStr as _;
 
 use super::args::Format;
 use super::exit::Failure;
+use crate::exchange::{Letter, visible as clean};
 use crate::study::Document;
 use crate::study::figures::{figure, group};
 
@@ -71,6 +72,11 @@ impl Printer {
     pub(super) fn line(&mut self, text: impl AsRef<str>) -> io::Result<()> {
         self.text(&clean(text.as_ref()))?;
         self.text("\n")
+    }
+
+    /// Writes a letter as text.
+    pub(super) fn letter(&mut self, letter: &Letter) -> io::Result<()> {
+        self.text(&letter.to_text())
     }
 
     /// Says something on standard error; that nobody listens there is no reason to fail.
@@ -193,13 +199,4 @@ fn written(value: Option<&Value>, column: &TextColumn) -> (String, bool) {
         }
         Some(Value::Object(_)) => ("…".to_owned(), false),
     }
-}
-
-/// Text from outside with its control characters made visible.
-pub(super) fn clean(text: &str) -> String {
-    text.chars()
-        .map(|c| {
-            if c.is_control() { char::from_u32(0x2400 + u32::from(c)).unwrap_or('␦') } else { c }
-        })
-        .collect()
 }

@@ -1,12 +1,15 @@
 //! `ironhum rank`: the units by what replacing them saves.
 
+use serde::Serialize;
+
 use super::args::{Args, Format, Rank, RankBy};
 use super::book::{self, Opened};
 use super::exit::{Exit, Failure};
 use super::print::{Printer, TextColumn};
 use super::timings::Timings;
 use crate::study::figures::group;
-use crate::study::rank::{By, LeftOutRow, Ranking, rank as ask};
+use crate::study::losses::flag_meaning;
+use crate::study::rank::{By, LeftOutRow, RankRow, Ranking, rank as ask};
 use crate::study::{Desk, Watch};
 
 const KEYS: &[&str] = &[
@@ -44,6 +47,7 @@ const TEXT: &[&str] = &[
     "saving_pv",
     "waiting_pv",
     "payback_years",
+    "flags",
 ];
 
 pub(super) fn rank(args: &Args, options: &Rank, printer: &mut Printer) -> Result<Exit, Failure> {
@@ -90,23 +94,58 @@ pub(super) fn write(desk: &Desk, ranking: &Ranking, printer: &mut Printer) -> Re
                 c = a.currency,
             ))?;
             printer.line("")?;
+            let rows: Vec<_> = rows.collect();
             let mut columns = TextColumn::list(TEXT, &a.currency);
             let estimated = ranking.could_stand.len();
             if estimated > 0 {
                 columns.extend(TextColumn::list(&["rank_low", "rank_high"], &a.currency));
             }
-            printer.table(&columns, rows)?;
+            printer.table(&columns, rows.iter().map(Marked::of))?;
             if estimated > 0 {
                 printer.line("")?;
                 printer.line(format!(
                     "{estimated} units have estimated losses: \"if low\" and \"if high\" are their places with losses at the ends of the 95 % interval."
                 ))?;
             }
+            legend(printer, rows.iter().flat_map(|row| row.flags.iter().copied()))?;
             let left_out =
                 (0..ranking.left_out.len()).filter_map(|n| ranking.left_out_row(desk, n));
             write_left_out(printer, left_out)
         }
     }
+}
+
+/// A line of the ranking whose flags are counted: their sentences stand under the table.
+#[derive(Serialize)]
+struct Marked<'a> {
+    #[serde(flatten)]
+    row: &'a RankRow<'a>,
+    flags: String,
+}
+
+impl<'a> Marked<'a> {
+    fn of(row: &'a RankRow<'a>) -> Self {
+        Self { row, flags: "!".repeat(row.flags.len()) }
+    }
+}
+
+/// The sentences of the flags of a table, each with how often it is up.
+pub(super) fn legend<'a>(
+    printer: &mut Printer,
+    flags: impl Iterator<Item = &'a str>,
+) -> Result<(), Failure> {
+    let mut counts: Vec<(&str, usize)> = Vec::new();
+    for flag in flags {
+        match counts.iter_mut().find(|(known, _)| *known == flag) {
+            Some((_, count)) => *count += 1,
+            None => counts.push((flag, 1)),
+        }
+    }
+    for (flag, count) in counts {
+        let meaning = flag_meaning(flag).unwrap_or_default();
+        printer.line(format!("! {flag} ({count}): {meaning}"))?;
+    }
+    Ok(())
 }
 
 /// The units left out, by reason.

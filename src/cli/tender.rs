@@ -1,22 +1,17 @@
 //! `ironhum tender T`: the bids of a tender by what they cost to own.
 
 use serde::Serialize;
+use serde_json::{Map, Value};
 
-use super::args::{Args, Format, Tender};
+use super::args::{Args, Drawn, Format, Tender};
 use super::book::{self, Opened};
 use super::exit::{Exit, Failure};
 use super::factors::working as write_working;
-use super::print::{Printer, TextColumn};
-use crate::book::Book;
-use crate::engine::columns::TenderSheet;
-use crate::engine::decision::Context;
-use crate::study::Desk;
+use super::print::Printer;
+use crate::engine::decision::uncertainty::RankCorrelation;
+use crate::study::StudyError;
 use crate::study::explain::StepRow;
-use crate::study::figures::group;
-use crate::study::losses::flag_meaning;
-use crate::study::tender::{
-    BasisForFactors, BidResult, LotResult, TenderResult, evaluate, working,
-};
+use crate::study::tender::{BidResult, Case, Draws, LotResult, TenderResult, letter, working};
 
 const KEYS: &[&str] = &[
     "lot",
@@ -35,6 +30,16 @@ const KEYS: &[&str] = &[
     "near_tie",
     "excluded",
 ];
+/// What a simulation adds to the line of a bid.
+const RISK_KEYS: &[&str] = &[
+    "probability_pu",
+    "mean_regret",
+    "owning_cost_p5",
+    "owning_cost_p50",
+    "owning_cost_p95",
+    "draws",
+    "seed",
+];
 
 /// A bid with its lot: a line of the CSV file.
 #[derive(Serialize)]
@@ -42,48 +47,23 @@ struct Line<'a> {
     lot: &'a str,
     #[serde(flatten)]
     bid: &'a BidResult,
+    #[serde(flatten)]
+    risk: Map<String, Value>,
 }
 
-/// Evaluates a tender of a book.
-pub(super) fn of_book(
-    args: &Args,
-    book: &Book,
-    tender: &str,
-    lot: Option<&str>,
-) -> Result<(TenderSheet, Option<Context>, TenderResult), Failure> {
-    let sheet = book.tender(tender)?;
-    let context = context_for(args, book, &sheet)?;
-    let result = evaluate(&sheet, basis(context.as_ref()).as_ref(), lot)?;
-    Ok((sheet, context, result))
-}
-
-/// The basis of a tender; needed only where a lot leaves factors to it.
-pub(super) fn context_for(
-    args: &Args,
-    book: &Book,
-    sheet: &TenderSheet,
-) -> Result<Option<Context>, Failure> {
-    let lacking = |lot: &crate::engine::columns::Lot| {
-        lot.factor_a_per_kw.is_none()
-            || lot.factor_b_per_kw.is_none()
-            || lot.factor_aux_per_kw.is_none()
-    };
-    if !sheet.lots.iter().any(lacking) && args.basis.is_none() {
-        return Ok(None);
+impl<'a> Line<'a> {
+    fn new(lot: &'a LotResult, bid: &'a BidResult) -> Result<Self, Failure> {
+        let mut line = Self { lot: &lot.lot, bid, risk: Map::new() };
+        if let Some(risk) = &lot.risk
+            && let Some(of_bid) = risk.bids.iter().find(|of| of.bid == bid.bid)
+            && let Value::Object(figures) = serde_json::to_value(of_bid)?
+        {
+            line.risk = figures.into_iter().filter(|(key, _)| key != "bid").collect();
+            line.risk.insert("draws".to_owned(), risk.draws.into());
+            line.risk.insert("seed".to_owned(), risk.seed.into());
+        }
+        Ok(line)
     }
-    match Desk::basis_only(book, args.basis.as_deref()) {
-        Ok(desk) => Ok(Some(desk.context()?)),
-        // Without any basis the evaluation says which factor is missing.
-        Err(_) if args.basis.is_none() => Ok(None),
-        Err(error) => Err(error.into()),
-    }
-}
-
-pub(super) fn basis(context: Option<&Context>) -> Option<BasisForFactors<'_>> {
-    context.map(|context| BasisForFactors {
-        assumptions: &context.assumptions,
-        market: &context.market,
-    })
 }
 
 pub(super) fn tender(
@@ -92,91 +72,97 @@ pub(super) fn tender(
     printer: &mut Printer,
 ) -> Result<Exit, Failure> {
     let Opened { book, .. } = book::open_to_read(args)?;
-    let (sheet, context, result) = of_book(args, &book, &options.tender, options.lot.as_deref())?;
+    let case = Case::read(&book, &options.tender, args.basis.as_deref())?;
+    let mut result = case.evaluate(options.lot.as_deref())?;
+    if let Some(only) = &options.bid {
+        let mut bids = result.lots.iter().flat_map(|lot| &lot.bids).map(|bid| bid.bid.as_str());
+        if !bids.clone().any(|bid| bid == only) {
+            let place = format!("tender {}", result.tender);
+            return Err(StudyError::unknown("bid", only, place, &mut bids).into());
+        }
+    }
+    let asked = draws(&options.drawn)?;
+    let risk = options.risk || asked != Draws::default();
+    if risk {
+        case.add_risk(&mut result, &asked)?;
+    }
     match printer.format {
         Format::Json => printer.json(&result)?,
         Format::Csv => {
-            let lines = result
-                .lots
-                .iter()
-                .flat_map(|lot| lot.bids.iter().map(|bid| Line { lot: &lot.lot, bid }));
-            printer.csv(KEYS, lines)?;
+            let keys = if risk { [KEYS, RISK_KEYS].concat() } else { KEYS.to_vec() };
+            let bids =
+                result.lots.iter().flat_map(|lot| lot.bids.iter().map(move |bid| (lot, bid)));
+            let lines =
+                bids.map(|(lot, bid)| Line::new(lot, bid)).collect::<Result<Vec<_>, _>>()?;
+            printer.csv(&keys, lines.into_iter())?;
         }
         Format::Text => {
-            write(printer, &result)?;
-            if options.working {
-                for lot in &result.lots {
-                    for bid in &lot.bids {
-                        let basis = basis(context.as_ref());
-                        let w = working(&sheet, basis.as_ref(), &lot.lot, &bid.bid)?;
-                        printer.line("")?;
-                        printer.line(format!("Lot {}, bid {}", lot.lot, bid.bid))?;
-                        for steps in [&w.factors, &w.on_terms, &w.owning_cost] {
-                            write_working(printer, &StepRow::tree(steps), 0)?;
-                        }
-                        for steps in [&w.owning_cost_at_tolerance, &w.lot_cost] {
-                            write_working(printer, &StepRow::tree(steps), 0)?;
-                        }
-                    }
-                }
+            printer.letter(&letter::result(&case, &result))?;
+            if options.working || options.bid.is_some() {
+                write_workings(printer, &case, &result, options.bid.as_deref())?;
             }
         }
     }
-    Ok(Exit::Done)
+    Ok(said(printer, &result))
 }
 
-/// The result as text.
-pub(super) fn write(printer: &mut Printer, result: &TenderResult) -> Result<(), Failure> {
-    printer
-        .line(format!("Tender {}: owning cost per unit in {}.", result.tender, result.currency))?;
+/// Names the lots in which no bid can be ranked; without any winner there is no solution.
+pub(super) fn said(printer: &Printer, result: &TenderResult) -> Exit {
+    let mut won = false;
     for lot in &result.lots {
-        printer.line("")?;
-        write_lot(printer, lot, &result.currency)?;
+        won |= lot.least_owning_cost.is_some();
+        let why = match (&lot.least_owning_cost, lot.bids.is_empty()) {
+            (Some(_), _) => continue,
+            (None, true) => "has no bid; import them: ironhum import bids FILE",
+            (None, false) => "has no bid that keeps its limits",
+        };
+        printer.complain(&format!("tender {}: lot {} {why}", result.tender, lot.lot));
+    }
+    if won { Exit::Done } else { Exit::Infeasible }
+}
+
+fn write_workings(
+    printer: &mut Printer,
+    case: &Case,
+    result: &TenderResult,
+    only: Option<&str>,
+) -> Result<(), Failure> {
+    let basis = case.basis();
+    let wanted = |bid: &&BidResult| only.is_none_or(|only| only == bid.bid);
+    for lot in &result.lots {
+        for bid in lot.bids.iter().filter(wanted) {
+            let w = working(&case.sheet, basis.as_ref(), &lot.lot, &bid.bid)?;
+            printer.line("")?;
+            printer.line(format!("Lot {}, bid {}", lot.lot, bid.bid))?;
+            let figures = [&w.owning_cost, &w.owning_cost_at_tolerance, &w.lot_cost];
+            for steps in [&w.factors, &w.on_terms].into_iter().chain(figures) {
+                write_working(printer, &StepRow::tree(steps), 0)?;
+            }
+        }
     }
     Ok(())
 }
 
-const TEXT: &[&str] = &[
-    "rank",
-    "bid",
-    "bidder",
-    "price",
-    "added_cost",
-    "no_load_cost",
-    "load_cost",
-    "auxiliary_cost",
-    "owning_cost",
-    "near_tie",
-];
+/// How the draws were asked for.
+pub(super) fn draws(options: &Drawn) -> Result<Draws, Failure> {
+    let correlations = options.correlate.iter().map(|text| correlation(text));
+    let usual = Draws::default();
+    Ok(Draws {
+        draws: options.draws.unwrap_or(usual.draws),
+        seed: options.seed.unwrap_or(usual.seed),
+        correlations: correlations.collect::<Result<_, _>>()?,
+    })
+}
 
-fn write_lot(printer: &mut Printer, lot: &LotResult, currency: &str) -> Result<(), Failure> {
-    printer.line(format!(
-        "Lot {}, {} units. A {} B {} aux {} {currency} per kW of loss, once.",
-        lot.lot,
-        lot.quantity,
-        group(lot.factor_a_per_kw, 2),
-        group(lot.factor_b_per_kw, 2),
-        group(lot.factor_aux_per_kw, 2)
-    ))?;
-    let ranked = lot.bids.iter().filter(|bid| bid.rank.is_some());
-    printer.table(&TextColumn::list(TEXT, currency), ranked)?;
-    match (&lot.least_owning_cost, &lot.recommended) {
-        (Some(least), Some(leads)) if least == leads => {
-            printer.line(format!("{least} costs least to own."))?;
-        }
-        (Some(least), Some(leads)) => printer.line(format!(
-            "{least} costs least to own; {leads} leads inside the near-tie band, its price with adders is lowest."
-        ))?,
-        _ => printer.line("No bid can be ranked.")?,
+fn correlation(text: &str) -> Result<RankCorrelation, Failure> {
+    let parts: Vec<&str> = text.split(',').map(str::trim).collect();
+    if let [a, b, rho] = parts[..]
+        && let Ok(rank_correlation) = rho.parse()
+    {
+        return Ok(RankCorrelation { quantities: [a.to_owned(), b.to_owned()], rank_correlation });
     }
-    if let Some(margin) = lot.margin_pct {
-        printer.line(format!("The second costs {} % more to own.", group(margin, 2)))?;
-    }
-    for bid in lot.bids.iter().filter(|bid| bid.rank.is_none()) {
-        printer.line(format!("Out: {} misses {}.", bid.bid, bid.excluded.join(", ")))?;
-    }
-    for flag in &lot.flags {
-        printer.line(format!("! {flag}: {}", flag_meaning(flag).unwrap_or_default()))?;
-    }
-    Ok(())
+    let why = format!(
+        "--correlate {text}: write two inputs and their rank correlation, like energy_price_per_kwh,load_growth_pct,0.4"
+    );
+    Err(Failure::new(Exit::Usage, why))
 }

@@ -8,27 +8,48 @@ use super::print::{Printer, TextColumn};
 use crate::engine::columns;
 use crate::study::Desk;
 use crate::study::estimate::EstimatedRow;
+use crate::study::explain::{Explained as _, Opening};
 use crate::study::figures::group;
 use crate::study::losses::flag_meaning;
-use crate::study::unit::{Dossier, dossier};
+use crate::study::unit::{Dossier, Question};
 
 pub(super) fn unit(args: &Args, options: &Unit, printer: &mut Printer) -> Result<Exit, Failure> {
     let Opened { book, .. } = book::open_to_read(args)?;
     let unit = book.unit(&options.unit)?;
     let desk = Desk::read(&book, args.basis.as_deref())?;
-    let dossier = dossier(&desk, &unit)?;
+    let context = desk.context()?;
+    let question = Question::new(&desk, &context, &unit)?;
+    let mut dossier = question.dossier()?;
+    let which = match options.working.as_deref() {
+        // Present values are taken down to the years, which is long: only where asked for.
+        None => Opening::Without("keep_or_replace"),
+        Some("") => Opening::All,
+        Some(figure) => Opening::One(figure),
+    };
+    if printer.format == Format::Json || options.working.is_some() {
+        dossier.working = question.workings(which)?;
+    }
     match printer.format {
         Format::Json => printer.json(&dossier)?,
         Format::Csv => {
             let years = dossier.keep_or_replace.as_ref().map_or(&[][..], |k| &k.years);
             printer.csv(&["offset", "year", "offer", "pv"], years.iter())?;
         }
-        Format::Text => text(printer, &dossier, options.working)?,
+        Format::Text => {
+            if !matches!(which, Opening::One(_)) {
+                text(printer, &dossier)?;
+            }
+            for figure in &dossier.working {
+                printer.line("")?;
+                printer.line(format!("How {} comes about:", figure.figure))?;
+                working(printer, &figure.steps, 1)?;
+            }
+        }
     }
     Ok(Exit::Done)
 }
 
-fn text(printer: &mut Printer, d: &Dossier<'_>, with_working: bool) -> Result<(), Failure> {
+fn text(printer: &mut Printer, d: &Dossier<'_>) -> Result<(), Failure> {
     printer.line(format!("Unit {}, basis {}", d.unit, d.basis))?;
     printer.line("")?;
     for column in columns::Unit::COLUMNS {
@@ -130,10 +151,6 @@ fn text(printer: &mut Printer, d: &Dossier<'_>, with_working: bool) -> Result<()
     }
     for flag in &d.flags {
         printer.line(format!("! {flag}: {}", flag_meaning(flag).unwrap_or_default()))?;
-    }
-    if with_working {
-        printer.line("")?;
-        working(printer, &d.working, 0)?;
     }
     Ok(())
 }

@@ -4,6 +4,7 @@ use super::args::{Format, Work};
 use super::exit::{Exit, Failure};
 use super::factors::working;
 use super::print::{Printer, TextColumn};
+use crate::study::StudyError;
 use crate::study::work::{CalcRow, InputRow, list, work as ask};
 
 #[derive(serde::Serialize)]
@@ -14,13 +15,15 @@ struct List {
 pub(super) fn work(options: &Work, printer: &mut Printer) -> Result<Exit, Failure> {
     match &options.calc {
         None => catalogue(printer, list(None)?),
-        Some(calc) if options.inputs.is_empty() => catalogue(printer, list(Some(calc))?),
+        Some(calc) if options.inputs.is_empty() => {
+            catalogue(printer, list(Some(calc)).map_err(usage)?)
+        }
         Some(calc) => run(printer, calc, &options.inputs),
     }
 }
 
 fn run(printer: &mut Printer, calc: &str, inputs: &[String]) -> Result<Exit, Failure> {
-    let result = ask(calc, inputs)?;
+    let result = ask(calc, inputs).map_err(usage)?;
     match printer.format {
         Format::Json => printer.json(&result)?,
         Format::Csv => {
@@ -41,6 +44,13 @@ fn run(printer: &mut Printer, calc: &str, inputs: &[String]) -> Result<Exit, Fai
         }
     }
     Ok(Exit::Done)
+}
+
+/// A calculation or input that is not known is wrong use, a value that is refused is rejected input.
+fn usage(error: StudyError) -> Failure {
+    let named = matches!(&error, StudyError::Refused { refusal, .. } if ["calc", "input"].contains(&refusal.quantity));
+    let failure = Failure::from(error);
+    if named { Failure { exit: Exit::Usage, ..failure } } else { failure }
 }
 
 fn catalogue(printer: &mut Printer, calcs: Vec<CalcRow>) -> Result<Exit, Failure> {

@@ -40,6 +40,7 @@ flags! {
     22, LOSSES_SWAPPED, "losses_swapped", "the load loss is below the no-load loss: were they exchanged?";
     23, LAW_NOT_CHECKED, "law_not_checked", "the law that is named could not be held against an offer or bid; it passes";
     24, QUANTITY_SHORT, "quantity_short", "the bid offers fewer units than the lot asks for";
+    25, OFFER_OVERLOADED, "offer_overloaded", "the best offer is smaller than the peak load of a year of its service; set loading_limit_pu to rule that out";
 }
 
 impl Flags {

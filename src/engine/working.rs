@@ -57,6 +57,8 @@ pub trait Recorder {
     fn close(&mut self, formula: &'static Formula, inputs: &[(&str, f64)], value: f64) -> f64;
     /// Says what the step stated last is about.
     fn about(&mut self, of: &dyn Fn() -> String);
+    /// Whether anything is kept of what is stated: what is known already is computed again only for a listener.
+    fn listens(&self) -> bool;
 }
 
 /// Computes without a word.
@@ -76,6 +78,10 @@ impl Recorder for Silent {
     }
     #[inline(always)]
     fn about(&mut self, _: &dyn Fn() -> String) {}
+    #[inline(always)]
+    fn listens(&self) -> bool {
+        false
+    }
 }
 
 /// Keeps every step.
@@ -94,6 +100,16 @@ impl Working {
     /// The steps, given away.
     pub fn into_steps(self) -> Vec<Step> {
         self.done
+    }
+
+    /// The steps on the outermost level that give one of these symbols, given away.
+    pub fn only(self, symbols: &[&str]) -> Vec<Step> {
+        self.done.into_iter().filter(|step| symbols.contains(&step.formula.symbol)).collect()
+    }
+
+    /// Takes over steps that were stated elsewhere.
+    pub fn append(&mut self, steps: impl IntoIterator<Item = Step>) {
+        self.place().extend(steps);
     }
 
     fn place(&mut self) -> &mut Vec<Step> {
@@ -129,6 +145,10 @@ impl Recorder for Working {
         if let Some(step) = self.place().last_mut() {
             step.of = of();
         }
+    }
+
+    fn listens(&self) -> bool {
+        true
     }
 }
 

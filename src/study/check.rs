@@ -132,7 +132,8 @@ struct Profiles(Vec<(String, Ratios)>);
 
 impl Profiles {
     fn of(profiles: &[Profile]) -> Self {
-        let known = profiles.iter().filter_map(|p| Some((p.profile.clone(), p.ratios().ok()?)));
+        let known =
+            profiles.iter().filter_map(|p| Some((p.profile.clone(), p.ratios(&mut Silent).ok()?)));
         Self(known.collect())
     }
 
@@ -353,7 +354,11 @@ impl Doubts {
         let desk = Desk::basis_only(book, Some(name))?;
         let of = ("basis", name);
         match desk.context() {
-            Ok(_) => {}
+            Ok(context) => {
+                for refusal in context.market.profiles.iter().filter_map(|p| p.as_ref().err()) {
+                    self.add(of, refusal.quantity, Kind::Contradictory, refusal.to_string());
+                }
+            }
             Err(StudyError::Refused { refusal, .. }) => {
                 self.add(of, refusal.quantity, Kind::Contradictory, refusal.to_string());
             }

@@ -3,7 +3,8 @@
 use std::sync::{Arc, OnceLock};
 
 use crate::book::Book;
-use crate::engine::columns::{BasisSheet, Offer, Unit};
+use crate::engine::Refusal;
+use crate::engine::columns::{BasisSheet, CapitalRecovery, Offer, Unit};
 use crate::engine::decision::estimate::FleetEstimate;
 use crate::engine::decision::fleet::FleetColumns;
 use crate::engine::decision::{Candidate, Context, UnitFacts};
@@ -12,7 +13,11 @@ use crate::engine::economics::assumptions::EnergyPrice;
 use crate::engine::flags::Flags;
 use crate::engine::law::{self, Subject};
 use crate::engine::loading::{Market, PriceSeries, Profile, Ratios};
+use crate::engine::working::Silent;
 use crate::study::StudyError;
+
+/// How often a book is read again that others write to meanwhile.
+const TRIES: usize = 5;
 
 /// Everything a question needs, in memory. What is large is shared: a clone with another basis is cheap.
 #[derive(Clone, Debug)]
@@ -41,9 +46,17 @@ impl Desk {
     /// # Errors
     /// The book fails or does not know the basis or its price series.
     pub fn read(book: &Book, basis: Option<&str>) -> Result<Self, StudyError> {
-        let sheet = book.basis(basis)?;
-        let series = Self::series_of(book, &sheet)?;
-        Self::new(book.fleet()?, book.offers()?, book.profiles()?, series, sheet)
+        // Several statements and connections read: once more where somebody wrote in between.
+        for _ in 0..TRIES {
+            let version = book.data_version()?;
+            let sheet = book.basis(basis)?;
+            let series = Self::series_of(book, &sheet)?;
+            let (fleet, offers, profiles) = (book.fleet()?, book.offers()?, book.profiles()?);
+            if book.data_version()? == version {
+                return Self::new(fleet, offers, profiles, series, sheet);
+            }
+        }
+        Err(StudyError::Busy)
     }
 
     /// Reads a basis with its profiles and prices, without the fleet and the offers: enough for loss factors.
@@ -75,7 +88,7 @@ impl Desk {
         sheet: BasisSheet,
     ) -> Result<Self, StudyError> {
         let candidates = offers.iter().map(Candidate::of_offer).collect::<Result<_, _>>()?;
-        let ratios = profiles.iter().map(Profile::ratios).collect::<Result<_, _>>()?;
+        let ratios = profiles.iter().map(|p| p.ratios(&mut Silent)).collect::<Result<_, _>>()?;
         Ok(Self {
             fleet: fleet.into(),
             estimate: Arc::default(),
@@ -111,10 +124,11 @@ impl Desk {
                 })?;
                 let both =
                     series.co2_kg_per_kwh.is_some() && self.sheet.basis.carbon_kg_per_kwh.is_some();
-                let market = Market::of_series(series, &self.profiles, a.carbon_kg_per_kwh)?;
+                let market = Market::of_series(series, &self.profiles, a.carbon_kg_per_kwh);
                 (market, Flags::NONE.with_if(both, Flags::CARBON_SERIES))
             }
         };
+        self.lives(&a)?;
         let (candidates, law_flags) = self.candidates_under(&a)?;
         let ratios = self.ratios.clone();
         let estimate = a.estimate_missing.then(|| Arc::clone(self.estimate()));
@@ -160,6 +174,21 @@ impl Desk {
             }
         }
         Ok((candidates, flags))
+    }
+
+    /// Holds that every offer has a life where capital is charged per year of service.
+    fn lives(&self, a: &Assumptions) -> Result<(), StudyError> {
+        let needed = a.capital_recovery == CapitalRecovery::Annuity && a.life_years.is_none();
+        match self.offers.iter().find(|offer| needed && offer.life_years.is_none()) {
+            None => Ok(()),
+            Some(offer) => {
+                let why = format!(
+                    "offer {} has none: give it there or in the basis, or choose capital_recovery \"full\"",
+                    offer.offer
+                );
+                Err(Refusal::new("life_years", "", why).into())
+            }
+        }
     }
 
     /// The name of an offer by its index.

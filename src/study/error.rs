@@ -31,6 +31,9 @@ pub enum StudyError {
     /// The book fails.
     #[error("{0}")]
     Book(#[from] BookError),
+    /// Others kept writing while the book was read.
+    #[error("the book changed while it was read; try again when the import has ended")]
+    Busy,
     /// The work was stopped.
     #[error("stopped")]
     Stopped,

@@ -82,6 +82,11 @@ figures! {
     "auxiliary_excess_w" "aux excess" "W" 0 "measured above guaranteed auxiliary loss";
     "penalty" "penalty" "money" 0 "what the excess losses are worth";
     "beyond_tolerance" "beyond" "" 0 "beyond the tolerance of the lot";
+    "probability_pu" "cheapest" "pu" 3 "part of the draws in which the bid is the cheapest to own";
+    "mean_regret" "mean regret" "money" 0 "mean of what the bid costs above the cheapest of each draw";
+    "owning_cost_p5" "P5" "money" 0 "owning cost that 5 % of the draws stay below";
+    "owning_cost_p50" "P50" "money" 0 "median owning cost";
+    "owning_cost_p95" "P95" "money" 0 "owning cost that 95 % of the draws stay below";
     "factor_a_per_kw" "A" "money/kW" 2 "value of a kW of no-load loss, once";
     "factor_b_per_kw" "B" "money/kW" 2 "value of a kW of load loss at rated load, once";
     "factor_aux_per_kw" "A aux" "money/kW" 2 "value of a kW of auxiliary loss, once";
@@ -113,6 +118,16 @@ pub fn group(value: f64, places: usize) -> String {
     out
 }
 
+/// A number for people with as many places as it needs, three at most.
+pub fn short(value: f64) -> String {
+    let text = group(value, 3);
+    if text.contains('.') {
+        text.trim_end_matches('0').trim_end_matches('.').to_owned()
+    } else {
+        text
+    }
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;
@@ -123,6 +138,7 @@ mod tests {
         assert_eq!(group(-999.5, 0), "−1 000");
         assert_eq!(group(-0.4, 0), "0");
         assert_eq!(group(0.0, 2), "0.00");
+        assert_eq!([short(25_000.0), short(0.4), short(1.23456)], ["25 000", "0.4", "1.235"]);
     }
 
     #[test]

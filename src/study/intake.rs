@@ -76,6 +76,8 @@ pub struct Options<'a> {
     pub dry_run: bool,
     /// Where bad rows are written with their reason.
     pub rejects: Option<Box<dyn Write + 'a>>,
+    /// Make a basis the current one.
+    pub current: bool,
     /// Name of a price series; else that of the file.
     pub name: Option<String>,
     /// What the caller says about the file.

@@ -9,11 +9,10 @@ use serde::{Serialize, Serializer};
 
 use crate::engine::decision::estimate::End;
 use crate::engine::decision::fleet::{CHUNK, Kernel, Outcome};
-use crate::engine::decision::keep_or_replace::payback_years;
+use crate::engine::decision::keep_or_replace::FirstYear;
 use crate::engine::decision::place::resolve;
 use crate::engine::decision::{Context, LeftOut};
 use crate::engine::flags::Flags;
-use crate::engine::transformer::losses::annual_energy;
 use crate::engine::working::Silent;
 use crate::study::{Desk, StudyError, Watch};
 
@@ -274,17 +273,11 @@ impl Ranking {
         let t = outcome.best_year_offset;
         let candidate = (outcome.best_offer != Outcome::NONE)
             .then(|| &self.context.candidates[outcome.best_offer as usize]);
-        let saved = candidate.map(|c| {
-            let k = usize::from(t) + 1;
-            let year =
-                |losses| annual_energy(&mut Silent, losses, &resolved.duty, k, a.load_growth_years);
-            let (old, new) = (year(&resolved.losses), year(&c.losses));
-            let co2 = |e: &crate::engine::transformer::losses::Energy| {
-                (e.no_load_energy_kwh + e.auxiliary_energy_kwh)
-                    * resolved.duty.no_load_co2_kg_per_kwh
-                    + e.load_energy_kwh * resolved.duty.load_co2_kg_per_kwh
-            };
-            (old.total_kwh() - new.total_kwh(), co2(&old) - co2(&new))
+        let first_year = candidate.map(|candidate| FirstYear {
+            place: &resolved,
+            candidate,
+            offset: usize::from(t),
+            assumptions: a,
         });
         #[expect(clippy::cast_possible_truncation, reason = "a calendar year")]
         let year_made = (!facts.year_made.is_nan()).then_some(facts.year_made as i64);
@@ -304,12 +297,17 @@ impl Ranking {
             best_pv: outcome.best_pv,
             saving_pv: outcome.saving_pv(),
             waiting_pv: outcome.waiting_pv,
-            payback_years: candidate
-                .and_then(|c| payback_years(&mut Silent, &resolved, c, usize::from(t), a)),
+            payback_years: first_year.and_then(|year| year.payback_years(&mut Silent)),
             capital: candidate.map(crate::engine::decision::Candidate::price_installed),
-            energy_saved_kwh: saved.map(|(energy, _)| energy),
-            co2_saved_kg: saved.map(|(_, co2)| co2),
-            flags: outcome.flags.keys(),
+            energy_saved_kwh: first_year.map(|year| year.energy_saved_kwh(&mut Silent)),
+            co2_saved_kg: first_year.map(|year| year.co2_saved_kg(&mut Silent)),
+            flags: outcome
+                .flags
+                .with_if(
+                    candidate.is_some_and(|c| c.overloaded(&resolved.duty, usize::from(t), a)),
+                    Flags::OFFER_OVERLOADED,
+                )
+                .keys(),
             rank_low: could_stand.low,
             rank_high: could_stand.high,
         })

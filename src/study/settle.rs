@@ -3,17 +3,25 @@
 //! [`settle`] answers for a whole tender or one lot, [`working`] opens the penalty of one unit. Amounts are per
 //! unit in the tender currency. The structs serialise with the names of the contract; what they add stands last.
 
+pub mod letter;
+mod workings;
+
+pub use workings::Settled;
+
 use serde::Serialize;
 
 use super::StudyError;
-use super::tender::{BasisForFactors, bids_of, bring, find_bid, find_lot, terms};
+use super::tender::{BasisForFactors, bids_of, bring, factor_scale, find_bid, find_lot, terms};
 use crate::engine::columns::{Bid, Lot, Measured, Settlement, TenderSheet};
 use crate::engine::decision::tender::Terms;
 use crate::engine::decision::tender::bid::Comparable;
 use crate::engine::decision::tender::settlement::{
-    Delivered, Excess, beyond, delivered, mean, penalty,
+    Delivered, Excess, beyond, delivered, mean, mean_cost, penalty, penalty_of_mean,
+    penalty_of_units,
 };
-use crate::engine::working::{Silent, Step, Working};
+use crate::engine::decision::tender::tolerance::Exceeded;
+use crate::engine::flags::Flags;
+use crate::engine::working::{Recorder, Silent, Step, Working};
 
 /// The settlement of a tender.
 #[derive(Clone, Debug, PartialEq, Serialize)]
@@ -43,6 +51,50 @@ pub struct LotSettlement {
     pub owning_cost_promised: f64,
     /// Mean owning cost of the measured units as delivered, before the penalty.
     pub owning_cost_delivered: f64,
+    /// Who bid.
+    pub bidder: Option<String>,
+    /// Number of units of the lot.
+    pub quantity: i64,
+    /// Value of a kW of no-load loss.
+    pub factor_a_per_kw: f64,
+    /// Value of a kW of load loss at the bid's rating.
+    pub factor_b_per_kw: f64,
+    /// Value of a kW of auxiliary loss.
+    pub factor_aux_per_kw: f64,
+    /// What one unit promised, at the lot's reference temperature.
+    pub guaranteed: Guaranteed,
+    /// What one unit exceeds the guarantee by on the mean; none where each is settled on its own.
+    pub mean_excess: Option<MeanExcess>,
+    /// What is doubtful about the factors or the lot.
+    pub flags: Vec<&'static str>,
+}
+
+/// Guaranteed losses of one unit.
+#[derive(Clone, Copy, Debug, PartialEq, Serialize)]
+pub struct Guaranteed {
+    /// Rated power.
+    pub rated_kva: f64,
+    /// No-load loss.
+    pub no_load_loss_w: f64,
+    /// Load loss at the lot's reference temperature.
+    pub load_loss_w: f64,
+    /// Auxiliary loss.
+    pub auxiliary_loss_w: f64,
+    /// The lot's reference temperature.
+    pub reference_temp_c: Option<f64>,
+    /// The lot's rule for losses above the guarantee.
+    pub tolerance: &'static str,
+}
+
+/// Mean losses above the guarantee (below: negative).
+#[derive(Clone, Copy, Debug, PartialEq, Serialize)]
+pub struct MeanExcess {
+    /// Of the no-load loss.
+    pub no_load_excess_w: f64,
+    /// Of the load loss.
+    pub load_excess_w: f64,
+    /// Of the auxiliary loss.
+    pub auxiliary_excess_w: f64,
 }
 
 /// The settlement of a unit.
@@ -66,6 +118,31 @@ pub struct UnitSettlement {
     pub owning_cost_delivered: f64,
     /// What is doubtful.
     pub flags: Vec<&'static str>,
+    /// Measured no-load loss.
+    pub no_load_loss_w: f64,
+    /// Measured load loss, brought to the lot's reference temperature.
+    pub load_loss_w: f64,
+    /// Measured auxiliary loss.
+    pub auxiliary_loss_w: Option<f64>,
+    /// Load loss as the test read it.
+    pub test_load_loss_w: f64,
+    /// Winding temperature of the test.
+    pub test_temp_c: Option<f64>,
+    /// Date of the test.
+    pub tested_on: Option<String>,
+    /// Parts of the tolerance that it exceeds.
+    pub exceeds: Vec<ExceedsRow>,
+}
+
+/// A part of the tolerance that a unit exceeds; percent of the guarantee.
+#[derive(Clone, Copy, Debug, PartialEq, Serialize)]
+pub struct ExceedsRow {
+    /// `no-load loss`, `load loss` or `total loss`.
+    pub loss: &'static str,
+    /// How far it lies above the guarantee; none where nothing was guaranteed.
+    pub excess_pct: Option<f64>,
+    /// How far it may.
+    pub allowed_pct: f64,
 }
 
 /// Settles the measured units of a tender: of one lot, or of all.
@@ -116,14 +193,7 @@ pub fn working(
         StudyError::unknown("serial", serial, place, known)
     })?;
     let mut working = Working::default();
-    let (terms, bid) = (&guarantee.terms, guarantee.bid);
-    let promise = bring(&mut working, terms, bid)?;
-    let own = delivered(&mut working, terms, bid, &promise, unit).excess;
-    let counted = match guarantee.rule() {
-        Settlement::Unit => own,
-        Settlement::LotMean => mean(&mut working, &guarantee.excesses()),
-    };
-    penalty(&mut working, &promise.factors, &counted);
+    guarantee.state_penalty(&mut working, unit)?;
     Ok(working.into_steps())
 }
 
@@ -137,6 +207,7 @@ struct Guarantee<'a> {
     bid: &'a Bid,
     promise: Comparable,
     units: Vec<&'a Measured>,
+    flags: Flags,
 }
 
 impl<'a> Guarantee<'a> {
@@ -146,9 +217,11 @@ impl<'a> Guarantee<'a> {
         lot: &'a Lot,
         bid: &'a Bid,
     ) -> Result<Self, StudyError> {
-        let (terms, _) = terms(&mut Silent, sheet, basis, lot)?;
+        let (terms, flags) = terms(&mut Silent, sheet, basis, lot)?;
         let promise = bring(&mut Silent, &terms, bid)?;
-        Ok(Self { terms, bid, promise, units: measured_of(sheet, bid).collect() })
+        // As it is shown wherever the tender is.
+        let flags = flags.with_if(factor_scale(sheet, &terms)?, Flags::FACTOR_SCALE);
+        Ok(Self { terms, bid, promise, units: measured_of(sheet, bid).collect(), flags })
     }
 
     fn rule(&self) -> Settlement {
@@ -164,47 +237,87 @@ impl<'a> Guarantee<'a> {
     }
 
     fn settle(&self) -> LotSettlement {
-        let factors = &self.promise.factors;
-        let of_mean = match self.rule() {
+        let (factors, losses) = (&self.promise.factors, &self.promise.losses);
+        let mean = match self.rule() {
             Settlement::Unit => None,
-            Settlement::LotMean => {
-                Some(penalty(&mut Silent, factors, &mean(&mut Silent, &self.excesses())))
-            }
+            Settlement::LotMean => Some(mean(&mut Silent, &self.excesses())),
         };
+        let of_mean = mean.map(|mean| penalty(&mut Silent, factors, &mean));
         let units: Vec<UnitSettlement> =
             self.units.iter().map(|unit| self.settle_unit(unit, of_mean)).collect();
-        #[expect(clippy::cast_precision_loss, reason = "a lot has at most ten million units")]
-        let tested = units.len() as f64;
+        let tested = units.len();
         LotSettlement {
             lot: self.bid.lot.clone(),
             bid: self.bid.bid.clone(),
             penalty: of_mean.map_or_else(
-                || units.iter().map(|unit| unit.penalty).sum(),
-                |of_mean| of_mean * tested,
+                || penalty_of_units(&mut Silent, units.iter().map(|unit| unit.penalty)),
+                |of_mean| penalty_of_mean(&mut Silent, of_mean, tested),
             ),
             settlement: self.rule().word(),
             owning_cost_promised: self.promise.owning_cost(&mut Silent).total(),
-            owning_cost_delivered: units.iter().map(|unit| unit.owning_cost_delivered).sum::<f64>()
-                / tested,
+            owning_cost_delivered: mean_cost(
+                &mut Silent,
+                units.iter().map(|unit| unit.owning_cost_delivered),
+                tested,
+            ),
+            bidder: self.bid.bidder.clone(),
+            quantity: self.terms.quantity(),
+            factor_a_per_kw: factors.factor_a_per_kw,
+            factor_b_per_kw: factors.factor_b_per_kw,
+            factor_aux_per_kw: factors.factor_aux_per_kw,
+            guaranteed: Guaranteed {
+                rated_kva: losses.rated_kva,
+                no_load_loss_w: losses.no_load_loss_w,
+                load_loss_w: losses.load_loss_w,
+                auxiliary_loss_w: losses.auxiliary_loss_w,
+                reference_temp_c: self.terms.lot.reference_temp_c,
+                tolerance: self.terms.tolerance().word(),
+            },
+            mean_excess: mean.map(|mean| MeanExcess {
+                no_load_excess_w: mean.no_load_w,
+                load_excess_w: mean.load_w,
+                auxiliary_excess_w: mean.auxiliary_w.unwrap_or(0.0),
+            }),
+            flags: self.flags.keys(),
             units,
         }
+    }
+
+    /// A unit as a bid with the losses that were measured.
+    fn as_delivered<R: Recorder>(&self, w: &mut R, unit: &Measured) -> Comparable {
+        let delivered = delivered(w, &self.terms, self.bid, &self.promise, unit);
+        Comparable { losses: delivered.losses, ..self.promise }
     }
 
     fn settle_unit(&self, unit: &Measured, of_mean: Option<f64>) -> UnitSettlement {
         let delivered = self.delivered(unit);
         let (excess, factors) = (delivered.excess, &self.promise.factors);
-        let (beyond_tolerance, rejectable) = beyond(&self.terms, &self.promise, &excess);
-        let as_delivered = Comparable { losses: delivered.losses, ..self.promise };
+        let (exceeded, rejectable) = beyond(&mut Silent, &self.terms, &self.promise, &excess);
+        let as_delivered = self.as_delivered(&mut Silent, unit);
         UnitSettlement {
             serial: unit.serial.clone(),
             no_load_excess_w: excess.no_load_w,
             load_excess_w: excess.load_w,
             auxiliary_excess_w: excess.auxiliary_w,
             penalty: of_mean.unwrap_or_else(|| penalty(&mut Silent, factors, &excess)),
-            beyond_tolerance,
+            beyond_tolerance: !exceeded.is_empty(),
             rejectable,
             owning_cost_delivered: as_delivered.owning_cost(&mut Silent).total(),
             flags: self.promise.flags.with(delivered.flags).keys(),
+            no_load_loss_w: unit.no_load_loss_w,
+            load_loss_w: delivered.losses.load_loss_w,
+            auxiliary_loss_w: unit.auxiliary_loss_w,
+            test_load_loss_w: unit.load_loss_w,
+            test_temp_c: unit.test_temp_c,
+            tested_on: unit.tested_on.clone(),
+            exceeds: exceeded
+                .into_iter()
+                .map(|Exceeded { loss, excess_pct, allowed_pct }| ExceedsRow {
+                    loss,
+                    excess_pct,
+                    allowed_pct,
+                })
+                .collect(),
         }
     }
 }

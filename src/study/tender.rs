@@ -5,8 +5,12 @@
 //! [`mod@risk`] says how sure the winner is, [`mod@award`] what one bidder for all lots costs.
 
 pub mod award;
+mod case;
+mod factors;
+pub mod letter;
 mod results;
 pub mod risk;
+mod workings;
 
 use super::StudyError;
 use crate::engine::columns::{Bid, Lot, TenderSheet};
@@ -24,6 +28,8 @@ use crate::engine::law::Verdict;
 use crate::engine::working::{Recorder, Silent, Step, Working};
 
 pub use crate::engine::decision::tender::BasisForFactors;
+pub use case::{Case, Draws};
+pub use factors::{InCurrency, LegalLimit, LotFactors, lot_factors};
 pub use results::*;
 
 /// Evaluates the bids of a tender: of one lot, or of all.
@@ -43,10 +49,12 @@ pub fn evaluate(
         find_lot(sheet, &bid.lot)?;
     }
     let lots = lots.into_iter().map(|lot| evaluate_lot(sheet, basis, lot));
+    let lots: Vec<LotResult> = lots.collect::<Result<_, _>>()?;
     Ok(TenderResult {
         tender: sheet.tender.tender.clone(),
         currency: sheet.tender.currency.clone(),
-        lots: lots.collect::<Result<_, _>>()?,
+        awards: award::awards(&lots),
+        lots,
     })
 }
 
@@ -283,7 +291,8 @@ impl<'a> Judged<'a> {
         let bids: Vec<Assessed> = bids.collect::<Result<_, _>>()?;
         let standings: Vec<Standing> = bids.iter().map(Assessed::standing).collect();
         let ranking = rank(&standings, terms.near_tie_pct);
-        let flags = flags.with_if(factors_look_per_watt(&bids), Flags::FACTOR_SCALE);
+        let flags = flags
+            .with_if(factors_look_per_watt(bids.iter().map(|bid| &bid.cost)), Flags::FACTOR_SCALE);
         let contest = Contest::new(&bids, &ranking, &terms);
         Ok(Self { terms, flags, bids, ranking, contest })
     }
@@ -309,8 +318,8 @@ fn evaluate_lot(
     let map = WinnerMap::new(&contest.planes, &terms.factors);
     let borders = contest.borders(&map, contestant);
     let map = contest.map(&map, ranking, contestant);
-    let nearest_border = contest.nearest_border(contestant);
-    let changes = contest.changes(&judged.bids, terms, basis, contestant)?;
+    let nearest_border = contest.nearest_border(&mut Silent, contestant);
+    let changes = contest.changes(&mut Silent, &judged.bids, terms, basis, contestant)?;
     let result = |i: usize, rank| judged.bids[i].result(terms, rank, ranking.band.contains(&i));
     let ranked = ranking.order.iter().enumerate().map(|(place, &i)| result(i, Some(place + 1)));
     let excluded = (0..judged.bids.len()).filter(|i| !judged.bids[*i].found.misses.is_empty());
@@ -330,17 +339,28 @@ fn evaluate_lot(
         near_tie_order: ranking.band.iter().map(|&i| judged.name(i)).collect(),
         borders,
         nearest_border,
+        near_tie_pct: terms.near_tie_pct,
         computed: Computed::by(lot),
+        risk: None,
     })
 }
 
 /// Whether every bid's capitalised losses are under 1 % of its price.
-fn factors_look_per_watt(bids: &[Assessed]) -> bool {
-    let small = |bid: &Assessed| {
-        let cost = &bid.cost;
-        cost.no_load_cost + cost.load_cost + cost.auxiliary_cost < 0.01 * cost.price
-    };
-    !bids.is_empty() && bids.iter().all(small)
+fn factors_look_per_watt<'a>(costs: impl IntoIterator<Item = &'a OwningCost>) -> bool {
+    let mut costs = costs.into_iter().peekable();
+    costs.peek().is_some()
+        && costs.all(|c| c.no_load_cost + c.load_cost + c.auxiliary_cost < 0.01 * c.price)
+}
+
+/// Whether the factors of a lot look like money per W: where they do, it is said wherever the tender is shown.
+///
+/// # Errors
+/// A bid that cannot be brought to the lot's terms.
+pub(super) fn factor_scale(sheet: &TenderSheet, terms: &Terms) -> Result<bool, StudyError> {
+    let cost = |bid| Ok(bring(&mut Silent, terms, bid)?.owning_cost(&mut Silent));
+    let costs: Vec<OwningCost> =
+        bids_of(sheet, &terms.lot.lot).map(cost).collect::<Result<_, StudyError>>()?;
+    Ok(factors_look_per_watt(&costs))
 }
 
 /// The admitted bids as planes over the factors, in order of entry.
@@ -390,8 +410,12 @@ impl Contest {
         Some(Field { planes: &self.planes, winner, factors: self.factors })
     }
 
-    fn nearest_border(&self, name: impl Fn(usize) -> String) -> Option<NearestBorderResult> {
-        let border = changes::nearest_border(&self.field()?)?;
+    fn nearest_border<R: Recorder>(
+        &self,
+        w: &mut R,
+        name: impl Fn(usize) -> String,
+    ) -> Option<NearestBorderResult> {
+        let border = changes::nearest_border(w, &self.field()?)?;
         Some(NearestBorderResult {
             at: border.at,
             distance_per_kw: border.distance_per_kw,
@@ -399,8 +423,9 @@ impl Contest {
         })
     }
 
-    fn changes(
+    fn changes<R: Recorder>(
         &self,
+        w: &mut R,
         assessed: &[Assessed],
         terms: &Terms,
         basis: Option<&BasisForFactors>,
@@ -409,8 +434,9 @@ impl Contest {
         let Some(field) = self.field() else { return Ok(Changes::default()) };
         let winner = &assessed[self.bids[field.winner]].on_terms;
         let losses = &winner.losses;
-        let mut found: Vec<Change> = field.of_factors().to_vec();
+        let mut found: Vec<Change> = field.of_factors(w).to_vec();
         found.extend(field.of_winner(
+            w,
             winner.price,
             losses.no_load_loss_w,
             losses.load_loss_w,
@@ -418,7 +444,7 @@ impl Contest {
         ));
         if let Some(basis) = basis.filter(|_| Computed::by(terms.lot).any()) {
             let at = format!("lot {}", terms.lot.lot);
-            let of_basis = field.of_basis(terms.lot, &terms.rates, basis);
+            let of_basis = field.of_basis(w, terms.lot, &terms.rates, basis);
             found.extend(of_basis.map_err(StudyError::refused(at))?);
         }
         let side = |side: Option<changes::Move>| {

@@ -1,22 +1,40 @@
-//! One unit's dossier: nameplate, loading, losses, and why it ranks where it does.
+//! One unit's dossier: nameplate, loading, losses, and why it ranks where it does. [`Question`] answers; its
+//! figures are opened in `workings`.
+
+mod workings;
 
 use serde::Serialize;
 use serde_json::{Map, Value};
 
 use crate::engine::columns::{Column, Unit, Value as Cell};
 use crate::engine::decision::fit::fitting;
-use crate::engine::decision::keep_or_replace::{Decision, YearChoice, age, decide};
+use crate::engine::decision::keep_or_replace::{Decision, FirstYear, YearChoice, decide};
 use crate::engine::decision::parts::{PolicyCost, of_choice};
-use crate::engine::decision::place::{Place, resolve};
-use crate::engine::decision::{Context, LeftOut};
-use crate::engine::economics::running_cost;
-use crate::engine::transformer::circuit::{PowerFactor, magnetising, of_nameplate};
+use crate::engine::decision::place::{Place, power_factor, resolve};
+use crate::engine::decision::{Context, LeftOut, UnitFacts};
+use crate::engine::transformer::circuit::{
+    Circuit, Magnetising, PowerFactor, magnetising, of_nameplate,
+};
+use crate::engine::transformer::losses::Losses;
 use crate::engine::transformer::{efficiency, regulation};
-use crate::engine::working::{Silent, Working};
+use crate::engine::working::{Recorder, Silent};
 use crate::study::estimate::EstimatedRow;
-use crate::study::explain::StepRow;
+use crate::study::explain::FigureWorking;
 use crate::study::losses::{LossesRow, of_unit};
 use crate::study::{Desk, StudyError};
+
+/// A unit under a basis: what a dossier is asked about.
+#[derive(Clone, Copy, Debug)]
+pub struct Question<'a> {
+    /// Fleet, offers and profiles.
+    pub desk: &'a Desk,
+    /// The basis resolved.
+    pub context: &'a Context,
+    /// Which unit of the fleet.
+    pub index: usize,
+    /// Its record.
+    pub unit: &'a Unit,
+}
 
 /// Keep or replace, one unit, as it is written in JSON.
 #[derive(Clone, Debug, PartialEq, Serialize)]
@@ -24,12 +42,18 @@ use crate::study::{Desk, StudyError};
 pub struct KeepOrReplace<'a> {
     pub keep_pv: f64,
     pub never_pv: f64,
-    pub best_pv: f64,
-    pub saving_pv: f64,
-    pub waiting_pv: f64,
+    pub now_offer: Option<&'a str>,
+    pub now_pv: Option<f64>,
     pub best_offer: Option<&'a str>,
     pub best_year_offset: Option<usize>,
     pub best_year: Option<i64>,
+    pub best_pv: f64,
+    pub saving_pv: f64,
+    pub waiting_pv: f64,
+    pub payback_years: Option<f64>,
+    pub capital: Option<f64>,
+    pub energy_saved_kwh: Option<f64>,
+    pub co2_saved_kg: Option<f64>,
     pub years: Vec<YearRow<'a>>,
     pub flags: Vec<&'static str>,
 }
@@ -57,12 +81,17 @@ pub fn decision(
         Ok(place) => place,
         Err(why) => return Ok(Err(why)),
     };
-    let terminals = &desk.fleet.terminals[desk.fleet.kind[i] as usize];
+    let fit = fitting_offers(desk, context, i);
     let a = &context.assumptions;
-    let fit = fitting(terminals, &context.candidates, a.offer_sizes);
     Ok(decide(&place, &context.candidates, &fit, a)?
         .map(|decision| (place, decision))
         .ok_or(LeftOut::NoOffer))
+}
+
+/// The offers that fit a unit, in catalogue order.
+fn fitting_offers(desk: &Desk, context: &Context, i: usize) -> Vec<usize> {
+    let terminals = &desk.fleet.terminals[desk.fleet.kind[i] as usize];
+    fitting(terminals, &context.candidates, context.assumptions.offer_sizes)
 }
 
 /// What the choices of a decision cost, by what causes it: keeping, the best bought now, the best of all.
@@ -96,35 +125,6 @@ pub fn choice_costs(
         now: of(decision.now)?,
         best: of(decision.best)?,
     })
-}
-
-/// The decision as it is written in JSON.
-pub fn keep_or_replace<'a>(
-    desk: &'a Desk,
-    context: &Context,
-    decision: &Decision,
-) -> KeepOrReplace<'a> {
-    let first_year = context.assumptions.first_year;
-    #[expect(clippy::cast_possible_wrap, reason = "at most 200 years")]
-    let year = |offset: usize| first_year + offset as i64;
-    let row = |choice: &YearChoice| YearRow {
-        offset: choice.offset,
-        year: year(choice.offset),
-        offer: desk.offer_name(choice.offer),
-        pv: choice.pv,
-    };
-    KeepOrReplace {
-        keep_pv: decision.keep_pv,
-        never_pv: decision.keep_pv,
-        best_pv: decision.best_pv,
-        saving_pv: decision.saving_pv(),
-        waiting_pv: decision.waiting_pv,
-        best_offer: decision.best.map(|choice| desk.offer_name(choice.offer)),
-        best_year_offset: decision.best.map(|choice| choice.offset),
-        best_year: decision.best.map(|choice| year(choice.offset)),
-        years: decision.years.iter().map(row).collect(),
-        flags: decision.flags.keys(),
-    }
 }
 
 /// Circuit of a unit in per unit of its rating.
@@ -183,82 +183,144 @@ pub struct Dossier<'a> {
     /// Why it cannot be ranked.
     pub left_out: Option<&'static str>,
     pub flags: Vec<&'static str>,
-    pub working: Vec<StepRow>,
+    /// How its figures come about, as far as they are opened.
+    pub working: Vec<FigureWorking>,
 }
 
-/// The dossier of a unit.
-///
-/// # Errors
-/// What the engine refuses of the basis; a unit that is not on the desk.
-pub fn dossier<'a>(desk: &'a Desk, unit: &Unit) -> Result<Dossier<'a>, StudyError> {
-    let context = desk.context()?;
-    let i = desk
-        .find(&unit.unit)
-        .ok_or_else(|| StudyError::unknown("unit", &unit.unit, "the book", []))?;
-    let a = &context.assumptions;
-    let mut working = Working::default();
-    let place = resolve(&mut working, &desk.fleet.facts(i), &context);
-    let regulated = unit.power_factor.unwrap_or(0.9);
-    let losses = place.as_ref().ok().map(|place| place.losses);
-    let circuit = losses
-        .zip(unit.impedance_pct)
-        .and_then(|(l, z)| of_nameplate(&mut working, l.rated_kva, l.load_loss_w, z).ok());
-    let pf = PowerFactor::lagging(regulated)?;
-    let load_points = [0.25, 0.5, 0.75, 1.0, 1.25].map(|load_pu| LoadPoint {
-        load_pu,
-        efficiency_pct: losses
-            .and_then(|l| efficiency::at_load(&mut Silent, &l, load_pu, regulated).ok())
-            .map(|pu| 100.0 * pu),
-        regulation_pct: circuit.map(|c| 100.0 * regulation::exact(&mut Silent, &c, load_pu, pf)),
-    });
-    let magnetised = losses
-        .zip(unit.no_load_current_pct)
-        .and_then(|(l, i0)| magnetising(&mut working, l.rated_kva, l.no_load_loss_w, i0).ok());
-    let best_load_pu = losses.and_then(|l| efficiency::best_load(&mut working, &l).ok());
-    if let Ok(place) = &place {
-        let age = age(place.year_made, a.first_year, 1);
-        running_cost::of_year(&mut working, &place.losses, &place.duty, a, 1, age);
+/// Loads at which efficiency and regulation are shown (pu).
+const LOADS: [f64; 5] = [0.25, 0.5, 0.75, 1.0, 1.25];
+
+impl<'a> Question<'a> {
+    /// A unit that lies on a desk, by its record.
+    ///
+    /// # Errors
+    /// A unit that is not on the desk.
+    pub fn new(desk: &'a Desk, context: &'a Context, unit: &'a Unit) -> Result<Self, StudyError> {
+        let index = desk.find(&unit.unit);
+        let index = index.ok_or_else(|| StudyError::unknown("unit", &unit.unit, "the book", []))?;
+        Ok(Self { desk, context, index, unit })
     }
-    let decided = decision(desk, &context, i)?;
-    let left_out = decided.as_ref().err().map(|why| why.why());
-    let flags = match (&decided, &place) {
-        (Ok((_, decision)), _) => decision.flags,
-        (Err(_), Ok(place)) => place.flags,
-        (Err(_), Err(_)) => context.flags,
-    };
-    Ok(Dossier {
-        unit: unit.unit.clone(),
-        basis: a.name.clone(),
-        currency: a.currency.clone(),
-        nameplate: json_of(Unit::COLUMNS, &unit.values()),
-        circuit: circuit.map(|c| CircuitRow {
-            r_pu: c.r_pu,
-            x_pu: c.x_pu,
-            z_pu: c.z_pu(),
-            core_resistance_pu: magnetised.map(|m| m.core_resistance_pu),
-            magnetising_reactance_pu: magnetised.and_then(|m| m.reactance_pu),
-        }),
-        power_factor: regulated,
-        load_points: load_points.to_vec(),
-        best_load_pu,
-        loading: place.as_ref().ok().map(|place| LoadingRow {
-            peak_kva: place.duty.peak_kva,
-            peak_pu: place.duty.peak_kva / place.losses.rated_kva,
-            load_factor_pu: place.duty.load_factor_pu,
-            loss_factor_pu: place.duty.loss_factor_pu,
-            load_growth_pct: 100.0 * place.duty.load_growth_pu,
-            energised_hours: place.duty.energised_hours,
-            responsibility_pu: place.duty.responsibility_pu,
-            no_load_price_per_kwh: place.duty.no_load_price_per_kwh,
-            load_price_per_kwh: place.duty.load_price_per_kwh,
-        }),
-        losses: of_unit(desk, &context, i).ok(),
-        estimated: EstimatedRow::of(&context, &desk.fleet.facts(i)),
-        keep_or_replace: decided.ok().map(|(_, d)| keep_or_replace(desk, &context, &d)),
-        left_out,
-        flags: flags.keys(),
-        working: StepRow::tree(working.steps()),
-    })
+
+    fn facts(&self) -> UnitFacts {
+        self.desk.fleet.facts(self.index)
+    }
+
+    fn place<R: Recorder>(&self, w: &mut R) -> Result<Place, LeftOut> {
+        resolve(w, &self.facts(), self.context)
+    }
+
+    fn circuit<R: Recorder>(&self, w: &mut R, losses: &Losses) -> Option<Circuit> {
+        of_nameplate(w, losses.rated_kva, losses.load_loss_w, self.unit.impedance_pct?).ok()
+    }
+
+    fn magnetising<R: Recorder>(&self, w: &mut R, losses: &Losses) -> Option<Magnetising> {
+        let current = self.unit.no_load_current_pct?;
+        magnetising(w, losses.rated_kva, losses.no_load_loss_w, current).ok()
+    }
+
+    /// The dossier, without workings.
+    ///
+    /// # Errors
+    /// What the engine refuses of the basis.
+    pub fn dossier(&self) -> Result<Dossier<'a>, StudyError> {
+        let a = &self.context.assumptions;
+        let w = &mut Silent;
+        let place = self.place(w);
+        let losses = place.as_ref().ok().map(|place| place.losses);
+        let power_factor = power_factor(w, &self.facts());
+        let circuit = losses.and_then(|l| self.circuit(w, &l));
+        let magnetised = losses.and_then(|l| self.magnetising(w, &l));
+        let pf = PowerFactor::lagging(power_factor)?;
+        let load_points = LOADS.map(|load_pu| LoadPoint {
+            load_pu,
+            efficiency_pct: losses
+                .and_then(|l| efficiency::at_load_pct(&mut Silent, &l, load_pu, power_factor).ok()),
+            regulation_pct: circuit.map(|c| regulation::exact_pct(&mut Silent, &c, load_pu, pf)),
+        });
+        let decided = decision(self.desk, self.context, self.index)?;
+        let flags = match (&decided, &place) {
+            (Ok((_, decision)), _) => decision.flags,
+            (Err(_), Ok(place)) => place.flags,
+            (Err(_), Err(_)) => self.context.flags,
+        };
+        Ok(Dossier {
+            unit: self.unit.unit.clone(),
+            basis: a.name.clone(),
+            currency: a.currency.clone(),
+            nameplate: json_of(Unit::COLUMNS, &self.unit.values()),
+            circuit: circuit.map(|c| CircuitRow {
+                r_pu: c.r_pu,
+                x_pu: c.x_pu,
+                z_pu: c.z_pu(),
+                core_resistance_pu: magnetised.map(|m| m.core_resistance_pu),
+                magnetising_reactance_pu: magnetised.and_then(|m| m.reactance_pu),
+            }),
+            power_factor,
+            load_points: load_points.to_vec(),
+            best_load_pu: losses.and_then(|l| efficiency::best_load(w, &l).ok()),
+            loading: place.as_ref().ok().map(|place| LoadingRow {
+                peak_kva: place.duty.peak_kva,
+                peak_pu: place.duty.peak_pu(w, place.losses.rated_kva),
+                load_factor_pu: place.duty.load_factor_pu,
+                loss_factor_pu: place.duty.loss_factor_pu,
+                load_growth_pct: place.duty.load_growth_pct(w),
+                energised_hours: place.duty.energised_hours,
+                responsibility_pu: place.duty.responsibility_pu,
+                no_load_price_per_kwh: place.duty.no_load_price_per_kwh,
+                load_price_per_kwh: place.duty.load_price_per_kwh,
+            }),
+            losses: of_unit(self.desk, self.context, self.index).ok(),
+            estimated: EstimatedRow::of(self.context, &self.facts()),
+            left_out: decided.as_ref().err().map(|why| why.why()),
+            keep_or_replace: decided.ok().map(|(place, d)| self.keep_or_replace(&place, &d)),
+            flags: flags.keys(),
+            working: Vec::new(),
+        })
+    }
+
+    /// What the best choice brings in its first year of service; none where it is to keep.
+    fn first_year<'s>(&'s self, place: &'s Place, decision: &Decision) -> Option<FirstYear<'s>> {
+        decision.best.map(|best| FirstYear {
+            place,
+            candidate: &self.context.candidates[best.offer],
+            offset: best.offset,
+            assumptions: &self.context.assumptions,
+        })
+    }
+
+    /// The decision as it is written in JSON.
+    fn keep_or_replace(&self, place: &Place, decision: &Decision) -> KeepOrReplace<'a> {
+        let first_year = self.context.assumptions.first_year;
+        #[expect(clippy::cast_possible_wrap, reason = "at most 200 years")]
+        let year = |offset: usize| first_year + offset as i64;
+        let offer = |choice: YearChoice| self.desk.offer_name(choice.offer);
+        let row = |choice: &YearChoice| YearRow {
+            offset: choice.offset,
+            year: year(choice.offset),
+            offer: offer(*choice),
+            pv: choice.pv,
+        };
+        let first = self.first_year(place, decision);
+        let w = &mut Silent;
+        KeepOrReplace {
+            keep_pv: decision.keep_pv,
+            never_pv: decision.keep_pv,
+            now_offer: decision.now.map(offer),
+            now_pv: decision.now.map(|choice| choice.pv),
+            best_offer: decision.best.map(offer),
+            best_year_offset: decision.best.map(|choice| choice.offset),
+            best_year: decision.best.map(|choice| year(choice.offset)),
+            best_pv: decision.best_pv,
+            saving_pv: decision.saving_pv(w),
+            waiting_pv: decision.waiting_pv(w),
+            payback_years: first.and_then(|first| first.payback_years(w)),
+            capital: first.map(|first| first.candidate.capital(w)),
+            energy_saved_kwh: first.map(|first| first.energy_saved_kwh(w)),
+            co2_saved_kg: first.map(|first| first.co2_saved_kg(w)),
+            years: decision.years.iter().map(row).collect(),
+            flags: decision.flags.keys(),
+        }
+    }
 }
 
 /// A record as a JSON object, blanks as null.

@@ -1,7 +1,6 @@
 //! Awarding by lot or to one bidder: numbers by hand.
 
 use ironhum::engine::columns::{Bid, Lot};
-use ironhum::study::tender::award::award;
 use ironhum::study::tender::evaluate;
 
 use crate::sheets::{bid, lot, sheet};
@@ -24,7 +23,7 @@ fn one_bidder_for_all_lots() {
         of("M", "6", "West", 149.0),
         Bid { rated_kva: Some(50.0), ..of("M", "7", "West", 1.0) },
     ];
-    let result = award(&evaluate(&sheet, None, None).expect("complete"));
+    let result = evaluate(&sheet, None, None).expect("complete").awards;
     let ids = |bids: &[ironhum::study::tender::award::PackageBid]| {
         bids.iter().map(|bid| bid.bid.clone()).collect::<Vec<_>>()
     };

@@ -186,6 +186,7 @@ fn price_series_take_no_flat_price() {
     let spot = PriceSeries {
         name: "spot".into(),
         step_minutes: 60,
+        first_timestamp: None,
         price_per_kwh: vec![0.06, 0.12],
         co2_kg_per_kwh: None,
         system_load: None,

@@ -284,14 +284,16 @@ fn json_has_the_keys_of_the_contract() {
     let keys = |value: &serde_json::Value| -> Vec<String> {
         value.as_object().expect("object").keys().cloned().collect()
     };
-    assert_eq!(keys(&json), ["tender", "currency", "lots"]);
+    assert_eq!(keys(&json), ["tender", "currency", "lots", "awards"]);
     let lot = &json["lots"][0];
     let of_lot = "lot quantity factor_a_per_kw factor_b_per_kw factor_aux_per_kw bids least_owning_cost \
-                  recommended margin_pct map changes flags";
+                  recommended margin_pct map changes flags near_tie_order nearest_border";
     assert_eq!(keys(lot).join(" "), of_lot);
     let of_bid = "rank bid bidder price no_load_cost load_cost auxiliary_cost added_cost owning_cost \
                   owning_cost_at_tolerance lot_cost law near_tie excluded flags";
     assert_eq!(keys(&lot["bids"][0]).join(" "), of_bid);
+    assert_eq!(keys(&lot["nearest_border"]), ["at", "distance_per_kw", "bid"]);
+    assert_eq!(keys(&json["awards"]), ["by_lot", "packages"]);
     assert_eq!(keys(&lot["map"]), ["a_max", "b_max", "bids"]);
     assert_eq!(keys(&lot["map"]["bids"][0]), ["bid", "share", "polygon"]);
     assert_eq!(lot["changes"]["factor_a_per_kw"], serde_json::json!([1000.0, null]));

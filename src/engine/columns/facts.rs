@@ -338,7 +338,10 @@ pub fn choices(words: &[&str]) -> String {
 pub fn nearest<'a>(word: &str, known: impl IntoIterator<Item = &'a str>) -> Option<&'a str> {
     known
         .into_iter()
-        .map(|k| (strsim::jaro_winkler(word, k), k))
+        .map(|k| {
+            let same = word.to_lowercase() == k.to_lowercase();
+            (if same { 1.0 } else { strsim::jaro_winkler(word, k) }, k)
+        })
         .filter(|(score, _)| *score > 0.75)
         .max_by(|a, b| a.0.total_cmp(&b.0))
         .map(|(_, k)| k)

@@ -7,11 +7,13 @@ use crate::engine::loading::Duty;
 use crate::engine::loading::duty::growth;
 use crate::engine::transformer::losses::{Losses, quoted};
 use crate::engine::transformer::vector_group;
-use crate::engine::working::Silent;
+use crate::engine::working::{Formula, Recorder, Silent};
 
 /// An offer made ready to compute with.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Candidate {
+    /// Identifier of the offer.
+    pub offer: String,
     /// Its losses at its rating.
     pub losses: Losses,
     /// Price of one unit.
@@ -34,6 +36,14 @@ pub struct Candidate {
     pub lawful: Vec<bool>,
 }
 
+const CAPITAL: Formula = Formula {
+    name: "price and installation at today's price",
+    symbol: "P",
+    formula: "price + install",
+    unit: "money",
+    source: "the offer; methods, section 7",
+};
+
 impl Candidate {
     /// The candidate of an offer.
     ///
@@ -50,6 +60,7 @@ impl Candidate {
             offer.auxiliary_loss_w,
         )?;
         Ok(Self {
+            offer: offer.offer.clone(),
             losses,
             price: offer.price.amount(),
             install_cost: offer.install_cost.unwrap_or_default().amount(),
@@ -65,7 +76,15 @@ impl Candidate {
 
     /// Price with installation.
     pub fn price_installed(&self) -> f64 {
-        self.price + self.install_cost
+        self.capital(&mut Silent)
+    }
+
+    /// Price with installation, stated.
+    pub fn capital<R: Recorder>(&self, w: &mut R) -> f64 {
+        let inputs = [("price", self.price), ("install", self.install_cost)];
+        let value = w.step(&CAPITAL, &inputs, self.price + self.install_cost);
+        w.about(&|| self.offer.clone());
+        value
     }
 
     /// Whether it meets the law when bought `t` years from now.
@@ -80,13 +99,21 @@ impl Candidate {
         t >= self.lead_time_years
     }
 
+    /// Whether the peak of a year after `t` is above its rating.
+    pub fn overloaded(&self, duty: &Duty, t: usize, a: &Assumptions) -> bool {
+        Self::highest_peak(duty, t, a) > self.losses.rated_kva * (1.0 + 1e-12)
+    }
+
+    /// Highest peak of the years after `t`: the load grows or shrinks steadily, so that of the last or first.
+    fn highest_peak(duty: &Duty, t: usize, a: &Assumptions) -> f64 {
+        let k = if duty.load_growth_pu > 0.0 { a.years } else { t + 1 };
+        duty.peak_kva * growth(duty.load_growth_pu, k, a.load_growth_years)
+    }
+
     /// Whether it carries the peak of every year after `t` within the loading limit.
     pub fn carries(&self, duty: &Duty, t: usize, a: &Assumptions) -> bool {
         let Some(limit) = a.loading_limit_pu else { return true };
-        // The load grows or shrinks steadily: its highest peak is that of the last or of the first year.
-        let k = if duty.load_growth_pu > 0.0 { a.years } else { t + 1 };
-        let peak = duty.peak_kva * growth(duty.load_growth_pu, k, a.load_growth_years);
-        peak <= limit * self.losses.rated_kva * (1.0 + 1e-12)
+        Self::highest_peak(duty, t, a) <= limit * self.losses.rated_kva * (1.0 + 1e-12)
     }
 }
 
@@ -157,6 +184,7 @@ pub(crate) mod tests {
 
     pub(crate) fn candidate(rated_kva: f64) -> Candidate {
         Candidate {
+            offer: String::new(),
             losses: Losses {
                 rated_kva,
                 no_load_loss_w: 100.0,

@@ -1,13 +1,20 @@
 //! Keep or replace, one unit: every (delay, offer) and never, valued year by year as methods section 7 defines.
 //!
-//! This is the scalar form: plain sums over years, easy to read and slow. [`super::fleet`] gives the same
-//! figures from cumulative sums; tests hold the two equal.
+//! This is the scalar form: plain sums over years ([`Valuation`]), easy to read and slow. [`super::fleet`] gives
+//! the same figures from cumulative sums; tests hold the two equal.
+
+mod first_year;
+mod formulas;
+mod valuation;
+
+pub use first_year::FirstYear;
+pub use valuation::Valuation;
 
 use super::equal_pv;
 use super::fit::Candidate;
 use super::place::Place;
 use crate::engine::Refusal;
-use crate::engine::economics::{Assumptions, capital, discounting, running_cost};
+use crate::engine::economics::Assumptions;
 use crate::engine::flags::Flags;
 use crate::engine::working::{Formula, Recorder, Silent};
 
@@ -33,8 +40,8 @@ pub struct Decision {
     pub best: Option<YearChoice>,
     /// The best offer bought now; none where no offer is open now.
     pub now: Option<YearChoice>,
-    /// What a year's delay costs at least; 0 where now is not best.
-    pub waiting_pv: f64,
+    /// The best choice after now; none where it is never.
+    pub later: Option<YearChoice>,
     /// The best offer at each delay at which one is open.
     pub years: Vec<YearChoice>,
     /// V(0) by the backward recursion; equal to `best_pv`, kept to show it.
@@ -45,8 +52,35 @@ pub struct Decision {
 
 impl Decision {
     /// keep_pv − best_pv, never below 0.
-    pub fn saving_pv(&self) -> f64 {
-        if self.best.is_some() { (self.keep_pv - self.best_pv).max(0.0) } else { 0.0 }
+    pub fn saving_pv<R: Recorder>(&self, w: &mut R) -> f64 {
+        let inputs = [("keep", self.keep_pv), ("best", self.best_pv)];
+        w.step(&SAVING, &inputs, (self.keep_pv - self.best_pv).max(0.0))
+    }
+
+    /// What a year's delay costs at least: the least of all later choices and never, less now; 0 where now is not
+    /// best.
+    pub fn waiting_pv<R: Recorder>(&self, w: &mut R) -> f64 {
+        if self.best.is_none_or(|best| best.offset > 0) {
+            return w.step(&NO_WAITING, &[], 0.0);
+        }
+        let later = self.later.map_or(self.keep_pv, |choice| choice.pv);
+        let inputs = [("later", later), ("now", self.best_pv)];
+        w.step(&WAITING, &inputs, (later - self.best_pv).max(0.0))
+    }
+
+    /// Years of delay of the best choice; none where it is never.
+    pub fn best_delay<R: Recorder>(&self, w: &mut R) -> Option<f64> {
+        #[expect(clippy::cast_precision_loss, reason = "at most 200 years")]
+        let t = self.best?.offset as f64;
+        Some(w.step(&BEST_DELAY, &[], t))
+    }
+
+    /// Calendar year of the best choice; none where it is never.
+    pub fn best_year<R: Recorder>(&self, w: &mut R, first_year: i64) -> Option<f64> {
+        let t = self.best_delay(w)?;
+        #[expect(clippy::cast_precision_loss, reason = "a calendar year")]
+        let first_year = first_year as f64;
+        Some(w.step(&BEST_YEAR, &[("first_year", first_year), ("t", t)], first_year + t))
     }
 }
 
@@ -56,116 +90,6 @@ pub fn age(year_made: Option<f64>, first_year: i64, k: usize) -> f64 {
     match year_made {
         Some(made) => (first_year as f64 + k as f64 - 1.0 - made).max(0.0),
         None => k as f64 - 1.0,
-    }
-}
-
-/// The costs of a place, year by year, from which every policy is summed.
-struct Years<'a> {
-    a: &'a Assumptions,
-    place: &'a Place,
-    candidates: &'a [Candidate],
-    fitting: &'a [usize],
-    /// d_k, index k = 1..N.
-    running: Vec<f64>,
-    /// v^t, index t = 0..N.
-    payment: Vec<f64>,
-    /// Failure probability of the old unit, index k.
-    fails: Vec<f64>,
-    /// Failure probability of a new unit in its year of service j.
-    fails_new: Vec<f64>,
-    /// Running cost of the old unit, index k.
-    old: Vec<f64>,
-    /// Loss cost of each fitting candidate, index k.
-    new: Vec<Vec<f64>>,
-    /// Upkeep of a new unit in its year of service j.
-    upkeep_new: Vec<f64>,
-}
-
-impl<'a> Years<'a> {
-    fn new(
-        place: &'a Place,
-        candidates: &'a [Candidate],
-        fitting: &'a [usize],
-        a: &'a Assumptions,
-    ) -> Self {
-        let n = a.years;
-        let w = &mut Silent;
-        let weibull = a.failure.filter(|_| place.year_made.is_some());
-        let fails_at = |age: f64| weibull.map_or(0.0, |m| m.fails_in_year(&mut Silent, age));
-        let old_age = |k| age(place.year_made, a.first_year, k);
-        #[expect(clippy::cast_precision_loss, reason = "at most 200 years")]
-        let service = |j: usize| j as f64 - 1.0;
-        // Index 0 of the yearly series is not used: years are counted from 1.
-        let yearly = |f: &mut dyn FnMut(usize) -> f64| {
-            std::iter::once(0.0).chain((1..=n).map(f)).collect::<Vec<f64>>()
-        };
-        let running = yearly(&mut |k| discounting::running(a.rate, k, a.cash_flow));
-        let old = yearly(&mut |k| {
-            running_cost::of_year(w, &place.losses, &place.duty, a, k, old_age(k)).total()
-        });
-        let new = fitting
-            .iter()
-            .map(|&c| {
-                let losses = &candidates[c].losses;
-                yearly(&mut |k| {
-                    running_cost::of_year(&mut Silent, losses, &place.duty, a, k, 0.0).loss_cost()
-                })
-            })
-            .collect();
-        Self {
-            a,
-            place,
-            candidates,
-            fitting,
-            running,
-            payment: (0..=n).map(|t| discounting::payment(a.rate, t)).collect(),
-            fails: yearly(&mut |k| fails_at(old_age(k))),
-            fails_new: yearly(&mut |j| fails_at(service(j))),
-            old,
-            new,
-            upkeep_new: yearly(&mut |j| running_cost::upkeep(&mut Silent, a, service(j))),
-        }
-    }
-
-    /// G_c(t): buying the fitting candidate number `c` at time `t`, with a surcharge on the purchase.
-    fn buying(&self, c: usize, t: usize, premium: f64) -> Result<f64, Refusal> {
-        let candidate = &self.candidates[self.fitting[c]];
-        let price = candidate.price_installed();
-        let capital = capital::charged(
-            &mut Silent,
-            price * (1.0 + premium),
-            candidate.life_years,
-            t,
-            self.a,
-        )?;
-        let mut pv = (capital + self.place.removal_less_scrap) * self.payment[t];
-        for k in t + 1..=self.a.years {
-            let j = k - t;
-            pv += self.running[k] * (self.new[c][k] + self.upkeep_new[j])
-                + self.payment[k] * self.fails_new[j] * (self.place.failure_cost + price);
-        }
-        Ok(pv)
-    }
-
-    /// G'(t): the least cost of a forced purchase at time `t`; the loading limit, and then the law, give way
-    /// where they leave nothing. Says whether the law gave way.
-    fn forced(&self, t: usize) -> Result<(f64, bool), Refusal> {
-        if t == self.a.years {
-            return Ok((0.0, false));
-        }
-        let candidate = |c: usize| &self.candidates[self.fitting[c]];
-        let carries = |c: usize| candidate(c).carries(&self.place.duty, t, self.a);
-        let all: Vec<usize> = (0..self.fitting.len()).collect();
-        let lawful: Vec<usize> =
-            all.iter().copied().filter(|&c| candidate(c).lawful_at(t)).collect();
-        let relaxed = lawful.is_empty();
-        let pool = if relaxed { all } else { lawful };
-        let able: Vec<usize> = pool.iter().copied().filter(|&c| carries(c)).collect();
-        let mut least = f64::INFINITY;
-        for c in if able.is_empty() { pool } else { able } {
-            least = least.min(self.buying(c, t, self.a.emergency_premium)?);
-        }
-        Ok((least, relaxed))
     }
 }
 
@@ -181,121 +105,108 @@ pub fn decide(
     fitting: &[usize],
     a: &Assumptions,
 ) -> Result<Option<Decision>, Refusal> {
-    let n = a.years;
-    let y = Years::new(place, candidates, fitting, a);
-    let open = |c: usize, t: usize| {
-        let candidate = &candidates[fitting[c]];
-        candidate.delivered_by(t) && candidate.lawful_at(t) && candidate.carries(&place.duty, t, a)
-    };
-    let mut flags = place.flags;
-    let mut forced = vec![0.0; n + 1];
-    if y.fails.iter().any(|h| *h > 0.0) {
-        for t in 1..=n {
-            let (pv, relaxed) = y.forced(t)?;
-            forced[t] = pv;
-            flags = flags.with_if(relaxed, Flags::LAW_RELAXED);
-        }
-    }
-
-    // J(t, c), and G(t) for the recursion.
-    let mut all: Vec<YearChoice> = Vec::new();
-    let mut buying = vec![f64::INFINITY; n + 1];
-    let (mut survival, mut before) = (1.0, 0.0);
-    for t in 0..=a.latest {
-        if t > 0 {
-            let h = y.fails[t];
-            before += survival
-                * (y.running[t] * y.old[t] + h * (place.failure_cost * y.payment[t] + forced[t]));
-            survival *= 1.0 - h;
-        }
-        for c in 0..fitting.len() {
-            if open(c, t) {
-                let g = y.buying(c, t, 0.0)?;
-                buying[t] = buying[t].min(g);
-                all.push(YearChoice { offset: t, offer: fitting[c], pv: before + survival * g });
-            }
-        }
-    }
-    if all.is_empty() {
-        return Ok(None);
-    }
-
-    // R(t) and V(t), backwards.
-    let end = place.removal_less_scrap * y.payment[n];
-    let (mut keep, mut value) = (end, end);
-    for t in (0..n).rev() {
-        let h = y.fails[t + 1];
-        let year = y.running[t + 1] * y.old[t + 1]
-            + h * (place.failure_cost * y.payment[t + 1] + forced[t + 1]);
-        keep = year + (1.0 - h) * keep;
-        let wait = year + (1.0 - h) * value;
-        value = if t <= a.latest { wait.min(buying[t]) } else { wait };
-    }
-
-    let least = all.iter().fold(keep, |least, choice| least.min(choice.pv));
-    let first_least = |choices: &[YearChoice]| {
-        let least = choices.iter().fold(f64::INFINITY, |least, c| least.min(c.pv));
-        choices.iter().find(|c| equal_pv(c.pv, least)).copied()
-    };
-    let best = if equal_pv(keep, least) {
-        None
-    } else {
-        all.iter().find(|choice| equal_pv(choice.pv, least)).copied()
-    };
-    let years: Vec<YearChoice> = (0..=a.latest)
-        .filter_map(|t| {
-            let at: Vec<_> = all.iter().filter(|c| c.offset == t).copied().collect();
-            first_least(&at)
-        })
-        .collect();
-    let best_pv = if best.is_some() { least } else { keep };
-    let waiting_pv = match best {
-        Some(YearChoice { offset: 0, .. }) => {
-            let later = years.iter().filter(|c| c.offset > 0).fold(keep, |m, c| m.min(c.pv));
-            (later - best_pv).max(0.0)
-        }
-        _ => 0.0,
-    };
-    Ok(Some(Decision {
-        keep_pv: keep,
-        best_pv,
-        best,
-        now: years.first().filter(|c| c.offset == 0).copied(),
-        waiting_pv,
-        years,
-        recursion_pv: value,
-        flags,
-    }))
+    Valuation::new(place, candidates, fitting, a)?.decide()
 }
 
-const PAYBACK: Formula = Formula {
-    name: "simple payback of the replacement, undiscounted",
-    symbol: "payback",
-    formula: "(P + removal_less_scrap)/(run_old − run_new)",
+impl Valuation<'_> {
+    /// Finds the best choice; none where no candidate is open at any delay.
+    ///
+    /// # Errors
+    /// The annuity rule without a life.
+    pub fn decide(&self) -> Result<Option<Decision>, Refusal> {
+        let a = self.a;
+        let mut all: Vec<YearChoice> = Vec::new();
+        for offset in 0..=a.latest {
+            for (c, &offer) in self.fitting.iter().enumerate() {
+                if self.open(c, offset) {
+                    let pv = self.choice_pv(&mut Silent, c, offset)?;
+                    all.push(YearChoice { offset, offer, pv });
+                }
+            }
+        }
+        if all.is_empty() {
+            return Ok(None);
+        }
+        let keep_pv = self.keep_pv(&mut Silent)?;
+        let least = |choices: &[YearChoice]| {
+            let least = choices.iter().fold(f64::INFINITY, |least, c| least.min(c.pv));
+            choices.iter().find(|c| equal_pv(c.pv, least)).copied()
+        };
+        // Never before any: a purchase has to cost less than keeping.
+        let best = least(&all).filter(|best| best.pv < keep_pv && !equal_pv(keep_pv, best.pv));
+        let at = |t: usize| all.iter().filter(|c| c.offset == t).copied().collect::<Vec<_>>();
+        let years: Vec<YearChoice> = (0..=a.latest).filter_map(|t| least(&at(t))).collect();
+        let later = years.iter().filter(|c| c.offset > 0 && c.pv < keep_pv);
+        let later = later.min_by(|a, b| a.pv.total_cmp(&b.pv)).copied();
+        let best_pv = best.map_or(keep_pv, |best| best.pv);
+        Ok(Some(Decision {
+            keep_pv,
+            best_pv,
+            best,
+            now: years.first().filter(|c| c.offset == 0).copied(),
+            later,
+            years,
+            recursion_pv: self.recursion_pv()?,
+            flags: self.place.flags.with_if(self.relaxed, Flags::LAW_RELAXED),
+        }))
+    }
+
+    /// Whether the fitting candidate number `c` can be bought at time `t`.
+    fn open(&self, c: usize, t: usize) -> bool {
+        let candidate = self.candidate(c);
+        candidate.delivered_by(t)
+            && candidate.lawful_at(t)
+            && candidate.carries(&self.place.duty, t, self.a)
+    }
+
+    /// V(0), by backward induction.
+    fn recursion_pv(&self) -> Result<f64, Refusal> {
+        let n = self.a.years;
+        let mut value = self.place.removal_less_scrap * self.payment[n];
+        for t in (0..n).rev() {
+            let h = self.fails[t + 1];
+            let cost = self.place.failure_cost * self.payment[t + 1] + self.forced[t + 1];
+            value = self.running[t + 1] * self.old[t + 1] + h * cost + (1.0 - h) * value;
+            if t <= self.a.latest {
+                for c in (0..self.fitting.len()).filter(|&c| self.open(c, t)) {
+                    value = value.min(self.buying(&mut Silent, c, t)?);
+                }
+            }
+        }
+        Ok(value)
+    }
+}
+
+const SAVING: Formula = Formula {
+    name: "what the best choice saves",
+    symbol: "saving",
+    formula: "keep − best",
+    unit: "money",
+    source: "methods, section 7",
+};
+const WAITING: Formula = Formula {
+    name: "what a year's delay costs at least: the least of all later choices, less now",
+    symbol: "waiting",
+    formula: "later − now",
+    unit: "money",
+    source: "methods, section 7",
+};
+const NO_WAITING: Formula = Formula {
+    name: "what a year's delay costs: nothing, to buy now is not best",
+    formula: "0",
+    ..WAITING
+};
+const BEST_DELAY: Formula = Formula {
+    name: "delay of the best choice",
+    symbol: "t",
+    formula: "the t of the least J(t, c), where that is less than keeping",
     unit: "years",
     source: "methods, section 7",
 };
-
-/// Simple payback of buying a candidate at time `t`; none where nothing is saved in its first year.
-pub fn payback_years<R: Recorder>(
-    w: &mut R,
-    place: &Place,
-    candidate: &Candidate,
-    t: usize,
-    a: &Assumptions,
-) -> Option<f64> {
-    let k = t + 1;
-    let old_age = age(place.year_made, a.first_year, k);
-    let old = running_cost::of_year(&mut Silent, &place.losses, &place.duty, a, k, old_age).total();
-    let new = running_cost::of_year(&mut Silent, &candidate.losses, &place.duty, a, k, 0.0).total();
-    let capital = candidate.price_installed() + place.removal_less_scrap;
-    (old - new > 0.0).then(|| {
-        let inputs = [
-            ("P", candidate.price_installed()),
-            ("removal_less_scrap", place.removal_less_scrap),
-            ("run_old", old),
-            ("run_new", new),
-        ];
-        w.step(&PAYBACK, &inputs, capital / (old - new))
-    })
-}
+const BEST_YEAR: Formula = Formula {
+    name: "year of the best choice",
+    symbol: "year",
+    formula: "first_year + t",
+    unit: "",
+    source: "methods, section 7",
+};

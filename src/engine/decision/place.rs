@@ -3,6 +3,8 @@
 //! [`UnitFacts`] are the bare numbers of a unit, NaN where unknown, the same whether one unit was read or a
 //! million columns; [`resolve`] is the one place where blanks fall to profile, basis and default.
 
+pub mod stated;
+
 use std::sync::Arc;
 
 use crate::engine::columns::{Insulation, Unit, WindingMetal, YesNo};
@@ -13,6 +15,7 @@ use crate::engine::flags::Flags;
 use crate::engine::loading::{Duty, Market, Ratios, factors};
 use crate::engine::transformer::losses::{Losses, quoted};
 use crate::engine::working::Recorder;
+use stated::{first_known, known_or, said};
 
 /// The bare numbers of a unit; NaN = unknown.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -150,6 +153,8 @@ pub enum LeftOut {
     OneRatingToEstimate,
     /// A loss is blank, and the rating lies far from those of units that have it known.
     BeyondRatingsToEstimate,
+    /// Its profile cannot be laid beside the price series.
+    ProfileUnfit,
 }
 
 impl LeftOut {
@@ -176,6 +181,9 @@ impl LeftOut {
             }
             Self::NoOffer => {
                 "no offer fits: phases, voltages, vector group, size window, loading limit, lead time or law"
+            }
+            Self::ProfileUnfit => {
+                "its profile and the price series differ in step, length or start; bring both to one"
             }
             Self::ProfileUnknown => "its profile is not in the book; import it",
             Self::TooFewToEstimate => {
@@ -213,6 +221,12 @@ pub fn loading_contradicts(
         given.is_some_and(|given| (given - of_profile).abs() > 0.05)
     };
     apart(load_factor_pu, ratios.load_factor_pu) || apart(loss_factor_pu, ratios.loss_factor_pu)
+}
+
+/// Power factor at which efficiency and regulation of a unit are shown; blank: 0.9 (methods, section 0).
+pub fn power_factor<R: Recorder>(w: &mut R, f: &UnitFacts) -> f64 {
+    let own = [(known(f.power_factor), "the unit")];
+    known_or(w, &stated::POWER_FACTOR, own, (0.9, "the default"))
 }
 
 /// Fills the blanks of a unit from profile, basis and default (methods, sections 0 and 3).
@@ -261,7 +275,11 @@ pub fn resolve_at<R: Recorder>(
         .with_if(losses.load_loss_w < losses.no_load_loss_w, Flags::LOSSES_SWAPPED);
     flags = flags.with_if(losses_contradict(p0, pk, total), Flags::LOSSES_CONTRADICT);
 
-    let Some(peak_kva) = known(f.peak_kva) else { return Err(LeftOut::PeakBlank) };
+    said(w, &stated::RATING, f.rated_kva, "the unit");
+    let peak = [(known(f.peak_kva), "the unit")];
+    let Some(peak_kva) = first_known(w, &stated::PEAK, peak) else {
+        return Err(LeftOut::PeakBlank);
+    };
     let (lf, lsf) = (known(f.load_factor_pu), known(f.loss_factor_pu));
     if let (Some(lf), Some(lsf)) = (lf, lsf)
         && factors::check(lf, lsf).is_err()
@@ -273,26 +291,57 @@ pub fn resolve_at<R: Recorder>(
     } else {
         Some((
             ctx.ratios.get(f.profile as usize).ok_or(LeftOut::ProfileUnknown)?,
-            ctx.market.profiles.get(f.profile as usize).ok_or(LeftOut::ProfileUnknown)?,
+            match ctx.market.profiles.get(f.profile as usize) {
+                Some(Ok(weights)) => weights,
+                Some(Err(_)) => return Err(LeftOut::ProfileUnfit),
+                None => return Err(LeftOut::ProfileUnknown),
+            },
         ))
     };
-    let (load_factor_pu, loss_factor_pu) = match (profile, lsf, lf) {
-        (Some((ratios, _)), ..) => {
-            flags = flags.with_if(loading_contradicts(ratios, lf, lsf), Flags::LOADING_CONTRADICTS);
-            (Some(ratios.load_factor_pu), ratios.loss_factor_pu)
-        }
-        (None, Some(lsf), lf) => (lf, lsf),
-        (None, None, Some(lf)) => {
+    let of_profile = profile.map(|(ratios, _)| ratios);
+    flags = flags.with_if(
+        of_profile.is_some_and(|ratios| loading_contradicts(ratios, lf, lsf)),
+        Flags::LOADING_CONTRADICTS,
+    );
+    let from = [(of_profile.map(|r| r.load_factor_pu), "its profile"), (lf, "the unit")];
+    let load_factor_pu = first_known(w, &stated::LOAD_FACTOR, from);
+    let from = [(of_profile.map(|r| r.loss_factor_pu), "its profile"), (lsf, "the unit")];
+    let loss_factor_pu = match (first_known(w, &stated::LOSS_FACTOR, from), lf) {
+        (Some(known), _) => known,
+        (None, Some(lf)) => {
             flags = flags.with(Flags::LOSS_FACTOR_ESTIMATED);
-            (Some(lf), factors::loss_factor(w, lf, a.loss_factor_weight_pu))
+            factors::loss_factor(w, lf, a.loss_factor_weight_pu)
         }
-        (None, None, None) => return Err(LeftOut::ShapeBlank),
+        (None, None) => return Err(LeftOut::ShapeBlank),
     };
     let constant = &ctx.market.constant;
     let load = profile.map_or(constant, |(_, weights)| weights);
-    let responsibility =
-        known(f.responsibility_pu).or(load.responsibility_pu).or(a.responsibility_pu);
-    let energised_hours = known(f.energised_hours).unwrap_or(a.energised_hours);
+    let from = [
+        (known(f.responsibility_pu), "the unit"),
+        (load.responsibility_pu, "its profile at the system peak"),
+        (a.responsibility_pu, "the basis"),
+    ];
+    let responsibility = first_known(w, &stated::RESPONSIBILITY, from);
+    let responsibility_pu = responsibility
+        .unwrap_or_else(|| said(w, &stated::RESPONSIBILITY, 1.0, "nothing is known of it"));
+    let own = |value| [(known(value), "the unit")];
+    let energised_hours =
+        known_or(w, &stated::HOURS, own(f.energised_hours), (a.energised_hours, "the basis"));
+    let from = [(known(f.auxiliary_hours), "the unit"), (a.auxiliary_hours, "the basis")];
+    let last = (energised_hours, "the hours under voltage");
+    let auxiliary_hours = known_or(w, &stated::AUXILIARY_HOURS, from, last);
+    let growth = own(f.load_growth_pct / 100.0);
+    let load_growth_pu = known_or(w, &stated::GROWTH, growth, (a.load_growth, "the basis"));
+    let (mean, weighed) = if ctx.market.series {
+        ("mean of the price series", "price series weighed by the squared load of its profile")
+    } else {
+        ("the basis", "the basis")
+    };
+    said(w, &stated::PRICE, constant.price_per_kwh, mean);
+    let origin = if profile.is_some() { weighed } else { mean };
+    said(w, &stated::LOAD_PRICE, load.price_per_kwh, origin);
+    said(w, &stated::CO2, constant.co2_kg_per_kwh, "price series, else the basis");
+    said(w, &stated::LOAD_CO2, load.co2_kg_per_kwh, "price series, else the basis");
     let year_made = known(f.year_made);
     flags = flags
         .with_if(profile.is_none() && ctx.market.series, Flags::PRICE_NOT_WEIGHTED)
@@ -304,26 +353,34 @@ pub fn resolve_at<R: Recorder>(
         );
     let duty = Duty {
         peak_kva,
-        load_growth_pu: known(f.load_growth_pct).map_or(a.load_growth, |pct| pct / 100.0),
+        load_growth_pu,
         load_factor_pu,
         loss_factor_pu,
         energised_hours,
-        auxiliary_hours: known(f.auxiliary_hours).or(a.auxiliary_hours).unwrap_or(energised_hours),
+        auxiliary_hours,
         power_factor: known(f.power_factor),
-        responsibility_pu: responsibility.unwrap_or(1.0),
+        responsibility_pu,
         no_load_price_per_kwh: constant.price_per_kwh,
         load_price_per_kwh: load.price_per_kwh,
         no_load_co2_kg_per_kwh: constant.co2_kg_per_kwh,
         load_co2_kg_per_kwh: load.co2_kg_per_kwh,
     };
-    Ok(Place {
-        losses,
-        duty,
-        year_made,
-        failure_cost: known(f.failure_cost).unwrap_or(a.failure_cost)
-            + a.failure_cost_per_customer * known(f.customers).unwrap_or(0.0),
-        removal_less_scrap: known(f.removal_cost).unwrap_or(a.removal_cost)
-            - known(f.scrap_value).unwrap_or(a.scrap_value),
-        flags,
-    })
+    let own = (known(f.failure_cost), "the unit");
+    let own_cost = known_or(w, &stated::FAILURE_COST, [own], (a.failure_cost, "the basis"));
+    let (per_customer, customers) =
+        (a.failure_cost_per_customer, known(f.customers).unwrap_or(0.0));
+    let failure_cost = own_cost + per_customer * customers;
+    if customers > 0.0 {
+        let inputs =
+            [("F_own", own_cost), ("per_customer", per_customer), ("customers", customers)];
+        w.step(&stated::CUSTOMERS, &inputs, failure_cost);
+    }
+    let own = (known(f.removal_cost), "the unit");
+    let removal_cost = known_or(w, &stated::REMOVAL_COST, [own], (a.removal_cost, "the basis"));
+    let own = (known(f.scrap_value), "the unit");
+    let scrap_value = known_or(w, &stated::SCRAP_VALUE, [own], (a.scrap_value, "the basis"));
+    let inputs = [("removal", removal_cost), ("scrap", scrap_value)];
+    let removal_less_scrap =
+        w.step(&stated::REMOVAL_LESS_SCRAP, &inputs, removal_cost - scrap_value);
+    Ok(Place { losses, duty, year_made, failure_cost, removal_less_scrap, flags })
 }

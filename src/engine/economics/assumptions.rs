@@ -1,8 +1,10 @@
 //! A basis made ready to compute with: defaults filled in, percents as fractions, contradictions refused.
 
+use super::discounting::payment;
 use super::failure::Weibull;
 use crate::engine::Refusal;
 use crate::engine::columns::{Basis, CapitalRecovery, CashFlow, FactorMethod, VoltageModel};
+use crate::engine::loading::duty::growth;
 
 /// Where the energy price comes from.
 #[derive(Clone, Debug, PartialEq)]
@@ -171,7 +173,11 @@ impl Assumptions {
             let why = "is required by factor_method \"levelized\"";
             return Err(Refusal::new("fixed_charge_rate_pct", "", why));
         }
-        Ok(Self {
+        if basis.voltage_model == Some(VoltageModel::Drop) {
+            let why = "a year is computed at rated voltage only so far; choose \"rated\" (work voltage-drop computes one load)";
+            return Err(Refusal::new("voltage_model", "drop", why));
+        }
+        let resolved = Self {
             name: basis.name.clone(),
             currency: basis.currency.clone(),
             first_year: basis.first_year,
@@ -216,7 +222,32 @@ impl Assumptions {
             near_tie_pct: basis.near_tie_pct.unwrap_or(0.0),
             law: basis.law.clone(),
             estimate_missing: basis.estimate_missing.unwrap_or(false),
-        })
+        };
+        resolved.check_range()?;
+        Ok(resolved)
+    }
+
+    /// Holds that no discount factor, index or growth of the horizon leaves the range in which money can be told.
+    fn check_range(&self) -> Result<(), Refusal> {
+        let n = self.years;
+        let factors = [
+            ("discount_rate_pct", payment(self.rate, n)),
+            ("energy_escalation_pct", Self::index(self.energy_escalation, n)),
+            ("demand_escalation_pct", Self::index(self.demand_escalation, n)),
+            ("carbon_escalation_pct", Self::index(self.carbon_escalation, n)),
+            ("equipment_escalation_pct", Self::index(self.equipment_escalation, n)),
+            ("upkeep_age_pct", Self::index(self.upkeep_age, n + 200)),
+            ("load_growth_pct", growth(self.load_growth, n, self.load_growth_years).powi(2)),
+        ];
+        for (quantity, factor) in factors {
+            if factor.is_nan() || factor > 1e60 {
+                let why = format!(
+                    "over {n} years it multiplies by {factor:.1e}; lower the rate or shorten horizon_years"
+                );
+                return Err(Refusal::new(quantity, "", why));
+            }
+        }
+        Ok(())
     }
 
     /// The price index (1+e)^(k−1) of year `k`.

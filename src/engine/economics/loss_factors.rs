@@ -3,7 +3,7 @@
 use super::Assumptions;
 use super::discounting::running;
 use crate::engine::Refusal;
-use crate::engine::columns::FactorMethod;
+use crate::engine::columns::{CashFlow, FactorMethod};
 use crate::engine::loading::Duty;
 use crate::engine::loading::duty::growth;
 use crate::engine::working::{Formula, Recorder};
@@ -22,7 +22,7 @@ pub struct LossFactors {
 const A_PV: Formula = Formula {
     name: "value of a kW of no-load loss",
     symbol: "A",
-    formula: "Σ_k d_k·(h·(c0·idx_k + p_Ck·κ0/1000) + D·idxD_k) = h·c0·X_energy + h·κ0·X_carbon + D·X_demand",
+    formula: "h·(c0·X_energy + κ0·X_carbon) + D·X_demand",
     unit: "money/kW",
     source: "annuity form of IEC TS 60076-20 (memory) with demand and carbon; methods, section 5",
 };
@@ -40,20 +40,45 @@ const AUX_PV: Formula = Formula {
     unit: "money/kW",
     source: "methods, section 5",
 };
-const SUM: Formula = Formula {
-    name: "discounted price index over the horizon",
-    symbol: "X",
-    formula: "Σ_k d_k·index_k",
-    unit: "years",
-    source: "methods, section 5",
-};
-const SUM_GROWN: Formula = Formula {
-    name: "discounted price index times squared load growth over the horizon",
-    symbol: "Y",
-    formula: "Σ_k d_k·index_k·(S_k/S_1)²",
-    unit: "years",
-    source: "methods, section 5",
-};
+/// A sum over the horizon, for costs at year ends and in mid-year.
+type Horizon = [Formula; 2];
+
+const fn horizon(
+    name: &'static str,
+    [symbol, unit]: [&'static str; 2],
+    formulas: [&'static str; 2],
+) -> Horizon {
+    let source = "methods, sections 0 and 5";
+    let year_end = Formula { name, symbol, formula: formulas[0], unit, source };
+    [year_end, Formula { formula: formulas[1], ..year_end }]
+}
+
+static SUM: Horizon = horizon(
+    "discounted price index over the horizon",
+    ["X", "years"],
+    ["Σ_{k=1…N} (1+i)^−k·(1+e)^(k−1)", "Σ_{k=1…N} (1+i)^−(k−½)·(1+e)^(k−1)"],
+);
+static SUM_GROWN: Horizon = horizon(
+    "discounted price index times squared load growth over the horizon",
+    ["Y", "years"],
+    [
+        "Σ_{k=1…N} (1+i)^−k·(1+e)^(k−1)·(1+g)^(2·(min(k, Yg)−1))",
+        "Σ_{k=1…N} (1+i)^−(k−½)·(1+e)^(k−1)·(1+g)^(2·(min(k, Yg)−1))",
+    ],
+);
+static CARBON: Horizon = horizon(
+    "discounted price of a kg of CO2 over the horizon",
+    ["X", "money/kg"],
+    ["p_C/1000·Σ_{k=1…N} (1+i)^−k·(1+e)^(k−1)", "p_C/1000·Σ_{k=1…N} (1+i)^−(k−½)·(1+e)^(k−1)"],
+);
+static CARBON_GROWN: Horizon = horizon(
+    "discounted price of a kg of CO2 times squared load growth over the horizon",
+    ["Y", "money/kg"],
+    [
+        "p_C/1000·Σ_{k=1…N} (1+i)^−k·(1+e)^(k−1)·(1+g)^(2·(min(k, Yg)−1))",
+        "p_C/1000·Σ_{k=1…N} (1+i)^−(k−½)·(1+e)^(k−1)·(1+g)^(2·(min(k, Yg)−1))",
+    ],
+);
 
 /// Σ_k d_k·index_k, and the same with the squared growth of the load.
 #[derive(Clone, Copy, Debug, Default)]
@@ -107,15 +132,19 @@ pub fn present_value<R: Recorder>(
     let beta = duty.peak_kva / rated_kva;
     let prf = duty.responsibility_pu;
 
+    let state =
+        |w: &mut R, of: &'static Horizon, value: f64, escalation: f64, about: &'static str| {
+            sum(w, of, a, duty, escalation, value, about);
+        };
     w.open();
-    about(w, &SUM, energy.plain, "energy");
+    state(w, &SUM, energy.plain, a.energy_escalation, "energy");
     let (c0, k0) = (duty.no_load_price_per_kwh, duty.no_load_co2_kg_per_kwh);
     let factor_a = h * (c0 * energy.plain + k0 * carbon.plain) + d * demand.plain;
     if d > 0.0 {
-        about(w, &SUM, demand.plain, "demand");
+        state(w, &SUM, demand.plain, a.demand_escalation, "demand");
     }
     if a.carbon_price_per_t > 0.0 {
-        about(w, &SUM, carbon.plain, "carbon (with its price per kg)");
+        state(w, &CARBON, carbon.plain, a.carbon_escalation, "carbon");
     }
     let inputs = [
         ("h", h),
@@ -129,7 +158,13 @@ pub fn present_value<R: Recorder>(
     w.close(&A_PV, &inputs, factor_a);
 
     w.open();
-    about(w, &SUM_GROWN, energy.grown, "energy");
+    state(w, &SUM_GROWN, energy.grown, a.energy_escalation, "energy");
+    if d > 0.0 {
+        state(w, &SUM_GROWN, demand.grown, a.demand_escalation, "demand");
+    }
+    if a.carbon_price_per_t > 0.0 {
+        state(w, &CARBON_GROWN, carbon.grown, a.carbon_escalation, "carbon");
+    }
     let (ck, kk) = (duty.load_price_per_kwh, duty.load_co2_kg_per_kwh);
     let factor_b = (beta * beta)
         * (h * duty.loss_factor_pu * (ck * energy.grown + kk * carbon.grown)
@@ -160,29 +195,52 @@ pub fn present_value<R: Recorder>(
     LossFactors { factor_a_per_kw: factor_a, factor_b_per_kw: factor_b, factor_aux_per_kw: aux }
 }
 
-fn about<R: Recorder>(w: &mut R, formula: &'static Formula, value: f64, of: &'static str) {
-    w.step(formula, &[], value);
-    w.about(&|| of.to_owned());
+/// States a sum over the horizon with all that it is made of.
+fn sum<R: Recorder>(
+    w: &mut R,
+    of: &'static Horizon,
+    a: &Assumptions,
+    duty: &Duty,
+    escalation: f64,
+    value: f64,
+    about: &'static str,
+) {
+    let [year_end, mid_year] = of;
+    let formula = match a.cash_flow {
+        CashFlow::YearEnd => year_end,
+        CashFlow::MidYear => mid_year,
+    };
+    #[expect(clippy::cast_precision_loss, reason = "at most 200 years")]
+    let inputs = [
+        ("N", a.years as f64),
+        ("i", a.rate),
+        ("e", escalation),
+        ("g", duty.load_growth_pu),
+        ("Yg", a.load_growth_years as f64),
+        ("p_C", a.carbon_price_per_t),
+    ];
+    w.step(formula, &inputs, value);
+    w.about(&|| about.to_owned());
 }
 
 const CRF: Formula = Formula {
     name: "capital recovery factor of the horizon",
     symbol: "CRF",
-    formula: "1/Σ_k d_k",
+    formula: "1/X_flat",
     unit: "1/year",
     source: "IEEE C57.120 (memory); methods, section 5",
 };
 const EC: Formula = Formula {
     name: "levelised energy price",
     symbol: "EC",
-    formula: "CRF·c0·Σ_k d_k·idx_k",
+    formula: "CRF·c0·X_energy",
     unit: "money/kWh",
     source: "IEEE C57.120 (memory); methods, section 5",
 };
 const PUL2: Formula = Formula {
     name: "levelised square of the peak load",
     symbol: "PUL²",
-    formula: "CRF·Σ_k d_k·β_k²",
+    formula: "CRF·β²·Y_flat",
     unit: "pu²",
     source: "IEEE C57.120 (memory); methods, section 5",
 };
@@ -208,6 +266,20 @@ const AUX_LEVEL: Formula = Formula {
     source: "IEEE C57.120 (memory); methods, section 5",
 };
 
+const DIFFERENCE: Formula = Formula {
+    name: "how far the other method lies above",
+    symbol: "difference",
+    formula: "100·(other/own − 1)",
+    unit: "%",
+    source: "definition",
+};
+
+/// How far a factor by another method lies above the own one in percent; 0 where the own one is 0.
+pub fn difference_pct<R: Recorder>(w: &mut R, own: f64, other: f64) -> f64 {
+    let value = if own == 0.0 { 0.0 } else { 100.0 * (other / own - 1.0) };
+    w.step(&DIFFERENCE, &[("other", other), ("own", own)], value)
+}
+
 /// The levelized form of IEEE C57.120 (memory): price and load levelised apart; not a present value.
 ///
 /// # Errors
@@ -223,7 +295,8 @@ pub fn levelized<R: Recorder>(
         return Err(Refusal::new("fixed_charge_rate_pct", "", why));
     };
     let discount = |k| running(a.rate, k, a.cash_flow);
-    let crf = 1.0 / (1..=a.years).map(discount).sum::<f64>();
+    let plain = (1..=a.years).map(discount).sum::<f64>();
+    let crf = 1.0 / plain;
     let energy = sums(a, duty, a.energy_escalation).plain;
     let flat = sums(a, duty, 0.0).grown;
     let beta = duty.peak_kva / rated_kva;
@@ -233,15 +306,19 @@ pub fn levelized<R: Recorder>(
     let ec = crf * duty.no_load_price_per_kwh * energy;
     let pul2 = crf * flat * (beta * beta);
 
+    let c0 = duty.no_load_price_per_kwh;
     w.open();
-    w.step(&CRF, &[], crf);
-    w.step(&EC, &[("CRF", crf), ("c0", duty.no_load_price_per_kwh)], ec);
+    sum(w, &SUM, a, duty, 0.0, plain, "flat");
+    w.step(&CRF, &[("X_flat", plain)], crf);
+    sum(w, &SUM, a, duty, a.energy_escalation, energy, "energy");
+    w.step(&EC, &[("CRF", crf), ("c0", c0), ("X_energy", energy)], ec);
     let factor_a = (lic + h * ec) / divisor;
     let ends = [("ET", et), ("FCR", fcr), ("IF", increase)];
     let with = |own: &[(&'static str, f64)]| [own, &ends].concat();
     w.close(&A_LEVEL, &with(&[("LIC", lic), ("h", h), ("EC", ec)]), factor_a);
     w.open();
-    w.step(&PUL2, &[("CRF", crf)], pul2);
+    sum(w, &SUM_GROWN, a, duty, 0.0, flat, "flat");
+    w.step(&PUL2, &[("CRF", crf), ("β", beta), ("Y_flat", flat)], pul2);
     let factor_b = (lic * (prf * prf) + h * ec * duty.loss_factor_pu) * pul2 / divisor;
     let inputs = [
         ("LIC", lic),

@@ -66,6 +66,20 @@ const YEAR: Formula = Formula {
     source: "methods, section 4",
 };
 
+const LOSS_COST: Formula = Formula {
+    name: "cost of the losses of year k",
+    symbol: "loss_cost",
+    formula: "iron + copper + aux",
+    unit: "money",
+    source: "methods, section 4",
+};
+
+/// Cost of the losses of a year, stated from its parts.
+pub fn loss_cost<R: Recorder>(w: &mut R, year: &YearCost) -> f64 {
+    let inputs = [("iron", year.no_load), ("copper", year.load), ("aux", year.auxiliary)];
+    w.step(&LOSS_COST, &inputs, year.loss_cost())
+}
+
 /// Upkeep of a unit of `age` years.
 pub fn upkeep<R: Recorder>(w: &mut R, a: &Assumptions, age: f64) -> f64 {
     let value = a.upkeep_per_year * (1.0 + a.upkeep_age).powf(age);

@@ -39,6 +39,34 @@ const PEAK: Formula = Formula {
     source: "methods, section 4",
 };
 
+const PEAK_PU: Formula = Formula {
+    name: "peak load of year 1 over the rating",
+    symbol: "β_1",
+    formula: "S_1/S_r",
+    unit: "pu",
+    source: "methods, section 2",
+};
+const GROWTH_PCT: Formula = Formula {
+    name: "growth of the load a year in percent",
+    symbol: "g_pct",
+    formula: "100·g",
+    unit: "%",
+    source: "methods, section 4",
+};
+
+impl Duty {
+    /// Peak load of year 1 over a rating (pu).
+    pub fn peak_pu<R: Recorder>(&self, w: &mut R, rated_kva: f64) -> f64 {
+        let inputs = [("S_1", self.peak_kva), ("S_r", rated_kva)];
+        w.step(&PEAK_PU, &inputs, self.peak_kva / rated_kva)
+    }
+
+    /// Growth of the load a year in percent.
+    pub fn load_growth_pct<R: Recorder>(&self, w: &mut R) -> f64 {
+        w.step(&GROWTH_PCT, &[("g", self.load_growth_pu)], 100.0 * self.load_growth_pu)
+    }
+}
+
 /// Peak load of year `k` = 1, 2, … for a load that grows for `growth_years` years (kVA).
 pub fn peak_of_year<R: Recorder>(w: &mut R, duty: &Duty, k: usize, growth_years: usize) -> f64 {
     let value = duty.peak_kva * growth(duty.load_growth_pu, k, growth_years);

@@ -1,6 +1,7 @@
 //! Load profiles: a year of equal steps at any scale, and the ratios that the economics needs of them.
 
 use crate::engine::Refusal;
+use crate::engine::working::{Formula, Recorder, Silent};
 
 /// A load profile of a year. Reverse flow loads the windings too, so absolute values count.
 #[derive(Clone, Debug, PartialEq)]
@@ -9,6 +10,8 @@ pub struct Profile {
     pub profile: String,
     /// Length of a step in minutes.
     pub step_minutes: u32,
+    /// Time of the first step, ISO 8601; none where the steps are only numbered.
+    pub first_timestamp: Option<String>,
     /// Load of each step, at any scale.
     pub values: Vec<f64>,
 }
@@ -24,12 +27,27 @@ pub struct Ratios {
     pub loss_factor_pu: f64,
 }
 
+const LOAD_FACTOR: Formula = Formula {
+    name: "load factor of the profile",
+    symbol: "LF",
+    formula: "Σ_t (|s_t|/s_max)/n",
+    unit: "pu",
+    source: "mean over peak; methods, section 3",
+};
+const LOSS_FACTOR: Formula = Formula {
+    name: "loss factor of the profile",
+    symbol: "LsF",
+    formula: "Σ_t (s_t/s_max)²/n",
+    unit: "pu",
+    source: "mean square over peak square; methods, section 3",
+};
+
 impl Profile {
     /// The ratios LF = mean/peak and LsF = mean(s²)/peak².
     ///
     /// # Errors
     /// An empty profile and one that is never above zero have no ratios.
-    pub fn ratios(&self) -> Result<Ratios, Refusal> {
+    pub fn ratios<R: Recorder>(&self, w: &mut R) -> Result<Ratios, Refusal> {
         let peak = self.values.iter().fold(0.0, |peak: f64, s| peak.max(s.abs()));
         if peak.is_nan() || peak <= 0.0 || !peak.is_finite() {
             let why = "has no value above zero; a profile needs the shape of a year's load";
@@ -41,13 +59,22 @@ impl Profile {
             let s = s.abs() / peak;
             (sum + s, square + s * s)
         });
-        Ok(Ratios { peak, load_factor_pu: sum / steps, loss_factor_pu: square / steps })
+        let mut mean = |formula, sum: f64| {
+            let value = w.step(formula, &[("s_max", peak), ("n", steps)], sum / steps);
+            w.about(&|| self.profile.clone());
+            value
+        };
+        Ok(Ratios {
+            peak,
+            load_factor_pu: mean(&LOAD_FACTOR, sum),
+            loss_factor_pu: mean(&LOSS_FACTOR, square),
+        })
     }
 
     /// The load-duration histogram: for each of `bins` equal steps of s = |load|/peak the share of the year and
     /// the mean of s inside the bin. Empty bins are left out.
     pub fn load_duration(&self, bins: usize) -> Vec<(f64, f64)> {
-        let Ok(ratios) = self.ratios() else { return Vec::new() };
+        let Ok(ratios) = self.ratios(&mut Silent) else { return Vec::new() };
         let mut bin = vec![(0.0_f64, 0.0_f64); bins.max(1)];
         #[expect(
             clippy::cast_precision_loss,
@@ -75,16 +102,22 @@ mod tests {
     #[test]
     fn two_level_curve() {
         let values = [vec![100.0; 6], vec![-25.0; 18]].concat();
-        let profile = Profile { profile: "two".into(), step_minutes: 60, values };
-        let ratios = profile.ratios().expect("has a peak");
+        let profile =
+            Profile { profile: "two".into(), step_minutes: 60, first_timestamp: None, values };
+        let ratios = profile.ratios(&mut Silent).expect("has a peak");
         assert_eq!((ratios.load_factor_pu, ratios.loss_factor_pu), (0.4375, 0.296_875));
         assert_eq!(profile.load_duration(4), vec![(0.75, 0.25), (0.25, 1.0)]);
     }
 
     #[test]
     fn dead_profile_is_refused() {
-        let dead = |values| Profile { profile: "dead".into(), step_minutes: 60, values };
-        assert!(dead(vec![0.0; 5]).ratios().is_err());
-        assert!(dead(vec![]).ratios().is_err());
+        let dead = |values| Profile {
+            profile: "dead".into(),
+            step_minutes: 60,
+            first_timestamp: None,
+            values,
+        };
+        assert!(dead(vec![0.0; 5]).ratios(&mut Silent).is_err());
+        assert!(dead(vec![]).ratios(&mut Silent).is_err());
     }
 }

@@ -21,6 +21,11 @@ impl Circuit {
         self.r_pu.hypot(self.x_pu)
     }
 
+    /// Magnitude of the impedance (pu), stated.
+    pub fn magnitude<R: Recorder>(&self, w: &mut R) -> f64 {
+        w.step(&MAGNITUDE, &[("R", self.r_pu), ("X", self.x_pu)], self.z_pu())
+    }
+
     pub(crate) fn impedance(&self) -> Complex {
         Complex { re: self.r_pu, im: self.x_pu }
     }
@@ -106,6 +111,20 @@ pub(super) const X_PU: Formula = Formula {
     source: "methods, section 1",
 };
 
+const MAGNITUDE: Formula = Formula {
+    name: "magnitude of the series impedance per unit",
+    symbol: "|Z|",
+    formula: "√(R² + X²)",
+    unit: "pu",
+    source: "methods, section 1",
+};
+
+/// Series resistance per unit from load loss (W) and rating (kVA).
+pub fn resistance_pu<R: Recorder>(w: &mut R, rated_kva: f64, load_loss_w: f64) -> f64 {
+    let inputs = [("Pk", load_loss_w), ("S_r", rated_kva)];
+    w.step(&R_PU, &inputs, load_loss_w / (1000.0 * rated_kva))
+}
+
 /// The series circuit from nameplate values: load loss (W), rating (kVA) and impedance (%).
 ///
 /// # Errors
@@ -117,11 +136,7 @@ pub fn of_nameplate<R: Recorder>(
     impedance_pct: f64,
 ) -> Result<Circuit, Refusal> {
     positive("rated_kva", rated_kva, "must be above zero; take it from the nameplate")?;
-    let r = w.step(
-        &R_PU,
-        &[("Pk", load_loss_w), ("S_r", rated_kva)],
-        load_loss_w / (1000.0 * rated_kva),
-    );
+    let r = resistance_pu(w, rated_kva, load_loss_w);
     let z = w.step(&Z_PU, &[("u_k", impedance_pct)], impedance_pct / 100.0);
     if r < 0.0 || z < r {
         let why = format!(
@@ -159,6 +174,37 @@ const IM_PU: Formula = Formula {
     source: "methods, section 1",
 };
 
+const CORE_RESISTANCE: Formula = Formula {
+    name: "resistance that stands for the iron loss",
+    symbol: "R_c",
+    formula: "1/i_w",
+    unit: "pu",
+    source: "methods, section 1",
+};
+const MAGNETISING_REACTANCE: Formula = Formula {
+    name: "magnetising reactance",
+    symbol: "X_m",
+    formula: "1/i_m",
+    unit: "pu",
+    source: "methods, section 1",
+};
+
+/// Resistance that stands for the iron loss (pu), from rating (kVA) and no-load loss (W).
+///
+/// # Errors
+/// A rating or loss that is not above zero.
+pub fn core_resistance<R: Recorder>(
+    w: &mut R,
+    rated_kva: f64,
+    no_load_loss_w: f64,
+) -> Result<f64, Refusal> {
+    positive("rated_kva", rated_kva, "must be above zero; take it from the nameplate")?;
+    positive("no_load_loss_w", no_load_loss_w, "must be above zero for a magnetising branch")?;
+    let working = no_load_loss_w / (1000.0 * rated_kva);
+    w.step(&IW_PU, &[("P0", no_load_loss_w), ("S_r", rated_kva)], working);
+    Ok(w.step(&CORE_RESISTANCE, &[("i_w", working)], 1.0 / working))
+}
+
 /// The magnetising branch from nameplate values: no-load loss (W), rating (kVA), no-load current (%).
 ///
 /// # Errors
@@ -169,17 +215,14 @@ pub fn magnetising<R: Recorder>(
     no_load_loss_w: f64,
     no_load_current_pct: f64,
 ) -> Result<Magnetising, Refusal> {
-    positive("rated_kva", rated_kva, "must be above zero; take it from the nameplate")?;
-    positive("no_load_loss_w", no_load_loss_w, "must be above zero for a magnetising branch")?;
+    let core_resistance_pu = core_resistance(w, rated_kva, no_load_loss_w)?;
     let working = no_load_loss_w / (1000.0 * rated_kva);
-    w.step(&IW_PU, &[("P0", no_load_loss_w), ("S_r", rated_kva)], working);
     let current = no_load_current_pct / 100.0;
     let magnetising = quadrature("no_load_current_pct", no_load_current_pct, current, working)?;
     w.step(&IM_PU, &[("i_0", no_load_current_pct), ("i_w", working)], magnetising);
-    Ok(Magnetising {
-        core_resistance_pu: 1.0 / working,
-        reactance_pu: (magnetising > 0.0).then(|| 1.0 / magnetising),
-    })
+    let reactance_pu = (magnetising > 0.0)
+        .then(|| w.step(&MAGNETISING_REACTANCE, &[("i_m", magnetising)], 1.0 / magnetising));
+    Ok(Magnetising { core_resistance_pu, reactance_pu })
 }
 
 /// √(whole² − part²); a part that exceeds the whole by rounding (0.5 %) gives zero.

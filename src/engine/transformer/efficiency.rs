@@ -42,6 +42,24 @@ pub fn at_load<R: Recorder>(
     Ok(w.step(&EFFICIENCY, &inputs, out / (out + lost)))
 }
 
+const EFFICIENCY_PCT: Formula =
+    Formula { symbol: "η_pct", formula: "100·η", unit: "%", ..EFFICIENCY };
+
+/// Efficiency at a load of `load_pu` of the rating in percent.
+///
+/// # Errors
+/// As [`at_load`].
+pub fn at_load_pct<R: Recorder>(
+    w: &mut R,
+    losses: &Losses,
+    load_pu: f64,
+    power_factor: f64,
+) -> Result<f64, Refusal> {
+    w.open();
+    let pu = at_load(w, losses, load_pu, power_factor)?;
+    Ok(w.close(&EFFICIENCY_PCT, &[("η", pu)], 100.0 * pu))
+}
+
 fn check(losses: &Losses) -> Result<(), Refusal> {
     positive("rated_kva", losses.rated_kva, "must be above zero; take it from the nameplate")?;
     let parts = [("no_load_loss_w", losses.no_load_loss_w), ("load_loss_w", losses.load_loss_w)];

@@ -34,6 +34,15 @@ impl Energy {
     pub fn total_kwh(&self) -> f64 {
         self.no_load_energy_kwh + self.load_energy_kwh + self.auxiliary_energy_kwh
     }
+
+    /// The three with their symbols.
+    pub const fn inputs(&self) -> [(&'static str, f64); 3] {
+        [
+            ("E0", self.no_load_energy_kwh),
+            ("Ek", self.load_energy_kwh),
+            ("Ea", self.auxiliary_energy_kwh),
+        ]
+    }
 }
 
 const LOAD_LOSS_AT_RATING: Formula = Formula {
@@ -144,6 +153,12 @@ const AUXILIARY_ENERGY: Formula = Formula {
     source: "methods, section 4",
 };
 
+/// Energy of fans and pumps in a year (kWh).
+pub fn auxiliary_energy_kwh<R: Recorder>(w: &mut R, losses: &Losses, duty: &Duty) -> f64 {
+    let inputs = [("P_aux", losses.auxiliary_loss_w), ("h_aux", duty.auxiliary_hours)];
+    w.step(&AUXILIARY_ENERGY, &inputs, losses.auxiliary_loss_w * duty.auxiliary_hours / 1000.0)
+}
+
 /// Energy lost in year `k` under a duty, at rated voltage.
 pub fn annual_energy<R: Recorder>(
     w: &mut R,
@@ -167,11 +182,8 @@ pub fn annual_energy<R: Recorder>(
         ("h", h),
     ];
     w.close(&LOAD_ENERGY, &inputs, load);
-    let auxiliary = losses.auxiliary_loss_w * duty.auxiliary_hours / 1000.0;
-    if losses.auxiliary_loss_w > 0.0 {
-        let inputs = [("P_aux", losses.auxiliary_loss_w), ("h_aux", duty.auxiliary_hours)];
-        w.step(&AUXILIARY_ENERGY, &inputs, auxiliary);
-    }
+    let auxiliary =
+        if losses.auxiliary_loss_w > 0.0 { auxiliary_energy_kwh(w, losses, duty) } else { 0.0 };
     Energy { no_load_energy_kwh: no_load, load_energy_kwh: load, auxiliary_energy_kwh: auxiliary }
 }
 

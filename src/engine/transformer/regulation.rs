@@ -75,6 +75,15 @@ pub fn exact<R: Recorder>(w: &mut R, circuit: &Circuit, load_pu: f64, pf: PowerF
     w.close(&EXACT, &[("v_1", v)], v - 1.0)
 }
 
+const EXACT_PCT: Formula = Formula { symbol: "reg_pct", formula: "100·reg", unit: "%", ..EXACT };
+
+/// Regulation at `load_pu` of rated current, exact, in percent.
+pub fn exact_pct<R: Recorder>(w: &mut R, circuit: &Circuit, load_pu: f64, pf: PowerFactor) -> f64 {
+    w.open();
+    let pu = exact(w, circuit, load_pu, pf);
+    w.close(&EXACT_PCT, &[("reg", pu)], 100.0 * pu)
+}
+
 /// Regulation by the first-order term alone (pu).
 pub fn first_order<R: Recorder>(
     w: &mut R,

@@ -4,6 +4,7 @@ use super::{Intake, IntakeError, Report};
 use crate::book::{Book, Tally};
 use crate::engine::columns::Column;
 use crate::engine::loading::{PriceSeries, Profile};
+use crate::engine::working::Silent;
 use crate::exchange::series::{Names, Series, SeriesColumn, holds_numbers};
 use crate::exchange::{Rows, Source};
 
@@ -23,7 +24,7 @@ impl Intake<'_> {
         let Some(series) = self.series(source, Names::Any)? else {
             return Ok(self.report(Tally::default()));
         };
-        let (step_minutes, first) = (series.step_minutes, series.first_timestamp.as_deref());
+        let (step_minutes, first_timestamp) = (series.step_minutes, series.first_timestamp);
         let change = book.change(self.actor, Some(&self.file))?;
         for SeriesColumn { name, values } in series.columns {
             self.rows += 1;
@@ -31,13 +32,14 @@ impl Intake<'_> {
                 self.bad += 1;
                 continue;
             };
-            let profile = Profile { profile: name, step_minutes, values };
-            if let Err(refusal) = profile.ratios() {
+            let first_timestamp = first_timestamp.clone();
+            let profile = Profile { profile: name, step_minutes, first_timestamp, values };
+            if let Err(refusal) = profile.ratios(&mut Silent) {
                 self.bad += 1;
                 self.problems.add(1, &profile.profile, "", refusal.why);
                 continue;
             }
-            change.put_profile(&profile, first)?;
+            change.put_profile(&profile)?;
         }
         let tally = change.tally();
         if self.stays() {
@@ -72,12 +74,13 @@ impl Intake<'_> {
         let prices = PriceSeries {
             name,
             step_minutes: series.step_minutes,
+            first_timestamp: series.first_timestamp,
             price_per_kwh: price.unwrap_or_default(),
             co2_kg_per_kwh: co2,
             system_load: load,
         };
         let change = book.change(self.actor, Some(&self.file))?;
-        change.put_price_series(&prices, series.first_timestamp.as_deref())?;
+        change.put_price_series(&prices)?;
         let tally = change.tally();
         if self.stays() {
             change.commit()?;

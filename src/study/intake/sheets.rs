@@ -4,6 +4,7 @@ use super::{Intake, IntakeError, Report};
 use crate::book::{Book, BookError, Change, Tally};
 use crate::engine::columns::TenderSheet;
 use crate::engine::economics::Assumptions;
+use crate::engine::law;
 use crate::exchange::sheets::{self, Sheet};
 use crate::exchange::{Problems, Recognised, Source};
 
@@ -18,9 +19,15 @@ impl Intake<'_> {
             let line = sheet.line(refusal.quantity);
             self.problems.add(line, refusal.quantity, &refusal.value, refusal.why);
         }
+        self.known_law(&sheet, basis.law.as_deref());
         let change = book.change(self.actor, Some(&self.file))?;
         let saved = change.save_basis(&sheet.content);
-        self.settle(change, saved, &sheet)
+        let (current, actor) = (self.options.current, self.actor);
+        let report = self.settle(change, saved, &sheet)?;
+        if current && report.stored {
+            book.set_current_basis(&sheet.content.basis.name, actor)?;
+        }
+        Ok(report)
     }
 
     pub(super) fn tender(mut self, book: &mut Book, source: Source) -> Result<Report, IntakeError> {
@@ -29,9 +36,19 @@ impl Intake<'_> {
         };
         let TenderSheet { rates, lots, .. } = &sheet.content;
         self.rows = 1 + (rates.len() + lots.len()) as u64;
+        for lot in lots {
+            self.known_law(&sheet, lot.law.as_deref());
+        }
         let change = book.change(self.actor, Some(&self.file))?;
         let saved = change.save_tender(&sheet.content);
         self.settle(change, saved, &sheet)
+    }
+
+    /// Holds that a law that is named is known.
+    fn known_law<T>(&mut self, sheet: &Sheet<T>, law: Option<&str>) {
+        if let Some(Err(refusal)) = law.map(law::named) {
+            self.problems.add(sheet.line("law"), "law", &refusal.value, refusal.why);
+        }
     }
 
     fn sheet<T>(

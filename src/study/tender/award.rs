@@ -5,15 +5,13 @@
 
 use serde::Serialize;
 
-use super::{BidResult, LotResult, TenderResult};
+use super::{BidResult, LotResult};
+use crate::engine::decision::tender::packages::{above, together};
+use crate::engine::working::{Recorder, Silent};
 
-/// How a tender may be awarded.
-#[derive(Clone, Debug, PartialEq, Serialize)]
-pub struct AwardResult {
-    /// The tender.
-    pub tender: String,
-    /// Currency of all amounts.
-    pub currency: String,
+/// How the lots may be awarded.
+#[derive(Clone, Debug, Default, PartialEq, Serialize)]
+pub struct Awards {
     /// Each lot to the bid of least owning cost.
     pub by_lot: Package,
     /// All lots to one bidder: those who cover most lots first, then the cheapest.
@@ -66,7 +64,6 @@ impl Package {
                 package.lots_missing.push(lot.lot.clone());
                 continue;
             };
-            package.lot_cost += bid.lot_cost;
             package.bids.push(PackageBid {
                 lot: lot.lot.clone(),
                 bid: bid.bid.clone(),
@@ -74,15 +71,26 @@ impl Package {
                 lot_cost: bid.lot_cost,
             });
         }
+        package.lot_cost = package.cost(&mut Silent);
         package
+    }
+
+    /// What its bids cost together.
+    pub(super) fn cost<R: Recorder>(&self, w: &mut R) -> f64 {
+        together(w, self.bids.iter().map(|bid| bid.lot_cost))
+    }
+
+    /// What the winners of the same lots cost together.
+    pub(super) fn winners<'a>(&self, by_lot: &'a Self) -> impl Iterator<Item = f64> + use<'a, '_> {
+        let covered = |bid: &&PackageBid| self.bids.iter().any(|own| own.lot == bid.lot);
+        by_lot.bids.iter().filter(covered).map(|bid| bid.lot_cost)
     }
 }
 
 /// Compares awarding each lot on its own with awarding all to one bidder.
-pub fn award(tender: &TenderResult) -> AwardResult {
-    let by_lot = Package::of(&tender.lots, |_| true);
-    let mut bidders: Vec<&str> = tender
-        .lots
+pub fn awards(lots: &[LotResult]) -> Awards {
+    let by_lot = Package::of(lots, |_| true);
+    let mut bidders: Vec<&str> = lots
         .iter()
         .flat_map(|lot| &lot.bids)
         .filter(|bid| bid.rank.is_some())
@@ -93,10 +101,9 @@ pub fn award(tender: &TenderResult) -> AwardResult {
     let mut packages: Vec<BidderPackage> = bidders
         .into_iter()
         .map(|bidder| {
-            let package = Package::of(&tender.lots, |bid| bid.bidder.as_deref() == Some(bidder));
-            let covered = |bid: &&PackageBid| package.bids.iter().any(|own| own.lot == bid.lot);
-            let winners: f64 = by_lot.bids.iter().filter(covered).map(|bid| bid.lot_cost).sum();
-            let above_by_lot = package.lot_cost - winners;
+            let package = Package::of(lots, |bid| bid.bidder.as_deref() == Some(bidder));
+            let winners = together(&mut Silent, package.winners(&by_lot));
+            let above_by_lot = above(&mut Silent, package.lot_cost, winners);
             BidderPackage { bidder: bidder.to_owned(), package, above_by_lot }
         })
         .collect();
@@ -104,10 +111,5 @@ pub fn award(tender: &TenderResult) -> AwardResult {
         let covered = b.package.bids.len().cmp(&a.package.bids.len());
         covered.then(a.package.lot_cost.total_cmp(&b.package.lot_cost))
     });
-    AwardResult {
-        tender: tender.tender.clone(),
-        currency: tender.currency.clone(),
-        by_lot,
-        packages,
-    }
+    Awards { by_lot, packages }
 }

@@ -6,6 +6,8 @@
 use serde::ser::SerializeMap as _;
 use serde::{Serialize, Serializer};
 
+use super::award::Awards;
+use super::risk::RiskResult;
 use crate::engine::decision::tender::factors::Computed;
 use crate::engine::decision::tender::map::Point;
 use crate::engine::transformer::losses::Losses;
@@ -19,6 +21,8 @@ pub struct TenderResult {
     pub currency: String,
     /// Its lots, in order of entry.
     pub lots: Vec<LotResult>,
+    /// The lots each to its own winner, or all to one bidder.
+    pub awards: Awards,
 }
 
 /// The evaluation of a lot.
@@ -49,17 +53,21 @@ pub struct LotResult {
     /// What is doubtful about the lot.
     pub flags: Vec<&'static str>,
     /// The near-tied bids, lowest price with adders first: the order beside the rank order.
-    #[serde(skip)]
     pub near_tie_order: Vec<String>,
     /// Lines between the cells of the map.
     #[serde(skip)]
     pub borders: Vec<BorderResult>,
     /// The nearest pair (A, B) at which another bid is as cheap.
-    #[serde(skip)]
     pub nearest_border: Option<NearestBorderResult>,
+    /// Width of the near-tie band above the least owning cost.
+    #[serde(skip)]
+    pub near_tie_pct: f64,
     /// Which factors come from the basis.
     #[serde(skip)]
     pub computed: Computed,
+    /// How sure the winner is, where that was asked.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub risk: Option<RiskResult>,
 }
 
 /// The evaluation of a bid; amounts per unit in the tender currency.
@@ -134,7 +142,7 @@ pub struct BorderResult {
 }
 
 /// The pair (A, B) nearest to today's at which another bid is as cheap to own.
-#[derive(Clone, Debug, PartialEq)]
+#[derive(Clone, Debug, PartialEq, Serialize)]
 pub struct NearestBorderResult {
     /// The pair [A, B].
     pub at: Point,

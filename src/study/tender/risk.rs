@@ -37,12 +37,6 @@ pub struct Question<'a> {
 /// How sure the winner of a lot is.
 #[derive(Clone, Debug, PartialEq, Serialize)]
 pub struct RiskResult {
-    /// The tender.
-    pub tender: String,
-    /// The lot.
-    pub lot: String,
-    /// Currency of all amounts.
-    pub currency: String,
     /// The seed of the draws.
     pub seed: u64,
     /// Number of draws.
@@ -138,9 +132,6 @@ pub fn risk(
         })
     };
     Ok(RiskResult {
-        tender: sheet.tender.tender.clone(),
-        lot: lot.lot.clone(),
-        currency: sheet.tender.currency.clone(),
         seed,
         draws,
         moved_draws: cloud.moved,

@@ -5,7 +5,7 @@ use chrono::NaiveDate;
 use super::Terms;
 use super::bid::Comparable;
 use crate::engine::Refusal;
-use crate::engine::columns::{Bid, Tender};
+use crate::engine::columns::{Bid, Insulation, Tender};
 use crate::engine::law::{self, Subject, Verdict};
 
 /// The day whose law counts: that of the tender, else the first of the basis's first year; none where neither
@@ -46,8 +46,30 @@ pub fn verdict(
     law::check(key, &subject, purchase).map(Some)
 }
 
+/// What the law that the lot names asks of a transformer of the lot's rating with this insulation: the limits of the
+/// verdict count, not whether they are met. None where the lot names no law or the day is not known.
+///
+/// # Errors
+/// A law that is not known.
+pub fn floor(terms: &Terms, insulation: Insulation) -> Result<Option<Verdict>, Refusal> {
+    let lot = terms.lot;
+    let Some(key) = &lot.law else { return Ok(None) };
+    law::named(key)?;
+    let Some(purchase) = terms.purchase else { return Ok(None) };
+    let subject = Subject {
+        phases: lot.vector_group.as_deref().and_then(phases),
+        hv_kv: lot.hv_kv,
+        lv_kv: lot.lv_kv,
+        insulation: Some(insulation),
+        reference_temp_c: lot.reference_temp_c,
+        // Losses that keep every limit: where levels depend on something blank, the strictest one is told.
+        ..Subject::new(lot.rated_kva, 1.0, 1.0)
+    };
+    law::check(key, &subject, purchase).map(Some)
+}
+
 /// Number of phases of a vector group: `D`, `Y` and `Z` windings are of three phases, `I` of one.
-fn phases(vector_group: &str) -> Option<i64> {
+pub fn phases(vector_group: &str) -> Option<i64> {
     match vector_group.trim().chars().next()?.to_ascii_uppercase() {
         'D' | 'Y' | 'Z' => Some(3),
         'I' => Some(1),

@@ -55,7 +55,7 @@ impl<'a> UncertainFactors<'a> {
                     let why = format!("has no effect: the basis takes its prices from {name}");
                     return Err(Refusal::new("range", flat, why));
                 }
-                let constant = Market::of_series(series, &[], 0.0)?.constant;
+                let constant = Market::of_series(series, &[], 0.0).constant;
                 Some((constant, series.co2_kg_per_kwh.is_some()))
             }
             (Some(name), None) => {

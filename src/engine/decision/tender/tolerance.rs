@@ -82,24 +82,55 @@ pub fn worst<R: Recorder>(
     w.close(&WORST, &[("A", a), ("x", x), ("B", b), ("y", y)], value)
 }
 
-/// Whether losses `no_load_excess_w` and `load_excess_w` above (below: negative) the guarantees are beyond
-/// the rule. The total counts the shortfall of one loss against the excess of the other.
-pub fn beyond(
+/// One part of a tolerance rule that measured losses exceed; percent of the guarantee.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Exceeded {
+    /// `no-load loss`, `load loss` or `total loss`.
+    pub loss: &'static str,
+    /// How far it lies above the guarantee; none where nothing was guaranteed.
+    pub excess_pct: Option<f64>,
+    /// How far it may.
+    pub allowed_pct: f64,
+}
+
+const EXCESS_PCT: Formula = Formula {
+    name: "loss above the guarantee in percent of it",
+    symbol: "ΔP_pct",
+    formula: "100·ΔP/P",
+    unit: "%",
+    source: "IEC 60076-1 Table 1, IEEE C57.12.00 clause 9; methods, section 8",
+};
+
+/// The parts of the rule that losses `no_load_excess_w` and `load_excess_w` above (below: negative) the guarantees
+/// exceed. The total counts the shortfall of one loss against the excess of the other.
+pub fn exceeded<R: Recorder>(
+    w: &mut R,
     rule: Tolerance,
     guaranteed: &Losses,
     no_load_excess_w: f64,
     load_excess_w: f64,
-) -> bool {
+) -> Vec<Exceeded> {
     let (p0, pk) = (guaranteed.no_load_loss_w, guaranteed.load_loss_w);
     let room = room(rule);
-    // Equality passes, also after the rounding of a temperature correction.
-    let above = |excess: f64, room: f64, base: f64| excess > room * base + 1e-12 * base;
-    let component = above(no_load_excess_w, room.no_load, p0)
-        || room.load.is_some_and(|share| above(load_excess_w, share, pk));
     // Without a tolerance each guarantee stands alone; there is none for the total.
-    let total =
-        rule != Tolerance::None && above(no_load_excess_w + load_excess_w, room.total, p0 + pk);
-    component || total
+    let total = (rule != Tolerance::None).then_some(room.total);
+    let parts = [
+        ("no-load loss", Some(room.no_load), no_load_excess_w, p0),
+        ("load loss", room.load, load_excess_w, pk),
+        ("total loss", total, no_load_excess_w + load_excess_w, p0 + pk),
+    ];
+    // Equality passes, also after the rounding of a temperature correction.
+    let mut above = |(loss, room, excess, base): (&'static str, Option<f64>, f64, f64)| {
+        let room = room.filter(|room| excess > room * base + 1e-12 * base)?;
+        let excess_pct = (base > 0.0).then(|| {
+            let value = 100.0 * excess / base;
+            w.step(&EXCESS_PCT, &[("ΔP", excess), ("P", base)], value);
+            w.about(&|| loss.to_owned());
+            value
+        });
+        Some(Exceeded { loss, excess_pct, allowed_pct: 100.0 * room })
+    };
+    parts.into_iter().filter_map(&mut above).collect()
 }
 
 #[cfg(test)]
@@ -148,11 +179,24 @@ mod tests {
     #[test]
     fn equality_is_within() {
         let guaranteed = losses(1000.0, 4000.0);
-        let beyond = |rule, x, y| beyond(rule, &guaranteed, x, y);
+        let beyond = |rule, x, y| !exceeded(&mut Silent, rule, &guaranteed, x, y).is_empty();
         assert!(!beyond(Tolerance::Iec, 150.0, 350.0) && beyond(Tolerance::Iec, 150.1, 0.0));
         assert!(beyond(Tolerance::Iec, 100.0, 401.0) && !beyond(Tolerance::Iec, -200.0, 600.0));
         assert!(!beyond(Tolerance::Ieee, 100.0, 200.0) && beyond(Tolerance::Ieee, 0.0, 301.0));
         assert!(!beyond(Tolerance::None, 0.0, -5.0) && beyond(Tolerance::None, -5.0, 1.0));
+    }
+
+    #[test]
+    fn what_is_exceeded_is_named() {
+        let found = exceeded(&mut Silent, Tolerance::Iec, &losses(1000.0, 4000.0), 170.0, 400.0);
+        let part = |loss, excess_pct, allowed_pct| Exceeded {
+            loss,
+            excess_pct: Some(excess_pct),
+            allowed_pct,
+        };
+        assert_eq!(found, [part("no-load loss", 17.0, 15.0), part("total loss", 11.4, 10.0)]);
+        let nothing = exceeded(&mut Silent, Tolerance::None, &losses(0.0, 4000.0), 1.0, 0.0);
+        assert_eq!((nothing.len(), nothing[0].excess_pct), (1, None));
     }
 
     #[test]

@@ -1,0 +1,172 @@
+//! What the settlement of a tender says, as a letter that can go to the bidder.
+
+use super::{LotSettlement, SettleResult, UnitSettlement};
+use crate::exchange::Letter;
+use crate::exchange::letter::Column;
+use crate::study::figures::{group, short};
+use crate::study::tender::letter::{cautions, flag};
+
+/// The settlement of a tender as a letter.
+pub fn settlement(result: &SettleResult) -> Letter {
+    let mut letter = Letter::default();
+    let currency = &result.currency;
+    letter.heading(
+        1,
+        format!("Tender {}: measured losses against guarantees, in {currency}", result.tender),
+    );
+    if result.lots.is_empty() {
+        letter.text("No measured units; import them with: ironhum import measured FILE");
+        return letter;
+    }
+    for lot in &result.lots {
+        section(&mut letter, lot, currency, 2);
+    }
+    cautions(&mut letter);
+    letter
+}
+
+/// The settlement of one lot with one bid.
+pub(in crate::study) fn section(
+    letter: &mut Letter,
+    lot: &LotSettlement,
+    currency: &str,
+    level: usize,
+) {
+    let by = lot.bidder.as_ref().map_or(String::new(), |bidder| format!(" of {bidder}"));
+    letter.heading(level, format!("Settlement of lot {}, bid {}{by}", lot.lot, lot.bid));
+    for key in lot.flags.iter().filter(|key| **key == "factor_scale") {
+        letter.warning(flag(key));
+    }
+    promise(letter, lot, currency);
+    units(letter, lot, currency);
+    outcome(letter, lot, currency);
+    let mut said: Vec<(&str, Vec<&str>)> = Vec::new();
+    for unit in &lot.units {
+        for key in &unit.flags {
+            match said.iter_mut().find(|(known, _)| known == key) {
+                Some((_, serials)) => serials.push(&unit.serial),
+                None => said.push((key, vec![&unit.serial])),
+            }
+        }
+    }
+    for (key, serials) in said {
+        let all = serials.len() == lot.units.len();
+        let of = if all { "all units".to_owned() } else { serials.join(", ") };
+        letter.warning(format!("{of}: {}", flag(key)));
+    }
+    for key in lot.flags.iter().filter(|key| **key != "factor_scale") {
+        letter.warning(flag(key));
+    }
+}
+
+/// What was promised, what an excess costs, and by what rule.
+fn promise(letter: &mut Letter, lot: &LotSettlement, currency: &str) {
+    let g = &lot.guaranteed;
+    let at = g.reference_temp_c.map_or(String::new(), |c| format!(" at {} °C", short(c)));
+    let aux = match g.auxiliary_loss_w {
+        0.0 => String::new(),
+        w => format!(", auxiliary loss {} W", short(w)),
+    };
+    letter.text(format!(
+        "{} of {} units were measured. Guaranteed for one unit of {} kVA: no-load loss {} W, load loss {} W{at}{aux}.",
+        lot.units.len(),
+        lot.quantity,
+        short(g.rated_kva),
+        short(g.no_load_loss_w),
+        short(g.load_loss_w)
+    ));
+    letter.text(format!(
+        "A kW above the guarantee costs, once: A {} (no-load loss), B {} (load loss at {} kVA), A aux {} (auxiliaries) {currency}.",
+        group(lot.factor_a_per_kw, 2),
+        group(lot.factor_b_per_kw, 2),
+        short(g.rated_kva),
+        group(lot.factor_aux_per_kw, 2)
+    ));
+    let per = if lot.settlement == "unit" {
+        "Each unit is settled on its own"
+    } else {
+        "The mean of the measured units is settled, times their number"
+    };
+    let rule = match g.tolerance {
+        "iec" => "IEC 60076-1: each loss 15 %, the total 10 % above its guarantee",
+        "ieee" => {
+            "IEEE C57.12.00: no-load loss 10 %, the total 6 % above its guarantee (beyond it the parties consult)"
+        }
+        _ => "none",
+    };
+    letter.text(format!(
+        "{per}; each loss counts from its guarantee and on its own; a loss below its guarantee earns no credit. Tolerance, beyond which a unit may be rejected: {rule}."
+    ));
+}
+
+fn units(letter: &mut Letter, lot: &LotSettlement, currency: &str) {
+    let at =
+        lot.guaranteed.reference_temp_c.map_or(String::new(), |c| format!(" at {} °C", short(c)));
+    let with_aux = lot.units.iter().any(|unit| unit.auxiliary_loss_w.is_some());
+    let mut columns = vec![
+        Column::words("serial"),
+        Column::words("tested on"),
+        Column::figures("no-load loss", "W"),
+        Column::figures("load loss read", "W"),
+        Column::figures("at", "°C"),
+        Column::figures(format!("load loss{at}"), "W"),
+        Column::figures("no-load excess", "W"),
+        Column::figures("load excess", "W"),
+    ];
+    if with_aux {
+        columns.push(Column::figures("aux excess", "W"));
+    }
+    columns.push(Column::figures("penalty", currency));
+    columns.push(Column::words("remark"));
+    let blank = || "–".to_owned();
+    let row = |unit: &UnitSettlement| {
+        let mut cells = vec![
+            unit.serial.clone(),
+            unit.tested_on.clone().unwrap_or_else(blank),
+            short(unit.no_load_loss_w),
+            short(unit.test_load_loss_w),
+            unit.test_temp_c.map_or_else(blank, short),
+            group(unit.load_loss_w, 1),
+            group(unit.no_load_excess_w, 1),
+            group(unit.load_excess_w, 1),
+        ];
+        if with_aux {
+            cells.push(unit.auxiliary_excess_w.map_or_else(blank, |w| group(w, 1)));
+        }
+        cells.push(group(unit.penalty, 2));
+        cells.push(if unit.beyond_tolerance { "beyond tolerance" } else { "" }.to_owned());
+        cells
+    };
+    letter.table(columns, lot.units.iter().map(row).collect());
+}
+
+fn outcome(letter: &mut Letter, lot: &LotSettlement, currency: &str) {
+    if let Some(mean) = &lot.mean_excess {
+        letter.text(format!(
+            "Mean above the guarantee: no-load loss {} W, load loss {} W, auxiliary loss {} W.",
+            group(mean.no_load_excess_w, 1),
+            group(mean.load_excess_w, 1),
+            group(mean.auxiliary_excess_w, 1)
+        ));
+    }
+    letter.text(format!("Penalty: {} {currency}.", group(lot.penalty, 2)));
+    letter.text(format!(
+        "Owning cost of one unit: promised {}, delivered {} {currency} (mean of the measured units, before the penalty).",
+        group(lot.owning_cost_promised, 0),
+        group(lot.owning_cost_delivered, 0)
+    ));
+    let point = |unit: &UnitSettlement| {
+        let parts = unit.exceeds.iter().map(|part| {
+            let above = part.excess_pct.map_or_else(
+                || "above a guarantee of 0".to_owned(),
+                |pct| format!("{} % above", group(pct, 2)),
+            );
+            format!("{} {above}, {} % allowed", part.loss, short(part.allowed_pct))
+        });
+        let verdict =
+            if unit.rejectable { "may be rejected" } else { "is beyond tolerance: consult" };
+        format!("{} {verdict}: {}.", unit.serial, parts.collect::<Vec<_>>().join("; "))
+    };
+    let beyond = lot.units.iter().filter(|unit| unit.beyond_tolerance);
+    letter.points(beyond.map(point).collect());
+}

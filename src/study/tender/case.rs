@@ -1,0 +1,130 @@
+//! A tender of a book with the basis that fills what its lots leave open: what every command on a tender begins with.
+
+use super::risk::{Question, risk};
+use super::{BasisForFactors, LotFactors, TenderResult, evaluate, lot_factors};
+use crate::book::{Book, BookError};
+use crate::engine::Refusal;
+use crate::engine::columns::TenderSheet;
+use crate::engine::decision::Context;
+use crate::engine::decision::tender::factors::Computed;
+use crate::engine::decision::uncertainty::RankCorrelation;
+use crate::study::settle::{SettleResult, settle};
+use crate::study::{Desk, StudyError};
+
+/// A tender and its basis.
+#[derive(Clone, Debug)]
+pub struct Case {
+    /// The tender with all that came in for it.
+    pub sheet: TenderSheet,
+    basis: Option<(Desk, Context)>,
+}
+
+/// How a simulation is drawn.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Draws {
+    /// How many.
+    pub draws: usize,
+    /// The same seed gives the same figures.
+    pub seed: u64,
+    /// Inputs that move together.
+    pub correlations: Vec<RankCorrelation>,
+}
+
+impl Default for Draws {
+    fn default() -> Self {
+        Self { draws: 10_000, seed: 1, correlations: Vec::new() }
+    }
+}
+
+impl Case {
+    /// Reads a tender and the basis named, else the book's only or current one. Without any basis the case stands
+    /// as long as its lots leave nothing open.
+    ///
+    /// # Errors
+    /// The book fails or has no such tender or basis; which of several bases is meant cannot be told and a lot
+    /// needs one.
+    pub fn read(book: &Book, tender: &str, basis: Option<&str>) -> Result<Self, StudyError> {
+        let sheet = book.tender(tender)?;
+        let open = sheet.lots.iter().any(|lot| Computed::by(lot).any());
+        match Desk::basis_only(book, basis) {
+            Ok(desk) => Self::new(sheet, Some(desk)),
+            Err(StudyError::Book(BookError::WhichBasis { known })) if known.is_empty() || !open => {
+                Self::new(sheet, None)
+            }
+            Err(error) => Err(error),
+        }
+    }
+
+    /// A tender with the desk on which its basis lies.
+    ///
+    /// # Errors
+    /// What the engine refuses of the basis.
+    pub fn new(sheet: TenderSheet, desk: Option<Desk>) -> Result<Self, StudyError> {
+        let ready = |desk: Desk| desk.context().map(|context| (desk, context));
+        Ok(Self { sheet, basis: desk.map(ready).transpose()? })
+    }
+
+    /// The basis, where there is one.
+    pub fn basis(&self) -> Option<BasisForFactors<'_>> {
+        self.basis.as_ref().map(|(_, context)| BasisForFactors {
+            assumptions: &context.assumptions,
+            market: &context.market,
+        })
+    }
+
+    /// Name of the basis, where there is one.
+    pub fn basis_name(&self) -> Option<&str> {
+        self.basis.as_ref().map(|(desk, _)| desk.sheet.basis.name.as_str())
+    }
+
+    /// Whether the basis says how far any input may lie.
+    pub fn has_ranges(&self) -> bool {
+        self.basis.as_ref().is_some_and(|(desk, _)| !desk.sheet.ranges.is_empty())
+    }
+
+    /// Evaluates the bids of one lot, or of all.
+    ///
+    /// # Errors
+    /// As [`evaluate`].
+    pub fn evaluate(&self, lot: Option<&str>) -> Result<TenderResult, StudyError> {
+        evaluate(&self.sheet, self.basis().as_ref(), lot)
+    }
+
+    /// The factors of a lot as they are published.
+    ///
+    /// # Errors
+    /// As [`evaluate`].
+    pub fn factors(&self, lot: &str) -> Result<LotFactors, StudyError> {
+        lot_factors(&self.sheet, self.basis().as_ref(), lot)
+    }
+
+    /// Settles the measured units of one lot, or of all.
+    ///
+    /// # Errors
+    /// As [`settle`].
+    pub fn settle(&self, lot: Option<&str>) -> Result<SettleResult, StudyError> {
+        settle(&self.sheet, self.basis().as_ref(), lot)
+    }
+
+    /// Says of each lot that has a ranked bid how sure its winner is.
+    ///
+    /// # Errors
+    /// There is no basis; as [`risk`].
+    pub fn add_risk(&self, result: &mut TenderResult, asked: &Draws) -> Result<(), StudyError> {
+        let (Some((desk, _)), Some(today)) = (&self.basis, self.basis()) else {
+            let why = "is needed: its ranges say what is uncertain; import one, or name it";
+            return Err(Refusal::new("basis", "", why).into());
+        };
+        let question = Question {
+            basis: &desk.sheet,
+            series: desk.series.first(),
+            correlations: &asked.correlations,
+            seed: asked.seed,
+            draws: asked.draws,
+        };
+        for lot in result.lots.iter_mut().filter(|lot| lot.least_owning_cost.is_some()) {
+            lot.risk = Some(risk(&self.sheet, &today, &lot.lot, &question)?);
+        }
+        Ok(())
+    }
+}

@@ -1,0 +1,75 @@
+//! The factors of a lot as they go into the tender documents.
+
+use super::flag;
+use crate::exchange::Letter;
+use crate::exchange::letter::Column;
+use crate::study::explain::StepRow;
+use crate::study::figures::{group, short};
+use crate::study::tender::{InCurrency, LegalLimit, LotFactors};
+
+/// The published factors of a lot, with their working where it is wanted.
+pub fn lot_factors(factors: &LotFactors, working: bool) -> Letter {
+    let mut letter = Letter::default();
+    letter.heading(1, format!("Loss factors of tender {}, lot {}", factors.tender, factors.lot));
+    letter.text(match &factors.basis {
+        None => "The lot states every factor itself.".to_owned(),
+        Some(basis) => {
+            let stated = match factors.stated.as_slice() {
+                [] => String::new(),
+                keys => format!("; {} stated in the lot", keys.join(" and ")),
+            };
+            format!("Computed from basis {basis} by the {} method{stated}.", factors.method)
+        }
+    });
+    letter.text(format!(
+        "Money per kW of loss, once, not per year. B holds for the load loss at {} kVA; for a bid of another rating it is B·(S_lot/S_bid)².",
+        short(factors.rated_kva)
+    ));
+    let row = |of: &InCurrency| {
+        let values = [of.factor_a_per_kw, of.factor_b_per_kw, of.factor_aux_per_kw];
+        std::iter::once(of.currency.clone()).chain(values.map(|value| group(value, 2))).collect()
+    };
+    letter.table(
+        vec![
+            Column::words("currency"),
+            Column::figures("A, no-load loss", "/kW"),
+            Column::figures("B, load loss", "/kW"),
+            Column::figures("A aux, auxiliaries", "/kW"),
+        ],
+        factors.in_currencies.iter().map(row).collect(),
+    );
+    letter.text("A bidder who guarantees one kW less of a loss may ask that much more and owns for the same.");
+    if let Some(other) = &factors.other_method {
+        letter.text(format!(
+            "By the {} method A would be {} ({} %) and B {} ({} %) {}/kW.",
+            other.method,
+            group(other.factor_a_per_kw, 2),
+            group(other.factor_a_difference_pct, 2),
+            group(other.factor_b_per_kw, 2),
+            group(other.factor_b_difference_pct, 2),
+            factors.currency
+        ));
+    }
+    letter.points(factors.law.iter().map(legal).collect());
+    for key in &factors.flags {
+        letter.warning(flag(key));
+    }
+    if working {
+        letter.heading(2, "Working");
+        letter.lines(StepRow::lines(&factors.working, 0));
+    }
+    letter
+}
+
+/// A legal limit in a line.
+fn legal(limit: &LegalLimit) -> String {
+    let verify =
+        if limit.verify { " Verify in the official text: a remembered row was used." } else { "" };
+    let of = format!("Law {}, {} insulation", limit.law, limit.insulation);
+    match (limit.quantity, limit.bound, limit.limit) {
+        (Some(quantity), Some(bound), Some(value)) => {
+            format!("{of}: {quantity} {bound} {} ({}).{verify}", short(value), limit.source)
+        }
+        _ => format!("{of}: {}.{verify}", limit.source),
+    }
+}
