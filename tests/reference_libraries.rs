@@ -14,7 +14,7 @@ use ironhum::engine::economics::loss_factors::{levelized, present_value};
 use ironhum::engine::loading::Duty;
 use ironhum::engine::transformer::circuit::{Circuit, PowerFactor, of_nameplate};
 use ironhum::engine::transformer::efficiency::{at_load, best_load};
-use ironhum::engine::transformer::estimate::{Build, LossModel};
+use ironhum::engine::transformer::estimate::{Build, Loss, LossModel};
 use ironhum::engine::transformer::fault::{fault_current, fault_level};
 use ironhum::engine::transformer::losses::{Losses, at_current};
 use ironhum::engine::transformer::nameplate::Phases;
@@ -363,7 +363,7 @@ fn estimated_losses() {
     };
     for fleet in rows(&file, "fleets") {
         let known = rows(fleet, "known").iter().map(|row| (build(row), n(row, "loss_w")));
-        let model = LossModel::learn("no-load loss", &known);
+        let model = LossModel::learn(Loss::NoLoad, &known);
         for asked in rows(fleet, "asked") {
             let got = model.estimate(&mut Silent, &build(asked)).expect("enough units");
             let terms: Vec<&str> = fleet["terms"]

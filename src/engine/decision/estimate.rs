@@ -3,7 +3,7 @@
 
 use super::fleet::FleetColumns;
 use super::place::{LeftOut, UnitFacts, known};
-use crate::engine::transformer::estimate::{Build, Estimated, Impossible, LossModel};
+use crate::engine::transformer::estimate::{Build, Estimated, Impossible, Loss, LossModel};
 use crate::engine::transformer::losses::{Losses, quoted};
 use crate::engine::working::{Recorder, Silent};
 
@@ -75,8 +75,8 @@ impl FleetEstimate {
         let no_load = units.clone().filter_map(|f| Some((f.build(), f.known_no_load_loss()?)));
         let load = units.filter_map(|f| Some((f.build(), f.known_load_loss()?)));
         Self {
-            no_load: LossModel::learn("no-load loss", &no_load),
-            load: LossModel::learn("load loss", &load),
+            no_load: LossModel::learn(Loss::NoLoad, &no_load),
+            load: LossModel::learn(Loss::Load, &load),
         }
     }
 

@@ -226,27 +226,46 @@ fn fill(terms: &[Term], build: &Build, row: &mut [f64; WIDEST]) {
     }
 }
 
-const ESTIMATE: Formula = Formula {
-    name: "loss estimated from the fleet's known units",
-    symbol: "P_est",
-    formula: "exp(b0 + b1·ln(S_r) + b2·(year − 2000)/10 + b3·aluminium + b4·mixed + b5·dry + b6·single_phase)",
-    unit: "W",
-    source: "least squares of ln P; geometric mean; methods, section 1",
+/// The formulas of one loss: the estimate and the ends of its interval.
+#[derive(Debug, PartialEq)]
+struct Formulas {
+    estimate: Formula,
+    low: Formula,
+    high: Formula,
+}
+
+const LAW: &str = "exp(b0 + b1·ln(S_r) + b2·(year − 2000)/10 + b3·aluminium + b4·mixed + b5·dry + b6·single_phase)";
+const LEAST_SQUARES: &str = "least squares of ln P, geometric mean; methods, section 1";
+const INTERVAL: &str = "95 % prediction interval of least squares (Student t)";
+
+const fn formula(
+    name: &'static str,
+    symbol: &'static str,
+    formula: &'static str,
+    source: &'static str,
+) -> Formula {
+    Formula { name, symbol, formula, unit: "W", source }
+}
+
+static NO_LOAD: Formulas = Formulas {
+    estimate: formula("no-load loss, estimated", "P0", LAW, LEAST_SQUARES),
+    low: formula("low end of the no-load loss", "P0_low", "P0·exp(−t·s·√(1 + h))", INTERVAL),
+    high: formula("high end of the no-load loss", "P0_high", "P0·exp(t·s·√(1 + h))", INTERVAL),
 };
-const LOW: Formula = Formula {
-    name: "least loss of the 95 % prediction interval",
-    symbol: "P_low",
-    formula: "P_est·exp(−t·s·√(1 + h))",
-    unit: "W",
-    source: "prediction interval of least squares (Student t)",
+static LOAD: Formulas = Formulas {
+    estimate: formula("load loss at the rating, estimated", "Pk", LAW, LEAST_SQUARES),
+    low: formula("low end of the load loss", "Pk_low", "Pk·exp(−t·s·√(1 + h))", INTERVAL),
+    high: formula("high end of the load loss", "Pk_high", "Pk·exp(t·s·√(1 + h))", INTERVAL),
 };
-const HIGH: Formula = Formula {
-    name: "greatest loss of the 95 % prediction interval",
-    symbol: "P_high",
-    formula: "P_est·exp(t·s·√(1 + h))",
-    unit: "W",
-    source: "prediction interval of least squares (Student t)",
-};
+
+/// Which loss of a transformer.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Loss {
+    /// No-load (iron) loss.
+    NoLoad,
+    /// Load (copper) loss at the rating.
+    Load,
+}
 
 /// An estimated loss at the rating.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -264,8 +283,7 @@ pub struct Estimated<'a> {
 /// How one loss goes with the build of a transformer, learnt from those of which it is known.
 #[derive(Clone, Debug, PartialEq)]
 pub struct LossModel {
-    /// Which loss, in trade words.
-    loss: &'static str,
+    formulas: &'static Formulas,
     /// From units of known year of manufacture, with vintage as a term.
     dated: Result<Regression, Impossible>,
     /// From all units, without vintage.
@@ -274,11 +292,18 @@ pub struct LossModel {
 
 impl LossModel {
     /// Learns from transformers of which the loss at the rating (W) is known; losses of 0 W are passed over.
-    pub fn learn<I>(loss: &'static str, known: &I) -> Self
+    pub fn learn<I>(loss: Loss, known: &I) -> Self
     where
         I: Iterator<Item = (Build, f64)> + Clone,
     {
-        Self { loss, dated: Regression::fit(known, true), any: Regression::fit(known, false) }
+        Self {
+            formulas: match loss {
+                Loss::NoLoad => &NO_LOAD,
+                Loss::Load => &LOAD,
+            },
+            dated: Regression::fit(known, true),
+            any: Regression::fit(known, false),
+        }
     }
 
     /// The regression for a transformer: with vintage where its year is known and the units of known year suffice
@@ -328,17 +353,16 @@ impl LossModel {
             ("dry", Term::Dry.of(build)),
             ("single_phase", Term::SinglePhase.of(build)),
         ];
-        let about = || format!("{}, {} units", self.loss, regression.units);
-        w.step(&ESTIMATE, &inputs, loss_w);
-        w.about(&about);
+        let Formulas { estimate, low, high } = self.formulas;
+        let symbol = estimate.symbol;
+        w.step(estimate, &inputs, loss_w);
+        w.about(&|| format!("from {} units", regression.units));
         let h = regression.solution.leverage(row);
         let (t, s) = (regression.quantile, regression.deviation);
-        let inputs = [("P_est", loss_w), ("t", t), ("s", s), ("h", h)];
+        let inputs = [(symbol, loss_w), ("t", t), ("s", s), ("h", h)];
         let half = t * s * (1.0 + h).sqrt();
-        let low_w = w.step(&LOW, &inputs, loss_w * (-half).exp());
-        w.about(&about);
-        let high_w = w.step(&HIGH, &inputs, loss_w * half.exp());
-        w.about(&about);
+        let low_w = w.step(low, &inputs, loss_w * (-half).exp());
+        let high_w = w.step(high, &inputs, loss_w * half.exp());
         Ok(Estimated { loss_w, low_w, high_w, regression })
     }
 }

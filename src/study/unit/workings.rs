@@ -18,8 +18,8 @@ use crate::study::explain::{Explained, numbers};
 
 /// Parts of a dossier that hold no figures: what the record says, and workings themselves.
 const NO_FIGURES: &[&str] = &["nameplate", "working"];
-/// Numbers that name a line instead of being computed.
-const LABELS: &[&str] = &["load_pu", "offset", "year"];
+/// Numbers that name a line or count instead of being computed.
+const LABELS: &[&str] = &["load_pu", "offset", "year", "known_units", "units_set_aside"];
 
 /// How the losses at the rating come about.
 const OF_LOSSES: &[&str] = &["P0", "Pk_base", "Pk"];
@@ -62,6 +62,7 @@ impl Explained for Question<'_> {
             }
             ["loading", quantity] => self.loading(w, quantity)?,
             ["losses", quantity] => self.year_1(w, quantity)?,
+            ["estimated", loss, quantity] => self.estimated(w, loss, quantity)?,
             ["keep_or_replace", "years", n, "pv"] => {
                 let (place, decision) = self.decided()?;
                 let n = n.parse().ok().and_then(|n: usize| decision.years.get(n).copied());
@@ -85,6 +86,23 @@ impl Question<'_> {
         let place = self.place(&mut all).map_err(|why| self.refused(why))?;
         w.append(all.only(symbols));
         Ok(place)
+    }
+
+    /// What is estimated of a loss that the nameplate leaves blank.
+    fn estimated(&self, w: &mut Working, loss: &str, quantity: &str) -> Result<(), Refusal> {
+        let mut all = Working::default();
+        if let Some(estimate) = &self.context.estimate {
+            estimate.missing(&mut all, &self.facts()).map_err(|why| self.refused(why))?;
+        }
+        w.append(all.only(match (loss, quantity) {
+            ("no_load_loss_w", "low_w") => &["P0", "P0_low"],
+            ("no_load_loss_w", "high_w") => &["P0", "P0_high"],
+            ("no_load_loss_w", _) => &["P0"],
+            (_, "low_w") => &["Pk", "Pk_low"],
+            (_, "high_w") => &["Pk", "Pk_high"],
+            _ => &["Pk"],
+        }));
+        Ok(())
     }
 
     /// Circuit, efficiency and regulation.
