@@ -16,7 +16,7 @@ use super::work::Ranked;
 use super::{tender, unit};
 use crate::engine::columns::Unit;
 use crate::study::StudyError;
-use crate::study::explain::StepRow;
+use crate::study::explain::{Explained as _, StepRow};
 use crate::study::figures::figure;
 use crate::study::tender::BasisForFactors;
 use crate::study::unit::Question;
@@ -107,16 +107,15 @@ pub(super) fn open(app: &App) -> Option<Result<Panel, StudyError>> {
 
 fn of_unit(app: &App, ranked: &Arc<Ranked>, i: usize) -> Result<Panel, StudyError> {
     let record = unit::record(app, &ranked.desk, i);
-    let dossier = Question::new(&ranked.desk, &ranked.ranking.context, &record)?.dossier()?;
+    let question = Question::new(&ranked.desk, &ranked.ranking.context, &record)?;
     // The decision first, then what it rests on; of the years those that the decision names.
-    let mut names: Vec<String> = dossier.figures().into_iter().map(|(name, _)| name).collect();
+    let mut names: Vec<String> = question.figures()?.into_iter().map(|(name, _)| name).collect();
     names.retain(|name| !name.starts_with("keep_or_replace.years"));
     let part = |name: &String| {
         ["keep_or_replace", "losses", "loading"].iter().position(|part| name.starts_with(part))
     };
     names.sort_by_key(|name| part(name).unwrap_or(3));
     let of = format!("unit {}", record.unit);
-    drop(dossier);
     let figures = names.into_iter().map(|title| Figure { title, lines: Vec::new() }).collect();
     let unit = Some((Arc::clone(ranked), Box::new(record)));
     let mut panel = Panel { of, figures, at: 0, list: List::default(), unit };
