@@ -139,7 +139,7 @@ fn a_basis_that_cannot_be_computed_is_not_let_in() {
         ("energy_price_per_kwh = 0.1", "energy_price_per_kwh = 0.1\nprice_series = \"x\""),
         ("energy_price_per_kwh = 0.1", ""),
         ("life_years = 40", "law = \"eu\""),
-        ("life_years = 40", "voltage_model = \"drop\""),
+        ("life_years = 40", "life_years = 40\nfailure_scale_years = 60"),
         (
             "horizon_years = 20\ndiscount_rate_pct = 5",
             "horizon_years = 200\ndiscount_rate_pct = -99",

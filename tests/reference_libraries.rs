@@ -73,6 +73,7 @@ fn unit(name: &Value) -> Unit {
         no_load_loss_w: field("no_load_loss_w"),
         load_loss_w: field("load_loss_w"),
         auxiliary_loss_w: 0.0,
+        reactance_pu: None,
     };
     let impedance_pct = field("impedance_pct");
     let circuit = of_nameplate(&mut Silent, losses.rated_kva, losses.load_loss_w, impedance_pct);
@@ -298,6 +299,7 @@ fn capitalised_factors() {
             no_load_price_per_kwh: n(row, "no_load_price_per_kwh"),
             load_price_per_kwh: n(row, "load_price_per_kwh"),
             no_load_co2_kg_per_kwh: n(row, "no_load_carbon_kg_per_kwh"),
+            drop: None,
             load_co2_kg_per_kwh: n(row, "load_carbon_kg_per_kwh"),
         };
         let got = present_value(&mut Silent, &duty, 1.0, &assumptions);

@@ -4,7 +4,7 @@
 mod support;
 
 use ironhum::book::{Access, Book};
-use ironhum::engine::columns::FactorMethod;
+use ironhum::engine::columns::{FactorMethod, VoltageModel};
 use ironhum::study::Desk;
 use ironhum::study::explain::{Explained, Opening, StepRow};
 use ironhum::study::factors::{self, LoadAsked};
@@ -55,6 +55,26 @@ fn every_figure_of_every_unit_opens() {
     }
     assert!(ranked > 100 && ranked < desk.fleet.len(), "ranked and left-out units are walked");
     assert!(walked > 50 * ranked, "{walked} figures");
+}
+
+#[test]
+fn figures_with_voltage_drop_open() {
+    let (_program, book) = demo();
+    let desk = Desk::read(&book, None).expect("a desk");
+    let mut sheet = desk.sheet.clone();
+    sheet.basis.voltage_model = Some(VoltageModel::Drop);
+    sheet.basis.operating_voltage_pu = Some(1.02);
+    let desk = desk.with_basis(sheet);
+    let context = desk.context().expect("a sound basis");
+    for i in (0..desk.fleet.len()).step_by(9) {
+        let unit = book.unit(desk.fleet.unit.get(i)).expect("is in the book");
+        walk(&Question::new(&desk, &context, &unit).expect("is on the desk"));
+    }
+    let unit = book.unit("ZE-0135").expect("is in the book");
+    let question = Question::new(&desk, &context, &unit).expect("is on the desk");
+    let steps = question.working("losses.load_energy_kwh").expect("opens");
+    let text = StepRow::lines(&steps, 0).join("\n");
+    assert!(text.contains("v_hv = 1.02") && text.contains("load-duration histogram"), "{text}");
 }
 
 #[test]

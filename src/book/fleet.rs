@@ -41,6 +41,7 @@ const NUMBERS: &[&str] = &[
     "removal_cost",
     "scrap_value",
     "customers",
+    "impedance_pct",
 ];
 const TEXTS: &[&str] =
     &["unit", "profile", "site", "vector_group", "in_service", "winding_metal", "insulation"];
@@ -160,6 +161,7 @@ fn read(
             removal_cost,
             scrap_value,
             customers,
+            impedance_pct,
         ] = numbers;
         let known = |value: f64| (!value.is_nan()).then_some(value);
         let terminals = Terminals {
@@ -191,6 +193,7 @@ fn read(
             removal_cost,
             scrap_value,
             customers,
+            impedance_pct,
             phases: terminals.phases,
             winding_metal: text(5).and_then(WindingMetal::from_word),
             insulation: text(6).and_then(Insulation::from_word),

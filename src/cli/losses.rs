@@ -5,8 +5,9 @@ use super::book::{self, Opened};
 use super::exit::{Exit, Failure};
 use super::print::{Printer, TextColumn};
 use super::rank::write_left_out;
+use crate::study::Desk;
 use crate::study::figures::group;
-use crate::study::{Desk, losses::losses as ask};
+use crate::study::losses::{losses as ask, voltage_words};
 
 const KEYS: &[&str] = &[
     "unit",
@@ -45,6 +46,7 @@ pub(super) fn losses(args: &Args, options: &Shown, printer: &mut Printer) -> Res
                 group(t.loss_cost, 0),
                 result.currency
             ))?;
+            printer.line(format!("Losses are {}.", voltage_words(result.voltage_model)))?;
             printer.line("")?;
             let keys = &KEYS[..KEYS.len() - 1];
             printer.table(&TextColumn::list(keys, &result.currency), result.units.iter())?;

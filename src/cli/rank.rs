@@ -9,6 +9,7 @@ use super::print::{Printer, TextColumn};
 use super::timings::Timings;
 use crate::study::figures::group;
 use crate::study::losses::flag_meaning;
+use crate::study::losses::voltage_words;
 use crate::study::rank::{By, LeftOutRow, RankRow, Ranking, rank as ask};
 use crate::study::{Desk, Watch};
 
@@ -93,6 +94,7 @@ pub(super) fn write(desk: &Desk, ranking: &Ranking, printer: &mut Printer) -> Re
                 group(t.saving_pv, 0),
                 c = a.currency,
             ))?;
+            printer.line(format!("Losses are {}.", voltage_words(a.voltage_model)))?;
             printer.line("")?;
             let rows: Vec<_> = rows.collect();
             let mut columns = TextColumn::list(TEXT, &a.currency);

@@ -10,7 +10,7 @@ use crate::study::Desk;
 use crate::study::estimate::EstimatedRow;
 use crate::study::explain::{Explained as _, Opening};
 use crate::study::figures::group;
-use crate::study::losses::flag_meaning;
+use crate::study::losses::{flag_meaning, voltage_words};
 use crate::study::unit::{Dossier, Question};
 
 pub(super) fn unit(args: &Args, options: &Unit, printer: &mut Printer) -> Result<Exit, Failure> {
@@ -105,12 +105,13 @@ fn text(printer: &mut Printer, d: &Dossier<'_>) -> Result<(), Failure> {
     if let Some(l) = &d.losses {
         printer.line("")?;
         printer.line(format!(
-            "Year 1: iron {} kWh, copper {} kWh, auxiliaries {} kWh, cost {} {}.",
+            "Year 1: iron {} kWh, copper {} kWh, auxiliaries {} kWh, cost {} {}; losses {}.",
             group(l.no_load_energy_kwh, 0),
             group(l.load_energy_kwh, 0),
             group(l.auxiliary_energy_kwh, 0),
             group(l.loss_cost, 0),
-            d.currency
+            d.currency,
+            voltage_words(d.voltage_model)
         ))?;
     }
     printer.line("")?;

@@ -41,6 +41,8 @@ flags! {
     23, LAW_NOT_CHECKED, "law_not_checked", "the law that is named could not be held against an offer or bid; it passes";
     24, QUANTITY_SHORT, "quantity_short", "the bid offers fewer units than the lot asks for";
     25, OFFER_OVERLOADED, "offer_overloaded", "the best offer is smaller than the peak load of a year of its service; set loading_limit_pu to rule that out";
+    26, IMPEDANCE_UNKNOWN, "impedance_unknown", "impedance_pct is blank or contradicts the load loss: its voltage drop is that of the resistance alone";
+    27, OFFER_IMPEDANCE_UNKNOWN, "offer_impedance_unknown", "impedance_pct of an offer is blank or contradicts its load loss: its voltage drop is that of the resistance alone";
 }
 
 impl Flags {

@@ -6,6 +6,6 @@ pub mod prices;
 pub mod profile;
 pub mod stepped;
 
-pub use duty::Duty;
+pub use duty::{Duty, VoltageDrop};
 pub use prices::{Market, PriceSeries, Weights};
 pub use profile::{Profile, Ratios};

@@ -5,7 +5,7 @@ use std::ops::ControlFlow;
 use serde::Serialize;
 
 use crate::book::{Book, BookError};
-use crate::engine::columns::{Basis, Bid, Lot, Offer, Unit, YesNo};
+use crate::engine::columns::{Basis, Bid, Lot, Offer, Unit, VoltageModel, YesNo};
 use crate::engine::decision::LeftOut;
 use crate::engine::decision::place::{loading_contradicts, losses_contradict};
 use crate::engine::economics::Assumptions;
@@ -247,6 +247,10 @@ impl Doubts {
         if unit.phases.is_none() {
             self.flag(of, "phases", Missing, Flags::PHASES_BLANK);
         }
+        let drops = basis.is_some_and(|basis| basis.voltage_model == Some(VoltageModel::Drop));
+        if unit.impedance_pct.is_none() && drops {
+            self.flag(of, "impedance_pct", Missing, Flags::IMPEDANCE_UNKNOWN);
+        }
         let has_failures = basis.is_some_and(|basis| basis.failure_scale_years.is_some());
         if unit.year_made.is_none() && has_failures {
             self.flag(of, "year_made", Missing, Flags::YEAR_MADE_BLANK);
@@ -316,6 +320,10 @@ impl Doubts {
         });
         if offer.life_years.is_none() && needs_life {
             self.flag(of, "life_years", Kind::Missing, Flags::NO_LIFE);
+        }
+        let drops = basis.is_some_and(|basis| basis.voltage_model == Some(VoltageModel::Drop));
+        if offer.impedance_pct.is_none() && drops {
+            self.flag(of, "impedance_pct", Kind::Missing, Flags::OFFER_IMPEDANCE_UNKNOWN);
         }
         if offer.price.0 == 0 {
             self.add(of, "price", Kind::Implausible, "costs nothing");

@@ -4,7 +4,7 @@ use std::sync::{Arc, OnceLock};
 
 use crate::book::Book;
 use crate::engine::Refusal;
-use crate::engine::columns::{BasisSheet, CapitalRecovery, Offer, Unit};
+use crate::engine::columns::{BasisSheet, CapitalRecovery, Offer, Unit, VoltageModel};
 use crate::engine::decision::estimate::FleetEstimate;
 use crate::engine::decision::fleet::FleetColumns;
 use crate::engine::decision::{Candidate, Context, UnitFacts};
@@ -18,6 +18,9 @@ use crate::study::StudyError;
 
 /// How often a book is read again that others write to meanwhile.
 const TRIES: usize = 5;
+
+/// Equal steps of load over peak in the load-duration histograms of the drop voltage model.
+const DURATION_STEPS: usize = 100;
 
 /// Everything a question needs, in memory. What is large is shared: a clone with another basis is cheap.
 #[derive(Clone, Debug)]
@@ -131,9 +134,17 @@ impl Desk {
         self.lives(&a)?;
         let (candidates, law_flags) = self.candidates_under(&a)?;
         let ratios = self.ratios.clone();
+        let drops = a.voltage_model == VoltageModel::Drop;
+        let durations = if drops {
+            self.profiles.iter().map(|p| p.load_duration(DURATION_STEPS).into()).collect()
+        } else {
+            Vec::new()
+        };
+        let reactance_unknown = drops && candidates.iter().any(|c| c.losses.reactance_pu.is_none());
         let estimate = a.estimate_missing.then(|| Arc::clone(self.estimate()));
-        let flags = flags.with(law_flags);
-        Ok(Context { assumptions: a, market, ratios, candidates, estimate, flags })
+        let flags =
+            flags.with(law_flags).with_if(reactance_unknown, Flags::OFFER_IMPEDANCE_UNKNOWN);
+        Ok(Context { assumptions: a, market, ratios, durations, candidates, estimate, flags })
     }
 
     /// What the known losses of the fleet say of missing ones; the fleet is gone through once, whatever the basis.

@@ -171,6 +171,7 @@ impl Question<'_> {
             no_load_price_per_kwh: constant.price_per_kwh,
             load_price_per_kwh: load.price_per_kwh,
             no_load_co2_kg_per_kwh: constant.co2_kg_per_kwh,
+            drop: None,
             load_co2_kg_per_kwh: load.co2_kg_per_kwh,
         })
     }

@@ -1,7 +1,8 @@
 //! What the fleet's losses are and cost in year 1 of the basis.
 
-use serde::Serialize;
+use serde::{Serialize, Serializer};
 
+use crate::engine::columns::VoltageModel;
 use crate::engine::decision::LeftOut;
 use crate::engine::decision::keep_or_replace::age;
 use crate::engine::decision::place::resolve;
@@ -52,6 +53,15 @@ pub struct Losses<'a> {
     pub units: Vec<LossesRow<'a>>,
     pub left_out: Vec<LeftOutRow<'a>>,
     pub totals: LossesTotals,
+    /// How voltage enters the losses.
+    #[serde(serialize_with = "word")]
+    pub voltage_model: VoltageModel,
+}
+
+/// A voltage model as its word.
+#[expect(clippy::trivially_copy_pass_by_ref, reason = "serde hands fields over so")]
+pub(super) fn word<S: Serializer>(model: &VoltageModel, serializer: S) -> Result<S::Ok, S::Error> {
+    serializer.serialize_str(model.word())
 }
 
 /// Losses of one unit of the fleet in year 1.
@@ -110,6 +120,7 @@ pub fn losses(desk: &Desk) -> Result<Losses<'_>, StudyError> {
     }
     units.sort_by(|a, b| b.loss_cost.total_cmp(&a.loss_cost).then_with(|| a.unit.cmp(b.unit)));
     Ok(Losses {
+        voltage_model: context.assumptions.voltage_model,
         basis: context.assumptions.name,
         currency: context.assumptions.currency,
         year: context.assumptions.first_year,
@@ -117,6 +128,16 @@ pub fn losses(desk: &Desk) -> Result<Losses<'_>, StudyError> {
         left_out,
         totals,
     })
+}
+
+/// How voltage enters the losses of a year, in words.
+pub const fn voltage_words(model: VoltageModel) -> &'static str {
+    match model {
+        VoltageModel::Rated => "at rated voltage (voltage_model rated)",
+        VoltageModel::Drop => {
+            "at the operating voltage, with the drop inside each transformer (voltage_model drop)"
+        }
+    }
 }
 
 /// The meaning of a flag by its key.

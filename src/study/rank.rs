@@ -359,7 +359,7 @@ impl Serialize for RankResult<'_> {
     fn serialize<S: Serializer>(&self, serializer: S) -> Result<S::Ok, S::Error> {
         let (ranking, desk) = (self.ranking, self.desk);
         let a = &ranking.context.assumptions;
-        let mut result = serializer.serialize_struct("rank", 5)?;
+        let mut result = serializer.serialize_struct("rank", 6)?;
         result.serialize_field("basis", &a.name)?;
         result.serialize_field("currency", &a.currency)?;
         let rows = Rows(ranking.order.len(), |place| ranking.row(desk, place));
@@ -367,6 +367,7 @@ impl Serialize for RankResult<'_> {
         let left_out = Rows(ranking.left_out.len(), |n| ranking.left_out_row(desk, n));
         result.serialize_field("left_out", &left_out)?;
         result.serialize_field("totals", &ranking.totals)?;
+        result.serialize_field("voltage_model", a.voltage_model.word())?;
         result.end()
     }
 }

@@ -6,7 +6,7 @@ mod workings;
 use serde::Serialize;
 use serde_json::{Map, Value};
 
-use crate::engine::columns::{Column, Unit, Value as Cell};
+use crate::engine::columns::{Column, Unit, Value as Cell, VoltageModel};
 use crate::engine::decision::fit::fitting;
 use crate::engine::decision::keep_or_replace::{Decision, FirstYear, YearChoice, decide};
 use crate::engine::decision::parts::{PolicyCost, of_choice};
@@ -20,7 +20,7 @@ use crate::engine::transformer::{efficiency, regulation};
 use crate::engine::working::{Recorder, Silent};
 use crate::study::estimate::EstimatedRow;
 use crate::study::explain::FigureWorking;
-use crate::study::losses::{LossesRow, of_unit};
+use crate::study::losses::{LossesRow, of_unit, word};
 use crate::study::{Desk, StudyError};
 
 /// A unit under a basis: what a dossier is asked about.
@@ -183,6 +183,9 @@ pub struct Dossier<'a> {
     /// Why it cannot be ranked.
     pub left_out: Option<&'static str>,
     pub flags: Vec<&'static str>,
+    /// How voltage enters the losses of a year.
+    #[serde(serialize_with = "word")]
+    pub voltage_model: VoltageModel,
     /// How its figures come about, as far as they are opened.
     pub working: Vec<FigureWorking>,
 }
@@ -274,6 +277,7 @@ impl<'a> Question<'a> {
             left_out: decided.as_ref().err().map(|why| why.why()),
             keep_or_replace: decided.ok().map(|(place, d)| self.keep_or_replace(&place, &d)),
             flags: flags.keys(),
+            voltage_model: a.voltage_model,
             working: Vec::new(),
         })
     }

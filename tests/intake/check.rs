@@ -156,6 +156,29 @@ fn doubts_about_offers_bids_and_bases() {
 }
 
 #[test]
+fn what_a_basis_has_estimated_or_leaves_out_is_told_of_units_and_offers() {
+    let mut desk = Desk::empty();
+    let units = "unit,rated_kva,phases,hv_kv,lv_kv,peak_kva,loss_factor_pu,year_made,load_loss_w\n\
+        U,400,3,20,0.4,300,0.3,1990,4600\n";
+    assert!(desk.text(What::Units, "u.csv", units).stored);
+    let offers = "offer,rated_kva,no_load_loss_w,load_loss_w,price\nO,400,500,4600,9000\n";
+    assert!(desk.text(What::Offers, "o.csv", offers).stored);
+    let asked = format!("{BASIS}estimate_missing = true\nvoltage_model = \"drop\"\n");
+    let mut of = |basis: &str| {
+        assert!(desk.text(What::Basis, "b.toml", basis).stored);
+        let doubts = told(&desk);
+        let columns = |key| about(&doubts, key).iter().map(|(c, k)| (c.to_string(), *k)).collect();
+        (columns("U"), columns("O"))
+    };
+    let (plain, none): (Vec<(String, Kind)>, Vec<(String, Kind)>) = of(BASIS);
+    assert_eq!((plain, none), (vec![("no_load_loss_w".into(), Kind::Missing)], vec![]));
+    let (unit, offer) = of(&asked);
+    let impedance = ("impedance_pct".to_owned(), Kind::Missing);
+    let estimated = ("no_load_loss_w".to_owned(), Kind::Estimated);
+    assert_eq!((unit, offer), (vec![estimated, impedance.clone()], vec![impedance]));
+}
+
+#[test]
 fn a_profile_of_another_step_than_the_prices_is_told_of_the_basis() {
     let mut desk = Desk::empty();
     let rows = |count: usize| (0..count).map(|n| format!("{n},1")).collect::<Vec<_>>().join("\n");

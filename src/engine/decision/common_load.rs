@@ -45,7 +45,7 @@ const CO2: Formula = Formula {
 };
 
 /// The sums over a fleet from which its common load follows.
-#[derive(Clone, Copy, Debug, Default)]
+#[derive(Clone, Debug, Default)]
 pub struct CommonLoad {
     /// Σ Pk.
     rated: f64,
@@ -73,7 +73,7 @@ impl CommonLoad {
         self.price += lost * d.load_price_per_kwh;
         self.co2 += lost * d.load_co2_kg_per_kwh;
         self.responsibility += at_peak * (d.responsibility_pu * d.responsibility_pu);
-        self.last = Some(*d);
+        self.last = Some(d.clone());
     }
 
     /// The duty on a transformer of rating 1; none where nothing is lost.
@@ -95,7 +95,8 @@ impl CommonLoad {
             ),
             load_price_per_kwh: w.step(&PRICE, &[], self.price / self.lost),
             load_co2_kg_per_kwh: w.step(&CO2, &[], self.co2 / self.lost),
-            ..self.last?
+            drop: None,
+            ..self.last.clone()?
         })
     }
 }

@@ -5,8 +5,10 @@ use crate::engine::columns::Offer;
 use crate::engine::economics::Assumptions;
 use crate::engine::loading::Duty;
 use crate::engine::loading::duty::growth;
+use crate::engine::transformer::circuit::of_nameplate;
 use crate::engine::transformer::losses::{Losses, quoted};
 use crate::engine::transformer::vector_group;
+use crate::engine::transformer::voltage_drop::Supply;
 use crate::engine::working::{Formula, Recorder, Silent};
 
 /// An offer made ready to compute with.
@@ -50,7 +52,7 @@ impl Candidate {
     /// # Errors
     /// Losses that contradict each other.
     pub fn of_offer(offer: &Offer) -> Result<Self, Refusal> {
-        let losses = quoted(
+        let mut losses = quoted(
             &mut Silent,
             offer.rated_kva,
             offer.loss_base_kva,
@@ -59,6 +61,8 @@ impl Candidate {
             None,
             offer.auxiliary_loss_w,
         )?;
+        let circuit = |z| of_nameplate(&mut Silent, losses.rated_kva, losses.load_loss_w, z).ok();
+        losses.reactance_pu = offer.impedance_pct.and_then(circuit).map(|circuit| circuit.x_pu);
         Ok(Self {
             offer: offer.offer.clone(),
             losses,
@@ -101,20 +105,31 @@ impl Candidate {
 
     /// Whether the peak of a year after `t` is above its rating.
     pub fn overloaded(&self, duty: &Duty, t: usize, a: &Assumptions) -> bool {
-        Self::highest_peak(duty, t, a) > self.losses.rated_kva * (1.0 + 1e-12)
+        highest_peak(duty, t, a) > self.losses.rated_kva * (1.0 + 1e-12)
     }
 
-    /// Highest peak of the years after `t`: the load grows or shrinks steadily, so that of the last or first.
-    fn highest_peak(duty: &Duty, t: usize, a: &Assumptions) -> f64 {
-        let k = if duty.load_growth_pu > 0.0 { a.years } else { t + 1 };
-        duty.peak_kva * growth(duty.load_growth_pu, k, a.load_growth_years)
+    /// Whether the voltage holds at the peak of every year after `t`; at rated voltage it always does.
+    pub fn holds_voltage(&self, duty: &Duty, t: usize, a: &Assumptions) -> bool {
+        duty.drop.as_ref().is_none_or(|drop| {
+            let peak_pu = highest_peak(duty, t, a) / self.losses.rated_kva;
+            Supply::of(&self.losses, drop).carries(peak_pu)
+        })
     }
 
-    /// Whether it carries the peak of every year after `t` within the loading limit.
+    /// Whether it carries the peak of every year after `t`: its voltage holds, and the load is within the limit.
     pub fn carries(&self, duty: &Duty, t: usize, a: &Assumptions) -> bool {
+        if !self.holds_voltage(duty, t, a) {
+            return false;
+        }
         let Some(limit) = a.loading_limit_pu else { return true };
-        Self::highest_peak(duty, t, a) <= limit * self.losses.rated_kva * (1.0 + 1e-12)
+        highest_peak(duty, t, a) <= limit * self.losses.rated_kva * (1.0 + 1e-12)
     }
+}
+
+/// Highest peak of the years after `t` (kVA): the load grows or shrinks steadily, so that of the last or first.
+pub(super) fn highest_peak(duty: &Duty, t: usize, a: &Assumptions) -> f64 {
+    let k = if duty.load_growth_pu > 0.0 { a.years } else { t + 1 };
+    duty.peak_kva * growth(duty.load_growth_pu, k, a.load_growth_years)
 }
 
 /// The terminals of a place, as far as they are known: what a replacement must agree with.
@@ -190,6 +205,7 @@ pub(crate) mod tests {
                 no_load_loss_w: 100.0,
                 load_loss_w: 1000.0,
                 auxiliary_loss_w: 0.0,
+                reactance_pu: None,
             },
             price: 5000.0,
             install_cost: 0.0,

@@ -20,6 +20,10 @@ use super::place::{Context, LeftOut, Place, resolve_at};
 use crate::engine::Refusal;
 use crate::engine::economics::Assumptions;
 use crate::engine::flags::Flags;
+use crate::engine::loading::duty::peak_of_year;
+use crate::engine::loading::{Duty, VoltageDrop};
+use crate::engine::transformer::losses::Losses;
+use crate::engine::transformer::voltage_drop::{Supply, current, mean_square_current};
 use crate::engine::working::Silent;
 use sums::{Ages, Caps, CapsByFailure, Horizon, PriceSums};
 
@@ -116,7 +120,12 @@ impl Scratch {
         Self {
             grown: FxHashMap::default(),
             years: YearScratch {
-                series: Series { iron: space(), copper: space(), auxiliary: space() },
+                series: Series {
+                    iron: space(),
+                    copper: space(),
+                    copper_of: Vec::new(),
+                    auxiliary: space(),
+                },
                 least: space(),
                 forced: space(),
                 relaxed: space(),
@@ -186,15 +195,22 @@ impl<'a> Kernel<'a> {
     }
 
     /// First delay at which candidate number `c` of a fit carries the load to the end; none = never.
-    fn carries_from(&self, place: &Place, fit: &Fit, c: usize) -> Option<usize> {
+    /// With `limited` within the loading limit, else as long as its voltage holds.
+    fn carries_from(&self, place: &Place, fit: &Fit, c: usize, limited: bool) -> Option<usize> {
         let a = &self.ctx.assumptions;
-        if a.loading_limit_pu.is_none() {
+        if place.duty.drop.is_none() && (a.loading_limit_pu.is_none() || !limited) {
             return Some(0);
         }
         let candidate = &self.candidates[fit.candidates[c] as usize];
         // A shrinking load is carried from some year on; a growing or level one always or never.
         let last = if place.duty.load_growth_pu < 0.0 { a.years } else { 1 };
-        (0..last).find(|&t| candidate.carries(&place.duty, t, a))
+        (0..last).find(|&t| {
+            if limited {
+                candidate.carries(&place.duty, t, a)
+            } else {
+                candidate.holds_voltage(&place.duty, t, a)
+            }
+        })
     }
 
     /// Least cost at each time of `fit`'s candidates: what `caps` says of the capital, and their losses.
@@ -210,7 +226,7 @@ impl<'a> Kernel<'a> {
     ) {
         least.fill(f64::INFINITY);
         for (c, &candidate) in fit.candidates.iter().enumerate() {
-            let from = if limited { self.carries_from(place, fit, c) } else { Some(0) };
+            let from = self.carries_from(place, fit, c, limited);
             let Some(from) = from.filter(|&t| t < least.len()) else { continue };
             fit.add_least(c, s, caps(candidate), from, least);
         }
@@ -228,6 +244,9 @@ impl<'a> Kernel<'a> {
         let h = &self.horizon;
         let YearScratch { series: s, least, forced, relaxed } = space;
         s.fill(place, fit, a, h, growth);
+        if let Some(drop) = &place.duty.drop {
+            self.fill_drop(place, drop, fit, s);
+        }
         let ages = h.ages(place.year_made);
         let caps = self.caps.of(ages.fails);
         let common = |t: usize| {
@@ -245,6 +264,9 @@ impl<'a> Kernel<'a> {
         if ages.fails {
             let gave_way = self.forced(place, fit, s, caps, &common, forced, relaxed);
             flags = flags.with_if(gave_way, Flags::LAW_RELAXED);
+            if place.duty.drop.is_some() && forced.iter().skip(1).any(|g| g.is_infinite()) {
+                return Outcome::left_out(LeftOut::NoOffer);
+            }
         }
 
         // J(t) = before(t) + survival(t)·(common(t) + least(t)), with the least kept for now and overall.
@@ -273,7 +295,7 @@ impl<'a> Kernel<'a> {
 
         let pick = |t: usize, before: f64, survival: f64, target: f64| {
             fit.candidates.iter().enumerate().find_map(|(c, &candidate)| {
-                let from = self.carries_from(place, fit, c)?;
+                let from = self.carries_from(place, fit, c, true)?;
                 let g = fit.cost(c, s, caps.open(candidate), t);
                 let pv = before + survival * (common(t) + g);
                 (from <= t && g.is_finite() && equal_pv(pv, target)).then_some(candidate)
@@ -313,6 +335,46 @@ impl<'a> Kernel<'a> {
             }
         }
         outcome
+    }
+
+    /// The series of the drop voltage model: iron at the operating voltage, and copper by the currents of each
+    /// transformer, year by year. Slower than the sums that all share at rated voltage.
+    fn fill_drop(&self, place: &Place, drop: &VoltageDrop, fit: &Fit, s: &mut Series) {
+        let (a, d) = (&self.ctx.assumptions, &place.duty);
+        for iron in &mut s.iron {
+            *iron *= drop.v_hv_pu * drop.v_hv_pu;
+        }
+        let hours = d.energised_hours / 1000.0;
+        let prices = (
+            hours * d.load_price_per_kwh,
+            a.demand_charge_per_kw_year / 1000.0,
+            hours * d.load_co2_kg_per_kwh,
+        );
+        let mut squares = Vec::with_capacity(a.years);
+        let mut copper = |losses: &Losses, out: &mut [f64]| {
+            let supply = Supply::of(losses, drop);
+            squares.clear();
+            for k in 1..=a.years {
+                let next = match squares.last() {
+                    Some(last) if d.load_growth_pu == 0.0 || k > a.load_growth_years => *last,
+                    _ => {
+                        let peak = peak_of_year(&mut Silent, d, k, a.load_growth_years);
+                        squares_of_year(&supply, d, drop, peak / losses.rated_kva)
+                    }
+                };
+                squares.push(next);
+            }
+            self.horizon.combine_years(prices, |k| squares[k - 1], out);
+            // Load losses are kept over the squared rating.
+            for copper in out {
+                *copper *= losses.rated_kva * losses.rated_kva;
+            }
+        };
+        copper(&place.losses, &mut s.copper);
+        s.copper_of.resize(fit.candidates.len(), vec![0.0; a.years + 1]);
+        for (&candidate, out) in fit.candidates.iter().zip(&mut s.copper_of) {
+            copper(&self.candidates[candidate as usize].losses, out);
+        }
     }
 
     /// G'(t) for t = 1..N−1: the loading limit, and then the law, give way where they leave nothing. Says
@@ -395,14 +457,32 @@ impl OldUnit<'_> {
     }
 }
 
+/// Squared currents of a year with its peak at `peak_pu` of the rating: mean of the hours, at the system peak.
+/// Infinite where the load cannot be carried.
+fn squares_of_year(supply: &Supply, duty: &Duty, drop: &VoltageDrop, peak_pu: f64) -> (f64, f64) {
+    let (w, parts) = (&mut Silent, drop.duration.as_deref());
+    let mean = mean_square_current(w, supply, peak_pu, duty.loss_factor_pu, parts);
+    let system = current(w, supply, duty.responsibility_pu * peak_pu);
+    (mean.unwrap_or(f64::INFINITY), system.map_or(f64::INFINITY, |i| i * i))
+}
+
 /// Value at time 0 of a watt from year t+1 to the end, by t: of iron, of copper (per W/kVA²), of auxiliaries.
 struct Series {
     iron: Vec<f64>,
+    /// Of the old unit; at rated voltage of every transformer.
     copper: Vec<f64>,
+    /// Of each candidate of a fit; empty at rated voltage.
+    copper_of: Vec<Vec<f64>>,
     auxiliary: Vec<f64>,
 }
 
 impl Series {
+    /// Copper of candidate number `c` of a fit.
+    #[inline]
+    fn copper(&self, c: usize) -> &[f64] {
+        self.copper_of.get(c).unwrap_or(&self.copper)
+    }
+
     fn fill(&mut self, place: &Place, fit: &Fit, a: &Assumptions, h: &Horizon, growth: &PriceSums) {
         let d = &place.duty;
         let demand = a.demand_charge_per_kw_year / 1000.0;
@@ -436,7 +516,8 @@ impl Series {
 impl Fit {
     /// Cost of candidate number `c` bought at time `t`, less what is common to all.
     fn cost(&self, c: usize, s: &Series, cap: &[f64], t: usize) -> f64 {
-        let losses = cap[t] + self.no_load_w[c] * s.iron[t] + self.load_w_per_kva2[c] * s.copper[t];
+        let losses =
+            cap[t] + self.no_load_w[c] * s.iron[t] + self.load_w_per_kva2[c] * s.copper(c)[t];
         if self.auxiliary_w[c] > 0.0 {
             losses + self.auxiliary_w[c] * s.auxiliary[t]
         } else {
@@ -449,7 +530,7 @@ impl Fit {
         let (p0, b, x) = (self.no_load_w[c], self.load_w_per_kva2[c], self.auxiliary_w[c]);
         let to = least.len();
         let (least, cap) = (&mut least[from..], &cap[from..to]);
-        let (iron, copper) = (&s.iron[from..to], &s.copper[from..to]);
+        let (iron, copper) = (&s.iron[from..to], &s.copper(c)[from..to]);
         let rows = least.iter_mut().zip(cap).zip(iron).zip(copper);
         if x > 0.0 {
             for ((((least, cap), iron), copper), aux) in rows.zip(&s.auxiliary[from..to]) {

@@ -124,7 +124,7 @@ impl Valuation<'_> {
                 }
             }
         }
-        if all.is_empty() {
+        if all.is_empty() || self.forced.iter().any(|pv| pv.is_infinite()) {
             return Ok(None);
         }
         let keep_pv = self.keep_pv(&mut Silent)?;

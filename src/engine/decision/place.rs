@@ -7,13 +7,15 @@ pub mod stated;
 
 use std::sync::Arc;
 
-use crate::engine::columns::{Insulation, Unit, WindingMetal, YesNo};
+use crate::engine::columns::{Insulation, Unit, VoltageModel, WindingMetal, YesNo};
 use crate::engine::decision::estimate::{End, FleetEstimate};
-use crate::engine::decision::fit::Candidate;
+use crate::engine::decision::fit::{Candidate, highest_peak};
 use crate::engine::economics::Assumptions;
 use crate::engine::flags::Flags;
-use crate::engine::loading::{Duty, Market, Ratios, factors};
+use crate::engine::loading::{Duty, Market, Ratios, VoltageDrop, factors};
+use crate::engine::transformer::circuit::{PowerFactor, of_nameplate};
 use crate::engine::transformer::losses::{Losses, quoted};
+use crate::engine::transformer::voltage_drop::Supply;
 use crate::engine::working::Recorder;
 use stated::{first_known, known_or, said};
 
@@ -41,6 +43,7 @@ pub struct UnitFacts {
     pub removal_cost: f64,
     pub scrap_value: f64,
     pub customers: f64,
+    pub impedance_pct: f64,
     pub phases: Option<i64>,
     pub winding_metal: Option<WindingMetal>,
     pub insulation: Option<Insulation>,
@@ -81,6 +84,7 @@ impl UnitFacts {
             removal_cost: money(unit.removal_cost),
             scrap_value: money(unit.scrap_value),
             customers: unit.customers.map_or(f64::NAN, |n| n as f64),
+            impedance_pct: real(unit.impedance_pct),
             phases: unit.phases,
             winding_metal: unit.winding_metal,
             insulation: unit.insulation,
@@ -98,6 +102,8 @@ pub struct Context {
     pub market: Market,
     /// Ratios of the profiles, in the order of the profiles.
     pub ratios: Vec<Ratios>,
+    /// Their load-duration histograms, where the basis asks for the drop voltage model.
+    pub durations: Vec<Arc<[(f64, f64)]>>,
     /// The offers as the basis sees them (law), in catalogue order.
     pub candidates: Vec<Candidate>,
     /// The fleet's known losses, where the basis has missing ones estimated.
@@ -107,7 +113,7 @@ pub struct Context {
 }
 
 /// A unit ready to compute with.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Debug, PartialEq)]
 pub struct Place {
     /// Losses of the unit that stands there.
     pub losses: Losses,
@@ -147,6 +153,8 @@ pub enum LeftOut {
     NoOffer,
     /// Named profile is not in the book (only while columns are built by hand).
     ProfileUnknown,
+    /// Its load would let the voltage collapse (drop voltage model).
+    LoadNotCarried,
     /// A loss is blank, and too few units have it known.
     TooFewToEstimate,
     /// A loss is blank, and all units that have it known are of one rating.
@@ -180,12 +188,15 @@ impl LeftOut {
                 "loss_factor_pu lies outside load_factor_pu² … load_factor_pu; correct one of them"
             }
             Self::NoOffer => {
-                "no offer fits: phases, voltages, vector group, size window, loading limit, lead time or law"
+                "no offer fits: phases, voltages, vector group, size window, loading limit, voltage drop, lead time or law"
             }
             Self::ProfileUnfit => {
                 "its profile and the price series differ in step, length or start; bring both to one"
             }
             Self::ProfileUnknown => "its profile is not in the book; import it",
+            Self::LoadNotCarried => {
+                "its load cannot be carried: the voltage would collapse; check peak_kva, load growth, impedance_pct and operating_voltage_pu"
+            }
             Self::TooFewToEstimate => {
                 "a loss is blank and fewer than 5 units of the fleet have it known, too few to estimate it; import it"
             }
@@ -260,7 +271,7 @@ pub fn resolve_at<R: Recorder>(
         _ => None,
     };
     let base = known(f.loss_base_kva);
-    let losses = match missing {
+    let mut losses = match missing {
         None => quoted(w, f.rated_kva, base, p0, pk, total, known(f.auxiliary_loss_w))
             .map_err(|_| LeftOut::TotalBelowPart)?,
         Some(missing) => ctx.estimate.as_ref().ok_or(missing)?.losses(w, f, end)?,
@@ -351,6 +362,10 @@ pub fn resolve_at<R: Recorder>(
             responsibility.is_none() && a.demand_charge_per_kw_year > 0.0,
             Flags::RESPONSIBILITY_DEFAULT,
         );
+    let drop = match a.voltage_model {
+        VoltageModel::Rated => None,
+        VoltageModel::Drop => Some(voltage_drop(w, f, ctx, &mut losses, &mut flags)),
+    };
     let duty = Duty {
         peak_kva,
         load_growth_pu,
@@ -364,7 +379,13 @@ pub fn resolve_at<R: Recorder>(
         load_price_per_kwh: load.price_per_kwh,
         no_load_co2_kg_per_kwh: constant.co2_kg_per_kwh,
         load_co2_kg_per_kwh: load.co2_kg_per_kwh,
+        drop,
     };
+    if let Some(drop) = &duty.drop
+        && !Supply::of(&losses, drop).carries(highest_peak(&duty, 0, a) / losses.rated_kva)
+    {
+        return Err(LeftOut::LoadNotCarried);
+    }
     let own = (known(f.failure_cost), "the unit");
     let own_cost = known_or(w, &stated::FAILURE_COST, [own], (a.failure_cost, "the basis"));
     let (per_customer, customers) =
@@ -383,4 +404,29 @@ pub fn resolve_at<R: Recorder>(
     let removal_less_scrap =
         w.step(&stated::REMOVAL_LESS_SCRAP, &inputs, removal_cost - scrap_value);
     Ok(Place { losses, duty, year_made, failure_cost, removal_less_scrap, flags })
+}
+
+/// What the drop voltage model asks of a unit beside its losses: its reactance goes to the losses.
+fn voltage_drop<R: Recorder>(
+    w: &mut R,
+    f: &UnitFacts,
+    ctx: &Context,
+    losses: &mut Losses,
+    flags: &mut Flags,
+) -> VoltageDrop {
+    let own = [(known(f.power_factor), "the unit")];
+    let power_factor = known_or(w, &stated::POWER_FACTOR, own, (1.0, "the default"));
+    let v_hv_pu = ctx.assumptions.operating_voltage_pu;
+    said(w, &stated::OPERATING_VOLTAGE, v_hv_pu, "the basis");
+    losses.reactance_pu = known(f.impedance_pct)
+        .and_then(|z| of_nameplate(w, losses.rated_kva, losses.load_loss_w, z).ok())
+        .map(|circuit| circuit.x_pu);
+    let duration = ctx.durations.get(f.profile as usize).cloned();
+    *flags = flags
+        .with_if(losses.reactance_pu.is_none(), Flags::IMPEDANCE_UNKNOWN)
+        .with_if(duration.is_none(), Flags::DROP_AT_RMS);
+    // The columns hold power factors between 0 and 1.
+    let power_factor =
+        PowerFactor::lagging(power_factor).unwrap_or(PowerFactor { cos: 1.0, sin: 0.0 });
+    VoltageDrop { v_hv_pu, power_factor, duration }
 }

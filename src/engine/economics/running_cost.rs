@@ -3,7 +3,8 @@
 use super::Assumptions;
 use crate::engine::loading::Duty;
 use crate::engine::loading::duty::peak_of_year;
-use crate::engine::transformer::losses::{Losses, annual_energy};
+use crate::engine::transformer::losses::{Energy, Losses, annual_energy};
+use crate::engine::transformer::voltage_drop::{self, Supply};
 use crate::engine::working::{Formula, Recorder};
 
 /// Cost of a year, by what causes it.
@@ -36,6 +37,20 @@ const NO_LOAD: Formula = Formula {
     formula: "E0·c0·idx + D·P0/1000·idxD + p_C·E0·κ0/1000",
     unit: "money",
     source: "methods, section 4",
+};
+const NO_LOAD_AT_VOLTAGE: Formula = Formula {
+    name: "cost of the no-load loss in year k at the operating voltage",
+    symbol: "iron",
+    formula: "E0·c0·idx + D·P0·v_hv²/1000·idxD + p_C·E0·κ0/1000",
+    unit: "money",
+    source: "methods, sections 2 and 4 (drop voltage model)",
+};
+const LOAD_AT_CURRENT: Formula = Formula {
+    name: "cost of the load loss in year k",
+    symbol: "copper",
+    formula: "Ek·ck·idx + D·Pk·i_sys²/1000·idxD + p_C·Ek·κk/1000",
+    unit: "money",
+    source: "methods, sections 2 and 4 (drop voltage model; i_sys at PRF·S_k)",
 };
 const LOAD: Formula = Formula {
     name: "cost of the load loss in year k",
@@ -86,6 +101,91 @@ pub fn upkeep<R: Recorder>(w: &mut R, a: &Assumptions, age: f64) -> f64 {
     w.step(&UPKEEP, &[("u", a.upkeep_per_year), ("r", a.upkeep_age), ("a", age)], value)
 }
 
+/// Price indices of a year with the prices that a duty does not hold.
+struct Prices {
+    /// Of energy.
+    idx: f64,
+    /// Of demand.
+    idx_d: f64,
+    /// Price of a tonne of CO2 in the year.
+    p_c: f64,
+    /// Price of a kW at the system peak in year 1.
+    demand: f64,
+}
+
+/// Cost of the no-load loss.
+fn iron<R: Recorder>(
+    w: &mut R,
+    losses: &Losses,
+    duty: &Duty,
+    energy: &Energy,
+    prices: &Prices,
+) -> f64 {
+    let Prices { idx, idx_d, p_c, demand } = *prices;
+    let of = |demand_loss_w: f64| {
+        energy.no_load_energy_kwh * duty.no_load_price_per_kwh * idx
+            + demand * demand_loss_w / 1000.0 * idx_d
+            + p_c * energy.no_load_energy_kwh * duty.no_load_co2_kg_per_kwh / 1000.0
+    };
+    let p0 = losses.no_load_loss_w;
+    let inputs = [
+        ("E0", energy.no_load_energy_kwh),
+        ("c0", duty.no_load_price_per_kwh),
+        ("idx", idx),
+        ("D", demand),
+        ("P0", p0),
+        ("idxD", idx_d),
+        ("p_C", p_c),
+        ("κ0", duty.no_load_co2_kg_per_kwh),
+        ("v_hv", duty.drop.as_ref().map_or(1.0, |drop| drop.v_hv_pu)),
+    ];
+    match &duty.drop {
+        None => w.step(&NO_LOAD, &inputs, of(p0)),
+        Some(drop) => w.step(&NO_LOAD_AT_VOLTAGE, &inputs, of(p0 * drop.v_hv_pu * drop.v_hv_pu)),
+    }
+}
+
+/// Cost of the load loss in a year of a peak (kVA); closes the step that is open.
+fn copper<R: Recorder>(
+    w: &mut R,
+    losses: &Losses,
+    duty: &Duty,
+    energy: &Energy,
+    prices: &Prices,
+    peak_kva: f64,
+) -> f64 {
+    let Prices { idx, idx_d, p_c, demand } = *prices;
+    let of = |demand: f64| {
+        energy.load_energy_kwh * duty.load_price_per_kwh * idx
+            + demand / 1000.0 * idx_d
+            + p_c * energy.load_energy_kwh * duty.load_co2_kg_per_kwh / 1000.0
+    };
+    let (pk, prf) = (losses.load_loss_w, duty.responsibility_pu);
+    let beta = peak_kva / losses.rated_kva;
+    let current = duty.drop.as_ref().map(|drop| {
+        let supply = Supply::of(losses, drop);
+        voltage_drop::current(w, &supply, prf * beta).unwrap_or(f64::INFINITY)
+    });
+    let inputs = [
+        ("Ek", energy.load_energy_kwh),
+        ("ck", duty.load_price_per_kwh),
+        ("idx", idx),
+        ("D", demand),
+        ("Pk", pk),
+        ("S_k", peak_kva),
+        ("S_r", losses.rated_kva),
+        ("PRF", prf),
+        ("i_sys", current.unwrap_or(0.0)),
+        ("idxD", idx_d),
+        ("p_C", p_c),
+        ("κk", duty.load_co2_kg_per_kwh),
+    ];
+    match current {
+        None => w.close(&LOAD, &inputs, of(demand * pk * (beta * beta) * (prf * prf))),
+        Some(i) => w.close(&LOAD_AT_CURRENT, &inputs, of(demand * pk * (i * i))),
+    }
+}
+
 /// Running cost of year `k` of a transformer under a duty, `age` years old at the start of the year.
 pub fn of_year<R: Recorder>(
     w: &mut R,
@@ -101,41 +201,11 @@ pub fn of_year<R: Recorder>(
     let p_c = a.carbon_price_per_t * Assumptions::index(a.carbon_escalation, k);
     let demand = a.demand_charge_per_kw_year;
     let energy = annual_energy(w, losses, duty, k, a.load_growth_years);
-    let no_load = energy.no_load_energy_kwh * duty.no_load_price_per_kwh * idx
-        + demand * losses.no_load_loss_w / 1000.0 * idx_d
-        + p_c * energy.no_load_energy_kwh * duty.no_load_co2_kg_per_kwh / 1000.0;
-    let inputs = [
-        ("E0", energy.no_load_energy_kwh),
-        ("c0", duty.no_load_price_per_kwh),
-        ("idx", idx),
-        ("D", demand),
-        ("P0", losses.no_load_loss_w),
-        ("idxD", idx_d),
-        ("p_C", p_c),
-        ("κ0", duty.no_load_co2_kg_per_kwh),
-    ];
-    w.step(&NO_LOAD, &inputs, no_load);
+    let prices = Prices { idx, idx_d, p_c, demand };
+    let no_load = iron(w, losses, duty, &energy, &prices);
     w.open();
     let peak = peak_of_year(w, duty, k, a.load_growth_years);
-    let beta = peak / losses.rated_kva;
-    let prf = duty.responsibility_pu;
-    let load = energy.load_energy_kwh * duty.load_price_per_kwh * idx
-        + demand * losses.load_loss_w * (beta * beta) * (prf * prf) / 1000.0 * idx_d
-        + p_c * energy.load_energy_kwh * duty.load_co2_kg_per_kwh / 1000.0;
-    let inputs = [
-        ("Ek", energy.load_energy_kwh),
-        ("ck", duty.load_price_per_kwh),
-        ("idx", idx),
-        ("D", demand),
-        ("Pk", losses.load_loss_w),
-        ("S_k", peak),
-        ("S_r", losses.rated_kva),
-        ("PRF", prf),
-        ("idxD", idx_d),
-        ("p_C", p_c),
-        ("κk", duty.load_co2_kg_per_kwh),
-    ];
-    w.close(&LOAD, &inputs, load);
+    let load = copper(w, losses, duty, &energy, &prices, peak);
     let auxiliary = energy.auxiliary_energy_kwh
         * (duty.no_load_price_per_kwh * idx + p_c * duty.no_load_co2_kg_per_kwh / 1000.0);
     if losses.auxiliary_loss_w > 0.0 {

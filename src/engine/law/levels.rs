@@ -64,6 +64,7 @@ pub(super) fn judge(
         no_load_loss_w: s.no_load_loss_w,
         load_loss_w,
         auxiliary_loss_w: 0.0,
+        reactance_pu: None,
     };
     let value = match at_load(w, &losses, conditions.load_pu, 1.0) {
         Ok(eta) => 100.0 * eta,

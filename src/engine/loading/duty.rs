@@ -1,9 +1,23 @@
 //! The duty of a place: all that a year there asks of whatever transformer stands in it.
 
+use std::sync::Arc;
+
+use crate::engine::transformer::circuit::PowerFactor;
 use crate::engine::working::{Formula, Recorder};
 
+/// The voltage of a place, where it enters the losses (drop voltage model; methods, section 2).
+#[derive(Clone, Debug, PartialEq)]
+pub struct VoltageDrop {
+    /// Voltage of the high-voltage side over rated.
+    pub v_hv_pu: f64,
+    /// Power factor of the load.
+    pub power_factor: PowerFactor,
+    /// Load-duration histogram: share of the hours and load over peak; none: the RMS load stands for the year.
+    pub duration: Option<Arc<[(f64, f64)]>>,
+}
+
 /// What a place asks of a transformer.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Debug, PartialEq)]
 pub struct Duty {
     /// Highest load of year 1.
     pub peak_kva: f64,
@@ -29,6 +43,8 @@ pub struct Duty {
     pub no_load_co2_kg_per_kwh: f64,
     /// CO2 of a kWh of load loss, κ̄k.
     pub load_co2_kg_per_kwh: f64,
+    /// How voltage enters the losses; none: at rated voltage.
+    pub drop: Option<VoltageDrop>,
 }
 
 const PEAK: Formula = Formula {

@@ -72,7 +72,8 @@ impl Profile {
     }
 
     /// The load-duration histogram: for each of `bins` equal steps of s = |load|/peak the share of the year and
-    /// the mean of s inside the bin. Empty bins are left out.
+    /// the root mean square of s inside the bin, so that its mean square is the loss factor. Empty bins are left
+    /// out.
     pub fn load_duration(&self, bins: usize) -> Vec<(f64, f64)> {
         let Ok(ratios) = self.ratios(&mut Silent) else { return Vec::new() };
         let mut bin = vec![(0.0_f64, 0.0_f64); bins.max(1)];
@@ -86,11 +87,12 @@ impl Profile {
             let s = value.abs() / ratios.peak;
             let at = ((s * bin.len() as f64) as usize).min(bin.len() - 1);
             bin[at].0 += 1.0;
-            bin[at].1 += s;
+            bin[at].1 += s * s;
         }
         #[expect(clippy::cast_precision_loss, reason = "a year has at most half a million steps")]
         let steps = self.values.len() as f64;
-        bin.into_iter().filter(|(n, _)| *n > 0.0).map(|(n, sum)| (n / steps, sum / n)).collect()
+        let used = bin.into_iter().filter(|(n, _)| *n > 0.0);
+        used.map(|(n, square)| (n / steps, (square / n).sqrt())).collect()
     }
 }
 

@@ -145,7 +145,13 @@ pub fn losses_of_best<R: Recorder>(
     let iron = w.step(&HALF, &[("P_loss", lost)], lost / 2.0);
     let copper = iron / (load_pu * load_pu);
     w.step(&COPPER_OF_BEST, &[("P0", iron), ("β_best", load_pu)], copper);
-    Ok(Losses { rated_kva, no_load_loss_w: iron, load_loss_w: copper, auxiliary_loss_w: 0.0 })
+    Ok(Losses {
+        rated_kva,
+        no_load_loss_w: iron,
+        load_loss_w: copper,
+        auxiliary_loss_w: 0.0,
+        reactance_pu: None,
+    })
 }
 
 /// A load that stands for some hours.
@@ -295,6 +301,7 @@ mod tests {
             no_load_loss_w: 1400.0,
             load_loss_w: 1600.0,
             auxiliary_loss_w: 0.0,
+            reactance_pu: None,
         }
     }
 

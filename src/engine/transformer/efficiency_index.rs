@@ -89,6 +89,7 @@ mod tests {
             no_load_loss_w: l.no_load_loss_w,
             load_loss_w: l.load_loss_w,
             auxiliary_loss_w: 0.0,
+            reactance_pu: None,
         };
         let eta = at_load(&mut Silent, &losses, k, 1.0).expect("sound");
         assert!((1.0 / eta - 1.0 - (1.0 - pei)).abs() < 1e-12);

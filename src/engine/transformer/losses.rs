@@ -3,9 +3,10 @@
 use crate::engine::Refusal;
 use crate::engine::loading::Duty;
 use crate::engine::loading::duty::peak_of_year;
+use crate::engine::transformer::voltage_drop;
 use crate::engine::working::{Formula, Recorder};
 
-/// Rated losses of a transformer, with the load loss at `rated_kva`.
+/// Rated losses of a transformer, with the load loss at `rated_kva`, and what its current depends on.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Losses {
     /// Rated power, S_r.
@@ -16,6 +17,8 @@ pub struct Losses {
     pub load_loss_w: f64,
     /// Fans and pumps, P_aux.
     pub auxiliary_loss_w: f64,
+    /// Series reactance per unit of the rating; none where it is not known. Only the drop voltage model asks.
+    pub reactance_pu: Option<f64>,
 }
 
 /// Energy lost in a year.
@@ -113,6 +116,7 @@ pub fn quoted<R: Recorder>(
         no_load_loss_w: p0,
         load_loss_w,
         auxiliary_loss_w: auxiliary_loss_w.unwrap_or(0.0),
+        reactance_pu: None,
     })
 }
 
@@ -159,7 +163,7 @@ pub fn auxiliary_energy_kwh<R: Recorder>(w: &mut R, losses: &Losses, duty: &Duty
     w.step(&AUXILIARY_ENERGY, &inputs, losses.auxiliary_loss_w * duty.auxiliary_hours / 1000.0)
 }
 
-/// Energy lost in year `k` under a duty, at rated voltage.
+/// Energy lost in year `k` under a duty: at rated voltage, or by the drop voltage model where the duty has one.
 pub fn annual_energy<R: Recorder>(
     w: &mut R,
     losses: &Losses,
@@ -167,6 +171,9 @@ pub fn annual_energy<R: Recorder>(
     k: usize,
     growth_years: usize,
 ) -> Energy {
+    if let Some(drop) = &duty.drop {
+        return voltage_drop::annual_energy(w, losses, drop, duty, k, growth_years);
+    }
     let h = duty.energised_hours;
     let no_load = losses.no_load_loss_w * h / 1000.0;
     w.step(&NO_LOAD_ENERGY, &[("P0", losses.no_load_loss_w), ("h", h)], no_load);

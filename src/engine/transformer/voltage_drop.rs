@@ -1,12 +1,12 @@
 //! The "drop" voltage model (methods, section 2): iron at the operating voltage of the high-voltage side, copper
 //! with the current that flows at the voltage left on the low-voltage side, and the energy of a year from it.
 
-use super::circuit::{Circuit, PowerFactor};
-use super::losses::{Energy, Losses};
+use super::circuit::{Circuit, PowerFactor, resistance_pu};
+use super::losses::{Energy, Losses, auxiliary_energy_kwh};
 use crate::engine::Refusal;
-use crate::engine::loading::Duty;
 use crate::engine::loading::duty::peak_of_year;
-use crate::engine::working::{Formula, Recorder};
+use crate::engine::loading::{Duty, VoltageDrop};
+use crate::engine::working::{Formula, Recorder, Silent};
 
 /// What the drop model needs beside losses and load.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -27,6 +27,43 @@ const V_LV: Formula = Formula {
     source: "two-bus power flow of a constant-power load; methods, section 2",
 };
 
+impl Supply {
+    /// The supply of a transformer at a place; a reactance that is not known is left out.
+    pub fn of(losses: &Losses, drop: &VoltageDrop) -> Self {
+        Self {
+            circuit: Circuit {
+                r_pu: resistance_pu(&mut Silent, losses.rated_kva, losses.load_loss_w),
+                x_pu: losses.reactance_pu.unwrap_or(0.0),
+            },
+            v_hv_pu: drop.v_hv_pu,
+            power_factor: drop.power_factor,
+        }
+    }
+
+    /// Whether a load can be carried at all: whether the voltage equation has a real root.
+    pub fn carries(&self, load_pu: f64) -> bool {
+        self.square_of_voltage(load_pu).is_ok()
+    }
+
+    /// The larger root of the voltage equation, u = v_lv².
+    fn square_of_voltage(&self, load_pu: f64) -> Result<f64, Refusal> {
+        let Circuit { r_pu, x_pu } = self.circuit;
+        let (pf, v_hv) = (self.power_factor, self.v_hv_pu);
+        // u² − p·u + q = 0.
+        let p = v_hv * v_hv - 2.0 * load_pu * (r_pu * pf.cos + x_pu * pf.sin);
+        let q = load_pu * load_pu * (r_pu * r_pu + x_pu * x_pu);
+        let inside = p * p - 4.0 * q;
+        if p > 0.0 && inside >= 0.0 {
+            return Ok(0.5 * (p + inside.sqrt()));
+        }
+        let why = format!(
+            "cannot be carried at {v_hv} pu and an impedance of {:.4} pu: the voltage would collapse; lower the load, raise operating_voltage_pu or check impedance_pct",
+            self.circuit.z_pu()
+        );
+        Err(Refusal::new("load_pu", load_pu, why))
+    }
+}
+
 /// Voltage left on the low-voltage side with `load_pu` of the rating drawn there (pu).
 ///
 /// # Errors
@@ -36,29 +73,16 @@ pub fn low_side_voltage<R: Recorder>(
     supply: &Supply,
     load_pu: f64,
 ) -> Result<f64, Refusal> {
+    let value = supply.square_of_voltage(load_pu)?.sqrt();
     let Circuit { r_pu, x_pu } = supply.circuit;
-    let (pf, v_hv) = (supply.power_factor, supply.v_hv_pu);
-    let z2 = r_pu * r_pu + x_pu * x_pu;
-    // u² − p·u + q = 0 with u = v_lv².
-    let p = v_hv * v_hv - 2.0 * load_pu * (r_pu * pf.cos + x_pu * pf.sin);
-    let q = load_pu * load_pu * z2;
-    let inside = p * p - 4.0 * q;
-    if p <= 0.0 || inside < 0.0 || inside.is_nan() {
-        let why = format!(
-            "cannot be carried at {v_hv} pu and an impedance of {:.4} pu: the voltage would collapse; lower the load, raise operating_voltage_pu or check impedance_pct",
-            z2.sqrt()
-        );
-        return Err(Refusal::new("load_pu", load_pu, why));
-    }
-    let value = (0.5 * (p + inside.sqrt())).sqrt();
     let inputs = [
         ("β", load_pu),
         ("R", r_pu),
-        ("cosφ", pf.cos),
+        ("cosφ", supply.power_factor.cos),
         ("X", x_pu),
-        ("sinφ", pf.sin),
-        ("v_hv", v_hv),
-        ("Z", z2.sqrt()),
+        ("sinφ", supply.power_factor.sin),
+        ("v_hv", supply.v_hv_pu),
+        ("Z", supply.circuit.z_pu()),
     ];
     Ok(w.step(&V_LV, &inputs, value))
 }
@@ -76,36 +100,29 @@ const CURRENT: Formula = Formula {
 /// # Errors
 /// As [`low_side_voltage`].
 pub fn current<R: Recorder>(w: &mut R, supply: &Supply, load_pu: f64) -> Result<f64, Refusal> {
+    supply.square_of_voltage(load_pu)?;
     w.open();
     let v = low_side_voltage(w, supply, load_pu)?;
     Ok(w.close(&CURRENT, &[("β", load_pu), ("v_lv", v)], load_pu / v))
 }
 
-/// What is known of the shape of a year's load.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub enum LoadShape<'a> {
-    /// Load-duration histogram: share of the hours and load over peak of each part.
-    Duration(&'a [(f64, f64)]),
-    /// Only the loss factor: the current is taken at the RMS load.
-    LossFactor(f64),
-}
-
 const MEAN_SQUARE: Formula = Formula {
-    name: "mean of the squared current over the load-duration histogram",
-    symbol: "i²_mean",
-    formula: "Σ share·(β·s/v_lv(β·s))²",
+    name: "mean of the squared current over the parts of the load-duration histogram",
+    symbol: "i_rms²",
+    formula: "Σ share·(β·s)²/u(β·s), u = v_lv² as for one load with R, X, cosφ, v_hv",
     unit: "pu²",
     source: "methods, section 2",
 };
 const AT_RMS: Formula = Formula {
     name: "squared current at the RMS load",
-    symbol: "i²_mean",
+    symbol: "i_rms²",
     formula: "(β_rms/v_lv)²",
     unit: "pu²",
     source: "methods, section 2: only the loss factor is known; β_rms = β·√LsF",
 };
 
-/// Mean of the squared current over rated in the hours of a year with its peak at `peak_pu` of the rating.
+/// Mean of the squared current over rated in the hours of a year with its peak at `peak_pu` of the rating: over
+/// the load-duration histogram, or at the RMS load where there is none.
 ///
 /// # Errors
 /// As [`low_side_voltage`].
@@ -113,26 +130,31 @@ pub fn mean_square_current<R: Recorder>(
     w: &mut R,
     supply: &Supply,
     peak_pu: f64,
-    shape: LoadShape<'_>,
+    loss_factor_pu: f64,
+    duration: Option<&[(f64, f64)]>,
 ) -> Result<f64, Refusal> {
-    match shape {
-        LoadShape::Duration(parts) => {
-            w.open();
-            let mut sum = 0.0;
-            for (share, s) in parts {
-                let i = current(w, supply, peak_pu * s)?;
-                sum += share * (i * i);
-            }
-            Ok(w.close(&MEAN_SQUARE, &[("β", peak_pu)], sum))
-        }
-        LoadShape::LossFactor(loss_factor_pu) => {
-            w.open();
-            let rms = peak_pu * loss_factor_pu.sqrt();
-            let v = low_side_voltage(w, supply, rms)?;
-            let i = rms / v;
-            Ok(w.close(&AT_RMS, &[("β_rms", rms), ("v_lv", v)], i * i))
-        }
+    let Some(parts) = duration else {
+        let rms = peak_pu * loss_factor_pu.sqrt();
+        supply.square_of_voltage(rms)?;
+        w.open();
+        let v = low_side_voltage(w, supply, rms)?;
+        let i = rms / v;
+        return Ok(w.close(&AT_RMS, &[("β_rms", rms), ("v_lv", v)], i * i));
+    };
+    let mut sum = 0.0;
+    for (share, s) in parts {
+        let load = peak_pu * s;
+        sum += share * (load * load / supply.square_of_voltage(load)?);
     }
+    let Supply { circuit, v_hv_pu, power_factor } = supply;
+    let inputs = [
+        ("β", peak_pu),
+        ("R", circuit.r_pu),
+        ("X", circuit.x_pu),
+        ("cosφ", power_factor.cos),
+        ("v_hv", *v_hv_pu),
+    ];
+    Ok(w.step(&MEAN_SQUARE, &inputs, sum))
 }
 
 const NO_LOAD_ENERGY: Formula = Formula {
@@ -145,49 +167,36 @@ const NO_LOAD_ENERGY: Formula = Formula {
 const LOAD_ENERGY: Formula = Formula {
     name: "energy of the load loss in year k",
     symbol: "Ek",
-    formula: "Pk·i²_mean·h/1000",
+    formula: "Pk·i_rms²·h/1000",
     unit: "kWh",
     source: "methods, sections 2 and 4 (drop voltage model)",
 };
-const AUXILIARY_ENERGY: Formula = Formula {
-    name: "energy of fans and pumps in a year",
-    symbol: "Ea",
-    formula: "P_aux·h_aux/1000",
-    unit: "kWh",
-    source: "methods, section 4",
-};
 
-/// Energy lost in year `k` under a duty, by the drop model; the counterpart of [`super::losses::annual_energy`].
-///
-/// # Errors
-/// As [`low_side_voltage`].
-pub fn annual_energy<R: Recorder>(
+/// Energy lost in year `k` under a duty by the drop model; [`super::losses::annual_energy`] asks for it. Infinite
+/// where the load cannot be carried.
+pub(super) fn annual_energy<R: Recorder>(
     w: &mut R,
     losses: &Losses,
-    supply: &Supply,
+    drop: &VoltageDrop,
     duty: &Duty,
-    shape: LoadShape<'_>,
     k: usize,
     growth_years: usize,
-) -> Result<Energy, Refusal> {
-    let (h, v) = (duty.energised_hours, supply.v_hv_pu);
+) -> Energy {
+    let (h, v) = (duty.energised_hours, drop.v_hv_pu);
     let no_load = losses.no_load_loss_w * v * v * h / 1000.0;
     w.step(&NO_LOAD_ENERGY, &[("P0", losses.no_load_loss_w), ("v_hv", v), ("h", h)], no_load);
     w.open();
+    resistance_pu(w, losses.rated_kva, losses.load_loss_w);
     let peak = peak_of_year(w, duty, k, growth_years) / losses.rated_kva;
-    let square = mean_square_current(w, supply, peak, shape)?;
+    let parts = drop.duration.as_deref();
+    let supply = Supply::of(losses, drop);
+    let square = mean_square_current(w, &supply, peak, duty.loss_factor_pu, parts);
+    let square = square.unwrap_or(f64::INFINITY);
     let load = losses.load_loss_w * square * h / 1000.0;
-    w.close(&LOAD_ENERGY, &[("Pk", losses.load_loss_w), ("i²_mean", square), ("h", h)], load);
-    let auxiliary = losses.auxiliary_loss_w * duty.auxiliary_hours / 1000.0;
-    if losses.auxiliary_loss_w > 0.0 {
-        let inputs = [("P_aux", losses.auxiliary_loss_w), ("h_aux", duty.auxiliary_hours)];
-        w.step(&AUXILIARY_ENERGY, &inputs, auxiliary);
-    }
-    Ok(Energy {
-        no_load_energy_kwh: no_load,
-        load_energy_kwh: load,
-        auxiliary_energy_kwh: auxiliary,
-    })
+    w.close(&LOAD_ENERGY, &[("Pk", losses.load_loss_w), ("i_rms", square.sqrt()), ("h", h)], load);
+    let auxiliary =
+        if losses.auxiliary_loss_w > 0.0 { auxiliary_energy_kwh(w, losses, duty) } else { 0.0 };
+    Energy { no_load_energy_kwh: no_load, load_energy_kwh: load, auxiliary_energy_kwh: auxiliary }
 }
 
 #[cfg(test)]
@@ -228,8 +237,10 @@ mod tests {
     fn without_impedance_it_is_the_rated_model() {
         let supply = Supply { circuit: Circuit { r_pu: 0.0, x_pu: 0.0 }, ..supply(0.9) };
         let parts = [(0.75, 0.25), (0.25, 1.0)];
-        let square = |shape| mean_square_current(&mut Silent, &supply, 0.8, shape).expect("sound");
-        assert!((square(LoadShape::Duration(&parts)) - 0.64 * 0.296_875).abs() < 1e-15);
-        assert!((square(LoadShape::LossFactor(0.296_875)) - 0.64 * 0.296_875).abs() < 1e-15);
+        let square = |parts| {
+            mean_square_current(&mut Silent, &supply, 0.8, 0.296_875, parts).expect("sound")
+        };
+        assert!((square(Some(&parts)) - 0.64 * 0.296_875).abs() < 1e-15);
+        assert!((square(None) - 0.64 * 0.296_875).abs() < 1e-15);
     }
 }

@@ -103,6 +103,7 @@ calc! {
             no_load_loss_w: i.no_load_loss_w,
             load_loss_w: i.load_loss_w,
             auxiliary_loss_w: 0.0,
+            reactance_pu: None,
         };
         let current = voltage_drop::current(w, &supply, i.load_pu)?;
         let drop = at_current(w, &losses, i.operating_voltage_pu, current);

@@ -37,6 +37,7 @@ calc! {
             no_load_loss_w: i.no_load_loss_w,
             load_loss_w: i.load_loss_w,
             auxiliary_loss_w: 0.0,
+            reactance_pu: None,
         };
         let lost = at_current(w, &losses, 1.0, i.load_pu);
         let eta = efficiency::at_load(w, &losses, i.load_pu, i.power_factor)?;
@@ -76,6 +77,7 @@ calc! {
                 no_load_loss_w,
                 load_loss_w,
                 auxiliary_loss_w: 0.0,
+                reactance_pu: None,
             },
             (None, None, Some(best)) => {
                 let pf = i.best_power_factor;

@@ -207,6 +207,7 @@ calc! {
             no_load_loss_w: i.no_load_loss_w,
             load_loss_w: i.load_loss_w,
             auxiliary_loss_w: 0.0,
+            reactance_pu: None,
         };
         let hours = i.hours.as_long_as("hours", i.load_kva.len())?;
         let step = |(kva, hours): (&f64, f64)| LoadStep { kva: *kva, kw: 0.0, hours };

@@ -123,6 +123,7 @@ calc! {
             no_load_price_per_kwh: i.energy_price_per_kwh,
             load_price_per_kwh: i.load_price_per_kwh.unwrap_or(i.energy_price_per_kwh),
             no_load_co2_kg_per_kwh: i.carbon_kg_per_kwh,
+            drop: None,
             load_co2_kg_per_kwh: i.carbon_kg_per_kwh,
         };
         let got = of_duty(w, &duty, 1.0, &assumptions)?;

@@ -23,11 +23,17 @@ const LABELS: &[&str] = &["load_pu", "offset", "year", "known_units", "units_set
 
 /// How the losses at the rating come about.
 const OF_LOSSES: &[&str] = &["P0", "Pk_base", "Pk"];
+/// How energy comes about: the losses, and what the drop voltage model adds.
+const OF_ENERGY: &[&str] = &["P0", "Pk_base", "Pk", "v_hv", "cosφ", "Z", "X"];
 /// What a present value is told: load, prices, and what failure and removal cost.
 const OF_VALUE: &[&str] = &[
     "P0",
     "Pk_base",
     "Pk",
+    "v_hv",
+    "cosφ",
+    "Z",
+    "X",
     "S_r",
     "S_1",
     "LsF",
@@ -221,7 +227,7 @@ impl Question<'_> {
             "no_load_energy_kwh" | "load_energy_kwh" => {
                 let symbol = if quantity == "load_energy_kwh" { "Ek" } else { "E0" };
                 let mut all = Working::default();
-                let place = self.told(w, OF_LOSSES)?;
+                let place = self.told(w, OF_ENERGY)?;
                 energy(&mut all, &place);
                 w.append(all.only(&[symbol]));
             }

@@ -201,7 +201,8 @@ columns!(
     failure_cost,
     removal_cost,
     scrap_value,
-    customers
+    customers,
+    impedance_pct
 );
 
 impl FleetColumns {

@@ -41,6 +41,25 @@ impl PriceSums {
     }
 }
 
+impl Horizon {
+    /// Σ_{k>t} of (energy·e + carbon·c)·mean_k + demand·d·peak_k, for every t: what a watt of load loss costs where
+    /// each year has squared currents of its own, the mean of the hours and that of the system peak.
+    pub(super) fn combine_years(
+        &self,
+        (e, d, c): (f64, f64, f64),
+        squares: impl Fn(usize) -> (f64, f64),
+        out: &mut [f64],
+    ) {
+        let n = self.years.len();
+        out[n] = 0.0;
+        for t in (0..n).rev() {
+            let [energy, demand, carbon] = self.years[t];
+            let (mean, peak) = squares(t + 1);
+            out[t] = out[t + 1] + (energy * e + carbon * c) * mean + demand * d * peak;
+        }
+    }
+}
+
 /// What the age of the old unit decides.
 #[derive(Clone, Debug)]
 pub(super) struct Ages {

@@ -3,7 +3,7 @@
 use proptest::prelude::*;
 
 use super::*;
-use crate::engine::columns::{Basis, CapitalRecovery, CashFlow};
+use crate::engine::columns::{Basis, CapitalRecovery, CashFlow, VoltageModel};
 use crate::engine::decision::fit::Terminals;
 use crate::engine::decision::keep_or_replace::decide;
 use crate::engine::decision::place::{UnitFacts, resolve};
@@ -22,8 +22,11 @@ fn basis() -> impl Strategy<Value = Basis> {
         prop_oneof![Just(None), (0_i64..3).prop_map(Some)],
         prop_oneof![Just(None), (0_i64..3).prop_map(Some)],
         0.0..60.0,
+        prop_oneof![Just(None), (0.85..1.1).prop_map(Some)],
     )
-        .prop_map(|(a, b, c, f, limit, down, up, demand)| Basis {
+        .prop_map(|(a, b, c, f, limit, down, up, demand, voltage)| Basis {
+            voltage_model: voltage.map(|_| VoltageModel::Drop),
+            operating_voltage_pu: voltage,
             name: "random".into(),
             currency: "EUR".into(),
             first_year: 2026,
@@ -65,24 +68,28 @@ fn offer() -> impl Strategy<Value = Candidate> {
         prop_oneof![Just(None), (5.0..50.0).prop_map(Some)],
         prop_oneof![2 => Just(0.0), 1 => 0.0..4.0],
         prop_oneof![2 => Just(Vec::new()), 1 => prop::collection::vec(any::<bool>(), 12)],
+        prop_oneof![Just(None), (0.02..0.1).prop_map(Some), (0.1..0.6).prop_map(Some)],
     )
-        .prop_map(|(rated_kva, l, p, life_years, lead_time_years, lawful)| Candidate {
-            offer: String::new(),
-            losses: Losses {
-                rated_kva,
-                no_load_loss_w: l.0,
-                load_loss_w: l.1,
-                auxiliary_loss_w: l.2,
-            },
-            price: p.0,
-            install_cost: p.1,
-            life_years,
-            lead_time_years,
-            phases: None,
-            hv_kv: None,
-            lv_kv: None,
-            clock: None,
-            lawful,
+        .prop_map(|(rated_kva, l, p, life_years, lead_time_years, lawful, reactance_pu)| {
+            Candidate {
+                offer: String::new(),
+                losses: Losses {
+                    rated_kva,
+                    no_load_loss_w: l.0,
+                    load_loss_w: l.1,
+                    auxiliary_loss_w: l.2,
+                    reactance_pu,
+                },
+                price: p.0,
+                install_cost: p.1,
+                life_years,
+                lead_time_years,
+                phases: None,
+                hv_kv: None,
+                lv_kv: None,
+                clock: None,
+                lawful,
+            }
         })
 }
 
@@ -94,9 +101,10 @@ fn unit() -> impl Strategy<Value = UnitFacts> {
         (5.0..300.0, maybe(-6.0..6.0), maybe(0.0..1.0), maybe(100.0..8760.0)),
         prop_oneof![3 => (1960_i32..2030).prop_map(f64::from), 1 => Just(f64::NAN)],
         (maybe(0.0..5000.0), maybe(0.0..500.0)),
-        0_u32..2,
+        prop_oneof![Just(0_u32), Just(1), Just(u32::MAX)],
+        (maybe(3.0..12.0), maybe(0.6..1.0)),
     )
-        .prop_map(|(rated_kva, l, d, year_made, f, profile)| UnitFacts {
+        .prop_map(|(rated_kva, l, d, year_made, f, profile, v)| UnitFacts {
             in_service: true,
             rated_kva,
             loss_base_kva: f64::NAN,
@@ -107,16 +115,17 @@ fn unit() -> impl Strategy<Value = UnitFacts> {
             auxiliary_hours: f64::NAN,
             peak_kva: d.0,
             load_factor_pu: f64::NAN,
-            loss_factor_pu: f64::NAN,
+            loss_factor_pu: 0.4,
             load_growth_pct: d.1,
             responsibility_pu: d.2,
             energised_hours: d.3,
-            power_factor: f64::NAN,
+            power_factor: v.1,
             year_made,
             failure_cost: f.0,
             removal_cost: f.1,
             scrap_value: f64::NAN,
             customers: f64::NAN,
+            impedance_pct: v.0,
             phases: None,
             winding_metal: None,
             insulation: None,
@@ -141,6 +150,10 @@ fn context(basis: &Basis) -> Context {
         },
         ratios: vec![ratios(0.5, 0.3), ratios(0.7, 0.55)],
         candidates: Vec::new(),
+        durations: vec![
+            [(0.5, 0.3), (0.4, 0.6), (0.1, 1.0)].into(),
+            [(0.8, 0.7), (0.2, 1.0)].into(),
+        ],
         estimate: None,
         flags: Flags::NONE,
     }
@@ -172,7 +185,14 @@ proptest! {
         kernel.evaluate(&fleet, 0..fleet.len(), &mut out);
 
         for (facts, got) in units.iter().zip(&out) {
-            let place = resolve(&mut Silent, facts, &ctx).expect("complete");
+            let place = match resolve(&mut Silent, facts, &ctx) {
+                Ok(place) => place,
+                Err(why) => {
+                    prop_assert_eq!(why, LeftOut::LoadNotCarried);
+                    prop_assert_eq!(got.left_out, Some(why));
+                    continue;
+                }
+            };
             let terminals = Terminals {
                 phases: None, hv_kv: None, lv_kv: None, clock: None, rated_kva: facts.rated_kva,
             };

@@ -327,13 +327,14 @@ impl<'a> Valuation<'a> {
     }
 
     /// G'(t): the least cost of a forced purchase at time `t`; the loading limit, and then the law, give way
-    /// where they leave nothing. Says whether the law gave way. At the end of the horizon nothing is bought.
+    /// where they leave nothing (infinite where no voltage holds). Says whether the law gave way. At the end of the horizon nothing is bought.
     fn forced_purchase<R: Recorder>(&self, w: &mut R, t: usize) -> Result<(f64, bool), Refusal> {
         if t == self.a.years {
             return Ok((0.0, false));
         }
         let carries = |c: usize| self.candidate(c).carries(&self.place.duty, t, self.a);
-        let all: Vec<usize> = (0..self.fitting.len()).collect();
+        let holds = |c: &usize| self.candidate(*c).holds_voltage(&self.place.duty, t, self.a);
+        let all: Vec<usize> = (0..self.fitting.len()).filter(holds).collect();
         let lawful: Vec<usize> =
             all.iter().copied().filter(|&c| self.candidate(c).lawful_at(t)).collect();
         let relaxed = lawful.is_empty();

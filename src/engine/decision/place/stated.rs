@@ -11,6 +11,9 @@ const fn stated(name: &'static str, symbol: &'static str, unit: &'static str) ->
 pub const RATING: Formula = stated("rated power", "S_r", "kVA");
 /// Power factor of the load.
 pub const POWER_FACTOR: Formula = stated("power factor of the load", "cosφ", "pu");
+/// Voltage of the high-voltage side.
+pub const OPERATING_VOLTAGE: Formula =
+    stated("voltage of the high-voltage side over rated", "v_hv", "pu");
 /// Load loss at the rating.
 pub const LOAD_LOSS: Formula = stated("load loss at the rating", "Pk", "W");
 /// Peak load of year 1.

@@ -140,6 +140,7 @@ fn duty(lot: &Lot, basis: &BasisForFactors, absent: Computed) -> Result<(Duty, F
         no_load_price_per_kwh: prices.price_per_kwh,
         load_price_per_kwh: prices.price_per_kwh,
         no_load_co2_kg_per_kwh: prices.co2_kg_per_kwh,
+        drop: None,
         load_co2_kg_per_kwh: prices.co2_kg_per_kwh,
     };
     let demand = assumptions.demand_charge_per_kw_year > 0.0;

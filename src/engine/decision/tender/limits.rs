@@ -85,6 +85,7 @@ mod tests {
             no_load_loss_w: 1.0,
             load_loss_w: 1.0,
             auxiliary_loss_w: 0.0,
+            reactance_pu: None,
         };
         let on_terms = Comparable {
             losses,

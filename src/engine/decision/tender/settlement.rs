@@ -116,6 +116,7 @@ pub fn delivered<R: Recorder>(
         no_load_loss_w: measured.no_load_loss_w,
         load_loss_w,
         auxiliary_loss_w: measured.auxiliary_loss_w.unwrap_or(promise.auxiliary_loss_w),
+        reactance_pu: None,
     };
     Delivered { losses, excess, flags }
 }

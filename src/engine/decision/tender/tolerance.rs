@@ -139,7 +139,13 @@ mod tests {
     use crate::engine::working::{Silent, Working};
 
     fn losses(no_load_loss_w: f64, load_loss_w: f64) -> Losses {
-        Losses { rated_kva: 100.0, no_load_loss_w, load_loss_w, auxiliary_loss_w: 0.0 }
+        Losses {
+            rated_kva: 100.0,
+            no_load_loss_w,
+            load_loss_w,
+            auxiliary_loss_w: 0.0,
+            reactance_pu: None,
+        }
     }
     fn factors(a: f64, b: f64) -> LossFactors {
         LossFactors { factor_a_per_kw: a, factor_b_per_kw: b, factor_aux_per_kw: 0.0 }
