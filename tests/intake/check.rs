@@ -167,15 +167,16 @@ fn what_a_basis_has_estimated_or_leaves_out_is_told_of_units_and_offers() {
     let mut of = |basis: &str| {
         assert!(desk.text(What::Basis, "b.toml", basis).stored);
         let doubts = told(&desk);
-        let columns = |key| about(&doubts, key).iter().map(|(c, k)| (c.to_string(), *k)).collect();
-        (columns("U"), columns("O"))
+        ["U", "O"].map(|key| {
+            let columns =
+                about(&doubts, key).into_iter().map(|(column, kind)| (column.to_owned(), kind));
+            columns.collect::<Vec<_>>()
+        })
     };
-    let (plain, none): (Vec<(String, Kind)>, Vec<(String, Kind)>) = of(BASIS);
-    assert_eq!((plain, none), (vec![("no_load_loss_w".into(), Kind::Missing)], vec![]));
-    let (unit, offer) = of(&asked);
+    assert_eq!(of(BASIS), [vec![("no_load_loss_w".to_owned(), Kind::Missing)], vec![]]);
     let impedance = ("impedance_pct".to_owned(), Kind::Missing);
     let estimated = ("no_load_loss_w".to_owned(), Kind::Estimated);
-    assert_eq!((unit, offer), (vec![estimated, impedance.clone()], vec![impedance]));
+    assert_eq!(of(&asked), [vec![estimated, impedance.clone()], vec![impedance]]);
 }
 
 #[test]
