@@ -7,6 +7,7 @@
 pub mod columns;
 pub mod decision;
 pub mod economics;
+pub mod exact_sum;
 pub mod flags;
 pub mod law;
 pub mod loading;

@@ -364,8 +364,9 @@ fn estimated_losses() {
         phases: row["phases"].as_i64(),
     };
     for fleet in rows(&file, "fleets") {
-        let known = rows(fleet, "known").iter().map(|row| (build(row), n(row, "loss_w")));
-        let model = LossModel::learn(Loss::NoLoad, &known);
+        let known: Vec<_> =
+            rows(fleet, "known").iter().map(|row| (build(row), n(row, "loss_w"))).collect();
+        let model = LossModel::learn(Loss::NoLoad, known);
         for asked in rows(fleet, "asked") {
             let got = model.estimate(&mut Silent, &build(asked)).expect("enough units");
             let terms: Vec<&str> = fleet["terms"]

@@ -102,23 +102,23 @@ pub fn of_unit<'a>(
 pub fn losses(desk: &Desk) -> Result<Losses<'_>, StudyError> {
     let context = desk.context()?;
     let (mut units, mut left_out) = (Vec::new(), Vec::new());
-    let mut totals = LossesTotals::default();
     for i in 0..desk.fleet.len() {
         match of_unit(desk, &context, i) {
-            Ok(row) => {
-                totals.units += 1;
-                totals.no_load_energy_kwh += row.no_load_energy_kwh;
-                totals.load_energy_kwh += row.load_energy_kwh;
-                totals.auxiliary_energy_kwh += row.auxiliary_energy_kwh;
-                totals.loss_cost += row.loss_cost;
-                units.push(row);
-            }
+            Ok(row) => units.push(row),
             Err(why) => {
                 left_out.push(LeftOutRow { unit: desk.fleet.unit.get(i), why: why.why() });
             }
         }
     }
     units.sort_by(|a, b| b.loss_cost.total_cmp(&a.loss_cost).then_with(|| a.unit.cmp(b.unit)));
+    // Summed in this order: the order of the book's rows changes no bit.
+    let mut totals = LossesTotals { units: units.len(), ..LossesTotals::default() };
+    for row in &units {
+        totals.no_load_energy_kwh += row.no_load_energy_kwh;
+        totals.load_energy_kwh += row.load_energy_kwh;
+        totals.auxiliary_energy_kwh += row.auxiliary_energy_kwh;
+        totals.loss_cost += row.loss_cost;
+    }
     Ok(Losses {
         voltage_model: context.assumptions.voltage_model,
         basis: context.assumptions.name,

@@ -12,6 +12,7 @@ use crate::engine::decision::fleet::{CHUNK, Kernel, Outcome};
 use crate::engine::decision::keep_or_replace::FirstYear;
 use crate::engine::decision::place::resolve;
 use crate::engine::decision::{Context, LeftOut};
+use crate::engine::exact_sum::ExactSum;
 use crate::engine::flags::Flags;
 use crate::engine::working::Silent;
 use crate::study::{Desk, StudyError, Watch};
@@ -138,7 +139,7 @@ pub fn rank(desk: &Desk, by: By, top: Option<usize>, watch: &Watch) -> Result<Ra
     let mut outcomes = vec![Outcome::left_out(LeftOut::NoOffer); n];
     let kernel = Kernel::new(&context, &context.candidates, &desk.fleet)?;
     watch.expect(n);
-    let parts: Vec<(Totals, Vec<u32>)> = outcomes
+    let parts: Vec<(Sums, Vec<u32>)> = outcomes
         .par_chunks_mut(CHUNK)
         .enumerate()
         .map(|(chunk, out)| {
@@ -153,19 +154,41 @@ pub fn rank(desk: &Desk, by: By, top: Option<usize>, watch: &Watch) -> Result<Ra
     if watch.is_stopped() {
         return Err(StudyError::Stopped);
     }
-    let (mut totals, mut left_out) = (Totals::default(), Vec::new());
+    let (mut sums, mut left_out) = (Sums::default(), Vec::new());
     for (part, out) in parts {
-        totals.units += part.units;
-        totals.keep_pv += part.keep_pv;
-        totals.best_pv += part.best_pv;
-        totals.saving_pv += part.saving_pv;
-        totals.units_saving += part.units_saving;
+        sums.units += part.units;
+        sums.keep_pv.merge(part.keep_pv);
+        sums.best_pv.merge(part.best_pv);
+        sums.saving_pv.merge(part.saving_pv);
+        sums.units_saving += part.units_saving;
         left_out.extend(out);
     }
     let by = Order { desk, by };
     let order: Vec<u32> = by.of(&outcomes, top).into_iter().map(|(_, i)| i).collect();
     let could_stand = could_stand(&kernel, &by, &outcomes, &order);
-    Ok(Ranking { context, outcomes, order, left_out, totals, could_stand })
+    Ok(Ranking { context, outcomes, order, left_out, totals: sums.totals(), could_stand })
+}
+
+/// The totals while they are summed: the order of the units and the cut into chunks change no bit of them.
+#[derive(Default)]
+struct Sums {
+    units: usize,
+    keep_pv: ExactSum,
+    best_pv: ExactSum,
+    saving_pv: ExactSum,
+    units_saving: usize,
+}
+
+impl Sums {
+    fn totals(&self) -> Totals {
+        Totals {
+            units: self.units,
+            keep_pv: self.keep_pv.value(),
+            best_pv: self.best_pv.value(),
+            saving_pv: self.saving_pv.value(),
+            units_saving: self.units_saving,
+        }
+    }
 }
 
 /// Where the units of `shown` whose losses are estimated could stand.
@@ -197,21 +220,21 @@ fn could_stand(
     estimated.into_par_iter().map(ends).collect::<Vec<_>>().into_iter().collect()
 }
 
-fn sum_up(from: usize, out: &[Outcome]) -> (Totals, Vec<u32>) {
-    let (mut totals, mut left_out) = (Totals::default(), Vec::new());
+fn sum_up(from: usize, out: &[Outcome]) -> (Sums, Vec<u32>) {
+    let (mut sums, mut left_out) = (Sums::default(), Vec::new());
     for (i, outcome) in out.iter().enumerate() {
         if outcome.left_out.is_some() {
             left_out.push(u32::try_from(from + i).unwrap_or(u32::MAX));
             continue;
         }
         let saving = outcome.saving_pv();
-        totals.units += 1;
-        totals.keep_pv += outcome.keep_pv;
-        totals.best_pv += outcome.best_pv;
-        totals.saving_pv += saving;
-        totals.units_saving += usize::from(saving > 0.0);
+        sums.units += 1;
+        sums.keep_pv.add(outcome.keep_pv);
+        sums.best_pv.add(outcome.best_pv);
+        sums.saving_pv.add(saving);
+        sums.units_saving += usize::from(saving > 0.0);
     }
-    (totals, left_out)
+    (sums, left_out)
 }
 
 /// An order of the ranked units: by a figure, greatest first, then by the bytes of the identifier.

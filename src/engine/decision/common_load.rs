@@ -3,6 +3,7 @@
 
 use super::place::Place;
 use crate::engine::economics::Assumptions;
+use crate::engine::exact_sum::ExactSum;
 use crate::engine::loading::Duty;
 use crate::engine::working::{Formula, Recorder};
 
@@ -48,15 +49,15 @@ const CO2: Formula = Formula {
 #[derive(Clone, Debug, Default)]
 pub struct CommonLoad {
     /// Σ Pk.
-    rated: f64,
+    rated: ExactSum,
     /// Σ Pk·β².
-    peak: f64,
+    peak: ExactSum,
     /// Σ Pk·β²·LsF, and the same with price and CO2.
-    lost: f64,
-    price: f64,
-    co2: f64,
+    lost: ExactSum,
+    price: ExactSum,
+    co2: ExactSum,
     /// Σ Pk·β²·PRF².
-    responsibility: f64,
+    responsibility: ExactSum,
     last: Option<Duty>,
 }
 
@@ -67,34 +68,36 @@ impl CommonLoad {
         let beta = d.peak_kva / l.rated_kva;
         let at_peak = l.load_loss_w * (beta * beta);
         let lost = at_peak * d.loss_factor_pu;
-        self.rated += l.load_loss_w;
-        self.peak += at_peak;
-        self.lost += lost;
-        self.price += lost * d.load_price_per_kwh;
-        self.co2 += lost * d.load_co2_kg_per_kwh;
-        self.responsibility += at_peak * (d.responsibility_pu * d.responsibility_pu);
+        self.rated.add(l.load_loss_w);
+        self.peak.add(at_peak);
+        self.lost.add(lost);
+        self.price.add(lost * d.load_price_per_kwh);
+        self.co2.add(lost * d.load_co2_kg_per_kwh);
+        self.responsibility.add(at_peak * (d.responsibility_pu * d.responsibility_pu));
         self.last = Some(d.clone());
     }
 
     /// The duty on a transformer of rating 1; none where nothing is lost.
     pub fn duty<R: Recorder>(&self, w: &mut R, a: &Assumptions) -> Option<Duty> {
-        if self.rated <= 0.0 || self.lost <= 0.0 {
+        let (rated, peak, lost) = (self.rated.value(), self.peak.value(), self.lost.value());
+        if rated <= 0.0 || lost <= 0.0 {
             return None;
         }
         Some(Duty {
-            peak_kva: w.step(&PEAK, &[], (self.peak / self.rated).sqrt()),
+            peak_kva: w.step(&PEAK, &[], (peak / rated).sqrt()),
             load_growth_pu: a.load_growth,
             load_factor_pu: None,
-            loss_factor_pu: w.step(&LOSS_FACTOR, &[], self.lost / self.peak),
+            loss_factor_pu: w.step(&LOSS_FACTOR, &[], lost / peak),
             energised_hours: a.energised_hours,
             auxiliary_hours: a.auxiliary_hours.unwrap_or(a.energised_hours),
             responsibility_pu: w.step(
                 &RESPONSIBILITY,
                 &[],
-                (self.responsibility / self.peak).sqrt(),
+                (self.responsibility.value() / peak).sqrt(),
             ),
-            load_price_per_kwh: w.step(&PRICE, &[], self.price / self.lost),
-            load_co2_kg_per_kwh: w.step(&CO2, &[], self.co2 / self.lost),
+            load_price_per_kwh: w.step(&PRICE, &[], self.price.value() / lost),
+            load_co2_kg_per_kwh: w.step(&CO2, &[], self.co2.value() / lost),
+            power_factor: None,
             drop: None,
             ..self.last.clone()?
         })

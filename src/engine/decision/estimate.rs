@@ -71,12 +71,14 @@ impl UnitFacts {
 impl FleetEstimate {
     /// Learns from every unit of a fleet, in service or not.
     pub fn of_fleet(fleet: &FleetColumns) -> Self {
-        let units = (0..fleet.len()).map(|i| fleet.facts(i));
-        let no_load = units.clone().filter_map(|f| Some((f.build(), f.known_no_load_loss()?)));
-        let load = units.filter_map(|f| Some((f.build(), f.known_load_loss()?)));
+        let learn = |loss, known: &dyn Fn(&UnitFacts) -> Option<f64>| {
+            let units = (0..fleet.len()).map(|i| fleet.facts(i));
+            let known = units.filter_map(|f| Some((f.build(), known(&f)?))).collect();
+            LossModel::learn(loss, known)
+        };
         Self {
-            no_load: LossModel::learn(Loss::NoLoad, &no_load),
-            load: LossModel::learn(Loss::Load, &load),
+            no_load: learn(Loss::NoLoad, &UnitFacts::known_no_load_loss),
+            load: learn(Loss::Load, &UnitFacts::known_load_loss),
         }
     }
 

@@ -122,22 +122,13 @@ impl Regression {
     }
 
     /// Least squares over known units; with `dated`, those of known year, and vintage as a term.
-    fn fit<I>(known: &I, dated: bool) -> Result<Self, Impossible>
-    where
-        I: Iterator<Item = (Build, f64)> + Clone,
-    {
-        let known = known.clone().filter(|(build, loss)| {
-            *loss > 0.0 && build.rated_kva > 0.0 && (!dated || build.year_made.is_some())
-        });
-        let (mut units, mut with) = (0, [0; FURTHER.len()]);
-        for (build, _) in known.clone() {
-            units += 1;
-            for (count, term) in with.iter_mut().zip(FURTHER) {
-                *count += usize::from(term.of(&build) != 0.0);
-            }
-        }
+    fn fit(known: &[(Build, f64)], dated: bool) -> Result<Self, Impossible> {
+        let known: Vec<&(Build, f64)> =
+            known.iter().filter(|(build, _)| !dated || build.year_made.is_some()).collect();
+        let units = known.len();
         let mut terms = vec![Term::Rating];
-        for (term, with) in FURTHER.into_iter().zip(with) {
+        for term in FURTHER {
+            let with = known.iter().filter(|(build, _)| term.of(build) != 0.0).count();
             let enough = match term {
                 Term::Vintage => dated,
                 _ => with >= UNITS_PER_TERM && units - with >= UNITS_PER_TERM,
@@ -149,36 +140,37 @@ impl Regression {
         let first = Self::over(&known, terms.clone(), 0)?;
         let apart = |(build, loss): &(Build, f64)| {
             let residual = loss.ln() - first.solution.at(first.row(build, &mut [0.0; WIDEST]));
-            residual.abs() <= (SET_ASIDE * first.deviation).max(NO_RESIDUAL)
+            residual.abs() > (SET_ASIDE * first.deviation).max(NO_RESIDUAL)
         };
-        let kept = known.clone().filter(apart).count();
-        if kept == units {
+        let kept: Vec<&(Build, f64)> =
+            known.iter().copied().filter(|known| !apart(known)).collect();
+        if kept.len() == units {
             return Ok(first);
         }
-        Self::over(&known.filter(apart), terms, units - kept)
+        Self::over(&kept, terms, units - kept.len())
     }
 
     /// Least squares with given terms, less those that say nothing new.
     fn over(
-        known: &(impl Iterator<Item = (Build, f64)> + Clone),
+        known: &[&(Build, f64)],
         mut terms: Vec<Term>,
         set_aside: usize,
     ) -> Result<Self, Impossible> {
+        let units = known.len();
+        if units < UNITS_PER_TERM {
+            return Err(Impossible::TooFew);
+        }
+        let ratings = known.iter().map(|(build, _)| build.rated_kva);
+        let (least_kva, greatest_kva) = ratings
+            .fold((f64::INFINITY, 0.0_f64), |(least, most), kva| (least.min(kva), most.max(kva)));
         loop {
             let width = terms.len() + 1;
             let mut problem = LeastSquares::new(width);
-            let (mut least_kva, mut greatest_kva) = (f64::INFINITY, 0.0_f64);
-            for (build, loss) in known.clone() {
+            for (build, loss) in known {
                 let mut row = [0.0; WIDEST];
-                fill(&terms, &build, &mut row);
+                fill(&terms, build, &mut row);
                 row[width] = loss.ln();
                 problem.add(&mut row[..=width]);
-                least_kva = least_kva.min(build.rated_kva);
-                greatest_kva = greatest_kva.max(build.rated_kva);
-            }
-            let units = problem.rows();
-            if units < UNITS_PER_TERM {
-                return Err(Impossible::TooFew);
             }
             match problem.solve() {
                 Err(Dependent(0 | 1)) => return Err(Impossible::OneRating),
@@ -291,18 +283,25 @@ pub struct LossModel {
 }
 
 impl LossModel {
-    /// Learns from transformers of which the loss at the rating (W) is known; losses of 0 W are passed over.
-    pub fn learn<I>(loss: Loss, known: &I) -> Self
-    where
-        I: Iterator<Item = (Build, f64)> + Clone,
-    {
+    /// Learns from transformers of which the loss at the rating (W) is known, in any order; losses of 0 W are passed
+    /// over.
+    pub fn learn(loss: Loss, mut known: Vec<(Build, f64)>) -> Self {
+        known.retain(|(build, loss)| *loss > 0.0 && build.rated_kva > 0.0);
+        // Taken in an order of their own, so that the order of a fleet changes no bit of the estimate.
+        known.sort_unstable_by(|(a, loss_a), (b, loss_b)| {
+            let figures = |build: &Build, loss: f64| {
+                [build.rated_kva, loss, build.year_made.unwrap_or(f64::NAN)].map(f64::to_bits)
+            };
+            let words = |build: &Build| (build.winding_metal, build.insulation, build.phases);
+            figures(a, *loss_a).cmp(&figures(b, *loss_b)).then_with(|| words(a).cmp(&words(b)))
+        });
         Self {
             formulas: match loss {
                 Loss::NoLoad => &NO_LOAD,
                 Loss::Load => &LOAD,
             },
-            dated: Regression::fit(known, true),
-            any: Regression::fit(known, false),
+            dated: Regression::fit(&known, true),
+            any: Regression::fit(&known, false),
         }
     }
 

@@ -5,7 +5,6 @@
 #[derive(Clone, Debug)]
 pub(super) struct LeastSquares {
     terms: usize,
-    rows: usize,
     /// Row j holds columns 0..=terms; only those from j on are used.
     triangle: Vec<Vec<f64>>,
 }
@@ -30,12 +29,11 @@ const NOTHING_NEW: f64 = 1e-9;
 impl LeastSquares {
     /// An empty problem.
     pub(super) fn new(terms: usize) -> Self {
-        Self { terms, rows: 0, triangle: vec![vec![0.0; terms + 1]; terms + 1] }
+        Self { terms, triangle: vec![vec![0.0; terms + 1]; terms + 1] }
     }
 
     /// Takes in a row: its terms, and the value observed, last. The row is used up.
     pub(super) fn add(&mut self, row: &mut [f64]) {
-        self.rows += 1;
         for j in 0..=self.terms {
             if row[j] == 0.0 {
                 continue;
@@ -54,7 +52,7 @@ impl LeastSquares {
     /// # Errors
     /// The first term that depends on those before it.
     pub(super) fn solve(self) -> Result<Solution, Dependent> {
-        let Self { terms, triangle, .. } = self;
+        let Self { terms, triangle } = self;
         for j in 0..terms {
             let whole = (0..=j).map(|i| triangle[i][j] * triangle[i][j]).sum::<f64>().sqrt();
             if triangle[j][j].abs() <= NOTHING_NEW * whole {
@@ -68,11 +66,6 @@ impl LeastSquares {
         }
         let residual = triangle[terms][terms];
         Ok(Solution { coefficients, residual_square: residual * residual, triangle })
-    }
-
-    /// Number of rows.
-    pub(super) fn rows(&self) -> usize {
-        self.rows
     }
 }
 
@@ -110,7 +103,6 @@ mod tests {
     #[test]
     fn a_line_by_hand() {
         let problem = of(&[[1.0, 0.0, 1.0], [1.0, 1.0, 3.0], [1.0, 2.0, 5.0], [1.0, 3.0, 7.5]]);
-        assert_eq!(problem.rows(), 4);
         let line = problem.solve().expect("two points and more");
         let near =
             |got: f64, want: f64| assert!((got - want).abs() < 1e-14, "{got} against {want}");

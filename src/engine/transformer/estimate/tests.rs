@@ -33,7 +33,7 @@ fn fleet(rng: &mut StdRng, units: usize) -> Vec<Build> {
 }
 
 fn model(known: &[(Build, f64)]) -> LossModel {
-    LossModel::learn(Loss::NoLoad, &known.iter().copied())
+    LossModel::learn(Loss::NoLoad, known.to_vec())
 }
 
 #[test]
