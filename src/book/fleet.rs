@@ -46,6 +46,9 @@ const NUMBERS: &[&str] = &[
 const TEXTS: &[&str] =
     &["unit", "profile", "site", "vector_group", "in_service", "winding_metal", "insulation"];
 
+/// The numbers of the profiles by the bytes of their names.
+type Profiles = FxHashMap<Vec<u8>, u32>;
+
 fn column(name: &str) -> Option<&'static Column> {
     Unit::COLUMNS.iter().find(|column| column.name == name)
 }
@@ -56,8 +59,10 @@ impl Book {
     /// # Errors
     /// The store fails.
     pub fn fleet(&self) -> Result<FleetColumns> {
-        let profiles: FxHashMap<String, u32> =
-            (0_u32..).zip(self.profile_names()?).map(|(number, name)| (name, number)).collect();
+        let profiles: Profiles = (0_u32..)
+            .zip(self.profile_names()?)
+            .map(|(number, name)| (name.into_bytes(), number))
+            .collect();
         let ends = "SELECT ifnull(min(id), 0), ifnull(max(id), -1) FROM units";
         let (first, last): (i64, i64) =
             self.connection.query_row(ends, [], |row| Ok((row.get(0)?, row.get(1)?)))?;
@@ -100,7 +105,7 @@ impl Book {
 
 fn read(
     connection: &Connection,
-    profiles: &FxHashMap<String, u32>,
+    profiles: &Profiles,
     range: RangeInclusive<i64>,
     room: usize,
 ) -> Result<FleetColumns> {
@@ -133,11 +138,12 @@ fn read(
             };
             *number = value;
         }
-        let text = |i: usize| match row.get_ref(NUMBERS.len() + i) {
-            Ok(ValueRef::Text(text)) => std::str::from_utf8(text).ok(),
+        let bytes = |i: usize| match row.get_ref(NUMBERS.len() + i) {
+            Ok(ValueRef::Text(text)) => Some(text),
             _ => None,
         };
-        let profile = text(1).and_then(|name| profiles.get(name).copied()).unwrap_or(u32::MAX);
+        let text = |i: usize| bytes(i).and_then(|text| std::str::from_utf8(text).ok());
+        let profile = bytes(1).and_then(|name| profiles.get(name).copied()).unwrap_or(u32::MAX);
         let [
             rated_kva,
             no_load_loss_w,
@@ -173,7 +179,7 @@ fn read(
             rated_kva,
         };
         let facts = UnitFacts {
-            in_service: text(4) != Some("no"),
+            in_service: bytes(4) != Some(b"no"),
             rated_kva,
             loss_base_kva,
             no_load_loss_w,

@@ -196,11 +196,18 @@ impl<'a> Kernel<'a> {
 
     /// First delay at which candidate number `c` of a fit carries the load to the end; none = never.
     /// With `limited` within the loading limit, else as long as its voltage holds.
+    #[inline]
     fn carries_from(&self, place: &Place, fit: &Fit, c: usize, limited: bool) -> Option<usize> {
-        let a = &self.ctx.assumptions;
-        if place.duty.drop.is_none() && (a.loading_limit_pu.is_none() || !limited) {
-            return Some(0);
+        let limit = self.ctx.assumptions.loading_limit_pu;
+        if place.duty.drop.is_none() && (limit.is_none() || !limited) {
+            Some(0)
+        } else {
+            self.found_to_carry(place, fit, c, limited)
         }
+    }
+
+    fn found_to_carry(&self, place: &Place, fit: &Fit, c: usize, limited: bool) -> Option<usize> {
+        let a = &self.ctx.assumptions;
         let candidate = &self.candidates[fit.candidates[c] as usize];
         // A shrinking load is carried from some year on; a growing or level one always or never.
         let last = if place.duty.load_growth_pu < 0.0 { a.years } else { 1 };
@@ -270,7 +277,8 @@ impl<'a> Kernel<'a> {
         }
 
         // J(t) = before(t) + survival(t)·(common(t) + least(t)), with the least kept for now and overall.
-        let own = OldUnit { place, ages, s, forced, payment: &h.payment };
+        let copper_w_per_kva2 = per_kva2(place.losses.load_loss_w, place.losses.rated_kva);
+        let own = OldUnit { place, ages, s, forced, payment: &h.payment, copper_w_per_kva2 };
         let (mut before, mut survival) = (0.0, 1.0);
         let (mut best, mut later) = (f64::INFINITY, f64::INFINITY);
         let (mut now_pv, mut now_offer) = (f64::NAN, Outcome::NONE);
@@ -339,6 +347,7 @@ impl<'a> Kernel<'a> {
 
     /// The series of the drop voltage model: iron at the operating voltage, and copper by the currents of each
     /// transformer, year by year. Slower than the sums that all share at rated voltage.
+    #[cold]
     fn fill_drop(&self, place: &Place, drop: &VoltageDrop, fit: &Fit, s: &mut Series) {
         let (a, d) = (&self.ctx.assumptions, &place.duty);
         for iron in &mut s.iron {
@@ -429,6 +438,8 @@ struct OldUnit<'a> {
     s: &'a Series,
     forced: &'a [f64],
     payment: &'a [f64],
+    /// Load loss over the squared rating.
+    copper_w_per_kva2: f64,
 }
 
 impl OldUnit<'_> {
@@ -437,13 +448,14 @@ impl OldUnit<'_> {
         let l = &self.place.losses;
         let between = |tail: &[f64]| tail[from] - tail[to];
         l.no_load_loss_w * between(&self.s.iron)
-            + per_kva2(l.load_loss_w, l.rated_kva) * between(&self.s.copper)
+            + self.copper_w_per_kva2 * between(&self.s.copper)
             + l.auxiliary_loss_w * between(&self.s.auxiliary)
             + between(&self.ages.upkeep)
     }
 
     /// Brings `before`, the cost up to time `t`, and `survival`, the chance to be alive then, from `t` − 1 to
     /// `t`. Without failures the cost is read off at once.
+    #[inline]
     fn pass(&self, t: usize, before: &mut f64, survival: &mut f64) {
         if !self.ages.fails {
             *before = self.run(0, t);

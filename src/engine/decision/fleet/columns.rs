@@ -229,12 +229,13 @@ impl FleetColumns {
             t.clock.unwrap_or(u8::MAX),
             t.rated_kva.to_bits(),
         );
+        if let Some(kind) = self.kinds.get(&key) {
+            return *kind;
+        }
         let next = u32::try_from(self.terminals.len()).unwrap_or(u32::MAX);
-        let terminals = &mut self.terminals;
-        *self.kinds.entry(key).or_insert_with(|| {
-            terminals.push(t);
-            next
-        })
+        self.terminals.push(t);
+        self.kinds.insert(key, next);
+        next
     }
 }
 
