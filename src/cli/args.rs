@@ -5,6 +5,7 @@ use std::path::PathBuf;
 use clap::builder::{PossibleValuesParser, TypedValueParser};
 use clap::{Parser, Subcommand, ValueEnum};
 
+use crate::engine::transformer::ageing::Paper;
 use crate::exchange::{Decimal, Delimiter, Encoding};
 use crate::study::intake::What;
 
@@ -119,6 +120,9 @@ pub enum Command {
     /// Print the manual page
     Man,
 }
+
+const PAPERS: &[(&str, Paper)] =
+    &[(Paper::Normal.word(), Paper::Normal), (Paper::Upgraded.word(), Paper::Upgraded)];
 
 /// One word of a list, as typed.
 fn one_of<T: Clone + Send + Sync + 'static>(
@@ -326,6 +330,15 @@ pub struct Unit {
     /// Show how each figure comes about, or the one that is named
     #[arg(long, value_name = "FIGURE", num_args = 0..=1, default_missing_value = "")]
     pub working: Option<String>,
+    /// Ambient temperature all year, in °C [default: 20]
+    #[arg(long, value_name = "C", allow_negative_numbers = true)]
+    pub ambient_c: Option<f64>,
+    /// A year of ambient temperatures: a file with timestamp or interval, and ambient_c
+    #[arg(long, value_name = "FILE", conflicts_with = "ambient_c")]
+    pub ambient: Option<PathBuf>,
+    /// Paper of the windings: normal, or thermally upgraded [default: normal]
+    #[arg(long, value_name = "KIND", value_parser = one_of(PAPERS))]
+    pub paper: Option<Paper>,
 }
 
 /// Options of `work`.

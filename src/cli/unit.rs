@@ -1,15 +1,20 @@
 //! `ironhum unit ID`: one unit's dossier.
 
+use std::path::Path;
+
 use super::args::{Args, Format, Unit};
 use super::book::{self, Opened};
 use super::exit::{Exit, Failure};
 use super::factors::working;
 use super::print::{Printer, TextColumn};
 use crate::engine::columns;
+use crate::exchange::{Source, SourceError};
 use crate::study::Desk;
 use crate::study::explain::{Explained as _, Opening};
 use crate::study::figures::group;
 use crate::study::losses::flag_meaning;
+use crate::study::unit::ambient::{self, AmbientYear};
+use crate::study::unit::thermal::{HeatRow, ThermalRow};
 use crate::study::unit::{Dossier, Question};
 
 pub(super) fn unit(args: &Args, options: &Unit, printer: &mut Printer) -> Result<Exit, Failure> {
@@ -17,7 +22,14 @@ pub(super) fn unit(args: &Args, options: &Unit, printer: &mut Printer) -> Result
     let unit = book.unit(&options.unit)?;
     let desk = Desk::read(&book, args.basis.as_deref())?;
     let context = desk.context()?;
-    let question = Question::new(&desk, &context, &unit)?;
+    let mut question = Question::new(&desk, &context, &unit)?;
+    let ambient = options.ambient.as_deref().map(|file| ambient_year(printer, file)).transpose()?;
+    if let Some(year) = &ambient {
+        question.heat.ambient = year.ambient();
+    } else if let Some(ambient_c) = options.ambient_c {
+        question.heat.ambient = ambient::constant(ambient_c)?;
+    }
+    question.heat.paper = options.paper.unwrap_or(question.heat.paper);
     let mut dossier = question.dossier()?;
     let which = match options.working.as_deref() {
         // Present values are taken down to the years, which is long: only where asked for.
@@ -46,6 +58,18 @@ pub(super) fn unit(args: &Args, options: &Unit, printer: &mut Printer) -> Result
         }
     }
     Ok(Exit::Done)
+}
+
+/// Reads a year of ambient temperatures; what is wrong in the file is said as an import says it.
+fn ambient_year(printer: &Printer, file: &Path) -> Result<AmbientYear, Failure> {
+    let failed = |error: SourceError| Failure::new(Exit::Failed, error.to_string());
+    let source = Source::open(file).map_err(failed)?;
+    AmbientYear::read(source).map_err(failed)?.map_err(|problems| {
+        for problem in problems.list() {
+            printer.complain(&problem.to_string());
+        }
+        Failure::new(Exit::Rejected, format!("{}: correct it", file.display()))
+    })
 }
 
 fn text(printer: &mut Printer, d: &Dossier<'_>) -> Result<(), Failure> {
@@ -134,8 +158,55 @@ fn text(printer: &mut Printer, d: &Dossier<'_>) -> Result<(), Failure> {
         ];
         printer.table(&columns, k.years.iter())?;
     }
+    heat(printer, &d.thermal)?;
+    if !d.flags.is_empty() {
+        printer.line("")?;
+    }
     for flag in &d.flags {
         printer.line(format!("! {flag}: {}", flag_meaning(flag).unwrap_or_default()))?;
+    }
+    Ok(())
+}
+
+/// How hot the unit and the best offer get.
+fn heat(printer: &mut Printer, t: &ThermalRow) -> Result<(), Failure> {
+    printer.line("")?;
+    printer.line(format!("Heat, {} ambient, {} paper:", t.ambient, t.paper))?;
+    let line = |row: &HeatRow| {
+        let name = row.offer.as_deref().unwrap_or("the unit");
+        let held = format!(
+            "  {name} ({}): at its peak held for good top oil {} °C, hot spot {} °C",
+            row.cooling_mode,
+            group(row.steady_top_oil_c, 0),
+            group(row.steady_hot_spot_c, 0)
+        );
+        let Some(year) = &row.year else { return held + "." };
+        format!(
+            "{held};\n    hottest in hour {}: hot spot {} °C, top oil up to {} °C; above {} °C hot spot {} h, above {} °C top oil {} h;\n    life used in the year {} h of {} h at rated ageing.",
+            year.hottest_hour,
+            group(year.hottest_hot_spot_c, 0),
+            group(year.hottest_top_oil_c, 0),
+            group(t.hot_spot_limit_c, 0),
+            group(year.hours_above_hot_spot, 0),
+            group(t.top_oil_limit_c, 0),
+            group(year.hours_above_top_oil, 0),
+            group(year.life_used_hours, 0),
+            group(year.hours, 0)
+        )
+    };
+    for row in [&t.own, &t.replacement].into_iter().flatten() {
+        for line in line(row).lines() {
+            printer.line(line)?;
+        }
+    }
+    if let Some(why) = &t.why {
+        printer.line(format!("  {why}"))?;
+    }
+    if t.own.is_none() {
+        return Ok(());
+    }
+    for note in t.notes.iter().map(String::as_str).chain(t.cautions.iter().copied()) {
+        printer.line(format!("  ({note})"))?;
     }
     Ok(())
 }

@@ -1,7 +1,11 @@
 //! One unit's dossier: nameplate, loading, losses, and why it ranks where it does. [`Question`] answers; its
 //! figures are opened in `workings`.
 
+pub mod ambient;
+pub mod thermal;
 mod workings;
+
+pub use thermal::Heat;
 
 use serde::Serialize;
 use serde_json::{Map, Value};
@@ -20,6 +24,7 @@ use crate::engine::transformer::{efficiency, regulation};
 use crate::engine::working::{Recorder, Silent};
 use crate::study::explain::FigureWorking;
 use crate::study::losses::{LossesRow, of_unit};
+use crate::study::unit::thermal::ThermalRow;
 use crate::study::{Desk, StudyError};
 
 /// A unit under a basis: what a dossier is asked about.
@@ -33,6 +38,8 @@ pub struct Question<'a> {
     pub index: usize,
     /// Its record.
     pub unit: &'a Unit,
+    /// Under what it is judged thermally.
+    pub heat: Heat<'a>,
 }
 
 /// Keep or replace, one unit, as it is written in JSON.
@@ -177,6 +184,7 @@ pub struct Dossier<'a> {
     pub loading: Option<LoadingRow>,
     pub losses: Option<LossesRow<'a>>,
     pub keep_or_replace: Option<KeepOrReplace<'a>>,
+    pub thermal: ThermalRow,
     /// Why it cannot be ranked.
     pub left_out: Option<&'static str>,
     pub flags: Vec<&'static str>,
@@ -195,7 +203,7 @@ impl<'a> Question<'a> {
     pub fn new(desk: &'a Desk, context: &'a Context, unit: &'a Unit) -> Result<Self, StudyError> {
         let index = desk.find(&unit.unit);
         let index = index.ok_or_else(|| StudyError::unknown("unit", &unit.unit, "the book", []))?;
-        Ok(Self { desk, context, index, unit })
+        Ok(Self { desk, context, index, unit, heat: Heat::default() })
     }
 
     fn facts(&self) -> UnitFacts {
@@ -268,6 +276,7 @@ impl<'a> Question<'a> {
             }),
             losses: of_unit(self.desk, self.context, self.index).ok(),
             left_out: decided.as_ref().err().map(|why| why.why()),
+            thermal: self.thermal(place.as_ref().ok(), decided.as_ref().ok().map(|(_, d)| d)),
             keep_or_replace: decided.ok().map(|(place, d)| self.keep_or_replace(&place, &d)),
             flags: flags.keys(),
             working: Vec::new(),

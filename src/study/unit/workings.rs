@@ -19,7 +19,17 @@ use crate::study::explain::{Explained, numbers};
 /// Parts of a dossier that hold no figures: what the record says, and workings themselves.
 const NO_FIGURES: &[&str] = &["nameplate", "working"];
 /// Numbers that name a line instead of being computed.
-const LABELS: &[&str] = &["load_pu", "offset", "year"];
+const LABELS: &[&str] = &[
+    "load_pu",
+    "offset",
+    "year",
+    "hottest_interval",
+    "hottest_hour",
+    "hours",
+    "ambient_c",
+    "hot_spot_limit_c",
+    "top_oil_limit_c",
+];
 
 /// How the losses at the rating come about.
 const OF_LOSSES: &[&str] = &["P0", "Pk_base", "Pk"];
@@ -62,6 +72,14 @@ impl Explained for Question<'_> {
             }
             ["loading", quantity] => self.loading(w, quantity)?,
             ["losses", quantity] => self.year_1(w, quantity)?,
+            ["thermal", "own", quantity] => {
+                let place = self.told(w, OF_LOSSES)?;
+                self.thermal_figure(w, &place, None, quantity)?;
+            }
+            ["thermal", "replacement", quantity] => {
+                let (place, decision) = self.decided()?;
+                self.thermal_figure(w, &place, Self::heat_choice(&decision), quantity)?;
+            }
             ["keep_or_replace", "years", n, "pv"] => {
                 let (place, decision) = self.decided()?;
                 let n = n.parse().ok().and_then(|n: usize| decision.years.get(n).copied());
@@ -209,6 +227,33 @@ impl Question<'_> {
             }
             _ => self.loading(w, quantity)?,
         }
+        Ok(())
+    }
+
+    /// A figure of how hot a transformer gets.
+    fn thermal_figure(
+        &self,
+        w: &mut Working,
+        place: &Place,
+        choice: Option<YearChoice>,
+        quantity: &str,
+    ) -> Result<(), Refusal> {
+        let mut all = Working::default();
+        self.state_heat(&mut all, place, choice, quantity)?;
+        w.append(match quantity {
+            "hottest_hot_spot_c" => all.only(&["θh_max"]),
+            "hottest_top_oil_c" => all.only(&["θo_max"]),
+            "hours_above_hot_spot" => all.only(&["t_hot"]),
+            "hours_above_top_oil" => all.only(&["t_oil"]),
+            "life_used_hours" => all.only(&["L"]),
+            "life_used_pu" => all.only(&["L", "L_pu"]),
+            // The steady hot spot is stated from the top oil.
+            "steady_top_oil_c" => {
+                let steps = all.into_steps().into_iter().flat_map(|step| step.steps);
+                steps.filter(|step| step.formula.symbol == "θo").collect()
+            }
+            _ => all.into_steps(),
+        });
         Ok(())
     }
 

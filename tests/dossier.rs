@@ -1,0 +1,102 @@
+//! The dossier of a unit from outside: heat, fit and law, through the program.
+
+mod support;
+
+use serde_json::Value;
+use support::Program;
+
+const BASIS: &str = r#"
+name = "b"
+currency = "EUR"
+first_year = 2026
+horizon_years = 10
+discount_rate_pct = 5
+energy_price_per_kwh = 0.1
+capital_recovery = "full"
+"#;
+
+/// Two units of one load: liquid and dry; an offer for them.
+fn small() -> Program {
+    let program = Program::new();
+    let hours = |n: usize| if (6..18).contains(&(n % 24)) { 100 } else { 40 };
+    let steps = (0..8760).map(|n| format!("{},{}", n + 1, hours(n)));
+    let profile = format!("interval,day\n{}\n", steps.collect::<Vec<_>>().join("\n"));
+    let profile = program.write("profile.csv", profile);
+    let units = program.write(
+        "units.csv",
+        "unit,phases,rated_kva,hv_kv,lv_kv,vector_group,cooling,insulation,impedance_pct,\
+         no_load_loss_w,load_loss_w,peak_kva,profile\n\
+         W1,3,400,20,0.4,Dyn5,ONAN,liquid,4,800,4000,380,day\n\
+         D1,3,400,20,0.4,Dyn5,AN,dry,6,900,4400,380,day\n",
+    );
+    let offers = program.write(
+        "offers.csv",
+        "offer,rated_kva,phases,hv_kv,lv_kv,vector_group,cooling,insulation,impedance_pct,\
+         no_load_loss_w,load_loss_w,price\n\
+         L630,630,3,20,0.4,Dyn5,ONAN,liquid,4,600,4600,9000\n",
+    );
+    program.import("profiles", &profile, &[]);
+    program.import("units", &units, &[]);
+    program.import("offers", &offers, &[]);
+    program.import("basis", &program.write("basis.toml", BASIS), &[]);
+    program
+}
+
+fn number(value: &Value, pointer: &str) -> f64 {
+    value.pointer(pointer).and_then(Value::as_f64).unwrap_or_else(|| panic!("{pointer}"))
+}
+
+#[test]
+fn heat_of_a_unit_and_of_its_replacement() {
+    let program = small();
+    let dossier = program.json(&["unit", "W1", "--format", "json"]);
+    // IEC 60076-7, distribution ONAN (constants text, rises memory), R = 4000/800: 20 + 55·((1 + 5·0.95²)/6)^0.8
+    // and 1.1·23·0.95^1.6 above it.
+    let oil = 20.0 + 55.0 * ((1.0_f64 + 5.0 * 0.95 * 0.95) / 6.0).powf(0.8);
+    let hot = oil + 1.1 * 23.0 * 0.95_f64.powf(1.6);
+    assert!((number(&dossier, "/thermal/own/steady_top_oil_c") - oil).abs() < 1e-9);
+    assert!((number(&dossier, "/thermal/own/steady_hot_spot_c") - hot).abs() < 1e-9);
+    // Twelve hours at the peak end below the steady state, the last of them is the hottest.
+    let hottest = number(&dossier, "/thermal/own/hottest_hot_spot_c");
+    assert!(hottest < hot && hottest > hot - 3.0, "{hottest} {hot}");
+    assert_eq!(number(&dossier, "/thermal/own/hottest_hour") % 24.0, 18.0);
+    let replaced = number(&dossier, "/thermal/replacement/hottest_hot_spot_c");
+    assert!(replaced < hottest - 20.0, "a larger unit under the same load stays cooler");
+    assert_eq!(dossier["thermal"]["replacement"]["offer"], "L630");
+
+    // All temperatures move with a constant ambient; the hot-spot limit is passed at the end.
+    let warm = program.json(&["unit", "W1", "--ambient-c", "50", "--format", "json"]);
+    assert!((number(&warm, "/thermal/own/hottest_hot_spot_c") - hottest - 30.0).abs() < 1e-9);
+    assert_eq!(number(&dossier, "/thermal/own/hours_above_hot_spot"), 0.0);
+    assert!(number(&warm, "/thermal/own/hours_above_hot_spot") > 365.0);
+    // Paper that is not upgraded doubles its ageing every 6 K.
+    let life = |d: &Value| number(d, "/thermal/own/life_used_hours");
+    assert!((life(&warm) / life(&dossier) / (30.0_f64 / 6.0).exp2() - 1.0).abs() < 1e-9);
+
+    // The same constant as a file says the same; a shorter year is asked back.
+    let year = |n: usize| {
+        let rows = (0..n).map(|k| format!("{},50", k + 1)).collect::<Vec<_>>().join("\n");
+        format!("interval,ambient_c\n{rows}\n")
+    };
+    let file = program.write("air.csv", year(8760));
+    let file = file.to_string_lossy();
+    let filed = program.json(&["unit", "W1", "--ambient", &file, "--format", "json"]);
+    assert_eq!(life(&filed), life(&warm));
+    let other = program.write("quarters.csv", year(35040));
+    let other =
+        program.json(&["unit", "W1", "--ambient", &other.to_string_lossy(), "--format", "json"]);
+    let why = other["thermal"]["why"].as_str().expect("says why");
+    assert!(why.contains("35040 steps of 15 min") && why.contains("day has 8760"), "{why}");
+    let hot = program.write("hot.csv", "interval,ambient_c\n1,900\n");
+    let output = program.run(&["unit", "W1", "--ambient", &hot.to_string_lossy()]);
+    assert_eq!(output.status.code(), Some(3));
+}
+
+#[test]
+fn dry_units_have_no_thermal_dossier() {
+    let program = small();
+    let dossier = program.json(&["unit", "D1", "--format", "json"]);
+    assert_eq!(dossier["thermal"]["own"], Value::Null);
+    let why = dossier["thermal"]["why"].as_str().expect("says why");
+    assert!(why.contains("liquid-immersed units only") && why.contains("IEC 60076-12"), "{why}");
+}
