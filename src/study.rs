@@ -7,6 +7,7 @@
 pub mod check;
 pub mod desk;
 pub mod error;
+pub mod estimate;
 pub mod explain;
 pub mod factors;
 pub mod figures;

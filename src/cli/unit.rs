@@ -10,6 +10,7 @@ use super::print::{Printer, TextColumn};
 use crate::engine::columns;
 use crate::exchange::{Source, SourceError};
 use crate::study::Desk;
+use crate::study::estimate::EstimatedRow;
 use crate::study::explain::{Explained as _, Opening};
 use crate::study::figures::group;
 use crate::study::losses::flag_meaning;
@@ -110,6 +111,20 @@ fn text(printer: &mut Printer, d: &Dossier<'_>) -> Result<(), Failure> {
             column("regulation_pct", "regulation", "%", 3),
         ];
         printer.table(&columns, d.load_points.iter())?;
+    }
+    for (name, loss) in d.estimated.iter().flat_map(EstimatedRow::losses) {
+        printer.line(format!(
+            "Estimated {name}: {} W, with 95 % between {} and {} W; from {} units by {}{}.",
+            group(loss.estimate_w, 0),
+            group(loss.low_w, 0),
+            group(loss.high_w, 0),
+            loss.known_units,
+            loss.terms.join(", "),
+            match loss.units_set_aside {
+                0 => String::new(),
+                aside => format!(", {aside} set aside as misread"),
+            }
+        ))?;
     }
     if let Some(l) = &d.losses {
         printer.line("")?;

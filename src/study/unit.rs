@@ -22,6 +22,7 @@ use crate::engine::transformer::circuit::{
 use crate::engine::transformer::losses::Losses;
 use crate::engine::transformer::{efficiency, regulation};
 use crate::engine::working::{Recorder, Silent};
+use crate::study::estimate::EstimatedRow;
 use crate::study::explain::FigureWorking;
 use crate::study::losses::{LossesRow, of_unit};
 use crate::study::unit::thermal::ThermalRow;
@@ -183,6 +184,8 @@ pub struct Dossier<'a> {
     pub best_load_pu: Option<f64>,
     pub loading: Option<LoadingRow>,
     pub losses: Option<LossesRow<'a>>,
+    /// The losses that its nameplate leaves blank.
+    pub estimated: Option<EstimatedRow>,
     pub keep_or_replace: Option<KeepOrReplace<'a>>,
     pub thermal: ThermalRow,
     /// Why it cannot be ranked.
@@ -275,6 +278,7 @@ impl<'a> Question<'a> {
                 load_price_per_kwh: place.duty.load_price_per_kwh,
             }),
             losses: of_unit(self.desk, self.context, self.index).ok(),
+            estimated: EstimatedRow::of(self.context, &self.facts()),
             left_out: decided.as_ref().err().map(|why| why.why()),
             thermal: self.thermal(place.as_ref().ok(), decided.as_ref().ok().map(|(_, d)| d)),
             keep_or_replace: decided.ok().map(|(place, d)| self.keep_or_replace(&place, &d)),
