@@ -4,7 +4,7 @@
 mod support;
 
 use ironhum::book::{Access, Book};
-use ironhum::engine::columns::FactorMethod;
+use ironhum::engine::columns::{CapitalRecovery, CashFlow, FactorMethod};
 use ironhum::study::Desk;
 use ironhum::study::explain::{Explained, Opening, StepRow};
 use ironhum::study::factors::{self, LoadAsked};
@@ -40,21 +40,44 @@ fn walk(result: &impl Explained) -> usize {
     figures.len()
 }
 
+/// Opens every figure of the units of a desk, each `step`-th; how many figures, units and ranked units there are.
+fn walk_units(book: &Book, desk: &Desk, step: usize) -> (usize, usize, usize) {
+    let context = desk.context().expect("a sound basis");
+    let (mut figures, mut units, mut ranked) = (0, 0, 0);
+    for i in (0..desk.fleet.len()).step_by(step) {
+        let unit = book.unit(desk.fleet.unit.get(i)).expect("is in the book");
+        let question = Question::new(desk, &context, &unit).expect("is on the desk");
+        figures += walk(&question);
+        units += 1;
+        ranked += usize::from(question.dossier().expect("is told").keep_or_replace.is_some());
+    }
+    (figures, units, ranked)
+}
+
 #[test]
 fn every_figure_of_every_unit_opens() {
     let (_program, book) = demo();
     let desk = Desk::read(&book, None).expect("a desk");
-    let context = desk.context().expect("a sound basis");
-    let (mut walked, mut ranked) = (0, 0);
-    for i in 0..desk.fleet.len() {
-        let unit = book.unit(desk.fleet.unit.get(i)).expect("is in the book");
-        let question = Question::new(&desk, &context, &unit).expect("is on the desk");
-        let dossier = question.dossier().expect("can be told");
-        walked += walk(&question);
-        ranked += usize::from(dossier.keep_or_replace.is_some());
-    }
-    assert!(ranked > 100 && ranked < desk.fleet.len(), "ranked and left-out units are walked");
-    assert!(walked > 50 * ranked, "{walked} figures");
+    let (figures, units, ranked) = walk_units(&book, &desk, 1);
+    assert!(ranked > 100 && ranked < units, "ranked and left-out units are walked");
+    assert!(figures > 50 * ranked, "{figures} figures");
+}
+
+/// Other rules: no failures, money at year ends, purchases charged whole, a law, nothing estimated.
+#[test]
+fn figures_open_under_another_basis() {
+    let (_program, book) = demo();
+    let desk = Desk::read(&book, None).expect("a desk");
+    let mut sheet = desk.sheet.clone();
+    let basis = &mut sheet.basis;
+    (basis.failure_shape, basis.failure_scale_years) = (None, None);
+    basis.cash_flow = Some(CashFlow::YearEnd);
+    basis.capital_recovery = Some(CapitalRecovery::Full);
+    basis.law = Some("eu-548-2014".to_owned());
+    basis.estimate_missing = Some(false);
+    basis.upkeep_per_year = None;
+    let (figures, units, ranked) = walk_units(&book, &desk.with_basis(sheet), 5);
+    assert!(ranked > 20 && ranked < units && figures > 50 * ranked, "{figures} of {units}");
 }
 
 #[test]

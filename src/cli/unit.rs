@@ -13,6 +13,7 @@ use crate::study::Desk;
 use crate::study::estimate::EstimatedRow;
 use crate::study::explain::{Explained as _, Opening};
 use crate::study::figures::group;
+use crate::study::law::VerdictRow;
 use crate::study::losses::flag_meaning;
 use crate::study::unit::ambient::{self, AmbientYear};
 use crate::study::unit::thermal::{HeatRow, ThermalRow};
@@ -174,11 +175,45 @@ fn text(printer: &mut Printer, d: &Dossier<'_>) -> Result<(), Failure> {
         printer.table(&columns, k.years.iter())?;
     }
     heat(printer, &d.thermal)?;
+    if let Some(law) = &d.law {
+        printer.line("")?;
+        verdict(printer, "Were it bought", law)?;
+    }
     if !d.flags.is_empty() {
         printer.line("")?;
     }
     for flag in &d.flags {
         printer.line(format!("! {flag}: {}", flag_meaning(flag).unwrap_or_default()))?;
+    }
+    Ok(())
+}
+
+/// What a law says.
+fn verdict(printer: &mut Printer, were: &str, v: &VerdictRow) -> Result<(), Failure> {
+    let meets = match v.meets {
+        Some(true) => "is met",
+        Some(false) => "is not met",
+        None => "cannot be told",
+    };
+    let why = if v.why.is_empty() { String::new() } else { format!(": {}", v.why) };
+    printer.line(format!("{were} on {}: law {} {meets}{why}.", v.on, v.law))?;
+    for limit in &v.limits {
+        printer.line(format!(
+            "  {} {} {} {}: {} ({})",
+            limit.quantity,
+            group(limit.value, 3),
+            limit.bound,
+            group(limit.limit, 3),
+            if limit.meets { "kept" } else { "missed" },
+            limit.source
+        ))?;
+    }
+    for note in &v.notes {
+        printer.line(format!("  ({note})"))?;
+    }
+    if v.verify {
+        printer
+            .line("  ! verify: the law is stated from memory; look it up in the official text")?;
     }
     Ok(())
 }

@@ -7,15 +7,19 @@ mod workings;
 
 pub use thermal::Heat;
 
+use chrono::NaiveDate;
 use serde::Serialize;
 use serde_json::{Map, Value};
 
+use crate::engine::Refusal;
 use crate::engine::columns::{Column, Unit, Value as Cell};
+use crate::engine::decision::estimate::End;
 use crate::engine::decision::fit::fitting;
 use crate::engine::decision::keep_or_replace::{Decision, FirstYear, YearChoice, decide};
 use crate::engine::decision::parts::{PolicyCost, of_choice};
-use crate::engine::decision::place::{Place, power_factor, resolve};
+use crate::engine::decision::place::{Place, losses, power_factor, resolve};
 use crate::engine::decision::{Context, LeftOut, UnitFacts};
+use crate::engine::law::{self, Subject, Verdict};
 use crate::engine::transformer::circuit::{
     Circuit, Magnetising, PowerFactor, magnetising, of_nameplate,
 };
@@ -24,6 +28,7 @@ use crate::engine::transformer::{efficiency, regulation};
 use crate::engine::working::{Recorder, Silent};
 use crate::study::estimate::EstimatedRow;
 use crate::study::explain::FigureWorking;
+use crate::study::law::VerdictRow;
 use crate::study::losses::{LossesRow, of_unit};
 use crate::study::unit::thermal::ThermalRow;
 use crate::study::{Desk, StudyError};
@@ -188,6 +193,8 @@ pub struct Dossier<'a> {
     pub estimated: Option<EstimatedRow>,
     pub keep_or_replace: Option<KeepOrReplace<'a>>,
     pub thermal: ThermalRow,
+    /// The law that the basis names, were the unit bought in the first year.
+    pub law: Option<VerdictRow>,
     /// Why it cannot be ranked.
     pub left_out: Option<&'static str>,
     pub flags: Vec<&'static str>,
@@ -217,6 +224,21 @@ impl<'a> Question<'a> {
         resolve(w, &self.facts(), self.context)
     }
 
+    /// Its losses at its rating: also of a unit whose load is not known.
+    fn losses<R: Recorder>(&self, w: &mut R) -> Result<Losses, LeftOut> {
+        losses(w, &self.facts(), self.context, End::Middle)
+    }
+
+    /// What the law that the basis names says of it, were it bought in the first year; none where it names none or
+    /// its losses are not known.
+    fn verdict(&self) -> Result<Option<(Verdict, NaiveDate)>, Refusal> {
+        let a = &self.context.assumptions;
+        let (Some(law), Ok(losses)) = (&a.law, self.losses(&mut Silent)) else { return Ok(None) };
+        let subject = Subject::of_unit(self.unit, &losses, a.stray_share_pu);
+        let Some(on) = law::at_start_of(a.first_year) else { return Ok(None) };
+        Ok(Some((law::check(law, &subject, on)?, on)))
+    }
+
     fn circuit<R: Recorder>(&self, w: &mut R, losses: &Losses) -> Option<Circuit> {
         of_nameplate(w, losses.rated_kva, losses.load_loss_w, self.unit.impedance_pct?).ok()
     }
@@ -234,14 +256,14 @@ impl<'a> Question<'a> {
         let a = &self.context.assumptions;
         let w = &mut Silent;
         let place = self.place(w);
-        let losses = place.as_ref().ok().map(|place| place.losses);
+        let own = self.losses(w).ok();
         let power_factor = power_factor(w, &self.facts());
-        let circuit = losses.and_then(|l| self.circuit(w, &l));
-        let magnetised = losses.and_then(|l| self.magnetising(w, &l));
+        let circuit = own.and_then(|l| self.circuit(w, &l));
+        let magnetised = own.and_then(|l| self.magnetising(w, &l));
         let pf = PowerFactor::lagging(power_factor)?;
         let load_points = LOADS.map(|load_pu| LoadPoint {
             load_pu,
-            efficiency_pct: losses
+            efficiency_pct: own
                 .and_then(|l| efficiency::at_load_pct(&mut Silent, &l, load_pu, power_factor).ok()),
             regulation_pct: circuit.map(|c| regulation::exact_pct(&mut Silent, &c, load_pu, pf)),
         });
@@ -265,7 +287,7 @@ impl<'a> Question<'a> {
             }),
             power_factor,
             load_points: load_points.to_vec(),
-            best_load_pu: losses.and_then(|l| efficiency::best_load(w, &l).ok()),
+            best_load_pu: own.and_then(|l| efficiency::best_load(w, &l).ok()),
             loading: place.as_ref().ok().map(|place| LoadingRow {
                 peak_kva: place.duty.peak_kva,
                 peak_pu: place.duty.peak_pu(w, place.losses.rated_kva),
@@ -281,6 +303,7 @@ impl<'a> Question<'a> {
             estimated: EstimatedRow::of(self.context, &self.facts()),
             left_out: decided.as_ref().err().map(|why| why.why()),
             thermal: self.thermal(place.as_ref().ok(), decided.as_ref().ok().map(|(_, d)| d)),
+            law: self.verdict()?.map(|(verdict, on)| VerdictRow::of(&verdict, on)),
             keep_or_replace: decided.ok().map(|(place, d)| self.keep_or_replace(&place, &d)),
             flags: flags.keys(),
             working: Vec::new(),

@@ -9,11 +9,11 @@ use crate::engine::decision::tender::factors::{Computed, of_lot};
 use crate::engine::decision::tender::{Terms, legal};
 use crate::engine::economics::loss_factors::LossFactors;
 use crate::engine::flags::Flags;
-use crate::engine::law::Bound;
 use crate::engine::working::Silent;
 use crate::study::StudyError;
 use crate::study::explain::StepRow;
 use crate::study::factors::{OtherMethod, differs};
+use crate::study::law::bound;
 
 /// The factors of a lot in the tender currency.
 #[derive(Clone, Debug, PartialEq, Serialize)]
@@ -170,10 +170,7 @@ fn floor(terms: &Terms) -> Result<Vec<LegalLimit>, StudyError> {
         }
         limits.extend(verdict.limits.iter().map(|limit| LegalLimit {
             quantity: Some(limit.quantity),
-            bound: Some(match limit.bound {
-                Bound::Max => "at most",
-                Bound::Min => "at least",
-            }),
+            bound: Some(bound(limit.bound)),
             limit: Some(limit.limit),
             source: limit.source.clone(),
             ..row.clone()

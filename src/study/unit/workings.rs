@@ -15,11 +15,14 @@ use crate::engine::transformer::{efficiency, regulation};
 use crate::engine::working::{Step, Working};
 use crate::study::StudyError;
 use crate::study::explain::{Explained, numbers};
+use crate::study::law;
 
 /// Parts of a dossier that hold no figures: what the record says, and workings themselves.
 const NO_FIGURES: &[&str] = &["nameplate", "working"];
 /// Numbers that name a line instead of being computed.
 const LABELS: &[&str] = &[
+    "known_units",
+    "units_set_aside",
     "load_pu",
     "offset",
     "year",
@@ -32,9 +35,10 @@ const LABELS: &[&str] = &[
 ];
 
 /// How the losses at the rating come about.
-const OF_LOSSES: &[&str] = &["P0", "Pk_base", "Pk"];
+const OF_LOSSES: &[&str] = &["P_est", "P0", "Pk_base", "Pk"];
 /// What a present value is told: load, prices, and what failure and removal cost.
 const OF_VALUE: &[&str] = &[
+    "P_est",
     "P0",
     "Pk_base",
     "Pk",
@@ -72,6 +76,12 @@ impl Explained for Question<'_> {
             }
             ["loading", quantity] => self.loading(w, quantity)?,
             ["losses", quantity] => self.year_1(w, quantity)?,
+            ["law", "limits", n, side] => {
+                if let Some((verdict, _)) = self.verdict()? {
+                    law::state(w, verdict, n, side);
+                }
+            }
+            ["estimated", loss, quantity] => self.estimated(w, loss, quantity)?,
             ["thermal", "own", quantity] => {
                 let place = self.told(w, OF_LOSSES)?;
                 self.thermal_figure(w, &place, None, quantity)?;
@@ -107,7 +117,7 @@ impl Question<'_> {
 
     /// Circuit, efficiency and regulation.
     fn nameplate(&self, w: &mut Working, path: &[&str]) -> Result<(), Refusal> {
-        let losses = self.told(w, OF_LOSSES)?.losses;
+        let losses = self.losses(w).map_err(|why| self.refused(why))?;
         let (rated_kva, p0, pk) = (losses.rated_kva, losses.no_load_loss_w, losses.load_loss_w);
         let load = |n: &str| n.parse().ok().and_then(|n: usize| LOADS.get(n)).copied();
         match path {
@@ -227,6 +237,22 @@ impl Question<'_> {
             }
             _ => self.loading(w, quantity)?,
         }
+        Ok(())
+    }
+
+    /// A loss that the nameplate leaves blank.
+    fn estimated(&self, w: &mut Working, loss: &str, quantity: &str) -> Result<(), Refusal> {
+        let mut all = Working::default();
+        if let Some(estimate) = &self.context.estimate {
+            estimate.missing(&mut all, &self.facts()).map_err(|why| self.refused(why))?;
+        }
+        let of = if loss == "load_loss_w" { "load loss" } else { "no-load loss" };
+        let symbols: &[&str] = match quantity {
+            "estimate_w" => &["P_est"],
+            "low_w" => &["P_est", "P_low"],
+            _ => &["P_est", "P_high"],
+        };
+        w.append(all.only(symbols).into_iter().filter(|step| step.of.starts_with(of)));
         Ok(())
     }
 
