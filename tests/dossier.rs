@@ -100,3 +100,71 @@ fn dry_units_have_no_thermal_dossier() {
     let why = dossier["thermal"]["why"].as_str().expect("says why");
     assert!(why.contains("liquid-immersed units only") && why.contains("IEC 60076-12"), "{why}");
 }
+
+/// By hand: 400 kVA at 4 % is 10 MVA, at 4 % 630 kVA is 15.75 MVA; shares of a load go with S/z where R/X is equal.
+#[test]
+fn fit_of_an_offer_beside_another_unit() {
+    let program = small();
+    let fit = |more: &[&str]| {
+        let all = [&["unit", "W1", "--fit", "L630", "--format", "json"], more].concat();
+        program.json(&all)["fit"].clone()
+    };
+    let alone = fit(&[]);
+    assert_eq!(alone["fits"], true);
+    assert_eq!(
+        (&alone["misses"], &alone["unknown"]),
+        (&serde_json::json!([]), &serde_json::json!([]))
+    );
+    assert!((number(&alone, "/fault_level_mva") - 0.63 / 0.04).abs() < 1e-9);
+    let ampere = 1e6 * 0.63 / 0.04 / (3.0_f64.sqrt() * 400.0);
+    assert!((number(&alone, "/fault_current_a") / ampere - 1.0).abs() < 1e-12);
+    assert!((number(&alone, "/peak_pu") - 380.0 / 630.0).abs() < 1e-12);
+    // β·(R·cosφ + X·sinφ) to first order, at power factor 0.9.
+    let (r, z) = (4600.0 / 630_000.0, 0.04_f64);
+    let x = (z * z - r * r).sqrt();
+    let first = 38_000.0 / 630.0 * (r * 0.9 + x * 0.19_f64.sqrt());
+    assert!((number(&alone, "/regulation_pct") - first).abs() < 0.05);
+
+    let beside = fit(&["--beside", "W1", "--network-mva", "100", "--fault-limit-mva", "20"]);
+    let level = 1.0 / (1.0 / (15.75 + 10.0) + 0.01);
+    assert!((number(&beside, "/fault_level_mva") / level - 1.0).abs() < 1e-12);
+    assert_eq!(
+        (&beside["within_fault_limit"], &beside["misses"][0]),
+        (&Value::Bool(false), &Value::from("fault_limit_mva"))
+    );
+    assert_eq!(number(&beside, "/beside/load_kva"), 760.0);
+    assert_eq!(number(&beside, "/beside/impedance_difference_pct"), 0.0);
+    // Equal impedances on own ratings: both at nearly the same loading; their R/X differs a little.
+    let (own, other) =
+        (number(&beside, "/beside/loading_pu"), number(&beside, "/beside/beside_loading_pu"));
+    assert!((own - 760.0 / 1030.0).abs() < 2e-3 && (other - 760.0 / 1030.0).abs() < 2e-3);
+    assert_eq!(number(&beside, "/beside/circulating_pu"), 0.0);
+
+    let dry = fit(&["--beside", "D1"]);
+    assert_eq!(dry["misses"], serde_json::json!(["impedance_beside"]));
+    let unknown = program.run(&["unit", "W1", "--fit", "L63"]);
+    assert!(String::from_utf8_lossy(&unknown.stderr).contains("did you mean L630?"));
+}
+
+/// Table I.1 of Regulation (EU) 548/2014, tier 2: 400 kVA 387 W and 3 250 W, 630 kVA 540 W and 4 600 W
+/// (reference/eu_548_2014_table_I1_liquid_le3150kva.csv).
+#[test]
+fn the_law_in_the_dossier() {
+    let program = small();
+    let lawful = BASIS.replace("name = \"b\"", "name = \"lawful\"\nlaw = \"eu-548-2014\"");
+    program.import("basis", &program.write("lawful.toml", lawful), &[]);
+    let dossier =
+        program.json(&["unit", "W1", "--fit", "L630", "--basis", "lawful", "--format", "json"]);
+    let law = &dossier["law"];
+    assert_eq!((law["meets"].as_bool(), law["on"].as_str()), (Some(false), Some("2026-01-01")));
+    assert_eq!((number(law, "/limits/0/limit"), number(law, "/limits/1/limit")), (387.0, 3250.0));
+    assert_eq!((number(law, "/limits/0/value"), number(law, "/limits/1/value")), (800.0, 4000.0));
+    let offered = &dossier["fit"]["law"];
+    assert_eq!(offered["limits"][0]["meets"], false, "600 W of iron against 540 W");
+    assert_eq!(offered["limits"][1]["meets"], true, "4 600 W of copper equals the limit");
+    assert_eq!(dossier["fit"]["misses"], serde_json::json!(["law"]));
+    assert_eq!(
+        program.json(&["unit", "W1", "--basis", "b", "--format", "json"])["law"],
+        Value::Null
+    );
+}

@@ -10,7 +10,7 @@ use ironhum::study::explain::{Explained, Opening, StepRow};
 use ironhum::study::factors::{self, LoadAsked};
 use ironhum::study::settle::Settled;
 use ironhum::study::tender::Case;
-use ironhum::study::unit::Question;
+use ironhum::study::unit::{FitAsked, Question};
 use support::Program;
 
 fn demo() -> (Program, Book) {
@@ -78,6 +78,29 @@ fn figures_open_under_another_basis() {
     basis.upkeep_per_year = None;
     let (figures, units, ranked) = walk_units(&book, &desk.with_basis(sheet), 5);
     assert!(ranked > 20 && ranked < units && figures > 50 * ranked, "{figures} of {units}");
+}
+
+/// An offer and a bid fitted to a place, beside another unit.
+#[test]
+fn every_figure_of_a_fit_opens() {
+    let (_program, book) = demo();
+    let desk = Desk::read(&book, None).expect("a desk");
+    let mut sheet = desk.sheet.clone();
+    sheet.basis.law = Some("eu-548-2014".to_owned());
+    let desk = desk.with_basis(sheet);
+    let context = desk.context().expect("a sound basis");
+    let unit = book.unit("FE-0138").expect("is in the book");
+    let tender = book.tender("ol-2027-1").expect("is in the book");
+    let offer = FitAsked::of_offer(desk.offer("L630").expect("is in the book"));
+    let bid = FitAsked::of_bid(&tender, "L1", "O1");
+    for mut asked in [offer.expect("sound"), bid.expect("sound")] {
+        asked.beside = Some(book.unit("FE-0113").expect("is in the book"));
+        asked.network_mva = Some(250.0);
+        let mut question = Question::new(&desk, &context, &unit).expect("is on the desk");
+        let before = question.figures().expect("is told").len();
+        question.fit = Some(&asked);
+        assert!(walk(&question) > before + 20, "the fit has figures of its own");
+    }
 }
 
 #[test]

@@ -324,6 +324,8 @@ pub struct Settle {
 
 /// Options of `unit`.
 #[derive(Clone, Debug, clap::Args)]
+#[command(group = clap::ArgGroup::new("fitted").args(["fit", "fit_bid"]))]
+#[expect(clippy::struct_field_names, reason = "the words that are typed")]
 pub struct Unit {
     /// The unit
     pub unit: String,
@@ -339,6 +341,21 @@ pub struct Unit {
     /// Paper of the windings: normal, or thermally upgraded [default: normal]
     #[arg(long, value_name = "KIND", value_parser = one_of(PAPERS))]
     pub paper: Option<Paper>,
+    /// Say how an offer fits its place: terminals, load, fault level, law
+    #[arg(long, value_name = "OFFER")]
+    pub fit: Option<String>,
+    /// The same of a bid
+    #[arg(long, num_args = 3, value_names = ["TENDER", "LOT", "BID"], conflicts_with = "fit")]
+    pub fit_bid: Option<Vec<String>>,
+    /// The unit that it would run beside, in parallel
+    #[arg(long, value_name = "UNIT", requires = "fitted")]
+    pub beside: Option<String>,
+    /// Fault level of the network at the primary, in MVA [default: infinite]
+    #[arg(long, value_name = "MVA", requires = "fitted")]
+    pub network_mva: Option<f64>,
+    /// Highest fault level that the switchgear at the secondary bears, in MVA
+    #[arg(long, value_name = "MVA", requires = "fitted")]
+    pub fault_limit_mva: Option<f64>,
 }
 
 /// Options of `work`.

@@ -181,6 +181,17 @@ impl Desk {
         }
     }
 
+    /// An offer by its name.
+    ///
+    /// # Errors
+    /// It is not in the catalogue.
+    pub fn offer(&self, offer: &str) -> Result<&Offer, StudyError> {
+        self.offers.iter().find(|o| o.offer == offer).ok_or_else(|| {
+            let known = self.offers.iter().map(|o| o.offer.as_str());
+            StudyError::unknown("offer", offer, "the book", known)
+        })
+    }
+
     /// The name of an offer by its index.
     pub fn offer_name(&self, candidate: usize) -> &str {
         self.offers.get(candidate).map_or("", |offer| &offer.offer)

@@ -2,9 +2,11 @@
 //! figures are opened in `workings`.
 
 pub mod ambient;
+mod fit;
 pub mod thermal;
 mod workings;
 
+pub use fit::{BesideRow, FitAsked, FitRow};
 pub use thermal::Heat;
 
 use chrono::NaiveDate;
@@ -46,6 +48,8 @@ pub struct Question<'a> {
     pub unit: &'a Unit,
     /// Under what it is judged thermally.
     pub heat: Heat<'a>,
+    /// What is to be fitted to its place.
+    pub fit: Option<&'a FitAsked>,
 }
 
 /// Keep or replace, one unit, as it is written in JSON.
@@ -195,6 +199,9 @@ pub struct Dossier<'a> {
     pub thermal: ThermalRow,
     /// The law that the basis names, were the unit bought in the first year.
     pub law: Option<VerdictRow>,
+    /// How an offer or bid fits its place, where that was asked.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub fit: Option<FitRow>,
     /// Why it cannot be ranked.
     pub left_out: Option<&'static str>,
     pub flags: Vec<&'static str>,
@@ -213,7 +220,7 @@ impl<'a> Question<'a> {
     pub fn new(desk: &'a Desk, context: &'a Context, unit: &'a Unit) -> Result<Self, StudyError> {
         let index = desk.find(&unit.unit);
         let index = index.ok_or_else(|| StudyError::unknown("unit", &unit.unit, "the book", []))?;
-        Ok(Self { desk, context, index, unit, heat: Heat::default() })
+        Ok(Self { desk, context, index, unit, heat: Heat::default(), fit: None })
     }
 
     fn facts(&self) -> UnitFacts {
@@ -303,6 +310,7 @@ impl<'a> Question<'a> {
             estimated: EstimatedRow::of(self.context, &self.facts()),
             left_out: decided.as_ref().err().map(|why| why.why()),
             thermal: self.thermal(place.as_ref().ok(), decided.as_ref().ok().map(|(_, d)| d)),
+            fit: self.fitted().map(|fit| fit.row()).transpose()?,
             law: self.verdict()?.map(|(verdict, on)| VerdictRow::of(&verdict, on)),
             keep_or_replace: decided.ok().map(|(place, d)| self.keep_or_replace(&place, &d)),
             flags: flags.keys(),

@@ -5,7 +5,7 @@ use serde::Serialize;
 
 use super::Question;
 use crate::engine::Refusal;
-use crate::engine::columns::Insulation;
+use crate::engine::columns::Unit;
 use crate::engine::decision::Place;
 use crate::engine::decision::keep_or_replace::{Decision, YearChoice};
 use crate::engine::decision::place::stated::{RATING, said};
@@ -110,11 +110,24 @@ pub struct HeatYear {
 }
 
 /// A transformer at a place, as the thermal equations see it.
-struct Body<'a> {
+pub(super) struct Body<'a> {
     model: ThermalModel,
     mode: CoolingMode,
     losses: &'a Losses,
     offer: Option<&'a str>,
+}
+
+impl<'a> Body<'a> {
+    /// A transformer by its record.
+    pub(super) fn of(
+        unit: &Unit,
+        losses: &'a Losses,
+        offer: Option<&'a str>,
+    ) -> Result<Self, Refusal> {
+        let cooling = unit.cooling.as_deref();
+        let mode = CoolingMode::of(losses.rated_kva, unit.phases, cooling, unit.insulation)?;
+        Ok(Self { model: ThermalModel::of_losses(mode, losses), mode, losses, offer })
+    }
 }
 
 impl Question<'_> {
@@ -124,21 +137,16 @@ impl Question<'_> {
 
     /// The unit that stands there, or an offer.
     fn body<'b>(&'b self, place: &'b Place, offer: Option<usize>) -> Result<Body<'b>, Refusal> {
-        let unit = self.unit;
-        let (losses, phases, cooling, insulation, name): (_, _, _, Option<Insulation>, _) =
-            match offer {
-                None => {
-                    (&place.losses, unit.phases, unit.cooling.as_deref(), unit.insulation, None)
-                }
-                Some(c) => {
-                    let offer = &self.desk.offers[c];
-                    let losses = &self.context.candidates[c].losses;
-                    let name = Some(offer.offer.as_str());
-                    (losses, offer.phases, offer.cooling.as_deref(), offer.insulation, name)
-                }
-            };
-        let mode = CoolingMode::of(losses.rated_kva, phases, cooling, insulation)?;
-        Ok(Body { model: ThermalModel::of_losses(mode, losses), mode, losses, offer: name })
+        let Some(c) = offer else { return Body::of(self.unit, &place.losses, None) };
+        let (offer, losses) = (&self.desk.offers[c], &self.context.candidates[c].losses);
+        let (phases, cooling, insulation) = (offer.phases, &offer.cooling, offer.insulation);
+        let mode = CoolingMode::of(losses.rated_kva, phases, cooling.as_deref(), insulation)?;
+        Ok(Body {
+            model: ThermalModel::of_losses(mode, losses),
+            mode,
+            losses,
+            offer: Some(&offer.offer),
+        })
     }
 
     /// The load of year 1 in parts of a rating, and the ambient, step by step.
@@ -192,6 +200,17 @@ impl Question<'_> {
         quantity: &str,
     ) -> Result<(), Refusal> {
         let body = self.body(place, choice.map(|choice| choice.offer))?;
+        self.state_body(w, place, &body, quantity)
+    }
+
+    /// States how hot a transformer gets in a place.
+    pub(super) fn state_body<R: Recorder>(
+        &self,
+        w: &mut R,
+        place: &Place,
+        body: &Body,
+        quantity: &str,
+    ) -> Result<(), Refusal> {
         let rises = &body.model.rises;
         let typical = format!("typical of {} (memory)", body.mode.word());
         match quantity {
@@ -215,19 +234,23 @@ impl Question<'_> {
                 steady(w, &body.model, peak, self.ambient_c());
             }
             _ => {
-                self.year(w, place, &body)?;
+                self.year(w, place, body)?;
             }
         }
         Ok(())
     }
 
     fn heat_of(&self, place: &Place, offer: Option<usize>) -> Result<HeatRow, Refusal> {
+        Ok(self.heat_of_body(place, &self.body(place, offer)?))
+    }
+
+    /// How hot a transformer gets in a place.
+    pub(super) fn heat_of_body(&self, place: &Place, body: &Body) -> HeatRow {
         let w = &mut Silent;
-        let body = self.body(place, offer)?;
         let peak = place.duty.peak_pu(w, body.losses.rated_kva);
         let held = steady(w, &body.model, peak, self.ambient_c());
         let minutes = self.profile().map_or(60, |profile| profile.step_minutes as usize);
-        let year = self.year(w, place, &body).ok().map(|year| HeatYear {
+        let year = self.year(w, place, body).ok().map(|year| HeatYear {
             hottest_interval: year.hottest_step + 1,
             hottest_hour: ((year.hottest_step + 1) * minutes).div_ceil(60),
             hottest_hot_spot_c: year.hottest_hot_spot_c,
@@ -239,7 +262,7 @@ impl Question<'_> {
             hours: year.hours,
         });
         let rises = &body.model.rises;
-        Ok(HeatRow {
+        HeatRow {
             offer: body.offer.map(str::to_owned),
             cooling_mode: body.mode.word(),
             rated_kva: body.losses.rated_kva,
@@ -250,7 +273,7 @@ impl Question<'_> {
             steady_top_oil_c: held.top_oil_c,
             steady_hot_spot_c: held.hot_spot_c(),
             year,
-        })
+        }
     }
 
     /// The offer that is judged beside the unit: that of the best choice, else the best one now.

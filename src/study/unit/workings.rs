@@ -29,6 +29,8 @@ const LABELS: &[&str] = &[
     "hottest_interval",
     "hottest_hour",
     "hours",
+    "loading_limit_pu",
+    "fault_limit_mva",
     "ambient_c",
     "hot_spot_limit_c",
     "top_oil_limit_c",
@@ -79,6 +81,11 @@ impl Explained for Question<'_> {
             ["law", "limits", n, side] => {
                 if let Some((verdict, _)) = self.verdict()? {
                     law::state(w, verdict, n, side);
+                }
+            }
+            ["fit", place @ ..] => {
+                if let Some(fit) = self.fitted() {
+                    fit.state(w, place)?;
                 }
             }
             ["estimated", loss, quantity] => self.estimated(w, loss, quantity)?,
@@ -266,20 +273,7 @@ impl Question<'_> {
     ) -> Result<(), Refusal> {
         let mut all = Working::default();
         self.state_heat(&mut all, place, choice, quantity)?;
-        w.append(match quantity {
-            "hottest_hot_spot_c" => all.only(&["θh_max"]),
-            "hottest_top_oil_c" => all.only(&["θo_max"]),
-            "hours_above_hot_spot" => all.only(&["t_hot"]),
-            "hours_above_top_oil" => all.only(&["t_oil"]),
-            "life_used_hours" => all.only(&["L"]),
-            "life_used_pu" => all.only(&["L", "L_pu"]),
-            // The steady hot spot is stated from the top oil.
-            "steady_top_oil_c" => {
-                let steps = all.into_steps().into_iter().flat_map(|step| step.steps);
-                steps.filter(|step| step.formula.symbol == "θo").collect()
-            }
-            _ => all.into_steps(),
-        });
+        w.append(of_heat(all, quantity));
         Ok(())
     }
 
@@ -372,5 +366,23 @@ impl Question<'_> {
             w.append(all.into_steps().into_iter().map(short));
         }
         Ok(())
+    }
+}
+
+/// The steps of how hot a transformer gets that give one quantity.
+pub(super) fn of_heat(all: Working, quantity: &str) -> Vec<Step> {
+    match quantity {
+        "hottest_hot_spot_c" => all.only(&["θh_max"]),
+        "hottest_top_oil_c" => all.only(&["θo_max"]),
+        "hours_above_hot_spot" => all.only(&["t_hot"]),
+        "hours_above_top_oil" => all.only(&["t_oil"]),
+        "life_used_hours" => all.only(&["L"]),
+        "life_used_pu" => all.only(&["L", "L_pu"]),
+        // The steady hot spot is stated from the top oil.
+        "steady_top_oil_c" => {
+            let steps = all.into_steps().into_iter().flat_map(|step| step.steps);
+            steps.filter(|step| step.formula.symbol == "θo").collect()
+        }
+        _ => all.into_steps(),
     }
 }
