@@ -168,3 +168,64 @@ fn the_law_in_the_dossier() {
         Value::Null
     );
 }
+
+/// The three traps of loss evaluation, met on the way to `factors` and `unit`.
+#[test]
+fn traps_are_asked_back() {
+    let program = small();
+    let complaint = |what: &str, name: &str, text: &str| {
+        let file = program.write(name, text);
+        let output = program.run(&["import", what, &file.to_string_lossy()]);
+        assert_eq!(output.status.code(), Some(3), "{text}");
+        String::from_utf8_lossy(&output.stderr).into_owned()
+    };
+    // Responsibility on load or on losses, an investment or its yearly cost, money per kW or per W.
+    let said = complaint("basis", "r.toml", &format!("{BASIS}responsibility_factor = 0.8\n"));
+    assert!(said.contains("on load or on losses") && said.contains("square root"), "{said}");
+    let said = complaint("basis", "i.toml", &format!("{BASIS}investment_per_kw = 900\n"));
+    assert!(said.contains("paid once") && said.contains("yearly charge rate"), "{said}");
+    let tender = "tender = \"t\"\ncurrency = \"EUR\"\n[[lot]]\nlot = \"L\"\nrated_kva = 400\nfactor_a = 4.5\n";
+    let said = complaint("tender", "t.toml", tender);
+    assert!(said.contains("per W times 1000") && said.contains("paid once"), "{said}");
+    let said = complaint("units", "u.csv", "unit,rated_kva,responsibility\nX,400,0.8\n");
+    assert!(said.contains("on load or on losses"), "{said}");
+
+    // What names do not reveal figures may: a charge above the energy of a whole year, a price per MWh.
+    let basis = |name: &str, more: &str| {
+        let text = BASIS.replace("name = \"b\"", &format!("name = \"{name}\"\n{more}"));
+        let text = match name {
+            "mwh" => text.replace("energy_price_per_kwh = 0.1", "energy_price_per_kwh = 100"),
+            _ => text,
+        };
+        program.import("basis", &program.write("more.toml", text), &[]);
+        let ask = |command: &[&str]| {
+            let asked = [command, &["--basis", name, "--format", "json"]].concat();
+            program.json(&asked)["flags"].to_string()
+        };
+        (ask(&["factors"]), ask(&["unit", "W1"]))
+    };
+    let (factors, unit) = basis("once", "demand_charge_per_kw_year = 1200");
+    assert!(factors.contains("capacity_scale") && unit.contains("capacity_scale"));
+    assert!(program.done(&["check", "--basis", "once"]).contains("investment, paid once"));
+    let levelized =
+        "factor_method = \"levelized\"\nfixed_charge_rate_pct = 9\ndemand_charge_per_kw_year = 40";
+    assert!(basis("levelized", levelized).0.contains("demand_unused"));
+    assert!(basis("present", "investment_per_kw_year = 40").0.contains("investment_unused"));
+    let (_, unit) = basis("mwh", "");
+    assert!(unit.contains("loss_value_scale"), "{unit}");
+    let (factors, unit) = basis("sound", "demand_charge_per_kw_year = 40\nresponsibility_pu = 0.8");
+    assert_eq!((factors.as_str(), unit.as_str()), ("[]", "[]"));
+    let stated =
+        program.json(&["factors", "--basis", "b", "--load-factor-pu", "0.5", "--format", "json"]);
+    assert_eq!(stated["flags"], serde_json::json!(["loss_factor_estimated"]));
+    let refused = program.run(&[
+        "factors",
+        "--basis",
+        "b",
+        "--load-factor-pu",
+        "0.5",
+        "--loss-factor-pu",
+        "0.6",
+    ]);
+    assert!(String::from_utf8_lossy(&refused.stderr).contains("LF² ≤ LsF ≤ LF"));
+}

@@ -41,6 +41,10 @@ flags! {
     23, LAW_NOT_CHECKED, "law_not_checked", "the law that is named could not be held against an offer or bid; it passes";
     24, QUANTITY_SHORT, "quantity_short", "the bid offers fewer units than the lot asks for";
     25, OFFER_OVERLOADED, "offer_overloaded", "the best offer is smaller than the peak load of a year of its service; set loading_limit_pu to rule that out";
+    26, CAPACITY_SCALE, "capacity_scale", "the capacity charge of a kW and year is above what a kW of loss costs in energy all year: is it an investment, paid once? Give what it costs per year";
+    27, DEMAND_UNUSED, "demand_unused", "factor_method levelized does not use demand_charge_per_kw_year: what capacity costs per kW and year is investment_per_kw_year there";
+    28, INVESTMENT_UNUSED, "investment_unused", "factor_method present-value does not use investment_per_kw_year: what capacity costs per kW and year is demand_charge_per_kw_year there";
+    29, LOSS_VALUE_SCALE, "loss_value_scale", "the capitalised losses of the best offer are under 1 % or over 50 times its price: is the energy price per kWh, are losses in W and prices per unit?";
 }
 
 impl Flags {

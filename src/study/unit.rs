@@ -21,6 +21,10 @@ use crate::engine::decision::keep_or_replace::{Decision, FirstYear, YearChoice, 
 use crate::engine::decision::parts::{PolicyCost, of_choice};
 use crate::engine::decision::place::{Place, losses, power_factor, resolve};
 use crate::engine::decision::{Context, LeftOut, UnitFacts};
+use crate::engine::economics::loss_factors::present_value;
+use crate::engine::economics::owning_cost::{Priced, owning_cost};
+use crate::engine::economics::traps;
+use crate::engine::flags::Flags;
 use crate::engine::law::{self, Subject, Verdict};
 use crate::engine::transformer::circuit::{
     Circuit, Magnetising, PowerFactor, magnetising, of_nameplate,
@@ -280,6 +284,11 @@ impl<'a> Question<'a> {
             (Err(_), Ok(place)) => place.flags,
             (Err(_), Err(_)) => self.context.flags,
         };
+        let price = self.context.market.constant.price_per_kwh;
+        let mut flags = flags.with(traps::of_basis(a, price));
+        if let Ok((place, decision)) = &decided {
+            flags = flags.with(self.value_scale(place, decision));
+        }
         Ok(Dossier {
             unit: self.unit.unit.clone(),
             basis: a.name.clone(),
@@ -316,6 +325,24 @@ impl<'a> Question<'a> {
             flags: flags.keys(),
             working: Vec::new(),
         })
+    }
+
+    /// Whether the losses of the best offer, capitalised, look like another unit beside its price.
+    fn value_scale(&self, place: &Place, decision: &Decision) -> Flags {
+        let Some(choice) = decision.best.or(decision.now) else { return Flags::NONE };
+        let candidate = &self.context.candidates[choice.offer];
+        let losses = &candidate.losses;
+        let (a, rated_kva) = (&self.context.assumptions, losses.rated_kva);
+        let factors = present_value(&mut Silent, &place.duty, rated_kva, a);
+        let priced = Priced {
+            price: candidate.price,
+            added_cost: 0.0,
+            no_load_loss_w: losses.no_load_loss_w,
+            load_loss_w: losses.load_loss_w,
+            auxiliary_loss_w: losses.auxiliary_loss_w,
+        };
+        let cost = owning_cost(&mut Silent, &priced, &factors);
+        traps::of_value(cost.total() - cost.price, candidate.price)
     }
 
     /// What the best choice brings in its first year of service; none where it is to keep.

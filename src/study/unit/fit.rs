@@ -362,12 +362,12 @@ impl Fit<'_> {
             law: verdict.map(|(verdict, on)| VerdictRow::of(&verdict, on)),
             notes: self.notes(),
         };
-        self.judge(&mut row);
+        Self::judge(&mut row);
         Ok(row)
     }
 
     /// Names what does not fit and what could not be looked at.
-    fn judge(&self, row: &mut FitRow) {
+    fn judge(row: &mut FitRow) {
         let mut checks = vec![
             ("phases", row.phases_agree),
             ("voltages", row.voltages_agree),

@@ -19,7 +19,7 @@ use crate::study::law;
 
 /// Parts of a dossier that are not opened: what the record says, the regression behind an estimate (it tells its
 /// interval and the units it rests on by itself), and workings.
-const NO_FIGURES: &[&str] = &["nameplate", "estimated", "working"];
+const NO_FIGURES: &[&str] = &["nameplate", "working"];
 /// Numbers that name a line instead of being computed.
 const LABELS: &[&str] = &[
     "known_units",
