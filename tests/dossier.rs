@@ -229,3 +229,39 @@ fn traps_are_asked_back() {
     ]);
     assert!(String::from_utf8_lossy(&refused.stderr).contains("LF² ≤ LsF ≤ LF"));
 }
+
+/// A level saving: 9 000 against s a year for ten years at 5 %.
+#[test]
+fn indicators_of_a_replacement() {
+    let program = small();
+    let basis = BASIS.replace("name = \"b\"", "name = \"co2\"\ncarbon_kg_per_kwh = 0.4");
+    program.import("basis", &program.write("co2.toml", basis), &[]);
+    let dossier = program.json(&["unit", "W1", "--basis", "co2", "--format", "json"]);
+    let k = |key: &str| number(&dossier, &format!("/keep_or_replace/{key}"));
+    let own = |key: &str| number(&dossier, &format!("/losses/{key}"));
+    let copper = 4.6 * (380.0_f64 / 630.0).powi(2) * own("loss_factor_pu");
+    let new = 8760.0 * (0.6 + copper);
+    let saved = 0.1 * (own("no_load_energy_kwh") + own("load_energy_kwh") - new);
+    let annuity = |i: f64, n: f64| (1.0 - (1.0 + i).powf(-n)) / i;
+    // Ten years do not bring 9 000 back: the rate of return is below the discount rate, maybe below zero.
+    let rate = k("now_irr_pct") / 100.0;
+    assert!((saved * annuity(rate, 10.0) / 9000.0 - 1.0).abs() < 1e-9, "{rate} {saved}");
+    assert!((k("keep_euac") * annuity(0.05, 10.0) / k("keep_pv") - 1.0).abs() < 1e-12);
+    // A dearer price of energy pays it back: n with s·a(i, n) = 9 000, linear within its last year.
+    let basis = BASIS.replace("name = \"b\"", "name = \"dear\"\ncarbon_kg_per_kwh = 0.4");
+    let basis = basis.replace("energy_price_per_kwh = 0.1", "energy_price_per_kwh = 0.4");
+    program.import("basis", &program.write("dear.toml", basis), &[]);
+    let dossier = program.json(&["unit", "W1", "--basis", "dear", "--format", "json"]);
+    let k = |key: &str| number(&dossier, &format!("/keep_or_replace/{key}"));
+    assert_eq!(k("best_year_offset"), 0.0);
+    let saved = 0.4 * k("energy_saved_kwh");
+    assert!((k("payback_years") - 9000.0 / saved).abs() < 1e-9);
+    let whole = (1..=10).take_while(|n| saved * annuity(0.05, f64::from(*n)) < 9000.0).count();
+    let n = f64::from(u32::try_from(whole).expect("small"));
+    let rest = (9000.0 - saved * annuity(0.05, n)) / (saved * 1.05_f64.powf(-n - 1.0));
+    assert!((k("discounted_payback_years") - n - rest).abs() < 1e-9);
+    let tonnes = 10.0 * 0.4 * k("energy_saved_kwh") / 1000.0;
+    assert!((k("co2_avoided_t") / tonnes - 1.0).abs() < 1e-12);
+    let per_tonne = (9000.0 - saved * annuity(0.05, 10.0)) / tonnes;
+    assert!((k("cost_per_t_co2") - per_tonne).abs() < 1e-9, "saves money besides");
+}

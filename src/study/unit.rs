@@ -17,7 +17,9 @@ use crate::engine::Refusal;
 use crate::engine::columns::{Column, Unit, Value as Cell};
 use crate::engine::decision::estimate::End;
 use crate::engine::decision::fit::fitting;
-use crate::engine::decision::keep_or_replace::{Decision, FirstYear, YearChoice, decide};
+use crate::engine::decision::keep_or_replace::{
+    Decision, Replacement, YearChoice, decide, equal_yearly_cost,
+};
 use crate::engine::decision::parts::{PolicyCost, of_choice};
 use crate::engine::decision::place::{Place, losses, power_factor, resolve};
 use crate::engine::decision::{Context, LeftOut, UnitFacts};
@@ -74,6 +76,15 @@ pub struct KeepOrReplace<'a> {
     pub capital: Option<f64>,
     pub energy_saved_kwh: Option<f64>,
     pub co2_saved_kg: Option<f64>,
+    /// Of buying the best offer now: rate of return, none where there is not exactly one.
+    pub now_irr_pct: Option<f64>,
+    /// Of the best choice.
+    pub discounted_payback_years: Option<f64>,
+    pub co2_avoided_t: Option<f64>,
+    pub cost_per_t_co2: Option<f64>,
+    /// Equal yearly cost of keeping and of the best choice over the horizon.
+    pub keep_euac: f64,
+    pub best_euac: f64,
     pub years: Vec<YearRow<'a>>,
     pub flags: Vec<&'static str>,
 }
@@ -321,7 +332,10 @@ impl<'a> Question<'a> {
             thermal: self.thermal(place.as_ref().ok(), decided.as_ref().ok().map(|(_, d)| d)),
             fit: self.fitted().map(|fit| fit.row()).transpose()?,
             law: self.verdict()?.map(|(verdict, on)| VerdictRow::of(&verdict, on)),
-            keep_or_replace: decided.ok().map(|(place, d)| self.keep_or_replace(&place, &d)),
+            keep_or_replace: match &decided {
+                Ok((place, decision)) => Some(self.keep_or_replace(place, decision)?),
+                Err(_) => None,
+            },
             flags: flags.keys(),
             working: Vec::new(),
         })
@@ -345,18 +359,26 @@ impl<'a> Question<'a> {
         traps::of_value(cost.total() - cost.price, candidate.price)
     }
 
-    /// What the best choice brings in its first year of service; none where it is to keep.
-    fn first_year<'s>(&'s self, place: &'s Place, decision: &Decision) -> Option<FirstYear<'s>> {
-        decision.best.map(|best| FirstYear {
+    /// A choice as a replacement; none where it is to keep.
+    fn replacement<'s>(
+        &'s self,
+        place: &'s Place,
+        choice: Option<YearChoice>,
+    ) -> Option<Replacement<'s>> {
+        choice.map(|choice| Replacement {
             place,
-            candidate: &self.context.candidates[best.offer],
-            offset: best.offset,
+            candidate: &self.context.candidates[choice.offer],
+            offset: choice.offset,
             assumptions: &self.context.assumptions,
         })
     }
 
     /// The decision as it is written in JSON.
-    fn keep_or_replace(&self, place: &Place, decision: &Decision) -> KeepOrReplace<'a> {
+    fn keep_or_replace(
+        &self,
+        place: &Place,
+        decision: &Decision,
+    ) -> Result<KeepOrReplace<'a>, Refusal> {
         let first_year = self.context.assumptions.first_year;
         #[expect(clippy::cast_possible_wrap, reason = "at most 200 years")]
         let year = |offset: usize| first_year + offset as i64;
@@ -367,9 +389,11 @@ impl<'a> Question<'a> {
             offer: offer(*choice),
             pv: choice.pv,
         };
-        let first = self.first_year(place, decision);
+        let first = self.replacement(place, decision.best);
+        let now = self.replacement(place, decision.now);
+        let a = &self.context.assumptions;
         let w = &mut Silent;
-        KeepOrReplace {
+        Ok(KeepOrReplace {
             keep_pv: decision.keep_pv,
             never_pv: decision.keep_pv,
             now_offer: decision.now.map(offer),
@@ -384,9 +408,21 @@ impl<'a> Question<'a> {
             capital: first.map(|first| first.candidate.capital(w)),
             energy_saved_kwh: first.map(|first| first.energy_saved_kwh(w)),
             co2_saved_kg: first.map(|first| first.co2_saved_kg(w)),
+            now_irr_pct: now.and_then(|now| now.irr_pct(w)),
+            discounted_payback_years: match first {
+                Some(first) => first.discounted_payback_years(w)?,
+                None => None,
+            },
+            co2_avoided_t: first.map(|first| first.co2_avoided_t(w)),
+            cost_per_t_co2: match first {
+                Some(first) => first.cost_per_t_co2(w)?,
+                None => None,
+            },
+            keep_euac: equal_yearly_cost(w, decision.keep_pv, a),
+            best_euac: equal_yearly_cost(w, decision.best_pv, a),
             years: decision.years.iter().map(row).collect(),
             flags: decision.flags.keys(),
-        }
+        })
     }
 }
 

@@ -8,7 +8,7 @@ use crate::study::figures::group;
 use crate::study::law::VerdictRow;
 use crate::study::losses::flag_meaning;
 use crate::study::unit::thermal::{HeatRow, ThermalRow};
-use crate::study::unit::{Dossier, FitRow};
+use crate::study::unit::{Dossier, FitRow, KeepOrReplace};
 
 pub(super) fn text(printer: &mut Printer, d: &Dossier<'_>) -> Result<(), Failure> {
     printer.line(format!("Unit {}, basis {}", d.unit, d.basis))?;
@@ -96,6 +96,8 @@ pub(super) fn text(printer: &mut Printer, d: &Dossier<'_>) -> Result<(), Failure
             ))?;
         }
         printer.line("")?;
+        indicators(printer, k, currency)?;
+        printer.line("")?;
         printer.line("Best offer in each year:")?;
         let column = |key, heading: &str, unit: &str| TextColumn {
             key,
@@ -123,6 +125,27 @@ pub(super) fn text(printer: &mut Printer, d: &Dossier<'_>) -> Result<(), Failure
     }
     for flag in &d.flags {
         printer.line(format!("! {flag}: {}", flag_meaning(flag).unwrap_or_default()))?;
+    }
+    Ok(())
+}
+
+/// What else is asked of a replacement, as far as there is an answer.
+fn indicators(printer: &mut Printer, k: &KeepOrReplace<'_>, currency: &str) -> Result<(), Failure> {
+    let years = format!("{currency} a year");
+    let per_t = format!("{currency} per t");
+    for (what, value, places, unit) in [
+        ("simple payback", k.payback_years, 1, "years"),
+        ("discounted payback", k.discounted_payback_years, 1, "years"),
+        ("rate of return of buying now", k.now_irr_pct, 2, "%"),
+        ("energy saved in its first year", k.energy_saved_kwh, 0, "kWh"),
+        ("CO2 avoided over the horizon", k.co2_avoided_t, 1, "t"),
+        ("cost of CO2 avoided", k.cost_per_t_co2, 2, per_t.as_str()),
+        ("equal yearly cost of keeping", Some(k.keep_euac), 0, years.as_str()),
+        ("equal yearly cost of the best choice", Some(k.best_euac), 0, years.as_str()),
+    ] {
+        if let Some(value) = value {
+            printer.line(format!("  {what:<38} {} {unit}", group(value, places)))?;
+        }
     }
     Ok(())
 }

@@ -2,7 +2,9 @@
 
 use super::{LOADS, Question, decision, fitting_offers};
 use crate::engine::Refusal;
-use crate::engine::decision::keep_or_replace::{Decision, Valuation, YearChoice, age};
+use crate::engine::decision::keep_or_replace::{
+    Decision, Valuation, YearChoice, age, equal_yearly_cost,
+};
 use crate::engine::decision::place::power_factor;
 use crate::engine::decision::{LeftOut, Place};
 use crate::engine::economics::assumptions::EnergyPrice;
@@ -286,9 +288,10 @@ impl Question<'_> {
     /// The figures of keep or replace.
     fn value(&self, w: &mut Working, quantity: &str) -> Result<(), StudyError> {
         let (place, decision) = self.decided()?;
-        let first_year = self.first_year(&place, &decision);
+        let chosen = self.replacement(&place, decision.best);
+        let a = &self.context.assumptions;
         let Decision { best, now, later, .. } = decision;
-        match (quantity, first_year) {
+        match (quantity, chosen) {
             ("now_pv", _) => self.policy(w, &place, now)?,
             ("best_pv", _) => self.policy(w, &place, best)?,
             ("saving_pv", _) => {
@@ -304,7 +307,7 @@ impl Question<'_> {
                 self.outline(w, &place, [None])?;
                 decision.best_delay(w);
                 if quantity == "best_year" {
-                    decision.best_year(w, self.context.assumptions.first_year);
+                    decision.best_year(w, a.first_year);
                 }
             }
             ("payback_years", Some(first)) => {
@@ -318,6 +321,28 @@ impl Question<'_> {
             }
             ("co2_saved_kg", Some(first)) => {
                 first.co2_saved_kg(w);
+            }
+            ("now_irr_pct", _) => {
+                if let Some(now) = self.replacement(&place, now) {
+                    now.irr_pct(w);
+                }
+            }
+            ("discounted_payback_years", Some(first)) => {
+                first.discounted_payback_years(w)?;
+            }
+            ("co2_avoided_t", Some(first)) => {
+                first.co2_avoided_t(w);
+            }
+            ("cost_per_t_co2", Some(first)) => {
+                first.cost_per_t_co2(w)?;
+            }
+            ("keep_euac", _) => {
+                self.outline(w, &place, [None])?;
+                equal_yearly_cost(w, decision.keep_pv, a);
+            }
+            ("best_euac", _) => {
+                self.outline(w, &place, [best])?;
+                equal_yearly_cost(w, decision.best_pv, a);
             }
             _ => self.policy(w, &place, None)?,
         }
