@@ -9,7 +9,7 @@ use ironhum::study::Desk;
 use ironhum::study::explain::{Explained, Opening, StepRow};
 use ironhum::study::factors::{self, LoadAsked};
 use ironhum::study::settle::Settled;
-use ironhum::study::tender::Case;
+use ironhum::study::tender::{Case, LotQuestion};
 use ironhum::study::unit::{FitAsked, Question};
 use support::Program;
 
@@ -148,6 +148,19 @@ fn every_figure_of_a_tender_and_its_settlement_opens() {
     let case = Case::read(&book, "ol-2027-1", None).expect("a tender");
     let walked = walk(&case);
     assert!(walked > 150, "{walked} figures of the tender");
+    for lot in ["L1", "L2"] {
+        assert!(
+            walk(&LotQuestion { case: &case, lot }) >= 9,
+            "the factors of a lot, in two currencies"
+        );
+    }
+    let mut sheet = case.sheet.clone();
+    sheet.lots[0].law = Some("eu-548-2014".to_owned());
+    let mut desk = Desk::read(&book, None).expect("a desk");
+    desk.sheet.basis.fixed_charge_rate_pct = Some(9.0);
+    let lawful = Case::new(sheet, Some(desk)).expect("sound");
+    let walked = walk(&LotQuestion { case: &lawful, lot: "L1" });
+    assert_eq!(walked, 9 + 5 + 4, "the other method, two limits for each insulation");
     let settled = walk(&Settled(&case));
     assert!(settled > 20, "{settled} figures of the settlement");
 }

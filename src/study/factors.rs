@@ -245,7 +245,12 @@ pub fn factors(desk: &Desk, asked: &LoadAsked) -> Result<Factors, StudyError> {
     Question { desk, context: &desk.context()?, asked }.factors()
 }
 
-/// What the steps of A, B and A_aux are called.
+/// What the steps of a factor are called.
+pub(super) fn symbol(quantity: &str) -> &'static str {
+    let found = SYMBOLS.iter().find(|(key, _)| quantity.starts_with(key));
+    found.map_or("", |(_, symbol)| symbol)
+}
+
 const SYMBOLS: [(&str, &str); 3] =
     [("factor_a_", "A"), ("factor_b_", "B"), ("factor_aux_", "A_aux")];
 
@@ -270,8 +275,7 @@ impl Explained for Question<'_> {
                 duty.load_growth_pct(w);
             }
             _ => {
-                let symbol = SYMBOLS.iter().find(|(key, _)| quantity.starts_with(key));
-                let symbol = symbol.map_or("", |(_, symbol)| symbol);
+                let symbol = symbol(quantity);
                 w.append(told.into_steps());
                 let (mut own, mut other) = (Working::default(), Working::default());
                 self.own(&mut own, &duty)?;
