@@ -12,6 +12,7 @@ pub mod explain;
 pub mod factors;
 pub mod figures;
 pub mod intake;
+pub mod law;
 pub mod losses;
 pub mod offers_open;
 pub mod rank;

@@ -4,13 +4,13 @@
 mod support;
 
 use ironhum::book::{Access, Book};
-use ironhum::engine::columns::{FactorMethod, VoltageModel};
+use ironhum::engine::columns::{CapitalRecovery, CashFlow, FactorMethod, VoltageModel};
 use ironhum::study::Desk;
 use ironhum::study::explain::{Explained, Opening, StepRow};
 use ironhum::study::factors::{self, LoadAsked};
 use ironhum::study::settle::Settled;
-use ironhum::study::tender::Case;
-use ironhum::study::unit::Question;
+use ironhum::study::tender::{Case, LotQuestion};
+use ironhum::study::unit::{FitAsked, Question};
 use support::Program;
 
 fn demo() -> (Program, Book) {
@@ -40,21 +40,67 @@ fn walk(result: &impl Explained) -> usize {
     figures.len()
 }
 
+/// Opens every figure of the units of a desk, each `step`-th; how many figures, units and ranked units there are.
+fn walk_units(book: &Book, desk: &Desk, step: usize) -> (usize, usize, usize) {
+    let context = desk.context().expect("a sound basis");
+    let (mut figures, mut units, mut ranked) = (0, 0, 0);
+    for i in (0..desk.fleet.len()).step_by(step) {
+        let unit = book.unit(desk.fleet.unit.get(i)).expect("is in the book");
+        let question = Question::new(desk, &context, &unit).expect("is on the desk");
+        figures += walk(&question);
+        units += 1;
+        ranked += usize::from(question.dossier().expect("is told").keep_or_replace.is_some());
+    }
+    (figures, units, ranked)
+}
+
 #[test]
 fn every_figure_of_every_unit_opens() {
     let (_program, book) = demo();
     let desk = Desk::read(&book, None).expect("a desk");
+    let (figures, units, ranked) = walk_units(&book, &desk, 1);
+    assert!(ranked > 100 && ranked < units, "ranked and left-out units are walked");
+    assert!(figures > 50 * ranked, "{figures} figures");
+}
+
+/// Other rules: no failures, money at year ends, purchases charged whole, a law, nothing estimated.
+#[test]
+fn figures_open_under_another_basis() {
+    let (_program, book) = demo();
+    let desk = Desk::read(&book, None).expect("a desk");
+    let mut sheet = desk.sheet.clone();
+    let basis = &mut sheet.basis;
+    (basis.failure_shape, basis.failure_scale_years) = (None, None);
+    basis.cash_flow = Some(CashFlow::YearEnd);
+    basis.capital_recovery = Some(CapitalRecovery::Full);
+    basis.law = Some("eu-548-2014".to_owned());
+    basis.estimate_missing = Some(false);
+    basis.upkeep_per_year = None;
+    let (figures, units, ranked) = walk_units(&book, &desk.with_basis(sheet), 5);
+    assert!(ranked > 20 && ranked < units && figures > 50 * ranked, "{figures} of {units}");
+}
+
+/// An offer and a bid fitted to a place, beside another unit.
+#[test]
+fn every_figure_of_a_fit_opens() {
+    let (_program, book) = demo();
+    let desk = Desk::read(&book, None).expect("a desk");
+    let mut sheet = desk.sheet.clone();
+    sheet.basis.law = Some("eu-548-2014".to_owned());
+    let desk = desk.with_basis(sheet);
     let context = desk.context().expect("a sound basis");
-    let (mut walked, mut ranked) = (0, 0);
-    for i in 0..desk.fleet.len() {
-        let unit = book.unit(desk.fleet.unit.get(i)).expect("is in the book");
-        let question = Question::new(&desk, &context, &unit).expect("is on the desk");
-        let dossier = question.dossier().expect("can be told");
-        walked += walk(&question);
-        ranked += usize::from(dossier.keep_or_replace.is_some());
+    let unit = book.unit("FE-0138").expect("is in the book");
+    let tender = book.tender("ol-2027-1").expect("is in the book");
+    let offer = FitAsked::of_offer(desk.offer("L630").expect("is in the book"));
+    let bid = FitAsked::of_bid(&tender, "L1", "O1");
+    for mut asked in [offer.expect("sound"), bid.expect("sound")] {
+        asked.beside = Some(book.unit("FE-0113").expect("is in the book"));
+        asked.network_mva = Some(250.0);
+        let mut question = Question::new(&desk, &context, &unit).expect("is on the desk");
+        let before = question.figures().expect("is told").len();
+        question.fit = Some(&asked);
+        assert!(walk(&question) > before + 20, "the fit has figures of its own");
     }
-    assert!(ranked > 100 && ranked < desk.fleet.len(), "ranked and left-out units are walked");
-    assert!(walked > 50 * ranked, "{walked} figures");
 }
 
 #[test]
@@ -122,6 +168,19 @@ fn every_figure_of_a_tender_and_its_settlement_opens() {
     let case = Case::read(&book, "ol-2027-1", None).expect("a tender");
     let walked = walk(&case);
     assert!(walked > 150, "{walked} figures of the tender");
+    for lot in ["L1", "L2"] {
+        assert!(
+            walk(&LotQuestion { case: &case, lot }) >= 9,
+            "the factors of a lot, in two currencies"
+        );
+    }
+    let mut sheet = case.sheet.clone();
+    sheet.lots[0].law = Some("eu-548-2014".to_owned());
+    let mut desk = Desk::read(&book, None).expect("a desk");
+    desk.sheet.basis.fixed_charge_rate_pct = Some(9.0);
+    let lawful = Case::new(sheet, Some(desk)).expect("sound");
+    let walked = walk(&LotQuestion { case: &lawful, lot: "L1" });
+    assert_eq!(walked, 9 + 5 + 4, "the other method, two limits for each insulation");
     let settled = walk(&Settled(&case));
     assert!(settled > 20, "{settled} figures of the settlement");
 }

@@ -5,6 +5,7 @@ use std::path::PathBuf;
 use clap::builder::{PossibleValuesParser, TypedValueParser};
 use clap::{Parser, Subcommand, ValueEnum};
 
+use crate::engine::transformer::ageing::Paper;
 use crate::exchange::{Decimal, Delimiter, Encoding};
 use crate::study::intake::What;
 
@@ -119,6 +120,9 @@ pub enum Command {
     /// Print the manual page
     Man,
 }
+
+const PAPERS: &[(&str, Paper)] =
+    &[(Paper::Normal.word(), Paper::Normal), (Paper::Upgraded.word(), Paper::Upgraded)];
 
 /// One word of a list, as typed.
 fn one_of<T: Clone + Send + Sync + 'static>(
@@ -320,12 +324,38 @@ pub struct Settle {
 
 /// Options of `unit`.
 #[derive(Clone, Debug, clap::Args)]
+#[command(group = clap::ArgGroup::new("fitted").args(["fit", "fit_bid"]))]
+#[expect(clippy::struct_field_names, reason = "the words that are typed")]
 pub struct Unit {
     /// The unit
     pub unit: String,
     /// Show how each figure comes about, or the one that is named
     #[arg(long, value_name = "FIGURE", num_args = 0..=1, default_missing_value = "")]
     pub working: Option<String>,
+    /// Ambient temperature all year, in °C [default: 20]
+    #[arg(long, value_name = "C", allow_negative_numbers = true)]
+    pub ambient_c: Option<f64>,
+    /// A year of ambient temperatures: a file with timestamp or interval, and ambient_c
+    #[arg(long, value_name = "FILE", conflicts_with = "ambient_c")]
+    pub ambient: Option<PathBuf>,
+    /// Paper of the windings: normal, or thermally upgraded [default: normal]
+    #[arg(long, value_name = "KIND", value_parser = one_of(PAPERS))]
+    pub paper: Option<Paper>,
+    /// Say how an offer fits its place: terminals, load, fault level, law
+    #[arg(long, value_name = "OFFER")]
+    pub fit: Option<String>,
+    /// The same of a bid
+    #[arg(long, num_args = 3, value_names = ["TENDER", "LOT", "BID"], conflicts_with = "fit")]
+    pub fit_bid: Option<Vec<String>>,
+    /// The unit that it would run beside, in parallel
+    #[arg(long, value_name = "UNIT", requires = "fitted")]
+    pub beside: Option<String>,
+    /// Fault level of the network at the primary, in MVA [default: infinite]
+    #[arg(long, value_name = "MVA", requires = "fitted")]
+    pub network_mva: Option<f64>,
+    /// Highest fault level that the switchgear at the secondary bears, in MVA
+    #[arg(long, value_name = "MVA", requires = "fitted")]
+    pub fault_limit_mva: Option<f64>,
 }
 
 /// Options of `work`.

@@ -8,6 +8,7 @@ use crate::study::Desk;
 use crate::study::explain::StepRow;
 use crate::study::factors::{LoadAsked, factors as ask};
 use crate::study::figures::group;
+use crate::study::losses::flag_meaning;
 use crate::study::tender::{Case, letter};
 
 const KEYS: &[&str] =
@@ -68,6 +69,9 @@ pub(super) fn factors(
                     group(other.factor_b_per_kw, 2),
                     group(other.factor_b_difference_pct, 2)
                 ))?;
+            }
+            for flag in &result.flags {
+                printer.line(format!("! {flag}: {}", flag_meaning(flag).unwrap_or_default()))?;
             }
             if options.working {
                 printer.line("")?;

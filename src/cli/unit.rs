@@ -1,24 +1,36 @@
 //! `ironhum unit ID`: one unit's dossier.
 
+mod text;
+
+use std::path::Path;
+
 use super::args::{Args, Format, Unit};
 use super::book::{self, Opened};
 use super::exit::{Exit, Failure};
 use super::factors::working;
-use super::print::{Printer, TextColumn};
-use crate::engine::columns;
+use super::print::Printer;
+use crate::book::Book;
+use crate::exchange::{Source, SourceError};
 use crate::study::Desk;
-use crate::study::estimate::EstimatedRow;
 use crate::study::explain::{Explained as _, Opening};
-use crate::study::figures::group;
-use crate::study::losses::{flag_meaning, voltage_words};
-use crate::study::unit::{Dossier, Question};
+use crate::study::unit::ambient::{self, AmbientYear};
+use crate::study::unit::{FitAsked, Question};
 
 pub(super) fn unit(args: &Args, options: &Unit, printer: &mut Printer) -> Result<Exit, Failure> {
     let Opened { book, .. } = book::open_to_read(args)?;
     let unit = book.unit(&options.unit)?;
     let desk = Desk::read(&book, args.basis.as_deref())?;
     let context = desk.context()?;
-    let question = Question::new(&desk, &context, &unit)?;
+    let mut question = Question::new(&desk, &context, &unit)?;
+    let ambient = options.ambient.as_deref().map(|file| ambient_year(printer, file)).transpose()?;
+    if let Some(year) = &ambient {
+        question.heat.ambient = year.ambient();
+    } else if let Some(ambient_c) = options.ambient_c {
+        question.heat.ambient = ambient::constant(ambient_c)?;
+    }
+    question.heat.paper = options.paper.unwrap_or(question.heat.paper);
+    let fit = fit_asked(&book, &desk, options)?;
+    question.fit = fit.as_ref();
     let mut dossier = question.dossier()?;
     let which = match options.working.as_deref() {
         // Present values are taken down to the years, which is long: only where asked for.
@@ -37,7 +49,7 @@ pub(super) fn unit(args: &Args, options: &Unit, printer: &mut Printer) -> Result
         }
         Format::Text => {
             if !matches!(which, Opening::One(_)) {
-                text(printer, &dossier)?;
+                text::text(printer, &dossier)?;
             }
             for figure in &dossier.working {
                 printer.line("")?;
@@ -49,109 +61,30 @@ pub(super) fn unit(args: &Args, options: &Unit, printer: &mut Printer) -> Result
     Ok(Exit::Done)
 }
 
-fn text(printer: &mut Printer, d: &Dossier<'_>) -> Result<(), Failure> {
-    printer.line(format!("Unit {}, basis {}", d.unit, d.basis))?;
-    printer.line("")?;
-    for column in columns::Unit::COLUMNS {
-        let value = d.nameplate.get(column.name).filter(|v| !v.is_null());
-        if let Some(value) = value.filter(|_| column.name != "unit") {
-            let value = value.as_str().map_or_else(|| value.to_string(), str::to_owned);
-            printer.line(format!("  {:<22} {value} {}", column.name, column.unit()))?;
+/// What is to be fitted to the place of the unit.
+fn fit_asked(book: &Book, desk: &Desk, options: &Unit) -> Result<Option<FitAsked>, Failure> {
+    let mut asked = match (&options.fit, options.fit_bid.as_deref()) {
+        (Some(offer), _) => FitAsked::of_offer(desk.offer(offer)?)?,
+        (None, Some([tender, lot, bid])) => {
+            let sheet = book.tender(tender)?;
+            FitAsked::of_bid(&sheet, lot, bid)?
         }
-    }
-    if let Some(c) = &d.circuit {
-        printer.line("")?;
-        printer.line(format!(
-            "Circuit, per unit of its rating: R {}, X {}, Z {}",
-            group(c.r_pu, 5),
-            group(c.x_pu, 5),
-            group(c.z_pu, 5)
-        ))?;
-    }
-    if d.losses.is_some() {
-        printer.line("")?;
-        let best = d.best_load_pu.map_or("unknown".to_owned(), |pu| format!("{} pu", group(pu, 3)));
-        printer.line(format!(
-            "At power factor {} (best efficiency at {best}):",
-            group(d.power_factor, 2)
-        ))?;
-        let column = |key, heading: &str, unit: &str, places| TextColumn {
-            key,
-            heading: heading.to_owned(),
-            unit: unit.to_owned(),
-            places,
-        };
-        let columns = [
-            column("load_pu", "load", "pu", 2),
-            column("efficiency_pct", "efficiency", "%", 3),
-            column("regulation_pct", "regulation", "%", 3),
-        ];
-        printer.table(&columns, d.load_points.iter())?;
-    }
-    for (name, loss) in d.estimated.iter().flat_map(EstimatedRow::losses) {
-        printer.line(format!(
-            "Estimated {name}: {} W, with 95 % between {} and {} W; from {} units by {}{}.",
-            group(loss.estimate_w, 0),
-            group(loss.low_w, 0),
-            group(loss.high_w, 0),
-            loss.known_units,
-            loss.terms.join(", "),
-            match loss.units_set_aside {
-                0 => String::new(),
-                aside => format!(", {aside} set aside as misread"),
-            }
-        ))?;
-    }
-    if let Some(l) = &d.losses {
-        printer.line("")?;
-        printer.line(format!(
-            "Year 1: iron {} kWh, copper {} kWh, auxiliaries {} kWh, cost {} {}; losses {}.",
-            group(l.no_load_energy_kwh, 0),
-            group(l.load_energy_kwh, 0),
-            group(l.auxiliary_energy_kwh, 0),
-            group(l.loss_cost, 0),
-            d.currency,
-            voltage_words(d.voltage_model)
-        ))?;
-    }
-    printer.line("")?;
-    if let Some(why) = d.left_out {
-        printer.line(format!("Not ranked: {why}."))?;
-    }
-    if let Some(k) = &d.keep_or_replace {
-        let currency = &d.currency;
-        printer.line(format!("Keep it to the end: {} {currency}", group(k.keep_pv, 0)))?;
-        match (k.best_year, k.best_offer) {
-            (Some(year), Some(offer)) => printer.line(format!(
-                "Best: replace in {year} by {offer}: {} {currency}, saves {} {currency} (present value).",
-                group(k.best_pv, 0),
-                group(k.saving_pv, 0)
-            ))?,
-            _ => printer.line("Best: keep it; no offer pays within the years looked at.")?,
+        _ => return Ok(None),
+    };
+    asked.beside = options.beside.as_deref().map(|unit| book.unit(unit)).transpose()?;
+    asked.network_mva = options.network_mva;
+    asked.fault_limit_mva = options.fault_limit_mva;
+    Ok(Some(asked))
+}
+
+/// Reads a year of ambient temperatures; what is wrong in the file is said as an import says it.
+fn ambient_year(printer: &Printer, file: &Path) -> Result<AmbientYear, Failure> {
+    let failed = |error: SourceError| Failure::new(Exit::Failed, error.to_string());
+    let source = Source::open(file).map_err(failed)?;
+    AmbientYear::read(source).map_err(failed)?.map_err(|problems| {
+        for problem in problems.list() {
+            printer.complain(&problem.to_string());
         }
-        if k.waiting_pv > 0.0 {
-            printer.line(format!(
-                "A year's delay costs at least {} {currency}.",
-                group(k.waiting_pv, 0)
-            ))?;
-        }
-        printer.line("")?;
-        printer.line("Best offer in each year:")?;
-        let column = |key, heading: &str, unit: &str| TextColumn {
-            key,
-            heading: heading.to_owned(),
-            unit: unit.to_owned(),
-            places: 0,
-        };
-        let columns = [
-            column("year", "year", ""),
-            column("offer", "offer", ""),
-            column("pv", "present value", currency),
-        ];
-        printer.table(&columns, k.years.iter())?;
-    }
-    for flag in &d.flags {
-        printer.line(format!("! {flag}: {}", flag_meaning(flag).unwrap_or_default()))?;
-    }
-    Ok(())
+        Failure::new(Exit::Rejected, format!("{}: correct it", file.display()))
+    })
 }

@@ -5,9 +5,11 @@
 //! of the same name ([`Unit`], [`Offer`], [`Basis`] …) is declared in the same breath by `record!`.
 //! The unit of a quantity is the suffix of its name ([`Column::unit`]). Owns no file and no database.
 
+mod asked_back;
 mod facts;
 mod records;
 
+pub use asked_back::asked_back;
 pub use facts::{Cell, Column, Kind, Money, Value, choices, nearest};
 pub use records::*;
 

@@ -7,6 +7,7 @@ pub mod fleet;
 pub mod keep_or_replace;
 pub mod parts;
 pub mod place;
+pub mod side_by_side;
 pub mod tender;
 pub mod uncertainty;
 

@@ -13,5 +13,6 @@ pub mod owning_cost;
 pub mod payback;
 pub mod penalty;
 pub mod running_cost;
+pub mod traps;
 
 pub use assumptions::Assumptions;

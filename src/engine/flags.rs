@@ -2,7 +2,7 @@
 
 /// A set of flags, kept as bits.
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
-pub struct Flags(pub u32);
+pub struct Flags(pub u64);
 
 macro_rules! flags {
     ($($bit:expr, $constant:ident, $key:literal, $meaning:literal;)+) => {
@@ -43,6 +43,10 @@ flags! {
     25, OFFER_OVERLOADED, "offer_overloaded", "the best offer is smaller than the peak load of a year of its service; set loading_limit_pu to rule that out";
     26, IMPEDANCE_UNKNOWN, "impedance_unknown", "impedance_pct is blank or contradicts the load loss: its voltage drop is that of the resistance alone";
     27, OFFER_IMPEDANCE_UNKNOWN, "offer_impedance_unknown", "impedance_pct of an offer is blank or contradicts its load loss: its voltage drop is that of the resistance alone";
+    28, CAPACITY_SCALE, "capacity_scale", "the capacity charge of a kW and year is above what a kW of loss costs in energy all year: is it an investment, paid once? Give what it costs per year";
+    29, DEMAND_UNUSED, "demand_unused", "factor_method levelized does not use demand_charge_per_kw_year: what capacity costs per kW and year is investment_per_kw_year there";
+    30, INVESTMENT_UNUSED, "investment_unused", "factor_method present-value does not use investment_per_kw_year: what capacity costs per kW and year is demand_charge_per_kw_year there";
+    31, LOSS_VALUE_SCALE, "loss_value_scale", "the capitalised losses of the best offer are under 1 % or over 50 times its price: is the energy price per kWh, are losses in W and prices per unit?";
 }
 
 impl Flags {

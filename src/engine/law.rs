@@ -14,9 +14,12 @@ mod united_states;
 use chrono::NaiveDate;
 
 use crate::engine::Refusal;
-use crate::engine::columns::{Insulation, Mounting, TapChanger, WindingMetal, choice, nearest};
+use crate::engine::columns::{
+    Insulation, Mounting, Offer, TapChanger, Unit, WindingMetal, choice, nearest,
+};
+use crate::engine::transformer::losses::Losses;
 use crate::engine::transformer::temperature::{load_loss_at, vanishing_temp_c};
-use crate::engine::working::{Step, Working};
+use crate::engine::working::{Formula, Recorder as _, Step, Working};
 
 pub use tables::Confidence;
 
@@ -98,6 +101,38 @@ impl Subject {
             stray_share_pu: 0.0,
             no_load_cooling_w: None,
             load_cooling_w: None,
+        }
+    }
+
+    /// A unit that stands, with its losses at its rating.
+    pub fn of_unit(unit: &Unit, losses: &Losses, stray_share_pu: f64) -> Self {
+        Self {
+            phases: unit.phases,
+            frequency_hz: unit.frequency_hz,
+            hv_kv: unit.hv_kv,
+            lv_kv: unit.lv_kv,
+            hv_um_kv: unit.hv_um_kv,
+            insulation: unit.insulation,
+            mounting: unit.mounting,
+            tap_changer: unit.tap_changer,
+            winding_metal: unit.winding_metal,
+            reference_temp_c: unit.reference_temp_c,
+            stray_share_pu,
+            ..Self::new(losses.rated_kva, losses.no_load_loss_w, losses.load_loss_w)
+        }
+    }
+
+    /// An offer, with its losses at its rating.
+    pub fn of_offer(offer: &Offer, losses: &Losses, stray_share_pu: f64) -> Self {
+        Self {
+            phases: offer.phases,
+            hv_kv: offer.hv_kv,
+            lv_kv: offer.lv_kv,
+            insulation: offer.insulation,
+            winding_metal: offer.winding_metal,
+            reference_temp_c: offer.reference_temp_c,
+            stray_share_pu,
+            ..Self::new(losses.rated_kva, losses.no_load_loss_w, losses.load_loss_w)
         }
     }
 
@@ -255,6 +290,20 @@ pub fn check(key: &str, subject: &Subject, date: NaiveDate) -> Result<Verdict, R
     Ok(Verdict { working: working.into_steps(), ..verdict })
 }
 
+const LIMIT: Formula = Formula {
+    name: "legal limit",
+    symbol: "limit",
+    formula: "as the table gives it, with its corrections",
+    unit: "",
+    source: "the law and table that are named",
+};
+const HELD: Formula = Formula {
+    name: "value held against the legal limit",
+    symbol: "value",
+    formula: "under the conditions of the law",
+    ..LIMIT
+};
+
 /// The verdict, its steps stated to `w`.
 pub(crate) fn judge(
     w: &mut Working,
@@ -269,6 +318,12 @@ pub(crate) fn judge(
         Finding::Free(why, confidence) => (Some(true), why, Vec::new(), confidence),
         Finding::Open(why, confidence) => (None, why, Vec::new(), confidence),
         Finding::Limits(limits) => {
+            for limit in &limits {
+                for (formula, value) in [(&LIMIT, limit.limit), (&HELD, limit.value)] {
+                    w.step(formula, &[], value);
+                    w.about(&|| limit.quantity.to_owned());
+                }
+            }
             let least = limits.iter().map(|l| l.confidence).min().unwrap_or(Confidence::Memory);
             (Some(limits.iter().all(Limit::meets)), String::new(), limits, least)
         }

@@ -2,7 +2,7 @@
 
 use super::problem::{Problems, ROW};
 use super::{Decimals, Row};
-use crate::engine::columns::{Column, Kind, Value, nearest};
+use crate::engine::columns::{Column, Kind, Value, asked_back, nearest};
 
 /// Whether a column's cells are numbers.
 pub(super) fn is_number(column: &Column) -> bool {
@@ -182,6 +182,9 @@ pub(super) fn count(number: usize, what: &str) -> String {
 }
 
 fn unknown(name: &str, columns: &[Column]) -> String {
+    if let Some(question) = asked_back(name) {
+        return question.to_owned();
+    }
     let hint = match near(name, columns.iter().map(|column| column.name)) {
         Some(near) => format!("did you mean {near}?"),
         None => "its names are in the column table".to_owned(),

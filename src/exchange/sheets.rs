@@ -12,7 +12,7 @@ use super::rules::{self, Rules};
 use super::{ReadError, Source};
 use crate::engine::columns::{
     Basis, BasisBudget, BasisRange, BasisSheet, Column, Distribution, Kind, Lot, Tender,
-    TenderRate, TenderSheet, Value,
+    TenderRate, TenderSheet, Value, asked_back,
 };
 
 /// Largest file (bytes).
@@ -247,14 +247,15 @@ impl Reader<'_, '_> {
         self.lines.entry(name.to_owned()).or_insert(line);
         let Some(place) = columns.iter().position(|column| column.name == name) else {
             let known = columns.iter().map(|column| column.name).chain(tables.iter().copied());
-            let hint = near(name, known)
-                .map_or_else(String::new, |near| format!("; did you mean {near}?"));
-            self.problems.add(
-                line,
-                name,
-                &shown(value.get_ref()),
-                format!("is no key of {what}{hint}"),
+            let why = asked_back(name).map_or_else(
+                || {
+                    let hint = near(name, known)
+                        .map_or_else(String::new, |near| format!("; did you mean {near}?"));
+                    format!("is no key of {what}{hint}")
+                },
+                str::to_owned,
             );
+            self.problems.add(line, name, &shown(value.get_ref()), why);
             return;
         };
         match read(&columns[place], value.get_ref()) {

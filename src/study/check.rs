@@ -9,6 +9,7 @@ use crate::engine::columns::{Basis, Bid, Lot, Offer, Unit, VoltageModel, YesNo};
 use crate::engine::decision::LeftOut;
 use crate::engine::decision::place::{loading_contradicts, losses_contradict};
 use crate::engine::economics::Assumptions;
+use crate::engine::economics::traps;
 use crate::engine::flags::Flags;
 use crate::engine::loading::{Profile, Ratios};
 use crate::engine::transformer::losses::quoted;
@@ -363,6 +364,17 @@ impl Doubts {
         let of = ("basis", name);
         match desk.context() {
             Ok(context) => {
+                let price = context.market.constant.price_per_kwh;
+                let doubts = traps::of_basis(&context.assumptions, price);
+                for (flag, column) in [
+                    (Flags::CAPACITY_SCALE, "demand_charge_per_kw_year"),
+                    (Flags::DEMAND_UNUSED, "demand_charge_per_kw_year"),
+                    (Flags::INVESTMENT_UNUSED, "investment_per_kw_year"),
+                ] {
+                    if doubts.has(flag) {
+                        self.flag(of, column, Kind::Implausible, flag);
+                    }
+                }
                 for refusal in context.market.profiles.iter().filter_map(|p| p.as_ref().err()) {
                     self.add(of, refusal.quantity, Kind::Contradictory, refusal.to_string());
                 }

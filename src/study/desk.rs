@@ -164,17 +164,7 @@ impl Desk {
         let dates: Vec<_> = (a.first_year..).take(a.years).map_while(law::at_start_of).collect();
         let mut flags = Flags::NONE;
         for (offer, candidate) in self.offers.iter().zip(&mut candidates) {
-            let losses = &candidate.losses;
-            let subject = Subject {
-                phases: offer.phases,
-                hv_kv: offer.hv_kv,
-                lv_kv: offer.lv_kv,
-                insulation: offer.insulation,
-                winding_metal: offer.winding_metal,
-                reference_temp_c: offer.reference_temp_c,
-                stray_share_pu: a.stray_share_pu,
-                ..Subject::new(losses.rated_kva, losses.no_load_loss_w, losses.load_loss_w)
-            };
+            let subject = Subject::of_offer(offer, &candidate.losses, a.stray_share_pu);
             candidate.lawful.clear();
             for date in &dates {
                 let verdict = law::check(law, &subject, *date)?;
@@ -200,6 +190,17 @@ impl Desk {
                 Err(Refusal::new("life_years", "", why).into())
             }
         }
+    }
+
+    /// An offer by its name.
+    ///
+    /// # Errors
+    /// It is not in the catalogue.
+    pub fn offer(&self, offer: &str) -> Result<&Offer, StudyError> {
+        self.offers.iter().find(|o| o.offer == offer).ok_or_else(|| {
+            let known = self.offers.iter().map(|o| o.offer.as_str());
+            StudyError::unknown("offer", offer, "the book", known)
+        })
     }
 
     /// The name of an offer by its index.

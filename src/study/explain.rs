@@ -53,14 +53,21 @@ impl StepRow {
         }
     }
 
-    /// A working as lines, `depth` steps in: parts indented below the figure that they give. Of a row of years by
-    /// one formula the first is written in full, the others in a line each.
+    /// Whether a row goes on with three or more by one formula that have parts of their own, as years do.
+    fn goes_on(rows: &[Self], n: usize) -> bool {
+        let same = |row: &&Self| row.formula == rows[n].formula && !row.of.is_empty();
+        let before = rows[..n].iter().rev().take_while(same).count();
+        let after = rows[n..].iter().take_while(same).count();
+        before > 0 && before + after >= 3 && !rows[n].steps.is_empty()
+    }
+
+    /// A working as lines, `depth` steps in: parts indented below the figure that they give. Of three or
+    /// more years by one formula the first is written in full, the others in a line each.
     pub fn lines(rows: &[Self], depth: usize) -> Vec<String> {
         let indent = "    ".repeat(depth);
         let mut lines = Vec::new();
         for (n, row) in rows.iter().enumerate() {
-            let again = n > 0 && !row.of.is_empty() && rows[n - 1].formula == row.formula;
-            if again && !row.steps.is_empty() {
+            if Self::goes_on(rows, n) {
                 let (of, value) = (&row.of, row.value);
                 lines.push(format!("{indent}{of}: {} = {value} {}", row.substituted, row.unit));
                 continue;

@@ -11,6 +11,8 @@ use crate::engine::decision::place::stated::{self, first_known, known_or};
 use crate::engine::economics::loss_factors::{
     LossFactors, difference_pct, levelized, of_duty, present_value,
 };
+use crate::engine::economics::traps;
+use crate::engine::flags::Flags;
 use crate::engine::loading::{Duty, factors};
 use crate::engine::working::{Recorder, Silent, Working};
 use crate::study::explain::{Explained, StepRow, numbers};
@@ -71,6 +73,8 @@ pub struct Factors {
     /// The factors by the other method, where the basis allows it: how much the method matters.
     pub other_method: Option<OtherMethod>,
     pub working: Vec<StepRow>,
+    /// What is doubtful.
+    pub flags: Vec<&'static str>,
 }
 
 /// Factors by the method that the basis does not use.
@@ -176,6 +180,19 @@ impl Question<'_> {
         })
     }
 
+    /// What is doubtful about the basis and about what was stated of the load.
+    fn doubts(&self) -> Flags {
+        let (a, market, asked) = (&self.context.assumptions, &self.context.market, self.asked);
+        let stated = *asked != LoadAsked::default() && asked.profile.is_none();
+        // A profile knows its load at the system peak where a series has that.
+        let system_load = self.desk.series.iter().any(|series| series.system_load.is_some());
+        let unknown = a.responsibility_pu.is_none() && (stated || !system_load);
+        traps::of_basis(a, market.constant.price_per_kwh)
+            .with_if(stated && asked.loss_factor_pu.is_none(), Flags::LOSS_FACTOR_ESTIMATED)
+            .with_if(stated && market.series, Flags::PRICE_NOT_WEIGHTED)
+            .with_if(a.demand_charge_per_kw_year > 0.0 && unknown, Flags::RESPONSIBILITY_DEFAULT)
+    }
+
     fn own<R: Recorder>(&self, w: &mut R, duty: &Duty) -> Result<LossFactors, Refusal> {
         of_duty(w, duty, 1.0, &self.context.assumptions)
     }
@@ -216,6 +233,7 @@ impl Question<'_> {
             load: load.to_owned(),
             other_method: other.map(|(other, method)| differs(&factors, &other, method)),
             working: StepRow::tree(working.steps()),
+            flags: self.doubts().keys(),
         })
     }
 }
@@ -228,7 +246,12 @@ pub fn factors(desk: &Desk, asked: &LoadAsked) -> Result<Factors, StudyError> {
     Question { desk, context: &desk.context()?, asked }.factors()
 }
 
-/// What the steps of A, B and A_aux are called.
+/// What the steps of a factor are called.
+pub(super) fn symbol(quantity: &str) -> &'static str {
+    let found = SYMBOLS.iter().find(|(key, _)| quantity.starts_with(key));
+    found.map_or("", |(_, symbol)| symbol)
+}
+
 const SYMBOLS: [(&str, &str); 3] =
     [("factor_a_", "A"), ("factor_b_", "B"), ("factor_aux_", "A_aux")];
 
@@ -253,8 +276,7 @@ impl Explained for Question<'_> {
                 duty.load_growth_pct(w);
             }
             _ => {
-                let symbol = SYMBOLS.iter().find(|(key, _)| quantity.starts_with(key));
-                let symbol = symbol.map_or("", |(_, symbol)| symbol);
+                let symbol = symbol(quantity);
                 w.append(told.into_steps());
                 let (mut own, mut other) = (Working::default(), Working::default());
                 self.own(&mut own, &duty)?;

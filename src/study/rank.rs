@@ -9,7 +9,7 @@ use serde::{Serialize, Serializer};
 
 use crate::engine::decision::estimate::End;
 use crate::engine::decision::fleet::{CHUNK, Kernel, Outcome};
-use crate::engine::decision::keep_or_replace::FirstYear;
+use crate::engine::decision::keep_or_replace::Replacement;
 use crate::engine::decision::place::resolve;
 use crate::engine::decision::{Context, LeftOut};
 use crate::engine::exact_sum::ExactSum;
@@ -296,7 +296,7 @@ impl Ranking {
         let t = outcome.best_year_offset;
         let candidate = (outcome.best_offer != Outcome::NONE)
             .then(|| &self.context.candidates[outcome.best_offer as usize]);
-        let first_year = candidate.map(|candidate| FirstYear {
+        let first_year = candidate.map(|candidate| Replacement {
             place: &resolved,
             candidate,
             offset: usize::from(t),

@@ -29,7 +29,7 @@ use crate::engine::working::{Recorder, Silent, Step, Working};
 
 pub use crate::engine::decision::tender::BasisForFactors;
 pub use case::{Case, Draws};
-pub use factors::{InCurrency, LegalLimit, LotFactors, lot_factors};
+pub use factors::{InCurrency, LegalLimit, LotFactors, LotQuestion, lot_factors};
 pub use results::*;
 
 /// Evaluates the bids of a tender: of one lot, or of all.

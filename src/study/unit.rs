@@ -1,17 +1,33 @@
 //! One unit's dossier: nameplate, loading, losses, and why it ranks where it does. [`Question`] answers; its
 //! figures are opened in `workings`.
 
+pub mod ambient;
+mod fit;
+pub mod thermal;
 mod workings;
 
+pub use fit::{BesideRow, FitAsked, FitRow};
+pub use thermal::Heat;
+
+use chrono::NaiveDate;
 use serde::Serialize;
 use serde_json::{Map, Value};
 
+use crate::engine::Refusal;
 use crate::engine::columns::{Column, Unit, Value as Cell, VoltageModel};
+use crate::engine::decision::estimate::End;
 use crate::engine::decision::fit::fitting;
-use crate::engine::decision::keep_or_replace::{Decision, FirstYear, YearChoice, decide};
+use crate::engine::decision::keep_or_replace::{
+    Decision, Replacement, YearChoice, decide, equal_yearly_cost,
+};
 use crate::engine::decision::parts::{PolicyCost, of_choice};
-use crate::engine::decision::place::{Place, power_factor, resolve};
+use crate::engine::decision::place::{Place, losses, power_factor, resolve};
 use crate::engine::decision::{Context, LeftOut, UnitFacts};
+use crate::engine::economics::loss_factors::present_value;
+use crate::engine::economics::owning_cost::{Priced, owning_cost};
+use crate::engine::economics::traps;
+use crate::engine::flags::Flags;
+use crate::engine::law::{self, Subject, Verdict};
 use crate::engine::transformer::circuit::{
     Circuit, Magnetising, PowerFactor, magnetising, of_nameplate,
 };
@@ -20,7 +36,9 @@ use crate::engine::transformer::{efficiency, regulation};
 use crate::engine::working::{Recorder, Silent};
 use crate::study::estimate::EstimatedRow;
 use crate::study::explain::FigureWorking;
+use crate::study::law::VerdictRow;
 use crate::study::losses::{LossesRow, of_unit, word};
+use crate::study::unit::thermal::ThermalRow;
 use crate::study::{Desk, StudyError};
 
 /// A unit under a basis: what a dossier is asked about.
@@ -34,6 +52,10 @@ pub struct Question<'a> {
     pub index: usize,
     /// Its record.
     pub unit: &'a Unit,
+    /// Under what it is judged thermally.
+    pub heat: Heat<'a>,
+    /// What is to be fitted to its place.
+    pub fit: Option<&'a FitAsked>,
 }
 
 /// Keep or replace, one unit, as it is written in JSON.
@@ -54,6 +76,15 @@ pub struct KeepOrReplace<'a> {
     pub capital: Option<f64>,
     pub energy_saved_kwh: Option<f64>,
     pub co2_saved_kg: Option<f64>,
+    /// Of buying the best offer now: rate of return, none where there is not exactly one.
+    pub now_irr_pct: Option<f64>,
+    /// Of the best choice.
+    pub discounted_payback_years: Option<f64>,
+    pub co2_avoided_t: Option<f64>,
+    pub cost_per_t_co2: Option<f64>,
+    /// Equal yearly cost of keeping and of the best choice over the horizon.
+    pub keep_euac: f64,
+    pub best_euac: f64,
     pub years: Vec<YearRow<'a>>,
     pub flags: Vec<&'static str>,
 }
@@ -180,6 +211,12 @@ pub struct Dossier<'a> {
     /// The losses that its nameplate leaves blank.
     pub estimated: Option<EstimatedRow>,
     pub keep_or_replace: Option<KeepOrReplace<'a>>,
+    pub thermal: ThermalRow,
+    /// The law that the basis names, were the unit bought in the first year.
+    pub law: Option<VerdictRow>,
+    /// How an offer or bid fits its place, where that was asked.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub fit: Option<FitRow>,
     /// Why it cannot be ranked.
     pub left_out: Option<&'static str>,
     pub flags: Vec<&'static str>,
@@ -201,7 +238,7 @@ impl<'a> Question<'a> {
     pub fn new(desk: &'a Desk, context: &'a Context, unit: &'a Unit) -> Result<Self, StudyError> {
         let index = desk.find(&unit.unit);
         let index = index.ok_or_else(|| StudyError::unknown("unit", &unit.unit, "the book", []))?;
-        Ok(Self { desk, context, index, unit })
+        Ok(Self { desk, context, index, unit, heat: Heat::default(), fit: None })
     }
 
     fn facts(&self) -> UnitFacts {
@@ -210,6 +247,21 @@ impl<'a> Question<'a> {
 
     fn place<R: Recorder>(&self, w: &mut R) -> Result<Place, LeftOut> {
         resolve(w, &self.facts(), self.context)
+    }
+
+    /// Its losses at its rating: also of a unit whose load is not known.
+    fn losses<R: Recorder>(&self, w: &mut R) -> Result<Losses, LeftOut> {
+        losses(w, &self.facts(), self.context, End::Middle)
+    }
+
+    /// What the law that the basis names says of it, were it bought in the first year; none where it names none or
+    /// its losses are not known.
+    fn verdict(&self) -> Result<Option<(Verdict, NaiveDate)>, Refusal> {
+        let a = &self.context.assumptions;
+        let (Some(law), Ok(losses)) = (&a.law, self.losses(&mut Silent)) else { return Ok(None) };
+        let subject = Subject::of_unit(self.unit, &losses, a.stray_share_pu);
+        let Some(on) = law::at_start_of(a.first_year) else { return Ok(None) };
+        Ok(Some((law::check(law, &subject, on)?, on)))
     }
 
     fn circuit<R: Recorder>(&self, w: &mut R, losses: &Losses) -> Option<Circuit> {
@@ -229,14 +281,14 @@ impl<'a> Question<'a> {
         let a = &self.context.assumptions;
         let w = &mut Silent;
         let place = self.place(w);
-        let losses = place.as_ref().ok().map(|place| place.losses);
+        let own = self.losses(w).ok();
         let power_factor = power_factor(w, &self.facts());
-        let circuit = losses.and_then(|l| self.circuit(w, &l));
-        let magnetised = losses.and_then(|l| self.magnetising(w, &l));
+        let circuit = own.and_then(|l| self.circuit(w, &l));
+        let magnetised = own.and_then(|l| self.magnetising(w, &l));
         let pf = PowerFactor::lagging(power_factor)?;
         let load_points = LOADS.map(|load_pu| LoadPoint {
             load_pu,
-            efficiency_pct: losses
+            efficiency_pct: own
                 .and_then(|l| efficiency::at_load_pct(&mut Silent, &l, load_pu, power_factor).ok()),
             regulation_pct: circuit.map(|c| regulation::exact_pct(&mut Silent, &c, load_pu, pf)),
         });
@@ -246,6 +298,11 @@ impl<'a> Question<'a> {
             (Err(_), Ok(place)) => place.flags,
             (Err(_), Err(_)) => self.context.flags,
         };
+        let price = self.context.market.constant.price_per_kwh;
+        let mut flags = flags.with(traps::of_basis(a, price));
+        if let Ok((place, decision)) = &decided {
+            flags = flags.with(self.value_scale(place, decision));
+        }
         Ok(Dossier {
             unit: self.unit.unit.clone(),
             basis: a.name.clone(),
@@ -260,7 +317,7 @@ impl<'a> Question<'a> {
             }),
             power_factor,
             load_points: load_points.to_vec(),
-            best_load_pu: losses.and_then(|l| efficiency::best_load(w, &l).ok()),
+            best_load_pu: own.and_then(|l| efficiency::best_load(w, &l).ok()),
             loading: place.as_ref().ok().map(|place| LoadingRow {
                 peak_kva: place.duty.peak_kva,
                 peak_pu: place.duty.peak_pu(w, place.losses.rated_kva),
@@ -275,25 +332,57 @@ impl<'a> Question<'a> {
             losses: of_unit(self.desk, self.context, self.index).ok(),
             estimated: EstimatedRow::of(self.context, &self.facts()),
             left_out: decided.as_ref().err().map(|why| why.why()),
-            keep_or_replace: decided.ok().map(|(place, d)| self.keep_or_replace(&place, &d)),
+            thermal: self.thermal(place.as_ref().ok(), decided.as_ref().ok().map(|(_, d)| d)),
+            fit: self.fitted().map(|fit| fit.row()).transpose()?,
+            law: self.verdict()?.map(|(verdict, on)| VerdictRow::of(&verdict, on)),
+            keep_or_replace: match &decided {
+                Ok((place, decision)) => Some(self.keep_or_replace(place, decision)?),
+                Err(_) => None,
+            },
             flags: flags.keys(),
             voltage_model: a.voltage_model,
             working: Vec::new(),
         })
     }
 
-    /// What the best choice brings in its first year of service; none where it is to keep.
-    fn first_year<'s>(&'s self, place: &'s Place, decision: &Decision) -> Option<FirstYear<'s>> {
-        decision.best.map(|best| FirstYear {
+    /// Whether the losses of the best offer, capitalised, look like another unit beside its price.
+    fn value_scale(&self, place: &Place, decision: &Decision) -> Flags {
+        let Some(choice) = decision.best.or(decision.now) else { return Flags::NONE };
+        let candidate = &self.context.candidates[choice.offer];
+        let losses = &candidate.losses;
+        let (a, rated_kva) = (&self.context.assumptions, losses.rated_kva);
+        let factors = present_value(&mut Silent, &place.duty, rated_kva, a);
+        let priced = Priced {
+            price: candidate.price,
+            added_cost: 0.0,
+            no_load_loss_w: losses.no_load_loss_w,
+            load_loss_w: losses.load_loss_w,
+            auxiliary_loss_w: losses.auxiliary_loss_w,
+        };
+        let cost = owning_cost(&mut Silent, &priced, &factors);
+        traps::of_value(cost.total() - cost.price, candidate.price)
+    }
+
+    /// A choice as a replacement; none where it is to keep.
+    fn replacement<'s>(
+        &'s self,
+        place: &'s Place,
+        choice: Option<YearChoice>,
+    ) -> Option<Replacement<'s>> {
+        choice.map(|choice| Replacement {
             place,
-            candidate: &self.context.candidates[best.offer],
-            offset: best.offset,
+            candidate: &self.context.candidates[choice.offer],
+            offset: choice.offset,
             assumptions: &self.context.assumptions,
         })
     }
 
     /// The decision as it is written in JSON.
-    fn keep_or_replace(&self, place: &Place, decision: &Decision) -> KeepOrReplace<'a> {
+    fn keep_or_replace(
+        &self,
+        place: &Place,
+        decision: &Decision,
+    ) -> Result<KeepOrReplace<'a>, Refusal> {
         let first_year = self.context.assumptions.first_year;
         #[expect(clippy::cast_possible_wrap, reason = "at most 200 years")]
         let year = |offset: usize| first_year + offset as i64;
@@ -304,9 +393,11 @@ impl<'a> Question<'a> {
             offer: offer(*choice),
             pv: choice.pv,
         };
-        let first = self.first_year(place, decision);
+        let first = self.replacement(place, decision.best);
+        let now = self.replacement(place, decision.now);
+        let a = &self.context.assumptions;
         let w = &mut Silent;
-        KeepOrReplace {
+        Ok(KeepOrReplace {
             keep_pv: decision.keep_pv,
             never_pv: decision.keep_pv,
             now_offer: decision.now.map(offer),
@@ -321,9 +412,21 @@ impl<'a> Question<'a> {
             capital: first.map(|first| first.candidate.capital(w)),
             energy_saved_kwh: first.map(|first| first.energy_saved_kwh(w)),
             co2_saved_kg: first.map(|first| first.co2_saved_kg(w)),
+            now_irr_pct: now.and_then(|now| now.irr_pct(w)),
+            discounted_payback_years: match first {
+                Some(first) => first.discounted_payback_years(w)?,
+                None => None,
+            },
+            co2_avoided_t: first.map(|first| first.co2_avoided_t(w)),
+            cost_per_t_co2: match first {
+                Some(first) => first.cost_per_t_co2(w)?,
+                None => None,
+            },
+            keep_euac: equal_yearly_cost(w, decision.keep_pv, a),
+            best_euac: equal_yearly_cost(w, decision.best_pv, a),
             years: decision.years.iter().map(row).collect(),
             flags: decision.flags.keys(),
-        }
+        })
     }
 }
 

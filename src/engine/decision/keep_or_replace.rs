@@ -5,9 +5,11 @@
 
 mod first_year;
 mod formulas;
+mod indicators;
 mod valuation;
 
-pub use first_year::FirstYear;
+pub use first_year::Replacement;
+pub use indicators::equal_yearly_cost;
 pub use valuation::Valuation;
 
 use super::equal_pv;

@@ -240,6 +240,34 @@ pub fn power_factor<R: Recorder>(w: &mut R, f: &UnitFacts) -> f64 {
     known_or(w, &stated::POWER_FACTOR, own, (0.9, "the default"))
 }
 
+/// Which loss a nameplate leaves blank; none where both follow from it.
+fn blank_loss(f: &UnitFacts) -> Option<LeftOut> {
+    match (known(f.no_load_loss_w), known(f.load_loss_w), known(f.total_loss_w)) {
+        (None, None, _) => Some(LeftOut::LossesBlank),
+        (None, Some(_), None) => Some(LeftOut::NoLoadLossBlank),
+        (Some(_), None, None) => Some(LeftOut::LoadLossBlank),
+        _ => None,
+    }
+}
+
+/// The losses of a unit at its rating: its nameplate's, else estimated where the basis has that done.
+///
+/// # Errors
+/// A blank loss that is not estimated; a total below one of its parts.
+pub fn losses<R: Recorder>(
+    w: &mut R,
+    f: &UnitFacts,
+    ctx: &Context,
+    end: End,
+) -> Result<Losses, LeftOut> {
+    if let Some(blank) = blank_loss(f) {
+        return ctx.estimate.as_ref().ok_or(blank)?.losses(w, f, end);
+    }
+    let (p0, pk, total) = (known(f.no_load_loss_w), known(f.load_loss_w), known(f.total_loss_w));
+    let (base, auxiliary) = (known(f.loss_base_kva), known(f.auxiliary_loss_w));
+    quoted(w, f.rated_kva, base, p0, pk, total, auxiliary).map_err(|_| LeftOut::TotalBelowPart)
+}
+
 /// Fills the blanks of a unit from profile, basis and default (methods, sections 0 and 3).
 ///
 /// # Errors
@@ -263,21 +291,11 @@ pub fn resolve_at<R: Recorder>(
     if !f.in_service {
         return Err(LeftOut::OutOfService);
     }
+    let mut losses = losses(w, f, ctx, end)?;
     let (p0, pk, total) = (known(f.no_load_loss_w), known(f.load_loss_w), known(f.total_loss_w));
-    let missing = match (p0, pk, total) {
-        (None, None, _) => Some(LeftOut::LossesBlank),
-        (None, Some(_), None) => Some(LeftOut::NoLoadLossBlank),
-        (Some(_), None, None) => Some(LeftOut::LoadLossBlank),
-        _ => None,
-    };
     let base = known(f.loss_base_kva);
-    let mut losses = match missing {
-        None => quoted(w, f.rated_kva, base, p0, pk, total, known(f.auxiliary_loss_w))
-            .map_err(|_| LeftOut::TotalBelowPart)?,
-        Some(missing) => ctx.estimate.as_ref().ok_or(missing)?.losses(w, f, end)?,
-    };
     flags = flags
-        .with_if(missing.is_some(), Flags::LOSS_ESTIMATED)
+        .with_if(blank_loss(f).is_some(), Flags::LOSS_ESTIMATED)
         .with_if(pk.is_none() && total.is_some(), Flags::LOAD_LOSS_FROM_TOTAL)
         .with_if(
             base.is_some_and(|b| b != f.rated_kva) && (pk.is_some() || total.is_some()),

@@ -83,6 +83,19 @@ impl Duty {
     }
 }
 
+const LOADING: Formula = Formula {
+    name: "load over the rating",
+    symbol: "β",
+    formula: "S/S_r",
+    unit: "pu",
+    source: "methods, section 2",
+};
+
+/// A load over a rating (pu).
+pub fn loading_pu<R: Recorder>(w: &mut R, load_kva: f64, rated_kva: f64) -> f64 {
+    w.step(&LOADING, &[("S", load_kva), ("S_r", rated_kva)], load_kva / rated_kva)
+}
+
 /// Peak load of year `k` = 1, 2, … for a load that grows for `growth_years` years (kVA).
 pub fn peak_of_year<R: Recorder>(w: &mut R, duty: &Duty, k: usize, growth_years: usize) -> f64 {
     let value = duty.peak_kva * growth(duty.load_growth_pu, k, growth_years);

@@ -62,6 +62,12 @@ const LOAD_LOSS_FROM_TOTAL: Formula = Formula {
     unit: "W",
     source: "common practice of quotations, no source; methods, section 1",
 };
+const NO_LOAD_FROM_TOTAL: Formula = Formula {
+    name: "no-load loss from the total loss",
+    symbol: "P0",
+    formula: "P_total − Pk",
+    ..LOAD_LOSS_FROM_TOTAL
+};
 
 /// The quoted losses of a transformer brought to its rating.
 ///
@@ -90,7 +96,10 @@ pub fn quoted<R: Recorder>(
             );
             return Err(Refusal::new("total_loss_w", total, why));
         }
-        (None, Some(pk), Some(total)) if total >= pk => (total - pk, pk),
+        (None, Some(pk), Some(total)) if total >= pk => {
+            let inputs = [("P_total", total), ("Pk", pk)];
+            (w.step(&NO_LOAD_FROM_TOTAL, &inputs, total - pk), pk)
+        }
         (Some(_), None, None) => {
             return missing("load_loss_w", "load loss is blank, and so is total_loss_w");
         }

@@ -1,11 +1,15 @@
 //! Top-oil and hot-spot temperature of liquid-immersed transformers (IEC 60076-7): steady, and over time by three
 //! first-order states. Owns constants, ratings and states; ageing is in [`super::ageing`]. Dry-type is refused.
 
-use super::ageing::Paper;
+mod year;
+
+pub use year::{Limits, NORMAL_CYCLIC, Year, year};
+
 use super::circuit::positive;
+use super::losses::Losses;
 use crate::engine::Refusal;
 use crate::engine::columns::{Insulation, choice};
-use crate::engine::working::{Formula, Recorder};
+use crate::engine::working::{Formula, Recorder, Silent};
 
 choice! {
     /// How a unit is cooled, as the table of constants names it.
@@ -151,7 +155,43 @@ pub fn liquid(insulation: Option<Insulation>) -> Result<(), Refusal> {
     Ok(())
 }
 
+const LOSS_RATIO: Formula = Formula {
+    name: "load loss over no-load loss at rated load",
+    symbol: "R",
+    formula: "Pk/P0",
+    unit: "",
+    source: "IEC 60076-7",
+};
+
+const fn rise(name: &'static str, symbol: &'static str, unit: &'static str) -> Formula {
+    Formula { name, symbol, formula: "as stated", unit, source: "IEC 60076-7 (memory)" }
+}
+/// Top-oil rise at rated load.
+pub const TOP_OIL_RISE: Formula = rise("top-oil rise at rated load", "Δθor", "K");
+/// Average winding over average oil.
+pub const GRADIENT_RISE: Formula =
+    rise("average winding over average oil at rated load", "gr", "K");
+/// Hot-spot factor.
+pub const HOT_SPOT_FACTOR: Formula = rise("hot-spot factor", "H", "");
+
+/// What a unit may do beyond its rating is not said by a calculation: the words that stay on screen.
+pub const CAUTION: &str = "Screening, not a loading instruction: loading beyond nameplate follows local codes, the manufacturer's instructions and licensed engineers.";
+
 impl ThermalModel {
+    /// The model of a unit of which only cooling and losses are known: constants and typical rises of its mode
+    /// (memory), the loss ratio its own where it has a no-load loss.
+    pub fn of_losses(mode: CoolingMode, losses: &Losses) -> Self {
+        let loss_ratio = Self::loss_ratio(&mut Silent, mode, losses);
+        Self { constants: mode.constants(), rises: Rises { loss_ratio, ..mode.typical_rises() } }
+    }
+
+    /// Load loss over no-load loss at rated load, R; the typical one where there is no no-load loss.
+    pub fn loss_ratio<R: Recorder>(w: &mut R, mode: CoolingMode, losses: &Losses) -> f64 {
+        let (p0, pk) = (losses.no_load_loss_w, losses.load_loss_w);
+        let value = if p0 > 0.0 { pk / p0 } else { mode.typical_rises().loss_ratio };
+        w.step(&LOSS_RATIO, &[("Pk", pk), ("P0", p0)], value)
+    }
+
     /// Holds all constants and rises in their ranges.
     ///
     /// # Errors
@@ -350,89 +390,9 @@ pub fn step<R: Recorder>(
     Ok(state)
 }
 
-/// Temperatures that must not be passed.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Limits {
-    /// Of the hot spot (°C).
-    pub hot_spot_c: f64,
-    /// Of the top oil (°C).
-    pub top_oil_c: f64,
-}
-
-/// Normal cyclic loading, IEC 60076-7 (memory): hot spot 120 °C, top oil 105 °C.
-pub const NORMAL_CYCLIC: Limits = Limits { hot_spot_c: 120.0, top_oil_c: 105.0 };
-
-/// What a year of load does to the insulation.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Year {
-    /// Step of the highest hot-spot temperature, counted from 0; the first of equals.
-    pub hottest_step: usize,
-    /// Hot spot at its end (°C).
-    pub hottest_hot_spot_c: f64,
-    /// Highest top-oil temperature (°C).
-    pub hottest_top_oil_c: f64,
-    /// Hours with the hot spot above its limit.
-    pub hours_above_hot_spot: f64,
-    /// Hours with the top oil above its limit.
-    pub hours_above_top_oil: f64,
-    /// Hours of normal life used, ΣV·Δt at step ends.
-    pub life_used_hours: f64,
-    /// Hours looked at.
-    pub hours: f64,
-}
-
-/// Runs a unit through equal steps of load (of the rating) and ambient, from the steady state of the first step.
-///
-/// # Errors
-/// Constants out of range, no step, loads and ambients of unequal number, a negative load.
-pub fn year(
-    model: &ThermalModel,
-    paper: Paper,
-    limits: Limits,
-    load_pu: &[f64],
-    ambient_c: &[f64],
-    step_minutes: f64,
-) -> Result<Year, Refusal> {
-    model.check()?;
-    positive("step_minutes", step_minutes, "must be above zero")?;
-    let (Some(first_load), Some(first_ambient)) = (load_pu.first(), ambient_c.first()) else {
-        return Err(Refusal::new("load_pu", "", "no load to run through; give a profile"));
-    };
-    if load_pu.len() != ambient_c.len() {
-        let why = format!("loads stand beside {} ambient temperatures", ambient_c.len());
-        return Err(Refusal::new("load_pu", load_pu.len(), why));
-    }
-    let w = &mut crate::engine::working::Silent;
-    let mut state = steady(w, model, first_load.abs(), *first_ambient);
-    let hours = step_minutes / 60.0;
-    let mut year = Year {
-        hottest_step: 0,
-        hottest_hot_spot_c: f64::NEG_INFINITY,
-        hottest_top_oil_c: f64::NEG_INFINITY,
-        hours_above_hot_spot: 0.0,
-        hours_above_top_oil: 0.0,
-        life_used_hours: 0.0,
-        hours: 0.0,
-    };
-    for (n, (k, ambient)) in load_pu.iter().zip(ambient_c).enumerate() {
-        state = step(w, model, Scheme::Exact, state, k.abs(), *ambient, step_minutes)?;
-        let hot = state.hot_spot_c();
-        if hot > year.hottest_hot_spot_c {
-            (year.hottest_step, year.hottest_hot_spot_c) = (n, hot);
-        }
-        year.hottest_top_oil_c = year.hottest_top_oil_c.max(state.top_oil_c);
-        year.hours_above_hot_spot += if hot > limits.hot_spot_c { hours } else { 0.0 };
-        year.hours_above_top_oil += if state.top_oil_c > limits.top_oil_c { hours } else { 0.0 };
-        year.life_used_hours += paper.ageing_rate(w, hot) * hours;
-        year.hours += hours;
-    }
-    Ok(year)
-}
-
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::engine::working::Silent;
 
     fn model(mode: CoolingMode) -> ThermalModel {
         ThermalModel { constants: mode.constants(), rises: mode.typical_rises() }
@@ -464,18 +424,6 @@ mod tests {
         let still = step(&mut Silent, &m, Scheme::Exact, start, 0.5, 20.0, 600.0).expect("sound");
         assert!((still.hot_spot_c() - start.hot_spot_c()).abs() < 1e-10);
         assert!(step(&mut Silent, &m, Scheme::Euler, start, 1.0, 20.0, 60.0).is_err());
-    }
-
-    #[test]
-    fn a_year_is_summed() {
-        let m = model(CoolingMode::DistributionOnan);
-        let load = [vec![0.5; 12], vec![1.4; 6], vec![0.5; 6]].concat();
-        let y = year(&m, Paper::Normal, NORMAL_CYCLIC, &load, &[20.0; 24], 60.0).expect("sound");
-        assert_eq!(y.hottest_step, 17, "the last hour of the high load");
-        assert!(y.hours_above_hot_spot > 0.0 && y.hours_above_hot_spot < 7.0);
-        assert_eq!(y.hours, 24.0);
-        assert!(year(&m, Paper::Normal, NORMAL_CYCLIC, &load, &[20.0; 23], 60.0).is_err());
-        assert!(year(&m, Paper::Normal, NORMAL_CYCLIC, &[], &[], 60.0).is_err());
     }
 
     #[test]

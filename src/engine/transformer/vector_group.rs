@@ -24,6 +24,15 @@ pub fn agree(a: Option<&str>, b: Option<&str>) -> bool {
     }
 }
 
+/// Number of phases of a vector group: `D`, `Y` and `Z` windings are of three phases, `I` of one.
+pub fn phases(vector_group: &str) -> Option<i64> {
+    match vector_group.trim().chars().next()?.to_ascii_uppercase() {
+        'D' | 'Y' | 'Z' => Some(3),
+        'I' => Some(1),
+        _ => None,
+    }
+}
+
 /// Refuses the vector groups of auto-transformers (`YNa0`, `Ia0`) and of three-winding units (`YNyn0d11`).
 ///
 /// # Errors
@@ -57,6 +66,12 @@ mod tests {
         );
         assert!(agree(Some("Dyn11"), None) && agree(Some("odd"), Some("Dyn11")));
         assert!(!agree(Some("Dyn11"), Some("Yyn0")));
+    }
+
+    #[test]
+    fn phases_are_read_from_the_vector_group() {
+        assert_eq!([phases("Dyn11"), phases(" yzn5"), phases("Ii0")], [Some(3), Some(3), Some(1)]);
+        assert_eq!([phases(""), phases("11")], [None, None]);
     }
 
     #[test]

@@ -11,6 +11,7 @@ use crate::engine::economics::discounting::annuity;
 use crate::engine::economics::loss_factors::{LossFactors, of_duty};
 use crate::engine::economics::owning_cost::{Priced, owning_cost};
 use crate::engine::economics::penalty::{Excess, penalty};
+use crate::engine::economics::traps::BELIEVED;
 use crate::engine::loading::{Duty, factors};
 
 pub(super) const CALCS: &[Calc] = &[FACTORS, OWNING_COST, PENALTY];
@@ -158,9 +159,6 @@ fn per_kw(
         (kw, w) => Ok(kw.or(w.map(|w| 1000.0 * w))),
     }
 }
-
-/// Capitalised losses as a part of the price that are believed without a question.
-const BELIEVED: std::ops::RangeInclusive<f64> = 0.01..=50.0;
 
 calc! {
     OWNING_COST = "owning-cost",

@@ -3,17 +3,19 @@
 
 use serde::Serialize;
 
-use super::{BasisForFactors, factor_scale, factors, find_lot, terms};
-use crate::engine::columns::{FactorMethod, Insulation, Lot, TenderSheet};
+use super::{BasisForFactors, Case, factor_scale, factors, find_lot, terms};
+use crate::engine::columns::{FactorMethod, Insulation, TenderSheet};
 use crate::engine::decision::tender::factors::{Computed, of_lot};
+use crate::engine::decision::tender::rates::in_currency;
 use crate::engine::decision::tender::{Terms, legal};
-use crate::engine::economics::loss_factors::LossFactors;
+use crate::engine::economics::loss_factors::{LossFactors, difference_pct};
 use crate::engine::flags::Flags;
-use crate::engine::law::Bound;
-use crate::engine::working::Silent;
+use crate::engine::law::Verdict;
+use crate::engine::working::{Recorder, Silent, Step, Working};
 use crate::study::StudyError;
-use crate::study::explain::StepRow;
-use crate::study::factors::{OtherMethod, differs};
+use crate::study::explain::{Explained, StepRow, nth, numbers};
+use crate::study::factors::{OtherMethod, differs, symbol};
+use crate::study::law::{self, bound};
 
 /// The factors of a lot in the tender currency.
 #[derive(Clone, Debug, PartialEq, Serialize)]
@@ -114,48 +116,63 @@ pub fn lot_factors(
         in_currencies: in_currencies(sheet, &own),
         other_method: basis
             .filter(|_| computed.any())
-            .and_then(|basis| other_method(&terms, lot, basis, &own)),
+            .and_then(|basis| by_other_method(&mut Silent, &terms, basis))
+            .map(|(other, method)| differs(&own, &other, method)),
         law: floor(&terms)?,
         flags: flags.keys(),
     })
 }
 
-fn in_currencies(sheet: &TenderSheet, own: &LossFactors) -> Vec<InCurrency> {
-    let home = std::iter::once((sheet.tender.currency.as_str(), 1.0));
+/// The currencies of a tender with their rates, its own first.
+fn currencies(sheet: &TenderSheet) -> impl Iterator<Item = (&str, f64)> {
+    let own = sheet.tender.currency.as_str();
     let others = sheet.rates.iter().map(|rate| (rate.currency.as_str(), rate.rate));
-    let all = home.chain(others.filter(|(code, _)| *code != sheet.tender.currency));
-    all.map(|(currency, rate)| InCurrency {
-        currency: currency.to_owned(),
-        factor_a_per_kw: own.factor_a_per_kw / rate,
-        factor_b_per_kw: own.factor_b_per_kw / rate,
-        factor_aux_per_kw: own.factor_aux_per_kw / rate,
-    })
-    .collect()
+    std::iter::once((own, 1.0)).chain(others.filter(move |(code, _)| *code != own))
 }
 
-fn other_method(
+fn in_currencies(sheet: &TenderSheet, own: &LossFactors) -> Vec<InCurrency> {
+    let w = &mut Silent;
+    currencies(sheet)
+        .map(|(currency, rate)| InCurrency {
+            currency: currency.to_owned(),
+            factor_a_per_kw: in_currency(w, own.factor_a_per_kw, rate),
+            factor_b_per_kw: in_currency(w, own.factor_b_per_kw, rate),
+            factor_aux_per_kw: in_currency(w, own.factor_aux_per_kw, rate),
+        })
+        .collect()
+}
+
+/// The factors by the method that the basis does not use, with its word.
+fn by_other_method<R: Recorder>(
+    w: &mut R,
     terms: &Terms,
-    lot: &Lot,
     basis: &BasisForFactors,
-    own: &LossFactors,
-) -> Option<OtherMethod> {
+) -> Option<(LossFactors, &'static str)> {
     let mut assumptions = basis.assumptions.clone();
     assumptions.factor_method = match assumptions.factor_method {
         FactorMethod::PresentValue => FactorMethod::Levelized,
         FactorMethod::Levelized => FactorMethod::PresentValue,
     };
     let other = BasisForFactors { assumptions: &assumptions, ..*basis };
-    let (factors, _) = of_lot(&mut Silent, lot, &terms.rates, Some(&other)).ok()?;
-    Some(differs(own, &factors, assumptions.factor_method.word()))
+    let (factors, _) = of_lot(w, terms.lot, &terms.rates, Some(&other)).ok()?;
+    Some((factors, assumptions.factor_method.word()))
 }
 
-/// What the law asks of the lot's rating, for each insulation, as a lot names none.
-fn floor(terms: &Terms) -> Result<Vec<LegalLimit>, StudyError> {
-    let mut limits = Vec::new();
+/// What the law says of the lot's rating, for each insulation, as a lot names none.
+fn verdicts(terms: &Terms) -> Result<Vec<(Insulation, Verdict)>, StudyError> {
+    let mut verdicts = Vec::new();
     for insulation in [Insulation::Liquid, Insulation::Dry] {
         let asked = legal::floor(terms, insulation);
         let asked = asked.map_err(StudyError::refused(format!("lot {}", terms.lot.lot)))?;
-        let Some(verdict) = asked else { return Ok(limits) };
+        verdicts.extend(asked.map(|verdict| (insulation, verdict)));
+    }
+    Ok(verdicts)
+}
+
+/// What the law asks of the lot's rating: a row for each limit, or one that says why there is none.
+fn floor(terms: &Terms) -> Result<Vec<LegalLimit>, StudyError> {
+    let mut limits = Vec::new();
+    for (insulation, verdict) in verdicts(terms)? {
         let row = LegalLimit {
             law: verdict.law,
             insulation: insulation.word(),
@@ -170,14 +187,76 @@ fn floor(terms: &Terms) -> Result<Vec<LegalLimit>, StudyError> {
         }
         limits.extend(verdict.limits.iter().map(|limit| LegalLimit {
             quantity: Some(limit.quantity),
-            bound: Some(match limit.bound {
-                Bound::Max => "at most",
-                Bound::Min => "at least",
-            }),
+            bound: Some(bound(limit.bound)),
             limit: Some(limit.limit),
             source: limit.source.clone(),
             ..row.clone()
         }));
     }
     Ok(limits)
+}
+
+/// The factors of a lot as a result that can be opened.
+#[derive(Clone, Copy, Debug)]
+pub struct LotQuestion<'a> {
+    /// The tender.
+    pub case: &'a Case,
+    /// The lot.
+    pub lot: &'a str,
+}
+
+impl Explained for LotQuestion<'_> {
+    fn called(&self) -> String {
+        format!("the factors of tender {}, lot {}", self.case.sheet.tender.tender, self.lot)
+    }
+
+    fn figures(&self) -> Result<Vec<(String, f64)>, StudyError> {
+        Ok(numbers(&self.case.factors(self.lot)?, &["working"], &["rated_kva"]))
+    }
+
+    fn state(&self, w: &mut Working, place: &[&str]) -> Result<(), StudyError> {
+        let (sheet, basis) = (&self.case.sheet, self.case.basis());
+        let lot = find_lot(sheet, self.lot)?;
+        let quantity = place.last().copied().unwrap_or_default();
+        let symbol = symbol(quantity);
+        let (_, own) = factors(sheet, basis.as_ref(), &lot.lot)?;
+        let own: Vec<Step> = own.into_iter().filter(|s| s.formula.symbol == symbol).collect();
+        let value = |steps: &[Step]| steps.last().map_or(0.0, |step| step.value);
+        match place {
+            ["law", n, _] => {
+                let (terms, _) = terms(&mut Silent, sheet, basis.as_ref(), lot)?;
+                let rows = verdicts(&terms)?.into_iter().flat_map(|(_, verdict)| {
+                    (0..verdict.limits.len().max(1)).map(move |limit| (verdict.clone(), limit))
+                });
+                let rows: Vec<(Verdict, usize)> = rows.collect();
+                let ((verdict, limit), _) = nth(&rows, n)?;
+                law::state(w, verdict.clone(), &limit.to_string(), "limit");
+            }
+            ["in_currencies", n, _] => {
+                let rates: Vec<(&str, f64)> = currencies(sheet).collect();
+                let ((_, rate), _) = nth(&rates, n)?;
+                let factor = value(&own);
+                w.append(own);
+                in_currency(w, factor, *rate);
+            }
+            ["other_method", _] => {
+                let (terms, _) = terms(&mut Silent, sheet, basis.as_ref(), lot)?;
+                let mut all = Working::default();
+                if let Some(basis) = &basis {
+                    by_other_method(&mut all, &terms, basis);
+                }
+                let other = all.only(&[symbol]);
+                if quantity.ends_with("_difference_pct") {
+                    let (mine, theirs) = (value(&own), value(&other));
+                    w.append(own);
+                    w.append(other);
+                    difference_pct(w, mine, theirs);
+                } else {
+                    w.append(other);
+                }
+            }
+            _ => w.append(own),
+        }
+        Ok(())
+    }
 }

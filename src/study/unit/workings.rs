@@ -2,7 +2,9 @@
 
 use super::{LOADS, Question, decision, fitting_offers};
 use crate::engine::Refusal;
-use crate::engine::decision::keep_or_replace::{Decision, Valuation, YearChoice, age};
+use crate::engine::decision::keep_or_replace::{
+    Decision, Valuation, YearChoice, age, equal_yearly_cost,
+};
 use crate::engine::decision::place::power_factor;
 use crate::engine::decision::{LeftOut, Place};
 use crate::engine::economics::assumptions::EnergyPrice;
@@ -15,11 +17,27 @@ use crate::engine::transformer::{efficiency, regulation};
 use crate::engine::working::{Step, Working};
 use crate::study::StudyError;
 use crate::study::explain::{Explained, numbers};
+use crate::study::law;
 
-/// Parts of a dossier that hold no figures: what the record says, and workings themselves.
+/// Parts of a dossier that are not opened: what the record says, the regression behind an estimate (it tells its
+/// interval and the units it rests on by itself), and workings.
 const NO_FIGURES: &[&str] = &["nameplate", "working"];
-/// Numbers that name a line or count instead of being computed.
-const LABELS: &[&str] = &["load_pu", "offset", "year", "known_units", "units_set_aside"];
+/// Numbers that name a line instead of being computed.
+const LABELS: &[&str] = &[
+    "known_units",
+    "units_set_aside",
+    "load_pu",
+    "offset",
+    "year",
+    "hottest_interval",
+    "hottest_hour",
+    "hours",
+    "loading_limit_pu",
+    "fault_limit_mva",
+    "ambient_c",
+    "hot_spot_limit_c",
+    "top_oil_limit_c",
+];
 
 /// How the losses at the rating come about.
 const OF_LOSSES: &[&str] = &["P0", "Pk_base", "Pk"];
@@ -68,7 +86,25 @@ impl Explained for Question<'_> {
             }
             ["loading", quantity] => self.loading(w, quantity)?,
             ["losses", quantity] => self.year_1(w, quantity)?,
+            ["law", "limits", n, side] => {
+                if let Some((verdict, _)) = self.verdict()? {
+                    law::state(w, verdict, n, side);
+                }
+            }
+            ["fit", place @ ..] => {
+                if let Some(fit) = self.fitted() {
+                    fit.state(w, place)?;
+                }
+            }
             ["estimated", loss, quantity] => self.estimated(w, loss, quantity)?,
+            ["thermal", "own", quantity] => {
+                let place = self.told(w, OF_LOSSES)?;
+                self.thermal_figure(w, &place, None, quantity)?;
+            }
+            ["thermal", "replacement", quantity] => {
+                let (place, decision) = self.decided()?;
+                self.thermal_figure(w, &place, Self::heat_choice(&decision), quantity)?;
+            }
             ["keep_or_replace", "years", n, "pv"] => {
                 let (place, decision) = self.decided()?;
                 let n = n.parse().ok().and_then(|n: usize| decision.years.get(n).copied());
@@ -113,7 +149,7 @@ impl Question<'_> {
 
     /// Circuit, efficiency and regulation.
     fn nameplate(&self, w: &mut Working, path: &[&str]) -> Result<(), Refusal> {
-        let losses = self.told(w, OF_LOSSES)?.losses;
+        let losses = self.losses(w).map_err(|why| self.refused(why))?;
         let (rated_kva, p0, pk) = (losses.rated_kva, losses.no_load_loss_w, losses.load_loss_w);
         let load = |n: &str| n.parse().ok().and_then(|n: usize| LOADS.get(n)).copied();
         match path {
@@ -236,6 +272,20 @@ impl Question<'_> {
         Ok(())
     }
 
+    /// A figure of how hot a transformer gets.
+    fn thermal_figure(
+        &self,
+        w: &mut Working,
+        place: &Place,
+        choice: Option<YearChoice>,
+        quantity: &str,
+    ) -> Result<(), Refusal> {
+        let mut all = Working::default();
+        self.state_heat(&mut all, place, choice, quantity)?;
+        w.append(of_heat(all, quantity));
+        Ok(())
+    }
+
     fn decided(&self) -> Result<(Place, Decision), StudyError> {
         let decided = decision(self.desk, self.context, self.index)?;
         Ok(decided.map_err(|why| self.refused(why))?)
@@ -244,9 +294,10 @@ impl Question<'_> {
     /// The figures of keep or replace.
     fn value(&self, w: &mut Working, quantity: &str) -> Result<(), StudyError> {
         let (place, decision) = self.decided()?;
-        let first_year = self.first_year(&place, &decision);
+        let chosen = self.replacement(&place, decision.best);
+        let a = &self.context.assumptions;
         let Decision { best, now, later, .. } = decision;
-        match (quantity, first_year) {
+        match (quantity, chosen) {
             ("now_pv", _) => self.policy(w, &place, now)?,
             ("best_pv", _) => self.policy(w, &place, best)?,
             ("saving_pv", _) => {
@@ -262,7 +313,7 @@ impl Question<'_> {
                 self.outline(w, &place, [None])?;
                 decision.best_delay(w);
                 if quantity == "best_year" {
-                    decision.best_year(w, self.context.assumptions.first_year);
+                    decision.best_year(w, a.first_year);
                 }
             }
             ("payback_years", Some(first)) => {
@@ -276,6 +327,28 @@ impl Question<'_> {
             }
             ("co2_saved_kg", Some(first)) => {
                 first.co2_saved_kg(w);
+            }
+            ("now_irr_pct", _) => {
+                if let Some(now) = self.replacement(&place, now) {
+                    now.irr_pct(w);
+                }
+            }
+            ("discounted_payback_years", Some(first)) => {
+                first.discounted_payback_years(w)?;
+            }
+            ("co2_avoided_t", Some(first)) => {
+                first.co2_avoided_t(w);
+            }
+            ("cost_per_t_co2", Some(first)) => {
+                first.cost_per_t_co2(w)?;
+            }
+            ("keep_euac", _) => {
+                self.outline(w, &place, [None])?;
+                equal_yearly_cost(w, decision.keep_pv, a);
+            }
+            ("best_euac", _) => {
+                self.outline(w, &place, [best])?;
+                equal_yearly_cost(w, decision.best_pv, a);
             }
             _ => self.policy(w, &place, None)?,
         }
@@ -325,5 +398,23 @@ impl Question<'_> {
             w.append(all.into_steps().into_iter().map(short));
         }
         Ok(())
+    }
+}
+
+/// The steps of how hot a transformer gets that give one quantity.
+pub(super) fn of_heat(all: Working, quantity: &str) -> Vec<Step> {
+    match quantity {
+        "hottest_hot_spot_c" => all.only(&["θh_max"]),
+        "hottest_top_oil_c" => all.only(&["θo_max"]),
+        "hours_above_hot_spot" => all.only(&["t_hot"]),
+        "hours_above_top_oil" => all.only(&["t_oil"]),
+        "life_used_hours" => all.only(&["L"]),
+        "life_used_pu" => all.only(&["L", "L_pu"]),
+        // The steady hot spot is stated from the top oil.
+        "steady_top_oil_c" => {
+            let steps = all.into_steps().into_iter().flat_map(|step| step.steps);
+            steps.filter(|step| step.formula.symbol == "θo").collect()
+        }
+        _ => all.into_steps(),
     }
 }

@@ -30,14 +30,14 @@ const CO2: Formula = Formula {
     source: "methods, section 4",
 };
 const CO2_SAVED: Formula = Formula {
-    name: "CO2 saved in the first year of service",
+    name: "CO2 saved in a year",
     symbol: "M_saved",
     formula: "M_old − M_new",
     unit: "kg",
     source: "methods, section 7",
 };
 const RUN_SAVED: Formula = Formula {
-    name: "running cost saved in the first year of service",
+    name: "running cost saved in a year",
     symbol: "saved",
     formula: "run_old − run_new",
     unit: "money",
@@ -51,9 +51,9 @@ const PAYBACK: Formula = Formula {
     source: "methods, section 7",
 };
 
-/// A replacement in its first year of service: the unit that it replaces beside it.
+/// A replacement, the unit that it replaces beside it. Here its first year of service.
 #[derive(Clone, Copy, Debug)]
-pub struct FirstYear<'a> {
+pub struct Replacement<'a> {
     /// The place with the old unit.
     pub place: &'a Place,
     /// The new unit.
@@ -64,8 +64,8 @@ pub struct FirstYear<'a> {
     pub assumptions: &'a Assumptions,
 }
 
-impl FirstYear<'_> {
-    fn duty(&self) -> &Duty {
+impl Replacement<'_> {
+    pub(super) fn duty(&self) -> &Duty {
         &self.place.duty
     }
 
@@ -81,8 +81,8 @@ impl FirstYear<'_> {
         (old, new)
     }
 
-    fn energy<R: Recorder>(&self, w: &mut R, losses: &Losses) -> Energy {
-        annual_energy(w, losses, self.duty(), self.offset + 1, self.assumptions.load_growth_years)
+    fn energy<R: Recorder>(&self, w: &mut R, losses: &Losses, k: usize) -> Energy {
+        annual_energy(w, losses, self.duty(), k, self.assumptions.load_growth_years)
     }
 
     /// Energy saved (kWh).
@@ -90,7 +90,7 @@ impl FirstYear<'_> {
         w.open();
         let (old, new) = self.both(w, |w, year, losses| {
             w.open();
-            let energy = year.energy(w, losses);
+            let energy = year.energy(w, losses, year.offset + 1);
             w.close(&ENERGY, &energy.inputs(), energy.total_kwh())
         });
         w.close(&ENERGY_SAVED, &[("E_old", old), ("E_new", new)], old - new)
@@ -98,10 +98,15 @@ impl FirstYear<'_> {
 
     /// CO2 saved (kg).
     pub fn co2_saved_kg<R: Recorder>(&self, w: &mut R) -> f64 {
+        self.co2_saved_in(w, self.offset + 1)
+    }
+
+    /// CO2 saved in year `k` of the horizon, after the purchase (kg).
+    pub(super) fn co2_saved_in<R: Recorder>(&self, w: &mut R, k: usize) -> f64 {
         w.open();
         let (old, new) = self.both(w, |w, year, losses| {
             w.open();
-            let e = year.energy(w, losses);
+            let e = year.energy(w, losses, k);
             let (k0, kk) = (year.duty().no_load_co2_kg_per_kwh, year.duty().load_co2_kg_per_kwh);
             let value =
                 (e.no_load_energy_kwh + e.auxiliary_energy_kwh) * k0 + e.load_energy_kwh * kk;
@@ -111,14 +116,17 @@ impl FirstYear<'_> {
         w.close(&CO2_SAVED, &[("M_old", old), ("M_new", new)], old - new)
     }
 
-    /// Running cost saved.
-    pub fn running_cost_saved<R: Recorder>(&self, w: &mut R) -> f64 {
-        let (k, a) = (self.offset + 1, self.assumptions);
+    /// Running cost saved in year `k` of the horizon, after the purchase.
+    pub(super) fn saved_in<R: Recorder>(&self, w: &mut R, k: usize) -> f64 {
+        let a = self.assumptions;
         w.open();
-        let age = age(self.place.year_made, a.first_year, k);
-        let old = running_cost::of_year(w, &self.place.losses, self.duty(), a, k, age).total();
+        let old_age = age(self.place.year_made, a.first_year, k);
+        let old = running_cost::of_year(w, &self.place.losses, self.duty(), a, k, old_age).total();
         w.about(&|| "the unit there".to_owned());
-        let new = running_cost::of_year(w, &self.candidate.losses, self.duty(), a, k, 0.0).total();
+        #[expect(clippy::cast_precision_loss, reason = "at most 200 years")]
+        let new_age = (k - self.offset - 1) as f64;
+        let new = &self.candidate.losses;
+        let new = running_cost::of_year(w, new, self.duty(), a, k, new_age).total();
         w.about(&|| self.candidate.offer.clone());
         w.close(&RUN_SAVED, &[("run_old", old), ("run_new", new)], old - new)
     }
@@ -127,7 +135,7 @@ impl FirstYear<'_> {
     pub fn payback_years<R: Recorder>(&self, w: &mut R) -> Option<f64> {
         w.open();
         let price = self.candidate.capital(w);
-        let saved = self.running_cost_saved(w);
+        let saved = self.saved_in(w, self.offset + 1);
         let scrap = self.place.removal_less_scrap;
         let inputs = [("P", price), ("removal_less_scrap", scrap), ("saved", saved)];
         let value = w.close(&PAYBACK, &inputs, (price + scrap) / saved);

@@ -7,6 +7,7 @@ use super::bid::Comparable;
 use crate::engine::Refusal;
 use crate::engine::columns::{Bid, Insulation, Tender};
 use crate::engine::law::{self, Subject, Verdict};
+use crate::engine::transformer::vector_group::phases;
 
 /// The day whose law counts: that of the tender, else the first of the basis's first year; none where neither
 /// is known.
@@ -68,24 +69,9 @@ pub fn floor(terms: &Terms, insulation: Insulation) -> Result<Option<Verdict>, R
     law::check(key, &subject, purchase).map(Some)
 }
 
-/// Number of phases of a vector group: `D`, `Y` and `Z` windings are of three phases, `I` of one.
-pub fn phases(vector_group: &str) -> Option<i64> {
-    match vector_group.trim().chars().next()?.to_ascii_uppercase() {
-        'D' | 'Y' | 'Z' => Some(3),
-        'I' => Some(1),
-        _ => None,
-    }
-}
-
 #[cfg(test)]
 mod tests {
     use super::*;
-
-    #[test]
-    fn phases_are_read_from_the_vector_group() {
-        assert_eq!([phases("Dyn11"), phases(" yzn5"), phases("Ii0")], [Some(3), Some(3), Some(1)]);
-        assert_eq!([phases(""), phases("11")], [None, None]);
-    }
 
     #[test]
     fn day_of_purchase() {

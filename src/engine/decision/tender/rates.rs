@@ -19,6 +19,19 @@ const CONVERTED: Formula = Formula {
     source: "rate stored with the tender; methods, section 8",
 };
 
+const IN_CURRENCY: Formula = Formula {
+    name: "the factor in a currency of the tender",
+    symbol: "factor",
+    formula: "own/rate",
+    unit: "money/kW",
+    source: "rate stored with the tender; methods, section 8",
+};
+
+/// A factor of the tender currency in a currency of `rate`.
+pub fn in_currency<R: Recorder>(w: &mut R, own: f64, rate: f64) -> f64 {
+    w.step(&IN_CURRENCY, &[("own", own), ("rate", rate)], own / rate)
+}
+
 impl<'a> Rates<'a> {
     /// The rates of a tender.
     ///

@@ -1,0 +1,497 @@
+//! How an offer or a bid fits a place: terminals, the unit it would run beside, the busbar behind it, its load, the law.
+
+use serde::Serialize;
+
+use super::Question;
+use super::thermal::{Body, HeatRow};
+use super::workings::of_heat;
+use crate::engine::Refusal;
+use crate::engine::columns::{Offer, TenderSheet, Unit};
+use crate::engine::decision::Place;
+use crate::engine::decision::place::power_factor;
+use crate::engine::decision::side_by_side::{
+    IMPEDANCE_PCT, RATIO_PCT, Rated, Sharing, VOLTAGE_PCT, circulating_pu, difference_pct,
+    fault_level, groups_agree, load_together, ratio_difference_pct, sharing, within,
+};
+use crate::engine::law::{self, Subject};
+use crate::engine::loading::duty::{loading_pu, peak_of_year};
+use crate::engine::transformer::circuit::PowerFactor;
+use crate::engine::transformer::fault::fault_current;
+use crate::engine::transformer::losses::{Losses, quoted};
+use crate::engine::transformer::nameplate::Phases;
+use crate::engine::transformer::regulation::exact_pct;
+use crate::engine::transformer::vector_group::{phases, two_windings};
+use crate::engine::working::{Recorder, Silent, Working};
+use crate::study::StudyError;
+use crate::study::law::{self as rows, VerdictRow};
+use crate::study::tender::{find_bid, find_lot};
+
+/// What is to be fitted, and beside what.
+#[derive(Clone, Debug, PartialEq)]
+pub struct FitAsked {
+    /// The offer or bid, as the record of a unit.
+    proposed: Unit,
+    losses: Losses,
+    /// The unit that it would run beside, in parallel.
+    pub beside: Option<Unit>,
+    /// Fault level of the network at the primary (MVA); none = infinite.
+    pub network_mva: Option<f64>,
+    /// Highest fault level that the switchgear at the secondary bears (MVA).
+    pub fault_limit_mva: Option<f64>,
+}
+
+impl FitAsked {
+    /// An offer of the catalogue.
+    ///
+    /// # Errors
+    /// Losses that contradict each other; a transformer of another kind than two windings.
+    pub fn of_offer(offer: &Offer) -> Result<Self, Refusal> {
+        Self::of(Unit {
+            unit: offer.offer.clone(),
+            rated_kva: offer.rated_kva,
+            loss_base_kva: offer.loss_base_kva,
+            phases: offer.phases,
+            hv_kv: offer.hv_kv,
+            lv_kv: offer.lv_kv,
+            vector_group: offer.vector_group.clone(),
+            cooling: offer.cooling.clone(),
+            insulation: offer.insulation,
+            winding_metal: offer.winding_metal,
+            impedance_pct: offer.impedance_pct,
+            no_load_loss_w: Some(offer.no_load_loss_w),
+            load_loss_w: Some(offer.load_loss_w),
+            reference_temp_c: offer.reference_temp_c,
+            auxiliary_loss_w: offer.auxiliary_loss_w,
+            ..Unit::blank()
+        })
+    }
+
+    /// A bid of a tender; voltages are the lot's, and so is what the bid leaves blank.
+    ///
+    /// # Errors
+    /// As [`FitAsked::of_offer`]; an unknown lot or bid.
+    pub fn of_bid(sheet: &TenderSheet, lot: &str, bid: &str) -> Result<Self, StudyError> {
+        let (lot, bid) = (find_lot(sheet, lot)?, find_bid(sheet, lot, bid)?);
+        let group = bid.vector_group.clone().or_else(|| lot.vector_group.clone());
+        Ok(Self::of(Unit {
+            unit: format!("{} {} {}", bid.tender, bid.lot, bid.bid),
+            rated_kva: bid.rated_kva.unwrap_or(lot.rated_kva),
+            loss_base_kva: bid.loss_base_kva,
+            phases: group.as_deref().and_then(phases),
+            hv_kv: lot.hv_kv,
+            lv_kv: lot.lv_kv,
+            vector_group: group,
+            insulation: bid.insulation,
+            winding_metal: bid.winding_metal,
+            impedance_pct: bid.impedance_pct.or(lot.impedance_pct),
+            no_load_loss_w: Some(bid.no_load_loss_w),
+            load_loss_w: bid.load_loss_w,
+            total_loss_w: bid.total_loss_w,
+            reference_temp_c: bid.reference_temp_c.or(lot.reference_temp_c),
+            auxiliary_loss_w: bid.auxiliary_loss_w,
+            ..Unit::blank()
+        })?)
+    }
+
+    fn of(proposed: Unit) -> Result<Self, Refusal> {
+        if let Some(group) = &proposed.vector_group {
+            two_windings(group)?;
+        }
+        let (p0, pk, total) =
+            (proposed.no_load_loss_w, proposed.load_loss_w, proposed.total_loss_w);
+        let (base, auxiliary) = (proposed.loss_base_kva, proposed.auxiliary_loss_w);
+        let losses = quoted(&mut Silent, proposed.rated_kva, base, p0, pk, total, auxiliary)?;
+        Ok(Self { proposed, losses, beside: None, network_mva: None, fault_limit_mva: None })
+    }
+}
+
+/// How an offer fits a place. What is not known is null; `misses` names what does not fit, `unknown` what could not
+/// be looked at.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+#[expect(missing_docs, reason = "the keys of the result; `figures` says what they are")]
+pub struct FitRow {
+    pub proposed: String,
+    pub fits: bool,
+    pub misses: Vec<&'static str>,
+    pub unknown: Vec<&'static str>,
+    pub phases_agree: Option<bool>,
+    pub hv_difference_pct: Option<f64>,
+    pub lv_difference_pct: Option<f64>,
+    pub voltages_agree: Option<bool>,
+    pub vector_groups_agree: Option<bool>,
+    /// Peak of year 1 and highest peak of the horizon over its rating.
+    pub peak_pu: Option<f64>,
+    pub highest_peak_pu: Option<f64>,
+    pub loading_limit_pu: Option<f64>,
+    pub within_loading_limit: Option<bool>,
+    /// At the peak of year 1.
+    pub regulation_pct: Option<f64>,
+    pub fault_level_mva: Option<f64>,
+    pub fault_current_a: Option<f64>,
+    pub fault_limit_mva: Option<f64>,
+    pub within_fault_limit: Option<bool>,
+    pub beside: Option<BesideRow>,
+    /// How hot it gets under the load of year 1; none for a dry-type one.
+    pub thermal: Option<HeatRow>,
+    pub law: Option<VerdictRow>,
+    pub notes: Vec<String>,
+}
+
+/// How it would run in parallel with another unit.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+#[expect(missing_docs, reason = "the keys of the result; `figures` says what they are")]
+pub struct BesideRow {
+    pub unit: String,
+    pub ratio_difference_pct: Option<f64>,
+    pub ratios_agree: Option<bool>,
+    pub vector_groups_agree: Option<bool>,
+    pub impedance_difference_pct: Option<f64>,
+    pub impedances_agree: Option<bool>,
+    /// Peaks of year 1 of both places together.
+    pub load_kva: Option<f64>,
+    pub loading_pu: Option<f64>,
+    pub beside_loading_pu: Option<f64>,
+    pub bank_limit_kva: Option<f64>,
+    /// Current at no load over its own rated current.
+    pub circulating_pu: Option<f64>,
+}
+
+/// An offer beside the place that it is fitted to.
+pub(super) struct Fit<'a> {
+    question: &'a Question<'a>,
+    asked: &'a FitAsked,
+    place: Option<Place>,
+}
+
+impl Question<'_> {
+    /// What is asked of the fit; none where nothing is.
+    pub(super) fn fitted(&self) -> Option<Fit<'_>> {
+        let asked = self.fit?;
+        Some(Fit { question: self, asked, place: self.place(&mut Silent).ok() })
+    }
+}
+
+impl Fit<'_> {
+    fn own(&self) -> Rated<'_> {
+        Rated::of(&self.asked.proposed, Some(self.asked.losses.load_loss_w))
+    }
+
+    fn there(&self) -> Rated<'_> {
+        Rated::of(self.question.unit, None)
+    }
+
+    /// The unit beside, with its load loss at its rating where its nameplate states it.
+    fn beside(&self) -> Option<Rated<'_>> {
+        let unit = self.asked.beside.as_ref()?;
+        let (p0, pk, total) = (unit.no_load_loss_w, unit.load_loss_w, unit.total_loss_w);
+        let base = unit.loss_base_kva;
+        let losses = quoted(&mut Silent, unit.rated_kva, base, p0.or(Some(0.0)), pk, total, None);
+        // From a total alone the load loss follows only where the no-load loss is known.
+        let known = pk.is_some() || p0.is_some();
+        Some(Rated::of(unit, losses.ok().filter(|_| known).map(|losses| losses.load_loss_w)))
+    }
+
+    fn pf(&self) -> Option<PowerFactor> {
+        PowerFactor::lagging(power_factor(&mut Silent, &self.question.facts())).ok()
+    }
+
+    fn voltage_pct<R: Recorder>(
+        &self,
+        w: &mut R,
+        side: impl Fn(&Rated) -> Option<f64>,
+    ) -> Option<f64> {
+        Some(difference_pct(w, side(&self.own())?, side(&self.there())?))
+    }
+
+    fn peak_pu<R: Recorder>(&self, w: &mut R) -> Option<f64> {
+        Some(self.place.as_ref()?.duty.peak_pu(w, self.asked.losses.rated_kva))
+    }
+
+    /// The highest peak of the horizon: of its last year where the load grows, else of its first.
+    fn highest_peak_pu<R: Recorder>(&self, w: &mut R) -> Option<f64> {
+        let a = &self.question.context.assumptions;
+        let duty = &self.place.as_ref()?.duty;
+        let k = if duty.load_growth_pu > 0.0 { a.years } else { 1 };
+        let peak_kva = peak_of_year(w, duty, k, a.load_growth_years);
+        Some(loading_pu(w, peak_kva, self.asked.losses.rated_kva))
+    }
+
+    fn regulation_pct<R: Recorder>(&self, w: &mut R) -> Result<Option<f64>, Refusal> {
+        let (Some(peak), Some(pf)) = (self.peak_pu(w), self.pf()) else { return Ok(None) };
+        let circuit = self.own().circuit(w)?;
+        Ok(circuit.map(|circuit| exact_pct(w, &circuit, peak, pf)))
+    }
+
+    fn fault_level_mva<R: Recorder>(&self, w: &mut R) -> Result<Option<f64>, Refusal> {
+        let (own, beside) = (self.own(), self.beside());
+        let bank: Vec<&Rated> = std::iter::once(&own).chain(&beside).collect();
+        fault_level(w, &bank, self.asked.network_mva)
+    }
+
+    fn fault_current_a<R: Recorder>(&self, w: &mut R) -> Result<Option<f64>, Refusal> {
+        let Some(level) = self.fault_level_mva(w)? else { return Ok(None) };
+        let (own, there) = (self.own(), self.there());
+        let Some(kv) = own.lv_kv.or(there.lv_kv) else { return Ok(None) };
+        let phases = Phases::of(own.phases.or(there.phases).unwrap_or(3))?;
+        fault_current(w, phases, level, kv).map(Some)
+    }
+
+    /// Peaks of year 1 of both places; that of this one alone where the other is not known (kVA).
+    fn load_kva<R: Recorder>(&self, w: &mut R) -> Option<f64> {
+        let beside = self.asked.beside.as_ref()?.peak_kva.unwrap_or(0.0);
+        let load = load_together(w, self.place.as_ref()?.duty.peak_kva, beside);
+        (load > 0.0).then_some(load)
+    }
+
+    fn sharing<R: Recorder>(&self, w: &mut R) -> Result<Option<Sharing>, Refusal> {
+        let (Some(beside), Some(load), Some(pf)) = (self.beside(), self.load_kva(w), self.pf())
+        else {
+            return Ok(None);
+        };
+        sharing(w, [&self.own(), &beside], load, pf)
+    }
+
+    fn circulating_pu<R: Recorder>(&self, w: &mut R) -> Result<Option<f64>, Refusal> {
+        let Some(beside) = self.beside() else { return Ok(None) };
+        circulating_pu(w, [&self.own(), &beside])
+    }
+
+    fn impedance_pct<R: Recorder>(&self, w: &mut R) -> Option<f64> {
+        let (own, beside) = (self.own(), self.beside()?);
+        Some(difference_pct(w, own.impedance_pct?, beside.impedance_pct?))
+    }
+
+    /// What the law says of it, bought in the first year.
+    fn verdict(&self) -> Result<Option<(law::Verdict, chrono::NaiveDate)>, Refusal> {
+        let a = &self.question.context.assumptions;
+        let (Some(key), Some(on)) = (&a.law, law::at_start_of(a.first_year)) else {
+            return Ok(None);
+        };
+        let (proposed, there) = (&self.asked.proposed, self.question.unit);
+        let subject = Subject {
+            phases: proposed.phases.or(there.phases),
+            hv_kv: proposed.hv_kv.or(there.hv_kv),
+            lv_kv: proposed.lv_kv.or(there.lv_kv),
+            hv_um_kv: there.hv_um_kv,
+            frequency_hz: there.frequency_hz,
+            mounting: there.mounting,
+            tap_changer: there.tap_changer,
+            // It takes the place of a unit of the same kind.
+            replaces_like: true,
+            ..Subject::of_unit(proposed, &self.asked.losses, a.stray_share_pu)
+        };
+        Ok(Some((law::check(key, &subject, on)?, on)))
+    }
+
+    fn body(&self) -> Option<Body<'_>> {
+        let proposed = &self.asked.proposed;
+        Body::of(proposed, &self.asked.losses, Some(&proposed.unit)).ok()
+    }
+
+    fn heat(&self) -> Option<HeatRow> {
+        Some(self.question.heat_of_body(self.place.as_ref()?, &self.body()?))
+    }
+
+    fn beside_row(&self) -> Result<Option<BesideRow>, Refusal> {
+        let (Some(unit), Some(beside)) = (&self.asked.beside, self.beside()) else {
+            return Ok(None);
+        };
+        let w = &mut Silent;
+        let own = self.own();
+        let (ratio, impedance) = (ratio_difference_pct(w, &own, &beside), self.impedance_pct(w));
+        let sharing = self.sharing(w)?;
+        Ok(Some(BesideRow {
+            unit: unit.unit.clone(),
+            ratio_difference_pct: ratio,
+            ratios_agree: ratio.map(|pct| within(pct, RATIO_PCT)),
+            vector_groups_agree: groups_agree(&own, &beside),
+            impedance_difference_pct: impedance,
+            impedances_agree: impedance.map(|pct| within(pct, IMPEDANCE_PCT)),
+            load_kva: self.load_kva(w),
+            loading_pu: sharing.map(|sharing| sharing.loading_pu[0]),
+            beside_loading_pu: sharing.map(|sharing| sharing.loading_pu[1]),
+            bank_limit_kva: sharing.map(|sharing| sharing.bank_limit_kva),
+            circulating_pu: self.circulating_pu(w)?,
+        }))
+    }
+
+    /// The fit as it is written in JSON.
+    ///
+    /// # Errors
+    /// A circuit that contradicts itself; fault levels that are not above zero.
+    pub(super) fn row(&self) -> Result<FitRow, Refusal> {
+        let w = &mut Silent;
+        let (own, there) = (self.own(), self.there());
+        let (hv, lv) =
+            (self.voltage_pct(w, |side| side.hv_kv), self.voltage_pct(w, |side| side.lv_kv));
+        let agrees = |pct: Option<f64>| pct.map(|pct| within(pct, VOLTAGE_PCT));
+        let both = |a: Option<bool>, b: Option<bool>| match (a, b) {
+            (Some(false), _) | (_, Some(false)) => Some(false),
+            (Some(true), Some(true)) => Some(true),
+            _ => None,
+        };
+        let highest = self.highest_peak_pu(w);
+        let loading_limit_pu = self.question.context.assumptions.loading_limit_pu;
+        let level = self.fault_level_mva(w)?;
+        let limit = self.asked.fault_limit_mva;
+        let beside = self.beside_row()?;
+        let verdict = self.verdict()?;
+        let mut row = FitRow {
+            proposed: self.asked.proposed.unit.clone(),
+            fits: true,
+            misses: Vec::new(),
+            unknown: Vec::new(),
+            phases_agree: own.phases.zip(there.phases).map(|(own, there)| own == there),
+            hv_difference_pct: hv,
+            lv_difference_pct: lv,
+            voltages_agree: both(agrees(hv), agrees(lv)),
+            vector_groups_agree: groups_agree(&own, &there),
+            peak_pu: self.peak_pu(w),
+            highest_peak_pu: highest,
+            loading_limit_pu,
+            within_loading_limit: highest
+                .zip(loading_limit_pu)
+                .map(|(peak, limit)| peak <= limit * (1.0 + 1e-12)),
+            regulation_pct: self.regulation_pct(w)?,
+            fault_level_mva: level,
+            fault_current_a: self.fault_current_a(w)?,
+            fault_limit_mva: limit,
+            within_fault_limit: level.zip(limit).map(|(level, limit)| level <= limit),
+            beside,
+            thermal: self.heat(),
+            law: verdict.map(|(verdict, on)| VerdictRow::of(&verdict, on)),
+            notes: self.notes(),
+        };
+        Self::judge(&mut row);
+        Ok(row)
+    }
+
+    /// Names what does not fit and what could not be looked at.
+    fn judge(row: &mut FitRow) {
+        let mut checks = vec![
+            ("phases", row.phases_agree),
+            ("voltages", row.voltages_agree),
+            ("vector_group", row.vector_groups_agree),
+        ];
+        if row.loading_limit_pu.is_some() {
+            checks.push(("loading_limit_pu", row.within_loading_limit));
+        }
+        if row.fault_limit_mva.is_some() {
+            checks.push(("fault_limit_mva", row.within_fault_limit));
+        }
+        if let Some(beside) = &row.beside {
+            checks.extend([
+                ("ratio_beside", beside.ratios_agree),
+                ("vector_group_beside", beside.vector_groups_agree),
+                ("impedance_beside", beside.impedances_agree),
+            ]);
+        }
+        if let Some(law) = &row.law {
+            checks.push(("law", law.meets));
+        }
+        let named = |wanted: Option<bool>| {
+            checks.iter().filter(|(_, got)| *got == wanted).map(|(name, _)| *name).collect()
+        };
+        (row.misses, row.unknown) = (named(Some(false)), named(None));
+        row.fits = row.misses.is_empty();
+    }
+
+    fn notes(&self) -> Vec<String> {
+        let mut notes = vec![format!(
+            "voltages agree within {VOLTAGE_PCT} %; vector groups where the clock numbers are equal, differ by 4 or 8, or are both odd"
+        )];
+        let network = match self.asked.network_mva {
+            Some(network) => format!("behind {network} MVA of network"),
+            None => "with a network without impedance".to_owned(),
+        };
+        if let Some(beside) = &self.asked.beside {
+            notes.push(format!(
+                "in parallel: ratios within {RATIO_PCT} %, impedances within {IMPEDANCE_PCT} % of the other's (common practice, no source); fault level of both together, {network}"
+            ));
+            if beside.peak_kva.is_none() {
+                notes.push(format!(
+                    "the peak of {} is not known: the load shared is that of this place alone",
+                    beside.unit
+                ));
+            }
+        } else {
+            notes.push(format!("fault level of it alone, {network}"));
+        }
+        notes.push("screening: protection settings, switchgear ratings and paralleling follow local codes, the manufacturer's instructions and licensed engineers".to_owned());
+        notes
+    }
+
+    /// States a figure of the fit.
+    pub(super) fn state(&self, w: &mut Working, place: &[&str]) -> Result<(), Refusal> {
+        match place {
+            ["hv_difference_pct"] => {
+                self.voltage_pct(w, |side| side.hv_kv);
+            }
+            ["lv_difference_pct"] => {
+                self.voltage_pct(w, |side| side.lv_kv);
+            }
+            ["peak_pu"] => {
+                self.peak_pu(w);
+            }
+            ["highest_peak_pu"] => {
+                self.highest_peak_pu(w);
+            }
+            ["regulation_pct"] => {
+                self.regulation_pct(w)?;
+            }
+            ["fault_level_mva"] => {
+                self.fault_level_mva(w)?;
+            }
+            ["fault_current_a"] => {
+                self.fault_current_a(w)?;
+            }
+            ["law", "limits", n, side] => {
+                if let Some((verdict, _)) = self.verdict()? {
+                    rows::state(w, verdict, n, side);
+                }
+            }
+            ["thermal", quantity] => {
+                if let (Some(place), Some(body)) = (&self.place, self.body()) {
+                    let mut all = Working::default();
+                    self.question.state_body(&mut all, place, &body, quantity)?;
+                    w.append(of_heat(all, quantity));
+                }
+            }
+            ["beside", quantity] => self.state_beside(w, quantity)?,
+            _ => {}
+        }
+        Ok(())
+    }
+
+    fn state_beside(&self, w: &mut Working, quantity: &str) -> Result<(), Refusal> {
+        match quantity {
+            "ratio_difference_pct" => {
+                if let Some(beside) = self.beside() {
+                    ratio_difference_pct(w, &self.own(), &beside);
+                }
+            }
+            "impedance_difference_pct" => {
+                self.impedance_pct(w);
+            }
+            "circulating_pu" => {
+                self.circulating_pu(w)?;
+            }
+            "load_kva" => {
+                self.load_kva(w);
+            }
+            "bank_limit_kva" => {
+                self.sharing(w)?;
+            }
+            _ => {
+                let mut all = Working::default();
+                self.sharing(&mut all)?;
+                let one = if quantity == "loading_pu" { "1" } else { "2" };
+                let (loadings, before): (Vec<_>, Vec<_>) =
+                    all.into_steps().into_iter().partition(|step| step.formula.symbol == "loading");
+                w.append(before.into_iter().filter(|step| step.formula.symbol != "S_max"));
+                w.append(loadings.into_iter().filter(|step| step.of.ends_with(one)));
+            }
+        }
+        Ok(())
+    }
+}
