@@ -28,6 +28,13 @@ pub struct Known {
     old: Vec<Value>,
 }
 
+impl Known {
+    /// Places of the columns in which a row differs from what the book has.
+    pub fn differs<'a>(&'a self, row: &'a [Value]) -> impl Iterator<Item = usize> + 'a {
+        self.old.iter().zip(row).enumerate().filter(|(_, (old, new))| old != new).map(|(at, _)| at)
+    }
+}
+
 /// Rows on their way into one table.
 #[derive(Debug)]
 pub struct Upsert<'c> {

@@ -37,7 +37,7 @@ pub(super) fn settle(
     printer: &mut Printer,
 ) -> Result<Exit, Failure> {
     let Opened { book, .. } = book::open_to_read(args)?;
-    let case = Case::read(&book, &options.tender, args.basis.as_deref())?;
+    let case = Case::to_settle(&book, &options.tender, args.basis.as_deref())?;
     let basis = case.basis();
     let result = case.settle(options.lot.as_deref())?;
     if let Some(only) = &options.serial {

@@ -152,6 +152,7 @@ pub fn tender(text: &str, problems: &mut Problems) -> Option<Sheet<TenderSheet>>
         lots,
         bids: Vec::new(),
         measured: Vec::new(),
+        awards: Vec::new(),
     };
     Some(Sheet { content, lines })
 }

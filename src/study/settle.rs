@@ -8,8 +8,11 @@ pub mod letter;
 use serde::Serialize;
 
 use super::StudyError;
-use super::tender::{BasisForFactors, bids_of, bring, factor_scale, find_bid, find_lot, terms};
-use crate::engine::columns::{Bid, Lot, Measured, Settlement, TenderSheet};
+use super::tender::{
+    BasisForFactors, award_of, bids_of, bring, factor_scale, find_bid, find_lot, terms,
+    terms_at_award,
+};
+use crate::engine::columns::{Award, Bid, Lot, Measured, Settlement, TenderSheet};
 use crate::engine::decision::tender::Terms;
 use crate::engine::decision::tender::bid::Comparable;
 use crate::engine::decision::tender::settlement::{
@@ -61,6 +64,11 @@ pub struct LotSettlement {
     pub guaranteed: Guaranteed,
     /// What one unit exceeds the guarantee by on the mean; none where each is settled on its own.
     pub mean_excess: Option<MeanExcess>,
+    /// The bid that the lot is awarded to; none where it is not awarded. Factors and stray share are those of the
+    /// award where it is this one, else today's.
+    pub awarded_to: Option<String>,
+    /// When it was awarded (UTC).
+    pub awarded_at: Option<String>,
     /// What is doubtful about the factors or the lot.
     pub flags: Vec<&'static str>,
 }
@@ -211,6 +219,7 @@ struct Guarantee<'a> {
     promise: Comparable,
     units: Vec<&'a Measured>,
     flags: Flags,
+    award: Option<&'a Award>,
 }
 
 impl<'a> Guarantee<'a> {
@@ -220,11 +229,16 @@ impl<'a> Guarantee<'a> {
         lot: &'a Lot,
         bid: &'a Bid,
     ) -> Result<Self, StudyError> {
-        let (terms, flags) = terms(&mut Silent, sheet, basis, lot)?;
+        let award = award_of(sheet, &lot.lot);
+        let (terms, flags) = match award.filter(|award| award.bid == bid.bid) {
+            Some(award) => terms_at_award(sheet, basis, lot, award)?,
+            None => terms(&mut Silent, sheet, basis, lot)?,
+        };
         let promise = bring(&mut Silent, &terms, bid)?;
         // As it is shown wherever the tender is.
         let flags = flags.with_if(factor_scale(sheet, &terms)?, Flags::FACTOR_SCALE);
-        Ok(Self { terms, bid, promise, units: measured_of(sheet, bid).collect(), flags })
+        let units = measured_of(sheet, bid).collect();
+        Ok(Self { terms, bid, promise, units, flags, award })
     }
 
     fn rule(&self) -> Settlement {
@@ -279,6 +293,8 @@ impl<'a> Guarantee<'a> {
                 load_excess_w: mean.load_w,
                 auxiliary_excess_w: mean.auxiliary_w.unwrap_or(0.0),
             }),
+            awarded_to: self.award.map(|award| award.bid.clone()),
+            awarded_at: self.award.map(|award| award.awarded_at.clone()),
             flags: self.flags.keys(),
             units,
         }

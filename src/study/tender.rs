@@ -6,13 +6,15 @@
 
 pub mod award;
 mod case;
+pub mod decide;
+pub mod deliver;
 mod factors;
 pub mod letter;
 mod results;
 pub mod risk;
 
 use super::StudyError;
-use crate::engine::columns::{Bid, Lot, TenderSheet};
+use crate::engine::columns::{Award, Bid, Lot, TenderSheet};
 use crate::engine::decision::tender::bid::{Comparable, comparable};
 use crate::engine::decision::tender::changes::{self, Change, Field};
 use crate::engine::decision::tender::factors::{Computed, of_lot};
@@ -201,6 +203,37 @@ pub(super) fn terms<'a, R: Recorder>(
     Ok((terms, flags))
 }
 
+/// The award of a lot, where the book has one.
+pub(super) fn award_of<'a>(sheet: &'a TenderSheet, lot: &str) -> Option<&'a Award> {
+    sheet.awards.iter().find(|award| award.lot == lot)
+}
+
+/// The terms of a lot as they were when it was awarded.
+pub(super) fn terms_at_award<'a>(
+    sheet: &'a TenderSheet,
+    basis: Option<&BasisForFactors>,
+    lot: &'a Lot,
+    award: &Award,
+) -> Result<(Terms<'a>, Flags), StudyError> {
+    let factors = LossFactors {
+        factor_a_per_kw: award.factor_a_per_kw,
+        factor_b_per_kw: award.factor_b_per_kw,
+        factor_aux_per_kw: award.factor_aux_per_kw,
+    };
+    let tender = format!("tender {}", sheet.tender.tender);
+    let rates = Rates::new(&sheet.tender, &sheet.rates).map_err(StudyError::refused(tender))?;
+    let first_year = basis.map(|basis| basis.assumptions.first_year);
+    let terms = Terms {
+        lot,
+        rates,
+        factors,
+        stray_share_pu: award.stray_share_pu,
+        near_tie_pct: lot.near_tie_pct.unwrap_or(0.0),
+        purchase: legal::purchase(&sheet.tender, first_year),
+    };
+    Ok((terms, Flags::NONE))
+}
+
 /// A bid on the lot's terms.
 pub(super) fn bring<R: Recorder>(
     w: &mut R,
@@ -322,13 +355,16 @@ fn evaluate_lot(
     let result = |i: usize, rank| judged.bids[i].result(terms, rank, ranking.band.contains(&i));
     let ranked = ranking.order.iter().enumerate().map(|(place, &i)| result(i, Some(place + 1)));
     let excluded = (0..judged.bids.len()).filter(|i| !judged.bids[*i].found.misses.is_empty());
+    let bids: Vec<BidResult> = ranked.chain(excluded.map(|i| result(i, None))).collect();
+    let award = award_of(sheet, &lot.lot)
+        .and_then(|award| Some(Awarded::of(award, bids.iter().find(|bid| bid.bid == award.bid)?)));
     Ok(LotResult {
         lot: lot.lot.clone(),
         quantity: terms.quantity(),
         factor_a_per_kw: terms.factors.factor_a_per_kw,
         factor_b_per_kw: terms.factors.factor_b_per_kw,
         factor_aux_per_kw: terms.factors.factor_aux_per_kw,
-        bids: ranked.chain(excluded.map(|i| result(i, None))).collect(),
+        bids,
         least_owning_cost: ranking.order.first().map(|&i| judged.name(i)),
         recommended: ranking.band.first().map(|&i| judged.name(i)),
         margin_pct: ranking.margin_pct,
@@ -340,6 +376,7 @@ fn evaluate_lot(
         nearest_border,
         near_tie_pct: terms.near_tie_pct,
         computed: Computed::by(lot),
+        award,
         risk: None,
     })
 }

@@ -114,6 +114,10 @@ fn what_is_wrong_in_a_basis_is_told_by_line() {
             "b.toml:6: load_growth_pct: 3: base is not between low 0 and high 1",
         ),
         (
+            "[range.discount_rate_pct]\nlow = 90\nhigh = 91\n",
+            "b.toml:5: discount_rate_pct: 90: is out of order in the range of discount_rate_pct; low ≤ base",
+        ),
+        (
             "[range.load_growth_pct]\nlow = 0\nhigh = 101\n",
             "b.toml:6: load_growth_pct: 101: is outside above -100 … 100 %",
         ),

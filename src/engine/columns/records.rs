@@ -342,6 +342,36 @@ record! {
     }
 }
 
+record! {
+    /// The award of a lot: the bid, and the terms under which it was chosen and is settled.
+    Award {
+        lot: String, C::id().required(), "the lot";
+        bid: String, C::id().required(), "the bid that it went to";
+        factor_a_per_kw: f64, C::real(-1e12, 1e12).required(), "value of a kW of no-load loss at the award";
+        factor_b_per_kw: f64, C::real(-1e12, 1e12).required(), "value of a kW of load loss at the lot's rating at the award";
+        factor_aux_per_kw: f64, C::real(-1e12, 1e12).required(), "value of a kW of auxiliary loss at the award";
+        stray_share_pu: f64, SHARE_PU.required(), "stray part of a load loss whose split is not known, at the award";
+        owning_cost: f64, C::real(-1e15, 1e15).required(), "owning cost of one unit at the award";
+        recommended: Option<String>, C::id(), "the bid that led at the award";
+        basis: Option<String>, C::id(), "the basis of the comparison";
+        program: String, C::id().required(), "version of the program that compared";
+        awarded_at: String, C::id().required(), "when (UTC)";
+        awarded_by: String, C::id().required(), "who";
+        why: Option<String>, C::text(), "why, in their own words";
+    }
+}
+
+record! {
+    /// A measured unit that entered the fleet.
+    Delivery {
+        tender: String, C::id().required(), "the tender";
+        lot: String, C::id().required(), "the lot";
+        bid: String, C::id().required(), "the bid";
+        serial: String, C::id().required(), "serial number";
+        unit: String, C::id().required(), "the unit of the fleet";
+    }
+}
+
 /// A basis with its ranges and budgets: what one basis file holds.
 #[derive(Clone, Debug, PartialEq)]
 pub struct BasisSheet {
@@ -366,4 +396,6 @@ pub struct TenderSheet {
     pub bids: Vec<Bid>,
     /// Measured losses of delivered units, in order of entry.
     pub measured: Vec<Measured>,
+    /// Awards of its lots, in order of entry.
+    pub awards: Vec<Award>,
 }

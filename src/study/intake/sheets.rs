@@ -3,6 +3,7 @@
 use super::{Intake, IntakeError, Report};
 use crate::book::{Book, BookError, Change, Tally};
 use crate::engine::columns::TenderSheet;
+use crate::engine::decision::uncertainty::Spread;
 use crate::engine::economics::Assumptions;
 use crate::engine::law;
 use crate::exchange::sheets::{self, Sheet};
@@ -20,6 +21,14 @@ impl Intake<'_> {
             self.problems.add(line, refusal.quantity, &refusal.value, refusal.why);
         }
         self.known_law(&sheet, basis.law.as_deref());
+        for range in &sheet.content.ranges {
+            // Where the basis leaves the input blank, a lot may give it: that is seen when it is drawn.
+            let base = basis.number(&range.quantity);
+            if let Some(Err(refusal)) = base.map(|base| Spread::of(range, Some(base))) {
+                let line = sheet.line(&range.quantity);
+                self.problems.add(line, &range.quantity, &refusal.value, refusal.why);
+            }
+        }
         let change = book.change(self.actor, Some(&self.file))?;
         let mut saved = change.save_basis(&sheet.content);
         if self.options.current && saved.is_ok() {
@@ -79,7 +88,7 @@ impl Intake<'_> {
                 let line = sheet.line("price_series");
                 self.problems.add(line, "price_series", "", error.to_string());
             }
-            Err(error @ BookError::InUse { .. }) => {
+            Err(error @ (BookError::InUse { .. } | BookError::Awarded { .. })) => {
                 self.problems.add(1, "lot", "", error.to_string());
             }
             Err(error) => return Err(error.into()),

@@ -4,7 +4,7 @@ use super::{LotSettlement, SettleResult, UnitSettlement};
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
 use crate::study::figures::{group, short};
-use crate::study::tender::letter::{cautions, flag};
+use crate::study::tender::letter::{cautions, day, flag};
 
 /// The settlement of a tender as a letter.
 pub fn settlement(result: &SettleResult) -> Letter {
@@ -37,6 +37,7 @@ pub(in crate::study) fn section(
     for key in lot.flags.iter().filter(|key| **key == "factor_scale") {
         letter.warning(flag(key));
     }
+    award(letter, lot);
     promise(letter, lot, currency);
     units(letter, lot, currency);
     outcome(letter, lot, currency);
@@ -56,6 +57,20 @@ pub(in crate::study) fn section(
     }
     for key in lot.flags.iter().filter(|key| **key != "factor_scale") {
         letter.warning(flag(key));
+    }
+}
+
+/// Whether the bid is the awarded one, and so by which terms it is settled.
+fn award(letter: &mut Letter, lot: &LotSettlement) {
+    match (&lot.awarded_to, &lot.awarded_at) {
+        (Some(bid), Some(at)) if *bid == lot.bid => letter.text(format!(
+            "Awarded on {}: settled by the factors and the stray share of the award.",
+            day(at)
+        )),
+        (Some(bid), _) => letter.warning(format!(
+            "the lot is awarded to {bid}, not to this bid; the factors are today's"
+        )),
+        (None, _) => letter.text("The lot is not awarded in this book; the factors are today's."),
     }
 }
 
