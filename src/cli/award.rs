@@ -4,6 +4,7 @@ use super::args::{Args, Award, Deliver, Format};
 use super::book::{self, Opened};
 use super::exit::{Exit, Failure};
 use super::print::Printer;
+use super::tender::warn_of_scale;
 use crate::study::tender::decide::{self, AwardResult};
 use crate::study::tender::deliver::{self, Wanted};
 use crate::study::tender::{Case, letter};
@@ -56,7 +57,8 @@ pub(super) fn award(args: &Args, options: &Award, printer: &mut Printer) -> Resu
         Some(bid) => decide::award(&mut book, &case, &options.lot, bid, &actor)?,
         None => decide::withdraw(&mut book, &case, &options.lot, &actor)?,
     };
-    let AwardResult { tender, lot, outcome, award, .. } = &result;
+    let AwardResult { tender, lot, outcome, award, flags, .. } = &result;
+    warn_of_scale(printer, lot, flags);
     match printer.format {
         Format::Json => printer.json(&result)?,
         Format::Csv => {

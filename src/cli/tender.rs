@@ -9,8 +9,10 @@ use super::exit::{Exit, Failure};
 use super::factors::working as write_working;
 use super::print::Printer;
 use crate::engine::decision::uncertainty::RankCorrelation;
+use crate::engine::flags::Flags;
 use crate::study::StudyError;
 use crate::study::explain::StepRow;
+use crate::study::losses::flag_meaning;
 use crate::study::tender::{BidResult, Case, Draws, LotResult, TenderResult, letter, working};
 
 const KEYS: &[&str] = &[
@@ -106,10 +108,22 @@ pub(super) fn tender(
     Ok(said(printer, &result))
 }
 
+/// Warns that factors look like money per W, where the result itself is no text for people.
+pub(super) fn warn_of_scale(printer: &Printer, lot: &str, flags: &[&str]) {
+    if printer.format == Format::Text {
+        return;
+    }
+    for key in Flags::FACTOR_SCALE.keys().iter().filter(|key| flags.contains(key)) {
+        let meaning = flag_meaning(key).unwrap_or_default();
+        printer.complain(&format!("lot {lot}: {key}: {meaning}"));
+    }
+}
+
 /// Names the lots in which no bid can be ranked; without any winner there is no solution.
 pub(super) fn said(printer: &Printer, result: &TenderResult) -> Exit {
     let mut won = false;
     for lot in &result.lots {
+        warn_of_scale(printer, &lot.lot, &lot.flags);
         won |= lot.least_owning_cost.is_some();
         let why = match (&lot.least_owning_cost, lot.bids.is_empty()) {
             (Some(_), _) => continue,

@@ -388,6 +388,20 @@ fn factors_look_per_watt<'a>(costs: impl IntoIterator<Item = &'a OwningCost>) ->
         && costs.all(|c| c.no_load_cost + c.load_cost + c.auxiliary_cost < 0.01 * c.price)
 }
 
+/// Whether the factors of a lot look like money per W instead of per kW: every bid's capitalised losses are under 1 %
+/// of its price.
+///
+/// # Errors
+/// As [`evaluate`].
+pub fn looks_per_watt(
+    sheet: &TenderSheet,
+    basis: Option<&BasisForFactors>,
+    lot: &str,
+) -> Result<bool, StudyError> {
+    let (terms, _) = terms(&mut Silent, sheet, basis, find_lot(sheet, lot)?)?;
+    factor_scale(sheet, &terms)
+}
+
 /// Whether the factors of a lot look like money per W: where they do, it is said wherever the tender is shown.
 ///
 /// # Errors

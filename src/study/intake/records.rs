@@ -62,6 +62,9 @@ impl Intake<'_> {
                     rules.judge(values, |place, why| faults.push(fault(place, why)));
                     ties.judge(values, |place, why| faults.push(fault(place, why)))?;
                     if let Some(known) = &known {
+                        ties.same_bidder(known, values, |place, why| {
+                            faults.push(fault(place, why));
+                        });
                         ties.keeps_awarded(known, values, |place, why| {
                             faults.push(fault(place, why));
                         })?;
@@ -259,6 +262,24 @@ impl<'c> Ties<'c> {
             _ => {}
         }
         Ok(())
+    }
+
+    /// Holds that a bid stays that of its bidder: two bidders may have called theirs alike.
+    fn same_bidder(&self, known: &Known, values: &[Value], mut broken: impl FnMut(usize, String)) {
+        let Some(place) = BIDS.position("bidder").filter(|_| self.what == What::Bids) else {
+            return;
+        };
+        if let (Value::Text(own), Value::Text(new)) = (known.old(place), &values[place])
+            && own != new
+        {
+            let bid = BIDS.position("bid").map_or(&Value::Blank, |at| &values[at]);
+            let why = format!(
+                "has a bid {} of {own} in the book: two bids of one name; give this one another. If {own} was \
+                 written wrong, import it once with a blank bidder and --clear-blank",
+                shown(bid)
+            );
+            broken(place, why);
+        }
     }
 
     /// Holds that what a bid was awarded for stays; a remark may change.

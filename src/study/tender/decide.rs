@@ -29,6 +29,8 @@ pub struct AwardResult {
     pub excluded: Vec<&'static str>,
     /// Other bids of the lot of which measured units are in the book.
     pub measured_of_others: Vec<String>,
+    /// What is doubtful about the lot.
+    pub flags: Vec<&'static str>,
 }
 
 /// Awards a lot to a bid. Another bid than the one that leads needs a reason.
@@ -51,7 +53,7 @@ pub fn award(
             let (tender, lot) = (sheet.tender.tender.clone(), lot.to_owned());
             return Err(BookError::Awarded { tender, lot }.into());
         }
-        return Ok(told(case, lot, chosen, standing.clone(), "same"));
+        return Ok(told(case, of_lot, chosen, standing.clone(), "same"));
     }
     if of_lot.recommended.as_deref() != Some(bid) && !reasoned {
         let why = needs_reason(chosen, of_lot.recommended.as_deref());
@@ -76,7 +78,7 @@ pub fn award(
     let change = book.change(actor, None)?;
     change.award(&sheet.tender.tender, &record)?;
     change.commit()?;
-    Ok(told(case, lot, chosen, Awarded::of(&record, chosen), "new"))
+    Ok(told(case, of_lot, chosen, Awarded::of(&record, chosen), "new"))
 }
 
 /// Takes the award of a lot back; the journal keeps it.
@@ -98,8 +100,8 @@ pub fn withdraw(
     let change = book.change(actor, None)?;
     let record = change.withdraw(&case.sheet.tender.tender, lot)?;
     change.commit()?;
-    let (_, bid) = find(&evaluated, lot, &record.bid)?;
-    Ok(told(case, lot, bid, Awarded::of(&record, bid), "withdrawn"))
+    let (of_lot, bid) = find(&evaluated, lot, &record.bid)?;
+    Ok(told(case, of_lot, bid, Awarded::of(&record, bid), "withdrawn"))
 }
 
 /// Whether a reason is given, and that it is one line of text.
@@ -139,31 +141,27 @@ fn needs_reason(chosen: &BidResult, leads: Option<&str>) -> String {
 
 fn told(
     case: &Case,
-    lot: &str,
+    lot: &LotResult,
     bid: &BidResult,
     award: Awarded,
     outcome: &'static str,
 ) -> AwardResult {
     let sheet = &case.sheet;
     let mut others: Vec<String> = Vec::new();
-    for unit in sheet.measured.iter().filter(|unit| unit.lot == lot && unit.bid != bid.bid) {
+    for unit in sheet.measured.iter().filter(|unit| unit.lot == lot.lot && unit.bid != bid.bid) {
         if !others.contains(&unit.bid) {
             others.push(unit.bid.clone());
         }
     }
     AwardResult {
         tender: sheet.tender.tender.clone(),
-        lot: lot.to_owned(),
+        lot: lot.lot.clone(),
         currency: sheet.tender.currency.clone(),
-        quantity: sheet
-            .lots
-            .iter()
-            .find(|of| of.lot == lot)
-            .and_then(|of| of.quantity)
-            .unwrap_or(1),
+        quantity: lot.quantity,
         award,
         outcome,
         excluded: bid.excluded.clone(),
         measured_of_others: others,
+        flags: lot.flags.clone(),
     }
 }

@@ -1,7 +1,7 @@
 //! What was awarded, and what came of it into the fleet.
 
-use super::day;
 use super::lot::About;
+use super::{day, flag};
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
 use crate::study::figures::{group, short};
@@ -70,6 +70,9 @@ pub fn awarded(result: &AwardResult) -> Letter {
     ));
     if result.outcome != "withdrawn" {
         letter.text(terms(award, currency));
+    }
+    for key in &result.flags {
+        letter.warning(flag(key));
     }
     if !result.excluded.is_empty() {
         letter.warning(format!("{} misses {}", award.bid, result.excluded.join(", ")));
