@@ -7,11 +7,13 @@
 pub mod check;
 pub mod desk;
 pub mod error;
+pub mod estimate;
 pub mod explain;
 pub mod factors;
 pub mod figures;
 pub mod intake;
 pub mod losses;
+pub mod offers_open;
 pub mod rank;
 pub mod settle;
 pub mod tender;

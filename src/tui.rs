@@ -12,6 +12,8 @@ pub mod bar;
 mod basis;
 pub mod caps;
 mod chart;
+pub mod clipboard;
+pub mod extent;
 mod fleet;
 mod frame;
 mod help;
@@ -27,6 +29,7 @@ pub mod theme;
 mod unit;
 mod words;
 pub mod work;
+mod working;
 
 pub use action::{ACTIONS, Action, Screen};
 pub use app::{App, ExitReason};

@@ -319,6 +319,7 @@ fn engine(c: &Case) -> (Context, Vec<Candidate>, UnitFacts, Terminals) {
             series: false,
         },
         ratios: vec![Ratios { peak: 1.0, load_factor_pu: c.lsf, loss_factor_pu: c.lsf }],
+        estimate: None,
         candidates: Vec::new(),
         flags: Flags::NONE,
     };
@@ -366,6 +367,9 @@ fn engine(c: &Case) -> (Context, Vec<Candidate>, UnitFacts, Terminals) {
         removal_cost: c.removal,
         scrap_value: c.scrap,
         customers: nan,
+        phases: Some(3),
+        winding_metal: None,
+        insulation: None,
         profile: 0,
     };
     let terminals = Terminals {

@@ -308,6 +308,24 @@ fn a_changed_basis_is_stored_with_its_old_value_in_the_journal() {
     assert!(journal.contains("discount_rate_pct") && journal.contains("dashboard"), "{journal}");
 }
 
+#[test]
+fn a_working_is_handed_to_the_terminal() {
+    for (variables, start) in [
+        (&[][..], "\u{1b}]52;c;b2wtMjAyNy0x"),
+        (&[("TMUX", "/tmp/x,1,0")][..], "\u{1b}Ptmux;\u{1b}\u{1b}]52;c;b2wtMjAyNy0x"),
+    ] {
+        let mut pty = Pty::demo(variables);
+        pty.until_shown(READY);
+        pty.type_in("3e");
+        pty.until_shown("How it comes about");
+        pty.type_in("y");
+        pty.until_shown("Handed to t");
+        assert!(String::from_utf8_lossy(&pty.bytes()).contains(start));
+        pty.type_in("qq");
+        assert_eq!(pty.wait(), 0);
+    }
+}
+
 /// The parameters of all sequences that set how text looks.
 fn looks(bytes: &[u8]) -> Vec<u16> {
     let text = String::from_utf8_lossy(bytes);

@@ -8,7 +8,7 @@ use rustc_hash::FxHashMap;
 
 use super::open::reader;
 use super::{Book, Result};
-use crate::engine::columns::{Column, Kind, Unit};
+use crate::engine::columns::{Column, Insulation, Kind, Unit, WindingMetal};
 use crate::engine::decision::UnitFacts;
 use crate::engine::decision::fit::Terminals;
 use crate::engine::decision::fleet::FleetColumns;
@@ -42,7 +42,8 @@ const NUMBERS: &[&str] = &[
     "scrap_value",
     "customers",
 ];
-const TEXTS: &[&str] = &["unit", "profile", "site", "vector_group", "in_service"];
+const TEXTS: &[&str] =
+    &["unit", "profile", "site", "vector_group", "in_service", "winding_metal", "insulation"];
 
 fn column(name: &str) -> Option<&'static Column> {
     Unit::COLUMNS.iter().find(|column| column.name == name)
@@ -190,6 +191,9 @@ fn read(
             removal_cost,
             scrap_value,
             customers,
+            phases: terminals.phases,
+            winding_metal: text(5).and_then(WindingMetal::from_word),
+            insulation: text(6).and_then(Insulation::from_word),
             profile,
         };
         fleet.push(text(0).unwrap_or(""), text(2), row.get(names.len())?, terminals, &facts);

@@ -33,6 +33,8 @@ const KEYS: &[&str] = &[
     "energy_saved_kwh",
     "co2_saved_kg",
     "flags",
+    "rank_low",
+    "rank_high",
 ];
 const TEXT: &[&str] = &[
     "rank",
@@ -93,7 +95,18 @@ pub(super) fn write(desk: &Desk, ranking: &Ranking, printer: &mut Printer) -> Re
             ))?;
             printer.line("")?;
             let rows: Vec<_> = rows.collect();
-            printer.table(&TextColumn::list(TEXT, &a.currency), rows.iter().map(Marked::of))?;
+            let mut columns = TextColumn::list(TEXT, &a.currency);
+            let estimated = ranking.could_stand.len();
+            if estimated > 0 {
+                columns.extend(TextColumn::list(&["rank_low", "rank_high"], &a.currency));
+            }
+            printer.table(&columns, rows.iter().map(Marked::of))?;
+            if estimated > 0 {
+                printer.line("")?;
+                printer.line(format!(
+                    "{estimated} units have estimated losses: \"if low\" and \"if high\" are their places with losses at the ends of the 95 % interval."
+                ))?;
+            }
             legend(printer, rows.iter().flat_map(|row| row.flags.iter().copied()))?;
             let left_out =
                 (0..ranking.left_out.len()).filter_map(|n| ranking.left_out_row(desk, n));

@@ -7,9 +7,11 @@ use super::factors::working;
 use super::print::{Printer, TextColumn};
 use crate::engine::columns;
 use crate::study::Desk;
+use crate::study::estimate::EstimatedRow;
+use crate::study::explain::{Explained as _, Opening};
 use crate::study::figures::group;
 use crate::study::losses::flag_meaning;
-use crate::study::unit::{Dossier, Opening, Question};
+use crate::study::unit::{Dossier, Question};
 
 pub(super) fn unit(args: &Args, options: &Unit, printer: &mut Printer) -> Result<Exit, Failure> {
     let Opened { book, .. } = book::open_to_read(args)?;
@@ -19,12 +21,13 @@ pub(super) fn unit(args: &Args, options: &Unit, printer: &mut Printer) -> Result
     let question = Question::new(&desk, &context, &unit)?;
     let mut dossier = question.dossier()?;
     let which = match options.working.as_deref() {
-        None => Opening::Short,
+        // Present values are taken down to the years, which is long: only where asked for.
+        None => Opening::Without("keep_or_replace"),
         Some("") => Opening::All,
         Some(figure) => Opening::One(figure),
     };
     if printer.format == Format::Json || options.working.is_some() {
-        dossier.working = question.workings(&dossier, which)?;
+        dossier.working = question.workings(which)?;
     }
     match printer.format {
         Format::Json => printer.json(&dossier)?,
@@ -84,6 +87,20 @@ fn text(printer: &mut Printer, d: &Dossier<'_>) -> Result<(), Failure> {
             column("regulation_pct", "regulation", "%", 3),
         ];
         printer.table(&columns, d.load_points.iter())?;
+    }
+    for (name, loss) in d.estimated.iter().flat_map(EstimatedRow::losses) {
+        printer.line(format!(
+            "Estimated {name}: {} W, with 95 % between {} and {} W; from {} units by {}{}.",
+            group(loss.estimate_w, 0),
+            group(loss.low_w, 0),
+            group(loss.high_w, 0),
+            loss.known_units,
+            loss.terms.join(", "),
+            match loss.units_set_aside {
+                0 => String::new(),
+                aside => format!(", {aside} set aside as misread"),
+            }
+        ))?;
     }
     if let Some(l) = &d.losses {
         printer.line("")?;

@@ -1,5 +1,7 @@
 //! What to decide: keep or replace (one unit, or a fleet in columns), which bid, and how sure the answer is.
 
+pub mod common_load;
+pub mod estimate;
 pub mod fit;
 pub mod fleet;
 pub mod keep_or_replace;

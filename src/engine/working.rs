@@ -102,6 +102,11 @@ impl Working {
         self.done
     }
 
+    /// The steps on the outermost level that give one of these symbols, given away.
+    pub fn only(self, symbols: &[&str]) -> Vec<Step> {
+        self.done.into_iter().filter(|step| symbols.contains(&step.formula.symbol)).collect()
+    }
+
     /// Takes over steps that were stated elsewhere.
     pub fn append(&mut self, steps: impl IntoIterator<Item = Step>) {
         self.place().extend(steps);

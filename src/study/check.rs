@@ -230,12 +230,17 @@ impl Doubts {
     fn missing_of_unit(&mut self, of: (&'static str, &str), unit: &Unit, basis: Option<&Basis>) {
         use Kind::{Estimated, Missing};
         let (p0, pk, total) = (unit.no_load_loss_w, unit.load_loss_w, unit.total_loss_w);
+        // What a basis has estimated is told as such; which units cannot be, the ranking says.
+        let estimate = basis.is_some_and(|basis| basis.estimate_missing == Some(true));
+        let estimated = "is blank; the basis has it estimated from known units of the fleet";
+        let mut lost = |column, why: LeftOut| {
+            let (kind, what) = if estimate { (Estimated, estimated) } else { (Missing, why.why()) };
+            self.add(of, column, kind, what);
+        };
         match (p0, pk, total) {
-            (None, None, _) => self.add(of, "no_load_loss_w", Missing, LeftOut::LossesBlank.why()),
-            (None, _, None) => {
-                self.add(of, "no_load_loss_w", Missing, LeftOut::NoLoadLossBlank.why());
-            }
-            (_, None, None) => self.add(of, "load_loss_w", Missing, LeftOut::LoadLossBlank.why()),
+            (None, None, _) => lost("no_load_loss_w", LeftOut::LossesBlank),
+            (None, _, None) => lost("no_load_loss_w", LeftOut::NoLoadLossBlank),
+            (_, None, None) => lost("load_loss_w", LeftOut::LoadLossBlank),
             (_, None, Some(_)) => {
                 self.flag(of, "load_loss_w", Estimated, Flags::LOAD_LOSS_FROM_TOTAL);
             }

@@ -1,10 +1,11 @@
 //! What lies ready for a question: a fleet in columns, offers, profiles, prices and a basis.
 
-use std::sync::Arc;
+use std::sync::{Arc, OnceLock};
 
 use crate::book::Book;
 use crate::engine::Refusal;
 use crate::engine::columns::{BasisSheet, CapitalRecovery, Offer, Unit};
+use crate::engine::decision::estimate::FleetEstimate;
 use crate::engine::decision::fleet::FleetColumns;
 use crate::engine::decision::{Candidate, Context, UnitFacts};
 use crate::engine::economics::Assumptions;
@@ -23,6 +24,8 @@ const TRIES: usize = 5;
 pub struct Desk {
     /// The fleet in columns.
     pub fleet: Arc<FleetColumns>,
+    /// What its known losses say of missing ones, once a basis asked for it.
+    estimate: Arc<OnceLock<Arc<FleetEstimate>>>,
     /// The offers, in catalogue order.
     pub offers: Arc<Vec<Offer>>,
     /// The offers ready to compute with, in the same order.
@@ -88,6 +91,7 @@ impl Desk {
         let ratios = profiles.iter().map(|p| p.ratios(&mut Silent)).collect::<Result<_, _>>()?;
         Ok(Self {
             fleet: fleet.into(),
+            estimate: Arc::default(),
             offers: offers.into(),
             candidates,
             profiles: profiles.into(),
@@ -127,7 +131,14 @@ impl Desk {
         self.lives(&a)?;
         let (candidates, law_flags) = self.candidates_under(&a)?;
         let ratios = self.ratios.clone();
-        Ok(Context { assumptions: a, market, ratios, candidates, flags: flags.with(law_flags) })
+        let estimate = a.estimate_missing.then(|| Arc::clone(self.estimate()));
+        let flags = flags.with(law_flags);
+        Ok(Context { assumptions: a, market, ratios, candidates, estimate, flags })
+    }
+
+    /// What the known losses of the fleet say of missing ones; the fleet is gone through once, whatever the basis.
+    fn estimate(&self) -> &Arc<FleetEstimate> {
+        self.estimate.get_or_init(|| Arc::new(FleetEstimate::of_fleet(&self.fleet)))
     }
 
     /// The candidates as a basis sees them: where it names a law, whether each meets it in each year of

@@ -1,8 +1,12 @@
 //! The working of a figure as results carry it: steps with formula, numbers put in, value, unit and source.
+//! [`Explained`] is what a result can be asked: which figures it has, and how each comes about.
 
 use serde::Serialize;
+use serde_json::Value;
 
-use crate::engine::working::Step;
+use super::StudyError;
+use crate::engine::Refusal;
+use crate::engine::working::{Step, Working};
 
 /// One step of a working.
 #[derive(Clone, Debug, PartialEq, Serialize)]
@@ -76,4 +80,137 @@ impl StepRow {
         }
         lines
     }
+}
+
+/// How a figure comes about; the last step is the figure.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct FigureWorking {
+    /// Its place in the result, as `keep_or_replace.keep_pv` or `load_points.2.efficiency_pct`.
+    pub figure: String,
+    /// The steps.
+    pub steps: Vec<StepRow>,
+}
+
+/// Which figures are opened.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Opening<'a> {
+    /// All.
+    All,
+    /// All but those below this part of the result.
+    Without(&'a str),
+    /// The one of this name: its place in the result, or the end of it where only one figure ends so.
+    One(&'a str),
+}
+
+/// A result of which every figure can be opened.
+pub trait Explained {
+    /// What the result is called, as in "the dossier of unit T-17".
+    fn called(&self) -> String;
+
+    /// Every figure that can be opened, by its place in the result, with its value.
+    ///
+    /// # Errors
+    /// There is no result.
+    fn figures(&self) -> Result<Vec<(String, f64)>, StudyError>;
+
+    /// States how the figure at a place of the result comes about; the last step is the figure.
+    ///
+    /// # Errors
+    /// What the engine refuses.
+    fn state(&self, w: &mut Working, place: &[&str]) -> Result<(), StudyError>;
+
+    /// How one figure comes about.
+    ///
+    /// # Errors
+    /// A figure that is not in the result, or a name that several have; what the engine refuses.
+    fn working(&self, figure: &str) -> Result<Vec<StepRow>, StudyError> {
+        let opened = self.workings(Opening::One(figure))?;
+        Ok(opened.into_iter().next().map(|figure| figure.steps).unwrap_or_default())
+    }
+
+    /// How figures come about.
+    ///
+    /// # Errors
+    /// As [`Explained::working`].
+    fn workings(&self, which: Opening) -> Result<Vec<FigureWorking>, StudyError> {
+        let figures = self.figures()?;
+        let names = figures.iter().map(|(name, _)| name.as_str());
+        let names: Vec<&str> = match which {
+            Opening::All => names.collect(),
+            Opening::Without(part) => {
+                names.filter(|name| name.split('.').next() != Some(part)).collect()
+            }
+            Opening::One(figure) => vec![named(figure, names, || self.called())?],
+        };
+        let open = |figure: &str| {
+            let mut w = Working::default();
+            self.state(&mut w, &figure.split('.').collect::<Vec<_>>())?;
+            Ok(FigureWorking { figure: figure.to_owned(), steps: StepRow::tree(w.steps()) })
+        };
+        names.into_iter().map(open).collect()
+    }
+}
+
+/// The place of a figure by its end.
+fn named<'n>(
+    figure: &str,
+    names: impl Iterator<Item = &'n str>,
+    called: impl Fn() -> String,
+) -> Result<&'n str, StudyError> {
+    let end = format!(".{figure}");
+    let names: Vec<&str> = names.collect();
+    if let Some(name) = names.iter().find(|name| **name == figure) {
+        return Ok(name);
+    }
+    let fit: Vec<&str> = names.iter().filter(|name| name.ends_with(&end)).copied().collect();
+    match fit[..] {
+        [name] => Ok(name),
+        [] => {
+            let ends = names.iter().filter_map(|name| name.rsplit('.').next());
+            Err(StudyError::unknown("figure", figure, called(), ends))
+        }
+        _ => {
+            let why = format!("names {}; write one of them", fit.join(", "));
+            Err(Refusal::new("figure", figure, why).into())
+        }
+    }
+}
+
+/// The numbers of a result by their places. Parts named in `without` and keys named in `labels` hold none.
+pub(super) fn numbers(
+    result: &impl Serialize,
+    without: &[&str],
+    labels: &[&str],
+) -> Vec<(String, f64)> {
+    let mut found = Vec::new();
+    if let Ok(Value::Object(parts)) = serde_json::to_value(result) {
+        for (key, part) in parts.iter().filter(|(key, _)| !without.contains(&key.as_str())) {
+            leaves(key, part, labels, &mut found);
+        }
+    }
+    found
+}
+
+fn leaves(place: &str, value: &Value, labels: &[&str], found: &mut Vec<(String, f64)>) {
+    match value {
+        Value::Number(number) => found.extend(number.as_f64().map(|x| (place.to_owned(), x))),
+        Value::Array(list) => {
+            for (n, part) in list.iter().enumerate() {
+                leaves(&format!("{place}.{n}"), part, labels, found);
+            }
+        }
+        Value::Object(parts) => {
+            for (key, part) in parts.iter().filter(|(key, _)| !labels.contains(&key.as_str())) {
+                leaves(&format!("{place}.{key}"), part, labels, found);
+            }
+        }
+        _ => {}
+    }
+}
+
+/// The item of a list whose place is written in a figure's name.
+pub(super) fn nth<'a, T>(list: &'a [T], n: &str) -> Result<(&'a T, usize), Refusal> {
+    let place = n.parse().ok();
+    let item = place.and_then(|n: usize| Some((list.get(n)?, n)));
+    item.ok_or_else(|| Refusal::new("figure", n, "is no place in the result"))
 }

@@ -3,13 +3,17 @@
 use serde::Serialize;
 
 use crate::engine::Refusal;
-use crate::engine::columns::{Lot, Unit};
+use crate::engine::columns::{FactorMethod, Lot, Unit};
 use crate::engine::decision::Context;
+use crate::engine::decision::common_load::CommonLoad;
 use crate::engine::decision::place::resolve;
-use crate::engine::economics::loss_factors::{LossFactors, levelized, of_duty, present_value};
+use crate::engine::decision::place::stated::{self, first_known, known_or};
+use crate::engine::economics::loss_factors::{
+    LossFactors, difference_pct, levelized, of_duty, present_value,
+};
 use crate::engine::loading::{Duty, factors};
 use crate::engine::working::{Recorder, Silent, Working};
-use crate::study::explain::StepRow;
+use crate::study::explain::{Explained, StepRow, numbers};
 use crate::study::{Desk, StudyError};
 
 /// The load for which factors are wanted. What is not stated is the fleet's own.
@@ -81,96 +85,138 @@ pub struct OtherMethod {
     pub factor_b_difference_pct: f64,
 }
 
-/// The duty of a load on a transformer of rating 1, from the basis alone.
-///
-/// # Errors
-/// Load and loss factor that cannot belong together, a profile that is not in the book, a load of which
-/// nothing is said.
-pub fn duty<R: Recorder>(
-    w: &mut R,
-    desk: &Desk,
-    context: &Context,
-    asked: &LoadAsked,
-) -> Result<Duty, StudyError> {
-    let a = &context.assumptions;
-    asked.check()?;
-    let profile = match &asked.profile {
-        None => None,
-        Some(name) => {
-            Some(desk.profiles.iter().position(|p| p.profile == *name).ok_or_else(|| {
-                let known: Vec<&str> = desk.profiles.iter().map(|p| p.profile.as_str()).collect();
-                StudyError::unknown("profile", name, "the book", known)
-            })?)
-        }
-    };
-    if let (Some(lf), Some(lsf)) = (asked.load_factor_pu, asked.loss_factor_pu) {
-        factors::check(lf, lsf)?;
-    }
-    let load_factor_pu = profile.map(|p| context.ratios[p].load_factor_pu).or(asked.load_factor_pu);
-    let loss_factor_pu = match (profile, asked.loss_factor_pu, asked.load_factor_pu) {
-        (Some(p), ..) => context.ratios[p].loss_factor_pu,
-        (None, Some(lsf), _) => lsf,
-        (None, None, Some(lf)) => factors::loss_factor(w, lf, a.loss_factor_weight_pu),
-        (None, None, None) => {
-            let why = "say how the load runs: a profile, a loss factor or a load factor";
-            return Err(Refusal::new("loss_factor_pu", "", why).into());
-        }
-    };
-    let constant = context.market.constant;
-    let load = profile.map_or_else(|| Ok(constant), |p| context.market.profiles[p].clone())?;
-    Ok(Duty {
-        peak_kva: asked.peak_pu.unwrap_or(1.0),
-        load_growth_pu: asked.load_growth_pct.map_or(a.load_growth, |pct| pct / 100.0),
-        load_factor_pu,
-        loss_factor_pu,
-        energised_hours: a.energised_hours,
-        auxiliary_hours: a.auxiliary_hours.unwrap_or(a.energised_hours),
-        power_factor: None,
-        responsibility_pu: load.responsibility_pu.or(a.responsibility_pu).unwrap_or(1.0),
-        no_load_price_per_kwh: constant.price_per_kwh,
-        load_price_per_kwh: load.price_per_kwh,
-        no_load_co2_kg_per_kwh: constant.co2_kg_per_kwh,
-        load_co2_kg_per_kwh: load.co2_kg_per_kwh,
-    })
+/// A basis and a load: what factors are asked about.
+#[derive(Clone, Copy, Debug)]
+pub struct Question<'a> {
+    /// The fleet, its profiles and prices.
+    pub desk: &'a Desk,
+    /// The basis resolved.
+    pub context: &'a Context,
+    /// The load.
+    pub asked: &'a LoadAsked,
 }
 
-/// The fleet's own load, each unit weighed by its load loss: the duty under which one transformer of the
-/// fleet's load loss would burn in year 1 what the fleet burns.
-fn fleet_duty(desk: &Desk, context: &Context) -> Option<Duty> {
-    let a = &context.assumptions;
-    // Σ Pk, Σ Pk·β², and Σ Pk·β²·LsF with price, CO2 and responsibility under the same weight.
-    let (mut rated, mut peak) = (0.0, 0.0);
-    let (mut energy, mut price, mut co2, mut responsibility) = (0.0, 0.0, 0.0, 0.0);
-    let mut any = None;
-    for i in 0..desk.fleet.len() {
-        let Ok(place) = resolve(&mut Silent, &desk.fleet.facts(i), context) else { continue };
-        let (l, d) = (&place.losses, &place.duty);
-        let beta = d.peak_kva / l.rated_kva;
-        let at_peak = l.load_loss_w * (beta * beta);
-        let lost = at_peak * d.loss_factor_pu;
-        rated += l.load_loss_w;
-        peak += at_peak;
-        energy += lost;
-        price += lost * d.load_price_per_kwh;
-        co2 += lost * d.load_co2_kg_per_kwh;
-        responsibility += at_peak * (d.responsibility_pu * d.responsibility_pu);
-        any = Some(*d);
+impl Question<'_> {
+    /// The duty on a transformer of rating 1: as stated, else the fleet's own; and where it comes from.
+    ///
+    /// # Errors
+    /// Load and loss factor that cannot belong together, a profile that is not in the book, a fleet of which no
+    /// unit can be computed.
+    fn load<R: Recorder>(&self, w: &mut R) -> Result<(Duty, &'static str), StudyError> {
+        if *self.asked != LoadAsked::default() {
+            return Ok((self.stated(w)?, "as stated"));
+        }
+        let mut load = CommonLoad::default();
+        for i in 0..self.desk.fleet.len() {
+            if let Ok(place) = resolve(&mut Silent, &self.desk.fleet.facts(i), self.context) {
+                load.add(&place);
+            }
+        }
+        let Some(duty) = load.duty(w, &self.context.assumptions) else {
+            let why =
+                "no unit of the fleet can be computed; state a load (profile, loss or load factor)";
+            return Err(Refusal::new("loss_factor_pu", "", why).into());
+        };
+        Ok((duty, "the fleet's own, each unit weighed by its load loss"))
     }
-    if rated <= 0.0 || energy <= 0.0 {
-        return None;
+
+    /// The duty of a stated load; what is not stated is the basis's.
+    fn stated<R: Recorder>(&self, w: &mut R) -> Result<Duty, StudyError> {
+        let (desk, context, asked) = (self.desk, self.context, self.asked);
+        let a = &context.assumptions;
+        asked.check()?;
+        let profile = match &asked.profile {
+            None => None,
+            Some(name) => {
+                let found = desk.profiles.iter().position(|p| p.profile == *name);
+                Some(found.ok_or_else(|| {
+                    let known = desk.profiles.iter().map(|p| p.profile.as_str());
+                    StudyError::unknown("profile", name, "the book", known)
+                })?)
+            }
+        };
+        if let (Some(lf), Some(lsf)) = (asked.load_factor_pu, asked.loss_factor_pu) {
+            factors::check(lf, lsf)?;
+        }
+        let ratios = match profile {
+            Some(p) if w.listens() => Some(desk.profiles[p].ratios(w)?),
+            Some(p) => Some(context.ratios[p]),
+            None => None,
+        };
+        let peak = [(asked.peak_pu, "as asked")];
+        let peak_kva = known_or(w, &stated::PEAK_PU, peak, (1.0, "the default"));
+        let from =
+            [(ratios.map(|r| r.loss_factor_pu), "the profile"), (asked.loss_factor_pu, "as asked")];
+        let loss_factor_pu =
+            match (first_known(w, &stated::LOSS_FACTOR, from), asked.load_factor_pu) {
+                (Some(known), _) => known,
+                (None, Some(lf)) => factors::loss_factor(w, lf, a.loss_factor_weight_pu),
+                (None, None) => {
+                    let why = "say how the load runs: a profile, a loss factor or a load factor";
+                    return Err(Refusal::new("loss_factor_pu", "", why).into());
+                }
+            };
+        let growth = [(asked.load_growth_pct.map(|pct| pct / 100.0), "as asked")];
+        let constant = context.market.constant;
+        let load = profile.map_or_else(|| Ok(constant), |p| context.market.profiles[p].clone())?;
+        Ok(Duty {
+            peak_kva,
+            load_growth_pu: known_or(w, &stated::GROWTH, growth, (a.load_growth, "the basis")),
+            load_factor_pu: ratios.map(|r| r.load_factor_pu).or(asked.load_factor_pu),
+            loss_factor_pu,
+            energised_hours: a.energised_hours,
+            auxiliary_hours: a.auxiliary_hours.unwrap_or(a.energised_hours),
+            power_factor: None,
+            responsibility_pu: load.responsibility_pu.or(a.responsibility_pu).unwrap_or(1.0),
+            no_load_price_per_kwh: constant.price_per_kwh,
+            load_price_per_kwh: load.price_per_kwh,
+            no_load_co2_kg_per_kwh: constant.co2_kg_per_kwh,
+            load_co2_kg_per_kwh: load.co2_kg_per_kwh,
+        })
     }
-    Some(Duty {
-        peak_kva: (peak / rated).sqrt(),
-        load_growth_pu: a.load_growth,
-        load_factor_pu: None,
-        loss_factor_pu: energy / peak,
-        energised_hours: a.energised_hours,
-        auxiliary_hours: a.auxiliary_hours.unwrap_or(a.energised_hours),
-        responsibility_pu: (responsibility / peak).sqrt(),
-        load_price_per_kwh: price / energy,
-        load_co2_kg_per_kwh: co2 / energy,
-        ..any?
-    })
+
+    fn own<R: Recorder>(&self, w: &mut R, duty: &Duty) -> Result<LossFactors, Refusal> {
+        of_duty(w, duty, 1.0, &self.context.assumptions)
+    }
+
+    /// The factors by the method that the basis does not use, where it allows it.
+    fn other<R: Recorder>(&self, w: &mut R, duty: &Duty) -> Option<(LossFactors, &'static str)> {
+        let a = &self.context.assumptions;
+        match a.factor_method {
+            FactorMethod::PresentValue => {
+                levelized(w, duty, 1.0, a).ok().map(|f| (f, FactorMethod::Levelized.word()))
+            }
+            FactorMethod::Levelized => {
+                Some((present_value(w, duty, 1.0, a), FactorMethod::PresentValue.word()))
+            }
+        }
+    }
+
+    /// The factors.
+    ///
+    /// # Errors
+    /// What the engine refuses of the basis or of the load.
+    pub fn factors(&self) -> Result<Factors, StudyError> {
+        let a = &self.context.assumptions;
+        let mut working = Working::default();
+        let (duty, load) = self.load(&mut working)?;
+        let factors = self.own(&mut working, &duty)?;
+        let other = self.other(&mut Silent, &duty);
+        Ok(Factors {
+            basis: a.name.clone(),
+            currency: a.currency.clone(),
+            method: a.factor_method.word(),
+            factor_a_per_kw: factors.factor_a_per_kw,
+            factor_b_per_kw: factors.factor_b_per_kw,
+            factor_aux_per_kw: factors.factor_aux_per_kw,
+            peak_pu: duty.peak_kva,
+            loss_factor_pu: duty.loss_factor_pu,
+            load_growth_pct: duty.load_growth_pct(&mut Silent),
+            load: load.to_owned(),
+            other_method: other.map(|(other, method)| differs(&factors, &other, method)),
+            working: StepRow::tree(working.steps()),
+        })
+    }
 }
 
 /// The factors of a basis for a stated load, or for the fleet's own load where nothing is stated.
@@ -178,47 +224,66 @@ fn fleet_duty(desk: &Desk, context: &Context) -> Option<Duty> {
 /// # Errors
 /// What the engine refuses of the basis or of the load.
 pub fn factors(desk: &Desk, asked: &LoadAsked) -> Result<Factors, StudyError> {
-    let context = desk.context()?;
-    let a = &context.assumptions;
-    let mut working = Working::default();
-    let stated = *asked != LoadAsked::default();
-    let (duty, load) = if stated {
-        (duty(&mut working, desk, &context, asked)?, "as stated".to_owned())
-    } else if let Some(duty) = fleet_duty(desk, &context) {
-        (duty, "the fleet's own, each unit weighed by its load loss".to_owned())
-    } else {
-        let why =
-            "no unit of the fleet can be computed; state a load (profile, loss or load factor)";
-        return Err(Refusal::new("loss_factor_pu", "", why).into());
-    };
-    let factors = of_duty(&mut working, &duty, 1.0, a)?;
-    let method = a.factor_method;
-    let other = match method {
-        crate::engine::columns::FactorMethod::PresentValue => {
-            levelized(&mut Silent, &duty, 1.0, a).ok().map(|f| (f, "levelized"))
+    Question { desk, context: &desk.context()?, asked }.factors()
+}
+
+/// What the steps of A, B and A_aux are called.
+const SYMBOLS: [(&str, &str); 3] =
+    [("factor_a_", "A"), ("factor_b_", "B"), ("factor_aux_", "A_aux")];
+
+impl Explained for Question<'_> {
+    fn called(&self) -> String {
+        format!("the factors of basis {}", self.context.assumptions.name)
+    }
+
+    fn figures(&self) -> Result<Vec<(String, f64)>, StudyError> {
+        Ok(numbers(&self.factors()?, &["working"], &[]))
+    }
+
+    fn state(&self, w: &mut Working, place: &[&str]) -> Result<(), StudyError> {
+        let mut told = Working::default();
+        let (duty, _) = self.load(&mut told)?;
+        let quantity = place.last().copied().unwrap_or_default();
+        match quantity {
+            "peak_pu" => w.append(told.only(&["β"])),
+            "loss_factor_pu" => w.append(told.only(&["LsF"])),
+            "load_growth_pct" => {
+                w.append(told.only(&["g"]));
+                duty.load_growth_pct(w);
+            }
+            _ => {
+                let symbol = SYMBOLS.iter().find(|(key, _)| quantity.starts_with(key));
+                let symbol = symbol.map_or("", |(_, symbol)| symbol);
+                w.append(told.into_steps());
+                let (mut own, mut other) = (Working::default(), Working::default());
+                self.own(&mut own, &duty)?;
+                self.other(&mut other, &duty);
+                let mut last = |steps: Working| {
+                    let steps = steps.only(&[symbol]);
+                    let value = steps.last().map_or(0.0, |step| step.value);
+                    w.append(steps);
+                    value
+                };
+                match (place.len(), quantity.ends_with("_difference_pct")) {
+                    (1, _) => {
+                        last(own);
+                    }
+                    (_, false) => {
+                        last(other);
+                    }
+                    (_, true) => {
+                        let (own, other) = (last(own), last(other));
+                        difference_pct(w, own, other);
+                    }
+                }
+            }
         }
-        crate::engine::columns::FactorMethod::Levelized => {
-            Some((present_value(&mut Silent, &duty, 1.0, a), "present-value"))
-        }
-    };
-    Ok(Factors {
-        basis: a.name.clone(),
-        currency: a.currency.clone(),
-        method: method.word(),
-        factor_a_per_kw: factors.factor_a_per_kw,
-        factor_b_per_kw: factors.factor_b_per_kw,
-        factor_aux_per_kw: factors.factor_aux_per_kw,
-        peak_pu: duty.peak_kva,
-        loss_factor_pu: duty.loss_factor_pu,
-        load_growth_pct: duty.load_growth_pu * 100.0,
-        load,
-        other_method: other.map(|(other, method)| differs(&factors, &other, method)),
-        working: StepRow::tree(working.steps()),
-    })
+        Ok(())
+    }
 }
 
 pub(super) fn differs(own: &LossFactors, other: &LossFactors, method: &'static str) -> OtherMethod {
-    let pct = |own: f64, other: f64| if own == 0.0 { 0.0 } else { 100.0 * (other / own - 1.0) };
+    let pct = |own: f64, other: f64| difference_pct(&mut Silent, own, other);
     OtherMethod {
         method,
         factor_a_per_kw: other.factor_a_per_kw,

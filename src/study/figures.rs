@@ -46,6 +46,14 @@ figures! {
     "energy_saved_kwh" "energy saved" "kWh" 0 "in the first year of service of the best choice";
     "co2_saved_kg" "CO2 saved" "kg" 0 "in the first year of service of the best choice";
     "flags" "flags" "" 0 "what is doubtful";
+    "rank_low" "if low" "" 0 "place if the estimated losses of the unit were at the lower ends of their 95 % intervals";
+    "rank_high" "if high" "" 0 "place if the estimated losses of the unit were at the upper ends of their 95 % intervals";
+    "estimate_w" "estimate" "W" 0 "loss estimated from the fleet's known units, a geometric mean";
+    "low_w" "low" "W" 0 "lower end of the 95 % prediction interval";
+    "high_w" "high" "W" 0 "upper end of the 95 % prediction interval";
+    "known_units" "from units" "" 0 "units of known loss that the estimate rests on";
+    "units_set_aside" "set aside" "" 0 "units whose known loss lies so far off that it counts as misread";
+    "terms" "by" "" 0 "what the estimate goes with";
     "no_load_energy_kwh" "iron" "kWh" 0 "energy of the no-load loss in the year";
     "load_energy_kwh" "copper" "kWh" 0 "energy of the load loss in the year";
     "auxiliary_energy_kwh" "aux" "kWh" 0 "energy of fans and pumps in the year";

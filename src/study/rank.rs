@@ -1,9 +1,13 @@
 //! Which units to replace, when and with what: the fleet ranked by what the best choice saves.
 
+use std::cmp::Ordering;
+
 use rayon::prelude::*;
+use rustc_hash::FxHashMap;
 use serde::ser::{SerializeSeq, SerializeStruct};
 use serde::{Serialize, Serializer};
 
+use crate::engine::decision::estimate::End;
 use crate::engine::decision::fleet::{CHUNK, Kernel, Outcome};
 use crate::engine::decision::keep_or_replace::FirstYear;
 use crate::engine::decision::place::resolve;
@@ -59,6 +63,18 @@ pub struct Ranking {
     pub left_out: Vec<u32>,
     /// Sums over all ranked units.
     pub totals: Totals,
+    /// Where the units of `order` whose losses are estimated could stand; by index of the unit.
+    pub could_stand: FxHashMap<u32, CouldStand>,
+}
+
+/// Places that a unit of estimated losses would take if these were at the ends of their intervals and all other
+/// units stood as they do; none where it would be left out.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub struct CouldStand {
+    /// With losses at the lower ends.
+    pub low: Option<usize>,
+    /// With losses at the upper ends.
+    pub high: Option<usize>,
 }
 
 /// Sums over all ranked units.
@@ -100,6 +116,8 @@ pub struct RankRow<'a> {
     pub energy_saved_kwh: Option<f64>,
     pub co2_saved_kg: Option<f64>,
     pub flags: Vec<&'static str>,
+    pub rank_low: Option<usize>,
+    pub rank_high: Option<usize>,
 }
 
 /// A unit that could not be ranked.
@@ -144,8 +162,39 @@ pub fn rank(desk: &Desk, by: By, top: Option<usize>, watch: &Watch) -> Result<Ra
         totals.units_saving += part.units_saving;
         left_out.extend(out);
     }
-    let order = order(desk, &outcomes, by, top);
-    Ok(Ranking { context, outcomes, order, left_out, totals })
+    let by = Order { desk, by };
+    let order: Vec<u32> = by.of(&outcomes, top).into_iter().map(|(_, i)| i).collect();
+    let could_stand = could_stand(&kernel, &by, &outcomes, &order);
+    Ok(Ranking { context, outcomes, order, left_out, totals, could_stand })
+}
+
+/// Where the units of `shown` whose losses are estimated could stand.
+fn could_stand(
+    kernel: &Kernel<'_>,
+    by: &Order<'_>,
+    outcomes: &[Outcome],
+    shown: &[u32],
+) -> FxHashMap<u32, CouldStand> {
+    let estimated: Vec<u32> = shown
+        .iter()
+        .copied()
+        .filter(|&i| outcomes[i as usize].flags.has(Flags::LOSS_ESTIMATED))
+        .collect();
+    if estimated.is_empty() {
+        return FxHashMap::default();
+    }
+    let all = by.of(outcomes, None);
+    let place = |i: u32, end: End| {
+        let outcome = kernel.at_end(&by.desk.fleet, i as usize, end);
+        let key = (by.figure(&outcome, i), i);
+        let before = |other: &(f64, u32)| by.compare(other, &key) == Ordering::Less;
+        // As it stands it does not stand before itself.
+        let itself = before(&(by.figure(&outcomes[i as usize], i), i));
+        let ahead = all.partition_point(before) - usize::from(itself);
+        outcome.left_out.is_none().then_some(ahead + 1)
+    };
+    let ends = |i: u32| (i, CouldStand { low: place(i, End::Low), high: place(i, End::High) });
+    estimated.into_par_iter().map(ends).collect::<Vec<_>>().into_iter().collect()
 }
 
 fn sum_up(from: usize, out: &[Outcome]) -> (Totals, Vec<u32>) {
@@ -165,43 +214,57 @@ fn sum_up(from: usize, out: &[Outcome]) -> (Totals, Vec<u32>) {
     (totals, left_out)
 }
 
-/// The ranked units in the order asked for, then by the bytes of the identifier.
-fn order(desk: &Desk, outcomes: &[Outcome], by: By, top: Option<usize>) -> Vec<u32> {
-    let figure = |i: u32| {
-        let outcome = &outcomes[i as usize];
-        match by {
+/// An order of the ranked units: by a figure, greatest first, then by the bytes of the identifier.
+struct Order<'a> {
+    desk: &'a Desk,
+    by: By,
+}
+
+impl Order<'_> {
+    /// The figure of unit number `i` with an outcome.
+    fn figure(&self, outcome: &Outcome, i: u32) -> f64 {
+        match self.by {
             By::Saving => outcome.saving_pv(),
             By::Waiting => outcome.waiting_pv,
             By::Keep => outcome.keep_pv,
-            By::Rating => desk.fleet.rated_kva.get(i as usize),
-            By::Made => Some(-desk.fleet.year_made.get(i as usize))
+            By::Rating => self.desk.fleet.rated_kva.get(i as usize),
+            By::Made => Some(-self.desk.fleet.year_made.get(i as usize))
                 .filter(|made| !made.is_nan())
                 .unwrap_or(f64::NEG_INFINITY),
             By::Unit => 0.0,
         }
-    };
-    let name = |i: u32| desk.fleet.unit.get(i as usize);
-    let before = |a: &(f64, u32), b: &(f64, u32)| {
-        b.0.total_cmp(&a.0).then_with(|| name(a.1).as_bytes().cmp(name(b.1).as_bytes()))
-    };
-    let mut keyed: Vec<(f64, u32)> = (0..u32::try_from(outcomes.len()).unwrap_or(u32::MAX))
-        .filter(|&i| outcomes[i as usize].left_out.is_none())
-        .map(|i| (figure(i), i))
-        .collect();
-    if let Some(top) = top.filter(|&top| top < keyed.len()) {
-        if top > 0 {
-            keyed.select_nth_unstable_by(top - 1, before);
-        }
-        keyed.truncate(top);
     }
-    keyed.par_sort_unstable_by(before);
-    keyed.into_iter().map(|(_, i)| i).collect()
+
+    fn compare(&self, a: &(f64, u32), b: &(f64, u32)) -> Ordering {
+        let name = |i: u32| self.desk.fleet.unit.get(i as usize).as_bytes();
+        b.0.total_cmp(&a.0).then_with(|| name(a.1).cmp(name(b.1)))
+    }
+
+    /// The ranked units with their figures, in order; only the first `top` of them.
+    fn of(&self, outcomes: &[Outcome], top: Option<usize>) -> Vec<(f64, u32)> {
+        let mut keyed: Vec<(f64, u32)> = (0u32..)
+            .zip(outcomes)
+            .filter(|(_, outcome)| outcome.left_out.is_none())
+            .map(|(i, outcome)| (self.figure(outcome, i), i))
+            .collect();
+        let compare = |a: &(f64, u32), b: &(f64, u32)| self.compare(a, b);
+        if let Some(top) = top.filter(|&top| top < keyed.len()) {
+            if top > 0 {
+                keyed.select_nth_unstable_by(top - 1, compare);
+            }
+            keyed.truncate(top);
+        }
+        keyed.par_sort_unstable_by(compare);
+        keyed
+    }
 }
 
 impl Ranking {
     /// Line number `place` (0 = best) of the ranking; none beyond its end.
     pub fn row<'a>(&self, desk: &'a Desk, place: usize) -> Option<RankRow<'a>> {
-        let i = *self.order.get(place)? as usize;
+        let unit = *self.order.get(place)?;
+        let i = unit as usize;
+        let could_stand = self.could_stand.get(&unit).copied().unwrap_or_default();
         let outcome = &self.outcomes[i];
         let facts = desk.fleet.facts(i);
         let resolved = resolve(&mut Silent, &facts, &self.context).ok()?;
@@ -245,6 +308,8 @@ impl Ranking {
                     Flags::OFFER_OVERLOADED,
                 )
                 .keys(),
+            rank_low: could_stand.low,
+            rank_high: could_stand.high,
         })
     }
 
@@ -254,8 +319,8 @@ impl Ranking {
         for (at, i) in (0u32..).zip(&self.order) {
             place[*i as usize] = at;
         }
-        let ordered = order(desk, &self.outcomes, by, None);
-        ordered.into_iter().map(|i| place[i as usize]).filter(|at| *at != u32::MAX).collect()
+        let ordered = Order { desk, by }.of(&self.outcomes, None);
+        ordered.into_iter().map(|(_, i)| place[i as usize]).filter(|at| *at != u32::MAX).collect()
     }
 
     /// Unit number `n` of those left out; none beyond the last.

@@ -4,6 +4,9 @@
 //! unit in the tender currency. The structs serialise with the names of the contract; what they add stands last.
 
 pub mod letter;
+mod workings;
+
+pub use workings::Settled;
 
 use serde::Serialize;
 
@@ -16,11 +19,12 @@ use crate::engine::columns::{Award, Bid, Lot, Measured, Settlement, TenderSheet}
 use crate::engine::decision::tender::Terms;
 use crate::engine::decision::tender::bid::Comparable;
 use crate::engine::decision::tender::settlement::{
-    Delivered, Excess, beyond, delivered, mean, penalty,
+    Delivered, Excess, beyond, delivered, mean, mean_cost, penalty, penalty_of_mean,
+    penalty_of_units,
 };
 use crate::engine::decision::tender::tolerance::Exceeded;
 use crate::engine::flags::Flags;
-use crate::engine::working::{Silent, Step, Working};
+use crate::engine::working::{Recorder, Silent, Step, Working};
 
 /// The settlement of a tender.
 #[derive(Clone, Debug, PartialEq, Serialize)]
@@ -197,14 +201,7 @@ pub fn working(
         StudyError::unknown("serial", serial, place, known)
     })?;
     let mut working = Working::default();
-    let (terms, bid) = (&guarantee.terms, guarantee.bid);
-    let promise = bring(&mut working, terms, bid)?;
-    let own = delivered(&mut working, terms, bid, &promise, unit).excess;
-    let counted = match guarantee.rule() {
-        Settlement::Unit => own,
-        Settlement::LotMean => mean(&mut working, &guarantee.excesses()),
-    };
-    penalty(&mut working, &promise.factors, &counted);
+    guarantee.state_penalty(&mut working, unit)?;
     Ok(working.into_steps())
 }
 
@@ -262,19 +259,21 @@ impl<'a> Guarantee<'a> {
         let of_mean = mean.map(|mean| penalty(&mut Silent, factors, &mean));
         let units: Vec<UnitSettlement> =
             self.units.iter().map(|unit| self.settle_unit(unit, of_mean)).collect();
-        #[expect(clippy::cast_precision_loss, reason = "a lot has at most ten million units")]
-        let tested = units.len() as f64;
+        let tested = units.len();
         LotSettlement {
             lot: self.bid.lot.clone(),
             bid: self.bid.bid.clone(),
             penalty: of_mean.map_or_else(
-                || units.iter().map(|unit| unit.penalty).sum(),
-                |of_mean| of_mean * tested,
+                || penalty_of_units(&mut Silent, units.iter().map(|unit| unit.penalty)),
+                |of_mean| penalty_of_mean(&mut Silent, of_mean, tested),
             ),
             settlement: self.rule().word(),
             owning_cost_promised: self.promise.owning_cost(&mut Silent).total(),
-            owning_cost_delivered: units.iter().map(|unit| unit.owning_cost_delivered).sum::<f64>()
-                / tested,
+            owning_cost_delivered: mean_cost(
+                &mut Silent,
+                units.iter().map(|unit| unit.owning_cost_delivered),
+                tested,
+            ),
             bidder: self.bid.bidder.clone(),
             quantity: self.terms.quantity(),
             factor_a_per_kw: factors.factor_a_per_kw,
@@ -300,11 +299,17 @@ impl<'a> Guarantee<'a> {
         }
     }
 
+    /// A unit as a bid with the losses that were measured.
+    fn as_delivered<R: Recorder>(&self, w: &mut R, unit: &Measured) -> Comparable {
+        let delivered = delivered(w, &self.terms, self.bid, &self.promise, unit);
+        Comparable { losses: delivered.losses, ..self.promise }
+    }
+
     fn settle_unit(&self, unit: &Measured, of_mean: Option<f64>) -> UnitSettlement {
         let delivered = self.delivered(unit);
         let (excess, factors) = (delivered.excess, &self.promise.factors);
-        let (exceeded, rejectable) = beyond(&self.terms, &self.promise, &excess);
-        let as_delivered = Comparable { losses: delivered.losses, ..self.promise };
+        let (exceeded, rejectable) = beyond(&mut Silent, &self.terms, &self.promise, &excess);
+        let as_delivered = self.as_delivered(&mut Silent, unit);
         UnitSettlement {
             serial: unit.serial.clone(),
             no_load_excess_w: excess.no_load_w,

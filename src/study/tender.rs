@@ -12,6 +12,7 @@ mod factors;
 pub mod letter;
 mod results;
 pub mod risk;
+mod workings;
 
 use super::StudyError;
 use crate::engine::columns::{Award, Bid, Lot, TenderSheet};
@@ -350,8 +351,8 @@ fn evaluate_lot(
     let map = WinnerMap::new(&contest.planes, &terms.factors);
     let borders = contest.borders(&map, contestant);
     let map = contest.map(&map, ranking, contestant);
-    let nearest_border = contest.nearest_border(contestant);
-    let changes = contest.changes(&judged.bids, terms, basis, contestant)?;
+    let nearest_border = contest.nearest_border(&mut Silent, contestant);
+    let changes = contest.changes(&mut Silent, &judged.bids, terms, basis, contestant)?;
     let result = |i: usize, rank| judged.bids[i].result(terms, rank, ranking.band.contains(&i));
     let ranked = ranking.order.iter().enumerate().map(|(place, &i)| result(i, Some(place + 1)));
     let excluded = (0..judged.bids.len()).filter(|i| !judged.bids[*i].found.misses.is_empty());
@@ -460,8 +461,12 @@ impl Contest {
         Some(Field { planes: &self.planes, winner, factors: self.factors })
     }
 
-    fn nearest_border(&self, name: impl Fn(usize) -> String) -> Option<NearestBorderResult> {
-        let border = changes::nearest_border(&self.field()?)?;
+    fn nearest_border<R: Recorder>(
+        &self,
+        w: &mut R,
+        name: impl Fn(usize) -> String,
+    ) -> Option<NearestBorderResult> {
+        let border = changes::nearest_border(w, &self.field()?)?;
         Some(NearestBorderResult {
             at: border.at,
             distance_per_kw: border.distance_per_kw,
@@ -469,8 +474,9 @@ impl Contest {
         })
     }
 
-    fn changes(
+    fn changes<R: Recorder>(
         &self,
+        w: &mut R,
         assessed: &[Assessed],
         terms: &Terms,
         basis: Option<&BasisForFactors>,
@@ -479,8 +485,9 @@ impl Contest {
         let Some(field) = self.field() else { return Ok(Changes::default()) };
         let winner = &assessed[self.bids[field.winner]].on_terms;
         let losses = &winner.losses;
-        let mut found: Vec<Change> = field.of_factors().to_vec();
+        let mut found: Vec<Change> = field.of_factors(w).to_vec();
         found.extend(field.of_winner(
+            w,
             winner.price,
             losses.no_load_loss_w,
             losses.load_loss_w,
@@ -488,7 +495,7 @@ impl Contest {
         ));
         if let Some(basis) = basis.filter(|_| Computed::by(terms.lot).any()) {
             let at = format!("lot {}", terms.lot.lot);
-            let of_basis = field.of_basis(terms.lot, &terms.rates, basis);
+            let of_basis = field.of_basis(w, terms.lot, &terms.rates, basis);
             found.extend(of_basis.map_err(StudyError::refused(at))?);
         }
         let side = |side: Option<changes::Move>| {

@@ -3,8 +3,6 @@
 
 mod workings;
 
-pub use workings::Opening;
-
 use serde::Serialize;
 use serde_json::{Map, Value};
 
@@ -20,7 +18,8 @@ use crate::engine::transformer::circuit::{
 use crate::engine::transformer::losses::Losses;
 use crate::engine::transformer::{efficiency, regulation};
 use crate::engine::working::{Recorder, Silent};
-use crate::study::explain::StepRow;
+use crate::study::estimate::EstimatedRow;
+use crate::study::explain::FigureWorking;
 use crate::study::losses::{LossesRow, of_unit};
 use crate::study::{Desk, StudyError};
 
@@ -178,21 +177,14 @@ pub struct Dossier<'a> {
     pub best_load_pu: Option<f64>,
     pub loading: Option<LoadingRow>,
     pub losses: Option<LossesRow<'a>>,
+    /// The losses that its nameplate leaves blank.
+    pub estimated: Option<EstimatedRow>,
     pub keep_or_replace: Option<KeepOrReplace<'a>>,
     /// Why it cannot be ranked.
     pub left_out: Option<&'static str>,
     pub flags: Vec<&'static str>,
     /// How its figures come about, as far as they are opened.
     pub working: Vec<FigureWorking>,
-}
-
-/// How a figure of a dossier comes about; the last step is the figure.
-#[derive(Clone, Debug, PartialEq, Serialize)]
-pub struct FigureWorking {
-    /// Its place in the dossier, as `keep_or_replace.keep_pv` or `load_points.2.efficiency_pct`.
-    pub figure: String,
-    /// The steps.
-    pub steps: Vec<StepRow>,
 }
 
 /// Loads at which efficiency and regulation are shown (pu).
@@ -278,6 +270,7 @@ impl<'a> Question<'a> {
                 load_price_per_kwh: place.duty.load_price_per_kwh,
             }),
             losses: of_unit(self.desk, self.context, self.index).ok(),
+            estimated: EstimatedRow::of(self.context, &self.facts()),
             left_out: decided.as_ref().err().map(|why| why.why()),
             keep_or_replace: decided.ok().map(|(place, d)| self.keep_or_replace(&place, &d)),
             flags: flags.keys(),

@@ -45,6 +45,10 @@ pub enum Place {
     Filter,
     /// In the help.
     Help,
+    /// In the panel that opens a figure.
+    Working,
+    /// In the inputs of a tender that can be moved.
+    WhatIf,
 }
 
 impl Place {
@@ -55,6 +59,8 @@ impl Place {
             Self::List => "Moving",
             Self::Filter => "While typing a filter",
             Self::Help => "In the help",
+            Self::Working => "In the working of a figure",
+            Self::WhatIf => "What if",
             Self::On(screen) => {
                 Screen::ALL.iter().find(|(s, _)| *s == screen).map_or("", |(_, title)| title)
             }
@@ -82,6 +88,10 @@ pub enum Action {
     First,
     Last,
     Open,
+    Working,
+    NextFigure,
+    PreviousFigure,
+    Copy,
     Filter,
     FilterKeep,
     FilterDrop,
@@ -95,6 +105,8 @@ pub enum Action {
     PreviousLot,
     NextTender,
     TenderView,
+    WhatIf,
+    Risk,
     Less,
     More,
     MuchLess,
@@ -155,6 +167,7 @@ actions! {
     }
     FLEET => {
         "open" Action::Open, [key(KeyCode::Enter), char('o')], "open", "Open the unit under the cursor.", shown;
+        "fleet-working" Action::Working, [char('e'), key(KeyCode::F(6))], "explain", "How the losses of the unit under the cursor come about, step by step.";
         "filter" Action::Filter, [char('/'), char('f')], "filter", "Show only units whose name or site holds the words that you type.", shown;
         "sort" Action::Sort, [char('s'), key(KeyCode::F(4))], "sort", "Order by saving, cost of waiting, cost of keeping, rating, age, name.", shown;
         "left-out" Action::LeftOut, [char('x'), key(KeyCode::F(3))], "left out", "Show the units that could not be ranked, with the reason; again: the ranking.", shown;
@@ -162,12 +175,16 @@ actions! {
     UNIT => {
         "next-unit" Action::NextUnit, [key(KeyCode::Right), char('n')], "next unit", "The next unit of the list.", shown;
         "previous-unit" Action::PreviousUnit, [key(KeyCode::Left), char('p')], "previous", "The previous unit of the list.", shown;
+        "unit-working" Action::Working, [char('e'), key(KeyCode::F(6))], "explain", "How the figures come about, step by step.", shown;
         "table" Action::Table, [char('t'), key(KeyCode::F(3))], "chart/table", "Show the years as a table instead of a chart, and back.", shown;
     }
     TENDER => {
         "next-lot" Action::NextLot, [key(KeyCode::Right), char('n')], "next lot", "The next lot of the tender.", shown;
         "previous-lot" Action::PreviousLot, [key(KeyCode::Left), char('p')], "previous", "The previous lot of the tender.", shown;
+        "bid-working" Action::Working, [char('e'), key(KeyCode::F(6))], "explain", "How the figures of the bid under the cursor come about, step by step.", shown;
         "tender-view" Action::TenderView, [char('m'), key(KeyCode::F(3))], "map/changes", "In turn: the bids, the map of who wins at other factors, what must move before another wins.", shown;
+        "what-if" Action::WhatIf, [char('v'), key(KeyCode::F(7))], "what if", "Move a factor, or the price or a loss of the bid under the cursor, and see the ranking follow. Nothing is stored.", shown;
+        "risk" Action::Risk, [char('u'), key(KeyCode::F(9))], "how sure", "Draw the uncertain inputs of the basis: how probably each bid of the lot is the cheapest to own.", shown;
         "next-tender" Action::NextTender, [char('t'), key(KeyCode::F(4))], "next tender", "The next tender of the book.";
     }
     BASIS => {
@@ -189,6 +206,21 @@ actions! {
     }
     Place::Help => {
         "help-close" Action::Back, [key(KeyCode::Esc), char('?'), key(KeyCode::F(1)), char('q'), key(KeyCode::Enter)], "close", "Close the help.", shown;
+    }
+    Place::WhatIf => {
+        "what-if-less" Action::Less, [key(KeyCode::Left), char('-')], "less", "A small step down.", shown;
+        "what-if-more" Action::More, [key(KeyCode::Right), char('+'), char('=')], "more", "A small step up.", shown;
+        "what-if-much-less" Action::MuchLess, [char('<'), char(','), Key::shift(KeyCode::Left)], "far less", "A step down ten times as large.", shown;
+        "what-if-much-more" Action::MuchMore, [char('>'), char('.'), Key::shift(KeyCode::Right)], "far more", "A step up ten times as large.", shown;
+        "what-if-reset" Action::Reset, [char('r'), key(KeyCode::Delete)], "reset", "Put the input under the cursor back as it is stored.", shown;
+        "what-if-reset-all" Action::ResetAll, [char('R'), key(KeyCode::F(8))], "reset all", "Put everything back as it is stored.", shown;
+        "what-if-close" Action::Back, [key(KeyCode::Esc), char('v'), key(KeyCode::F(7)), key(KeyCode::Enter)], "bids", "Back to the bids; what was moved stays moved.", shown;
+    }
+    Place::Working => {
+        "working-close" Action::Back, [key(KeyCode::Esc), char('e'), char('q'), key(KeyCode::F(6)), key(KeyCode::Enter), key(KeyCode::Backspace)], "close", "Close the working.", shown;
+        "next-figure" Action::NextFigure, [key(KeyCode::Right), char('n')], "next figure", "The working of the next figure.", shown;
+        "previous-figure" Action::PreviousFigure, [key(KeyCode::Left), char('p')], "previous", "The working of the figure before.", shown;
+        "copy" Action::Copy, [char('y'), char('c')], "copy", "Hand the working to the terminal as text to be copied.", shown;
     }
     Place::Everywhere => {
         "fleet" Action::Go(Screen::Fleet), [char('1')], "Fleet", "The fleet, ranked by what replacing saves.";

@@ -9,12 +9,13 @@ use tui_input::{Input, InputRequest};
 
 use super::action::{self, Action, Place, Screen};
 use super::caps::Caps;
+use super::clipboard::Clipboard;
 use super::keys::Key;
 use super::list::{List, Step};
 use super::session::{JournalLine, Session};
 use super::theme::Theme;
 use super::work::{Answer, Done, Job, Kind, Question, Ranked, View, ViewSpec};
-use super::{basis, frame, help, tender, text, unit};
+use super::{basis, frame, help, tender, text, unit, working};
 use crate::engine::columns::BasisSheet;
 use crate::study::rank::By;
 use crate::study::{StudyError, Watch};
@@ -39,12 +40,14 @@ impl ExitReason {
 }
 
 /// What the loop is to do with the terminal.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[derive(Clone, Debug, PartialEq, Eq)]
 pub enum Wish {
     /// Hand it to the shell.
     Suspend,
     /// Draw everything anew.
     Redraw,
+    /// Write this to it.
+    Write(String),
 }
 
 /// What is being waited for.
@@ -79,6 +82,8 @@ pub struct App {
     pub(super) screen: Screen,
     /// First line of the help that is shown; none = closed.
     pub(super) help: Option<List>,
+    /// How a figure comes about; none = closed.
+    pub(super) working: Option<working::Panel>,
     pub(super) message: Option<String>,
     pub(super) opened: Option<Opened>,
     /// The fleet under the basis as it is stored.
@@ -115,6 +120,7 @@ impl App {
             size,
             screen: Screen::Fleet,
             help: None,
+            working: None,
             message: None,
             opened: None,
             stored: None,
@@ -186,9 +192,18 @@ impl App {
             vec![Place::Help, Place::List, Place::Everywhere]
         } else if self.typing.is_some() {
             vec![Place::Filter]
+        } else if self.working.is_some() {
+            vec![Place::Working, Place::List, Place::Everywhere]
+        } else if self.moves_inputs() {
+            vec![Place::WhatIf, Place::On(self.screen), Place::List, Place::Everywhere]
         } else {
             vec![Place::On(self.screen), Place::List, Place::Everywhere]
         }
+    }
+
+    /// Whether the inputs of a tender take the keys.
+    pub(super) fn moves_inputs(&self) -> bool {
+        self.screen == Screen::Tender && self.tender.what_if.open
     }
 
     /// Takes a key press.
@@ -198,6 +213,11 @@ impl App {
         }
         let key = Key::of(event);
         let action = action::of_key(&self.places(), key);
+        // Any key but the one that stores takes the question away.
+        if self.basis.storing && action != Some(Action::Save) {
+            self.basis.storing = false;
+            self.message = None;
+        }
         match (action, &mut self.typing) {
             (Some(action), _) => self.act(action),
             (None, Some(input)) if self.help.is_none() => match edit(key) {
@@ -263,6 +283,21 @@ impl App {
                     self.screen = Screen::Unit;
                 }
             }
+            Action::Working => match working::open(self) {
+                Some(Ok(panel)) => self.working = Some(panel),
+                Some(Err(error)) => self.message = Some(error.to_string()),
+                None => {}
+            },
+            Action::NextFigure | Action::PreviousFigure => {
+                if let Some(panel) = &mut self.working {
+                    let back = panel.len().saturating_sub(1);
+                    let by = if action == Action::NextFigure { 1 } else { back };
+                    if let Err(error) = panel.turn(by) {
+                        self.message = Some(error.to_string());
+                    }
+                }
+            }
+            Action::Copy => self.copy(),
             Action::Filter => {
                 self.typing = Some(Input::new(self.wanted.filter.clone()));
             }
@@ -294,6 +329,26 @@ impl App {
                 self.tender.next_tender(self.ranked.as_ref().map_or(0, |r| r.tenders.len()));
             }
             Action::TenderView => self.tender.view = self.tender.view.next(),
+            Action::WhatIf => {
+                self.tender.what_if.open = tender::under_cursor(self).is_some();
+                if !tender::shows_all(self) {
+                    self.tender.view = tender::View::Bids;
+                }
+            }
+            Action::Risk => self.ask_risk(),
+            Action::Less | Action::More | Action::MuchLess | Action::MuchMore
+                if self.moves_inputs() =>
+            {
+                let by = match action {
+                    Action::Less => -1,
+                    Action::More => 1,
+                    Action::MuchLess => -10,
+                    _ => 10,
+                };
+                self.move_input(tender::Move::By(by));
+            }
+            Action::Reset if self.moves_inputs() => self.move_input(tender::Move::Reset),
+            Action::ResetAll if self.moves_inputs() => self.move_input(tender::Move::ResetAll),
             Action::Less => self.nudge(-1, false),
             Action::More => self.nudge(1, false),
             Action::MuchLess => self.nudge(-1, true),
@@ -307,7 +362,11 @@ impl App {
 
     /// Stops what runs; else closes the innermost thing; else goes back to the fleet.
     fn back(&mut self) {
-        if self.help.take().is_some() {
+        if self.help.take().is_some() || self.working.take().is_some() {
+            return;
+        }
+        if self.moves_inputs() {
+            self.tender.what_if.open = false;
             return;
         }
         let ranking = Kind::Rank as usize;
@@ -315,6 +374,8 @@ impl App {
             busy.watch.stop();
             self.asking.generation[ranking] += 1;
             self.stopped();
+        } else if tender::can_go_back(self) {
+            self.tender.view = tender::View::Bids;
         } else if self.screen != Screen::Fleet {
             self.screen = Screen::Fleet;
         } else if self.show_left_out {
@@ -326,7 +387,7 @@ impl App {
 
     /// Whether there is something to go back from.
     pub(super) fn can_go_back(&self) -> bool {
-        if self.help.is_some() {
+        if self.help.is_some() || self.working.is_some() {
             return false;
         }
         self.screen != Screen::Fleet || self.show_left_out || !self.wanted.filter.is_empty()
@@ -335,6 +396,7 @@ impl App {
     fn go(&mut self, screen: Screen) {
         let from = std::mem::replace(&mut self.screen, screen);
         self.typing = None;
+        self.working = None;
         if screen == Screen::Unit
             && (from == Screen::Fleet || self.unit.index.is_none())
             && let Some(i) = self.under_cursor()
@@ -361,13 +423,29 @@ impl App {
             self.help = Some(list);
             return;
         }
+        if let Some(mut panel) = self.working.take() {
+            let lines = working::lines(self, &panel, usize::from(self.size.width)).len();
+            panel.list.scroll(step, lines, height);
+            self.working = Some(panel);
+            return;
+        }
         let len = self.len();
         let list = match self.screen {
             Screen::Fleet if self.show_left_out => &mut self.left_out,
             Screen::Fleet => &mut self.fleet,
-            Screen::Unit => return self.unit.facts.scroll(step, len, height),
+            Screen::Unit => {
+                match unit::table_len(self) {
+                    Some((lines, seen)) => self.unit.years.scroll(step, lines, seen),
+                    None => self.unit.facts.scroll(step, len, height),
+                }
+                return;
+            }
             Screen::Basis => &mut self.basis.list,
             Screen::Journal => &mut self.journal,
+            Screen::Tender if self.tender.what_if.open => {
+                self.tender.what_if.list.step(step, tender::INPUTS, tender::INPUTS);
+                return self.tender.list.settle(len, height);
+            }
             Screen::Tender => &mut self.tender.list,
         };
         list.step(step, len, height);
@@ -388,7 +466,9 @@ impl App {
     /// Keeps every cursor in its list and its window.
     fn settle(&mut self) {
         let height = frame::list_height(self);
-        if self.screen == Screen::Fleet {
+        if self.working.is_some() || self.help.is_some() {
+            self.step(Step::Lines(0));
+        } else if self.screen == Screen::Fleet {
             self.fleet.settle(self.view.places.len(), height);
             self.left_out.settle(self.view.left_out.len(), height);
             if let (true, Some(ranked), Some(i)) =
@@ -423,11 +503,29 @@ impl App {
         }
     }
 
+    /// Hands the opened working to the terminal as text.
+    fn copy(&mut self) {
+        let Some(panel) = &self.working else { return };
+        match self.theme.caps().clipboard.sequence(&panel.text()) {
+            Ok(sequence) => {
+                self.wish = Some(Wish::Write(sequence));
+                let said = if self.theme.caps().clipboard == Clipboard::Tmux {
+                    "Handed to tmux, which passes it on where its allow-passthrough is on."
+                } else {
+                    "Handed to the terminal; if nothing arrives, it takes no text from programs."
+                };
+                self.message = Some(said.to_owned());
+            }
+            Err(why) => self.message = Some(why),
+        }
+    }
+
     /// Shows a unit on its screen.
     fn open_unit(&mut self, i: usize) {
         let Some(ranked) = self.ranked.clone() else { return };
         if self.unit.index != Some(i) {
             self.unit.facts = List::default();
+            self.unit.years = List::default();
             self.unit.record = None;
             let name = ranked.desk.fleet.unit.get(i).to_owned();
             self.ask("Reading the unit", Question::Record(name));
@@ -465,8 +563,13 @@ impl App {
                     self.stored = Some(Arc::clone(&ranked));
                 }
                 let unit = self.under_cursor();
+                let bid = tender::under_cursor(self).map(|(_, _, bid)| bid.to_owned());
                 self.basis.in_effect(&ranked.desk.sheet.basis);
                 self.ranked = Some(Arc::clone(&ranked));
+                // What it explains is of another basis.
+                self.working = None;
+                tender::keep_on(self, &bid.unwrap_or_default());
+                self.evaluate_draft();
                 if view.spec != self.wanted {
                     let spec = self.wanted.clone();
                     self.ask(
@@ -486,6 +589,20 @@ impl App {
                 }
             }
             Ok(Answer::Record(unit, record)) => self.unit.take_record(&unit, record),
+            Ok(Answer::WhatIf(evaluated, number)) => {
+                if self.tender.counts(number) {
+                    let bid = tender::under_cursor(self).map(|(_, _, bid)| bid.to_owned());
+                    if let Err(why) = self.tender.what_if.take(evaluated) {
+                        self.message = Some(why);
+                    }
+                    tender::keep_on(self, &bid.unwrap_or_default());
+                }
+            }
+            Ok(Answer::Risk(risk, lot, number)) => {
+                if self.tender.counts(number) {
+                    self.tender.risk = Some((lot, risk));
+                }
+            }
             Ok(Answer::Saved(sheet, journal)) => self.saved(*sheet, journal),
             Err(error) if done.kind == Kind::Open => self.exit = Some(Err(error)),
             Err(error) if self.ranked.is_none() => self.exit = Some(Err(error)),
@@ -536,6 +653,33 @@ impl App {
         }
     }
 
+    /// Moves an input of the tender.
+    fn move_input(&mut self, how: tender::Move) {
+        match tender::move_input(self, how) {
+            Ok(()) => self.evaluate_draft(),
+            Err(why) => self.message = Some(self.theme.spell(&why).into_owned()),
+        }
+    }
+
+    /// Evaluates the tender that was changed on the screen, if one was.
+    fn evaluate_draft(&mut self) {
+        let number = self.tender.moved();
+        if let (Some(sheet), Some(ranked)) = (self.tender.what_if.sheet(), self.ranked.clone()) {
+            self.ask("Evaluating the tender", Question::WhatIf(ranked, sheet, number));
+        }
+    }
+
+    fn ask_risk(&mut self) {
+        let Some((lot, ranked)) =
+            tender::under_cursor(self).map(|(_, lot, _)| lot.to_owned()).zip(self.ranked.clone())
+        else {
+            return;
+        };
+        let Some(sheet) = tender::shown(self).map(|shown| Arc::clone(&shown.sheet)) else { return };
+        let number = self.tender.moved();
+        self.ask("Drawing the uncertain inputs", Question::Risk(ranked, sheet, lot, number));
+    }
+
     fn nudge(&mut self, steps: i32, large: bool) {
         if self.is_storing() {
             return;
@@ -543,7 +687,7 @@ impl App {
         let Some(ranked) = &self.ranked else { return };
         match self.basis.nudge(&ranked.desk, steps, large) {
             Ok(()) => self.rank_draft(),
-            Err(why) => self.message = Some(why),
+            Err(why) => self.message = Some(self.theme.spell(&why).into_owned()),
         }
     }
 

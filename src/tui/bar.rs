@@ -6,6 +6,7 @@ use ratatui::style::{Color, Style};
 use ratatui::text::Span;
 
 use super::theme::{Part, Theme};
+use crate::engine::economics::running_cost::YearCost;
 
 /// A cost in its parts, in drawing order.
 pub type Parts = [(Part, f64); 4];
@@ -13,6 +14,11 @@ pub type Parts = [(Part, f64); 4];
 /// The parts of a cost.
 pub fn parts(price: f64, iron: f64, copper: f64, other: f64) -> Parts {
     [(Part::Price, price), (Part::Iron, iron), (Part::Copper, copper), (Part::Other, other)]
+}
+
+/// Running cost of the losses of a year.
+pub fn of_year(cost: &YearCost) -> Parts {
+    parts(0.0, cost.no_load, cost.load, cost.auxiliary)
 }
 
 /// The whole of a cost, as it is drawn.
@@ -35,7 +41,7 @@ pub fn round_scale(value: f64) -> f64 {
 
 const EIGHTHS: [char; 8] = ['█', '▏', '▎', '▍', '▌', '▋', '▊', '▉'];
 
-/// The bar in `cells` cells, `scale` filling all of them. Exactly `cells` wide.
+/// The bar in `cells` cells, `scale` filling all of them; a longer one ends in a mark. Exactly `cells` wide.
 pub fn bar(theme: Theme, parts: &Parts, scale: f64, cells: u16) -> Vec<Span<'static>> {
     #[expect(
         clippy::cast_possible_truncation,
@@ -52,10 +58,15 @@ pub fn bar(theme: Theme, parts: &Parts, scale: f64, cells: u16) -> Vec<Span<'sta
         sum += value.max(0.0);
         *end = eighth(sum);
     }
+    let beyond = sum > scale * (1.0 + 1e-9);
     let at = |eighth: usize| ends.iter().position(|end| eighth < *end).map(|n| parts[n].0);
     let fine = theme.coloured() && !theme.caps().ascii;
     let mut spans: Vec<Span<'static>> = Vec::new();
     for cell in 0..usize::from(cells) {
+        if beyond && cell + 1 == usize::from(cells) {
+            spans.push(Span::styled(theme.goes_on().to_string(), theme.heading()));
+            break;
+        }
         let (from, to) = (cell * 8, cell * 8 + 7);
         let (shown, style) = match (at(from), at(to)) {
             (Some(first), last) if fine && last != Some(first) => {
@@ -111,7 +122,7 @@ mod tests {
         assert_eq!(drawn(ascii, &cost, 10), ".....##=+ ");
         assert_eq!(drawn(Caps::default(), &cost, 10), "█████████ ");
         assert_eq!(drawn(Caps::default(), &parts(0.0, 12.5, 0.0, 0.0), 4), "▌   ");
-        assert_eq!(drawn(ascii, &parts(900.0, 0.0, 0.0, 0.0), 3), "...");
+        assert_eq!(drawn(ascii, &parts(900.0, 0.0, 0.0, 0.0), 3), "..>");
         assert_eq!(drawn(ascii, &cost, 0), "");
     }
 

@@ -3,6 +3,8 @@
 pub(super) mod draw;
 mod nudge;
 
+pub(super) use nudge::stepped;
+
 use super::list::List;
 use crate::engine::columns::{Basis, BasisSheet, Value};
 use crate::study::Desk;

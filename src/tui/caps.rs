@@ -2,6 +2,8 @@
 //!
 //! Owns the rules by which the environment decides; reads no environment itself, so that a test can fake one.
 
+use super::clipboard::Clipboard;
+
 /// How many colours may be used.
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
 pub enum Colours {
@@ -45,6 +47,8 @@ pub struct Caps {
     pub ascii: bool,
     /// Chart marks.
     pub marks: Marks,
+    /// How text is handed to the terminal to be copied.
+    pub clipboard: Clipboard,
 }
 
 impl Caps {
@@ -63,7 +67,8 @@ impl Caps {
         let utf8 = locale.to_lowercase().replace('-', "").contains("utf8");
         // The text console of Linux has 512 glyphs, and Braille is not among them.
         let marks = if term == "linux" { Marks::Dot } else { Marks::Braille };
-        Self { colours, ascii: ascii || !utf8 || term == "dumb", marks }
+        let clipboard = Clipboard::of(&term, set("TMUX").is_some());
+        Self { colours, ascii: ascii || !utf8 || term == "dumb", marks, clipboard }
     }
 }
 
@@ -83,7 +88,7 @@ mod tests {
         let utf8 = ("LANG", "de_DE.UTF-8");
         let xterm = ("TERM", "xterm-256color");
         let plain = caps(&[utf8, xterm], ColourWish::Auto, false);
-        assert_eq!(plain, Caps { colours: Colours::Many, ascii: false, marks: Marks::Braille });
+        assert_eq!(plain, Caps { colours: Colours::Many, ..Caps::default() });
         let no_color = |value| [utf8, xterm, ("NO_COLOR", value)];
         assert_eq!(caps(&no_color("1"), ColourWish::Auto, false).colours, Colours::None);
         assert_eq!(caps(&no_color(""), ColourWish::Auto, false).colours, Colours::Many);

@@ -1,4 +1,4 @@
-//! A line chart over years with its minimum marked and a line to compare with.
+//! A line chart over years with the best marked and a line to compare with.
 
 use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
@@ -26,21 +26,28 @@ fn round_step(value: f64) -> f64 {
     steps.into_iter().find(|step| *step >= value).unwrap_or(value)
 }
 
-/// Draws points over years, the least of them marked. The reference is drawn where it does not crush the line.
+fn best_words(best: Option<(i64, f64)>, mark: &str) -> String {
+    best.map_or("best never: keep".to_owned(), |(year, value)| {
+        format!("{mark}best in {year}: {}", text::number(value, 0))
+    })
+}
+
+/// Draws points over years, the best of them marked. The reference is drawn where it does not crush the line.
 #[expect(clippy::cast_precision_loss, reason = "calendar years")]
 pub(super) fn draw(
     theme: Theme,
     points: &[(i64, f64)],
+    best: Option<(i64, f64)>,
     reference: &Reference,
     area: Rect,
     buffer: &mut Buffer,
 ) {
     let (Some(first), Some(last)) = (points.first(), points.last()) else { return };
-    let Some(least) = points.iter().min_by(|a, b| a.1.total_cmp(&b.1)) else { return };
+    let least = points.iter().map(|p| p.1).fold(f64::INFINITY, f64::min);
     let most = points.iter().map(|p| p.1).fold(f64::NEG_INFINITY, f64::max);
-    let spread = (most - least.1).max(1e-9 * most.abs()).max(1e-9);
-    let near = reference.value < most + 2.0 * spread && reference.value > least.1 - 2.0 * spread;
-    let (mut low, mut high) = (least.1, most);
+    let spread = (most - least).max(1e-9 * most.abs()).max(1e-9);
+    let near = reference.value < most + 2.0 * spread && reference.value > least - 2.0 * spread;
+    let (mut low, mut high) = (least, most);
     if near {
         (low, high) = (low.min(reference.value), high.max(reference.value));
     }
@@ -53,7 +60,7 @@ pub(super) fn draw(
     let labels = [low, high].map(|y| text::width(&text::number(y, 0)));
     let margin = u16::try_from(labels[0].max(labels[1]) + 2).unwrap_or(u16::MAX);
     if area.height < 4 || area.width < margin + 12 {
-        let line = format!(" least in {}: {}", least.0, text::number(least.1, 0));
+        let line = best_words(best, " ");
         put(buffer, area, 0, &line, theme.plain());
         return;
     }
@@ -122,18 +129,18 @@ pub(super) fn draw(
             }
         })
         .render(plot, buffer);
-    let column = {
-        let (dots, share) = (if dots == 4 { 2 } else { 1 }, (least.0 as f64 - x0) / (x1 - x0));
+    if let Some((year, value)) = best {
+        let (dots, share) = (if dots == 4 { 2 } else { 1 }, (year as f64 - x0) / (x1 - x0));
         #[expect(
             clippy::cast_possible_truncation,
             clippy::cast_sign_loss,
             reason = "inside the plot"
         )]
         let dot = (share * f64::from(plot.width * dots - 1)).round().max(0.0) as u16;
-        (dot / dots).min(plot.width - 1)
-    };
-    let at = Rect { x: plot.x + column, width: 1, ..plot };
-    put_over(buffer, at, row(least.1), "◆", theme.heading());
+        let column = (dot / dots).min(plot.width - 1);
+        let at = Rect { x: plot.x + column, width: 1, ..plot };
+        put_over(buffer, at, row(value), "◆", theme.heading());
+    }
     let word = if near {
         let above = row(reference.value);
         let word = format!(" {} {} ", reference.word, text::number(reference.value, 0));
@@ -166,11 +173,11 @@ pub(super) fn draw(
     let ends = format!("{}", last.0);
     let end = Rect { x: plot.right().saturating_sub(4), width: plot.width.min(4), ..area };
     put(buffer, end, plot.height + 1, &ends, theme.muted());
-    let least = format!("◆ least in {}: {}   {word}", least.0, text::number(least.1, 0));
-    let least = least.trim_end().to_owned();
-    let wide = u16::try_from(text::width(&least)).unwrap_or(0);
+    let said = format!("{}   {word}", best_words(best, "◆ "));
+    let said = said.trim_end().to_owned();
+    let wide = u16::try_from(text::width(&said)).unwrap_or(0);
     if plot.width >= wide + 10 {
         let at = Rect { x: plot.x + (plot.width - wide) / 2, width: wide, ..area };
-        put_line(buffer, at, plot.height + 1, &Line::styled(least, theme.heading()));
+        put_line(buffer, at, plot.height + 1, &Line::styled(said, theme.heading()));
     }
 }

@@ -10,7 +10,7 @@ use super::bar::{self, Parts};
 use super::frame::{put, put_line, select};
 use super::text;
 use super::theme::Part;
-use super::unit::{LEGEND, choices, scale};
+use super::unit::{LEGEND, choices, not_yet_words, scale};
 use super::words::currency_in;
 use super::work::Ranked;
 use crate::engine::decision::LeftOut;
@@ -100,7 +100,7 @@ fn cell(row: &RankRow, key: &str) -> String {
 
 fn year_cost(ranked: &Ranked, i: usize) -> Option<Parts> {
     let row = losses::of_unit(&ranked.desk, &ranked.ranking.context, i).ok()?;
-    Some(bar::parts(0.0, row.cost.no_load, row.cost.load, row.cost.auxiliary))
+    Some(bar::of_year(&row.cost))
 }
 
 /// Draws the screen.
@@ -146,12 +146,9 @@ fn ranking(app: &App, ranked: &Ranked, area: Rect, buffer: &mut Buffer) {
     let unit = |figure: &Figure| currency_in(figure.unit, &currency);
     let widths: Vec<usize> = figures
         .iter()
-        .enumerate()
-        .map(|(n, (column, figure))| {
-            let content = cells.iter().map(|row| text::width(&row[n])).max().unwrap_or(0);
-            // Headings of narrow columns do not widen them beyond what is needed to read them.
+        .map(|(column, figure)| {
             let heading = text::width(figure.heading).max(text::width(&unit(figure)));
-            content.min(column.most).max(heading)
+            ranked.extent.width(column.key).min(column.most).max(heading)
         })
         .collect();
     // Columns give way, the least important first, until the bar fits. What the list is ordered by stays.
@@ -177,9 +174,7 @@ fn ranking(app: &App, ranked: &Ranked, area: Rect, buffer: &mut Buffer) {
         kept.retain(|n| *n != least);
     }
     let cells_of_bar = room.saturating_sub(used(&kept)).min(BAR.1);
-    let scale = bar::round_scale(
-        rows.iter().filter_map(|r| r.1).map(|c| bar::whole(&c)).fold(0.0, f64::max),
-    );
+    let scale = app.view.scale;
 
     let join = |texts: &mut dyn Iterator<Item = (usize, String)>| {
         texts.fold("  ".to_owned(), |mut line, (n, shown)| {
@@ -299,7 +294,13 @@ fn detail(app: &App, ranked: &Ranked, i: usize, cells: usize) -> Vec<Line<'stati
         let scale = scale(&choices);
         for choice in choices {
             let said = format!("{} {}", text::left(&choice.word, 13), text::cut(&choice.offer, 14));
-            let pv = choice.pv.map_or("none open".to_owned(), |pv| text::number(pv, 0));
+            let Some(pv) = choice.pv else {
+                let said = format!("{}: {}", choice.word, not_yet_words(known.not_yet.as_ref()));
+                lines.extend(text::wrap(&said, cells).into_iter().take(2).map(Line::raw));
+                lines.resize(lines.len() | 1, Line::default());
+                continue;
+            };
+            let pv = text::number(pv, 0);
             let room = cells.saturating_sub(text::width(&said) + 1);
             lines.push(Line::raw(format!("{said} {}", text::right(&pv, room))));
             let wide = u16::try_from(cells).unwrap_or(u16::MAX);

@@ -8,10 +8,10 @@ use ratatui::style::{Modifier, Style};
 use ratatui::text::{Line, Span};
 use ratatui::widgets::{Clear, Widget as _};
 
-use super::action::{self, ActionDef, Screen};
+use super::action::{self, Action, ActionDef, Place, Screen};
 use super::app::App;
 use super::theme;
-use super::{basis, fleet, help, journal, tender, text, unit};
+use super::{basis, fleet, help, journal, tender, text, unit, working};
 
 /// The smallest terminal in which the screens are drawn.
 pub(super) const LEAST: Size = Size { width: 60, height: 16 };
@@ -52,9 +52,12 @@ pub(super) fn list_height(app: &App) -> usize {
     if app.help.is_some() {
         return usize::from(body.height);
     }
+    if app.working.is_some() {
+        return usize::from(body.height.saturating_sub(working::HEADER));
+    }
     usize::from(match app.screen {
         Screen::Fleet => fleet::rows(app, body),
-        Screen::Unit => unit::draw::areas(body).facts.height,
+        Screen::Unit => unit::draw::areas(body, app.unit.table).facts.height,
         Screen::Basis => basis::draw::areas(body).list.height.saturating_sub(1),
         Screen::Tender => tender::draw::rows(app, body),
         Screen::Journal => body.height.saturating_sub(journal::AROUND),
@@ -110,7 +113,7 @@ impl App {
         let mut cursor = None;
         if area.width < LEAST.width || area.height < LEAST.height {
             let (w, h) = (LEAST.width, LEAST.height);
-            let notice = format!("{}x{}: needs {w}x{h}; q quits", area.width, area.height);
+            let notice = format!("q quits; needs {w}x{h}, not {}x{}", area.width, area.height);
             put(buffer, area, 0, &notice, self.theme.plain());
         } else {
             let parts = areas(area);
@@ -119,6 +122,8 @@ impl App {
                 help::draw(self, parts.body, buffer);
             } else if self.ranked.is_none() {
                 self.first_frame(parts.body, buffer);
+            } else if let Some(panel) = &self.working {
+                working::draw(self, panel, parts.body, buffer);
             } else {
                 match self.screen {
                     Screen::Fleet => fleet::draw(self, parts.body, buffer),
@@ -199,10 +204,12 @@ impl App {
         } else if self.ranked.is_some() {
             let (left, right) = match self.screen {
                 _ if self.help.is_some() => (Line::default(), vec![self.more()]),
+                _ if self.working.is_some() => (self.caution(), vec![self.more()]),
                 Screen::Fleet => fleet::status(self),
                 Screen::Basis => (basis::draw::status(self), Vec::new()),
-                Screen::Unit => (Line::default(), vec![self.more()]),
-                Screen::Tender | Screen::Journal => Default::default(),
+                Screen::Unit => (self.caution(), vec![self.more()]),
+                Screen::Tender => (self.caution(), Vec::new()),
+                Screen::Journal => Default::default(),
             };
             put_line(buffer, area, 0, &left);
             let room = usize::from(area.width).saturating_sub(left.width());
@@ -213,13 +220,40 @@ impl App {
         None
     }
 
+    /// What the figures are not; the help says it in full.
+    fn caution(&self) -> Line<'static> {
+        let said = if self.size.width < 80 {
+            " screening economics, not switching instructions"
+        } else {
+            " screening economics; local codes and licensed practice decide"
+        };
+        Line::styled(said, self.theme.muted())
+    }
+
     /// Says that a text goes on below what is seen of it.
     fn more(&self) -> Line<'static> {
         let (from, lines) = match self.help {
             Some(help) => (help.cursor, help::lines(self, usize::from(self.size.width)).len()),
-            None => (self.unit.facts.cursor, unit::facts_len(self)),
+            None if self.working.is_some() => {
+                let panel = self.working.as_ref();
+                let cells = usize::from(self.size.width);
+                let lines = panel.map_or(0, |p| working::lines(self, p, cells).len());
+                (panel.map_or(0, |p| p.list.cursor), lines)
+            }
+            None => match unit::table_len(self) {
+                Some((lines, seen)) => {
+                    return self.lines_below(lines - seen - self.unit.years.cursor);
+                }
+                None => (self.unit.facts.cursor, unit::facts_len(self)),
+            },
         };
-        let below = lines.saturating_sub(from + list_height(self));
+        if list_height(self) == 0 {
+            return Line::default();
+        }
+        self.lines_below(lines.saturating_sub(from + list_height(self)))
+    }
+
+    fn lines_below(&self, below: usize) -> Line<'static> {
         if below == 0 {
             return Line::default();
         }
@@ -232,7 +266,11 @@ impl App {
         let mut spans = vec![Span::raw(" ")];
         let mut room = usize::from(area.width).saturating_sub(1);
         let reachable = action::reachable(&self.places());
-        let useful = |def: &ActionDef| def.id != "back" || self.can_go_back();
+        let useful = |def: &ActionDef| match def.action {
+            Action::Back => def.place != Place::Everywhere || self.can_go_back(),
+            Action::TenderView => !tender::shows_all(self),
+            _ => true,
+        };
         let shown: Vec<_> = reachable.iter().filter(|(def, _)| def.shown && useful(def)).collect();
         // The last ones (help, quit) always find room.
         let wide =

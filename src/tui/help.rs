@@ -14,12 +14,19 @@ use super::theme::Part;
 pub(super) fn lines(app: &App, cells: usize) -> Vec<Line<'static>> {
     let theme = app.theme;
     let ascii = theme.caps().ascii;
-    let places = [Place::On(app.screen), Place::Filter, Place::List, Place::Everywhere];
-    let reachable = action::reachable(&[Place::On(app.screen), Place::List, Place::Everywhere]);
+    let here = if app.working.is_some() {
+        Place::Working
+    } else if app.moves_inputs() {
+        Place::WhatIf
+    } else {
+        Place::On(app.screen)
+    };
+    let places = [here, Place::Filter, Place::List, Place::Everywhere];
+    let reachable = action::reachable(&[here, Place::List, Place::Everywhere]);
     let mut lines = Vec::new();
     for place in places {
         let here: Vec<_> = if place == Place::Filter {
-            if app.screen != action::Screen::Fleet {
+            if here != Place::On(action::Screen::Fleet) {
                 continue;
             }
             action::reachable(&[Place::Filter])
@@ -68,8 +75,15 @@ pub(super) fn lines(app: &App, cells: usize) -> Vec<Line<'static>> {
             lines.push(Line::from(vec![Span::raw("  "), fill, Span::raw(format!("  {said}"))]));
         }
     }
-    let said = "All bars of a list are drawn to one scale, which stands above them. These are screening economics, \
-                not switching or loading instructions: work on energised or oil-filled plant, PCB handling, loading \
+    let mark = theme.goes_on();
+    let said = format!(
+        "All bars of a list are drawn to one scale, which stands above them; a longer one ends in {mark}."
+    );
+    lines.extend(
+        text::wrap(&said, cells.saturating_sub(3)).into_iter().map(|l| Line::raw(format!("  {l}"))),
+    );
+    let said = "Screening economics, not switching or loading instructions. A verdict on a law is a screening aid: \
+                local law and licensed practice decide. Work on energised or oil-filled plant, PCB handling, loading \
                 beyond nameplate and protection settings follow local codes, manufacturer instructions and \
                 licensed engineers.";
     lines.push(Line::default());

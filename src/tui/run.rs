@@ -1,7 +1,7 @@
 //! The loop: keys, signals and answers come in on one channel, the state changes, the changed screen is drawn.
 //! Draws on change only, and at most thirty times a second.
 
-use std::io;
+use std::io::{self, Write as _};
 use std::sync::Arc;
 use std::sync::atomic::{AtomicBool, Ordering};
 use std::sync::mpsc::{self, Receiver, RecvTimeoutError, Sender};
@@ -196,6 +196,11 @@ fn event_loop(
                     .map_err(io::Error::from)?;
             }
             Some(Wish::Redraw) => held.terminal.clear()?,
+            Some(Wish::Write(sequence)) => {
+                let mut out = io::stdout();
+                out.write_all(sequence.as_bytes())?;
+                out.flush()?;
+            }
             None => {}
         }
         if let Some(exit) = app.take_exit() {

@@ -6,6 +6,8 @@ use std::borrow::Cow;
 use unicode_segmentation::UnicodeSegmentation as _;
 use unicode_width::UnicodeWidthStr as _;
 
+use crate::study::figures::group;
+
 /// Whether a character changes how what follows is shown instead of showing itself.
 fn garbles(c: char) -> bool {
     c.is_control()
@@ -101,27 +103,11 @@ pub fn wrap(text: &str, cells: usize) -> Vec<String> {
 }
 
 /// Stands between groups of digits: a space at which no line is broken.
-const GROUP: char = '\u{a0}';
+const GROUP: &str = "\u{a0}";
 
-/// A number with `places` decimals, its whole part in groups of three: `1 234 567.8`.
+/// A number as [`group`] writes it, on one line: `1 234 567.8`.
 pub fn number(value: f64, places: usize) -> String {
-    let plain = format!("{value:.places$}");
-    let (sign, digits) = match plain.strip_prefix('-') {
-        Some(digits) => ("-", digits),
-        None => ("", plain.as_str()),
-    };
-    // A rounded negative zero is zero.
-    let sign = if digits.bytes().all(|b| matches!(b, b'0' | b'.')) { "" } else { sign };
-    let (whole, rest) = digits.split_at(digits.find('.').unwrap_or(digits.len()));
-    let mut out = String::from(sign);
-    for (at, digit) in whole.chars().enumerate() {
-        if at > 0 && (whole.len() - at).is_multiple_of(3) {
-            out.push(GROUP);
-        }
-        out.push(digit);
-    }
-    out.push_str(rest);
-    out
+    group(value, places).replace(' ', GROUP)
 }
 
 /// A number with as many decimals as it needs, at most `places`.
@@ -151,7 +137,7 @@ mod tests {
         assert_eq!(spaced(number(1234.0, 0)), "1 234");
         assert_eq!(number(999.4, 0), "999");
         assert_eq!(number(-0.2, 0), "0");
-        assert_eq!(spaced(number(-123456.0, 0)), "-123 456");
+        assert_eq!(spaced(number(-123456.0, 0)), "−123 456");
         assert_eq!(plain(1.50, 3), "1.5");
         assert_eq!(plain(100.0, 2), "100");
         assert_eq!(wrap(&format!("a {}", number(1234.0, 0)), 5), ["a", "1\u{a0}234"]);

@@ -3,6 +3,8 @@
 //! The terminal's own foreground and background are never painted over; colours are accents, and each stands
 //! beside a word, a mark or a pattern that says the same.
 
+use std::borrow::Cow;
+
 use ratatui::buffer::Buffer;
 use ratatui::style::{Color, Modifier, Style};
 
@@ -103,6 +105,28 @@ impl Theme {
         }
     }
 
+    /// Text in words of ASCII where only that can be shown: what one character cannot stand for.
+    pub fn spell(self, text: &str) -> Cow<'_, str> {
+        if !self.caps.ascii || text.is_ascii() {
+            return Cow::Borrowed(text);
+        }
+        let mut out = text.replace(" … ", " to ");
+        for (from, to) in SPELT {
+            out = out.replace(from, to);
+        }
+        Cow::Owned(out)
+    }
+
+    /// The mark at the end of a bar that is longer than its place.
+    pub fn goes_on(self) -> char {
+        if self.caps.ascii { '>' } else { '»' }
+    }
+
+    /// The mark of a point that was drawn.
+    pub fn cloud(self) -> char {
+        if self.caps.ascii { 'o' } else { '•' }
+    }
+
     /// The mark before the selected line.
     pub fn mark(self) -> char {
         if self.caps.ascii { '>' } else { '▶' }
@@ -133,6 +157,33 @@ impl Theme {
         self.fg(SIXTEEN[n % SIXTEEN.len()], MANY[n % MANY.len()])
     }
 }
+
+/// Characters of units and formulas in words.
+const SPELT: [(&str, &str); 23] = [
+    ("°", "deg"),
+    ("α", "alpha"),
+    ("β", "beta"),
+    ("γ", "gamma"),
+    ("η", "eta"),
+    ("θ", "theta"),
+    ("κ", "kappa"),
+    ("λ", "lambda"),
+    ("Σ", "sum "),
+    ("Π", "product "),
+    ("φ", "phi"),
+    ("√", "sqrt"),
+    ("²", "^2"),
+    ("³", "^3"),
+    ("·", "*"),
+    ("Δ", "delta "),
+    ("Ω", "ohm"),
+    ("′", "'"),
+    ("≤", "<="),
+    ("≥", ">="),
+    ("₀", "0"),
+    ("₁", "1"),
+    ("₂", "2"),
+];
 
 /// What stands for a character where only ASCII can be shown.
 fn ascii(c: char) -> char {

@@ -2,6 +2,7 @@
 
 pub(super) mod draw;
 mod facts;
+mod table;
 
 use std::sync::Arc;
 
@@ -15,6 +16,7 @@ use crate::engine::decision::Place;
 use crate::engine::decision::keep_or_replace::{Decision, YearChoice};
 use crate::engine::decision::parts::PolicyCost;
 use crate::study::Desk;
+use crate::study::offers_open::{NotYet, not_yet};
 use crate::study::unit::{ChoiceCosts, choice_costs, decision};
 
 /// State of the screen.
@@ -30,6 +32,8 @@ pub(super) struct State {
     pub(super) table: bool,
     /// First line of the facts that is shown.
     pub(super) facts: List,
+    /// First line of the table of years that is shown.
+    pub(super) years: List,
 }
 
 /// What is known of a unit under a basis.
@@ -48,6 +52,8 @@ pub(super) struct Known {
     pub(super) place: Place,
     pub(super) decision: Decision,
     pub(super) costs: ChoiceCosts,
+    /// Why there is no choice in the first year, where there is none.
+    pub(super) not_yet: Option<NotYet>,
 }
 
 impl State {
@@ -55,9 +61,12 @@ impl State {
     pub(super) fn open(&mut self, ranked: &Arc<Ranked>, i: usize) {
         let (desk, context) = (&ranked.desk, &ranked.ranking.context);
         let known = match decision(desk, context, i) {
-            Ok(Ok((place, decision))) => choice_costs(context, &place, &decision)
-                .map(|costs| Box::new(Known { place, decision, costs }))
-                .map_err(|error| error.to_string()),
+            Ok(Ok((place, decision))) => {
+                let not_yet = not_yet(desk, context, i, &place, &decision);
+                choice_costs(context, &place, &decision)
+                    .map(|costs| Box::new(Known { place, decision, costs, not_yet }))
+                    .map_err(|error| error.to_string())
+            }
             Ok(Err(why)) => Err(why.why().to_owned()),
             Err(error) => Err(error.to_string()),
         };
@@ -134,6 +143,21 @@ pub(super) fn choices(desk: &Desk, known: &Known, first_year: i64) -> [Choice; 3
     ]
 }
 
+/// Why nothing can be bought in the first year, in words.
+pub(super) fn not_yet_words(not_yet: Option<&NotYet>) -> String {
+    not_yet.map_or("none open".to_owned(), |not_yet| {
+        format!("none open before {}: {}", not_yet.open_in, not_yet.because.join(", "))
+    })
+}
+
+/// Lines of the years as a table, where it is taller than its place.
+pub(super) fn table_len(app: &App) -> Option<(usize, usize)> {
+    let known = app.unit.dossier.as_ref().filter(|_| app.unit.table)?.known.as_ref().ok()?;
+    let area = draw::areas(super::frame::body(app), true).years;
+    let (lines, seen) = table::lines(app, known, area);
+    (lines > seen).then_some((lines, seen))
+}
+
 /// The scale that choices share.
 pub(super) fn scale(choices: &[Choice]) -> f64 {
     choices.iter().filter_map(|c| c.cost).map(|cost| bar::whole(&cost)).fold(0.0, f64::max)
@@ -144,8 +168,14 @@ fn year(first_year: i64, choice: &YearChoice) -> i64 {
     first_year + i64::try_from(choice.offset).unwrap_or(0)
 }
 
+/// The record of a unit: as it was read, else what the columns of the fleet hold of it.
+pub(super) fn record(app: &App, desk: &Desk, i: usize) -> Unit {
+    let read = app.unit.record.as_deref().filter(|_| app.unit.index == Some(i));
+    read.cloned().unwrap_or_else(|| facts::of_columns(desk, i))
+}
+
 /// Lines of the facts.
 pub(super) fn facts_len(app: &App) -> usize {
-    let size = draw::areas(super::frame::body(app)).facts;
+    let size = draw::areas(super::frame::body(app), app.unit.table).facts;
     facts::lines(app, usize::from(size.width)).len()
 }

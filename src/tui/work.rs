@@ -7,10 +7,15 @@ use std::sync::mpsc::{Receiver, TryRecvError};
 
 use rayon::prelude::*;
 
+use super::bar;
+use super::extent::Extent;
 use super::session::{BasisWriter, JournalLine, RecordReader, Session};
 use crate::engine::columns::{BasisSheet, TenderSheet, Unit};
 use crate::engine::decision::Context;
+use crate::engine::loading::PriceSeries;
+use crate::study::losses;
 use crate::study::rank::{self, By, Ranking};
+use crate::study::tender::risk::{self, RiskResult};
 use crate::study::tender::{self, BasisForFactors, TenderResult};
 use crate::study::{Desk, StudyError, Watch};
 
@@ -23,6 +28,10 @@ pub struct Ranked {
     pub ranking: Ranking,
     /// Place of each unit in it; `u32::MAX` where it is left out.
     pub place: Vec<u32>,
+    /// How wide its columns are.
+    pub extent: Extent,
+    /// Cost of the losses of year 1 of each unit; 0 where it is left out.
+    pub year_costs: Vec<f32>,
     /// The tenders under the same basis.
     pub tenders: Vec<Evaluated>,
 }
@@ -36,23 +45,36 @@ pub struct Evaluated {
     pub result: Result<TenderResult, String>,
 }
 
+impl Evaluated {
+    fn new(context: &Context, sheet: &Arc<TenderSheet>) -> Self {
+        let result = tender::evaluate(sheet, Some(&factors(context)), None);
+        Self { sheet: Arc::clone(sheet), result: result.map_err(|error| error.to_string()) }
+    }
+}
+
+fn factors(context: &Context) -> BasisForFactors<'_> {
+    BasisForFactors { assumptions: &context.assumptions, market: &context.market }
+}
+
+/// Draws of a simulation, and their seed: the same as those of the command.
+pub const DRAWS: (usize, u64) = (10_000, 1);
+
 impl Ranked {
     fn new(desk: Desk, tenders: &[Arc<TenderSheet>], watch: &Watch) -> Result<Self, StudyError> {
         let ranking = rank::rank(&desk, By::Saving, None, watch)?;
-        let Context { assumptions, market, .. } = &ranking.context;
-        let basis = BasisForFactors { assumptions, market };
-        let tenders = tenders
-            .iter()
-            .map(|sheet| Evaluated {
-                sheet: Arc::clone(sheet),
-                result: tender::evaluate(sheet, Some(&basis), None).map_err(|e| e.to_string()),
-            })
-            .collect();
+        let tenders = tenders.iter().map(|sheet| Evaluated::new(&ranking.context, sheet)).collect();
         let mut place = vec![u32::MAX; desk.fleet.len()];
         for (at, i) in (0u32..).zip(&ranking.order) {
             place[*i as usize] = at;
         }
-        Ok(Self { desk, ranking, place, tenders })
+        let extent = Extent::of(&desk, &ranking);
+        let cost = |i: usize| losses::of_unit(&desk, &ranking.context, i).map(|row| row.cost);
+        #[expect(clippy::cast_possible_truncation, reason = "for the scale of bars")]
+        let year_costs = (0..desk.fleet.len())
+            .into_par_iter()
+            .map(|i| cost(i).map_or(0.0, |cost| bar::whole(&bar::of_year(&cost)) as f32))
+            .collect();
+        Ok(Self { desk, ranking, place, extent, year_costs, tenders })
     }
 }
 
@@ -74,6 +96,8 @@ pub struct View {
     pub places: Vec<u32>,
     /// Which of those left out, as numbers in [`Ranking::left_out`].
     pub left_out: Vec<u32>,
+    /// What a full bar of the list stands for.
+    pub scale: f64,
 }
 
 /// A question to the worker.
@@ -89,6 +113,10 @@ pub enum Question {
     Record(String),
     /// Store a basis.
     Save(Box<BasisSheet>),
+    /// Evaluate a tender that was changed on the screen.
+    WhatIf(Arc<Ranked>, Arc<TenderSheet>, u64),
+    /// How sure the winner of a lot is.
+    Risk(Arc<Ranked>, Arc<TenderSheet>, String, u64),
 }
 
 /// The kinds of questions; a newer one of a kind replaces an older.
@@ -100,11 +128,13 @@ pub enum Kind {
     View,
     Record,
     Save,
+    WhatIf,
+    Risk,
 }
 
 impl Kind {
     /// Number of kinds.
-    pub const COUNT: usize = 5;
+    pub const COUNT: usize = 7;
 }
 
 impl Question {
@@ -116,6 +146,8 @@ impl Question {
             Self::View(..) => Kind::View,
             Self::Record(_) => Kind::Record,
             Self::Save(_) => Kind::Save,
+            Self::WhatIf(..) => Kind::WhatIf,
+            Self::Risk(..) => Kind::Risk,
         }
     }
 }
@@ -144,6 +176,10 @@ pub enum Answer {
     Record(String, Option<Box<Unit>>),
     /// The basis is stored; the journal as it stands now.
     Saved(Box<BasisSheet>, Vec<JournalLine>),
+    /// What a changed tender comes to; the number is that of the question.
+    WhatIf(Evaluated, u64),
+    /// How sure the winner of a lot is; the number is that of the question.
+    Risk(Box<RiskResult>, String, u64),
 }
 
 /// An answer with its question's number.
@@ -200,6 +236,21 @@ impl<L: FnOnce(&Watch) -> Result<Session, StudyError>> Worker<L> {
                 let record = self.record.as_mut().and_then(|read| read(&unit)).map(Box::new);
                 Ok(Answer::Record(unit, record))
             }
+            Question::WhatIf(ranked, sheet, number) => {
+                Ok(Answer::WhatIf(Evaluated::new(&ranked.ranking.context, &sheet), number))
+            }
+            Question::Risk(ranked, sheet, lot, number) => {
+                let question = risk::Question {
+                    basis: &ranked.desk.sheet,
+                    series: named_series(&ranked.desk),
+                    correlations: &[],
+                    seed: DRAWS.1,
+                    draws: DRAWS.0,
+                };
+                let today = factors(&ranked.ranking.context);
+                let result = risk::risk(&sheet, &today, &lot, &question)?;
+                Ok(Answer::Risk(Box::new(result), lot, number))
+            }
             Question::Save(sheet) => {
                 let save = self.save.as_mut().ok_or(StudyError::Stopped)?;
                 let journal = save(&sheet)?;
@@ -232,6 +283,12 @@ impl<L: FnOnce(&Watch) -> Result<Session, StudyError>> Worker<L> {
             reply(self.answer(job));
         }
     }
+}
+
+/// The price series that the basis names.
+fn named_series(desk: &Desk) -> Option<&PriceSeries> {
+    let name = desk.sheet.basis.price_series.as_ref()?;
+    desk.series.iter().find(|series| series.name == *name)
 }
 
 /// Units whose identifier or site holds every word of the filter (whatever the case), in the order asked for.
@@ -268,5 +325,14 @@ fn view(ranked: &Ranked, spec: ViewSpec, watch: &Watch) -> Result<View, StudyErr
             .collect();
         left_out.retain(|n| shown(ranking.left_out[*n as usize] as usize));
     }
-    Ok(View { spec, places, left_out })
+    let cost = |place: &u32| f64::from(ranked.year_costs[ranking.order[*place as usize] as usize]);
+    let mut costs: Vec<f64> = places.par_iter().map(cost).collect();
+    // Nearly all bars are seen whole: a few large units do not make all others too short to read.
+    let nearly_all = (costs.len() * 19 / 20).min(costs.len().saturating_sub(1));
+    let scale = if costs.is_empty() {
+        1.0
+    } else {
+        bar::round_scale(*costs.select_nth_unstable_by(nearly_all, f64::total_cmp).1)
+    };
+    Ok(View { spec, places, left_out, scale })
 }

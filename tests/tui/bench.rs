@@ -1,6 +1,7 @@
 //! A dashboard without a terminal: keys in, answers given on the spot, the drawn screen out.
 
 use ironhum::study::{StudyError, Watch};
+use ironhum::tui::clipboard::Clipboard;
 use ironhum::tui::work::{Job, Worker};
 use ironhum::tui::{App, Caps, Colours, Marks, Session};
 use ratatui::Terminal;
@@ -11,8 +12,12 @@ use ratatui::style::{Color, Modifier};
 
 type Loader = Box<dyn FnOnce(&Watch) -> Result<Session, StudyError>>;
 
-pub(crate) const COLOUR: Caps =
-    Caps { colours: Colours::Many, ascii: false, marks: Marks::Braille };
+pub(crate) const COLOUR: Caps = Caps {
+    colours: Colours::Many,
+    ascii: false,
+    marks: Marks::Braille,
+    clipboard: Clipboard::Direct,
+};
 pub(crate) const SIXTEEN: Caps = Caps { colours: Colours::Sixteen, ..COLOUR };
 pub(crate) const PLAIN: Caps = Caps { colours: Colours::None, ..COLOUR };
 pub(crate) const ASCII: Caps = Caps { ascii: true, ..PLAIN };
@@ -177,6 +182,9 @@ fn named(name: &str) -> KeyEvent {
         "Home" => KeyCode::Home,
         "End" => KeyCode::End,
         "Delete" => KeyCode::Delete,
+        name if name.starts_with('F') && name.len() > 1 => {
+            KeyCode::F(name[1..].parse().unwrap_or_else(|_| panic!("no key is named {name}")))
+        }
         name if name.len() == 1 => KeyCode::Char(name.chars().next().unwrap()),
         _ => panic!("no key is named {name}"),
     };

@@ -62,8 +62,11 @@ fn order_goes_round() {
     let mut bench = bench();
     let first = bench.cursor();
     for by in ["waiting", "keep", "rating", "made", "unit"] {
-        bench.keys("s");
+        // What it is ordered by is a column, and the cursor stands on its top.
+        bench.keys("<End>s");
         assert!(bench.screen().contains(&format!(", by {by}")), "{}", bench.screen());
+        assert!(bench.lines()[1].split_whitespace().any(|word| word == by), "{}", bench.screen());
+        assert!(bench.lines()[3].starts_with('▶'), "{}", bench.screen());
     }
     // Another order starts at its top.
     assert!(bench.cursor().contains(" 007 "), "{}", bench.cursor());
@@ -89,7 +92,7 @@ fn a_unit_opens_and_its_neighbours_follow() {
     assert!(bench.lines()[1].contains("OD-T1"));
     assert!(bench.keys("<Right>").lines()[1].contains("FE-T1"));
     assert!(bench.keys("p<Left>").lines()[1].contains("ZW-T1"));
-    assert!(bench.keys("t").screen().contains("least"));
+    assert!(bench.keys("t").screen().contains("◆ best"));
     bench.keys("<Esc>");
     assert_eq!(bench.app.screen(), Screen::Fleet);
 }
@@ -139,6 +142,199 @@ fn tender_shows_lots_map_and_moves() {
     assert!(bench.keys("m").screen().contains("◆ today"));
     assert!(bench.keys("m").screen().contains("discount_rate_pct"));
     assert!(bench.keys("m").screen().contains("owning cost"));
+    // Back leads to the bids first.
+    assert!(bench.keys("mm<Esc>").screen().contains("owning cost"));
+    bench.keys("<Esc>");
+    assert_eq!(bench.app.screen(), Screen::Fleet);
+    // Where all is seen nothing turns, and no key for it is named.
+    bench.resize(160, 50);
+    assert!(!bench.keys("3").screen().contains("map/changes"));
+    bench.keys("m<Esc>");
+    assert_eq!(bench.app.screen(), Screen::Fleet);
+}
+
+/// Columns, their places and the scale of the bars do not move while the list is scrolled.
+#[test]
+fn the_fleet_stands_still_while_it_is_scrolled() {
+    for width in [80, 160] {
+        let mut bench = Bench::demo(PLAIN, width, 24);
+        let list = |line: &str| line.split('│').next().map(str::to_owned);
+        let head = |bench: &Bench| [1, 2].map(|y| list(&bench.lines()[y]));
+        let before = head(&bench);
+        for key in ["<PageDown>", "<PageDown>", "<End>"] {
+            bench.keys(key);
+            assert_eq!(head(&bench), before);
+        }
+    }
+}
+
+/// Every year of a long horizon with its whole amount, on the smallest screens.
+#[test]
+fn the_money_of_the_years_is_never_cut() {
+    for (width, height) in [(60, 16), (80, 24), (109, 30), (110, 24), (160, 50)] {
+        let mut session = crate::demo::session();
+        session.desk.sheet.basis.latest_replacement_years = Some(29);
+        let mut bench = Bench::on(PLAIN, width, height, session);
+        bench.keys("<Enter>t");
+        let mut seen = std::collections::BTreeSet::new();
+        for _ in 0..40 {
+            let years = bench.lines();
+            let years = years.iter().skip_while(|l| !l.contains("Replacing in each year")).skip(1);
+            for line in years.filter(|line| !line.contains("quit")) {
+                for at in 2027..2057 {
+                    let Some((_, rest)) = line.split_once(&format!(" {at}  ")) else { continue };
+                    let money: String =
+                        rest.trim_start().chars().take_while(|c| *c != '…').take(7).collect();
+                    assert!(money.replace(' ', "").len() >= 5, "{width}x{height}: {line}");
+                    seen.insert(at);
+                }
+            }
+            bench.keys("<Down>");
+        }
+        // The first two years are shorter than the lead time.
+        let years = (2029..2057).collect();
+        assert_eq!(seen, years, "{width}x{height}\n{}", bench.screen());
+    }
+}
+
+#[test]
+fn where_nothing_can_be_bought_now_it_is_said_why_and_from_when() {
+    let mut session = crate::demo::session();
+    let mut offers = session.desk.offers.to_vec();
+    for offer in &mut offers {
+        offer.lead_time_years = Some(2.0);
+    }
+    let desk = &session.desk;
+    session.desk = ironhum::study::Desk::new(
+        std::sync::Arc::clone(&desk.fleet),
+        offers,
+        desk.profiles.to_vec(),
+        desk.series.to_vec(),
+        desk.sheet.clone(),
+    )
+    .unwrap();
+    let mut bench = Bench::on(PLAIN, 80, 24, session);
+    assert!(bench.keys("<Enter>").screen().contains("none open before 2029: lead time"));
+    bench.resize(160, 50);
+    assert!(bench.keys("1").screen().contains("now: none open before 2029: lead time"));
+}
+
+/// The bids in their order, by the words of their lines: place, bid, owning cost last but one.
+fn order(bench: &Bench) -> Vec<String> {
+    let rows = bench.lines().into_iter().skip(5);
+    rows.take_while(|line| !line.trim().is_empty())
+        .map(|line| line.replace(['▶', '='], " ").split_whitespace().nth(1).unwrap().to_owned())
+        .collect()
+}
+
+#[test]
+fn a_bid_moves_with_its_price_and_back() {
+    let mut bench = bench();
+    let before = bench.keys("3<Down>").screen();
+    let (was, bid) = (order(&bench), order(&bench)[1].clone());
+    bench.keys("v");
+    assert!(bench.screen().contains(&format!("What if, for bid {bid}")), "{}", bench.screen());
+    // Price is the third input; far dearer, it falls back, and the cursor stays with it.
+    bench.keys("<Down><Down>>>>");
+    assert!(bench.screen().contains("changed, not stored"), "{}", bench.screen());
+    assert_ne!(order(&bench), was);
+    assert!(order(&bench).iter().position(|b| *b == bid) > Some(1), "{}", bench.screen());
+    let cursor = bench.lines().into_iter().filter(|line| line.starts_with('▶'));
+    assert!(cursor.clone().any(|line| line.contains(&bid)), "{}", bench.screen());
+    // It stays when the inputs are closed, and follows the basis.
+    bench.keys("<Esc>");
+    assert!(bench.screen().contains("changed, not stored"));
+    bench.keys("4<Down><Down>>3");
+    assert!(bench.screen().contains("changed, not stored"));
+    bench.keys("4R3vr<Esc>");
+    assert_eq!(bench.screen(), before);
+}
+
+#[test]
+fn factors_can_be_moved_both_ways_and_all_put_back() {
+    let mut bench = bench();
+    let line = |bench: &Bench| bench.lines().into_iter().find(|l| l.contains("A aux")).unwrap();
+    let before = line(bench.keys("3v"));
+    let less = line(bench.keys("-"));
+    assert_ne!(less, before);
+    assert!(less.contains("(tender)") && less.ends_with("(basis)"), "{less}");
+    let more = line(bench.keys("<Right><Right>"));
+    assert_ne!(more, less);
+    // A loss never goes below nothing; what cannot be is told.
+    bench.keys("<End><Up>").keys(&"<".repeat(20));
+    assert!(bench.screen().contains("is outside 0"), "{}", bench.screen());
+    assert_eq!(line(bench.keys("R")), before);
+    assert!(!bench.screen().contains("not stored "));
+}
+
+#[test]
+fn how_sure_the_winner_is_is_drawn_and_falls_with_what_it_is_of() {
+    let mut bench = bench();
+    bench.keys("3u");
+    let screen = bench.screen();
+    assert!(screen.contains("of 10 000 draws (seed 1)"), "{screen}");
+    assert!(bench.lines()[3].contains("cheapest"), "{screen}");
+    assert!(bench.keys("m").screen().contains('•'), "{}", bench.screen());
+    // Of another basis, or with something moved, it no longer holds.
+    bench.keys("m").keys("m");
+    bench.keys("4<Down><Down>>3");
+    assert!(!bench.screen().contains("draws (seed"), "{}", bench.screen());
+    assert!(bench.keys("<F9>").screen().contains("draws (seed"));
+    bench.keys("v>");
+    assert!(!bench.keys("<Esc>").screen().contains("draws (seed"));
+}
+
+#[test]
+fn a_figure_of_a_bid_opens_and_is_copied() {
+    use ironhum::tui::app::Wish;
+    let mut bench = bench();
+    bench.keys("3<Down>");
+    let bid = bench.cursor().split_whitespace().nth(2).unwrap().to_owned();
+    bench.keys("e");
+    let screen = bench.screen();
+    assert!(screen.contains(&format!("bid {bid}")) && screen.contains("[owning cost]"), "{screen}");
+    assert!(screen.contains(" = "), "{screen}");
+    bench.keys("n");
+    assert!(bench.screen().contains("[at tolerance]"));
+    bench.keys("ny");
+    // "ol-2027-1, lot …" in base64.
+    let Some(Wish::Write(written)) = bench.app.take_wish() else { panic!("nothing was written") };
+    assert!(written.starts_with("\u{1b}]52;c;b2wtMjAyNy0x"), "{written:?}");
+    assert!(bench.screen().contains("Handed to the terminal"));
+    bench.keys("<Esc>");
+    assert_eq!(bench.app.screen(), Screen::Tender);
+    assert!(bench.cursor().contains(&bid));
+}
+
+#[test]
+fn every_figure_of_a_unit_opens_both_ways() {
+    let mut bench = bench();
+    bench.keys("<Down><Enter>").keys("e");
+    let first = bench.screen();
+    assert!(first.contains("unit OD-T1") && first.contains("saving_pv]"), "{first}");
+    let mut seen = std::collections::BTreeSet::new();
+    for _ in 0..100 {
+        let screen = bench.keys("<Right>").screen();
+        assert!(screen.contains(" = "), "{screen}");
+        seen.insert(bench.lines()[2].clone());
+    }
+    assert!(seen.len() > 10, "{seen:?}");
+    bench.keys("q").keys("e");
+    assert_eq!(bench.keys("<Right><Left>").screen(), first);
+    bench.keys("e<Esc>");
+    assert_eq!(bench.app.screen(), Screen::Fleet);
+    assert!(bench.keys("e").screen().contains("unit OD-T1"));
+}
+
+#[test]
+fn in_ascii_units_and_ranges_are_spelt() {
+    let mut bench = Bench::demo(crate::bench::ASCII, 160, 50);
+    assert!(bench.keys("<Enter>").screen().contains("75 degC"), "{}", bench.screen());
+    assert!(bench.keys("4").screen().contains(" to 2200"), "{}", bench.screen());
+    let steps = bench.keys("3e").screen();
+    assert!(steps.contains("A*P0/1000"), "{steps}");
+    assert_eq!(steps.matches('?').count(), 1, "only the key of the help: {steps}");
+    assert!(steps.contains(" EUR [") && !steps.contains("money"), "{steps}");
 }
 
 /// A row of the totals on the basis screen: before and after.
@@ -311,6 +507,12 @@ fn a_basis_is_stored_only_when_asked_twice() {
     assert!(bench.screen().contains("Store 1 change in basis plan-2027? w again stores"));
     bench.keys("<Up>w<Down>");
     assert!(stored.lock().unwrap().is_empty(), "another key came between");
+    for other in ["y", "<Enter>", "<PageDown>"] {
+        bench.keys("w").keys(other);
+        assert!(!bench.screen().contains("w again stores"), "{other}");
+        bench.keys("w<Esc>4");
+        assert!(stored.lock().unwrap().is_empty(), "{other}");
+    }
     bench.keys("ww");
     assert_eq!(*stored.lock().unwrap(), [7.0]);
     assert!(bench.screen().contains("Stored."));

@@ -3,7 +3,7 @@
 use crate::bench::{ASCII, Bench, COLOUR, PLAIN, SIXTEEN};
 
 /// Name of the view and the keys that lead to it.
-const VIEWS: [(&str, &str); 13] = [
+const VIEWS: [(&str, &str); 17] = [
     ("fleet", "<Down><Down>"),
     ("fleet_filter", "/zel 01"),
     ("fleet_by_waiting", "s"),
@@ -14,6 +14,10 @@ const VIEWS: [(&str, &str); 13] = [
     ("tender_second_lot", "3n<End>"),
     ("tender_map", "3m"),
     ("tender_changes", "3mm"),
+    ("tender_what_if", "3<Down>v<Down><Down>>"),
+    ("tender_risk", "3u"),
+    ("unit_working", "<Enter>e"),
+    ("bid_working", "3e"),
     ("basis", "4<Down><Down>>"),
     ("journal", "5"),
     ("help", "4?"),

@@ -5,7 +5,7 @@ use proptest::prelude::*;
 
 use crate::bench::{ASCII, Bench, COLOUR, PLAIN};
 
-const KEYS: [&str; 30] = [
+const KEYS: [&str; 34] = [
     "1",
     "2",
     "3",
@@ -35,6 +35,10 @@ const KEYS: [&str; 30] = [
     "<Right>",
     "<",
     "r",
+    "e",
+    "v",
+    "u",
+    "y",
     "R",
 ];
 
@@ -126,7 +130,10 @@ proptest! {
 fn every_screen_at_every_small_size() {
     for caps in [COLOUR, ASCII] {
         let mut bench = Bench::on(caps, 80, 24, hostile());
-        for keys in ["1", "x", "<Enter>", "t", "3", "m", "m", "4", "5", "?"] {
+        for keys in [
+            "1", "x", "<Enter>", "t", "e", "<Esc>", "3", "e", "<Esc>", "u", "m", "m", "v", ">",
+            "4", "5", "?",
+        ] {
             bench.keys(keys);
             for (width, height) in [
                 (0, 0),
@@ -155,7 +162,7 @@ fn too_small_says_so_and_keeps_the_state() {
     bench.keys("<Down><Down>");
     let before = bench.screen();
     bench.resize(40, 10);
-    assert_eq!(bench.screen().trim_end(), "40x10: needs 60x16; q quits");
+    assert_eq!(bench.screen().trim_end(), "q quits; needs 60x16, not 40x10");
     bench.resize(80, 24);
     assert_eq!(bench.screen(), before);
 }

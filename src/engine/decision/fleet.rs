@@ -14,8 +14,9 @@ use std::ops::Range;
 use rustc_hash::FxHashMap;
 
 use super::equal_pv;
+use super::estimate::End;
 use super::fit::{Candidate, fitting};
-use super::place::{Context, LeftOut, Place, resolve};
+use super::place::{Context, LeftOut, Place, resolve_at};
 use crate::engine::Refusal;
 use crate::engine::economics::Assumptions;
 use crate::engine::flags::Flags;
@@ -94,12 +95,34 @@ pub struct Kernel<'a> {
     caps: CapsByFailure,
 }
 
-/// Space for the year series of one unit.
+/// What the units of a chunk share.
 struct Scratch {
+    /// Price sums by growth of the load.
+    grown: FxHashMap<u64, PriceSums>,
+    years: YearScratch,
+}
+
+/// Space for the year series of one unit.
+struct YearScratch {
     series: Series,
     least: Vec<f64>,
     forced: Vec<f64>,
     relaxed: Vec<f64>,
+}
+
+impl Scratch {
+    fn new(years: usize) -> Self {
+        let space = || vec![0.0; years + 1];
+        Self {
+            grown: FxHashMap::default(),
+            years: YearScratch {
+                series: Series { iron: space(), copper: space(), auxiliary: space() },
+                least: space(),
+                forced: space(),
+                relaxed: space(),
+            },
+        }
+    }
 }
 
 impl<'a> Kernel<'a> {
@@ -138,26 +161,28 @@ impl<'a> Kernel<'a> {
 
     /// Evaluates the units of `range` into `out`.
     pub fn evaluate(&self, fleet: &FleetColumns, range: Range<usize>, out: &mut [Outcome]) {
-        let a = &self.ctx.assumptions;
-        let mut grown: FxHashMap<u64, PriceSums> = FxHashMap::default();
-        let space = || vec![0.0; a.years + 1];
-        let mut s = Scratch {
-            series: Series { iron: space(), copper: space(), auxiliary: space() },
-            least: space(),
-            forced: space(),
-            relaxed: space(),
-        };
+        let mut space = Scratch::new(self.ctx.assumptions.years);
         for (i, out) in range.zip(out) {
-            *out = match resolve(&mut Silent, &fleet.facts(i), self.ctx) {
-                Err(why) => Outcome::left_out(why),
-                Ok(place) => {
-                    let growth = grown
-                        .entry(place.duty.load_growth_pu.to_bits())
-                        .or_insert_with(|| self.horizon.grown(a, place.duty.load_growth_pu));
-                    self.unit(&place, &self.fits[fleet.kind[i] as usize], growth, &mut s)
-                }
-            };
+            *out = self.one(fleet, i, End::Middle, &mut space);
         }
+    }
+
+    /// Evaluates one unit with its estimated losses at an end of their intervals.
+    pub fn at_end(&self, fleet: &FleetColumns, i: usize, end: End) -> Outcome {
+        self.one(fleet, i, end, &mut Scratch::new(self.ctx.assumptions.years))
+    }
+
+    #[inline]
+    fn one(&self, fleet: &FleetColumns, i: usize, end: End, space: &mut Scratch) -> Outcome {
+        let place = match resolve_at(&mut Silent, &fleet.facts(i), self.ctx, end) {
+            Ok(place) => place,
+            Err(why) => return Outcome::left_out(why),
+        };
+        let growth = place.duty.load_growth_pu;
+        let sums = || self.horizon.grown(&self.ctx.assumptions, growth);
+        let grown = space.grown.entry(growth.to_bits()).or_insert_with(sums);
+        let fit = &self.fits[fleet.kind[i] as usize];
+        self.unit(&place, fit, grown, &mut space.years)
     }
 
     /// First delay at which candidate number `c` of a fit carries the load to the end; none = never.
@@ -191,11 +216,17 @@ impl<'a> Kernel<'a> {
         }
     }
 
-    fn unit(&self, place: &Place, fit: &Fit, growth: &PriceSums, space: &mut Scratch) -> Outcome {
+    fn unit(
+        &self,
+        place: &Place,
+        fit: &Fit,
+        growth: &PriceSums,
+        space: &mut YearScratch,
+    ) -> Outcome {
         let a = &self.ctx.assumptions;
         let latest = a.latest;
         let h = &self.horizon;
-        let Scratch { series: s, least, forced, relaxed } = space;
+        let YearScratch { series: s, least, forced, relaxed } = space;
         s.fill(place, fit, a, h, growth);
         let ages = h.ages(place.year_made);
         let caps = self.caps.of(ages.fails);

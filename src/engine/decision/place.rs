@@ -3,9 +3,12 @@
 //! [`UnitFacts`] are the bare numbers of a unit, NaN where unknown, the same whether one unit was read or a
 //! million columns; [`resolve`] is the one place where blanks fall to profile, basis and default.
 
-mod stated;
+pub mod stated;
 
-use crate::engine::columns::{Unit, YesNo};
+use std::sync::Arc;
+
+use crate::engine::columns::{Insulation, Unit, WindingMetal, YesNo};
+use crate::engine::decision::estimate::{End, FleetEstimate};
 use crate::engine::decision::fit::Candidate;
 use crate::engine::economics::Assumptions;
 use crate::engine::flags::Flags;
@@ -38,11 +41,14 @@ pub struct UnitFacts {
     pub removal_cost: f64,
     pub scrap_value: f64,
     pub customers: f64,
+    pub phases: Option<i64>,
+    pub winding_metal: Option<WindingMetal>,
+    pub insulation: Option<Insulation>,
     /// Index of the load profile; `u32::MAX` = none.
     pub profile: u32,
 }
 
-fn known(value: f64) -> Option<f64> {
+pub(super) fn known(value: f64) -> Option<f64> {
     if value.is_nan() { None } else { Some(value) }
 }
 
@@ -75,6 +81,9 @@ impl UnitFacts {
             removal_cost: money(unit.removal_cost),
             scrap_value: money(unit.scrap_value),
             customers: unit.customers.map_or(f64::NAN, |n| n as f64),
+            phases: unit.phases,
+            winding_metal: unit.winding_metal,
+            insulation: unit.insulation,
             profile: profile.and_then(|p| u32::try_from(p).ok()).unwrap_or(u32::MAX),
         }
     }
@@ -91,6 +100,8 @@ pub struct Context {
     pub ratios: Vec<Ratios>,
     /// The offers as the basis sees them (law), in catalogue order.
     pub candidates: Vec<Candidate>,
+    /// The fleet's known losses, where the basis has missing ones estimated.
+    pub estimate: Option<Arc<FleetEstimate>>,
     /// Flags of the basis that every unit carries.
     pub flags: Flags,
 }
@@ -136,6 +147,12 @@ pub enum LeftOut {
     NoOffer,
     /// Named profile is not in the book (only while columns are built by hand).
     ProfileUnknown,
+    /// A loss is blank, and too few units have it known.
+    TooFewToEstimate,
+    /// A loss is blank, and all units that have it known are of one rating.
+    OneRatingToEstimate,
+    /// A loss is blank, and the rating lies far from those of units that have it known.
+    BeyondRatingsToEstimate,
     /// Its profile cannot be laid beside the price series.
     ProfileUnfit,
 }
@@ -169,6 +186,15 @@ impl LeftOut {
                 "its profile and the price series differ in step, length or start; bring both to one"
             }
             Self::ProfileUnknown => "its profile is not in the book; import it",
+            Self::TooFewToEstimate => {
+                "a loss is blank and fewer than 5 units of the fleet have it known, too few to estimate it; import it"
+            }
+            Self::OneRatingToEstimate => {
+                "a loss is blank and all units that have it known are of one rating, which tells nothing of others; import it"
+            }
+            Self::BeyondRatingsToEstimate => {
+                "a loss is blank and its rating is below half or above twice those of the units that have it known, too far to estimate it; import it"
+            }
         }
     }
 }
@@ -208,6 +234,19 @@ pub fn power_factor<R: Recorder>(w: &mut R, f: &UnitFacts) -> f64 {
 /// # Errors
 /// Why the unit cannot be computed.
 pub fn resolve<R: Recorder>(w: &mut R, f: &UnitFacts, ctx: &Context) -> Result<Place, LeftOut> {
+    resolve_at(w, f, ctx, End::Middle)
+}
+
+/// The same, with estimated losses at an end of their intervals.
+///
+/// # Errors
+/// Why the unit cannot be computed.
+pub fn resolve_at<R: Recorder>(
+    w: &mut R,
+    f: &UnitFacts,
+    ctx: &Context,
+    end: End,
+) -> Result<Place, LeftOut> {
     let a = &ctx.assumptions;
     let mut flags = ctx.flags;
     if !f.in_service {
@@ -220,15 +259,19 @@ pub fn resolve<R: Recorder>(w: &mut R, f: &UnitFacts, ctx: &Context) -> Result<P
         (Some(_), None, None) => Some(LeftOut::LoadLossBlank),
         _ => None,
     };
-    if let Some(missing) = missing {
-        return Err(missing);
-    }
     let base = known(f.loss_base_kva);
-    let losses = quoted(w, f.rated_kva, base, p0, pk, total, known(f.auxiliary_loss_w))
-        .map_err(|_| LeftOut::TotalBelowPart)?;
+    let losses = match missing {
+        None => quoted(w, f.rated_kva, base, p0, pk, total, known(f.auxiliary_loss_w))
+            .map_err(|_| LeftOut::TotalBelowPart)?,
+        Some(missing) => ctx.estimate.as_ref().ok_or(missing)?.losses(w, f, end)?,
+    };
     flags = flags
-        .with_if(pk.is_none(), Flags::LOAD_LOSS_FROM_TOTAL)
-        .with_if(base.is_some_and(|b| b != f.rated_kva), Flags::LOSS_BASE_DIFFERS)
+        .with_if(missing.is_some(), Flags::LOSS_ESTIMATED)
+        .with_if(pk.is_none() && total.is_some(), Flags::LOAD_LOSS_FROM_TOTAL)
+        .with_if(
+            base.is_some_and(|b| b != f.rated_kva) && (pk.is_some() || total.is_some()),
+            Flags::LOSS_BASE_DIFFERS,
+        )
         .with_if(losses.load_loss_w < losses.no_load_loss_w, Flags::LOSSES_SWAPPED);
     flags = flags.with_if(losses_contradict(p0, pk, total), Flags::LOSSES_CONTRADICT);
 

@@ -13,6 +13,7 @@ pub mod factors;
 pub mod legal;
 pub mod limits;
 pub mod map;
+pub mod packages;
 pub mod ranking;
 pub mod rates;
 pub mod risk;

@@ -173,6 +173,10 @@ impl Assumptions {
             let why = "is required by factor_method \"levelized\"";
             return Err(Refusal::new("fixed_charge_rate_pct", "", why));
         }
+        if basis.voltage_model == Some(VoltageModel::Drop) {
+            let why = "a year is computed at rated voltage only so far; choose \"rated\" (work voltage-drop computes one load)";
+            return Err(Refusal::new("voltage_model", "drop", why));
+        }
         let resolved = Self {
             name: basis.name.clone(),
             currency: basis.currency.clone(),

@@ -266,6 +266,20 @@ const AUX_LEVEL: Formula = Formula {
     source: "IEEE C57.120 (memory); methods, section 5",
 };
 
+const DIFFERENCE: Formula = Formula {
+    name: "how far the other method lies above",
+    symbol: "difference",
+    formula: "100·(other/own − 1)",
+    unit: "%",
+    source: "definition",
+};
+
+/// How far a factor by another method lies above the own one in percent; 0 where the own one is 0.
+pub fn difference_pct<R: Recorder>(w: &mut R, own: f64, other: f64) -> f64 {
+    let value = if own == 0.0 { 0.0 } else { 100.0 * (other / own - 1.0) };
+    w.step(&DIFFERENCE, &[("other", other), ("own", own)], value)
+}
+
 /// The levelized form of IEEE C57.120 (memory): price and load levelised apart; not a present value.
 ///
 /// # Errors

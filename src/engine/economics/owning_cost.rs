@@ -78,9 +78,7 @@ pub fn owning_cost<R: Recorder>(w: &mut R, priced: &Priced, factors: &LossFactor
     let copper = b * priced.load_loss_w / 1000.0;
     w.step(&LOAD, &[("B", b), ("Pk", priced.load_loss_w)], copper);
     let auxiliary = x * priced.auxiliary_loss_w / 1000.0;
-    if priced.auxiliary_loss_w > 0.0 {
-        w.step(&AUXILIARY, &[("A_aux", x), ("P_aux", priced.auxiliary_loss_w)], auxiliary);
-    }
+    w.step(&AUXILIARY, &[("A_aux", x), ("P_aux", priced.auxiliary_loss_w)], auxiliary);
     let cost = OwningCost {
         price: priced.price,
         no_load_cost: iron,

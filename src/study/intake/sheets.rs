@@ -30,11 +30,13 @@ impl Intake<'_> {
             }
         }
         let change = book.change(self.actor, Some(&self.file))?;
-        let mut saved = change.save_basis(&sheet.content);
-        if self.options.current && saved.is_ok() {
-            saved = change.set_current_basis(&sheet.content.basis.name);
+        let saved = change.save_basis(&sheet.content);
+        let (current, actor) = (self.options.current, self.actor);
+        let report = self.settle(change, saved, &sheet)?;
+        if current && report.stored {
+            book.set_current_basis(&sheet.content.basis.name, actor)?;
         }
-        self.settle(change, saved, &sheet)
+        Ok(report)
     }
 
     pub(super) fn tender(mut self, book: &mut Book, source: Source) -> Result<Report, IntakeError> {

@@ -6,6 +6,8 @@
 use serde::Serialize;
 
 use super::{BidResult, LotResult};
+use crate::engine::decision::tender::packages::{above, together};
+use crate::engine::working::{Recorder, Silent};
 
 /// How the lots may be awarded.
 #[derive(Clone, Debug, Default, PartialEq, Serialize)]
@@ -62,7 +64,6 @@ impl Package {
                 package.lots_missing.push(lot.lot.clone());
                 continue;
             };
-            package.lot_cost += bid.lot_cost;
             package.bids.push(PackageBid {
                 lot: lot.lot.clone(),
                 bid: bid.bid.clone(),
@@ -70,7 +71,19 @@ impl Package {
                 lot_cost: bid.lot_cost,
             });
         }
+        package.lot_cost = package.cost(&mut Silent);
         package
+    }
+
+    /// What its bids cost together.
+    pub(super) fn cost<R: Recorder>(&self, w: &mut R) -> f64 {
+        together(w, self.bids.iter().map(|bid| bid.lot_cost))
+    }
+
+    /// What the winners of the same lots cost together.
+    pub(super) fn winners<'a>(&self, by_lot: &'a Self) -> impl Iterator<Item = f64> + use<'a, '_> {
+        let covered = |bid: &&PackageBid| self.bids.iter().any(|own| own.lot == bid.lot);
+        by_lot.bids.iter().filter(covered).map(|bid| bid.lot_cost)
     }
 }
 
@@ -89,9 +102,8 @@ pub fn awards(lots: &[LotResult]) -> Awards {
         .into_iter()
         .map(|bidder| {
             let package = Package::of(lots, |bid| bid.bidder.as_deref() == Some(bidder));
-            let covered = |bid: &&PackageBid| package.bids.iter().any(|own| own.lot == bid.lot);
-            let winners: f64 = by_lot.bids.iter().filter(covered).map(|bid| bid.lot_cost).sum();
-            let above_by_lot = package.lot_cost - winners;
+            let winners = together(&mut Silent, package.winners(&by_lot));
+            let above_by_lot = above(&mut Silent, package.lot_cost, winners);
             BidderPackage { bidder: bidder.to_owned(), package, above_by_lot }
         })
         .collect();

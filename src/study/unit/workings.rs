@@ -1,8 +1,6 @@
 //! The figures of a dossier opened: each by its place in the dossier, from the functions that gave it.
 
-use serde_json::Value;
-
-use super::{Dossier, FigureWorking, LOADS, Question, decision, fitting_offers};
+use super::{LOADS, Question, decision, fitting_offers};
 use crate::engine::Refusal;
 use crate::engine::decision::keep_or_replace::{Decision, Valuation, YearChoice, age};
 use crate::engine::decision::place::power_factor;
@@ -16,7 +14,7 @@ use crate::engine::transformer::losses::{
 use crate::engine::transformer::{efficiency, regulation};
 use crate::engine::working::{Step, Working};
 use crate::study::StudyError;
-use crate::study::explain::StepRow;
+use crate::study::explain::{Explained, numbers};
 
 /// Parts of a dossier that hold no figures: what the record says, and workings themselves.
 const NO_FIGURES: &[&str] = &["nameplate", "working"];
@@ -48,125 +46,35 @@ const OF_VALUE: &[&str] = &[
     "removal_less_scrap",
 ];
 
-/// Which figures of a dossier are opened.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub enum Opening<'a> {
-    /// All but the present values, which are long.
-    Short,
-    /// All.
-    All,
-    /// The one of this name: its place in the dossier, or the end of it where only one figure ends so.
-    One(&'a str),
-}
-
-impl Dossier<'_> {
-    /// Every figure that can be opened, by its place in the dossier, with its value.
-    pub fn figures(&self) -> Vec<(String, f64)> {
-        let mut figures = Vec::new();
-        if let Ok(Value::Object(parts)) = serde_json::to_value(self) {
-            for (key, part) in parts.iter().filter(|(key, _)| !NO_FIGURES.contains(&key.as_str())) {
-                leaves(key, part, &mut figures);
-            }
-        }
-        figures
+impl Explained for Question<'_> {
+    fn called(&self) -> String {
+        format!("the dossier of unit {}", self.unit.unit)
     }
-}
 
-/// The numbers below a place of a document.
-fn leaves(place: &str, value: &Value, figures: &mut Vec<(String, f64)>) {
-    match value {
-        Value::Number(number) => figures.extend(number.as_f64().map(|x| (place.to_owned(), x))),
-        Value::Array(list) => {
-            for (n, part) in list.iter().enumerate() {
-                leaves(&format!("{place}.{n}"), part, figures);
+    fn figures(&self) -> Result<Vec<(String, f64)>, StudyError> {
+        Ok(numbers(&self.dossier()?, NO_FIGURES, LABELS))
+    }
+
+    fn state(&self, w: &mut Working, place: &[&str]) -> Result<(), StudyError> {
+        match place {
+            ["power_factor"] => {
+                power_factor(w, &self.facts());
             }
-        }
-        Value::Object(parts) => {
-            for (key, part) in parts.iter().filter(|(key, _)| !LABELS.contains(&key.as_str())) {
-                leaves(&format!("{place}.{key}"), part, figures);
+            ["loading", quantity] => self.loading(w, quantity)?,
+            ["losses", quantity] => self.year_1(w, quantity)?,
+            ["keep_or_replace", "years", n, "pv"] => {
+                let (place, decision) = self.decided()?;
+                let n = n.parse().ok().and_then(|n: usize| decision.years.get(n).copied());
+                self.policy(w, &place, n)?;
             }
+            ["keep_or_replace", quantity] => self.value(w, quantity)?,
+            _ => self.nameplate(w, place)?,
         }
-        _ => {}
+        Ok(())
     }
 }
 
 impl Question<'_> {
-    /// The workings of the figures of its dossier.
-    ///
-    /// # Errors
-    /// A figure that is not in the dossier; what the engine refuses of the basis.
-    pub fn workings(
-        &self,
-        dossier: &Dossier,
-        which: Opening,
-    ) -> Result<Vec<FigureWorking>, StudyError> {
-        let figures = dossier.figures();
-        let names = figures.iter().map(|(name, _)| name.as_str());
-        let names: Vec<&str> = match which {
-            Opening::One(name) => vec![self.named(name, names)?],
-            Opening::All => names.collect(),
-            Opening::Short => names.filter(|name| !name.starts_with("keep_or_replace")).collect(),
-        };
-        let open = |figure: &str| {
-            Ok(FigureWorking { figure: figure.to_owned(), steps: self.open(figure)? })
-        };
-        names.into_iter().map(open).collect()
-    }
-
-    /// How one figure of the dossier comes about; the last step is the figure.
-    ///
-    /// # Errors
-    /// As [`Question::workings`].
-    pub fn working(&self, figure: &str) -> Result<Vec<StepRow>, StudyError> {
-        let figures = self.dossier()?.figures();
-        self.open(self.named(figure, figures.iter().map(|(name, _)| name.as_str()))?)
-    }
-
-    /// The place of a figure by its end.
-    fn named<'n>(
-        &self,
-        figure: &str,
-        names: impl Iterator<Item = &'n str>,
-    ) -> Result<&'n str, StudyError> {
-        let names: Vec<&str> = names.collect();
-        let place = format!("the dossier of unit {}", self.unit.unit);
-        let end = format!(".{figure}");
-        let mut fit = names.iter().filter(|name| **name == figure || name.ends_with(&end));
-        match (fit.next(), fit.next()) {
-            (Some(name), None) => Ok(name),
-            (None, _) => {
-                let ends = names.iter().filter_map(|name| name.rsplit('.').next());
-                Err(StudyError::unknown("figure", figure, place, ends))
-            }
-            (Some(_), Some(_)) => {
-                let all: Vec<&str> =
-                    names.iter().filter(|name| name.ends_with(&end)).copied().collect();
-                let why = format!("names {}; write one of them", all.join(", "));
-                Err(Refusal::new("figure", figure, why).into())
-            }
-        }
-    }
-
-    fn open(&self, figure: &str) -> Result<Vec<StepRow>, StudyError> {
-        let path: Vec<&str> = figure.split('.').collect();
-        let mut w = Working::default();
-        match path[..] {
-            ["power_factor"] => {
-                power_factor(&mut w, &self.facts());
-            }
-            ["loading", quantity] => self.loading(&mut w, quantity)?,
-            ["losses", quantity] => self.year_1(&mut w, quantity)?,
-            ["keep_or_replace", "years", n, "pv"] => {
-                let (place, decision) = self.decided()?;
-                let n = n.parse().ok().and_then(|n: usize| decision.years.get(n).copied());
-                self.policy(&mut w, &place, n)?;
-            }
-            ["keep_or_replace", quantity] => self.value(&mut w, quantity)?,
-            _ => self.nameplate(&mut w, &path)?,
-        }
-        Ok(StepRow::tree(w.steps()))
-    }
-
     fn refused(&self, why: LeftOut) -> Refusal {
         Refusal::new("unit", &self.unit.unit, why.why())
     }
@@ -175,7 +83,7 @@ impl Question<'_> {
     fn told(&self, w: &mut Working, symbols: &[&str]) -> Result<Place, Refusal> {
         let mut all = Working::default();
         let place = self.place(&mut all).map_err(|why| self.refused(why))?;
-        w.append(all.into_steps().into_iter().filter(|s| symbols.contains(&s.formula.symbol)));
+        w.append(all.only(symbols));
         Ok(place)
     }
 
@@ -241,7 +149,7 @@ impl Question<'_> {
         // What profile and price series give, before the unit is told so.
         let mut behind = Working::default();
         self.of_series(&mut behind)?;
-        w.append(behind.into_steps().into_iter().filter(|step| step.formula.symbol == symbol));
+        w.append(behind.only(&[symbol]));
         self.told(w, &[symbol])?;
         Ok(())
     }
@@ -297,7 +205,7 @@ impl Question<'_> {
                 let mut all = Working::default();
                 let place = self.told(w, OF_LOSSES)?;
                 energy(&mut all, &place);
-                w.append(all.into_steps().into_iter().filter(|s| s.formula.symbol == symbol));
+                w.append(all.only(&[symbol]));
             }
             _ => self.loading(w, quantity)?,
         }

@@ -22,7 +22,7 @@ pub(in crate::tui) struct Areas {
 /// Lays the screen out: what moved stands beside the list where there is room, else below it.
 pub(in crate::tui) fn areas(body: Rect) -> Areas {
     if body.width >= 110 {
-        let left = body.width / 2 + 4;
+        let left = (body.width / 2 + 4).max(68).min(body.width - 44);
         let list = Rect { width: left, height: body.height.saturating_sub(3), ..body };
         let about =
             Rect { y: list.bottom(), height: body.height - list.height, width: left, ..body };
@@ -77,7 +77,11 @@ fn blank(column: &Column) -> String {
 fn list(app: &App, area: Rect, buffer: &mut Buffer) {
     let theme = app.theme;
     let currency = currency(app);
-    let (values, origins) = if area.width < 76 { (14, 0) } else { (20, 8) };
+    let (values, origins) = match area.width {
+        ..66 => (14, 0),
+        66..76 => (14, 8),
+        76.. => (20, 8),
+    };
     let row = |name: &str, value: &str, unit: &str, from: &str| {
         format!(
             "  {} {} {} {}",
@@ -103,7 +107,7 @@ fn list(app: &App, area: Rect, buffer: &mut Buffer) {
         let unit = if *value == Value::Blank && !said.starts_with(|c: char| c.is_ascii_digit()) {
             String::new()
         } else {
-            currency_in(unit_of(column), &currency)
+            theme.spell(&currency_in(unit_of(column), &currency)).into_owned()
         };
         let mut line = row(column.name, &said, &unit, from);
         if n == list.cursor {
@@ -141,7 +145,7 @@ fn about(app: &App, area: Rect, buffer: &mut Buffer) {
     if !column.blank.is_empty() {
         said.push(format!("blank: {}", column.blank));
     }
-    let said = said.join("; ");
+    let said = app.theme.spell(&said.join("; ")).into_owned();
     for (y, line) in
         (0..area.height).zip(text::wrap(&said, usize::from(area.width.saturating_sub(4))))
     {
@@ -210,9 +214,9 @@ pub(in crate::tui) fn status(app: &App) -> Line<'static> {
     let said = if app.basis.is_refused() {
         " The figures are of the last basis that could be computed with."
     } else if app.basis.is_changed() && opened.can_save {
-        " Changed on this screen only; w stores it."
+        " Changed for all screens, not stored; w stores it."
     } else if app.basis.is_changed() {
-        " Changed on this screen only."
+        " Changed for all screens, not stored."
     } else {
         " As stored."
     };

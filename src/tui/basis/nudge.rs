@@ -24,6 +24,7 @@ pub(super) fn moved(
         Value::Blank => start(column, draft),
         value => value.clone(),
     };
+    let about = if let Value::Real(x) = stored { *x } else { 0.0 };
     let next = match (column.kind, &value) {
         (Kind::Choice(words), Value::Text(word)) => {
             Value::Text(turn(words, word, steps).to_owned())
@@ -42,10 +43,10 @@ pub(super) fn moved(
             Value::Integer((n + by).clamp(least, most))
         }
         (Kind::Real(least, most), Value::Real(x)) => {
-            Value::Real(stepped(column, stored, *x, by).clamp(least, most))
+            Value::Real(stepped(column, about, *x, by).clamp(least, most))
         }
         (Kind::Above(least, most), Value::Real(x)) => {
-            let next = stepped(column, stored, *x, by).min(most);
+            let next = stepped(column, about, *x, by).min(most);
             Value::Real(if next > least { next } else { *x })
         }
         (_, Value::Blank) if column.name == "energy_price_per_kwh" => {
@@ -95,21 +96,20 @@ fn start(column: &Column, draft: &[Value]) -> Value {
 }
 
 /// A step: one of a round size that suits the unit, or a hundredth of a round size about the stored value.
-fn step(column: &Column, stored: &Value) -> f64 {
+fn step(column: &Column, stored: f64) -> f64 {
     match unit_of(column) {
         "%" => 0.1,
         "years" => 1.0,
         "h" => 10.0,
         "/kWh" => 0.001,
         "pu" | "kg/kWh" => 0.01,
-        _ => match stored {
-            Value::Real(x) if *x > 0.0 => round_scale(*x) / 100.0,
-            _ => 1.0,
-        },
+        _ if stored > 0.0 => round_scale(stored) / 100.0,
+        _ => 1.0,
     }
 }
 
-fn stepped(column: &Column, stored: &Value, value: f64, by: i64) -> f64 {
+/// A value after some steps; `stored` is what the step suits.
+pub(in crate::tui) fn stepped(column: &Column, stored: f64, value: f64, by: i64) -> f64 {
     #[expect(clippy::cast_precision_loss, reason = "a few steps")]
     let next = value + by as f64 * step(column, stored);
     // The decimals of a step, not those of its sum in binary.

@@ -4,14 +4,14 @@ use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
 use ratatui::text::{Line, Span};
 
-use super::{View, lot, map, shown, sign};
+use super::{View, lot, map, risk, shown, sign};
 use crate::engine::columns::{Basis, Bid, Lot};
 use crate::study::figures::figure;
 use crate::study::losses::flag_meaning;
 use crate::study::tender::{BidResult, ChangeResult, LotResult, MoveResult};
 use crate::tui::app::App;
 use crate::tui::bar::{self, Parts};
-use crate::tui::frame::{put, put_line, select};
+use crate::tui::frame::{put, put_line, put_right, select};
 use crate::tui::text;
 use crate::tui::theme::{Part, Theme};
 use crate::tui::words::{currency_in, unit_of};
@@ -20,6 +20,10 @@ use crate::tui::words::{currency_in, unit_of};
 const HEADER: u16 = 2;
 /// Lines below the bids: the one under the cursor, the near-tied ones.
 const DETAILS: u16 = 9;
+
+/// Least body in which something stands beside the bids, and in which all of it does.
+const WIDE: u16 = 120;
+const HIGH: u16 = 32;
 
 /// Where the parts of the screen stand.
 pub(in crate::tui) struct Areas {
@@ -31,14 +35,19 @@ pub(in crate::tui) struct Areas {
     changes: Option<Rect>,
 }
 
+/// Whether the body has room for bids, map and changes at once.
+pub(super) fn shows_all(body: Rect) -> bool {
+    body.width >= WIDE && body.height >= HIGH
+}
+
 /// Lays the screen out.
 fn areas(body: Rect, view: View, bids: usize) -> Areas {
     let head = Rect { height: body.height.min(2), ..body };
     let rest = Rect { y: body.y + head.height, height: body.height - head.height, ..body };
-    if rest.width >= 120 {
+    if rest.width >= WIDE {
         let left = Rect { width: rest.width - rest.width * 9 / 20 - 2, ..rest };
         let right = Rect { x: left.right() + 2, width: rest.width - left.width - 2, ..rest };
-        let (map, changes) = match (rest.height >= 30, view) {
+        let (map, changes) = match (body.height >= HIGH, view) {
             (true, _) => {
                 let map = Rect { height: rest.height - 13, ..right };
                 (Some(map), Some(Rect { y: map.bottom(), height: 13, ..right }))
@@ -99,9 +108,13 @@ pub(in crate::tui) fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
     let currency = text::cut(&tender.sheet.tender.currency, 8);
     head(app, asked, result, &currency, areas.head, buffer);
     bids(app, result, &currency, areas.list, buffer);
-    details(app, result, &currency, areas.details, buffer);
+    if app.tender.what_if.open {
+        inputs(app, areas.details, buffer);
+    } else {
+        details(app, result, &currency, areas.details, buffer);
+    }
     if let Some(area) = areas.map {
-        map::draw(theme, result, &currency, area, buffer);
+        map::draw(theme, result, risk(app), &currency, area, buffer);
     }
     if let Some(area) = areas.changes {
         changes(theme, result, &currency, area, buffer);
@@ -121,6 +134,12 @@ fn head(app: &App, asked: &Lot, lot: &LotResult, currency: &str, area: Rect, buf
         Span::raw(format!("  {} x {} kVA", lot.quantity, text::plain(asked.rated_kva, 1))),
     ]);
     put_line(buffer, area, 0, &line);
+    if app.tender.what_if.of(app.tender.tender).is_some() {
+        let said = Line::styled("what if: changed, not stored ", theme.changed());
+        if line.width() + said.width() < usize::from(area.width) {
+            put_right(buffer, area, 0, &said);
+        }
+    }
     let from = |computed: bool| if computed { "the basis" } else { "the tender" };
     let factors = [
         ("A", lot.factor_a_per_kw, lot.computed.a),
@@ -130,10 +149,12 @@ fn head(app: &App, asked: &Lot, lot: &LotResult, currency: &str, area: Rect, buf
     let alike = factors.iter().all(|factor| factor.2 == lot.computed.a);
     let said = factors.map(|(word, value, computed)| {
         let value = format!("{word} {}", text::number(value, 2));
-        if alike { value } else { format!("{value} of {}", from(computed)) }
+        let short = if computed { "basis" } else { "tender" };
+        if alike { value } else { format!("{value} ({short})") }
     });
     let all = if alike { format!(", from {}", from(lot.computed.a)) } else { String::new() };
-    let said = format!(" a kW of loss in {currency}: {}{all}", said.join("  "));
+    let head = if alike { format!("a kW of loss in {currency}") } else { format!("{currency}/kW") };
+    let said = format!(" {head}: {}{all}", said.join("  "));
     put(buffer, area, 1, &said, theme.plain());
 }
 
@@ -151,6 +172,8 @@ fn bids(app: &App, lot: &LotResult, currency: &str, area: Rect, buffer: &mut Buf
         return;
     }
     let money = |value: f64| text::number(value, 0);
+    let risk = risk(app);
+    let sure = |bid: &BidResult| risk?.bids.iter().find(|r| r.bid == bid.bid);
     let row = |bid: &BidResult| {
         let place = match (bid.rank, bid.near_tie) {
             (Some(rank), true) if lot.near_tie_order.len() > 1 => format!("={}", sign(rank)),
@@ -164,9 +187,18 @@ fn bids(app: &App, lot: &LotResult, currency: &str, area: Rect, buffer: &mut Buf
             money(bid.price),
             money(bid.owning_cost),
             money(bid.owning_cost_at_tolerance),
+            sure(bid).map_or(String::new(), |sure| text::number(sure.probability_pu, 3)),
         ]
     };
-    let keys = ["rank", "bid", "bidder", "price", "owning_cost", "owning_cost_at_tolerance"];
+    let keys = [
+        "rank",
+        "bid",
+        "bidder",
+        "price",
+        "owning_cost",
+        "owning_cost_at_tolerance",
+        "probability_pu",
+    ];
     let headings = keys.map(|key| figure(key).map_or("", |figure| figure.heading));
     let units = keys.map(|key| currency_in(figure(key).map_or("", |figure| figure.unit), currency));
     let rows: Vec<_> = lot.bids.iter().map(|bid| (bid, row(bid))).collect();
@@ -178,9 +210,10 @@ fn bids(app: &App, lot: &LotResult, currency: &str, area: Rect, buffer: &mut Buf
         .collect();
     // The worst within the tolerance gives way first, then the bidder.
     let room = usize::from(area.width).saturating_sub(2);
-    let mut kept: Vec<usize> = (0..keys.len()).collect();
+    let mut kept: Vec<usize> = (0..keys.len() - usize::from(risk.is_none())).collect();
     let used = |kept: &[usize]| kept.iter().map(|n| widths[*n] + 2).sum::<usize>();
-    for (gives_way, bar) in [(5, 28), (2, 16)] {
+    let bidder = if risk.is_some() { 26 } else { 16 };
+    for (gives_way, bar) in [(5, 28), (2, bidder)] {
         if used(&kept) + bar > room {
             kept.retain(|n| *n != gives_way);
         }
@@ -228,6 +261,44 @@ fn bids(app: &App, lot: &LotResult, currency: &str, area: Rect, buffer: &mut Buf
     }
 }
 
+/// The inputs that can be moved, as they are stored and as they stand.
+fn inputs(app: &App, area: Rect, buffer: &mut Buffer) {
+    let theme = app.theme;
+    let bid = super::under_cursor(app).map_or("", |(_, _, bid)| bid);
+    let row = |name: &str, stored: &str, now: &str, unit: &str| {
+        format!(
+            "  {} {} {} {}",
+            text::left(name, 18),
+            text::right(stored, 13),
+            text::right(now, 13),
+            text::left(unit, 12)
+        )
+    };
+    let title = format!(" What if, for bid {} and its lot; nothing is stored", text::cut(bid, 20));
+    put(buffer, area, 1, &title, theme.heading());
+    put(buffer, area, 2, &row("", "stored", "now", ""), theme.heading());
+    for (y, (n, line)) in (3..).zip(super::inputs(app).iter().enumerate()) {
+        let currency = text::cut(&line.currency, 8);
+        let unit = currency_in(unit_of(line.column), &currency);
+        let (stored, now) = (text::plain(line.stored, 3), text::plain(line.now, 3));
+        let changed = stored != now;
+        let mut said = row(line.column.name, &stored, &now, &unit);
+        if changed {
+            said.push_str(" changed");
+        }
+        let at_cursor = n == app.tender.what_if.list.cursor;
+        if at_cursor {
+            said.replace_range(0..1, &theme.mark().to_string());
+        }
+        put(buffer, area, y, &said, if changed { theme.changed() } else { theme.plain() });
+        if at_cursor {
+            let wide = u16::try_from(text::width(&said)).unwrap_or(u16::MAX).min(area.width);
+            let line = Rect { y: area.y + y, height: 1, width: wide, ..area };
+            select(buffer, line.intersection(area));
+        }
+    }
+}
+
 fn details(app: &App, lot: &LotResult, currency: &str, area: Rect, buffer: &mut Buffer) {
     let theme = app.theme;
     let cells = usize::from(area.width.saturating_sub(2));
@@ -258,6 +329,20 @@ fn details(app: &App, lot: &LotResult, currency: &str, area: Rect, buffer: &mut 
             text::plain(bid.losses.load_loss_w, 1),
         );
         lines.extend(text::wrap(&said, cells).into_iter().map(|l| (l, theme.plain())));
+        if let Some(risk) = risk(app)
+            && let Some(sure) = risk.bids.iter().find(|r| r.bid == bid.bid)
+        {
+            let said = format!(
+                "cheapest in {} of {} draws (seed {}); mean regret {}; 90 % of its owning costs {} to {} {currency}",
+                share(sure.probability_pu),
+                text::count(risk.draws),
+                risk.seed,
+                money(sure.mean_regret),
+                money(sure.owning_cost_p5),
+                money(sure.owning_cost_p95),
+            );
+            lines.extend(text::wrap(&said, cells).into_iter().map(|l| (l, theme.plain())));
+        }
         if !bid.excluded.is_empty() {
             let said = format!("Out, not ranked: misses {}.", bid.excluded.join(", "));
             lines.extend(text::wrap(&said, cells).into_iter().map(|l| (l, theme.warning())));
@@ -296,6 +381,11 @@ fn details(app: &App, lot: &LotResult, currency: &str, area: Rect, buffer: &mut 
     for (y, line) in (upper..area.height).zip(verdict) {
         put(buffer, area, y, &format!(" {line}"), theme.heading());
     }
+}
+
+/// A probability in words.
+fn share(pu: f64) -> String {
+    format!("{} %", text::number(100.0 * pu, 1))
 }
 
 /// The unit of an input that may move.

@@ -1,17 +1,28 @@
 //! The winner map: which bid is the cheapest to own at each pair of factors, drawn cell by cell.
 
+use std::collections::BTreeSet;
+
 use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
 use ratatui::text::{Line, Span};
 
 use super::sign;
 use crate::study::tender::LotResult;
+use crate::study::tender::risk::RiskResult;
 use crate::tui::frame::{put, put_line, put_over, put_right};
 use crate::tui::text;
 use crate::tui::theme::Theme;
 
-/// Draws the map of a lot with its legend.
-pub(super) fn draw(theme: Theme, lot: &LotResult, currency: &str, area: Rect, buffer: &mut Buffer) {
+/// Draws the map of a lot with its legend,
+/// with the factors that were drawn.
+pub(super) fn draw(
+    theme: Theme,
+    lot: &LotResult,
+    risk: Option<&RiskResult>,
+    currency: &str,
+    area: Rect,
+    buffer: &mut Buffer,
+) {
     let map = &lot.map;
     let winners: Vec<usize> =
         (0..map.bids.len()).filter(|n| !map.bids[*n].polygon.is_empty()).collect();
@@ -28,6 +39,11 @@ pub(super) fn draw(theme: Theme, lot: &LotResult, currency: &str, area: Rect, bu
     let Some(height) = area.height.checked_sub(4 + below).filter(|h| *h >= 3) else { return };
     let Some(width) = area.width.checked_sub(margin + 1).filter(|w| *w >= 12) else { return };
     put(buffer, area, 1, &format!(" B, {currency}/kW"), theme.muted());
+    if let Some(risk) = risk {
+        let said =
+            format!("{} {} draws, seed {} ", theme.cloud(), text::count(risk.draws), risk.seed);
+        put_right(buffer, area, 1, &Line::styled(said, theme.muted()));
+    }
     let plot = Rect { x: area.x + margin, y: area.y + 2, width, height };
     for (y, label) in [(0, top.as_str()), (height - 1, zero)] {
         let line = format!("{} ", text::right(label, usize::from(margin) - 1));
@@ -44,6 +60,13 @@ pub(super) fn draw(theme: Theme, lot: &LotResult, currency: &str, area: Rect, bu
             let on_lattice = x % 8 == 4 && y % 3 == 1;
             cell.set_char(if on_lattice { sign(n + 1) } else { theme.region_fill(n) });
             cell.set_style(if on_lattice { theme.heading() } else { theme.region(n) });
+        }
+    }
+    let cloud = risk.map_or(&[][..], |risk| &risk.cloud);
+    for (x, y) in drawn(cloud, [map.a_max, map.b_max], [width, height]) {
+        if let Some(cell) = buffer.cell_mut((plot.x + x, plot.y + height - 1 - y)) {
+            cell.set_char(theme.cloud());
+            cell.set_style(theme.heading());
         }
     }
     let today = format!(
@@ -86,6 +109,23 @@ pub(super) fn draw(theme: Theme, lot: &LotResult, currency: &str, area: Rect, bu
     for (y, line) in (0..below).zip(&legend) {
         put_line(buffer, under, y, line);
     }
+}
+
+/// The cells of a plot in which points lie, from its lower left.
+fn drawn(cloud: &[[f64; 2]], most: [f64; 2], cells: [u16; 2]) -> BTreeSet<(u16, u16)> {
+    let cell = |value: f64, most: f64, cells: u16| {
+        #[expect(
+            clippy::cast_possible_truncation,
+            clippy::cast_sign_loss,
+            reason = "inside the plot"
+        )]
+        let at = (value / most * f64::from(cells)) as u16;
+        (value >= 0.0 && at < cells).then_some(at)
+    };
+    cloud
+        .iter()
+        .filter_map(|[a, b]| Some((cell(*a, most[0], cells[0])?, cell(*b, most[1], cells[1])?)))
+        .collect()
 }
 
 fn plot_left(plot: Rect, margin: u16) -> Rect {

@@ -24,20 +24,30 @@ pub(in crate::tui) struct Areas {
 const CHOICES: u16 = 7;
 
 /// Lays the screen out: the facts stand right of the years, on a large screen also right of the choices.
-pub(in crate::tui) fn areas(body: Rect) -> Areas {
+///
+/// A table takes the whole width of a small screen.
+pub(in crate::tui) fn areas(body: Rect, table: bool) -> Areas {
     let head = Rect { height: body.height.min(1), ..body };
     let rest = Rect { y: body.y + head.height, height: body.height - head.height, ..body };
     let large = rest.width >= 110;
+    let wide_table = table && !large;
     let beside = (rest.width * 2 / 5).min(44);
     let left = rest.width - beside;
     let top = CHOICES.min(rest.height);
     let below = Rect { y: rest.y + top, height: rest.height - top, ..rest };
-    let facts = if large { rest } else { below };
+    let facts = match (large, wide_table) {
+        (true, _) => rest,
+        (false, true) => Rect { height: 0, ..below },
+        (false, false) => below,
+    };
     Areas {
         head,
         choices: Rect { width: if large { left - 2 } else { rest.width }, height: top, ..rest },
-        facts: Rect { x: rest.x + left, width: beside, ..facts },
-        years: Rect { width: left.saturating_sub(2), ..below },
+        facts: Rect { x: rest.x + left, width: if wide_table { 0 } else { beside }, ..facts },
+        years: Rect {
+            width: if wide_table { rest.width } else { left.saturating_sub(2) },
+            ..below
+        },
     }
 }
 
@@ -54,7 +64,7 @@ pub(in crate::tui) fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
         );
         return;
     };
-    let areas = areas(area);
+    let areas = areas(area, app.unit.table);
     let fleet = &dossier.ranked.desk.fleet;
     let place = dossier.ranked.place[i];
     let ranked = text::count(dossier.ranked.ranking.order.len());
@@ -77,7 +87,7 @@ pub(in crate::tui) fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
     if let Ok(known) = &dossier.known {
         choices(theme, dossier, known, areas.choices, buffer);
         if app.unit.table {
-            table(theme, dossier, known, areas.years, buffer);
+            super::table::draw(app, dossier, known, areas.years, buffer);
         } else {
             years(theme, dossier, known, areas.years, buffer);
         }
@@ -95,7 +105,7 @@ fn choices(theme: Theme, dossier: &Dossier, known: &Known, area: Rect, buffer: &
     }
     let rows = super::choices(desk, known, a.first_year);
     let scale = super::scale(&rows);
-    let pv = |value: Option<f64>| value.map_or("none open".to_owned(), |v| text::number(v, 0));
+    let pv = |value: Option<f64>| value.map_or(String::new(), |v| text::number(v, 0));
     let wide = rows.iter().map(|row| text::width(&pv(row.pv))).max().unwrap_or(0);
     let offers = rows.iter().map(|row| text::width(&row.offer)).max().unwrap_or(0).min(14);
     for (y, row) in (1..).zip(rows) {
@@ -105,6 +115,11 @@ fn choices(theme: Theme, dossier: &Dossier, known: &Known, area: Rect, buffer: &
             text::left(&row.offer, offers),
             text::right(&pv(row.pv), wide)
         ))];
+        if row.pv.is_none() {
+            let why = super::not_yet_words(known.not_yet.as_ref());
+            let room = usize::from(area.width).saturating_sub(text::width(&why) + 2);
+            spans = vec![Span::raw(format!(" {} {why}", text::left(&row.word, room.min(12))))];
+        }
         if let Some(cost) = row.cost {
             let cells = usize::from(area.width).saturating_sub(spans[0].width());
             spans.extend(bar::bar(theme, &cost, scale, u16::try_from(cells).unwrap_or(0)));
@@ -140,34 +155,6 @@ fn years(theme: Theme, dossier: &Dossier, known: &Known, area: Rect, buffer: &mu
     let below =
         Rect { y: area.y + area.height.min(1), height: area.height.saturating_sub(1), ..area };
     let keep = Reference { word: "keep", value: known.decision.keep_pv };
-    chart::draw(theme, &points, &keep, below, buffer);
-}
-
-fn table(theme: Theme, dossier: &Dossier, known: &Known, area: Rect, buffer: &mut Buffer) {
-    let (desk, a) = (&dossier.ranked.desk, &dossier.ranked.ranking.context.assumptions);
-    let title = format!(" Replacing in each year, {} present value", text::cut(&a.currency, 8));
-    put(buffer, area, 0, &title, theme.heading());
-    let years = &known.decision.years;
-    let least = years.iter().map(|c| c.pv).fold(f64::INFINITY, f64::min);
-    let value = |pv: f64| text::number(pv, 0);
-    let wide = years.iter().map(|c| text::width(&value(c.pv))).max().unwrap_or(0).max(8);
-    let rows = usize::from(area.height.saturating_sub(1)).max(1);
-    // As many columns of years as are needed and fit.
-    let column = 5 + 2 + wide + 2 + 12 + 4;
-    for (n, choice) in years.iter().enumerate() {
-        let (x, y) = (n / rows * column, n % rows + 1);
-        let year = year(a.first_year, choice);
-        let mark = if choice.pv == least { "least" } else { "" };
-        let line = format!(
-            " {year}  {}  {} {mark}",
-            text::right(&value(choice.pv), wide),
-            text::left(desk.offer_name(choice.offer), 12),
-        );
-        let x = u16::try_from(x).unwrap_or(u16::MAX);
-        if x < area.width {
-            let at = Rect { x: area.x + x, width: area.width - x, ..area };
-            let style = if choice.pv == least { theme.heading() } else { theme.plain() };
-            put(buffer, at, u16::try_from(y).unwrap_or(u16::MAX), &line, style);
-        }
-    }
+    let best = known.decision.best.map(|choice| (year(a.first_year, &choice), choice.pv));
+    chart::draw(theme, &points, best, &keep, below, buffer);
 }

@@ -48,11 +48,12 @@ pub(super) fn lines(app: &App, cells: usize) -> Vec<Line<'static>> {
             }
         }
     }
-    let record = app.unit.record.as_deref().cloned().unwrap_or_else(|| of_columns(desk, i));
+    let record = super::record(app, desk, i);
     lines.push(Line::styled("Record", theme.heading()));
     for (column, value) in Unit::COLUMNS.iter().zip(record.values()) {
         if !matches!(column.name, "unit" | "site") && value != Value::Blank {
-            lines.push(fact(column.name, &shown(column, &value, currency), cells));
+            let shown = shown(column, &value, currency);
+            lines.push(fact(column.name, &theme.spell(&shown), cells));
         }
     }
     lines
@@ -81,7 +82,7 @@ fn shown(column: &Column, value: &Value, currency: &str) -> String {
 }
 
 /// What the columns of the fleet hold of a unit's record.
-fn of_columns(desk: &Desk, i: usize) -> Unit {
+pub(super) fn of_columns(desk: &Desk, i: usize) -> Unit {
     let f = desk.fleet.facts(i);
     let known = |x: f64| (!x.is_nan()).then_some(x);
     #[expect(clippy::cast_possible_truncation, reason = "whole and small")]

@@ -3,6 +3,7 @@
 
 use rustc_hash::FxHashMap;
 
+use crate::engine::columns::{Insulation, WindingMetal};
 use crate::engine::decision::fit::Terminals;
 use crate::engine::decision::place::UnitFacts;
 
@@ -110,6 +111,8 @@ macro_rules! columns {
             pub kind: Vec<u32>,
             /// The kinds of terminals that occur.
             pub terminals: Vec<Terminals>,
+            pub winding_metal: Vec<Option<WindingMetal>>,
+            pub insulation: Vec<Option<Insulation>>,
             $(pub $name: Numbers,)+
             kinds: Kinds,
         }
@@ -121,6 +124,9 @@ macro_rules! columns {
                 UnitFacts {
                     in_service: self.in_service[i],
                     profile: self.profile[i],
+                    phases: self.terminals[self.kind[i] as usize].phases,
+                    winding_metal: self.winding_metal[i],
+                    insulation: self.insulation[i],
                     $($name: self.$name.get(i),)+
                 }
             }
@@ -133,6 +139,8 @@ macro_rules! columns {
                 self.profile.reserve(more);
                 self.site.reserve(more);
                 self.kind.reserve(more);
+                self.winding_metal.reserve(more);
+                self.insulation.reserve(more);
                 $(self.$name.reserve(more);)+
             }
 
@@ -152,6 +160,8 @@ macro_rules! columns {
                 self.in_service.push(facts.in_service);
                 self.profile.push(facts.profile);
                 self.kind.push(kind);
+                self.winding_metal.push(facts.winding_metal);
+                self.insulation.push(facts.insulation);
                 $(self.$name.push(facts.$name);)+
             }
 
@@ -163,6 +173,8 @@ macro_rules! columns {
                 self.row.append(&mut other.row);
                 self.in_service.append(&mut other.in_service);
                 self.profile.append(&mut other.profile);
+                self.winding_metal.append(&mut other.winding_metal);
+                self.insulation.append(&mut other.insulation);
                 self.kind.extend(other.kind.iter().map(|kind| kinds[*kind as usize]));
                 $(self.$name.append(&mut other.$name);)+
             }

@@ -6,7 +6,7 @@ use super::*;
 use crate::engine::columns::{Basis, CapitalRecovery, CashFlow};
 use crate::engine::decision::fit::Terminals;
 use crate::engine::decision::keep_or_replace::decide;
-use crate::engine::decision::place::UnitFacts;
+use crate::engine::decision::place::{UnitFacts, resolve};
 use crate::engine::loading::{Market, Ratios, Weights};
 use crate::engine::transformer::losses::Losses;
 
@@ -117,6 +117,9 @@ fn unit() -> impl Strategy<Value = UnitFacts> {
             removal_cost: f.1,
             scrap_value: f64::NAN,
             customers: f64::NAN,
+            phases: None,
+            winding_metal: None,
+            insulation: None,
             profile,
         })
 }
@@ -138,6 +141,7 @@ fn context(basis: &Basis) -> Context {
         },
         ratios: vec![ratios(0.5, 0.3), ratios(0.7, 0.55)],
         candidates: Vec::new(),
+        estimate: None,
         flags: Flags::NONE,
     }
 }

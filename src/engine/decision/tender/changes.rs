@@ -9,7 +9,62 @@ use super::{Plane, Rates};
 use crate::engine::Refusal;
 use crate::engine::columns::Lot;
 use crate::engine::economics::loss_factors::LossFactors;
-use crate::engine::working::Silent;
+use crate::engine::working::{Formula, Recorder, Silent};
+
+const BY: Formula = Formula {
+    name: "move at which another bid costs as much as the winner",
+    symbol: "by",
+    formula: "lead/slope",
+    unit: "",
+    source: "a rival's lead over the winner is linear in this input; methods, section 8",
+};
+const BY_LOAD: Formula = Formula {
+    name: "move of the peak load at which another bid costs as much as the winner",
+    symbol: "by",
+    formula: "|√(B_there/B_rated) − peak|",
+    unit: "pu",
+    source: "B is proportional to the square of the load; methods, section 8",
+};
+const BY_RATE: Formula = Formula {
+    name: "move of the discount rate at which another bid costs as much as the winner",
+    symbol: "by",
+    formula: "100·|i_there − i|",
+    unit: "%",
+    source: "searched outward from today's rate and bisected to 1e-9 points; methods, section 8",
+};
+const NEAREST_A: Formula = Formula {
+    name: "A of the nearest pair at which another bid costs as much as the winner",
+    symbol: "A_there",
+    formula: "foot on the line of equal cost, or where it meets an axis",
+    unit: "money/kW",
+    source: "methods, section 8",
+};
+const NEAREST_B: Formula =
+    Formula { name: "B of the nearest pair", symbol: "B_there", ..NEAREST_A };
+const DISTANCE: Formula = Formula {
+    name: "distance of the nearest pair from today's",
+    symbol: "distance",
+    formula: "√((A_there − A)² + (B_there − B)²)",
+    unit: "money/kW",
+    source: "definition; methods, section 8",
+};
+
+/// States the move of an input on one side.
+fn state_move<R: Recorder>(
+    w: &mut R,
+    formula: &'static Formula,
+    inputs: &[(&str, f64)],
+    by: f64,
+    (quantity, up): (&str, bool),
+) {
+    w.step(formula, inputs, by);
+    w.about(&|| format!("{quantity} {}", side(up)));
+}
+
+/// How the working of a change names its sides.
+pub fn side(up: bool) -> &'static str {
+    if up { "up" } else { "down" }
+}
 
 /// Where the winner changes on one side of today's value.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -76,51 +131,58 @@ impl Field<'_> {
     }
 
     /// The change of an input in which each rival's lead is linear; `slope` is that of a rival's lead.
-    fn linear(
+    fn linear<R: Recorder>(
         &self,
+        w: &mut R,
         quantity: &'static str,
         base: f64,
-        least_value: f64,
         slope: impl Fn(&Plane, &Plane) -> f64,
     ) -> Change {
-        let mut change = Change { quantity, base, down: None, up: None };
-        let nearer = |side: &mut Option<Move>, by: f64, to: f64, bid: usize| {
-            if side.is_none_or(|other| by < other.by) {
-                *side = Some(Move { by, to, bid });
-            }
-        };
-        for (j, lead) in self.leads(&self.factors) {
-            let slope = slope(&self.planes[j], &self.planes[self.winner]);
+        // Down, up: the nearest move with the lead and the slope that give it.
+        let mut nearest: [Option<(Move, f64, f64)>; 2] = [None; 2];
+        for (bid, lead) in self.leads(&self.factors) {
+            let slope = slope(&self.planes[bid], &self.planes[self.winner]);
             // A tie that the order has broken can leave a lead below zero by rounding.
-            let by = lead.max(0.0) / slope.abs();
-            if slope < 0.0 && by.is_finite() {
-                nearer(&mut change.up, by, base + by, j);
-            } else if slope > 0.0 && by.is_finite() && base - by >= least_value {
-                nearer(&mut change.down, by, base - by, j);
+            let lead = lead.max(0.0);
+            let by = lead / slope.abs();
+            let up = slope < 0.0;
+            let to = if up { base + by } else { base - by };
+            if !by.is_finite() || (!up && to < 0.0) {
+                continue;
+            }
+            let side = &mut nearest[usize::from(up)];
+            if side.is_none_or(|(other, ..)| by < other.by) {
+                *side = Some((Move { by, to, bid }, lead, slope.abs()));
             }
         }
-        change
+        let mut told = |up: bool| {
+            let (change, lead, slope) = nearest[usize::from(up)]?;
+            state_move(w, &BY, &[("lead", lead), ("slope", slope)], change.by, (quantity, up));
+            Some(change)
+        };
+        Change { quantity, base, down: told(false), up: told(true) }
     }
 
     /// A, B and A_aux.
-    pub fn of_factors(&self) -> [Change; 3] {
+    pub fn of_factors<R: Recorder>(&self, w: &mut R) -> [Change; 3] {
         let f = &self.factors;
         [
-            self.linear("factor_a_per_kw", f.factor_a_per_kw, 0.0, |rival, winner| {
+            self.linear(w, "factor_a_per_kw", f.factor_a_per_kw, |rival, winner| {
                 rival.no_load_kw - winner.no_load_kw
             }),
-            self.linear("factor_b_per_kw", f.factor_b_per_kw, 0.0, |rival, winner| {
+            self.linear(w, "factor_b_per_kw", f.factor_b_per_kw, |rival, winner| {
                 rival.load_kw - winner.load_kw
             }),
-            self.linear("factor_aux_per_kw", f.factor_aux_per_kw, 0.0, |rival, winner| {
+            self.linear(w, "factor_aux_per_kw", f.factor_aux_per_kw, |rival, winner| {
                 rival.auxiliary_kw - winner.auxiliary_kw
             }),
         ]
     }
 
     /// What the winner itself quotes: price, no-load and load loss (W, at its rating). `own` are its factors.
-    pub fn of_winner(
+    pub fn of_winner<R: Recorder>(
         &self,
+        w: &mut R,
         price: f64,
         no_load_loss_w: f64,
         load_loss_w: f64,
@@ -128,9 +190,9 @@ impl Field<'_> {
     ) -> [Change; 3] {
         let (a, b) = (own.factor_a_per_kw, own.factor_b_per_kw);
         [
-            self.linear("price", price, 0.0, |_, _| -1.0),
-            self.linear("no_load_loss_w", no_load_loss_w, 0.0, |_, _| -a / 1000.0),
-            self.linear("load_loss_w", load_loss_w, 0.0, |_, _| -b / 1000.0),
+            self.linear(w, "price", price, |_, _| -1.0),
+            self.linear(w, "no_load_loss_w", no_load_loss_w, |_, _| -a / 1000.0),
+            self.linear(w, "load_loss_w", load_loss_w, |_, _| -b / 1000.0),
         ]
     }
 
@@ -138,23 +200,27 @@ impl Field<'_> {
     ///
     /// # Errors
     /// The factors cannot be computed.
-    pub fn of_basis(
+    pub fn of_basis<R: Recorder>(
         &self,
+        w: &mut R,
         lot: &Lot,
         rates: &Rates,
         basis: &BasisForFactors,
     ) -> Result<Vec<Change>, Refusal> {
-        let mut changes =
-            vec![discount_rate(self, lot, rates, basis)?, energy_price(self, lot, rates, basis)?];
+        let mut changes = vec![
+            discount_rate(w, self, lot, rates, basis)?,
+            energy_price(w, self, lot, rates, basis)?,
+        ];
         if let (true, Some(peak)) = (Computed::by(lot).b, lot.peak_pu) {
-            changes.push(load(self, peak, lot, rates, basis)?);
+            changes.push(load(w, self, peak, lot, rates, basis)?);
         }
         Ok(changes)
     }
 }
 
 /// The factors are linear in the energy price, in both methods.
-fn energy_price(
+fn energy_price<R: Recorder>(
+    w: &mut R,
     field: &Field,
     lot: &Lot,
     rates: &Rates,
@@ -171,7 +237,7 @@ fn energy_price(
     let b = one.factor_b_per_kw - free.factor_b_per_kw;
     let aux = one.factor_aux_per_kw - free.factor_aux_per_kw;
     let base = basis.market.constant.price_per_kwh;
-    Ok(field.linear("energy_price_per_kwh", base, 0.0, |rival, winner| {
+    Ok(field.linear(w, "energy_price_per_kwh", base, |rival, winner| {
         a * (rival.no_load_kw - winner.no_load_kw)
             + b * (rival.load_kw - winner.load_kw)
             + aux * (rival.auxiliary_kw - winner.auxiliary_kw)
@@ -179,7 +245,8 @@ fn energy_price(
 }
 
 /// B is proportional to the square of the load, in both methods; A and A_aux do not depend on it.
-fn load(
+fn load<R: Recorder>(
+    w: &mut R,
     field: &Field,
     peak_pu: f64,
     lot: &Lot,
@@ -188,16 +255,22 @@ fn load(
 ) -> Result<Change, Refusal> {
     let full = Lot { peak_pu: Some(1.0), ..lot.clone() };
     let b_at_rated = of_lot(&mut Silent, &full, rates, Some(basis))?.0.factor_b_per_kw;
-    let [_, factor_b, _] = field.of_factors();
-    let moved = |b: Move| {
+    let [_, factor_b, _] = field.of_factors(&mut Silent);
+    let mut moved = |b: Option<Move>, up| {
+        let b = b?;
         let to = (b.to / b_at_rated).sqrt();
-        to.is_finite().then(|| Move { by: (to - peak_pu).abs(), to, bid: b.bid })
+        let by = (to - peak_pu).abs();
+        let inputs = [("B_there", b.to), ("B_rated", b_at_rated), ("peak", peak_pu)];
+        to.is_finite().then(|| {
+            state_move(w, &BY_LOAD, &inputs, by, ("peak_pu", up));
+            Move { by, to, bid: b.bid }
+        })
     };
     Ok(Change {
         quantity: "peak_pu",
         base: peak_pu,
-        down: factor_b.down.and_then(moved),
-        up: factor_b.up.and_then(moved),
+        down: moved(factor_b.down, false),
+        up: moved(factor_b.up, true),
     })
 }
 
@@ -210,7 +283,8 @@ const STEPS: u32 = 64;
 
 /// The discount rate at which the winner changes, looked for between 0 and 100 % in 64 steps on each side and
 /// bisected to 1e-9 percentage points.
-fn discount_rate(
+fn discount_rate<R: Recorder>(
+    w: &mut R,
     field: &Field,
     lot: &Lot,
     rates: &Rates,
@@ -226,7 +300,7 @@ fn discount_rate(
         let equal = 1e-12 * standing.owning_cost.abs();
         Ok(standing.lead.filter(|lead| *lead < -equal).map(|_| standing.cheapest))
     };
-    let mut side = |end: f64| -> Result<Option<Move>, Refusal> {
+    let mut search = |end: f64, up: bool| -> Result<Option<Move>, Refusal> {
         let mut kept = today;
         for step in 1..=STEPS {
             let part = f64::from(step) / f64::from(STEPS);
@@ -242,6 +316,8 @@ fn discount_rate(
                     }
                 }
                 let by = 100.0 * (lost - today).abs();
+                let inputs = [("i_there", lost), ("i", today)];
+                state_move(w, &BY_RATE, &inputs, by, ("discount_rate_pct", up));
                 return Ok(Some(Move { by, to: 100.0 * lost, bid }));
             }
             kept = rate;
@@ -252,8 +328,8 @@ fn discount_rate(
     Ok(Change {
         quantity: "discount_rate_pct",
         base: 100.0 * today,
-        down: if today > lowest { side(lowest)? } else { None },
-        up: if today < highest { side(highest)? } else { None },
+        down: if today > lowest { search(lowest, false)? } else { None },
+        up: if today < highest { search(highest, true)? } else { None },
     })
 }
 
@@ -269,7 +345,7 @@ pub struct NearestBorder {
 }
 
 /// The point of the quadrant A, B ≥ 0 nearest to today's at which another bid is as cheap as the winner.
-pub fn nearest_border(field: &Field) -> Option<NearestBorder> {
+pub fn nearest_border<R: Recorder>(w: &mut R, field: &Field) -> Option<NearestBorder> {
     let today = [field.factors.factor_a_per_kw, field.factors.factor_b_per_kw];
     let winner = field.planes[field.winner];
     let mut found: Vec<NearestBorder> = Vec::new();
@@ -288,7 +364,13 @@ pub fn nearest_border(field: &Field) -> Option<NearestBorder> {
             }
         }
     }
-    least(0..found.len(), |i| found[i].distance_per_kw).map(|i| found[i])
+    let nearest = least(0..found.len(), |i| found[i].distance_per_kw).map(|i| found[i])?;
+    w.step(&NEAREST_A, &[], nearest.at[0]);
+    w.step(&NEAREST_B, &[], nearest.at[1]);
+    let inputs =
+        [("A_there", nearest.at[0]), ("A", today[0]), ("B_there", nearest.at[1]), ("B", today[1])];
+    w.step(&DISTANCE, &inputs, nearest.distance_per_kw);
+    Some(nearest)
 }
 
 #[cfg(test)]
@@ -309,17 +391,18 @@ mod tests {
     fn moves_end_at_the_borders() {
         let planes = [plane(5000.0, 3.0, 4.0), plane(6000.0, 2.0, 4.0), plane(9000.0, 2.5, 3.0)];
         let field = field(&planes, 1, 2000.0, 500.0);
-        let [a, b, aux] = field.of_factors();
+        let [a, b, aux] = field.of_factors(&mut Silent);
         assert_eq!(a.down, Some(Move { by: 1000.0, to: 1000.0, bid: 0 }));
         assert_eq!(a.up, None, "bid 2 has more iron than the winner");
         assert_eq!(b.up, Some(Move { by: 3500.0, to: 4000.0, bid: 2 }));
         assert_eq!((b.down, aux.down, aux.up), (None, None, None));
-        let [price, iron, copper] = field.of_winner(6000.0, 2000.0, 4000.0, &field.factors);
+        let [price, iron, copper] =
+            field.of_winner(&mut Silent, 6000.0, 2000.0, 4000.0, &field.factors);
         assert_eq!(price.up, Some(Move { by: 1000.0, to: 7000.0, bid: 0 }));
         assert_eq!(iron.up.map(|up| up.by), Some(500.0));
         assert_eq!(copper.up.map(|up| up.by), Some(2000.0));
         assert_eq!((price.down, iron.down, copper.down), (None, None, None));
-        let border = nearest_border(&field).expect("has rivals");
+        let border = nearest_border(&mut Silent, &field).expect("has rivals");
         assert_eq!((border.at, border.distance_per_kw, border.bid), ([1000.0, 500.0], 1000.0, 0));
     }
 
@@ -328,15 +411,15 @@ mod tests {
     fn nearest_border_stays_in_the_quadrant() {
         let planes = [plane(0.0, 1.0, 1.0), plane(100.0, 1.0 - 0.5, 1.0 + 0.5)];
         // lead = 100 − 0.5 A + 0.5 B; today (10, 5): the foot would have B below zero.
-        let border = nearest_border(&field(&planes, 0, 10.0, 5.0)).expect("one rival");
+        let border = nearest_border(&mut Silent, &field(&planes, 0, 10.0, 5.0)).expect("one rival");
         assert_eq!(border.at, [200.0, 0.0]);
-        assert_eq!(nearest_border(&field(&planes[..1], 0, 1.0, 1.0)), None);
+        assert_eq!(nearest_border(&mut Silent, &field(&planes[..1], 0, 1.0, 1.0)), None);
     }
 
     #[test]
     fn a_tie_is_a_border() {
         let planes = [plane(10.0, 1.0, 1.0), plane(5.0, 2.0, 1.0)];
-        let [a, ..] = field(&planes, 0, 5.0, 1.0).of_factors();
+        let [a, ..] = field(&planes, 0, 5.0, 1.0).of_factors(&mut Silent);
         assert_eq!(a.down.map(|down| down.by), Some(0.0));
         assert_eq!(a.up, None);
     }

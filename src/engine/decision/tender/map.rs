@@ -7,6 +7,7 @@
 use super::Plane;
 use crate::engine::decision::equal_pv;
 use crate::engine::economics::loss_factors::LossFactors;
+use crate::engine::working::{Formula, Recorder, Silent};
 
 /// Distances below this part of the box are rounding: such vertices are one, such cells are none.
 const ROUNDING: f64 = 1e-11;
@@ -21,6 +22,49 @@ pub struct Cell {
     pub share: f64,
     /// Its corners, counter-clockwise from the least A, then least B; empty where it wins nowhere.
     pub polygon: Vec<Point>,
+    /// The same corners in parts of the box.
+    in_box: Vec<Point>,
+}
+
+const SIDE: Formula = Formula {
+    name: "how far the box of the map reaches",
+    symbol: "max",
+    formula: "the greater of 2·factor and 1",
+    unit: "money/kW",
+    source: "methods, section 8",
+};
+const CORNER: Formula = Formula {
+    name: "corner of what the bid wins: where it costs as much as another, or the edge of the box",
+    symbol: "x",
+    formula: "part·max",
+    unit: "money/kW",
+    source: "half-plane intersection in the box of 1 by 1; methods, section 8",
+};
+const SHARE: Formula = Formula {
+    name: "part of the box that the bid wins",
+    symbol: "share",
+    formula: "½·Σ_k ((u_k − u_0)·(v_{k+1} − v_0) − (u_{k+1} − u_0)·(v_k − v_0))",
+    unit: "",
+    source: "area of a polygon, corners (u, v) in parts of the box; methods, section 8",
+};
+
+/// How far the box reaches along one axis, from today's factor.
+pub fn side<R: Recorder>(w: &mut R, factor: f64) -> f64 {
+    w.step(&SIDE, &[("factor", factor)], (2.0 * factor).max(1.0))
+}
+
+impl Cell {
+    /// The part of the box, stated from its corners.
+    pub fn share<R: Recorder>(&self, w: &mut R) -> f64 {
+        let value = if self.in_box.is_empty() { 0.0 } else { area(&self.in_box) };
+        w.step(&SHARE, &[], value)
+    }
+
+    /// A corner along one axis (0 = A, 1 = B) in a box that reaches to `max`; none beyond the last.
+    pub fn corner<R: Recorder>(&self, w: &mut R, k: usize, axis: usize, max: f64) -> Option<f64> {
+        let part = *self.in_box.get(k)?.get(axis)?;
+        Some(w.step(&CORNER, &[("part", part), ("max", max)], part * max))
+    }
 }
 
 /// Which bid wins where.
@@ -74,8 +118,8 @@ impl WinnerMap {
     /// The map over 0..2A × 0..2B of today's factors, at least 1 per kW each. Of bids that are equal all over
     /// the box the one entered first wins.
     pub fn new(planes: &[Plane], today: &LossFactors) -> Self {
-        let a_max = (2.0 * today.factor_a_per_kw).max(1.0);
-        let b_max = (2.0 * today.factor_b_per_kw).max(1.0);
+        let a_max = side(&mut Silent, today.factor_a_per_kw);
+        let b_max = side(&mut Silent, today.factor_b_per_kw);
         let units: Vec<Unit> = planes
             .iter()
             .map(|plane| Unit {
@@ -293,6 +337,7 @@ fn cell(unit: &[Point], a_max: f64, b_max: f64) -> Cell {
     Cell {
         share: area(&corners),
         polygon: corners.iter().map(|&[u, v]| [u * a_max, v * b_max]).collect(),
+        in_box: corners,
     }
 }
 

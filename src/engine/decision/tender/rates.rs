@@ -61,11 +61,8 @@ impl<'a> Rates<'a> {
         })
     }
 
-    /// `own` units of a currency at `rate`; at a rate of 1 nothing is stated.
+    /// `own` units of a currency at `rate`.
     pub fn convert<R: Recorder>(w: &mut R, own: f64, rate: f64, of: &'static str) -> f64 {
-        if rate == 1.0 {
-            return own;
-        }
         let value = w.step(&CONVERTED, &[("own", own), ("rate", rate)], own * rate);
         w.about(&|| of.to_owned());
         value

@@ -130,8 +130,7 @@ const MEAN: Formula = Formula {
 
 /// Mean excess of the tested units; an auxiliary loss that was not measured is no excess.
 pub fn mean<R: Recorder>(w: &mut R, units: &[Excess]) -> Excess {
-    #[expect(clippy::cast_precision_loss, reason = "a lot has at most ten million units")]
-    let n = units.len().max(1) as f64;
+    let n = count(units.len().max(1));
     let mut mean = |of: &'static str, part: &dyn Fn(&Excess) -> f64| {
         let sum: f64 = units.iter().map(part).sum();
         let value = w.step(&MEAN, &[("sum", sum), ("n", n)], sum / n);
@@ -171,11 +170,61 @@ pub fn penalty<R: Recorder>(w: &mut R, factors: &LossFactors, excess: &Excess) -
     w.step(&PENALTY, &inputs, value)
 }
 
+const OF_UNITS: Formula = Formula {
+    name: "penalty of all measured units",
+    symbol: "penalty_lot",
+    formula: "Σ penalty of each unit",
+    unit: "money",
+    source: "methods, section 8",
+};
+const OF_MEAN: Formula = Formula {
+    name: "penalty of all measured units, from that of the mean unit",
+    symbol: "penalty_lot",
+    formula: "penalty·n",
+    unit: "money",
+    source: "methods, section 8",
+};
+const MEAN_COST: Formula = Formula {
+    name: "mean owning cost of the measured units as delivered",
+    symbol: "TOC_mean",
+    formula: "Σ TOC of each unit/n",
+    unit: "money",
+    source: "definition",
+};
+
+/// Penalty of all units, each settled on its own.
+pub fn penalty_of_units<R: Recorder>(w: &mut R, penalties: impl Iterator<Item = f64>) -> f64 {
+    let sum = penalties.fold(0.0, |sum, penalty| sum + penalty);
+    w.step(&OF_UNITS, &[], sum)
+}
+
+/// Penalty of `n` units settled on their mean.
+pub fn penalty_of_mean<R: Recorder>(w: &mut R, penalty: f64, n: usize) -> f64 {
+    let n = count(n);
+    w.step(&OF_MEAN, &[("penalty", penalty), ("n", n)], penalty * n)
+}
+
+/// Mean of the owning costs of `n` units.
+pub fn mean_cost<R: Recorder>(w: &mut R, costs: impl Iterator<Item = f64>, n: usize) -> f64 {
+    let (sum, n) = (costs.fold(0.0, |sum, cost| sum + cost), count(n));
+    w.step(&MEAN_COST, &[("n", n)], sum / n)
+}
+
+#[expect(clippy::cast_precision_loss, reason = "a lot has at most ten million units")]
+fn count(n: usize) -> f64 {
+    n as f64
+}
+
 /// What of the lot's tolerance a unit exceeds, and whether it may be rejected for that: beyond the total of
 /// IEEE C57.12.00 the parties consult.
-pub fn beyond(terms: &Terms, guaranteed: &Comparable, excess: &Excess) -> (Vec<Exceeded>, bool) {
+pub fn beyond<R: Recorder>(
+    w: &mut R,
+    terms: &Terms,
+    guaranteed: &Comparable,
+    excess: &Excess,
+) -> (Vec<Exceeded>, bool) {
     let rule = terms.tolerance();
-    let found = tolerance::exceeded(rule, &guaranteed.losses, excess.no_load_w, excess.load_w);
+    let found = tolerance::exceeded(w, rule, &guaranteed.losses, excess.no_load_w, excess.load_w);
     let rejectable = !found.is_empty() && rule != Tolerance::Ieee;
     (found, rejectable)
 }

@@ -93,9 +93,18 @@ pub struct Exceeded {
     pub allowed_pct: f64,
 }
 
+const EXCESS_PCT: Formula = Formula {
+    name: "loss above the guarantee in percent of it",
+    symbol: "ΔP_pct",
+    formula: "100·ΔP/P",
+    unit: "%",
+    source: "IEC 60076-1 Table 1, IEEE C57.12.00 clause 9; methods, section 8",
+};
+
 /// The parts of the rule that losses `no_load_excess_w` and `load_excess_w` above (below: negative) the guarantees
 /// exceed. The total counts the shortfall of one loss against the excess of the other.
-pub fn exceeded(
+pub fn exceeded<R: Recorder>(
+    w: &mut R,
     rule: Tolerance,
     guaranteed: &Losses,
     no_load_excess_w: f64,
@@ -111,12 +120,17 @@ pub fn exceeded(
         ("total loss", total, no_load_excess_w + load_excess_w, p0 + pk),
     ];
     // Equality passes, also after the rounding of a temperature correction.
-    let above = |(loss, room, excess, base): (&'static str, Option<f64>, f64, f64)| {
+    let mut above = |(loss, room, excess, base): (&'static str, Option<f64>, f64, f64)| {
         let room = room.filter(|room| excess > room * base + 1e-12 * base)?;
-        let excess_pct = (base > 0.0).then(|| 100.0 * excess / base);
+        let excess_pct = (base > 0.0).then(|| {
+            let value = 100.0 * excess / base;
+            w.step(&EXCESS_PCT, &[("ΔP", excess), ("P", base)], value);
+            w.about(&|| loss.to_owned());
+            value
+        });
         Some(Exceeded { loss, excess_pct, allowed_pct: 100.0 * room })
     };
-    parts.into_iter().filter_map(above).collect()
+    parts.into_iter().filter_map(&mut above).collect()
 }
 
 #[cfg(test)]
@@ -165,7 +179,7 @@ mod tests {
     #[test]
     fn equality_is_within() {
         let guaranteed = losses(1000.0, 4000.0);
-        let beyond = |rule, x, y| !exceeded(rule, &guaranteed, x, y).is_empty();
+        let beyond = |rule, x, y| !exceeded(&mut Silent, rule, &guaranteed, x, y).is_empty();
         assert!(!beyond(Tolerance::Iec, 150.0, 350.0) && beyond(Tolerance::Iec, 150.1, 0.0));
         assert!(beyond(Tolerance::Iec, 100.0, 401.0) && !beyond(Tolerance::Iec, -200.0, 600.0));
         assert!(!beyond(Tolerance::Ieee, 100.0, 200.0) && beyond(Tolerance::Ieee, 0.0, 301.0));
@@ -174,14 +188,14 @@ mod tests {
 
     #[test]
     fn what_is_exceeded_is_named() {
-        let found = exceeded(Tolerance::Iec, &losses(1000.0, 4000.0), 170.0, 400.0);
+        let found = exceeded(&mut Silent, Tolerance::Iec, &losses(1000.0, 4000.0), 170.0, 400.0);
         let part = |loss, excess_pct, allowed_pct| Exceeded {
             loss,
             excess_pct: Some(excess_pct),
             allowed_pct,
         };
         assert_eq!(found, [part("no-load loss", 17.0, 15.0), part("total loss", 11.4, 10.0)]);
-        let nothing = exceeded(Tolerance::None, &losses(0.0, 4000.0), 1.0, 0.0);
+        let nothing = exceeded(&mut Silent, Tolerance::None, &losses(0.0, 4000.0), 1.0, 0.0);
         assert_eq!((nothing.len(), nothing[0].excess_pct), (1, None));
     }
 

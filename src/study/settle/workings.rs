@@ -1,0 +1,180 @@
+//! The figures of a settlement opened: what was guaranteed, what was measured, and what the difference costs.
+
+use super::{Guarantee, LotSettlement, settle};
+use crate::engine::columns::{Measured, Settlement};
+use crate::engine::decision::place::stated::{LOAD_LOSS, said};
+use crate::engine::decision::tender::settlement::{
+    beyond, delivered, mean, mean_cost, penalty, penalty_of_mean, penalty_of_units,
+};
+use crate::engine::working::{Recorder as _, Silent, Step, Working};
+use crate::study::StudyError;
+use crate::study::explain::{Explained, nth, numbers};
+use crate::study::tender::{Case, bring, factors, find_bid, find_lot};
+
+/// Numbers that were stated as they are: by the bid, the lot, the rule or the test.
+const LABELS: &[&str] = &[
+    "quantity",
+    "rated_kva",
+    "no_load_loss_w",
+    "auxiliary_loss_w",
+    "reference_temp_c",
+    "test_load_loss_w",
+    "test_temp_c",
+    "allowed_pct",
+];
+
+/// The settlement of a tender as a result that can be opened.
+#[derive(Clone, Copy, Debug)]
+pub struct Settled<'a>(pub &'a Case);
+
+impl Explained for Settled<'_> {
+    fn called(&self) -> String {
+        format!("the settlement of tender {}", self.0.sheet.tender.tender)
+    }
+
+    fn figures(&self) -> Result<Vec<(String, f64)>, StudyError> {
+        let result = settle(&self.0.sheet, self.0.basis().as_ref(), None)?;
+        Ok(numbers(&result, &[], LABELS))
+    }
+
+    fn state(&self, w: &mut Working, place: &[&str]) -> Result<(), StudyError> {
+        let (sheet, basis) = (&self.0.sheet, self.0.basis());
+        let basis = basis.as_ref();
+        let result = settle(sheet, basis, None)?;
+        let ["lots", n, place @ ..] = place else { return Ok(()) };
+        let (settled, _) = nth(&result.lots, n)?;
+        let lot = find_lot(sheet, &settled.lot)?;
+        let bid = find_bid(sheet, &settled.lot, &settled.bid)?;
+        let guarantee = Guarantee::new(sheet, basis, lot, bid)?;
+        match place {
+            ["units", m, place @ ..] => {
+                let (_, m) = nth(&settled.units, m)?;
+                return guarantee.state_unit(w, guarantee.units[m], place);
+            }
+            ["penalty"] => guarantee.state_lot_penalty(w, settled)?,
+            ["owning_cost_promised"] => {
+                bring(w, &guarantee.terms, bid)?.owning_cost(w);
+            }
+            ["owning_cost_delivered"] => {
+                for unit in &guarantee.units {
+                    guarantee.as_delivered(&mut Silent, unit).owning_cost(w);
+                    w.about(&|| unit.serial.clone());
+                }
+                let costs = settled.units.iter().map(|unit| unit.owning_cost_delivered);
+                mean_cost(w, costs, settled.units.len());
+            }
+            ["guaranteed", _] => {
+                let mut all = Working::default();
+                let promised = bring(&mut all, &guarantee.terms, bid)?;
+                load_loss(w, all, promised.losses.load_loss_w, "as guaranteed");
+            }
+            ["mean_excess", quantity] => {
+                let mut all = Working::default();
+                mean(&mut all, &guarantee.excesses());
+                w.append(about(all, loss_of(quantity)));
+            }
+            _ => {
+                let (_, steps) = factors(sheet, basis, &lot.lot)?;
+                let mut all = Working::default();
+                all.append(steps);
+                bring(&mut all, &guarantee.terms, bid)?;
+                w.append(all.only(match place {
+                    ["factor_a_per_kw"] => &["A"],
+                    ["factor_b_per_kw"] => &["B", "B_bid"],
+                    _ => &["A_aux"],
+                }));
+            }
+        }
+        Ok(())
+    }
+}
+
+/// The loss that a quantity is of, as the steps name it.
+fn loss_of(quantity: &str) -> &'static str {
+    match quantity {
+        "no_load_excess_w" => "no-load loss",
+        "load_excess_w" => "load loss",
+        _ => "auxiliary loss",
+    }
+}
+
+fn about(all: Working, of: &str) -> impl Iterator<Item = Step> + '_ {
+    all.into_steps().into_iter().filter(move |step| step.of == of)
+}
+
+/// A load loss: how it came to the rating and the reference temperature, else that it is as stated.
+fn load_loss(w: &mut Working, all: Working, value: f64, origin: &str) {
+    let steps = all.only(&["Pk_base", "Pk"]);
+    if steps.is_empty() {
+        said(w, &LOAD_LOSS, value, origin);
+    }
+    w.append(steps);
+}
+
+impl Guarantee<'_> {
+    /// States the penalty of a unit; under `lot-mean` its equal part of the lot's.
+    pub(super) fn state_penalty(&self, w: &mut Working, unit: &Measured) -> Result<(), StudyError> {
+        let promise = bring(w, &self.terms, self.bid)?;
+        let own = delivered(w, &self.terms, self.bid, &promise, unit).excess;
+        let counted = match self.rule() {
+            Settlement::Unit => own,
+            Settlement::LotMean => mean(w, &self.excesses()),
+        };
+        penalty(w, &promise.factors, &counted);
+        Ok(())
+    }
+
+    fn state_lot_penalty(
+        &self,
+        w: &mut Working,
+        settled: &LotSettlement,
+    ) -> Result<(), StudyError> {
+        if let (Settlement::LotMean, Some(unit)) = (self.rule(), self.units.first()) {
+            self.state_penalty(w, unit)?;
+            let of_mean = settled.units.first().map_or(0.0, |unit| unit.penalty);
+            penalty_of_mean(w, of_mean, settled.units.len());
+            return Ok(());
+        }
+        for unit in &self.units {
+            let mut all = Working::default();
+            self.state_penalty(&mut all, unit)?;
+            w.append(all.into_steps().pop());
+            w.about(&|| unit.serial.clone());
+        }
+        penalty_of_units(w, settled.units.iter().map(|unit| unit.penalty));
+        Ok(())
+    }
+
+    fn state_unit(
+        &self,
+        w: &mut Working,
+        unit: &Measured,
+        place: &[&str],
+    ) -> Result<(), StudyError> {
+        let mut all = Working::default();
+        let measured = delivered(&mut all, &self.terms, self.bid, &self.promise, unit);
+        match place {
+            ["penalty"] => self.state_penalty(w, unit)?,
+            ["owning_cost_delivered"] => {
+                self.as_delivered(w, unit).owning_cost(w);
+            }
+            ["load_loss_w"] => load_loss(w, all, measured.losses.load_loss_w, "as measured"),
+            ["exceeds", n, _] => {
+                let mut parts = Working::default();
+                let excess = &measured.excess;
+                let (found, _) = beyond(&mut parts, &self.terms, &self.promise, excess);
+                let (found, _) = nth(&found, n)?;
+                w.append(about(parts, found.loss));
+            }
+            [quantity] => {
+                let of = loss_of(quantity);
+                // A measured load loss comes to the reference temperature first.
+                let wanted =
+                    |step: &Step| step.of == of || (of == "load loss" && step.of.is_empty());
+                w.append(all.into_steps().into_iter().filter(wanted));
+            }
+            _ => {}
+        }
+        Ok(())
+    }
+}

@@ -1,0 +1,278 @@
+//! The commands as a script meets them: exit status, what stands on which stream, what is written where.
+
+mod support;
+
+use std::io::Read as _;
+use std::process::{Output, Stdio};
+
+use serde_json::Value;
+use support::{Program, demo_fleet};
+
+const BASIS: &str = r#"
+name = "flat"
+currency = "EUR"
+first_year = 2027
+horizon_years = 20
+discount_rate_pct = 5
+energy_price_per_kwh = 0.1
+life_years = 40
+"#;
+const UNITS: &str = "unit,rated_kva,phases,hv_kv,lv_kv,no_load_loss_w,load_loss_w,peak_kva,load_factor_pu,year_made,note\n\
+                     007,100,3,20,0.4,390,2100,80,0.5,1972,=1+1\n\
+                     B,100,3,20,0.4,,2100,80,0.5,1972,\n";
+const OFFERS: &str =
+    "offer,rated_kva,no_load_loss_w,load_loss_w,price\nN100,100,130,1250,5600.50\n";
+
+fn small() -> Program {
+    let program = Program::new();
+    program.import("units", &program.write("units.csv", UNITS), &[]);
+    program.import("offers", &program.write("offers.csv", OFFERS), &[]);
+    program.import("basis", &program.write("basis.toml", BASIS), &[]);
+    program
+}
+
+fn code(output: &Output) -> i32 {
+    output.status.code().expect("no signal")
+}
+
+fn errors(output: &Output) -> String {
+    String::from_utf8_lossy(&output.stderr).into_owned()
+}
+
+/// No NaN and no infinity ever appear; numbers of a document are finite.
+fn finite(value: &Value) {
+    match value {
+        Value::Array(list) => list.iter().for_each(finite),
+        Value::Object(map) => map.values().for_each(finite),
+        Value::Number(number) => assert!(number.as_f64().is_some_and(f64::is_finite)),
+        _ => {}
+    }
+}
+
+#[test]
+fn each_reading_command_writes_text_csv_and_one_json_document() {
+    let program = Program::new();
+    program.import_demo();
+    for command in [
+        &["rank", "--top", "5"][..],
+        &["losses", "--top", "5"],
+        &["factors"],
+        &["check"],
+        &["journal"],
+        &["unit", "ZQ-0105"],
+        &["tender", "ol-2027-1"],
+        &["settle", "ol-2027-1"],
+        &["columns", "units"],
+        &["work"],
+        &["work", "annuity", "discount_rate_pct=6", "years=30"],
+    ] {
+        let of = |format| [command, &["--format", format]].concat();
+        let json = program.json(&of("json"));
+        assert_eq!(json["schema_version"], 1, "{command:?}");
+        finite(&json);
+        let csv = program.done(&of("csv"));
+        let mut reader = csv::Reader::from_reader(csv.as_bytes());
+        assert!(reader.records().all(|row| row.is_ok()), "{command:?}: ragged CSV");
+        let text = program.done(&of("text"));
+        assert!(!text.contains('\u{1b}') && text.lines().count() > 1, "{command:?}");
+    }
+}
+
+#[test]
+fn the_demo_without_a_terminal_prints_ranking_and_tender() {
+    let program = Program::new();
+    let mut command = program.command(&["demo"]);
+    command.env_remove("IRONHUM_BOOK").env("XDG_DATA_HOME", program.home());
+    let output = command.output().expect("starts");
+    assert_eq!(code(&output), 0, "{}", errors(&output));
+    let text = String::from_utf8(output.stdout).expect("UTF-8");
+    assert!(text.contains("units ranked over 30 years") && text.contains("Lot L2"));
+    assert!(program.home().join("ironhum/demo.sqlite").exists());
+    assert!(!program.home().join("ironhum/book.sqlite").exists());
+}
+
+#[test]
+fn the_demo_is_never_written_into_the_named_book() {
+    let program = Program::new();
+    let mut command = program.command(&["demo"]);
+    command.env("XDG_DATA_HOME", program.home());
+    assert_eq!(code(&command.output().expect("starts")), 0);
+    assert!(!program.book().exists(), "IRONHUM_BOOK names the planner's book");
+    let read_only = program.run(&["demo", "--read-only"]);
+    assert_eq!(code(&read_only), 2);
+}
+
+#[test]
+fn exit_status_tells_wrong_use_from_rejected_input() {
+    let program = small();
+    let cases: &[(&[&str], i32, &str)] = &[
+        (&["rank", "--basis", "flit"], 2, "did you mean flat"),
+        (&["unit", "b"], 2, "did you mean B"),
+        (&["factors", "--peak-pu", "nan"], 3, "peak_pu"),
+        (&["factors", "--loss-factor-pu", "5"], 3, "loss_factor_pu 5"),
+        (&["factors", "--load-growth-pct", "-150"], 3, "load_growth_pct"),
+        (&["factors", "--load-factor-pu", "0.5", "--loss-factor-pu", "0.1"], 3, "LF²"),
+        (&["factors", "--profile", "none"], 2, "profile none"),
+        (&["work", "anuity"], 2, "annuity"),
+        (&["work", "annuity", "rate=6"], 2, "rate"),
+        (&["work", "annuity", "discount_rate_pct=-100", "years=3"], 3, "discount_rate_pct"),
+        (&["tender", "T1"], 2, "tender T1"),
+        (&["--book", "/nowhere/at/all", "rank"], 1, "/nowhere/at/all"),
+        (&["frobnicate"], 2, "frobnicate"),
+        (&["import", "units", "/nowhere.csv"], 1, "/nowhere.csv"),
+        (&[], 2, "terminal"),
+    ];
+    for (arguments, status, words) in cases {
+        let output = program.run(arguments);
+        assert_eq!(code(&output), *status, "{arguments:?}: {}", errors(&output));
+        assert!(output.stdout.is_empty(), "{arguments:?}: results only on standard output");
+        assert!(errors(&output).contains(words), "{arguments:?}: {}", errors(&output));
+    }
+}
+
+#[test]
+fn a_basis_that_cannot_be_computed_is_not_let_in() {
+    let program = small();
+    for (change, words) in [
+        ("horizon_years = 20", "horizon_years = 0"),
+        ("discount_rate_pct = 5", "discount_rate_pct = -100"),
+        ("energy_price_per_kwh = 0.1", "energy_price_per_kwh = 0.1\nprice_series = \"x\""),
+        ("energy_price_per_kwh = 0.1", ""),
+        ("life_years = 40", "law = \"eu\""),
+        ("life_years = 40", "voltage_model = \"drop\""),
+        (
+            "horizon_years = 20\ndiscount_rate_pct = 5",
+            "horizon_years = 200\ndiscount_rate_pct = -99",
+        ),
+    ]
+    .map(|(from, to)| (BASIS.replace(from, to).replace("flat", "other"), to))
+    {
+        let file = program.write("bad.toml", &change);
+        let output = program.run(&["import", "basis", &file.to_string_lossy()]);
+        assert_eq!(code(&output), 3, "{words}: {}", errors(&output));
+    }
+    assert_eq!(code(&program.run(&["rank"])), 0, "the book still has one basis");
+}
+
+#[test]
+fn a_second_basis_asks_which_and_one_can_be_made_current() {
+    let program = small();
+    let other = program.write("other.toml", BASIS.replace("flat", "other").replace("= 5", "= 9"));
+    program.import("basis", &other, &[]);
+    let output = program.run(&["rank"]);
+    assert_eq!(code(&output), 2);
+    assert!(errors(&output).contains("flat") && errors(&output).contains("other"));
+    program.import("basis", &other, &["--current"]);
+    assert_eq!(program.json(&["rank", "--format", "json"])["basis"], "other");
+    assert_eq!(program.json(&["rank", "--format", "json", "--basis", "flat"])["basis"], "flat");
+}
+
+#[test]
+fn units_left_out_are_named_with_the_reason() {
+    let program = small();
+    let result = program.json(&["rank", "--format", "json"]);
+    assert_eq!(result["totals"]["units"], 1);
+    assert_eq!(result["left_out"][0]["unit"], "B");
+    assert!(
+        result["left_out"][0]["why"].as_str().is_some_and(|why| why.contains("no_load_loss_w"))
+    );
+    assert_eq!(result["units"][0]["unit"], "007", "leading zeros count");
+    assert!(
+        program.done(&["rank"]).contains("1 units are left out")
+            || program.done(&["rank"]).contains("left out")
+    );
+}
+
+#[test]
+fn an_offer_without_a_life_is_named() {
+    let program = small();
+    let basis = BASIS.replace("life_years = 40", "").replace("flat", "lifeless");
+    program.import("basis", &program.write("lifeless.toml", basis), &[]);
+    let output = program.run(&["rank", "--basis", "lifeless"]);
+    assert_eq!(code(&output), 3);
+    assert!(errors(&output).contains("N100"), "{}", errors(&output));
+}
+
+#[test]
+fn a_reader_that_stops_early_is_a_quiet_end() {
+    let program = Program::new();
+    program.import_demo();
+    let mut child = program
+        .command(&["losses", "--format", "csv"])
+        .stdout(Stdio::piped())
+        .stderr(Stdio::piped())
+        .spawn()
+        .expect("starts");
+    let mut first = [0_u8; 16];
+    child.stdout.take().expect("piped").read_exact(&mut first).expect("something comes");
+    let output = child.wait_with_output().expect("ends");
+    assert!(output.status.success() && output.stderr.is_empty(), "{}", errors(&output));
+}
+
+#[test]
+fn the_same_question_gives_the_same_bytes() {
+    let program = Program::new();
+    program.import_demo();
+    let ask = |threads: &str| {
+        let mut command = program.command(&["rank", "--format", "json"]);
+        command.env("RAYON_NUM_THREADS", threads).output().expect("starts").stdout
+    };
+    assert_eq!(ask("1"), ask("2"));
+    assert_eq!(ask("2"), ask("2"));
+}
+
+#[cfg(unix)]
+#[test]
+fn a_book_where_nothing_can_be_written_is_read_as_it_stands() {
+    use std::os::unix::fs::PermissionsExt as _;
+    let program = small();
+    let closed = program.home().join("closed");
+    std::fs::create_dir(&closed).expect("made");
+    let copy = closed.join("copy.sqlite");
+    program.done(&["backup", &copy.to_string_lossy()]);
+    std::fs::set_permissions(&closed, std::fs::Permissions::from_mode(0o555)).expect("closed");
+    let output = program.run(&["--book", &copy.to_string_lossy(), "rank"]);
+    std::fs::set_permissions(&closed, std::fs::Permissions::from_mode(0o755)).expect("opened");
+    assert_eq!(code(&output), 0, "{}", errors(&output));
+}
+
+#[test]
+fn text_that_a_spreadsheet_would_run_is_defused_in_csv() {
+    let program = Program::new();
+    program.import("units", &program.write("u.csv", UNITS.replace("007", "=cmd")), &[]);
+    program.import("offers", &program.write("offers.csv", OFFERS), &[]);
+    program.import("basis", &program.write("basis.toml", BASIS), &[]);
+    assert!(program.done(&["rank", "--format", "csv"]).contains(",'=cmd,"));
+}
+
+#[test]
+fn timings_are_one_json_line_on_standard_error() {
+    let program = Program::new();
+    program.import_demo();
+    for command in [
+        &["rank", "--timings"][..],
+        &["losses", "--timings"],
+        &["--timings", "tender", "ol-2027-1"],
+    ] {
+        let output = program.run(command);
+        let errors = errors(&output);
+        let line: Value = serde_json::from_str(errors.trim()).expect("one JSON line");
+        assert!(line["total_s"].as_f64().is_some_and(|s| s > 0.0), "{command:?}");
+    }
+}
+
+#[test]
+fn the_demo_files_are_taken_twice_without_a_change() {
+    let program = Program::new();
+    program.import_demo();
+    let before = program.json(&["journal", "--format", "json", "--top", "1000"]);
+    for (what, file) in [
+        ("units", "units.csv"),
+        ("offers", "offers.csv"),
+        ("basis", "basis.toml"),
+        ("bids", "bids.csv"),
+    ] {
+        program.import(what, &demo_fleet(file), &[]);
+    }
+    assert_eq!(program.json(&["journal", "--format", "json", "--top", "1000"]), before);
+}
