@@ -34,7 +34,7 @@ pub(super) fn import(
     let rejects = match &options.rejects {
         None => None,
         Some(path) => {
-            let file = File::create(path).map_err(|error| {
+            let file = File::create_new(path).map_err(|error| {
                 Failure::new(Exit::Failed, format!("{}: {error}", path.display()))
             })?;
             Some(Box::new(BufWriter::new(file)) as Box<dyn std::io::Write>)

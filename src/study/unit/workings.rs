@@ -16,8 +16,9 @@ use crate::engine::working::{Step, Working};
 use crate::study::StudyError;
 use crate::study::explain::{Explained, numbers};
 
-/// Parts of a dossier that hold no figures: what the record says, and workings themselves.
-const NO_FIGURES: &[&str] = &["nameplate", "working"];
+/// Parts of a dossier that are not opened: what the record says, the regression behind an estimate (it tells its
+/// interval and the units it rests on by itself), and workings.
+const NO_FIGURES: &[&str] = &["nameplate", "estimated", "working"];
 /// Numbers that name a line instead of being computed.
 const LABELS: &[&str] = &["load_pu", "offset", "year"];
 
