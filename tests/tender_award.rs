@@ -272,7 +272,7 @@ fn measured_units_enter_the_fleet_once() {
 fn a_unit_of_that_name_from_elsewhere_is_not_touched() {
     let program = demo();
     award(&program, "L1", "O1", "");
-    let other = "unit,rated_kva\n0427-03,100\n";
+    let other = "unit,rated_kva,no_load_loss_w,load_loss_w\n0427-03,100,200,1500\n";
     program.import("units", &program.write("other.csv", other), &[]);
     let (code, error) = refused(&program, &["deliver", TENDER]);
     assert_eq!(code, Some(3));
