@@ -251,9 +251,12 @@ pub struct Tender {
     /// Show how each figure comes about
     #[arg(long)]
     pub working: bool,
-    /// Show the working of this bid only
+    /// Answer for this bid: where it stands, what it lacked, and its working
     #[arg(long, value_name = "BID")]
     pub bid: Option<String>,
+    /// Take every factor from the basis, also where a lot states its own
+    #[arg(long)]
+    pub from_basis: bool,
     /// Say how sure the winner is under the ranges of the basis
     #[arg(long)]
     pub risk: bool,

@@ -75,6 +75,7 @@ pub(super) fn tender(
 ) -> Result<Exit, Failure> {
     let Opened { book, .. } = book::open_to_read(args)?;
     let case = Case::read(&book, &options.tender, args.basis.as_deref())?;
+    let case = if options.from_basis { case.from_basis() } else { case };
     let mut result = case.evaluate(options.lot.as_deref())?;
     if let Some(only) = &options.bid {
         let mut bids = result.lots.iter().flat_map(|lot| &lot.bids).map(|bid| bid.bid.as_str());
@@ -99,8 +100,11 @@ pub(super) fn tender(
             printer.csv(&keys, lines.into_iter())?;
         }
         Format::Text => {
-            printer.letter(&letter::result(&case, &result))?;
-            if options.working || options.bid.is_some() {
+            match &options.bid {
+                Some(bid) => printer.letter(&letter::answer(&case, &result, bid)?)?,
+                None => printer.letter(&letter::result(&case, &result))?,
+            }
+            if options.working {
                 write_workings(printer, &case, &result, options.bid.as_deref())?;
             }
         }

@@ -15,7 +15,7 @@ use super::tender::{
     BasisForFactors, award_of, bids_of, bring, factor_scale, find_bid, find_lot, terms,
     terms_at_award,
 };
-use crate::engine::columns::{Award, Bid, Lot, Measured, Settlement, TenderSheet};
+use crate::engine::columns::{Award, Bid, Lot, Measured, Settlement, TenderSheet, WindingMetal};
 use crate::engine::decision::tender::Terms;
 use crate::engine::decision::tender::bid::Comparable;
 use crate::engine::decision::tender::settlement::{
@@ -92,6 +92,10 @@ pub struct Guaranteed {
     pub reference_temp_c: Option<f64>,
     /// The lot's rule for losses above the guarantee.
     pub tolerance: &'static str,
+    /// Winding metal, by which a test at another temperature is corrected.
+    pub winding_metal: &'static str,
+    /// Stray part of the load loss in that correction.
+    pub stray_share_pu: f64,
 }
 
 /// Mean losses above the guarantee (below: negative).
@@ -286,6 +290,8 @@ impl<'a> Guarantee<'a> {
                 auxiliary_loss_w: losses.auxiliary_loss_w,
                 reference_temp_c: self.terms.lot.reference_temp_c,
                 tolerance: self.terms.tolerance().word(),
+                winding_metal: self.bid.winding_metal.unwrap_or(WindingMetal::Copper).word(),
+                stray_share_pu: self.terms.stray_share_pu,
             },
             mean_excess: mean.map(|mean| MeanExcess {
                 no_load_excess_w: mean.no_load_w,

@@ -12,6 +12,7 @@ mod factors;
 pub mod letter;
 mod results;
 pub mod risk;
+pub mod shortfall;
 mod workings;
 
 use super::StudyError;

@@ -219,7 +219,7 @@ record! {
         transmission_efficiency_pu: Option<f64>, C::above(0.0, 1.0).blank("1"), "transmission efficiency of the levelized method, ET";
         investment_per_kw_year: Option<f64>, C::real(0.0, 1e9).blank("0"), "levelised system investment of the levelized method, LIC, per kW and year";
         near_tie_pct: Option<f64>, C::real(0.0, 100.0).blank("0"), "bids within this of the least owning cost count as near-tied";
-        law: Option<String>, C::id(), "minimum-efficiency law that offers must meet";
+        law: Option<String>, C::id(), "minimum-efficiency law that offers must meet: eu-548-2014, us-10cfr431 or ca-sor-2016-311";
         estimate_missing: Option<bool>, C::flag().blank("false"), "estimate missing losses from the fleet's own known units";
         units_per_year: Option<i64>, C::integer(0, 10_000_000), "most replacements a year";
         units_per_site_year: Option<i64>, C::integer(0, 10_000_000), "most replacements a year at one site";
@@ -288,7 +288,7 @@ record! {
         max_sound_db: Option<f64>, C::real(0.0, 200.0), "highest sound level";
         max_mass_kg: Option<f64>, C::above(0.0, 1e7), "highest mass";
         max_delivery_weeks: Option<f64>, C::real(0.0, 1000.0), "latest delivery";
-        law: Option<String>, C::id(), "minimum-efficiency law that bids must meet";
+        law: Option<String>, C::id(), "minimum-efficiency law that bids must meet: eu-548-2014, us-10cfr431 or ca-sor-2016-311";
         near_tie_pct: Option<f64>, C::real(0.0, 100.0).blank("basis, else 0"), "bids within this of the least owning cost count as near-tied";
         tolerance: Option<Tolerance>, C::choice(Tolerance::WORDS).blank("iec"), "rule for losses above the guarantee";
         settlement: Option<Settlement>, C::choice(Settlement::WORDS).blank("unit"), "penalty per unit or on the mean of the lot";

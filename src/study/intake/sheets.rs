@@ -20,7 +20,7 @@ impl Intake<'_> {
             let line = sheet.line(refusal.quantity);
             self.problems.add(line, refusal.quantity, &refusal.value, refusal.why);
         }
-        self.known_law(&sheet, basis.law.as_deref());
+        self.known_law(&sheet, "law", basis.law.as_deref());
         for range in &sheet.content.ranges {
             // Where the basis leaves the input blank, a lot may give it: that is seen when it is drawn.
             let base = basis.number(&range.quantity);
@@ -46,17 +46,17 @@ impl Intake<'_> {
         let TenderSheet { rates, lots, .. } = &sheet.content;
         self.rows = 1 + (rates.len() + lots.len()) as u64;
         for lot in lots {
-            self.known_law(&sheet, lot.law.as_deref());
+            self.known_law(&sheet, &format!("{}.law", lot.lot), lot.law.as_deref());
         }
         let change = book.change(self.actor, Some(&self.file))?;
         let saved = change.save_tender(&sheet.content);
         self.settle(change, saved, &sheet)
     }
 
-    /// Holds that a law that is named is known.
-    fn known_law<T>(&mut self, sheet: &Sheet<T>, law: Option<&str>) {
+    /// Holds that a law that is named, at `key` of the file, is known.
+    fn known_law<T>(&mut self, sheet: &Sheet<T>, key: &str, law: Option<&str>) {
         if let Some(Err(refusal)) = law.map(law::named) {
-            self.problems.add(sheet.line("law"), "law", &refusal.value, refusal.why);
+            self.problems.add(sheet.line(key), "law", &refusal.value, refusal.why);
         }
     }
 

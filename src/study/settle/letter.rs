@@ -39,6 +39,7 @@ pub(in crate::study) fn section(
     }
     award(letter, lot);
     promise(letter, lot, currency);
+    correction(letter, lot);
     units(letter, lot, currency);
     outcome(letter, lot, currency);
     let mut said: Vec<(&str, Vec<&str>)> = Vec::new();
@@ -71,6 +72,21 @@ fn award(letter: &mut Letter, lot: &LotSettlement) {
             "the lot is awarded to {bid}, not to this bid; the factors are today's"
         )),
         (None, _) => letter.text("The lot is not awarded in this book; the factors are today's."),
+    }
+}
+
+/// How tests at another temperature were brought to the lot's: a penalty may hang on it.
+fn correction(letter: &mut Letter, lot: &LotSettlement) {
+    let g = &lot.guaranteed;
+    let Some(reference) = g.reference_temp_c else { return };
+    if lot.units.iter().any(|unit| unit.test_temp_c.is_some_and(|c| c != reference)) {
+        letter.text(format!(
+            "Load losses read at another temperature are brought to {} °C with windings of {} and a stray share of {} of the load loss; a maker's report that splits the loss goes before: import its load loss at {} °C, the test temperature left blank.",
+            short(reference),
+            g.winding_metal,
+            short(g.stray_share_pu),
+            short(reference)
+        ));
     }
 }
 

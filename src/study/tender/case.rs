@@ -83,6 +83,18 @@ impl Case {
         Ok(Self { sheet, basis: desk.map(ready).transpose()? })
     }
 
+    /// The same case as if no lot stated its factors: each comes from the basis, so that its ranges and what it rests
+    /// on show how safe a winner by published factors is.
+    #[must_use]
+    pub fn from_basis(mut self) -> Self {
+        for lot in &mut self.sheet.lots {
+            lot.factor_a_per_kw = None;
+            lot.factor_b_per_kw = None;
+            lot.factor_aux_per_kw = None;
+        }
+        self
+    }
+
     /// The basis, where there is one.
     pub fn basis(&self) -> Option<BasisForFactors<'_>> {
         self.basis.as_ref().map(|(_, context)| BasisForFactors {

@@ -3,6 +3,7 @@
 //! Each section is a function of its own; [`result`] joins those that a terminal shows. Figures come from the
 //! results as they are; only shares and differences that a reader would work out in the head are formed here.
 
+mod answer;
 mod award;
 mod bars;
 mod factors;
@@ -17,6 +18,7 @@ use crate::exchange::letter::Column;
 use crate::study::figures::{figure, group};
 use crate::study::losses::flag_meaning;
 
+pub use answer::answer;
 pub use award::{awarded as award, delivered};
 pub(super) use bars::cost_bars;
 pub use factors::lot_factors;
