@@ -60,6 +60,7 @@ fn sheet(count: usize) -> TenderSheet {
         lots: vec![lot],
         bids: bids(count),
         measured: Vec::new(),
+        awards: Vec::new(),
     }
 }
 

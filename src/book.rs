@@ -4,6 +4,7 @@
 //! keeps the journal. Values are checked before they come here; the CHECK constraints are the second guard.
 //! No clock: who writes says when ([`Actor`]). Knows the engine's records, no file format and no screen.
 
+mod award;
 mod backup;
 mod cells;
 mod change;

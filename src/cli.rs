@@ -3,6 +3,7 @@
 //! Standard output carries results only; problems go to standard error. A command is one file under `cli/`.
 
 mod args;
+mod award;
 mod book;
 mod check;
 mod columns;
@@ -83,6 +84,8 @@ fn dispatch(args: &Args, printer: &mut Printer) -> Result<Exit, Failure> {
         Some(Command::Factors(options)) => factors::factors(args, options, printer),
         Some(Command::Tender(options)) => tender::tender(args, options, printer),
         Some(Command::Unit(options)) => unit::unit(args, options, printer),
+        Some(Command::Award(options)) => award::award(args, options, printer),
+        Some(Command::Deliver(options)) => award::deliver(args, options, printer),
         Some(Command::Settle(options)) => settle::settle(args, options, printer),
         Some(Command::Report(options)) => report::report(args, options, printer),
         Some(Command::Work(options)) => work::work(options, printer),

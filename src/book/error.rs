@@ -92,6 +92,27 @@ pub enum BookError {
         /// What needs it.
         parts: &'static str,
     },
+    /// What was awarded stays as it was.
+    #[error(
+        "lot {lot} of tender {tender} is awarded: what it was awarded under stays; to change it, withdraw the award \
+         first: ironhum award {tender} --lot {lot} --withdraw --why TEXT"
+    )]
+    Awarded {
+        /// The tender.
+        tender: String,
+        /// The lot.
+        lot: String,
+    },
+    /// An award of which units are in the fleet.
+    #[error(
+        "units of lot {lot} of tender {tender} are in the fleet: the award that they came of stays"
+    )]
+    Delivered {
+        /// The tender.
+        tender: String,
+        /// The lot.
+        lot: String,
+    },
     /// The same key twice in one change.
     #[error("the {kind} stands twice in one change")]
     Twice {

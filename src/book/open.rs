@@ -24,8 +24,10 @@ pub enum Access {
 const APPLICATION_ID: i64 = 0x4972_4875;
 
 /// Every step from nothing to this version. Never changed, only added to.
-pub(super) const STEPS: &[M<'static>] =
-    &[M::up(include_str!("../../migrations/01_book.sql")).foreign_key_check()];
+pub(super) const STEPS: &[M<'static>] = &[
+    M::up(include_str!("../../migrations/01_book.sql")).foreign_key_check(),
+    M::up(include_str!("../../migrations/02_award.sql")).foreign_key_check(),
+];
 
 impl Book {
     /// Opens a book.

@@ -6,7 +6,7 @@ use std::ops::ControlFlow;
 
 use super::{Actor, Book, BookError, Change, Result, Table, cells, read, tables};
 use crate::engine::columns::{
-    Basis, BasisBudget, BasisRange, BasisSheet, Bid, Lot, Measured, Tender, TenderRate,
+    Award, Basis, BasisBudget, BasisRange, BasisSheet, Bid, Lot, Measured, Tender, TenderRate,
     TenderSheet, Value,
 };
 
@@ -55,6 +55,7 @@ impl Book {
             lots: read::records(store, &tables::LOTS, Lot::from_values, of, [tender])?,
             bids: read::records(store, &tables::BIDS, Bid::from_values, of, [tender])?,
             measured: read::records(store, &tables::MEASURED, Measured::from_values, of, [tender])?,
+            awards: read::records(store, &tables::AWARDS, Award::from_values, of, [tender])?,
         })
     }
 
@@ -105,8 +106,10 @@ impl Change<'_> {
     /// Saves a tender with its rates and lots. Bids and measured units of the book stay as they are.
     ///
     /// # Errors
-    /// A lot that has bids is gone from the sheet ([`BookError::InUse`]), or the store fails.
+    /// A lot that has bids is gone from the sheet ([`BookError::InUse`]), something that was awarded is changed
+    /// ([`BookError::Awarded`]), or the store fails.
     pub fn save_tender(&self, sheet: &TenderSheet) -> Result<()> {
+        self.keeps_awarded(sheet)?;
         let tender = &sheet.tender.tender;
         self.put(&tables::TENDERS, None, &sheet.tender.values())?;
         let rates: Vec<_> = sheet.rates.iter().map(TenderRate::values).collect();

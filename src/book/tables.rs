@@ -5,8 +5,8 @@
 //! test keeps both in step.
 
 use crate::engine::columns::{
-    Basis, BasisBudget, BasisRange, Bid, Column, Lot, Measured, Offer, Tender, TenderRate,
-    TestReport, Unit,
+    Award, Basis, BasisBudget, BasisRange, Bid, Column, Delivery, Lot, Measured, Offer, Tender,
+    TenderRate, TestReport, Unit,
 };
 
 /// A table of records.
@@ -72,8 +72,15 @@ pub static BIDS: Table = Table::of("bids", "bid", &["tender", "lot", "bid"], Bid
 pub static MEASURED: Table =
     Table::of("measured", "measured unit", &["tender", "lot", "bid", "serial"], Measured::COLUMNS);
 
+/// Awards of lots.
+pub static AWARDS: Table =
+    Table::of("awards", "award", &["lot"], Award::COLUMNS).owned_by("tender");
+/// Measured units that entered the fleet.
+pub static DELIVERIES: Table =
+    Table::of("deliveries", "delivery", &["tender", "lot", "bid", "serial"], Delivery::COLUMNS);
+
 /// Every table of records.
-pub static TABLES: [&Table; 11] = [
+pub static TABLES: [&Table; 13] = [
     &UNITS,
     &TEST_REPORTS,
     &OFFERS,
@@ -85,4 +92,6 @@ pub static TABLES: [&Table; 11] = [
     &LOTS,
     &BIDS,
     &MEASURED,
+    &AWARDS,
+    &DELIVERIES,
 ];

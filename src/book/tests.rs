@@ -8,11 +8,11 @@ use rusqlite::types::Value as Sql;
 use rusqlite_migration::M;
 
 use super::open::STEPS;
-use super::tables::{BASES, LOTS, OFFERS, TABLES, TENDERS, UNITS};
+use super::tables::{BASES, BIDS, LOTS, OFFERS, TABLES, TENDERS, UNITS};
 use super::*;
 use crate::engine::columns::{
-    Basis, BasisBudget, BasisRange, BasisSheet, Column, Kind, Lot, Money, Offer, Tender,
-    TenderRate, TenderSheet, Unit,
+    Award, Basis, BasisBudget, BasisRange, BasisSheet, Bid, Column, Kind, Lot, Money, Offer,
+    Tender, TenderRate, TenderSheet, Unit,
 };
 use crate::engine::loading::{PriceSeries, Profile};
 
@@ -391,6 +391,7 @@ fn a_tender_is_saved_as_a_whole() {
         lots: vec![lot("L2"), lot("L1")],
         bids: vec![],
         measured: vec![],
+        awards: vec![],
     };
     let save = |book: &mut Book, tender: &TenderSheet| {
         let change = book.change(&actor(), Some("t1.toml"))?;
@@ -510,7 +511,9 @@ fn a_newer_book_is_refused_before_any_write() {
     let before = fs::read(&path).expect("read");
     for access in [Access::ReadOnly, Access::ReadWrite, Access::Create] {
         let error = Book::open(&path, access).expect_err("newer").to_string();
-        assert!(error.contains("version 2") && error.contains("up to 1"), "{error}");
+        let (newer, own) =
+            (format!("version {}", STEPS.len() + 1), format!("up to {}", STEPS.len()));
+        assert!(error.contains(&newer) && error.contains(&own), "{error}");
     }
     assert_eq!(fs::read(&path).expect("read"), before);
 }
@@ -525,10 +528,12 @@ fn an_older_book_is_backed_up_before_it_is_changed() {
     drop(book);
     let newer = [STEPS, &[M::up("ALTER TABLE settings ADD COLUMN x TEXT")]].concat();
     let error = Book::open_with(&path, Access::ReadOnly, &newer).expect_err("older").to_string();
-    assert!(error.contains("version 1") && error.contains("version 2"), "{error}");
+    let (own, next) = (STEPS.len(), STEPS.len() + 1);
+    let versions = [own, next].map(|version| format!("version {version}"));
+    assert!(versions.iter().all(|version| error.contains(version)), "{error}");
     let book = Book::open_with(&path, Access::ReadWrite, &newer).expect("migrate");
     assert_eq!(book.bases().expect("bases"), ["plan"]);
-    let copy = dir.path().join("fleet.book.before-v2");
+    let copy = dir.path().join(format!("fleet.book.before-v{next}"));
     assert_eq!(dump(&Book::open(&copy, Access::ReadOnly).expect("backup")), before);
 
     // A step that fails leaves the book as it was, and a second backup takes another name.
@@ -536,8 +541,111 @@ fn an_older_book_is_backed_up_before_it_is_changed() {
     let broken = [&newer[..], &[M::up("CREATE TABLE y (x INTEGER) STRICT; NO SQL")]].concat();
     assert!(Book::open_with(&path, Access::ReadWrite, &broken).is_err());
     assert!(Book::open_with(&path, Access::ReadWrite, &broken).is_err());
-    assert!(dir.path().join("fleet.book.before-v3-2").exists());
+    assert!(dir.path().join(format!("fleet.book.before-v{}-2", next + 1)).exists());
     Book::open_with(&path, Access::ReadWrite, &newer).expect("as it was");
+}
+
+/// A book of every earlier version opens in this one with all that it held.
+#[test]
+fn books_of_earlier_versions_are_brought_up_to_date() {
+    for steps in 1..STEPS.len() {
+        let dir = tempfile::tempdir().expect("dir");
+        let path = dir.path().join("fleet.book");
+        let mut old = Book::open_with(&path, Access::Create, &STEPS[..steps]).expect("older");
+        old.save_basis(&sheet("plan"), &actor()).expect("save");
+        let before = dump(&old);
+        drop(old);
+        let book = Book::open(&path, Access::ReadWrite).expect("migrate");
+        let after = dump(&book);
+        assert!(before.lines().all(|line| after.contains(line)), "{after}");
+        assert!(book.deliveries("T1").expect("deliveries").is_empty());
+    }
+}
+
+fn awarded(lot: &str, bid: &str) -> Award {
+    Award {
+        lot: lot.into(),
+        bid: bid.into(),
+        factor_a_per_kw: 12_000.5,
+        owning_cost: 26_086.3,
+        recommended: Some("A".into()),
+        program: "0.1.0".into(),
+        awarded_at: actor().at,
+        awarded_by: actor().who,
+        why: actor().why,
+        ..Award::blank()
+    }
+}
+
+/// A tender `T1` with a lot and the bids A and B.
+fn with_bids(book: &mut Book) -> TenderSheet {
+    let lot = Lot { lot: "L1".into(), rated_kva: 630.0, ..Lot::blank() };
+    let tender = TenderSheet {
+        tender: Tender { tender: "T1".into(), currency: "EUR".into(), dated: None },
+        rates: vec![TenderRate { currency: "USD".into(), rate: 0.9 }],
+        lots: vec![lot],
+        bids: vec![],
+        measured: vec![],
+        awards: vec![],
+    };
+    let change = book.change(&actor(), Some("t1.toml")).expect("change");
+    change.save_tender(&tender).expect("save");
+    for name in ["A", "B"] {
+        let (tender, lot) = ("T1".into(), "L1".into());
+        let bid = Bid { tender, lot, bid: name.into(), ..Bid::blank() };
+        change.put(&BIDS, None, &bid.values()).expect("put");
+    }
+    change.commit().expect("commit");
+    tender
+}
+
+#[test]
+fn an_award_stays_until_it_is_withdrawn() {
+    let mut book = Book::in_memory().expect("book");
+    let mut tender = with_bids(&mut book);
+    let change = book.change(&actor(), None).expect("change");
+    change.award("T1", &awarded("L1", "A")).expect("award");
+    let again = change.award("T1", &awarded("L1", "B")).expect_err("awarded").to_string();
+    assert!(again.starts_with("lot L1 of tender T1 is awarded"), "{again}");
+    assert!(change.award("T1", &awarded("L2", "A")).is_err(), "no such lot");
+    change.commit().expect("commit");
+    assert_eq!(book.tender("T1").expect("tender").awards, [awarded("L1", "A")]);
+    let entry = &book.journal(1).expect("journal")[0];
+    assert_eq!((entry.action.as_str(), entry.kind.as_str()), ("chosen", "award"));
+    assert_eq!((entry.who.as_str(), entry.why.as_deref()), ("ana", Some("survey")));
+    assert_eq!(entry.key.as_deref(), Some("T1/L1"));
+    assert_eq!(entry.what["bid"]["new"], "A");
+    assert_eq!(entry.what["factor_a_per_kw"]["new"], 12_000.5);
+
+    // The same sheet is let in, another rate, currency or lot is not; a further lot is.
+    let save = |book: &mut Book, sheet: &TenderSheet| {
+        let change = book.change(&actor(), None).expect("change");
+        change.save_tender(sheet).map(|()| change.commit().expect("commit").changed)
+    };
+    assert_eq!(save(&mut book, &tender).expect("the same"), 0);
+    let refused = |book: &mut Book, sheet: &TenderSheet| {
+        assert!(matches!(save(book, sheet), Err(BookError::Awarded { .. })));
+    };
+    let mut other = tender.clone();
+    other.rates[0].rate = 0.8;
+    refused(&mut book, &other);
+    other = tender.clone();
+    other.tender.currency = "USD".into();
+    refused(&mut book, &other);
+    other = tender.clone();
+    other.lots[0].tolerance = Some(crate::engine::columns::Tolerance::None);
+    refused(&mut book, &other);
+    tender.lots.push(Lot { lot: "L2".into(), rated_kva: 100.0, ..Lot::blank() });
+    save(&mut book, &tender).expect("another lot");
+
+    let change = book.change(&actor(), None).expect("change");
+    assert!(change.withdraw("T1", "L2").is_err(), "not awarded");
+    assert_eq!(change.withdraw("T1", "L1").expect("withdraw"), awarded("L1", "A"));
+    change.award("T1", &awarded("L1", "B")).expect("award");
+    change.commit().expect("commit");
+    let actions: Vec<_> =
+        book.journal_of("award", "T1/L1").expect("journal").into_iter().map(|e| e.action).collect();
+    assert_eq!(actions, ["chosen", "removed", "chosen"], "newest first");
 }
 
 #[test]

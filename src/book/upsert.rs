@@ -28,6 +28,18 @@ pub struct Known {
     old: Vec<Value>,
 }
 
+impl Known {
+    /// What the book has in a column.
+    pub fn old(&self, place: usize) -> &Value {
+        self.old.get(place).unwrap_or(&Value::Blank)
+    }
+
+    /// Places of the columns in which a row differs from what the book has.
+    pub fn differs<'a>(&'a self, row: &'a [Value]) -> impl Iterator<Item = usize> + 'a {
+        self.old.iter().zip(row).enumerate().filter(|(_, (old, new))| old != new).map(|(at, _)| at)
+    }
+}
+
 /// Rows on their way into one table.
 #[derive(Debug)]
 pub struct Upsert<'c> {

@@ -91,6 +91,10 @@ pub enum Command {
     Factors(Factors),
     /// Evaluate the bids of a tender
     Tender(Tender),
+    /// Award a lot of a tender to a bid, with who, when and why
+    Award(Award),
+    /// Take the measured units of the awarded bids into the fleet, with their measured losses
+    Deliver(Deliver),
     /// Measured against guaranteed losses of a tender: excess, penalty, beyond tolerance or not
     Settle(Settle),
     /// A report to hand on, as Markdown
@@ -251,9 +255,12 @@ pub struct Tender {
     /// Show how each figure comes about
     #[arg(long)]
     pub working: bool,
-    /// Show the working of this bid only
+    /// Answer for this bid: where it stands, what it lacked, and its working
     #[arg(long, value_name = "BID")]
     pub bid: Option<String>,
+    /// Take every factor from the basis, also where a lot states its own
+    #[arg(long)]
+    pub from_basis: bool,
     /// Say how sure the winner is under the ranges of the basis
     #[arg(long)]
     pub risk: bool,
@@ -304,6 +311,44 @@ pub struct ReportTender {
     /// How the risk is drawn, where the basis names ranges.
     #[command(flatten)]
     pub drawn: Drawn,
+}
+
+/// Options of `award`.
+#[derive(Clone, Debug, clap::Args)]
+pub struct Award {
+    /// The tender
+    pub tender: String,
+    /// The lot
+    #[arg(long, value_name = "LOT")]
+    pub lot: String,
+    /// The bid that it goes to
+    #[arg(long, value_name = "BID", required_unless_present = "withdraw")]
+    pub bid: Option<String>,
+    /// Take the award back; the journal keeps it
+    #[arg(long, conflicts_with = "bid")]
+    pub withdraw: bool,
+    /// Why; needed where another bid leads, and to take an award back
+    #[arg(long, value_name = "TEXT")]
+    pub why: Option<String>,
+}
+
+/// Options of `deliver`.
+#[derive(Clone, Debug, clap::Args)]
+pub struct Deliver {
+    /// The tender
+    pub tender: String,
+    /// Only this lot
+    #[arg(long, value_name = "LOT")]
+    pub lot: Option<String>,
+    /// Leave this unit out, because it is rejected, for instance
+    #[arg(long, value_name = "SERIAL")]
+    pub except: Vec<String>,
+    /// What stands before the serial number in the identifier of the unit
+    #[arg(long, value_name = "TEXT")]
+    pub prefix: Option<String>,
+    /// Why, for the journal
+    #[arg(long, value_name = "TEXT")]
+    pub why: Option<String>,
 }
 
 /// Options of `settle`.

@@ -53,6 +53,16 @@ pub(super) fn open_to_write(args: &Args) -> Result<Opened, Failure> {
     Ok(Opened { book, path })
 }
 
+/// Opens a book that is there for writing.
+pub(super) fn open_to_change(args: &Args) -> Result<Opened, Failure> {
+    if args.read_only {
+        return Err(Failure::new(Exit::Usage, "--read-only: this command changes the book"));
+    }
+    let path = path(args)?;
+    let book = Book::open(&path, Access::ReadWrite)?;
+    Ok(Opened { book, path })
+}
+
 pub(super) fn make_parent(path: &Path) -> Result<(), Failure> {
     match path.parent() {
         Some(parent) if !parent.as_os_str().is_empty() => std::fs::create_dir_all(parent)

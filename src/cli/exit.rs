@@ -79,6 +79,7 @@ impl From<BookError> for Failure {
     fn from(error: BookError) -> Self {
         let exit = match error {
             BookError::Unknown { .. } | BookError::WhichBasis { .. } => Exit::Usage,
+            BookError::Awarded { .. } | BookError::Delivered { .. } => Exit::Rejected,
             _ => Exit::Failed,
         };
         Self::new(exit, error.to_string())

@@ -4,6 +4,7 @@ use super::args::{Args, Factors, Format};
 use super::book::{self, Opened};
 use super::exit::{Exit, Failure};
 use super::print::Printer;
+use super::tender::warn_of_scale;
 use crate::study::Desk;
 use crate::study::explain::StepRow;
 use crate::study::factors::{LoadAsked, factors as ask};
@@ -22,6 +23,7 @@ pub(super) fn factors(
     let Opened { book, .. } = book::open_to_read(args)?;
     if let (Some(tender), Some(lot)) = (&options.tender, &options.lot) {
         let result = Case::read(&book, tender, args.basis.as_deref())?.factors(lot)?;
+        warn_of_scale(printer, lot, &result.flags);
         match printer.format {
             Format::Json => printer.json(&result)?,
             Format::Csv => printer.csv(KEYS, std::iter::once(&result))?,

@@ -97,7 +97,7 @@ fn say(printer: &mut Printer, report: &Report, dry_run: bool) -> Result<(), Fail
         Format::Text => {
             let t = report.tally;
             let what = report.what.word();
-            if report.rejected && report.rows <= 1 {
+            if report.rejected && (report.rows <= 1 || report.bad == 0) {
                 printer.complain("nothing was stored: the file itself is wrong; correct it");
             } else if report.rejected {
                 printer.complain(&format!(

@@ -27,8 +27,15 @@ fn tender(args: &Args, options: &ReportTender, printer: &mut Printer) -> Result<
     let lot = options.lot.as_deref();
     let mut result = case.evaluate(lot)?;
     let asked = draws(&options.drawn)?;
-    if case.has_ranges() || asked != Draws::default() {
-        case.add_risk(&mut result, &asked)?;
+    // Draws that were asked for must be made; else the report stands without them.
+    match (case.has_ranges(), asked != Draws::default()) {
+        (_, true) => case.add_risk(&mut result, &asked)?,
+        (true, false) => {
+            if let Err(error) = case.add_risk(&mut result, &asked) {
+                printer.complain(&format!("the report says nothing of risk: {error}"));
+            }
+        }
+        (false, false) => {}
     }
     let report = letter::report(&case, &result, &case.settle(lot)?)?;
     write(&options.file, &report, printer)?;

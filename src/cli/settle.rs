@@ -7,6 +7,7 @@ use super::book::{self, Opened};
 use super::exit::{Exit, Failure};
 use super::factors::working as write_working;
 use super::print::Printer;
+use super::tender::warn_of_scale;
 use crate::study::StudyError;
 use crate::study::explain::StepRow;
 use crate::study::settle::{UnitSettlement, letter, working};
@@ -37,7 +38,7 @@ pub(super) fn settle(
     printer: &mut Printer,
 ) -> Result<Exit, Failure> {
     let Opened { book, .. } = book::open_to_read(args)?;
-    let case = Case::read(&book, &options.tender, args.basis.as_deref())?;
+    let case = Case::to_settle(&book, &options.tender, args.basis.as_deref())?;
     let basis = case.basis();
     let result = case.settle(options.lot.as_deref())?;
     if let Some(only) = &options.serial {
@@ -47,6 +48,9 @@ pub(super) fn settle(
             let place = format!("tender {}", result.tender);
             return Err(StudyError::unknown("serial", only, place, &mut serials).into());
         }
+    }
+    for lot in &result.lots {
+        warn_of_scale(printer, &lot.lot, &lot.flags);
     }
     match printer.format {
         Format::Json => printer.json(&result)?,

@@ -9,8 +9,10 @@ use super::exit::{Exit, Failure};
 use super::factors::working as write_working;
 use super::print::Printer;
 use crate::engine::decision::uncertainty::RankCorrelation;
+use crate::engine::flags::Flags;
 use crate::study::StudyError;
 use crate::study::explain::StepRow;
+use crate::study::losses::flag_meaning;
 use crate::study::tender::{BidResult, Case, Draws, LotResult, TenderResult, letter, working};
 
 const KEYS: &[&str] = &[
@@ -73,6 +75,7 @@ pub(super) fn tender(
 ) -> Result<Exit, Failure> {
     let Opened { book, .. } = book::open_to_read(args)?;
     let case = Case::read(&book, &options.tender, args.basis.as_deref())?;
+    let case = if options.from_basis { case.from_basis() } else { case };
     let mut result = case.evaluate(options.lot.as_deref())?;
     if let Some(only) = &options.bid {
         let mut bids = result.lots.iter().flat_map(|lot| &lot.bids).map(|bid| bid.bid.as_str());
@@ -97,8 +100,11 @@ pub(super) fn tender(
             printer.csv(&keys, lines.into_iter())?;
         }
         Format::Text => {
-            printer.letter(&letter::result(&case, &result))?;
-            if options.working || options.bid.is_some() {
+            match &options.bid {
+                Some(bid) => printer.letter(&letter::answer(&case, &result, bid)?)?,
+                None => printer.letter(&letter::result(&case, &result))?,
+            }
+            if options.working {
                 write_workings(printer, &case, &result, options.bid.as_deref())?;
             }
         }
@@ -106,10 +112,22 @@ pub(super) fn tender(
     Ok(said(printer, &result))
 }
 
+/// Warns that factors look like money per W, where the result itself is no text for people.
+pub(super) fn warn_of_scale(printer: &Printer, lot: &str, flags: &[&str]) {
+    if printer.format == Format::Text {
+        return;
+    }
+    for key in Flags::FACTOR_SCALE.keys().iter().filter(|key| flags.contains(key)) {
+        let meaning = flag_meaning(key).unwrap_or_default();
+        printer.complain(&format!("lot {lot}: {key}: {meaning}"));
+    }
+}
+
 /// Names the lots in which no bid can be ranked; without any winner there is no solution.
 pub(super) fn said(printer: &Printer, result: &TenderResult) -> Exit {
     let mut won = false;
     for lot in &result.lots {
+        warn_of_scale(printer, &lot.lot, &lot.flags);
         won |= lot.least_owning_cost.is_some();
         let why = match (&lot.least_owning_cost, lot.bids.is_empty()) {
             (Some(_), _) => continue,

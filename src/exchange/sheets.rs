@@ -152,6 +152,7 @@ pub fn tender(text: &str, problems: &mut Problems) -> Option<Sheet<TenderSheet>>
         lots,
         bids: Vec::new(),
         measured: Vec::new(),
+        awards: Vec::new(),
     };
     Some(Sheet { content, lines })
 }
@@ -378,6 +379,12 @@ impl Reader<'_, '_> {
         };
         let mut values = vec![Value::Blank; Lot::COLUMNS.len()];
         self.record(Lot::COLUMNS, "a lot", table, line, &mut values)?;
+        if let Value::Text(lot) = &values[0] {
+            for (key, _) in in_order(table) {
+                let line = self.line(key);
+                self.lines.insert(format!("{lot}.{}", key.get_ref()), line);
+            }
+        }
         let before = self.problems.count();
         Rules::of(rules::LOTS, Lot::COLUMNS).judge(&values, |place, why| {
             let name = Lot::COLUMNS[place].name;

@@ -15,6 +15,7 @@ use crate::engine::loading::{Profile, Ratios};
 use crate::engine::transformer::losses::quoted;
 use crate::engine::transformer::{plausibility, vector_group};
 use crate::engine::working::Silent;
+use crate::study::tender::{BasisForFactors, looks_per_watt};
 use crate::study::{Desk, StudyError, Watch};
 
 /// Peak over rating above which a load is implausible (per unit).
@@ -53,7 +54,7 @@ impl Kind {
 /// One doubt.
 #[derive(Clone, Debug, PartialEq, Eq, Serialize)]
 pub struct Doubt {
-    /// What it is about: `unit`, `offer`, `bid` or `basis`.
+    /// What it is about: `unit`, `offer`, `lot`, `bid` or `basis`.
     pub subject: &'static str,
     /// Its key.
     pub key: String,
@@ -65,7 +66,7 @@ pub struct Doubt {
     pub what: String,
 }
 
-/// Goes through a book: units, offers, bids, bases, each in order of entry. `basis` names the one that the fleet is
+/// Goes through a book: units, offers, lots, bids, bases, each in order of entry. `basis` names the one that the fleet is
 /// held against; else the only or chosen one counts, and without one what depends on it is passed over.
 ///
 /// # Errors
@@ -99,8 +100,24 @@ pub fn check(book: &Book, basis: Option<&str>, watch: &Watch) -> Result<Vec<Doub
     for offer in book.offers()? {
         doubts.offer(&offer, basis);
     }
+    let named = sheet.as_ref().map(|sheet| sheet.basis.name.as_str());
+    let desk = named.and_then(|name| Desk::basis_only(book, Some(name)).ok());
+    // A basis that the engine refuses is a doubt of its own, below.
+    let context = desk.and_then(|desk| desk.context().ok());
+    let factors = context.as_ref().map(|context| BasisForFactors {
+        assumptions: &context.assumptions,
+        market: &context.market,
+    });
     for tender in book.tenders()? {
         let sheet = book.tender(&tender.tender)?;
+        for lot in &sheet.lots {
+            // A lot that cannot be evaluated yet is told where it is evaluated.
+            if let Ok(true) = looks_per_watt(&sheet, factors.as_ref(), &lot.lot) {
+                let key = format!("{}/{}", tender.tender, lot.lot);
+                let of = ("lot", key.as_str());
+                doubts.flag(of, "factor_a_per_kw", Kind::Implausible, Flags::FACTOR_SCALE);
+            }
+        }
         for bid in &sheet.bids {
             doubts.bid(bid, sheet.lots.iter().find(|lot| lot.lot == bid.lot));
         }

@@ -11,8 +11,11 @@ pub use workings::Settled;
 use serde::Serialize;
 
 use super::StudyError;
-use super::tender::{BasisForFactors, bids_of, bring, factor_scale, find_bid, find_lot, terms};
-use crate::engine::columns::{Bid, Lot, Measured, Settlement, TenderSheet};
+use super::tender::{
+    BasisForFactors, award_of, bids_of, bring, factor_scale, find_bid, find_lot, terms,
+    terms_at_award,
+};
+use crate::engine::columns::{Award, Bid, Lot, Measured, Settlement, TenderSheet, WindingMetal};
 use crate::engine::decision::tender::Terms;
 use crate::engine::decision::tender::bid::Comparable;
 use crate::engine::decision::tender::settlement::{
@@ -65,6 +68,11 @@ pub struct LotSettlement {
     pub guaranteed: Guaranteed,
     /// What one unit exceeds the guarantee by on the mean; none where each is settled on its own.
     pub mean_excess: Option<MeanExcess>,
+    /// The bid that the lot is awarded to; none where it is not awarded. Factors and stray share are those of the
+    /// award where it is this one, else today's.
+    pub awarded_to: Option<String>,
+    /// When it was awarded (UTC).
+    pub awarded_at: Option<String>,
     /// What is doubtful about the factors or the lot.
     pub flags: Vec<&'static str>,
 }
@@ -84,6 +92,10 @@ pub struct Guaranteed {
     pub reference_temp_c: Option<f64>,
     /// The lot's rule for losses above the guarantee.
     pub tolerance: &'static str,
+    /// Winding metal, by which a test at another temperature is corrected.
+    pub winding_metal: &'static str,
+    /// Stray part of the load loss in that correction.
+    pub stray_share_pu: f64,
 }
 
 /// Mean losses above the guarantee (below: negative).
@@ -208,6 +220,7 @@ struct Guarantee<'a> {
     promise: Comparable,
     units: Vec<&'a Measured>,
     flags: Flags,
+    award: Option<&'a Award>,
 }
 
 impl<'a> Guarantee<'a> {
@@ -217,11 +230,16 @@ impl<'a> Guarantee<'a> {
         lot: &'a Lot,
         bid: &'a Bid,
     ) -> Result<Self, StudyError> {
-        let (terms, flags) = terms(&mut Silent, sheet, basis, lot)?;
+        let award = award_of(sheet, &lot.lot);
+        let (terms, flags) = match award.filter(|award| award.bid == bid.bid) {
+            Some(award) => terms_at_award(sheet, basis, lot, award)?,
+            None => terms(&mut Silent, sheet, basis, lot)?,
+        };
         let promise = bring(&mut Silent, &terms, bid)?;
         // As it is shown wherever the tender is.
         let flags = flags.with_if(factor_scale(sheet, &terms)?, Flags::FACTOR_SCALE);
-        Ok(Self { terms, bid, promise, units: measured_of(sheet, bid).collect(), flags })
+        let units = measured_of(sheet, bid).collect();
+        Ok(Self { terms, bid, promise, units, flags, award })
     }
 
     fn rule(&self) -> Settlement {
@@ -272,12 +290,16 @@ impl<'a> Guarantee<'a> {
                 auxiliary_loss_w: losses.auxiliary_loss_w,
                 reference_temp_c: self.terms.lot.reference_temp_c,
                 tolerance: self.terms.tolerance().word(),
+                winding_metal: self.bid.winding_metal.unwrap_or(WindingMetal::Copper).word(),
+                stray_share_pu: self.terms.stray_share_pu,
             },
             mean_excess: mean.map(|mean| MeanExcess {
                 no_load_excess_w: mean.no_load_w,
                 load_excess_w: mean.load_w,
                 auxiliary_excess_w: mean.auxiliary_w.unwrap_or(0.0),
             }),
+            awarded_to: self.award.map(|award| award.bid.clone()),
+            awarded_at: self.award.map(|award| award.awarded_at.clone()),
             flags: self.flags.keys(),
             units,
         }

@@ -6,14 +6,17 @@
 
 pub mod award;
 mod case;
+pub mod decide;
+pub mod deliver;
 mod factors;
 pub mod letter;
 mod results;
 pub mod risk;
+pub mod shortfall;
 mod workings;
 
 use super::StudyError;
-use crate::engine::columns::{Bid, Lot, TenderSheet};
+use crate::engine::columns::{Award, Bid, Lot, TenderSheet};
 use crate::engine::decision::tender::bid::{Comparable, comparable};
 use crate::engine::decision::tender::changes::{self, Change, Field};
 use crate::engine::decision::tender::factors::{Computed, of_lot};
@@ -202,6 +205,37 @@ pub(super) fn terms<'a, R: Recorder>(
     Ok((terms, flags))
 }
 
+/// The award of a lot, where the book has one.
+pub(super) fn award_of<'a>(sheet: &'a TenderSheet, lot: &str) -> Option<&'a Award> {
+    sheet.awards.iter().find(|award| award.lot == lot)
+}
+
+/// The terms of a lot as they were when it was awarded.
+pub(super) fn terms_at_award<'a>(
+    sheet: &'a TenderSheet,
+    basis: Option<&BasisForFactors>,
+    lot: &'a Lot,
+    award: &Award,
+) -> Result<(Terms<'a>, Flags), StudyError> {
+    let factors = LossFactors {
+        factor_a_per_kw: award.factor_a_per_kw,
+        factor_b_per_kw: award.factor_b_per_kw,
+        factor_aux_per_kw: award.factor_aux_per_kw,
+    };
+    let tender = format!("tender {}", sheet.tender.tender);
+    let rates = Rates::new(&sheet.tender, &sheet.rates).map_err(StudyError::refused(tender))?;
+    let first_year = basis.map(|basis| basis.assumptions.first_year);
+    let terms = Terms {
+        lot,
+        rates,
+        factors,
+        stray_share_pu: award.stray_share_pu,
+        near_tie_pct: lot.near_tie_pct.unwrap_or(0.0),
+        purchase: legal::purchase(&sheet.tender, first_year),
+    };
+    Ok((terms, Flags::NONE))
+}
+
 /// A bid on the lot's terms.
 pub(super) fn bring<R: Recorder>(
     w: &mut R,
@@ -323,13 +357,16 @@ fn evaluate_lot(
     let result = |i: usize, rank| judged.bids[i].result(terms, rank, ranking.band.contains(&i));
     let ranked = ranking.order.iter().enumerate().map(|(place, &i)| result(i, Some(place + 1)));
     let excluded = (0..judged.bids.len()).filter(|i| !judged.bids[*i].found.misses.is_empty());
+    let bids: Vec<BidResult> = ranked.chain(excluded.map(|i| result(i, None))).collect();
+    let award = award_of(sheet, &lot.lot)
+        .and_then(|award| Some(Awarded::of(award, bids.iter().find(|bid| bid.bid == award.bid)?)));
     Ok(LotResult {
         lot: lot.lot.clone(),
         quantity: terms.quantity(),
         factor_a_per_kw: terms.factors.factor_a_per_kw,
         factor_b_per_kw: terms.factors.factor_b_per_kw,
         factor_aux_per_kw: terms.factors.factor_aux_per_kw,
-        bids: ranked.chain(excluded.map(|i| result(i, None))).collect(),
+        bids,
         least_owning_cost: ranking.order.first().map(|&i| judged.name(i)),
         recommended: ranking.band.first().map(|&i| judged.name(i)),
         margin_pct: ranking.margin_pct,
@@ -341,6 +378,7 @@ fn evaluate_lot(
         nearest_border,
         near_tie_pct: terms.near_tie_pct,
         computed: Computed::by(lot),
+        award,
         risk: None,
     })
 }
@@ -350,6 +388,20 @@ fn factors_look_per_watt<'a>(costs: impl IntoIterator<Item = &'a OwningCost>) ->
     let mut costs = costs.into_iter().peekable();
     costs.peek().is_some()
         && costs.all(|c| c.no_load_cost + c.load_cost + c.auxiliary_cost < 0.01 * c.price)
+}
+
+/// Whether the factors of a lot look like money per W instead of per kW: every bid's capitalised losses are under 1 %
+/// of its price.
+///
+/// # Errors
+/// As [`evaluate`].
+pub fn looks_per_watt(
+    sheet: &TenderSheet,
+    basis: Option<&BasisForFactors>,
+    lot: &str,
+) -> Result<bool, StudyError> {
+    let (terms, _) = terms(&mut Silent, sheet, basis, find_lot(sheet, lot)?)?;
+    factor_scale(sheet, &terms)
 }
 
 /// Whether the factors of a lot look like money per W: where they do, it is said wherever the tender is shown.

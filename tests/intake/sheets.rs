@@ -114,6 +114,10 @@ fn what_is_wrong_in_a_basis_is_told_by_line() {
             "b.toml:6: load_growth_pct: 3: base is not between low 0 and high 1",
         ),
         (
+            "[range.discount_rate_pct]\nlow = 90\nhigh = 91\n",
+            "b.toml:5: discount_rate_pct: 90: is out of order in the range of discount_rate_pct; low ≤ base",
+        ),
+        (
             "[range.load_growth_pct]\nlow = 0\nhigh = 101\n",
             "b.toml:6: load_growth_pct: 101: is outside above -100 … 100 %",
         ),
@@ -220,6 +224,7 @@ fn what_is_wrong_in_a_tender_is_told_by_line() {
             "hv_kv = 0.2",
             "t.toml:17: hv_kv: 0.2: is below lv_kv 0.4: hv_kv and lv_kv look exchanged",
         ),
+        ("lv_kv = 0.4", "law = \"EU\"", "t.toml:18: law: EU: is not known; known are eu-548-2014"),
         ("\"lot-mean\"", "\"mean\"", "t.toml:12: settlement: mean: is not one of unit or lot-mean"),
     ] {
         let report = desk.text(What::Tender, "t.toml", &TENDER.replacen(from, to, 1));

@@ -12,6 +12,7 @@ pub(crate) fn sheet(currency: &str, lot: Lot, bids: Vec<Bid>) -> TenderSheet {
         lots: vec![lot],
         bids,
         measured: Vec::new(),
+        awards: Vec::new(),
     }
 }
 

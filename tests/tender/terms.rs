@@ -287,7 +287,7 @@ fn json_has_the_keys_of_the_contract() {
     assert_eq!(keys(&json), ["tender", "currency", "lots", "awards"]);
     let lot = &json["lots"][0];
     let of_lot = "lot quantity factor_a_per_kw factor_b_per_kw factor_aux_per_kw bids least_owning_cost \
-                  recommended margin_pct map changes flags near_tie_order nearest_border";
+                  recommended margin_pct map changes flags near_tie_order nearest_border award";
     assert_eq!(keys(lot).join(" "), of_lot);
     let of_bid = "rank bid bidder price no_load_cost load_cost auxiliary_cost added_cost owning_cost \
                   owning_cost_at_tolerance lot_cost law near_tie excluded flags";

@@ -219,7 +219,7 @@ record! {
         transmission_efficiency_pu: Option<f64>, C::above(0.0, 1.0).blank("1"), "transmission efficiency of the levelized method, ET";
         investment_per_kw_year: Option<f64>, C::real(0.0, 1e9).blank("0"), "levelised system investment of the levelized method, LIC, per kW and year";
         near_tie_pct: Option<f64>, C::real(0.0, 100.0).blank("0"), "bids within this of the least owning cost count as near-tied";
-        law: Option<String>, C::id(), "minimum-efficiency law that offers must meet";
+        law: Option<String>, C::id(), "minimum-efficiency law that offers must meet: eu-548-2014, us-10cfr431 or ca-sor-2016-311";
         estimate_missing: Option<bool>, C::flag().blank("false"), "estimate missing losses from the fleet's own known units";
         units_per_year: Option<i64>, C::integer(0, 10_000_000), "most replacements a year";
         units_per_site_year: Option<i64>, C::integer(0, 10_000_000), "most replacements a year at one site";
@@ -288,7 +288,7 @@ record! {
         max_sound_db: Option<f64>, C::real(0.0, 200.0), "highest sound level";
         max_mass_kg: Option<f64>, C::above(0.0, 1e7), "highest mass";
         max_delivery_weeks: Option<f64>, C::real(0.0, 1000.0), "latest delivery";
-        law: Option<String>, C::id(), "minimum-efficiency law that bids must meet";
+        law: Option<String>, C::id(), "minimum-efficiency law that bids must meet: eu-548-2014, us-10cfr431 or ca-sor-2016-311";
         near_tie_pct: Option<f64>, C::real(0.0, 100.0).blank("basis, else 0"), "bids within this of the least owning cost count as near-tied";
         tolerance: Option<Tolerance>, C::choice(Tolerance::WORDS).blank("iec"), "rule for losses above the guarantee";
         settlement: Option<Settlement>, C::choice(Settlement::WORDS).blank("unit"), "penalty per unit or on the mean of the lot";
@@ -342,6 +342,36 @@ record! {
     }
 }
 
+record! {
+    /// The award of a lot: the bid, and the terms under which it was chosen and is settled.
+    Award {
+        lot: String, C::id().required(), "the lot";
+        bid: String, C::id().required(), "the bid that it went to";
+        factor_a_per_kw: f64, C::real(-1e12, 1e12).required(), "value of a kW of no-load loss at the award";
+        factor_b_per_kw: f64, C::real(-1e12, 1e12).required(), "value of a kW of load loss at the lot's rating at the award";
+        factor_aux_per_kw: f64, C::real(-1e12, 1e12).required(), "value of a kW of auxiliary loss at the award";
+        stray_share_pu: f64, SHARE_PU.required(), "stray part of a load loss whose split is not known, at the award";
+        owning_cost: f64, C::real(-1e15, 1e15).required(), "owning cost of one unit at the award";
+        recommended: Option<String>, C::id(), "the bid that led at the award";
+        basis: Option<String>, C::id(), "the basis of the comparison";
+        program: String, C::id().required(), "version of the program that compared";
+        awarded_at: String, C::id().required(), "when (UTC)";
+        awarded_by: String, C::id().required(), "who";
+        why: Option<String>, C::text(), "why, in their own words";
+    }
+}
+
+record! {
+    /// A measured unit that entered the fleet.
+    Delivery {
+        tender: String, C::id().required(), "the tender";
+        lot: String, C::id().required(), "the lot";
+        bid: String, C::id().required(), "the bid";
+        serial: String, C::id().required(), "serial number";
+        unit: String, C::id().required(), "the unit of the fleet";
+    }
+}
+
 /// A basis with its ranges and budgets: what one basis file holds.
 #[derive(Clone, Debug, PartialEq)]
 pub struct BasisSheet {
@@ -366,4 +396,6 @@ pub struct TenderSheet {
     pub bids: Vec<Bid>,
     /// Measured losses of delivered units, in order of entry.
     pub measured: Vec<Measured>,
+    /// Awards of its lots, in order of entry.
+    pub awards: Vec<Award>,
 }

@@ -3,6 +3,17 @@
 
 use super::tables::{CANADA, EU_INDEX_2014, EU_INDEX_2019, EU_LOSSES, US};
 use super::*;
+use crate::engine::columns::{Basis, Lot};
+
+/// The columns that name a law say which there are.
+#[test]
+fn columns_name_every_law() {
+    for column in Basis::COLUMNS.iter().chain(Lot::COLUMNS).filter(|c| c.name == "law") {
+        for law in known() {
+            assert!(column.meaning.contains(law.key), "{}: {}", law.key, column.meaning);
+        }
+    }
+}
 
 fn on(text: &str) -> NaiveDate {
     text.parse().expect("a date")

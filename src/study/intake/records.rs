@@ -5,7 +5,7 @@ use std::collections::{HashMap, HashSet};
 use super::ahead::{Batch, Read, read_ahead};
 use super::{Intake, IntakeError, Report, What};
 use crate::book::tables::{BIDS, LOTS, MEASURED, OFFERS, TENDERS, TEST_REPORTS, UNITS};
-use crate::book::{Book, Change, Table, Tally};
+use crate::book::{Book, Change, Known, Table, Tally};
 use crate::engine::columns::{Value, nearest};
 use crate::exchange::rejects::Rejects;
 use crate::exchange::rules::{self, Rule, Rules};
@@ -61,6 +61,14 @@ impl Intake<'_> {
                     };
                     rules.judge(values, |place, why| faults.push(fault(place, why)));
                     ties.judge(values, |place, why| faults.push(fault(place, why)))?;
+                    if let Some(known) = &known {
+                        ties.same_bidder(known, values, |place, why| {
+                            faults.push(fault(place, why));
+                        });
+                        ties.keeps_awarded(known, values, |place, why| {
+                            faults.push(fault(place, why));
+                        })?;
+                    }
                     if faults.is_empty() {
                         upsert.put(known, values)?;
                         continue;
@@ -182,7 +190,7 @@ impl<'c> Ties<'c> {
             What::Units => &["profile"],
             What::Tests => &["unit"],
             What::Bids => &["tender", "lot", "currency"],
-            What::Measured => &["tender", "lot", "bid"],
+            What::Measured => &["tender", "lot", "bid", "serial"],
             _ => &[],
         };
         let profiles = match what {
@@ -232,11 +240,74 @@ impl<'c> Ties<'c> {
                         );
                         broken(self.places[2], why);
                     }
-                } else if !self.change.has(&BIDS, &[tender, lot, text(2).unwrap_or_default()])? {
-                    broken(self.places[2], format!("is no bid for {tender}/{lot} in the book"));
+                } else {
+                    let (bid, serial) = (text(2).unwrap_or_default(), text(3).unwrap_or_default());
+                    if !self.change.has(&BIDS, &[tender, lot, bid])? {
+                        broken(self.places[2], format!("is no bid for {tender}/{lot} in the book"));
+                    } else if let Some(award) = self.change.awarded(tender, lot)?
+                        && award.bid != bid
+                    {
+                        let why =
+                            format!("is another bid: {tender}/{lot} is awarded to {}", award.bid);
+                        broken(self.places[2], why);
+                    } else if let Some(other) =
+                        self.change.measured_under(tender, lot, bid, serial)?
+                    {
+                        let why =
+                            format!("is measured as a unit of bid {other} already, not of {bid}");
+                        broken(self.places[3], why);
+                    }
                 }
             }
             _ => {}
+        }
+        Ok(())
+    }
+
+    /// Holds that a bid stays that of its bidder: two bidders may have called theirs alike.
+    fn same_bidder(&self, known: &Known, values: &[Value], mut broken: impl FnMut(usize, String)) {
+        let Some(place) = BIDS.position("bidder").filter(|_| self.what == What::Bids) else {
+            return;
+        };
+        if let (Value::Text(own), Value::Text(new)) = (known.old(place), &values[place])
+            && own != new
+        {
+            let bid = BIDS.position("bid").map_or(&Value::Blank, |at| &values[at]);
+            let why = format!(
+                "has a bid {} of {own} in the book: two bids of one name; give this one another. If {own} was \
+                 written wrong, import it once with a blank bidder and --clear-blank",
+                shown(bid)
+            );
+            broken(place, why);
+        }
+    }
+
+    /// Holds that what a bid was awarded for stays; a remark may change.
+    fn keeps_awarded(
+        &self,
+        known: &Known,
+        values: &[Value],
+        mut broken: impl FnMut(usize, String),
+    ) -> Result<(), IntakeError> {
+        if self.what != What::Bids {
+            return Ok(());
+        }
+        let text = |place: usize| match &values[place] {
+            Value::Text(text) => text.as_str(),
+            _ => "",
+        };
+        let remark = |place: &usize| BIDS.columns[*place].name == "note";
+        let changed: Vec<usize> = known.differs(values).filter(|place| !remark(place)).collect();
+        let (tender, lot) = (text(self.places[0]), text(self.places[1]));
+        let bid = BIDS.position("bid").map_or("", text);
+        if changed.is_empty() || self.change.awarded(tender, lot)?.is_none_or(|a| a.bid != bid) {
+            return Ok(());
+        }
+        for place in changed {
+            let why = format!(
+                "would change: bid {bid} is awarded {tender}/{lot}, what it offers stays; withdraw the award first"
+            );
+            broken(place, why);
         }
         Ok(())
     }

@@ -3,6 +3,7 @@
 use super::{Intake, IntakeError, Report};
 use crate::book::{Book, BookError, Change, Tally};
 use crate::engine::columns::TenderSheet;
+use crate::engine::decision::uncertainty::Spread;
 use crate::engine::economics::Assumptions;
 use crate::engine::law;
 use crate::exchange::sheets::{self, Sheet};
@@ -19,7 +20,15 @@ impl Intake<'_> {
             let line = sheet.line(refusal.quantity);
             self.problems.add(line, refusal.quantity, &refusal.value, refusal.why);
         }
-        self.known_law(&sheet, basis.law.as_deref());
+        self.known_law(&sheet, "law", basis.law.as_deref());
+        for range in &sheet.content.ranges {
+            // Where the basis leaves the input blank, a lot may give it: that is seen when it is drawn.
+            let base = basis.number(&range.quantity);
+            if let Some(Err(refusal)) = base.map(|base| Spread::of(range, Some(base))) {
+                let line = sheet.line(&range.quantity);
+                self.problems.add(line, &range.quantity, &refusal.value, refusal.why);
+            }
+        }
         let change = book.change(self.actor, Some(&self.file))?;
         let saved = change.save_basis(&sheet.content);
         let (current, actor) = (self.options.current, self.actor);
@@ -37,17 +46,17 @@ impl Intake<'_> {
         let TenderSheet { rates, lots, .. } = &sheet.content;
         self.rows = 1 + (rates.len() + lots.len()) as u64;
         for lot in lots {
-            self.known_law(&sheet, lot.law.as_deref());
+            self.known_law(&sheet, &format!("{}.law", lot.lot), lot.law.as_deref());
         }
         let change = book.change(self.actor, Some(&self.file))?;
         let saved = change.save_tender(&sheet.content);
         self.settle(change, saved, &sheet)
     }
 
-    /// Holds that a law that is named is known.
-    fn known_law<T>(&mut self, sheet: &Sheet<T>, law: Option<&str>) {
+    /// Holds that a law that is named, at `key` of the file, is known.
+    fn known_law<T>(&mut self, sheet: &Sheet<T>, key: &str, law: Option<&str>) {
         if let Some(Err(refusal)) = law.map(law::named) {
-            self.problems.add(sheet.line("law"), "law", &refusal.value, refusal.why);
+            self.problems.add(sheet.line(key), "law", &refusal.value, refusal.why);
         }
     }
 
@@ -81,7 +90,7 @@ impl Intake<'_> {
                 let line = sheet.line("price_series");
                 self.problems.add(line, "price_series", "", error.to_string());
             }
-            Err(error @ BookError::InUse { .. }) => {
+            Err(error @ (BookError::InUse { .. } | BookError::Awarded { .. })) => {
                 self.problems.add(1, "lot", "", error.to_string());
             }
             Err(error) => return Err(error.into()),

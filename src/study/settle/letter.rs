@@ -4,7 +4,7 @@ use super::{LotSettlement, SettleResult, UnitSettlement};
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
 use crate::study::figures::{group, short};
-use crate::study::tender::letter::{cautions, flag};
+use crate::study::tender::letter::{cautions, day, flag};
 
 /// The settlement of a tender as a letter.
 pub fn settlement(result: &SettleResult) -> Letter {
@@ -37,7 +37,9 @@ pub(in crate::study) fn section(
     for key in lot.flags.iter().filter(|key| **key == "factor_scale") {
         letter.warning(flag(key));
     }
+    award(letter, lot);
     promise(letter, lot, currency);
+    correction(letter, lot);
     units(letter, lot, currency);
     outcome(letter, lot, currency);
     let mut said: Vec<(&str, Vec<&str>)> = Vec::new();
@@ -56,6 +58,35 @@ pub(in crate::study) fn section(
     }
     for key in lot.flags.iter().filter(|key| **key != "factor_scale") {
         letter.warning(flag(key));
+    }
+}
+
+/// Whether the bid is the awarded one, and so by which terms it is settled.
+fn award(letter: &mut Letter, lot: &LotSettlement) {
+    match (&lot.awarded_to, &lot.awarded_at) {
+        (Some(bid), Some(at)) if *bid == lot.bid => letter.text(format!(
+            "Awarded on {}: settled by the factors and the stray share of the award.",
+            day(at)
+        )),
+        (Some(bid), _) => letter.warning(format!(
+            "the lot is awarded to {bid}, not to this bid; the factors are today's"
+        )),
+        (None, _) => letter.text("The lot is not awarded in this book; the factors are today's."),
+    }
+}
+
+/// How tests at another temperature were brought to the lot's: a penalty may hang on it.
+fn correction(letter: &mut Letter, lot: &LotSettlement) {
+    let g = &lot.guaranteed;
+    let Some(reference) = g.reference_temp_c else { return };
+    if lot.units.iter().any(|unit| unit.test_temp_c.is_some_and(|c| c != reference)) {
+        letter.text(format!(
+            "Load losses read at another temperature are brought to {} °C with windings of {} and a stray share of {} of the load loss; a maker's report that splits the loss goes before: import its load loss at {} °C, the test temperature left blank.",
+            short(reference),
+            g.winding_metal,
+            short(g.stray_share_pu),
+            short(reference)
+        ));
     }
 }
 

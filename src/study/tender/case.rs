@@ -1,10 +1,10 @@
 //! A tender of a book with the basis that fills what its lots leave open: what every command on a tender begins with.
 
 use super::risk::{Question, risk};
-use super::{BasisForFactors, LotFactors, TenderResult, evaluate, lot_factors};
+use super::{BasisForFactors, LotFactors, TenderResult, award_of, evaluate, lot_factors};
 use crate::book::{Book, BookError};
 use crate::engine::Refusal;
-use crate::engine::columns::TenderSheet;
+use crate::engine::columns::{Lot, TenderSheet};
 use crate::engine::decision::Context;
 use crate::engine::decision::tender::factors::Computed;
 use crate::engine::decision::uncertainty::RankCorrelation;
@@ -44,8 +44,27 @@ impl Case {
     /// The book fails or has no such tender or basis; which of several bases is meant cannot be told and a lot
     /// needs one.
     pub fn read(book: &Book, tender: &str, basis: Option<&str>) -> Result<Self, StudyError> {
+        Self::read_where(book, tender, basis, |_, lot| Computed::by(lot).any())
+    }
+
+    /// The same for settling: a lot that is awarded needs no basis, it is settled by the terms of the award.
+    ///
+    /// # Errors
+    /// As [`Case::read`].
+    pub fn to_settle(book: &Book, tender: &str, basis: Option<&str>) -> Result<Self, StudyError> {
+        Self::read_where(book, tender, basis, |sheet, lot| {
+            Computed::by(lot).any() && award_of(sheet, &lot.lot).is_none()
+        })
+    }
+
+    fn read_where(
+        book: &Book,
+        tender: &str,
+        basis: Option<&str>,
+        needs_basis: impl Fn(&TenderSheet, &Lot) -> bool,
+    ) -> Result<Self, StudyError> {
         let sheet = book.tender(tender)?;
-        let open = sheet.lots.iter().any(|lot| Computed::by(lot).any());
+        let open = sheet.lots.iter().any(|lot| needs_basis(&sheet, lot));
         match Desk::basis_only(book, basis) {
             Ok(desk) => Self::new(sheet, Some(desk)),
             Err(StudyError::Book(BookError::WhichBasis { known })) if known.is_empty() || !open => {
@@ -62,6 +81,18 @@ impl Case {
     pub fn new(sheet: TenderSheet, desk: Option<Desk>) -> Result<Self, StudyError> {
         let ready = |desk: Desk| desk.context().map(|context| (desk, context));
         Ok(Self { sheet, basis: desk.map(ready).transpose()? })
+    }
+
+    /// The same case as if no lot stated its factors: each comes from the basis, so that its ranges and what it rests
+    /// on show how safe a winner by published factors is.
+    #[must_use]
+    pub fn from_basis(mut self) -> Self {
+        for lot in &mut self.sheet.lots {
+            lot.factor_a_per_kw = None;
+            lot.factor_b_per_kw = None;
+            lot.factor_aux_per_kw = None;
+        }
+        self
     }
 
     /// The basis, where there is one.

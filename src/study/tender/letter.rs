@@ -3,6 +3,8 @@
 //! Each section is a function of its own; [`result`] joins those that a terminal shows. Figures come from the
 //! results as they are; only shares and differences that a reader would work out in the head are formed here.
 
+mod answer;
+mod award;
 mod bars;
 mod factors;
 mod lot;
@@ -16,6 +18,8 @@ use crate::exchange::letter::Column;
 use crate::study::figures::{figure, group};
 use crate::study::losses::flag_meaning;
 
+pub use answer::answer;
+pub use award::{awarded as award, delivered};
 pub(super) use bars::cost_bars;
 pub use factors::lot_factors;
 pub(super) use lot::{
@@ -44,6 +48,7 @@ pub fn result(case: &Case, result: &TenderResult) -> Letter {
         map(&mut letter, &about);
         changes(&mut letter, &about);
         risk(&mut letter, &about);
+        award::standing(&mut letter, &about);
         doubts(&mut letter, &about);
     }
     packages(&mut letter, result);
@@ -107,6 +112,11 @@ pub(super) fn packages(letter: &mut Letter, result: &TenderResult) {
         ],
         std::iter::once(own).chain(awards.packages.iter().map(to_one)).collect(),
     );
+}
+
+/// The day of a moment in time (UTC, ISO 8601).
+pub(in crate::study) fn day(moment: &str) -> &str {
+    moment.split('T').next().unwrap_or(moment)
 }
 
 /// What stays on every screen and in every report.

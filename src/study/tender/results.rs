@@ -8,6 +8,8 @@ use serde::{Serialize, Serializer};
 
 use super::award::Awards;
 use super::risk::RiskResult;
+use crate::engine::columns::Award;
+use crate::engine::decision::equal_pv;
 use crate::engine::decision::tender::factors::Computed;
 use crate::engine::decision::tender::map::Point;
 use crate::engine::transformer::losses::Losses;
@@ -65,6 +67,8 @@ pub struct LotResult {
     /// Which factors come from the basis.
     #[serde(skip)]
     pub computed: Computed,
+    /// The award of the lot, where the book has one.
+    pub award: Option<Awarded>,
     /// How sure the winner is, where that was asked.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub risk: Option<RiskResult>,
@@ -106,6 +110,66 @@ pub struct BidResult {
     /// Its losses at its rating and the lot's reference temperature: what the figures are computed from.
     #[serde(skip)]
     pub losses: Losses,
+}
+
+/// The award of a lot as the book has it: the terms under which the bid was chosen.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct Awarded {
+    /// The bid.
+    pub bid: String,
+    /// Who bids.
+    pub bidder: Option<String>,
+    /// Who awarded.
+    pub awarded_by: String,
+    /// When (UTC).
+    pub awarded_at: String,
+    /// Why, in their own words.
+    pub why: Option<String>,
+    /// The bid that led at the award.
+    pub recommended: Option<String>,
+    /// The basis of the comparison.
+    pub basis: Option<String>,
+    /// Version of the program that compared.
+    pub program: String,
+    /// Value of a kW of no-load loss at the award.
+    pub factor_a_per_kw: f64,
+    /// Value of a kW of load loss at the lot's rating at the award.
+    pub factor_b_per_kw: f64,
+    /// Value of a kW of auxiliary loss at the award.
+    pub factor_aux_per_kw: f64,
+    /// Stray part of a load loss whose split is not known, at the award.
+    pub stray_share_pu: f64,
+    /// Owning cost of one unit at the award.
+    pub owning_cost: f64,
+    /// Owning cost of one unit compared again now.
+    pub owning_cost_now: f64,
+}
+
+impl Awarded {
+    /// The award of a record, its bid as it compares now.
+    pub fn of(record: &Award, now: &BidResult) -> Self {
+        Self {
+            bid: record.bid.clone(),
+            bidder: now.bidder.clone(),
+            awarded_by: record.awarded_by.clone(),
+            awarded_at: record.awarded_at.clone(),
+            why: record.why.clone(),
+            recommended: record.recommended.clone(),
+            basis: record.basis.clone(),
+            program: record.program.clone(),
+            factor_a_per_kw: record.factor_a_per_kw,
+            factor_b_per_kw: record.factor_b_per_kw,
+            factor_aux_per_kw: record.factor_aux_per_kw,
+            stray_share_pu: record.stray_share_pu,
+            owning_cost: record.owning_cost,
+            owning_cost_now: now.owning_cost,
+        }
+    }
+
+    /// Whether the comparison gives another figure now than at the award.
+    pub fn differs_now(&self) -> bool {
+        !equal_pv(self.owning_cost, self.owning_cost_now)
+    }
 }
 
 /// The winner map of a lot.

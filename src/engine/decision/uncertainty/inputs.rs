@@ -155,6 +155,14 @@ fn find(name: &str) -> Result<(&'static Column, Place), Refusal> {
     })
 }
 
+impl Basis {
+    /// The number that the basis gives for one of its columns; none where it is blank or no number.
+    pub fn number(&self, quantity: &str) -> Option<f64> {
+        let at = Self::COLUMNS.iter().position(|column| column.name == quantity)?;
+        self.values().get(at).and_then(number)
+    }
+}
+
 fn number(value: &Value) -> Option<f64> {
     match value {
         Value::Real(x) => Some(*x),

@@ -51,6 +51,16 @@ pub fn lot_factors(factors: &LotFactors, working: bool) -> Letter {
         ));
     }
     letter.points(factors.law.iter().map(legal).collect());
+    if factors.basis.is_some() {
+        letter.text(
+            "Once they are published they must not move with the basis: write them below [[lot]] of the tender file and import it again.",
+        );
+        letter.lines(vec![
+            format!("factor_a_per_kw = {:.2}", factors.factor_a_per_kw),
+            format!("factor_b_per_kw = {:.2}", factors.factor_b_per_kw),
+            format!("factor_aux_per_kw = {:.2}", factors.factor_aux_per_kw),
+        ]);
+    }
     for key in &factors.flags {
         letter.warning(flag(key));
     }

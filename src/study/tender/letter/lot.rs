@@ -173,10 +173,14 @@ pub(in crate::study) fn near_tie(letter: &mut Letter, about: &About) {
 pub(in crate::study) fn excluded(letter: &mut Letter, about: &About) {
     let out = about.result.bids.iter().filter(|bid| bid.rank.is_none());
     let point = |bid: &BidResult| {
-        let why: Vec<String> = bid.excluded.iter().map(|key| reason(about, bid, key)).collect();
-        format!("Out: {} misses {}.", bid.bid, why.join("; "))
+        format!("Out: {} misses {}.", bid.bid, excluded_because(about, bid).join("; "))
     };
     letter.points(out.map(point).collect());
+}
+
+/// What a bid misses, each with what it offers and what is asked.
+pub(super) fn excluded_because(about: &About, bid: &BidResult) -> Vec<String> {
+    bid.excluded.iter().map(|key| reason(about, bid, key)).collect()
 }
 
 /// What a bid misses: the key of the limit, what it offers and what is asked.

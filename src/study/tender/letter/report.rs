@@ -1,5 +1,6 @@
 //! The report of a tender: everything that buyers, bidders and auditors ask, from factors to settlement.
 
+use super::award::standing;
 use super::lot::About;
 use super::{
     asks, cautions, changes, cost_bars, doubts, excluded, factor_scale, factors, map, money,
@@ -49,6 +50,7 @@ pub fn report(
         map(&mut letter, &about);
         changes(&mut letter, &about);
         risk(&mut letter, &about);
+        standing(&mut letter, &about);
         doubts(&mut letter, &about);
     }
     packages(&mut letter, result);

@@ -63,7 +63,7 @@ fn swings(letter: &mut Letter, about: &About, risk: &RiskResult) {
     }
     let moves = |swing: &Swing| swing.owning_cost_low != swing.owning_cost_high;
     if !risk.swing.iter().any(moves) {
-        letter.text("No range of the basis moves these factors: the lot states them itself.");
+        letter.text("No range of the basis moves these factors: the lot states them itself. How sure the winner is if they had come from the basis: --from-basis.");
         return;
     }
     letter

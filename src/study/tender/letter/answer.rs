@@ -1,0 +1,99 @@
+//! The answer to one bidder: where its bid stands, what it lacked, and how its figures come about.
+
+use super::lot::{About, excluded_because};
+use super::{asks, cautions, factor_scale, factors, flag};
+use crate::engine::working::Step;
+use crate::exchange::Letter;
+use crate::exchange::letter::Column;
+use crate::study::StudyError;
+use crate::study::explain::StepRow;
+use crate::study::figures::group;
+use crate::study::tender::shortfall::{Shortfall, shortfall};
+use crate::study::tender::{Case, TenderResult, working};
+
+/// Answers for a bid in each lot that has one of that name.
+///
+/// # Errors
+/// As [`crate::study::tender::evaluate`].
+pub fn answer(case: &Case, result: &TenderResult, bid: &str) -> Result<Letter, StudyError> {
+    let mut letter = Letter::default();
+    letter.heading(1, format!("Tender {}: bid {bid}", result.tender));
+    for of in result.lots.iter().filter(|lot| lot.bids.iter().any(|of| of.bid == bid)) {
+        let about = About::new(case, result, of);
+        asks(&mut letter, &about);
+        factor_scale(&mut letter, &about);
+        factors(&mut letter, &about);
+        standing(&mut letter, &about, bid);
+        let w = working(&case.sheet, case.basis().as_ref(), &of.lot, bid)?;
+        letter.heading(3, "How its owning cost comes about");
+        let rows = |steps: &[Step]| StepRow::lines(&StepRow::tree(steps), 0);
+        letter.lines([rows(&w.on_terms), rows(&w.owning_cost)].concat());
+        letter.heading(3, "How the factors come about");
+        letter.lines(rows(&w.factors));
+    }
+    cautions(&mut letter);
+    Ok(letter)
+}
+
+/// Where the bid stands, and what it lacked.
+fn standing(letter: &mut Letter, about: &About, name: &str) {
+    let (result, currency) = (about.result, about.currency);
+    let Some(bid) = result.bids.iter().find(|bid| bid.bid == name) else { return };
+    let by = bid.bidder.as_ref().map_or(String::new(), |bidder| format!(" of {bidder}"));
+    let parts = [
+        ("price", bid.price),
+        ("freight, installation, other adders", bid.added_cost),
+        ("no-load loss", bid.no_load_cost),
+        ("load loss", bid.load_cost),
+        ("auxiliary loss", bid.auxiliary_cost),
+        ("owning cost", bid.owning_cost),
+    ];
+    letter.heading(3, format!("Bid {name}{by}"));
+    letter.table(
+        vec![
+            Column::words("part of the owning cost of one unit"),
+            Column::figures("amount", currency),
+        ],
+        parts.map(|(part, amount)| vec![part.to_owned(), group(amount, 2)]).to_vec(),
+    );
+    match bid.rank {
+        None => letter.text(format!(
+            "It is not ranked: it misses {}.",
+            excluded_because(about, bid).join("; ")
+        )),
+        Some(rank) => {
+            letter.text(format!("It ranks {rank} of {} by owning cost.", about.ranked().count()))
+        }
+    }
+    if let Some(lacked) = shortfall(result, bid) {
+        letter.text(lacks(&lacked, name, currency));
+    }
+    for key in &bid.flags {
+        letter.warning(flag(key));
+    }
+}
+
+/// What the bid lacked against the cheapest to own.
+fn lacks(lacked: &Shortfall, name: &str, currency: &str) -> String {
+    let mut ways = Vec::new();
+    if let Some(less) = lacked.price {
+        ways.push(format!("a price lower by {} {currency}", group(less, 2)));
+    }
+    if let Some(less) = lacked.no_load_loss_w {
+        ways.push(format!("a no-load loss lower by {} W", group(less, 1)));
+    }
+    if let Some(less) = lacked.load_loss_w {
+        ways.push(format!("a load loss lower by {} W", group(less, 1)));
+    }
+    let percent = lacked.gap_pct.map_or(String::new(), |pct| format!(" ({} %)", group(pct, 2)));
+    let first = format!(
+        "{} costs least to own: {} {currency} a unit, {} {currency} less than {name}{percent}.",
+        lacked.least,
+        group(lacked.least_owning_cost, 2),
+        group(lacked.gap, 2)
+    );
+    match ways.as_slice() {
+        [] => format!("{first} No single figure of {name} could have made that up."),
+        ways => format!("{first} Any one of these would have made that up: {}.", ways.join("; ")),
+    }
+}

@@ -1,0 +1,149 @@
+//! What was awarded, and what came of it into the fleet.
+
+use super::lot::About;
+use super::{day, flag};
+use crate::exchange::Letter;
+use crate::exchange::letter::Column;
+use crate::study::figures::{group, short};
+use crate::study::tender::Awarded;
+use crate::study::tender::decide::AwardResult;
+use crate::study::tender::deliver::{DeliverResult, DeliveredUnit};
+
+/// To whom, by whom, when and why.
+fn sentence(award: &Awarded) -> String {
+    let bidder = award.bidder.as_ref().map_or(String::new(), |bidder| format!(" ({bidder})"));
+    let why = award.why.as_ref().map_or(String::new(), |why| format!(", because: {why}"));
+    let (bid, who) = (&award.bid, &award.awarded_by);
+    format!("{bid}{bidder} by {who} on {}{why}.", day(&award.awarded_at))
+}
+
+/// The terms that an award keeps.
+fn terms(award: &Awarded, currency: &str) -> String {
+    format!(
+        "Kept for the settlement: A {}, B {}, A aux {} {currency}/kW, stray share {}; owning cost of one unit {}.",
+        group(award.factor_a_per_kw, 2),
+        group(award.factor_b_per_kw, 2),
+        group(award.factor_aux_per_kw, 2),
+        short(award.stray_share_pu),
+        group(award.owning_cost, 2)
+    )
+}
+
+/// The award of a lot and whether the comparison has changed since; nothing where it is not awarded.
+pub(in crate::study) fn standing(letter: &mut Letter, about: &About) {
+    let Some(award) = &about.result.award else { return };
+    letter.heading(3, "Award");
+    letter.text(format!("Awarded to {}", sentence(award)));
+    letter.text(terms(award, about.currency));
+    let leads = about.result.recommended.as_ref();
+    if award.differs_now() || leads != award.recommended.as_ref() {
+        let led = |bid: Option<&String>| bid.map_or("none", String::as_str).to_owned();
+        letter.warning(format!(
+            "compared again now, {} comes to {} instead of {} {} and {} leads instead of {}: the basis has changed since, or the program (then {}); the award stands as it was made",
+            award.bid,
+            group(award.owning_cost_now, 2),
+            group(award.owning_cost, 2),
+            about.currency,
+            led(leads),
+            led(award.recommended.as_ref()),
+            award.program
+        ));
+    }
+}
+
+/// What awarding a lot came to.
+pub fn awarded(result: &AwardResult) -> Letter {
+    let mut letter = Letter::default();
+    let (award, currency) = (&result.award, &result.currency);
+    let said = match result.outcome {
+        "withdrawn" => "The award is withdrawn; it was made to",
+        "same" => "Nothing changed: it was awarded already, to",
+        _ => "Awarded to",
+    };
+    let units = if result.quantity == 1 { "unit" } else { "units" };
+    letter.text(format!(
+        "Tender {}, lot {}, {} {units}. {said} {}",
+        result.tender,
+        result.lot,
+        result.quantity,
+        sentence(award)
+    ));
+    if result.outcome != "withdrawn" {
+        letter.text(terms(award, currency));
+    }
+    for key in &result.flags {
+        letter.warning(flag(key));
+    }
+    if !result.excluded.is_empty() {
+        letter.warning(format!("{} misses {}", award.bid, result.excluded.join(", ")));
+    }
+    if !result.measured_of_others.is_empty() {
+        letter.warning(format!(
+            "the book holds measured units of {}, which is not the awarded bid",
+            result.measured_of_others.join(", ")
+        ));
+    }
+    letter
+}
+
+/// What taking delivered units into the fleet came to.
+pub fn delivered(result: &DeliverResult) -> Letter {
+    let mut letter = Letter::default();
+    let count = |outcome| result.units.iter().filter(|unit| unit.outcome == outcome).count();
+    letter.text(format!(
+        "Tender {}: units in the fleet {} new, {} changed, {} the same.",
+        result.tender,
+        count("new"),
+        count("changed"),
+        count("same")
+    ));
+    let row = |unit: &DeliveredUnit| {
+        vec![
+            unit.unit.clone(),
+            unit.lot.clone(),
+            unit.bid.clone(),
+            short(unit.rated_kva),
+            group(unit.no_load_loss_w, 1),
+            group(unit.load_loss_w, 1),
+            unit.reference_temp_c.map_or_else(|| "–".to_owned(), short),
+            unit.outcome.to_owned(),
+        ]
+    };
+    letter.table(
+        vec![
+            Column::words("unit"),
+            Column::words("lot"),
+            Column::words("bid"),
+            Column::figures("rating", "kVA"),
+            Column::figures("no-load loss", "W"),
+            Column::figures("load loss", "W"),
+            Column::figures("at", "°C"),
+            Column::words(""),
+        ],
+        result.units.iter().map(row).collect(),
+    );
+    for out in &result.left_out {
+        letter.text(match &out.serial {
+            Some(serial) => format!("Left out: {serial} of lot {} {}.", out.lot, out.why),
+            None => format!("Left out: lot {} {}.", out.lot, out.why),
+        });
+    }
+    let rejectable: Vec<&str> = result
+        .units
+        .iter()
+        .filter(|unit| unit.rejectable)
+        .map(|unit| unit.serial.as_str())
+        .collect();
+    if !rejectable.is_empty() {
+        letter.warning(format!(
+            "{} may be rejected as beyond tolerance; a rejected unit is kept out of the fleet with --except SERIAL",
+            rejectable.join(", ")
+        ));
+    }
+    if count("new") > 0 {
+        letter.text(
+            "To rank them, import what the place asks of them (columns unit, rated_kva, site, peak_kva, profile): ironhum import units FILE.",
+        );
+    }
+    letter
+}

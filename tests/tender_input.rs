@@ -1,0 +1,279 @@
+//! Bad input of a tender through the program: each fault is named, nothing is stored. And factors that look like money
+//! per W: stored, with a warning wherever the tender is shown.
+
+mod support;
+
+use std::process::Output;
+
+use serde_json::Value;
+use support::Program;
+
+const TENDER: &str = r#"tender = "T"
+currency = "EUR"
+
+[rates]
+USD = 0.9
+
+[[lot]]
+lot = "L"
+quantity = 2
+rated_kva = 400
+factor_a_per_kw = 9000
+factor_b_per_kw = 2500
+factor_aux_per_kw = 0
+
+[[lot]]
+lot = "M"
+rated_kva = 630
+factor_a_per_kw = 9000
+factor_b_per_kw = 2500
+factor_aux_per_kw = 0
+"#;
+const BIDS: &str = "tender,lot,bid,bidder,price,currency,quantity,no_load_loss_w,load_loss_w\n\
+                    T,L,A,Nord,9000,EUR,2,430,4600\nT,L,B,Sund,9500,USD,2,400,4200\n";
+
+fn text(output: &Output) -> (Option<i32>, String, String) {
+    let read = |bytes: &[u8]| String::from_utf8_lossy(bytes).into_owned();
+    (output.status.code(), read(&output.stdout), read(&output.stderr))
+}
+
+/// A book with the tender and two bids for its first lot.
+fn program() -> Program {
+    let program = Program::new();
+    program.import("tender", &program.write("tender.toml", TENDER), &[]);
+    program.import("bids", &program.write("bids.csv", BIDS), &[]);
+    program
+}
+
+/// Everything that the book holds of the tender, and its journal.
+fn held(program: &Program) -> (Value, Value) {
+    let json = |command: &[&str]| program.json(&[command, &["--format", "json"]].concat());
+    (json(&["tender", "T"]), json(&["journal", "--top", "1000"]))
+}
+
+/// An import that must be rejected: it says each of `said`, and the book is as it was.
+#[track_caller]
+fn rejected(program: &Program, what: &str, content: &str, said: &[&str]) {
+    let before = held(program);
+    let file = program.write("wrong", content);
+    let (code, out, error) = text(&program.run(&["import", what, &file.to_string_lossy()]));
+    assert_eq!((code, out.as_str()), (Some(3), ""), "{error}");
+    for said in said {
+        assert!(error.contains(said), "{said}\n{error}");
+    }
+    assert!(error.contains("nothing was stored"), "{error}");
+    assert_eq!(held(program), before);
+}
+
+const HEAD: &str = "tender,lot,bid,bidder,price,currency,quantity,no_load_loss_w,load_loss_w\n";
+
+#[test]
+fn two_bids_of_one_name() {
+    let program = program();
+    let twice =
+        format!("{HEAD}T,M,C,Nord,1,EUR,1,1,1\nT,M,D,Nord,1,EUR,1,1,1\nT,M,C,West,2,EUR,1,1,1\n");
+    rejected(&program, "bids", &twice, &["wrong:4: bid: T/M/C: stands on line 2 already"]);
+    // In another file it would quietly replace the bid of another bidder.
+    let other = format!("{HEAD}T,L,A,West,1,EUR,2,1,1\n");
+    rejected(
+        &program,
+        "bids",
+        &other,
+        &["wrong:2: bidder: West: has a bid A of Nord in the book: two bids of one name"],
+    );
+    // The same bidder may correct its bid, and a misspelt bidder can be mended on purpose.
+    let corrected = format!("{HEAD}T,L,A,Nord,8900,EUR,2,430,4600\n");
+    program.import("bids", &program.write("corrected.csv", corrected), &[]);
+    let blank = format!("{HEAD}T,L,A,,8900,EUR,2,430,4600\n");
+    program.import("bids", &program.write("blank.csv", blank), &["--clear-blank"]);
+    let named = format!("{HEAD}T,L,A,Nordel,8900,EUR,2,430,4600\n");
+    program.import("bids", &program.write("named.csv", named), &[]);
+}
+
+#[test]
+fn unknown_currency() {
+    let program = program();
+    let bid = format!("{HEAD}T,L,C,Nord,1,SEK,2,1,1\n");
+    rejected(
+        &program,
+        "bids",
+        &bid,
+        &["wrong:2: currency: SEK: has no rate in tender T; add it below [rates]"],
+    );
+    // A basis in a currency without a rate: the factor that it would give is refused by name.
+    let open = TENDER.replacen("factor_a_per_kw = 9000\n", "", 1);
+    program.import("tender", &program.write("open.toml", open), &[]);
+    let basis = "name = \"b\"\ncurrency = \"NOK\"\nfirst_year = 2027\nhorizon_years = 20\n\
+                 discount_rate_pct = 6\nenergy_price_per_kwh = 0.1\nlife_years = 40\n";
+    program.import("basis", &program.write("basis.toml", basis), &[]);
+    let (code, out, error) = text(&program.run(&["tender", "T"]));
+    assert_eq!((code, out.as_str()), (Some(3), ""));
+    assert!(error.contains("lot L: currency NOK: has no rate in this tender"), "{error}");
+}
+
+#[test]
+fn rate_of_zero() {
+    let program = program();
+    for (rate, said) in [
+        ("0", "wrong:5: USD: 0: is outside above 0"),
+        ("-0.9", "wrong:5: USD: -0.9: is outside above 0"),
+        ("nan", "wrong:5: USD: nan: is not a number"),
+        ("inf", "wrong:5: USD: inf: is infinite"),
+        ("\"0.9\"", "wrong:5: USD: 0.9: is a number; write it without quotes"),
+    ] {
+        let tender = TENDER.replace("USD = 0.9", &format!("USD = {rate}"));
+        rejected(&program, "tender", &tender, &[said]);
+    }
+}
+
+#[test]
+fn quantity_of_zero() {
+    let program = program();
+    let lot = TENDER.replace("quantity = 2", "quantity = 0");
+    rejected(&program, "tender", &lot, &["wrong:9: quantity: 0: is outside 1 … 10000000"]);
+    let bid = format!("{HEAD}T,L,C,Nord,1,EUR,0,1,1\n");
+    rejected(&program, "bids", &bid, &["wrong:2: quantity: 0: is outside 1 … 10000000"]);
+}
+
+#[test]
+fn bid_for_an_unknown_lot() {
+    let program = program();
+    let bids = format!("{HEAD}T,l,C,Nord,1,EUR,1,1,1\nU,L,C,Nord,1,EUR,1,1,1\n");
+    rejected(
+        &program,
+        "bids",
+        &bids,
+        &[
+            "wrong:2: lot: l: is no lot of tender T in the book",
+            "wrong:3: tender: U: is no tender of the book",
+        ],
+    );
+}
+
+#[test]
+fn lot_without_bids() {
+    let program = program();
+    // One lot has a winner: done, the other is named.
+    let (code, out, error) = text(&program.run(&["tender", "T"]));
+    assert_eq!(code, Some(0));
+    assert!(out.contains("No bid for lot M yet; import them: ironhum import bids FILE."), "{out}");
+    assert!(error.contains("tender T: lot M has no bid; import them"), "{error}");
+    // No winner at all is no solution.
+    for arguments in [
+        &["tender", "T", "--lot", "M"][..],
+        &["tender", "T", "--lot", "M", "--risk"],
+        &["report", "tender", "T", "-", "--lot", "M"],
+    ] {
+        let (code, _, error) = text(&program.run(arguments));
+        assert_eq!(code, if arguments.contains(&"--risk") { Some(3) } else { Some(4) }, "{error}");
+        let named = if arguments.contains(&"--risk") { "basis" } else { "lot M has no bid" };
+        assert!(error.contains(named), "{error}");
+    }
+    let before = held(&program);
+    let (code, out, error) =
+        text(&program.run(&["award", "T", "--lot", "M", "--bid", "A", "--why", "x"]));
+    assert_eq!((code, out.as_str()), (Some(2), ""));
+    assert!(error.contains("bid A is not in tender T, lot M; it holds none yet"), "{error}");
+    assert_eq!(held(&program), before);
+    let out = format!("{HEAD}T,M,C,Nord,1,EUR,1,1,1\n");
+    let heavy = TENDER.replace("rated_kva = 630", "rated_kva = 630\nmax_no_load_loss_w = 0.5");
+    program.import("tender", &program.write("heavy.toml", heavy), &[]);
+    program.import("bids", &program.write("out.csv", out), &[]);
+    let (code, _, error) = text(&program.run(&["tender", "T", "--lot", "M"]));
+    assert_eq!(code, Some(4));
+    assert!(error.contains("lot M has no bid that keeps its limits"), "{error}");
+}
+
+#[test]
+fn measured_units_of_another_bid() {
+    let program = program();
+    let head = "tender,lot,bid,serial,no_load_loss_w,load_loss_w\n";
+    let measured = |rows: &str| format!("{head}{rows}");
+    rejected(
+        &program,
+        "measured",
+        &measured("T,L,C,s1,430,4600\nT,M,A,s2,430,4600\n"),
+        &[
+            "wrong:2: bid: C: is no bid for T/L in the book",
+            "wrong:3: bid: A: is no bid for T/M in the book",
+        ],
+    );
+    // One unit cannot be of two bids, in one file or in two.
+    let both = measured("T,L,A,s1,430,4600\nT,L,B,s1,400,4200\n");
+    let said = "wrong:3: serial: s1: is measured as a unit of bid A already, not of B";
+    rejected(&program, "measured", &both, &[said]);
+    program.import("measured", &program.write("m.csv", measured("T,L,A,s1,430,4600\n")), &[]);
+    rejected(
+        &program,
+        "measured",
+        &measured("T,L,B,s1,400,4200\n"),
+        &["wrong:2: serial: s1: is measured as a unit of bid A already, not of B"],
+    );
+    // After the award only units of the awarded bid are taken.
+    program.done(&[
+        "award",
+        "T",
+        "--lot",
+        "L",
+        "--bid",
+        "A",
+        "--why",
+        "two sisters run since 1998",
+    ]);
+    rejected(
+        &program,
+        "measured",
+        &measured("T,L,A,s2,431,4600\nT,L,B,s3,400,4200\n"),
+        &["wrong:3: bid: B: is another bid: T/L is awarded to A"],
+    );
+    let settled = program.json(&["settle", "T", "--format", "json"]);
+    assert_eq!(settled["lots"].as_array().map(Vec::len), Some(1));
+    assert_eq!(settled["lots"][0]["units"].as_array().map(Vec::len), Some(1));
+}
+
+/// 9.0 and 2.5 are EUR per W: per kW they make the losses worth 0.2 % of the price.
+#[test]
+fn factors_that_look_like_money_per_watt() {
+    let program = Program::new();
+    let per_watt = TENDER
+        .replace("factor_a_per_kw = 9000", "factor_a_per_kw = 9.0")
+        .replace("factor_b_per_kw = 2500", "factor_b_per_kw = 2.5");
+    program.import("tender", &program.write("tender.toml", per_watt), &[]);
+    program.import("bids", &program.write("bids.csv", BIDS), &[]);
+    let measured = "tender,lot,bid,serial,no_load_loss_w,load_loss_w\nT,L,A,s1,430,4600\n";
+    program.import("measured", &program.write("measured.csv", measured), &[]);
+    let warning = "check that the factors are per kW, not per W";
+    let json = program.json(&["tender", "T", "--lot", "L", "--format", "json"]);
+    assert_eq!(json["lots"][0]["flags"], serde_json::json!(["factor_scale"]), "stored and told");
+    assert_eq!(json["lots"][0]["factor_a_per_kw"], 9.0);
+    let shown = |arguments: &[&str]| {
+        let (code, out, error) = text(&program.run(arguments));
+        assert_eq!(code, Some(0), "{error}");
+        let flat = |text: &str| text.split_whitespace().collect::<Vec<_>>().join(" ");
+        (flat(&out), flat(&error))
+    };
+    for arguments in [
+        &["tender", "T", "--lot", "L"][..],
+        &["settle", "T"],
+        &["factors", "--tender", "T", "--lot", "L"],
+        &["report", "tender", "T", "-"],
+        &["award", "T", "--lot", "L", "--bid", "A", "--why", "spares"],
+        &["check"],
+    ] {
+        let (out, _) = shown(arguments);
+        assert!(out.contains(warning), "{arguments:?}: {out}");
+        if arguments[0] == "tender" {
+            let at = out.find(warning).expect("is there");
+            assert!(at < out.find("9 000").expect("a price"), "before the figures: {out}");
+        }
+    }
+    for command in ["tender", "settle"] {
+        let (out, error) = shown(&[command, "T", "--format", "csv"]);
+        assert!(!out.contains(warning) && error.contains(warning), "{command}: {error}");
+    }
+    // One bid whose losses weigh more than 1 % lifts the doubt: the factors may be meant so.
+    let heavy = format!("{HEAD}T,L,C,West,90,EUR,2,430,4600\n");
+    program.import("bids", &program.write("heavy.csv", heavy), &[]);
+    let (out, _) = shown(&["tender", "T", "--lot", "L"]);
+    assert!(!out.contains(warning), "{out}");
+}
