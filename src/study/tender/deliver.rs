@@ -8,7 +8,7 @@ use crate::book::tables::{DELIVERIES, UNITS};
 use crate::book::{Actor, Book, Change, Outcome, Upsert};
 use crate::engine::Refusal;
 use crate::engine::columns::{Bid, Column, Delivery, Lot, Unit, Value};
-use crate::engine::decision::tender::legal;
+use crate::engine::transformer::vector_group;
 use crate::study::StudyError;
 use crate::study::settle::{LotSettlement, UnitSettlement};
 
@@ -257,7 +257,7 @@ fn unit(
     let year = |day: &String| day.get(..4).and_then(|year| year.parse().ok());
     Unit {
         unit: name.to_owned(),
-        phases: vector_group.as_deref().and_then(legal::phases),
+        phases: vector_group.as_deref().and_then(vector_group::phases),
         rated_kva: of_bid.guaranteed.rated_kva,
         hv_kv: lot.hv_kv,
         lv_kv: lot.lv_kv,
