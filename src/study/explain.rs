@@ -191,7 +191,8 @@ pub(super) fn numbers(
 ) -> Vec<(String, f64)> {
     let mut found = Vec::new();
     if let Ok(Value::Object(parts)) = serde_json::to_value(result) {
-        for (key, part) in parts.iter().filter(|(key, _)| !without.contains(&key.as_str())) {
+        let told = |key: &str| !without.contains(&key) && !labels.contains(&key);
+        for (key, part) in parts.iter().filter(|(key, _)| told(key)) {
             leaves(key, part, labels, &mut found);
         }
     }

@@ -62,7 +62,7 @@ fn standing(letter: &mut Letter, about: &About, name: &str) {
             excluded_because(about, bid).join("; ")
         )),
         Some(rank) => {
-            letter.text(format!("It ranks {rank} of {} by owning cost.", about.ranked().count()))
+            letter.text(format!("It ranks {rank} of {} by owning cost.", about.ranked().count()));
         }
     }
     if let Some(lacked) = shortfall(result, bid) {
