@@ -4,8 +4,9 @@ use super::{Guarantee, LotSettlement, settle};
 use crate::engine::columns::{Measured, Settlement};
 use crate::engine::decision::place::stated::{LOAD_LOSS, said};
 use crate::engine::decision::tender::settlement::{
-    beyond, delivered, mean, mean_cost, penalty, penalty_of_mean, penalty_of_units,
+    beyond, delivered, mean, mean_cost, penalty_of_mean, penalty_of_units,
 };
+use crate::engine::economics::penalty::penalty;
 use crate::engine::working::{Recorder as _, Silent, Step, Working};
 use crate::study::StudyError;
 use crate::study::explain::{Explained, nth, numbers};

@@ -7,7 +7,7 @@ use super::Terms;
 use super::bid::Comparable;
 use super::tolerance::{self, Exceeded};
 use crate::engine::columns::{Bid, Measured, Tolerance, WindingMetal};
-use crate::engine::economics::loss_factors::LossFactors;
+use crate::engine::economics::penalty::Excess;
 use crate::engine::flags::Flags;
 use crate::engine::transformer::losses::Losses;
 use crate::engine::transformer::temperature::vanishing_temp_c;
@@ -54,17 +54,6 @@ pub struct Delivered {
     pub excess: Excess,
     /// What is doubtful.
     pub flags: Flags,
-}
-
-/// Losses above the guarantee; below it they are negative.
-#[derive(Clone, Copy, Debug, Default, PartialEq)]
-pub struct Excess {
-    /// Of the no-load loss.
-    pub no_load_w: f64,
-    /// Of the load loss.
-    pub load_w: f64,
-    /// Of the auxiliary loss; none where it was not measured.
-    pub auxiliary_w: Option<f64>,
 }
 
 const EXCESS: Formula = Formula {
@@ -143,32 +132,6 @@ pub fn mean<R: Recorder>(w: &mut R, units: &[Excess]) -> Excess {
         load_w: mean("load loss", &|unit| unit.load_w),
         auxiliary_w: Some(mean("auxiliary loss", &|unit| unit.auxiliary_w.unwrap_or(0.0))),
     }
-}
-
-const PENALTY: Formula = Formula {
-    name: "penalty for losses above the guarantee, each loss on its own, no credit",
-    symbol: "penalty",
-    formula: "(A·max(0, ΔP0) + B·max(0, ΔPk) + A_aux·max(0, ΔPa))/1000",
-    unit: "money",
-    source: "rule of City of Colton purchase specification, June 1988; methods, section 8",
-};
-
-/// Penalty for an excess of one unit (or of the mean unit). `factors` hold B for the bid's rating.
-pub fn penalty<R: Recorder>(w: &mut R, factors: &LossFactors, excess: &Excess) -> f64 {
-    let (a, b, x) = (factors.factor_a_per_kw, factors.factor_b_per_kw, factors.factor_aux_per_kw);
-    let auxiliary = excess.auxiliary_w.unwrap_or(0.0);
-    let value =
-        (a * excess.no_load_w.max(0.0) + b * excess.load_w.max(0.0) + x * auxiliary.max(0.0))
-            / 1000.0;
-    let inputs = [
-        ("A", a),
-        ("ΔP0", excess.no_load_w),
-        ("B", b),
-        ("ΔPk", excess.load_w),
-        ("A_aux", x),
-        ("ΔPa", auxiliary),
-    ];
-    w.step(&PENALTY, &inputs, value)
 }
 
 const OF_UNITS: Formula = Formula {
