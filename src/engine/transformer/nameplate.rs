@@ -404,15 +404,12 @@ pub struct CorrectedLoss {
 
 /// Brings a load loss at test temperature to the reference temperature; `resistive_w` is its I²R part at test
 /// temperature where resistances were measured.
-///
-/// # Errors
-/// A stray share outside 0 to 1.
 pub fn at_reference<R: Recorder>(
     w: &mut R,
     load_loss_w: f64,
     resistive_w: Option<f64>,
     correction: Correction,
-) -> Result<CorrectedLoss, Refusal> {
+) -> CorrectedLoss {
     let t0 = vanishing_temp_c(correction.metal);
     let to = correction.reference_temp_c;
     let from = correction.test_temp_c.unwrap_or(to);
@@ -420,18 +417,18 @@ pub fn at_reference<R: Recorder>(
         let loss = if from == to {
             load_loss_w
         } else {
-            load_loss_at_reference(w, load_loss_w, correction.stray_share_pu, t0, from, to)?
+            load_loss_at_reference(w, load_loss_w, correction.stray_share_pu, t0, from, to)
         };
-        return Ok(CorrectedLoss { load_loss_w: loss, resistive_loss_w: None, stray_loss_w: None });
+        return CorrectedLoss { load_loss_w: loss, resistive_loss_w: None, stray_loss_w: None };
     };
     let (stray, x) = (load_loss_w - resistive, (t0 + to) / (t0 + from));
     let loss =
         if from == to { load_loss_w } else { load_loss_at(w, resistive, stray, t0, from, to) };
-    Ok(CorrectedLoss {
+    CorrectedLoss {
         load_loss_w: loss,
         resistive_loss_w: Some(resistive * x),
         stray_loss_w: Some(stray / x),
-    })
+    }
 }
 
 /// The per-unit circuit with its load loss brought to another temperature: the reactance stays.
@@ -632,12 +629,11 @@ mod tests {
             reference_temp_c: 75.0,
             stray_share_pu: 0.0,
         };
-        let measured = at_reference(&mut Silent, 1200.0, Some(1050.0), correction).expect("sound");
+        let measured = at_reference(&mut Silent, 1200.0, Some(1050.0), correction);
         assert!((measured.load_loss_w / 1_364.900_65 - 1.0).abs() < 1e-8);
         let stray_share_pu = measured.stray_loss_w.expect("split") / measured.load_loss_w;
         let share =
-            at_reference(&mut Silent, 1200.0, None, Correction { stray_share_pu, ..correction })
-                .expect("sound");
+            at_reference(&mut Silent, 1200.0, None, Correction { stray_share_pu, ..correction });
         assert!((share.load_loss_w / measured.load_loss_w - 1.0).abs() < 1e-12);
     }
 }

@@ -102,7 +102,7 @@ calc! {
                 return Err(Refusal::new("lv_resistance_ohm", "", why));
             }
         };
-        let at = nameplate::at_reference(w, copper.load_loss_w, resistive, correction)?;
+        let at = nameplate::at_reference(w, copper.load_loss_w, resistive, correction);
         let circuit = if at.load_loss_w == copper.load_loss_w {
             copper.circuit
         } else {
@@ -195,7 +195,7 @@ calc! {
         }
         let Some(resistive) = i.resistive_loss_w else {
             let (from, to) = (i.test_temp_c, i.reference_temp_c);
-            let loss = load_loss_at_reference(w, i.load_loss_w, i.stray_share_pu, t0, from, to)?;
+            let loss = load_loss_at_reference(w, i.load_loss_w, i.stray_share_pu, t0, from, to);
             return Ok(result("load_loss_w", loss)
                 .and("stray_loss_w", i.stray_share_pu * loss));
         };

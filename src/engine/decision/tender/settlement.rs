@@ -10,40 +10,8 @@ use crate::engine::columns::{Bid, Measured, Tolerance, WindingMetal};
 use crate::engine::economics::penalty::Excess;
 use crate::engine::flags::Flags;
 use crate::engine::transformer::losses::Losses;
-use crate::engine::transformer::temperature::vanishing_temp_c;
+use crate::engine::transformer::temperature::{load_loss_at_reference, vanishing_temp_c};
 use crate::engine::working::{Formula, Recorder};
-
-const RATIO: Formula = Formula {
-    name: "ratio of winding resistances, test to reference",
-    symbol: "x",
-    formula: "(T0+θ_test)/(T0+θ_ref)",
-    unit: "",
-    source: "IEC 60076-1 Annex E (memory)",
-};
-const FROM_TEST: Formula = Formula {
-    name: "measured load loss at the reference temperature",
-    symbol: "Pk",
-    formula: "P_test/((1−s)·x + s/x)",
-    unit: "W",
-    source: "IEC 60076-1 Annex E (memory), stray share s at the reference temperature; methods, section 8",
-};
-
-/// A measured load loss at the reference temperature; `stray_share_pu` is the stray part there.
-pub fn load_loss_from_test<R: Recorder>(
-    w: &mut R,
-    test_w: f64,
-    stray_share_pu: f64,
-    metal_t0_c: f64,
-    test_c: f64,
-    reference_c: f64,
-) -> f64 {
-    w.open();
-    let x = (metal_t0_c + test_c) / (metal_t0_c + reference_c);
-    w.step(&RATIO, &[("T0", metal_t0_c), ("θ_test", test_c), ("θ_ref", reference_c)], x);
-    let s = stray_share_pu;
-    let value = test_w / ((1.0 - s) * x + s / x);
-    w.close(&FROM_TEST, &[("P_test", test_w), ("s", s), ("x", x)], value)
-}
 
 /// A delivered unit against its guarantee.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -78,7 +46,7 @@ pub fn delivered<R: Recorder>(
             flags = flags.with_if(test_c != reference_c, Flags::SPLIT_UNKNOWN);
             let t0 = vanishing_temp_c(bid.winding_metal.unwrap_or(WindingMetal::Copper));
             let (test_w, stray) = (measured.load_loss_w, terms.stray_share_pu);
-            load_loss_from_test(w, test_w, stray, t0, test_c, reference_c)
+            load_loss_at_reference(w, test_w, stray, t0, test_c, reference_c)
         }
         (Some(_), None) => {
             flags = flags.with(Flags::NO_REFERENCE_TEMP);
@@ -191,20 +159,4 @@ pub fn beyond<R: Recorder>(
     let found = tolerance::exceeded(w, rule, &guaranteed.losses, excess.no_load_w, excess.load_w);
     let rejectable = !found.is_empty() && rule != Tolerance::Ieee;
     (found, rejectable)
-}
-
-#[cfg(test)]
-mod tests {
-    use super::*;
-    use crate::engine::working::Silent;
-
-    /// The correction is the inverse of bringing a loss from the reference to the test temperature.
-    #[test]
-    fn test_and_reference_agree() {
-        use crate::engine::transformer::temperature::load_loss_at;
-        let (pk, s) = (4000.0, 0.1);
-        let test = load_loss_at(&mut Silent, (1.0 - s) * pk, s * pk, 235.0, 75.0, 21.0);
-        let back = load_loss_from_test(&mut Silent, test, s, 235.0, 21.0, 75.0);
-        assert!((back / pk - 1.0).abs() < 1e-14);
-    }
 }
