@@ -7,12 +7,12 @@ use serde::Serialize;
 use crate::book::{Book, BookError};
 use crate::engine::columns::{Basis, Bid, Lot, Offer, Unit, VoltageModel, YesNo};
 use crate::engine::decision::LeftOut;
-use crate::engine::decision::place::{loading_contradicts, losses_contradict};
+use crate::engine::decision::place::loading_contradicts;
 use crate::engine::economics::Assumptions;
 use crate::engine::economics::traps;
 use crate::engine::flags::Flags;
 use crate::engine::loading::{Profile, Ratios};
-use crate::engine::transformer::losses::quoted;
+use crate::engine::transformer::losses::{self, quoted};
 use crate::engine::transformer::{plausibility, vector_group};
 use crate::engine::working::Silent;
 use crate::study::tender::{BasisForFactors, looks_per_watt};
@@ -307,7 +307,7 @@ impl Doubts {
             self.add(of, odd.quantity, Kind::Contradictory, format!("{} {}", odd.value, odd.why));
         }
         let (p0, pk, total) = (plate.no_load_loss_w, plate.load_loss_w, plate.total_loss_w);
-        if losses_contradict(p0, pk, total) {
+        if losses::contradict(p0, pk, total) {
             self.flag(of, "total_loss_w", Kind::Contradictory, Flags::LOSSES_CONTRADICT);
         }
         if p0.zip(pk).is_some_and(|(p0, pk)| pk < p0) {

@@ -14,7 +14,7 @@ use crate::engine::economics::Assumptions;
 use crate::engine::flags::Flags;
 use crate::engine::loading::{Duty, Market, Ratios, VoltageDrop, factors};
 use crate::engine::transformer::circuit::{PowerFactor, of_nameplate};
-use crate::engine::transformer::losses::{Losses, quoted};
+use crate::engine::transformer::losses::{Losses, contradict, quoted};
 use crate::engine::transformer::voltage_drop::Supply;
 use crate::engine::working::Recorder;
 use stated::{first_known, known_or, said};
@@ -210,18 +210,6 @@ impl LeftOut {
     }
 }
 
-/// Whether the total loss and its two parts differ by more than 1 % (W).
-pub fn losses_contradict(
-    no_load_loss_w: Option<f64>,
-    load_loss_w: Option<f64>,
-    total_loss_w: Option<f64>,
-) -> bool {
-    match (no_load_loss_w, load_loss_w, total_loss_w) {
-        (Some(p0), Some(pk), Some(total)) => (p0 + pk - total).abs() > 0.01 * total,
-        _ => false,
-    }
-}
-
 /// Whether a load or loss factor given beside a profile differs from the profile's by more than 0.05.
 pub fn loading_contradicts(
     ratios: &Ratios,
@@ -302,7 +290,7 @@ pub fn resolve_at<R: Recorder>(
             Flags::LOSS_BASE_DIFFERS,
         )
         .with_if(losses.load_loss_w < losses.no_load_loss_w, Flags::LOSSES_SWAPPED);
-    flags = flags.with_if(losses_contradict(p0, pk, total), Flags::LOSSES_CONTRADICT);
+    flags = flags.with_if(contradict(p0, pk, total), Flags::LOSSES_CONTRADICT);
 
     said(w, &stated::RATING, f.rated_kva, "the unit");
     let peak = [(known(f.peak_kva), "the unit")];

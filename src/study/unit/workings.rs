@@ -10,9 +10,7 @@ use crate::engine::decision::{LeftOut, Place};
 use crate::engine::economics::assumptions::EnergyPrice;
 use crate::engine::economics::running_cost;
 use crate::engine::transformer::circuit::{PowerFactor, core_resistance, resistance_pu};
-use crate::engine::transformer::losses::{
-    annual_efficiency_pct, annual_energy, auxiliary_energy_kwh,
-};
+use crate::engine::transformer::losses::{annual_efficiency_pct, annual_energy, auxiliary_energy};
 use crate::engine::transformer::{efficiency, regulation};
 use crate::engine::working::{Step, Working};
 use crate::study::StudyError;
@@ -258,7 +256,7 @@ impl Question<'_> {
             }
             "auxiliary_energy_kwh" => {
                 let place = self.told(w, &["h_aux"])?;
-                auxiliary_energy_kwh(w, &place.losses, &place.duty);
+                auxiliary_energy(w, &place.losses, &place.duty);
             }
             "no_load_energy_kwh" | "load_energy_kwh" => {
                 let symbol = if quantity == "load_energy_kwh" { "Ek" } else { "E0" };
