@@ -18,4 +18,3 @@ pub mod temperature;
 pub mod thermal;
 pub mod vector_group;
 pub mod voltage_drop;
-pub mod windings;
