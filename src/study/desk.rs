@@ -4,10 +4,10 @@ use std::sync::{Arc, OnceLock};
 
 use crate::book::Book;
 use crate::engine::Refusal;
-use crate::engine::columns::{BasisSheet, CapitalRecovery, Offer, Unit, VoltageModel};
+use crate::engine::columns::{BasisSheet, CapitalRecovery, Offer, VoltageModel};
 use crate::engine::decision::estimate::FleetEstimate;
 use crate::engine::decision::fleet::FleetColumns;
-use crate::engine::decision::{Candidate, Context, UnitFacts};
+use crate::engine::decision::{Candidate, Context};
 use crate::engine::economics::Assumptions;
 use crate::engine::economics::assumptions::EnergyPrice;
 use crate::engine::flags::Flags;
@@ -206,15 +206,6 @@ impl Desk {
     /// The name of an offer by its index.
     pub fn offer_name(&self, candidate: usize) -> &str {
         self.offers.get(candidate).map_or("", |offer| &offer.offer)
-    }
-
-    /// The facts of a unit record against the profiles on the desk.
-    pub fn facts(&self, unit: &Unit) -> UnitFacts {
-        let profile = unit
-            .profile
-            .as_deref()
-            .and_then(|name| self.profiles.iter().position(|p| p.profile == name));
-        UnitFacts::of_unit(unit, profile)
     }
 
     /// Index of a unit in the fleet by its identifier.

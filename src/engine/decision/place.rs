@@ -7,7 +7,7 @@ pub mod stated;
 
 use std::sync::Arc;
 
-use crate::engine::columns::{Insulation, Unit, VoltageModel, WindingMetal, YesNo};
+use crate::engine::columns::{Insulation, VoltageModel, WindingMetal};
 use crate::engine::decision::estimate::{End, FleetEstimate};
 use crate::engine::decision::fit::{Candidate, highest_peak};
 use crate::engine::economics::Assumptions;
@@ -53,44 +53,6 @@ pub struct UnitFacts {
 
 pub(super) fn known(value: f64) -> Option<f64> {
     if value.is_nan() { None } else { Some(value) }
-}
-
-impl UnitFacts {
-    /// The facts of a unit; `profile` is the index of its profile.
-    #[expect(clippy::cast_precision_loss, reason = "years and customers are small")]
-    pub fn of_unit(unit: &Unit, profile: Option<usize>) -> Self {
-        let real = |value: Option<f64>| value.unwrap_or(f64::NAN);
-        let money = |value: Option<crate::engine::columns::Money>| {
-            value.map_or(f64::NAN, crate::engine::columns::Money::amount)
-        };
-        Self {
-            in_service: unit.in_service != Some(YesNo::No),
-            rated_kva: unit.rated_kva,
-            loss_base_kva: real(unit.loss_base_kva),
-            no_load_loss_w: real(unit.no_load_loss_w),
-            load_loss_w: real(unit.load_loss_w),
-            total_loss_w: real(unit.total_loss_w),
-            auxiliary_loss_w: real(unit.auxiliary_loss_w),
-            auxiliary_hours: real(unit.auxiliary_hours),
-            peak_kva: real(unit.peak_kva),
-            load_factor_pu: real(unit.load_factor_pu),
-            loss_factor_pu: real(unit.loss_factor_pu),
-            load_growth_pct: real(unit.load_growth_pct),
-            responsibility_pu: real(unit.responsibility_pu),
-            energised_hours: real(unit.energised_hours),
-            power_factor: real(unit.power_factor),
-            year_made: unit.year_made.map_or(f64::NAN, |y| y as f64),
-            failure_cost: money(unit.failure_cost),
-            removal_cost: money(unit.removal_cost),
-            scrap_value: money(unit.scrap_value),
-            customers: unit.customers.map_or(f64::NAN, |n| n as f64),
-            impedance_pct: real(unit.impedance_pct),
-            phases: unit.phases,
-            winding_metal: unit.winding_metal,
-            insulation: unit.insulation,
-            profile: profile.and_then(|p| u32::try_from(p).ok()).unwrap_or(u32::MAX),
-        }
-    }
 }
 
 /// What a basis brings to every unit: assumptions, prices, and the ratios of the profiles.

@@ -117,6 +117,24 @@ macro_rules! columns {
             kinds: Kinds,
         }
 
+        /// The names of the columns of numbers.
+        pub const NUMBERS: [&str; [$(stringify!($name)),+].len()] = [$(stringify!($name)),+];
+
+        impl UnitFacts {
+            /// A unit in service of which only numbers are known, in the order of [`NUMBERS`].
+            #[inline]
+            pub fn of_numbers([$($name),+]: [f64; NUMBERS.len()]) -> Self {
+                Self {
+                    in_service: true,
+                    profile: u32::MAX,
+                    phases: None,
+                    winding_metal: None,
+                    insulation: None,
+                    $($name,)+
+                }
+            }
+        }
+
         impl FleetColumns {
             /// The facts of unit number `i`.
             #[inline]
