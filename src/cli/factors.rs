@@ -77,20 +77,21 @@ pub(super) fn factors(
             }
             if options.working {
                 printer.line("")?;
-                working(printer, &result.working, 0)?;
+                working(printer, &result.working, 0, &result.currency)?;
             }
         }
     }
     Ok(Exit::Done)
 }
 
-/// A working as indented text: parts under the figure that they give.
+/// A working as indented text, amounts in `currency`: parts under the figure that they give.
 pub(super) fn working(
     printer: &mut Printer,
     steps: &[StepRow],
     depth: usize,
+    currency: &str,
 ) -> Result<(), Failure> {
-    for line in StepRow::lines(steps, depth) {
+    for line in StepRow::lines(steps, depth, currency) {
         printer.line(line)?;
     }
     Ok(())

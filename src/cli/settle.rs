@@ -70,7 +70,7 @@ pub(super) fn settle(
                     let steps = working(sheet, basis, &lot.lot, &lot.bid, &unit.serial)?;
                     printer.line("")?;
                     printer.line(format!("Unit {}", unit.serial))?;
-                    write_working(printer, &StepRow::tree(&steps), 0)?;
+                    write_working(printer, &StepRow::tree(&steps), 0, case.money())?;
                 }
             }
         }

@@ -154,7 +154,7 @@ fn write_workings(
             printer.line(format!("Lot {}, bid {}", lot.lot, bid.bid))?;
             let figures = [&w.owning_cost, &w.owning_cost_at_tolerance, &w.lot_cost];
             for steps in [&w.factors, &w.on_terms].into_iter().chain(figures) {
-                write_working(printer, &StepRow::tree(steps), 0)?;
+                write_working(printer, &StepRow::tree(steps), 0, case.money())?;
             }
         }
     }

@@ -8,6 +8,9 @@ use super::StudyError;
 use crate::engine::Refusal;
 use crate::engine::working::{Step, Working};
 
+/// What steps call an amount in any currency.
+pub const MONEY: &str = "money";
+
 /// One step of a working.
 #[derive(Clone, Debug, PartialEq, Serialize)]
 pub struct StepRow {
@@ -62,18 +65,20 @@ impl StepRow {
     }
 
     /// A working as lines, `depth` steps in: parts indented below the figure that they give. Of three or
-    /// more years by one formula the first is written in full, the others in a line each.
-    pub fn lines(rows: &[Self], depth: usize) -> Vec<String> {
+    /// more years by one formula the first is written in full, the others in a line each. Amounts are written in
+    /// `currency`; [`MONEY`] leaves it open.
+    pub fn lines(rows: &[Self], depth: usize, currency: &str) -> Vec<String> {
         let indent = "    ".repeat(depth);
         let mut lines = Vec::new();
         for (n, row) in rows.iter().enumerate() {
+            let unit = row.unit.replace(MONEY, currency);
             if Self::goes_on(rows, n) {
                 let (of, value) = (&row.of, row.value);
-                lines.push(format!("{indent}{of}: {} = {value} {}", row.substituted, row.unit));
+                lines.push(format!("{indent}{of}: {} = {value} {unit}", row.substituted));
                 continue;
             }
             if let Some(symbol) = row.formula.strip_suffix(" = as stated") {
-                lines.push(format!("{indent}{symbol} = {} {}   {}", row.value, row.unit, row.name));
+                lines.push(format!("{indent}{symbol} = {} {unit}   {}", row.value, row.name));
                 continue;
             }
             lines.push(format!("{indent}{}", row.name));
@@ -82,8 +87,8 @@ impl StepRow {
             if !row.formula.ends_with(&row.substituted) {
                 lines.push(format!("{indent}  = {}", row.substituted));
             }
-            lines.push(format!("{indent}  = {} {}   [{}]", row.value, row.unit, row.source));
-            lines.extend(Self::lines(&row.steps, depth + 1));
+            lines.push(format!("{indent}  = {} {unit}   [{}]", row.value, row.source));
+            lines.extend(Self::lines(&row.steps, depth + 1, currency));
         }
         lines
     }

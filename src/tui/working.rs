@@ -16,7 +16,7 @@ use super::work::Ranked;
 use super::{tender, unit};
 use crate::engine::columns::Unit;
 use crate::study::StudyError;
-use crate::study::explain::{Explained as _, StepRow};
+use crate::study::explain::{Explained as _, MONEY, StepRow};
 use crate::study::figures::figure;
 use crate::study::tender::BasisForFactors;
 use crate::study::unit::Question;
@@ -59,8 +59,8 @@ impl Panel {
         let Some(figure) = self.figures.get_mut(self.at) else { return Ok(()) };
         if let (Some((ranked, unit)), true) = (&self.unit, figure.lines.is_empty()) {
             let question = Question::new(&ranked.desk, &ranked.ranking.context, unit)?;
-            let lines = StepRow::lines(&question.working(&figure.title)?, 0);
-            figure.lines = in_currency(lines, &ranked.desk.sheet.basis.currency);
+            let currency = text::cut(&ranked.desk.sheet.basis.currency, 8);
+            figure.lines = StepRow::lines(&question.working(&figure.title)?, 0, &currency);
         }
         Ok(())
     }
@@ -77,17 +77,6 @@ impl Panel {
         let head = format!("{}: {}", text::clean(&self.of), figure.title);
         std::iter::once(head).chain(lines).collect::<Vec<_>>().join("\n") + "\n"
     }
-}
-
-/// Steps with the currency for "money" in units.
-fn in_currency(lines: Vec<String>, currency: &str) -> Vec<String> {
-    let currency = text::cut(currency, 8);
-    let unit = |line: String| {
-        ["/kW", " [", "   "].iter().fold(line, |line, after| {
-            line.replace(&format!(" money{after}"), &format!(" {currency}{after}"))
-        })
-    };
-    lines.into_iter().map(unit).collect()
 }
 
 fn heading(key: &str) -> &'static str {
@@ -131,11 +120,10 @@ fn of_bid(app: &App, ranked: &Arc<Ranked>) -> Option<Result<Panel, StudyError>> 
     let working = crate::study::tender::working(sheet, Some(&basis), lot, bid);
     Some(working.map(|working| {
         let opened = |title: &str, steps: &[_]| {
-            let mut lines = StepRow::lines(&StepRow::tree(steps), 0);
-            // Where the basis is in another currency a step says "money" of either.
-            if sheet.tender.currency == context.assumptions.currency {
-                lines = in_currency(lines, &sheet.tender.currency);
-            }
+            // Where the basis is in another currency a step is in either.
+            let same = sheet.tender.currency == context.assumptions.currency;
+            let currency = if same { &sheet.tender.currency } else { MONEY };
+            let lines = StepRow::lines(&StepRow::tree(steps), 0, &text::cut(currency, 8));
             Figure { title: title.to_owned(), lines }
         };
         let figures = vec![

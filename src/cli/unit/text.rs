@@ -3,6 +3,7 @@
 use crate::cli::exit::Failure;
 use crate::cli::print::{Printer, TextColumn};
 use crate::engine::columns;
+use crate::exchange::counted;
 use crate::study::estimate::EstimatedRow;
 use crate::study::figures::group;
 use crate::study::law::VerdictRow;
@@ -17,7 +18,8 @@ pub(super) fn text(printer: &mut Printer, d: &Dossier<'_>) -> Result<(), Failure
         let value = d.nameplate.get(column.name).filter(|v| !v.is_null());
         if let Some(value) = value.filter(|_| column.name != "unit") {
             let value = value.as_str().map_or_else(|| value.to_string(), str::to_owned);
-            printer.line(format!("  {:<22} {value} {}", column.name, column.unit()))?;
+            let unit = column.unit().replace("money", &d.currency);
+            printer.line(format!("  {:<22} {value} {unit}", column.name))?;
         }
     }
     if let Some(c) = &d.circuit {
@@ -51,11 +53,11 @@ pub(super) fn text(printer: &mut Printer, d: &Dossier<'_>) -> Result<(), Failure
     }
     for (name, loss) in d.estimated.iter().flat_map(EstimatedRow::losses) {
         printer.line(format!(
-            "Estimated {name}: {} W, with 95 % between {} and {} W; from {} units by {}{}.",
+            "Estimated {name}: {} W, with 95 % between {} and {} W; from {} by {}{}.",
             group(loss.estimate_w, 0),
             group(loss.low_w, 0),
             group(loss.high_w, 0),
-            loss.known_units,
+            counted(loss.known_units, "unit"),
             loss.terms.join(", "),
             match loss.units_set_aside {
                 0 => String::new(),

@@ -8,6 +8,7 @@ use crate::engine::columns::{Lot, TenderSheet};
 use crate::engine::decision::Context;
 use crate::engine::decision::tender::factors::Computed;
 use crate::engine::decision::uncertainty::RankCorrelation;
+use crate::study::explain::MONEY;
 use crate::study::settle::{SettleResult, settle};
 use crate::study::{Desk, StudyError};
 
@@ -101,6 +102,16 @@ impl Case {
             assumptions: &context.assumptions,
             market: &context.market,
         })
+    }
+
+    /// What amounts of the steps are written in: the currency of the tender, or "money" where the basis is in
+    /// another and a step may be in either.
+    pub fn money(&self) -> &str {
+        let own = self.sheet.tender.currency.as_str();
+        match &self.basis {
+            Some((_, context)) if context.assumptions.currency != own => MONEY,
+            _ => own,
+        }
     }
 
     /// Name of the basis, where there is one.

@@ -26,7 +26,7 @@ pub fn answer(case: &Case, result: &TenderResult, bid: &str) -> Result<Letter, S
         standing(&mut letter, &about, bid);
         let w = working(&case.sheet, case.basis().as_ref(), &of.lot, bid)?;
         letter.heading(3, "How its owning cost comes about");
-        let rows = |steps: &[Step]| StepRow::lines(&StepRow::tree(steps), 0);
+        let rows = |steps: &[Step]| StepRow::lines(&StepRow::tree(steps), 0, case.money());
         letter.lines([rows(&w.on_terms), rows(&w.owning_cost)].concat());
         letter.heading(3, "How the factors come about");
         letter.lines(rows(&w.factors));

@@ -3,7 +3,7 @@
 use super::flag;
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
-use crate::study::explain::StepRow;
+use crate::study::explain::{MONEY, StepRow};
 use crate::study::figures::{group, short};
 use crate::study::tender::{InCurrency, LegalLimit, LotFactors};
 
@@ -66,7 +66,7 @@ pub fn lot_factors(factors: &LotFactors, working: bool) -> Letter {
     }
     if working {
         letter.heading(2, "Working");
-        letter.lines(StepRow::lines(&factors.working, 0));
+        letter.lines(StepRow::lines(&factors.working, 0, MONEY));
     }
     letter
 }
