@@ -1,12 +1,13 @@
-//! The figures behind the bars: parts sum to the whole that the study states.
+//! The figures behind the bars: what is left of a present value when its parts are taken off is its failures.
 
 use ironhum::study::Watch;
 use ironhum::study::rank::{By, rank};
 use ironhum::study::unit::{choice_costs, decision};
 
-/// Present values of choices taken apart, over the whole demo fleet, with and without failures.
+/// Present values of choices taken apart, over the whole demo fleet: the parts, summed year by year, leave nothing of
+/// the value of the ranking, which sums otherwise, where nothing fails; else what failures cost.
 #[test]
-fn parts_of_a_choice_sum_to_its_present_value() {
+fn parts_of_a_choice_leave_its_failures() {
     for failures in [true, false] {
         let mut desk = crate::demo::session().desk;
         if !failures {
@@ -19,7 +20,6 @@ fn parts_of_a_choice_sum_to_its_present_value() {
             let (place, decision) = decision(&desk, &ranking.context, i).unwrap().unwrap();
             let costs = choice_costs(&ranking.context, &place, &decision).unwrap();
             let check = |cost: ironhum::engine::decision::parts::PolicyCost, pv: f64| {
-                assert!((cost.total() - pv).abs() <= 1e-12 * pv.abs());
                 // Nothing fails: nothing is left for failures. Else they cost something.
                 let rounding = 1e-9 * pv.abs();
                 if failures {
