@@ -121,14 +121,25 @@ impl Candidate {
         if !self.holds_voltage(duty, t, a) {
             return false;
         }
-        let Some(limit) = a.loading_limit_pu else { return true };
-        highest_peak(duty, t, a) <= limit * self.losses.rated_kva * (1.0 + 1e-12)
+        let rated_kva = self.losses.rated_kva;
+        a.loading_limit_pu
+            .is_none_or(|limit| within_limit(highest_peak(duty, t, a), rated_kva, limit))
     }
 }
 
-/// Highest peak of the years after `t` (kVA): the load grows or shrinks steadily, so that of the last or first.
-pub(super) fn highest_peak(duty: &Duty, t: usize, a: &Assumptions) -> f64 {
-    let k = if duty.load_growth_pu > 0.0 { a.years } else { t + 1 };
+/// Whether a peak load keeps a loading limit; equality up to rounding passes.
+pub fn within_limit(peak_kva: f64, rated_kva: f64, limit_pu: f64) -> bool {
+    peak_kva <= limit_pu * rated_kva * (1.0 + 1e-12)
+}
+
+/// The year after `t` with the highest peak: the load grows or shrinks steadily, so it is the last or the first.
+pub fn year_of_highest_peak(duty: &Duty, t: usize, a: &Assumptions) -> usize {
+    if duty.load_growth_pu > 0.0 { a.years } else { t + 1 }
+}
+
+/// Highest peak of the years after `t` (kVA).
+pub fn highest_peak(duty: &Duty, t: usize, a: &Assumptions) -> f64 {
+    let k = year_of_highest_peak(duty, t, a);
     duty.peak_kva * growth(duty.load_growth_pu, k, a.load_growth_years)
 }
 

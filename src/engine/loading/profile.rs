@@ -30,6 +30,15 @@ impl Profile {
         })
     }
 
+    /// The load of each step (of its magnitude) where the greatest of the year is `peak`, in the unit of that.
+    ///
+    /// # Errors
+    /// As [`Profile::ratios`].
+    pub fn loads(&self, peak: f64) -> Result<Vec<f64>, Refusal> {
+        let greatest = self.ratios(&mut Silent)?.peak;
+        Ok(self.values.iter().map(|s| s.abs() / greatest * peak).collect())
+    }
+
     /// The load-duration histogram: for each of `bins` equal steps of s = |load|/peak the share of the year and
     /// the root mean square of s inside the bin, so that its mean square is the loss factor. Empty bins are left
     /// out.

@@ -99,8 +99,8 @@ pub fn withdraw(
     let evaluated = case.evaluate(Some(lot))?;
     let change = book.change(actor, None)?;
     let record = change.withdraw(&case.sheet.tender.tender, lot)?;
-    change.commit()?;
     let (of_lot, bid) = find(&evaluated, lot, &record.bid)?;
+    change.commit()?;
     Ok(told(case, of_lot, bid, Awarded::of(&record, bid), "withdrawn"))
 }
 

@@ -8,6 +8,7 @@ use super::workings::of_heat;
 use crate::engine::Refusal;
 use crate::engine::columns::{Offer, TenderSheet, Unit};
 use crate::engine::decision::Place;
+use crate::engine::decision::fit::{highest_peak, within_limit, year_of_highest_peak};
 use crate::engine::decision::place::power_factor;
 use crate::engine::decision::side_by_side::{
     IMPEDANCE_PCT, RATIO_PCT, Rated, Sharing, VOLTAGE_PCT, circulating_pu, difference_pct,
@@ -211,9 +212,14 @@ impl Fit<'_> {
     fn highest_peak_pu<R: Recorder>(&self, w: &mut R) -> Option<f64> {
         let a = &self.question.context.assumptions;
         let duty = &self.place.as_ref()?.duty;
-        let k = if duty.load_growth_pu > 0.0 { a.years } else { 1 };
-        let peak_kva = peak_of_year(w, duty, k, a.load_growth_years);
+        let peak_kva = peak_of_year(w, duty, year_of_highest_peak(duty, 0, a), a.load_growth_years);
         Some(loading_pu(w, peak_kva, self.asked.losses.rated_kva))
+    }
+
+    fn within_loading_limit(&self) -> Option<bool> {
+        let a = &self.question.context.assumptions;
+        let peak_kva = highest_peak(&self.place.as_ref()?.duty, 0, a);
+        Some(within_limit(peak_kva, self.asked.losses.rated_kva, a.loading_limit_pu?))
     }
 
     fn regulation_pct<R: Recorder>(&self, w: &mut R) -> Result<Option<f64>, Refusal> {
@@ -330,8 +336,6 @@ impl Fit<'_> {
             (Some(true), Some(true)) => Some(true),
             _ => None,
         };
-        let highest = self.highest_peak_pu(w);
-        let loading_limit_pu = self.question.context.assumptions.loading_limit_pu;
         let level = self.fault_level_mva(w)?;
         let limit = self.asked.fault_limit_mva;
         let beside = self.beside_row()?;
@@ -347,11 +351,9 @@ impl Fit<'_> {
             voltages_agree: both(agrees(hv), agrees(lv)),
             vector_groups_agree: groups_agree(&own, &there),
             peak_pu: self.peak_pu(w),
-            highest_peak_pu: highest,
-            loading_limit_pu,
-            within_loading_limit: highest
-                .zip(loading_limit_pu)
-                .map(|(peak, limit)| peak <= limit * (1.0 + 1e-12)),
+            highest_peak_pu: self.highest_peak_pu(w),
+            loading_limit_pu: self.question.context.assumptions.loading_limit_pu,
+            within_loading_limit: self.within_loading_limit(),
             regulation_pct: self.regulation_pct(w)?,
             fault_level_mva: level,
             fault_current_a: self.fault_current_a(w)?,
