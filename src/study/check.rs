@@ -22,7 +22,8 @@ use crate::study::tender::{BasisForFactors, looks_per_watt};
 use crate::study::test_report::TestedUnit;
 use crate::study::{Desk, StudyError, Watch};
 
-/// Peak over rating above which a load is implausible (per unit).
+/// Peak over rating above which the reading itself is doubted (per unit): common practice, no source. A load above the
+/// rating alone is possible; the flag `overloaded` of a result says so.
 const OVERLOAD_PU: f64 = 1.2;
 /// A discount rate below this many percent was perhaps meant as a fraction.
 const FRACTION_PCT: f64 = 0.5;
