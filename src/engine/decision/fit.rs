@@ -5,7 +5,6 @@ use crate::engine::columns::Offer;
 use crate::engine::economics::Assumptions;
 use crate::engine::loading::Duty;
 use crate::engine::loading::duty::growth;
-use crate::engine::transformer::circuit::of_nameplate;
 use crate::engine::transformer::losses::{Losses, quoted};
 use crate::engine::transformer::vector_group;
 use crate::engine::transformer::voltage_drop::Supply;
@@ -52,7 +51,7 @@ impl Candidate {
     /// # Errors
     /// Losses that contradict each other.
     pub fn of_offer(offer: &Offer) -> Result<Self, Refusal> {
-        let mut losses = quoted(
+        let losses = quoted(
             &mut Silent,
             offer.rated_kva,
             offer.loss_base_kva,
@@ -61,11 +60,9 @@ impl Candidate {
             None,
             offer.auxiliary_loss_w,
         )?;
-        let circuit = |z| of_nameplate(&mut Silent, losses.rated_kva, losses.load_loss_w, z).ok();
-        losses.reactance_pu = offer.impedance_pct.and_then(circuit).map(|circuit| circuit.x_pu);
         Ok(Self {
             offer: offer.offer.clone(),
-            losses,
+            losses: losses.with_impedance(&mut Silent, offer.impedance_pct),
             price: offer.price.amount(),
             install_cost: offer.install_cost.unwrap_or_default().amount(),
             life_years: offer.life_years,
@@ -110,10 +107,7 @@ impl Candidate {
 
     /// Whether the voltage holds at the peak of every year after `t`; at rated voltage it always does.
     pub fn holds_voltage(&self, duty: &Duty, t: usize, a: &Assumptions) -> bool {
-        duty.drop.as_ref().is_none_or(|drop| {
-            let peak_pu = highest_peak(duty, t, a) / self.losses.rated_kva;
-            Supply::of(&self.losses, drop).carries(peak_pu)
-        })
+        holds_voltage(&self.losses, duty, t, a).unwrap_or(true)
     }
 
     /// Whether it carries the peak of every year after `t`: its voltage holds, and the load is within the limit.
@@ -125,6 +119,13 @@ impl Candidate {
         a.loading_limit_pu
             .is_none_or(|limit| within_limit(highest_peak(duty, t, a), rated_kva, limit))
     }
+}
+
+/// Whether the voltage behind a transformer holds at the peak of every year after `t`; none at rated voltage, where it
+/// is not asked.
+pub fn holds_voltage(losses: &Losses, duty: &Duty, t: usize, a: &Assumptions) -> Option<bool> {
+    let drop = duty.drop.as_ref()?;
+    Some(Supply::of(losses, drop).carries(highest_peak(duty, t, a) / losses.rated_kva))
 }
 
 /// Whether a peak load keeps a loading limit; equality up to rounding passes.

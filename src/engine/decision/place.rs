@@ -13,7 +13,7 @@ use crate::engine::decision::fit::{Candidate, highest_peak};
 use crate::engine::economics::Assumptions;
 use crate::engine::flags::Flags;
 use crate::engine::loading::{Duty, Market, Ratios, VoltageDrop, factors};
-use crate::engine::transformer::circuit::{PowerFactor, of_nameplate};
+use crate::engine::transformer::circuit::PowerFactor;
 use crate::engine::transformer::losses::{Losses, contradict, quoted};
 use crate::engine::transformer::voltage_drop::Supply;
 use crate::engine::working::Recorder;
@@ -390,9 +390,7 @@ fn voltage_drop<R: Recorder>(
     let power_factor = known_or(w, &stated::POWER_FACTOR, own, (1.0, "the default"));
     let v_hv_pu = ctx.assumptions.operating_voltage_pu;
     said(w, &stated::OPERATING_VOLTAGE, v_hv_pu, "the basis");
-    losses.reactance_pu = known(f.impedance_pct)
-        .and_then(|z| of_nameplate(w, losses.rated_kva, losses.load_loss_w, z).ok())
-        .map(|circuit| circuit.x_pu);
+    *losses = losses.with_impedance(w, known(f.impedance_pct));
     let duration = ctx.durations.get(f.profile as usize).cloned();
     *flags = flags
         .with_if(losses.reactance_pu.is_none(), Flags::IMPEDANCE_UNKNOWN)

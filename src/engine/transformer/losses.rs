@@ -1,5 +1,6 @@
 //! Losses of a transformer at a load and over a year: iron follows voltage, copper follows current.
 
+use super::circuit::of_nameplate;
 use crate::engine::Refusal;
 use crate::engine::loading::Duty;
 use crate::engine::loading::duty::peak_of_year;
@@ -19,6 +20,17 @@ pub struct Losses {
     pub auxiliary_loss_w: f64,
     /// Series reactance per unit of the rating; none where it is not known. Only the drop voltage model asks.
     pub reactance_pu: Option<f64>,
+}
+
+impl Losses {
+    /// The same with the reactance that a short-circuit impedance gives beside the load loss; none where it is blank
+    /// or below the resistance.
+    #[must_use]
+    pub fn with_impedance<R: Recorder>(self, w: &mut R, impedance_pct: Option<f64>) -> Self {
+        let circuit =
+            impedance_pct.and_then(|z| of_nameplate(w, self.rated_kva, self.load_loss_w, z).ok());
+        Self { reactance_pu: circuit.map(|circuit| circuit.x_pu), ..self }
+    }
 }
 
 /// Energy lost in a year.

@@ -11,7 +11,9 @@ use super::Question;
 use super::thermal::{Body, HeatRow};
 use crate::engine::Refusal;
 use crate::engine::decision::Place;
-use crate::engine::decision::fit::{highest_peak, within_limit, year_of_highest_peak};
+use crate::engine::decision::fit::{
+    highest_peak, holds_voltage, within_limit, year_of_highest_peak,
+};
 use crate::engine::decision::place::power_factor;
 use crate::engine::decision::side_by_side::{
     IMPEDANCE_PCT, RATIO_PCT, Rated, Sharing, VOLTAGE_PCT, circulating_pu, difference_pct,
@@ -84,6 +86,11 @@ impl Fit<'_> {
         let duty = &self.place.as_ref()?.duty;
         let peak_kva = peak_of_year(w, duty, year_of_highest_peak(duty, 0, a), a.load_growth_years);
         Some(loading_pu(w, peak_kva, self.asked.losses.rated_kva))
+    }
+
+    fn holds_voltage(&self) -> Option<bool> {
+        let a = &self.question.context.assumptions;
+        holds_voltage(&self.asked.losses, &self.place.as_ref()?.duty, 0, a)
     }
 
     fn within_loading_limit(&self) -> Option<bool> {
@@ -224,6 +231,7 @@ impl Fit<'_> {
             highest_peak_pu: self.highest_peak_pu(w),
             loading_limit_pu: self.question.context.assumptions.loading_limit_pu,
             within_loading_limit: self.within_loading_limit(),
+            holds_voltage: self.holds_voltage(),
             regulation_pct: self.regulation_pct(w)?,
             fault_level_mva: level,
             fault_current_a: self.fault_current_a(w)?,
@@ -247,6 +255,9 @@ impl Fit<'_> {
         ];
         if row.loading_limit_pu.is_some() {
             checks.push(("loading_limit_pu", row.within_loading_limit));
+        }
+        if row.holds_voltage.is_some() {
+            checks.push(("voltage_drop", row.holds_voltage));
         }
         if row.fault_limit_mva.is_some() {
             checks.push(("fault_limit_mva", row.within_fault_limit));

@@ -83,7 +83,8 @@ impl FitAsked {
         let (p0, pk, total) =
             (proposed.no_load_loss_w, proposed.load_loss_w, proposed.total_loss_w);
         let (base, auxiliary) = (proposed.loss_base_kva, proposed.auxiliary_loss_w);
-        let losses = quoted(&mut Silent, proposed.rated_kva, base, p0, pk, total, auxiliary)?;
+        let losses = quoted(&mut Silent, proposed.rated_kva, base, p0, pk, total, auxiliary)?
+            .with_impedance(&mut Silent, proposed.impedance_pct);
         Ok(Self { proposed, losses, beside: None, network_mva: None, fault_limit_mva: None })
     }
 }

@@ -24,6 +24,8 @@ pub struct FitRow {
     pub highest_peak_pu: Option<f64>,
     pub loading_limit_pu: Option<f64>,
     pub within_loading_limit: Option<bool>,
+    /// Whether the voltage holds at the highest peak; none at rated voltage, where it is not asked.
+    pub holds_voltage: Option<bool>,
     /// At the peak of year 1.
     pub regulation_pct: Option<f64>,
     pub fault_level_mva: Option<f64>,
