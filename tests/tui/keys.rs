@@ -81,7 +81,7 @@ fn left_out_units_say_why() {
     let screen = bench.screen();
     assert!(screen.contains("why it is left out"));
     // The whole reason of the one under the cursor, however narrow the list.
-    assert!(screen.contains("lead time or law"), "{screen}");
+    assert!(screen.contains("stand for its own"), "{screen}");
     assert!(!bench.keys("<Esc>").screen().contains("why it is left out"));
 }
 
@@ -137,7 +137,7 @@ fn tender_shows_lots_map_and_moves() {
     let mut bench = bench();
     bench.keys("3");
     assert!(bench.screen().contains("lot L1 (1 of 2)"));
-    assert!(bench.screen().contains("misses max_no_load_loss_w"));
+    assert!(bench.screen().contains("iron 410 W, at most 387 W"));
     assert!(bench.keys("n").screen().contains("lot L2 (2 of 2)"));
     assert!(bench.keys("p").screen().contains("lot L1 (1 of 2)"));
     assert!(bench.keys("m").screen().contains("◆ today"));

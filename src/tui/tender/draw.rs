@@ -8,9 +8,11 @@ use super::{View, lot, map, risk, shown, sign};
 use crate::engine::columns::{Basis, Bid, Lot};
 use crate::study::figures::figure;
 use crate::study::losses::flag_meaning;
-use crate::study::tender::{BidResult, ChangeResult, LotResult, MoveResult};
+use crate::study::tender::shortfall::shortfall;
+use crate::study::tender::{BidResult, ChangeResult, LotResult, Miss, MoveResult, letter};
 use crate::tui::app::App;
 use crate::tui::bar::{self, Parts};
+use crate::tui::entry::Of;
 use crate::tui::frame::{put, put_line, put_right, select};
 use crate::tui::text;
 use crate::tui::theme::{Part, Theme};
@@ -18,8 +20,8 @@ use crate::tui::words::{currency_in, unit_of};
 
 /// Lines above the bids: headings, units.
 const HEADER: u16 = 2;
-/// Lines below the bids: the one under the cursor, the near-tied ones.
-const DETAILS: u16 = 9;
+/// Lines below the bids: the one under the cursor, the near-tied ones. At least so many, and at most.
+const DETAILS: [u16; 2] = [9, 16];
 
 /// Least body in which something stands beside the bids, and in which all of it does.
 const WIDE: u16 = 120;
@@ -72,9 +74,9 @@ fn areas(body: Rect, view: View, bids: usize) -> Areas {
 /// The bids, and right below them the details; where it is tight the bids get the larger half.
 fn split(area: Rect, bids: usize) -> (Rect, Rect) {
     let wanted = u16::try_from(bids).unwrap_or(u16::MAX).saturating_add(HEADER);
-    let most = area.height.saturating_sub(DETAILS).max(area.height / 2 + 1).min(area.height);
+    let most = area.height.saturating_sub(DETAILS[0]).max(area.height / 2 + 1).min(area.height);
     let list = Rect { height: wanted.min(most), ..area };
-    (list, Rect { y: list.bottom(), height: DETAILS.min(area.height - list.height), ..area })
+    (list, Rect { y: list.bottom(), height: DETAILS[1].min(area.height - list.height), ..area })
 }
 
 /// Lines of the list of bids.
@@ -108,7 +110,9 @@ pub(in crate::tui) fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
     let currency = text::cut(&tender.sheet.tender.currency, 8);
     head(app, asked, result, &currency, areas.head, buffer);
     bids(app, result, &currency, areas.list, buffer);
-    if app.tender.what_if.open {
+    if let Some(Of::Reason { lot, bid }) = app.typing.as_ref().map(|entry| &entry.of) {
+        award(app, [lot, bid], &currency, areas.details, buffer);
+    } else if app.tender.what_if.open {
         inputs(app, areas.details, buffer);
     } else {
         details(app, result, &currency, areas.details, buffer);
@@ -136,6 +140,13 @@ fn head(app: &App, asked: &Lot, lot: &LotResult, currency: &str, area: Rect, buf
     put_line(buffer, area, 0, &line);
     if app.tender.what_if.of(app.tender.tender).is_some() {
         let said = Line::styled("what if: changed, not stored ", theme.changed());
+        if line.width() + said.width() < usize::from(area.width) {
+            put_right(buffer, area, 0, &said);
+        }
+    }
+    if let Some(award) = &lot.award {
+        let said = format!("awarded to {} ", text::cut(&award.bid, 20));
+        let said = Line::styled(said, theme.heading());
         if line.width() + said.width() < usize::from(area.width) {
             put_right(buffer, area, 0, &said);
         }
@@ -255,8 +266,8 @@ fn bids(app: &App, lot: &LotResult, currency: &str, area: Rect, buffer: &mut Buf
         if bid.rank.is_some() {
             put_line(buffer, at, y, &Line::from(bar::bar(theme, &cost(bid), scale, cells)));
         } else {
-            let misses = format!("misses {}", bid.excluded.join(", "));
-            put(buffer, at, y, &misses, theme.warning());
+            let misses: Vec<String> = bid.misses.iter().map(Miss::in_short).collect();
+            put(buffer, at, y, &theme.spell(&misses.join("; ")), theme.warning());
         }
     }
 }
@@ -296,6 +307,68 @@ fn inputs(app: &App, area: Rect, buffer: &mut Buffer) {
             let line = Rect { y: area.y + y, height: 1, width: wide, ..area };
             select(buffer, line.intersection(area));
         }
+    }
+}
+
+/// The limits that a bid misses, each with what is offered and what is asked.
+fn misses(bid: &BidResult) -> String {
+    bid.misses.iter().map(Miss::in_full).collect::<Vec<_>>().join("; ")
+}
+
+/// What would be awarded to whom, and what speaks against it, while the reason is typed.
+fn award(app: &App, [lot, bid]: [&str; 2], currency: &str, area: Rect, buffer: &mut Buffer) {
+    let (theme, cells) = (app.theme, usize::from(area.width.saturating_sub(2)));
+    let Some((asked, result)) = super::lot(app).filter(|(asked, _)| asked.lot == lot) else {
+        return;
+    };
+    let Some(bid) = result.bids.iter().find(|of| of.bid == bid) else { return };
+    let money = |value: f64| text::number(value, 0);
+    let bidder = bid.bidder.as_deref().map_or(String::new(), |b| format!(", {}", text::cut(b, 30)));
+    let name = text::cut(&bid.bid, 20);
+    let mut lines = vec![
+        (
+            format!(
+                "Award lot {}, {} x {} kVA, to {name}{bidder}?",
+                text::cut(lot, 12),
+                result.quantity,
+                text::plain(asked.rated_kva, 1)
+            ),
+            theme.heading(),
+        ),
+        (
+            format!(
+                "owning cost {} {currency} a unit, {} {currency} the whole lot",
+                money(bid.owning_cost),
+                money(bid.lot_cost)
+            ),
+            theme.plain(),
+        ),
+    ];
+    let mut against = Vec::new();
+    if !bid.misses.is_empty() {
+        against.push(format!("It is out, not ranked: misses {}.", misses(bid)));
+    }
+    if let Some(lacked) = shortfall(result, bid) {
+        let least = text::cut(&lacked.least, 20);
+        against.push(format!("{least} costs {} {currency} a unit less to own.", money(lacked.gap)));
+    }
+    match result.recommended.as_deref() {
+        Some(leads) if leads == bid.bid => {}
+        Some(leads) => {
+            against
+                .push(format!("{} leads, not {name}: a reason is needed.", text::cut(leads, 20)));
+        }
+        None => against.push("No bid leads: a reason is needed.".to_owned()),
+    }
+    lines.extend(against.into_iter().map(|said| (format!("! {said}"), theme.warning())));
+    let say = "Type why below. Enter stores it with who, when and why, and keeps these factors for the \
+               settlement; Esc stores nothing.";
+    lines.push((say.to_owned(), theme.plain()));
+    let wrapped = lines.into_iter().flat_map(|(said, style)| {
+        text::wrap(&theme.spell(&said), cells).into_iter().map(move |line| (line, style))
+    });
+    for (y, (line, style)) in (1..area.height).zip(wrapped) {
+        put(buffer, area, y, &format!(" {line}"), style);
     }
 }
 
@@ -344,7 +417,8 @@ fn details(app: &App, lot: &LotResult, currency: &str, area: Rect, buffer: &mut 
             lines.extend(text::wrap(&said, cells).into_iter().map(|l| (l, theme.plain())));
         }
         if !bid.excluded.is_empty() {
-            let said = format!("Out, not ranked: misses {}.", bid.excluded.join(", "));
+            let said = format!("Out, not ranked: misses {}.", misses(bid));
+            let said = theme.spell(&said);
             lines.extend(text::wrap(&said, cells).into_iter().map(|l| (l, theme.warning())));
         }
         let doubts = bid.flags.iter().filter_map(|key| flag_meaning(key));
@@ -371,7 +445,13 @@ fn details(app: &App, lot: &LotResult, currency: &str, area: Rect, buffer: &mut 
     if let Some(leads) = &lot.recommended {
         verdict.push(format!("{} leads.", text::cut(leads, 20)));
     }
-    let verdict = text::wrap(&verdict.join(" "), cells);
+    let mut verdict = text::wrap(&verdict.join(" "), cells);
+    if let Some(award) = &lot.award {
+        verdict.extend(text::wrap(&format!("Awarded to {}", letter::sentence(award)), cells));
+    }
+    if let Some(changed) = letter::changed_since(lot, currency) {
+        verdict.extend(text::wrap(&format!("! {changed}"), cells));
+    }
     // The verdict always has its place at the bottom.
     let foot = u16::try_from(verdict.len()).unwrap_or(0).min(area.height);
     let upper = area.height - foot;
