@@ -8,6 +8,7 @@ use super::book;
 use super::exit::{Exit, Failure};
 use crate::book::{Access, Book, JournalEntry};
 use crate::engine::columns::TenderSheet;
+use crate::study::figures::short;
 use crate::study::tender::decide;
 use crate::study::{Desk, StudyError};
 use crate::tui::{
@@ -125,6 +126,9 @@ fn details(what: &serde_json::Value) -> String {
     let text = |value: &serde_json::Value| match value {
         serde_json::Value::Null => "blank".to_owned(),
         serde_json::Value::String(text) => text.clone(),
+        serde_json::Value::Number(number) if !number.is_i64() => {
+            number.as_f64().map_or_else(|| number.to_string(), short)
+        }
         other => other.to_string(),
     };
     let Some(columns) = what.as_object() else { return String::new() };

@@ -97,6 +97,8 @@ pub enum Action {
     Working,
     NextFigure,
     PreviousFigure,
+    NextPart,
+    PreviousPart,
     Copy,
     Filter,
     FilterKeep,
@@ -202,7 +204,7 @@ actions! {
         "next-lot" Action::NextLot, [key(KeyCode::Right), char('n')], "next lot", "The next lot of the tender.", shown;
         "previous-lot" Action::PreviousLot, [key(KeyCode::Left), char('p')], "previous", "The previous lot of the tender.";
         "bid-working" Action::Working, [char('e'), key(KeyCode::F(6))], "explain", "How the figures of the bid under the cursor come about, step by step.", shown;
-        "tender-view" Action::TenderView, [char('m'), key(KeyCode::F(3))], "map/changes", "In turn: the bids, the map of who wins at other factors, what must move before another wins.", shown;
+        "tender-view" Action::TenderView, [char('m'), key(KeyCode::F(3))], "map", "In turn: the bids, the map of who wins at other factors, what must move before another wins.", shown;
         "what-if" Action::WhatIf, [char('v'), key(KeyCode::F(7))], "what if", "Move a factor, or the price or a loss of the bid under the cursor, and see the ranking follow. Nothing is stored.", shown;
         "risk" Action::Risk, [char('u'), key(KeyCode::F(9))], "how sure", "Draw the uncertain inputs of the basis: how probably each bid of the lot is the cheapest to own.", shown;
         "award" Action::Award, [char('w'), key(KeyCode::F(2))], "award", "Award the lot to the bid under the cursor: asks why, and stores nothing before Enter.", shown;
@@ -241,7 +243,9 @@ actions! {
     Place::Working => {
         "working-close" Action::Back, [key(KeyCode::Esc), char('e'), char('q'), key(KeyCode::F(6)), key(KeyCode::Enter), key(KeyCode::Backspace)], "close", "Close the working.", shown;
         "next-figure" Action::NextFigure, [key(KeyCode::Right), char('n')], "next figure", "The working of the next figure.", shown;
-        "previous-figure" Action::PreviousFigure, [key(KeyCode::Left), char('p')], "previous", "The working of the figure before.", shown;
+        "previous-figure" Action::PreviousFigure, [key(KeyCode::Left), char('p')], "previous", "The working of the figure before.";
+        "next-part" Action::NextPart, [char('>'), char('.'), Key::shift(KeyCode::Right)], "next part", "The first figure of the next part: losses, loading, heat, law.", shown;
+        "previous-part" Action::PreviousPart, [char('<'), char(','), Key::shift(KeyCode::Left)], "previous part", "The first figure of the part before.";
         "copy" Action::Copy, [char('y'), char('c')], "copy", "Hand the working to the terminal as text to be copied.", shown;
     }
     Place::Everywhere => {

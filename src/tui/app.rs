@@ -298,6 +298,12 @@ impl App {
                     }
                 }
             }
+            Action::NextPart | Action::PreviousPart => {
+                let turned = self.working.as_mut().map(|p| p.part(action == Action::NextPart));
+                if let Some(Err(error)) = turned {
+                    self.message = Some(error.to_string());
+                }
+            }
             Action::Copy => self.copy(),
             Action::Filter => {
                 self.typing = Some(Entry::filter(self.wanted.filter.clone()));

@@ -205,7 +205,9 @@ fn ranking(app: &App, ranked: &Ranked, area: Rect, buffer: &mut Buffer) {
     let mut above = vec![Span::styled(headings, theme.heading())];
     above.extend(bar::legend(theme, &[(Part::Iron, "iron"), (Part::Copper, "copper")]));
     put_line(buffer, area, 0, &Line::from(above));
-    let scale_said = format!("full {} {currency}/year", text::number(scale, 0));
+    let full = format!("{} {currency}/year", text::number(scale, 0));
+    let said = format!("full {full}");
+    let scale_said = if text::width(&said) <= cells_of_bar { said } else { full };
     let scale_said = text::right(&scale_said, cells_of_bar);
     put(buffer, area, 1, &format!("{units}{scale_said}"), theme.muted());
 

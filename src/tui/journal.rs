@@ -42,14 +42,15 @@ pub(super) fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
     let Some(line) = lines.get(list.cursor) else { return };
     let below = Rect { y: area.y + height + 2, height: 3, ..area };
     let mut said = Vec::new();
+    // Why comes first: details may be longer than there is room for.
+    if !line.why.is_empty() {
+        said.push(format!("why: {}", line.why));
+    }
     if !line.details.is_empty() {
         said.push(line.details.clone());
     }
     if !line.source.is_empty() {
         said.push(format!("from {}", line.source));
-    }
-    if !line.why.is_empty() {
-        said.push(format!("why: {}", line.why));
     }
     let wrapped =
         said.iter().flat_map(|s| text::wrap(s, usize::from(area.width.saturating_sub(2))));

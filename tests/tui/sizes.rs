@@ -2,6 +2,7 @@
 
 use ironhum::tui::{Caps, Session};
 use proptest::prelude::*;
+use ratatui::style::Color;
 
 use crate::bench::{ASCII, Bench, COLOUR, PLAIN};
 
@@ -99,9 +100,14 @@ fn check(bench: &Bench, caps: Caps) {
         assert!(!symbol.chars().any(char::is_control), "{symbol:?}");
         assert!(!symbol.contains(['\u{202e}', '\u{2066}', '\u{200f}']), "{symbol:?}");
         assert!(!caps.ascii || symbol.is_ascii(), "{symbol:?}");
+        // Whatever the terminal's own colours are, light or dark: only accents are painted.
+        for painted in [cell.fg, cell.bg] {
+            let accent =
+                !matches!(painted, Color::Black | Color::White | Color::Gray | Color::Rgb(..));
+            assert!(accent, "{painted} {symbol:?}");
+        }
         if caps.colours == ironhum::tui::Colours::None {
-            use ratatui::style::Color::Reset;
-            assert_eq!((cell.fg, cell.bg), (Reset, Reset));
+            assert_eq!((cell.fg, cell.bg), (Color::Reset, Color::Reset));
         }
     }
 }

@@ -367,7 +367,9 @@ fn award(app: &App, [lot, bid]: [&str; 2], currency: &str, area: Rect, buffer: &
     let wrapped = lines.into_iter().flat_map(|(said, style)| {
         text::wrap(&theme.spell(&said), cells).into_iter().map(move |line| (line, style))
     });
-    for (y, (line, style)) in (1..area.height).zip(wrapped) {
+    // Where it is tight, nothing is left free above.
+    let from = u16::from(area.height > 8);
+    for (y, (line, style)) in (from..area.height).zip(wrapped) {
         put(buffer, area, y, &format!(" {line}"), style);
     }
 }

@@ -100,16 +100,12 @@ impl More {
     /// The unit and the best offer side by side.
     fn columns(&self, own: &HeatRow, cells: usize, theme: Theme, lines: &mut Vec<Line<'static>>) {
         let t = &self.thermal;
-        let wide = 8;
-        let name = cells.saturating_sub(2 * (wide + 1));
         let offer = t.replacement.as_ref();
-        let mut row = |what: &str, own: String, offer: Option<String>| {
-            let (own, offer) =
-                (text::right(&own, wide), text::right(&offer.unwrap_or_default(), wide));
-            let line = format!("{} {own} {offer}", text::left(&theme.spell(what), name));
-            lines.push(Line::raw(line));
-        };
         let whole = |value: f64| text::number(value, 0);
+        let mut rows: Vec<(String, [String; 2])> = Vec::new();
+        let mut row = |what: &str, own: String, offer: Option<String>| {
+            rows.push((theme.spell(what).into_owned(), [own, offer.unwrap_or_default()]));
+        };
         row("", "unit".to_owned(), offer.map(|_| "best".to_owned()));
         let held: [(&str, OfHeat); 2] = [
             ("peak held: oil °C", |heat| heat.steady_top_oil_c),
@@ -118,23 +114,30 @@ impl More {
         for (what, of) in held {
             row(what, whole(of(own)), offer.map(|heat| whole(of(heat))));
         }
-        let year = |heat: &HeatRow, of: OfYear| heat.year.as_ref().map(|y| whole(of(y)));
-        let hour = |heat: &HeatRow| heat.year.map(|y| text::count(y.hottest_hour));
-        if own.year.is_none() {
-            return;
+        if own.year.is_some() {
+            let hour = |heat: &HeatRow| heat.year.map(|y| text::count(y.hottest_hour));
+            row("hottest in hour", hour(own).unwrap_or_default(), offer.and_then(hour));
+            let above = format!("h above {} °C", whole(t.hot_spot_limit_c));
+            let oil = format!("h oil above {} °C", whole(t.top_oil_limit_c));
+            let of_year: [(&str, OfYear); 5] = [
+                ("hot spot then °C", |y| y.hottest_hot_spot_c),
+                ("oil at most °C", |y| y.hottest_top_oil_c),
+                (&above, |y| y.hours_above_hot_spot),
+                (&oil, |y| y.hours_above_top_oil),
+                ("life used h", |y| y.life_used_hours),
+            ];
+            for (what, of) in of_year {
+                let year = |heat: &HeatRow| heat.year.as_ref().map(|y| whole(of(y)));
+                row(what, year(own).unwrap_or_default(), offer.and_then(year));
+            }
         }
-        row("hottest in hour", hour(own).unwrap_or_default(), offer.and_then(hour));
-        let above = format!("h above {} °C", whole(t.hot_spot_limit_c));
-        let oil = format!("h oil above {} °C", whole(t.top_oil_limit_c));
-        let of_year: [(&str, OfYear); 5] = [
-            ("hot spot then °C", |y| y.hottest_hot_spot_c),
-            ("oil at most °C", |y| y.hottest_top_oil_c),
-            (&above, |y| y.hours_above_hot_spot),
-            (&oil, |y| y.hours_above_top_oil),
-            ("life used h", |y| y.life_used_hours),
-        ];
-        for (what, of) in of_year {
-            row(what, year(own, of).unwrap_or_default(), offer.and_then(|heat| year(heat, of)));
+        // Figures are never cut: the names give way.
+        let wide = rows.iter().flat_map(|(_, cells)| cells).map(|cell| text::width(cell)).max();
+        let wide = wide.unwrap_or(0);
+        let name = cells.saturating_sub(2 * (wide + 2));
+        for (what, [own, offer]) in rows {
+            let (own, offer) = (text::right(&own, wide), text::right(&offer, wide));
+            lines.push(Line::raw(format!("{}  {own}  {offer}", text::left(&what, name))));
         }
     }
 
