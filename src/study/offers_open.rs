@@ -50,7 +50,7 @@ fn none_because(desk: &Desk, context: &Context, i: usize) -> &'static str {
     let (a, all) = (&context.assumptions, &context.candidates);
     let terminals = &desk.fleet.terminals[desk.fleet.kind[i] as usize];
     if all.is_empty() {
-        return "no offer is in the book; import offers";
+        return "no offer fits: the book holds none; import offers";
     }
     if !all.iter().any(|offer| terminals.phases_agree(offer)) {
         return "no offer fits: none has its number of phases; import one, or correct phases";
@@ -64,13 +64,13 @@ fn none_because(desk: &Desk, context: &Context, i: usize) -> &'static str {
         return "no offer fits: none within its window of ratings has a vector group that can stand for its own";
     }
     if !offers().any(|offer| offer.delivered_by(a.latest)) {
-        return "no offer is open: none that fits is delivered by the latest year looked at; see latest_replacement_years";
+        return "no offer fits: none that connects is delivered by the latest year looked at; see latest_replacement_years";
     }
     let ever = |open: &dyn Fn(&Candidate, usize) -> bool| {
         offers().any(|offer| (0..=a.latest).any(|t| open(offer, t)))
     };
     if !ever(&|offer, t| offer.delivered_by(t) && offer.lawful_at(t)) {
-        return "no offer is open: none that fits meets the law of the basis when it is delivered";
+        return "no offer fits: none that connects meets the law of the basis when it is delivered";
     }
     let Ok(place) = resolve(&mut Silent, &desk.fleet.facts(i), context) else {
         return LeftOut::NoOffer.why();
@@ -79,7 +79,7 @@ fn none_because(desk: &Desk, context: &Context, i: usize) -> &'static str {
         offer.delivered_by(t) && offer.lawful_at(t) && offer.holds_voltage(&place.duty, t, a)
     };
     if ever(&holds) && !ever(&|offer, t| holds(offer, t) && offer.carries(&place.duty, t, a)) {
-        return "no offer is open: its peak is above loading_limit_pu of each that fits; widen offer_sizes_up, or check peak_kva";
+        return "no offer fits: its peak is above loading_limit_pu of each that connects; raise offer_sizes_up, or check peak_kva";
     }
-    "no offer is open: with none that fits does the voltage hold at its peak; check peak_kva and load growth"
+    "no offer fits: the voltage drop at its peak is too large with each that connects; check peak_kva and load growth"
 }

@@ -58,7 +58,7 @@ fn the_rule_that_leaves_no_offer_is_named() {
     };
     let cases: [(Change, &str); 6] = [
         (|_, _| {}, ""),
-        (|offers, _| offers.clear(), "no offer is in the book"),
+        (|offers, _| offers.clear(), "the book holds none"),
         (|offers, _| offers.iter_mut().for_each(|of| of.phases = Some(1)), "number of phases"),
         (|offers, _| offers.iter_mut().for_each(|of| of.hv_kv = Some(66.0)), "its voltages"),
         (

@@ -37,7 +37,11 @@ impl Regions {
         };
         let winner: Vec<_> = (0..height).flat_map(|y| (0..width).map(move |x| (x, y))).collect();
         let winner: Vec<_> = winner.into_iter().map(|(x, y)| wins(x, y)).collect();
-        let looks = looks(&neighbours(&winner, width, map.bids.len()));
+        // Regions that touch at a corner differ too, where there are looks enough.
+        let by = |corners| neighbours(&winner, width, map.bids.len(), corners);
+        let looks = looks(&by(true)).or_else(|| looks(&by(false)));
+        let looks =
+            looks.unwrap_or_else(|| (0..map.bids.len()).map(|n| n % REGION_LOOKS).collect());
         Self { width, winner, looks }
     }
 
@@ -79,13 +83,20 @@ impl Regions {
     }
 }
 
-/// Which regions touch, side by side or one above the other.
-fn neighbours(winner: &[Option<usize>], width: u16, bids: usize) -> Vec<BTreeSet<usize>> {
+/// Which regions touch, side by side or one above the other, or also at corners.
+fn neighbours(
+    winner: &[Option<usize>],
+    width: u16,
+    bids: usize,
+    corners: bool,
+) -> Vec<BTreeSet<usize>> {
     let width = usize::from(width);
     let mut touching = vec![BTreeSet::new(); bids];
     for (at, n) in winner.iter().enumerate() {
         let right = (at % width + 1 < width).then_some(at + 1);
-        for other in [right, Some(at + width)].into_iter().flatten() {
+        let left = (at % width > 0).then(|| at + width - 1).filter(|_| corners);
+        let below = right.map(|right| right + width).filter(|_| corners);
+        for other in [right, Some(at + width), left, below].into_iter().flatten() {
             if let (Some(n), Some(Some(m))) = (n, winner.get(other))
                 && n != m
             {
@@ -97,9 +108,9 @@ fn neighbours(winner: &[Option<usize>], width: u16, bids: usize) -> Vec<BTreeSet
     touching
 }
 
-/// A look for each region, unlike those of its neighbours, its own number's where that is free. Regions of fewest
-/// neighbours come last, so that in a map six looks are enough.
-fn looks(touching: &[BTreeSet<usize>]) -> Vec<usize> {
+/// A look for each region, unlike those of its neighbours, its own number's where that is free; none where there are
+/// too few. Regions of fewest neighbours come last, so that six looks are enough for regions that share sides.
+fn looks(touching: &[BTreeSet<usize>]) -> Option<Vec<usize>> {
     let mut left: BTreeSet<usize> = (0..touching.len()).collect();
     let mut order = Vec::new();
     let degree = |left: &BTreeSet<usize>, n: usize| touching[n].intersection(left).count();
@@ -110,10 +121,10 @@ fn looks(touching: &[BTreeSet<usize>]) -> Vec<usize> {
     let mut looks: Vec<Option<usize>> = vec![None; touching.len()];
     for n in order.into_iter().rev() {
         let taken: BTreeSet<usize> = touching[n].iter().filter_map(|m| looks[*m]).collect();
-        let free = (0..REGION_LOOKS).map(|by| (n + by) % REGION_LOOKS).find(|l| !taken.contains(l));
-        looks[n] = Some(free.unwrap_or(n % REGION_LOOKS));
+        looks[n] =
+            Some((0..REGION_LOOKS).map(|by| (n + by) % REGION_LOOKS).find(|l| !taken.contains(l))?);
     }
-    looks.into_iter().map(Option::unwrap_or_default).collect()
+    looks.into_iter().collect()
 }
 
 /// Whether a convex polygon with its corners counter-clockwise holds a point.
@@ -138,7 +149,7 @@ mod tests {
                 touching[m].insert(n);
             }
         }
-        let looks = looks(&touching);
+        let looks = looks(&touching).unwrap();
         for (n, near) in touching.iter().enumerate() {
             assert!(near.iter().all(|m| looks[*m] != looks[n]), "{looks:?}");
         }
