@@ -203,6 +203,7 @@ fn read(
             phases: terminals.phases,
             winding_metal: text(5).and_then(WindingMetal::from_word),
             insulation: text(6).and_then(Insulation::from_word),
+            from_test: false,
             profile,
         };
         fleet.push(text(0).unwrap_or(""), text(2), row.get(names.len())?, terminals, &facts);

@@ -47,6 +47,7 @@ flags! {
     29, DEMAND_UNUSED, "demand_unused", "factor_method levelized does not use demand_charge_per_kw_year: what capacity costs per kW and year is investment_per_kw_year there";
     30, INVESTMENT_UNUSED, "investment_unused", "factor_method present-value does not use investment_per_kw_year: what capacity costs per kW and year is demand_charge_per_kw_year there";
     31, LOSS_VALUE_SCALE, "loss_value_scale", "the capitalised losses of the best offer are under 1 % or over 50 times its price: is the energy price per kWh, are losses in W and prices per unit?";
+    36, FROM_TEST, "from_test", "a blank of the nameplate is filled from the unit's test report";
 }
 
 impl Flags {

@@ -1,7 +1,10 @@
 //! Everything doubtful in a book: missing, estimated, implausible, contradictory. Tells; changes nothing.
 
+mod tested;
+
 use std::ops::ControlFlow;
 
+use rustc_hash::FxHashMap;
 use serde::Serialize;
 
 use crate::book::{Book, BookError};
@@ -16,6 +19,7 @@ use crate::engine::transformer::losses::quoted;
 use crate::engine::transformer::{plausibility, vector_group};
 use crate::engine::working::Silent;
 use crate::study::tender::{BasisForFactors, looks_per_watt};
+use crate::study::test_report::TestedUnit;
 use crate::study::{Desk, StudyError, Watch};
 
 /// Peak over rating above which a load is implausible (per unit).
@@ -82,6 +86,9 @@ pub fn check(book: &Book, basis: Option<&str>, watch: &Watch) -> Result<Vec<Doub
     watch.expect(usize::try_from(counts.units).unwrap_or(0));
     let mut doubts = Doubts(Vec::new());
     let profiles = Profiles::of(&book.profiles()?);
+    let reports: FxHashMap<String, TestedUnit> = (book.tested_units()?.into_iter())
+        .map(|(unit, report)| (unit.unit.clone(), TestedUnit { unit, report }))
+        .collect();
     let mut seen = 0;
     book.each_unit(|unit| {
         seen += 1;
@@ -91,7 +98,7 @@ pub fn check(book: &Book, basis: Option<&str>, watch: &Watch) -> Result<Vec<Doub
                 return ControlFlow::Break(());
             }
         }
-        doubts.unit(&unit, &profiles, basis);
+        doubts.unit(&unit, reports.get(&unit.unit), &profiles, basis);
         ControlFlow::Continue(())
     })?;
     if watch.is_stopped() {
@@ -180,10 +187,21 @@ impl Doubts {
         }
     }
 
-    fn unit(&mut self, unit: &Unit, profiles: &Profiles, basis: Option<&Basis>) {
+    fn unit(
+        &mut self,
+        unit: &Unit,
+        tested: Option<&TestedUnit>,
+        profiles: &Profiles,
+        basis: Option<&Basis>,
+    ) {
         let of = ("unit", unit.unit.as_str());
+        let share = basis.and_then(|basis| basis.stray_share_pu).unwrap_or(0.0);
+        let filled = tested.and_then(|tested| tested.filled(share));
         if unit.in_service != Some(YesNo::No) {
-            self.missing_of_unit(of, unit, basis);
+            self.missing_of_unit(of, filled.as_ref().unwrap_or(unit), basis);
+        }
+        if let Some(tested) = tested {
+            self.tested(of, tested, share);
         }
         self.plate(
             of,

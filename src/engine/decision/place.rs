@@ -47,11 +47,14 @@ pub struct UnitFacts {
     pub phases: Option<i64>,
     pub winding_metal: Option<WindingMetal>,
     pub insulation: Option<Insulation>,
+    /// Whether blanks of the nameplate are filled from a test report.
+    pub from_test: bool,
     /// Index of the load profile; `u32::MAX` = none.
     pub profile: u32,
 }
 
-pub(super) fn known(value: f64) -> Option<f64> {
+/// A number of a unit's facts; none where it is unknown.
+pub fn known(value: f64) -> Option<f64> {
     if value.is_nan() { None } else { Some(value) }
 }
 
@@ -88,6 +91,7 @@ impl UnitFacts {
             phases: unit.phases,
             winding_metal: unit.winding_metal,
             insulation: unit.insulation,
+            from_test: false,
             profile: profile.and_then(|p| u32::try_from(p).ok()).unwrap_or(u32::MAX),
         }
     }
@@ -296,6 +300,7 @@ pub fn resolve_at<R: Recorder>(
     let base = known(f.loss_base_kva);
     flags = flags
         .with_if(blank_loss(f).is_some(), Flags::LOSS_ESTIMATED)
+        .with_if(f.from_test, Flags::FROM_TEST)
         .with_if(pk.is_none() && total.is_some(), Flags::LOAD_LOSS_FROM_TOTAL)
         .with_if(
             base.is_some_and(|b| b != f.rated_kva) && (pk.is_some() || total.is_some()),
