@@ -1,5 +1,6 @@
 //! State before, keys, state after, as a person sees them.
 
+use ironhum::engine::columns::TestReport;
 use ironhum::tui::work::{Answer, Question};
 use ironhum::tui::{App, ExitReason, Screen};
 
@@ -582,10 +583,17 @@ fn a_value_of_the_basis_is_typed_and_held_against_its_column() {
 fn a_unit_says_its_other_measures_its_heat_and_its_law() {
     let mut session = crate::demo::session();
     session.desk.sheet.basis.law = Some("eu-548-2014".to_owned());
+    let record = session.record.as_mut().and_then(|read| read("FW-0103")).unwrap();
+    let tested_on = Some("2019-05-07".to_owned());
+    let report = TestReport { unit: "FW-0103".to_owned(), tested_on, ..TestReport::blank() };
+    session.desk = session.desk.with_tests(vec![(record, report)]);
     let mut bench = Bench::on(PLAIN, 160, 50, session);
     let screen = bench.keys("/FW-0103").keys("<Enter><Enter>").screen();
     for said in [
         "rate of return, now",
+        "Estimated, and with 95 % between",
+        "Test report of 2019-05-07",
+        "not used: ",
         "discounted payback",
         "CO2 avoided",
         "equal yearly: keep",

@@ -52,6 +52,7 @@ pub(super) fn lines(app: &App, cells: usize) -> Vec<Line<'static>> {
         }
     }
     if let Some(more) = &app.unit.more {
+        more.losses(cells, theme, &mut lines);
         more.heat(cells, theme, &mut lines);
         more.law(cells, theme, &mut lines);
     }

@@ -1,4 +1,4 @@
-//! What else the dossier of a unit says: other measures of the replacement, heat, law. Kept as it was computed,
+//! What else the dossier of a unit says: other measures of the replacement, estimates, tests, heat, law. Kept as it was computed,
 //! written as lines of the facts.
 
 use ratatui::text::{Line, Span};
@@ -6,8 +6,10 @@ use ratatui::text::{Line, Span};
 use super::facts::fact;
 use crate::engine::columns::Unit;
 use crate::study::StudyError;
+use crate::study::estimate::EstimatedRow;
 use crate::study::figures::figure;
 use crate::study::law::VerdictRow;
+use crate::study::test_report::TestRow;
 use crate::study::unit::thermal::{HeatRow, HeatYear, ThermalRow};
 use crate::study::unit::{KeepOrReplace, Question};
 use crate::tui::text;
@@ -24,6 +26,8 @@ type OfYear = fn(&HeatYear) -> f64;
 pub struct More {
     /// Measures of the choice by their keys, as far as there is a figure.
     measures: Vec<(&'static str, f64)>,
+    estimated: Option<EstimatedRow>,
+    tests: Option<TestRow>,
     thermal: ThermalRow,
     law: Option<VerdictRow>,
 }
@@ -51,6 +55,8 @@ impl More {
         let measures = dossier.keep_or_replace.as_ref().map(measures).into_iter().flatten();
         Ok(Self {
             measures: measures.filter_map(|(key, value)| Some((key, value?))).collect(),
+            estimated: dossier.estimated,
+            tests: dossier.tests,
             thermal: dossier.thermal,
             law: dossier.law,
         })
@@ -71,6 +77,49 @@ impl More {
             let Some(figure) = figure(key) else { continue };
             let value = text::number(*value, figure.places);
             lines.push(fact(figure.heading, &with_unit(&value, figure.unit, currency), cells));
+        }
+    }
+
+    /// What is known of losses beside the nameplate: estimates with how far they may be off, the test report.
+    pub(super) fn losses(&self, cells: usize, theme: Theme, lines: &mut Vec<Line<'static>>) {
+        let watt = |value: f64| text::number(value, 0);
+        if let Some(estimated) = &self.estimated {
+            lines.push(Line::styled("Estimated, and with 95 % between", theme.heading()));
+            for (name, loss) in estimated.losses() {
+                let (low, high) = (watt(loss.low_w), watt(loss.high_w));
+                let said = format!("{} ({low}-{high}) W", watt(loss.estimate_w));
+                lines.push(fact(name, &said, cells));
+            }
+        }
+        let Some(tests) = &self.tests else { return };
+        let on = tests.tested_on.as_deref().map_or(String::new(), |on| format!(" of {on}"));
+        lines.push(Line::styled(format!("Test report{}", text::clean(&on)), theme.heading()));
+        let mut said = Vec::new();
+        if let Some(why) = &tests.why {
+            said.push(format!("not used: {why}"));
+        } else {
+            for (name, value, places, unit) in [
+                ("no-load loss", tests.no_load_loss_w, 1, "W"),
+                ("no-load current", tests.no_load_current_pct, 3, "%"),
+                ("load loss", tests.load_loss_w, 1, "W"),
+                ("its I²R part", tests.resistive_loss_w, 1, "W"),
+                ("its stray part", tests.stray_loss_w, 1, "W"),
+                ("impedance", tests.impedance_pct, 3, "%"),
+            ] {
+                if let Some(value) = value {
+                    let value = format!("{} {unit}", text::number(value, places));
+                    lines.push(fact(&theme.spell(name), &value, cells));
+                }
+            }
+            let at = text::number(tests.reference_temp_c, 0);
+            said.push(format!("load loss at {at} °C"));
+        }
+        if !tests.fills.is_empty() {
+            said.push(format!("fills blanks: {}", tests.fills.join(", ")));
+        }
+        for said in said {
+            let said = theme.spell(&said).into_owned();
+            lines.extend(text::wrap(&said, cells).into_iter().map(Line::raw));
         }
     }
 
