@@ -1,19 +1,20 @@
 //! The tender screen: bids by owning cost, what is out and why, who wins at other factors, what would change the
 //! winner. State here; drawing in `draw`, the winner map in `map`.
 
+mod award;
 pub(super) mod draw;
 mod map;
 mod regions;
 mod what_if;
 
+pub(super) use award::{award, reasoned};
+
 use std::sync::Arc;
 
 use super::action::Screen;
 use super::app::App;
-use super::entry::Of;
 use super::frame;
 use super::list::List;
-use super::text;
 use super::work::Evaluated;
 use crate::engine::columns::{Lot, TenderSheet};
 use crate::study::tender::LotResult;
@@ -192,50 +193,6 @@ pub(super) fn under_cursor(app: &App) -> Option<(&TenderSheet, &str, &str)> {
     let (asked, result) = lot(app)?;
     let bid = result.bids.get(app.tender.list.cursor)?;
     Some((&shown(app)?.sheet, &asked.lot, &bid.bid))
-}
-
-/// What is typed to award the lot to the bid under the cursor.
-///
-/// # Errors
-/// Why it cannot be awarded here and now.
-pub(super) fn award(app: &App) -> Result<Of, String> {
-    let Some(((_, result), (sheet, lot, bid))) = lot(app).zip(under_cursor(app)) else {
-        return Err("No bid stands under the cursor.".to_owned());
-    };
-    let tender = &sheet.tender.tender;
-    if !app.opened.as_ref().is_some_and(|opened| opened.writes.award) {
-        return Err("The book is open for reading only; nothing can be stored.".to_owned());
-    }
-    if let Some(award) = &result.award {
-        return Err(format!(
-            "It is awarded to {}; to take that back: ironhum award {} --lot {} --withdraw",
-            text::cut(&award.bid, 16),
-            text::cut(tender, 16),
-            text::cut(lot, 12)
-        ));
-    }
-    if app.tender.what_if.draft.as_ref().is_some_and(|(n, _)| *n == app.tender.tender) {
-        return Err("It shows a what if; put it back (v, then R) and award then.".to_owned());
-    }
-    if app.basis.is_changed() || !app.basis.is_in_effect() {
-        return Err("The basis is changed and not stored; store it or put it back (4).".to_owned());
-    }
-    Ok(Of::Reason { lot: lot.to_owned(), bid: bid.to_owned() })
-}
-
-/// Holds that there is a reason where the lot that is shown goes to another bid than the one that leads.
-///
-/// # Errors
-/// That one is needed.
-pub(super) fn reasoned(app: &App, bid: &str, why: &str) -> Result<(), String> {
-    let leads = lot(app).and_then(|(_, result)| result.recommended.as_deref());
-    if leads == Some(bid) || !why.is_empty() {
-        return Ok(());
-    }
-    Err(match leads {
-        Some(leads) => format!("{} leads; to award another bid, say why.", text::cut(leads, 20)),
-        None => "It is not ranked; to award it, say why.".to_owned(),
-    })
 }
 
 /// Number of bids of the lot.

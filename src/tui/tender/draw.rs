@@ -8,7 +8,6 @@ use super::{View, lot, map, risk, shown, sign};
 use crate::engine::columns::{Basis, Bid, Lot};
 use crate::study::figures::figure;
 use crate::study::losses::flag_meaning;
-use crate::study::tender::shortfall::shortfall;
 use crate::study::tender::{BidResult, ChangeResult, LotResult, Miss, MoveResult, letter};
 use crate::tui::app::App;
 use crate::tui::bar::{self, Parts};
@@ -111,7 +110,7 @@ pub(in crate::tui) fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
     head(app, asked, result, &currency, areas.head, buffer);
     bids(app, result, &currency, areas.list, buffer);
     if let Some(Of::Reason { lot, bid }) = app.typing.as_ref().map(|entry| &entry.of) {
-        award(app, [lot, bid], &currency, areas.details, buffer);
+        super::award::draw(app, [lot, bid], &currency, areas.details, buffer);
     } else if app.tender.what_if.open {
         inputs(app, areas.details, buffer);
     } else {
@@ -311,67 +310,8 @@ fn inputs(app: &App, area: Rect, buffer: &mut Buffer) {
 }
 
 /// The limits that a bid misses, each with what is offered and what is asked.
-fn misses(bid: &BidResult) -> String {
+pub(super) fn misses(bid: &BidResult) -> String {
     bid.misses.iter().map(Miss::in_full).collect::<Vec<_>>().join("; ")
-}
-
-/// What would be awarded to whom, and what speaks against it, while the reason is typed.
-fn award(app: &App, [lot, bid]: [&str; 2], currency: &str, area: Rect, buffer: &mut Buffer) {
-    let (theme, cells) = (app.theme, usize::from(area.width.saturating_sub(2)));
-    let Some((asked, result)) = super::lot(app).filter(|(asked, _)| asked.lot == lot) else {
-        return;
-    };
-    let Some(bid) = result.bids.iter().find(|of| of.bid == bid) else { return };
-    let money = |value: f64| text::number(value, 0);
-    let bidder = bid.bidder.as_deref().map_or(String::new(), |b| format!(", {}", text::cut(b, 30)));
-    let name = text::cut(&bid.bid, 20);
-    let mut lines = vec![
-        (
-            format!(
-                "Award lot {}, {} x {} kVA, to {name}{bidder}?",
-                text::cut(lot, 12),
-                result.quantity,
-                text::plain(asked.rated_kva, 1)
-            ),
-            theme.heading(),
-        ),
-        (
-            format!(
-                "owning cost {} {currency} a unit, {} {currency} the whole lot",
-                money(bid.owning_cost),
-                money(bid.lot_cost)
-            ),
-            theme.plain(),
-        ),
-    ];
-    let mut against = Vec::new();
-    if !bid.misses.is_empty() {
-        against.push(format!("It is out, not ranked: misses {}.", misses(bid)));
-    }
-    if let Some(lacked) = shortfall(result, bid) {
-        let least = text::cut(&lacked.least, 20);
-        against.push(format!("{least} costs {} {currency} a unit less to own.", money(lacked.gap)));
-    }
-    match result.recommended.as_deref() {
-        Some(leads) if leads == bid.bid => {}
-        Some(leads) => {
-            against
-                .push(format!("{} leads, not {name}: a reason is needed.", text::cut(leads, 20)));
-        }
-        None => against.push("No bid leads: a reason is needed.".to_owned()),
-    }
-    lines.extend(against.into_iter().map(|said| (format!("! {said}"), theme.warning())));
-    let say = "Type why below. Enter stores it with who, when and why, and keeps these factors for the \
-               settlement; Esc stores nothing.";
-    lines.push((say.to_owned(), theme.plain()));
-    let wrapped = lines.into_iter().flat_map(|(said, style)| {
-        text::wrap(&theme.spell(&said), cells).into_iter().map(move |line| (line, style))
-    });
-    // Where it is tight, nothing is left free above.
-    let from = u16::from(area.height > 8);
-    for (y, (line, style)) in (from..area.height).zip(wrapped) {
-        put(buffer, area, y, &format!(" {line}"), style);
-    }
 }
 
 fn details(app: &App, lot: &LotResult, currency: &str, area: Rect, buffer: &mut Buffer) {

@@ -88,6 +88,7 @@ impl More {
             for (name, loss) in estimated.losses() {
                 let (low, high) = (watt(loss.low_w), watt(loss.high_w));
                 let said = format!("{} ({low}-{high}) W", watt(loss.estimate_w));
+                let name = if name == "no_load_loss_w" { "iron" } else { "copper" };
                 lines.push(fact(name, &said, cells));
             }
         }
@@ -157,7 +158,7 @@ impl More {
         };
         row("", "unit".to_owned(), offer.map(|_| "best".to_owned()));
         let held: [(&str, OfHeat); 2] = [
-            ("peak held: oil °C", |heat| heat.steady_top_oil_c),
+            ("oil at peak °C", |heat| heat.steady_top_oil_c),
             ("hot spot °C", |heat| heat.steady_hot_spot_c),
         ];
         for (what, of) in held {
