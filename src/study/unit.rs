@@ -38,6 +38,7 @@ use crate::study::estimate::EstimatedRow;
 use crate::study::explain::FigureWorking;
 use crate::study::law::VerdictRow;
 use crate::study::losses::{LossesRow, of_unit, word};
+use crate::study::offers_open::left_out_because;
 use crate::study::test_report::{TestRow, TestedUnit};
 use crate::study::unit::thermal::ThermalRow;
 use crate::study::{Desk, StudyError};
@@ -342,7 +343,10 @@ impl<'a> Question<'a> {
             }),
             losses: of_unit(self.desk, self.context, self.index).ok(),
             estimated: EstimatedRow::of(self.context, &self.facts()),
-            left_out: decided.as_ref().err().map(|why| why.why()),
+            left_out: decided
+                .as_ref()
+                .err()
+                .map(|why| left_out_because(self.desk, self.context, self.index, *why)),
             thermal: self.thermal(place.as_ref().ok(), decided.as_ref().ok().map(|(_, d)| d)),
             fit: self.fitted().map(|fit| fit.row()).transpose()?,
             law: self.verdict()?.map(|(verdict, on)| VerdictRow::of(&verdict, on)),

@@ -55,6 +55,22 @@ impl Panel {
         self.fill()
     }
 
+    /// Shows the first figure of the next part, or of the one before; goes round.
+    ///
+    /// # Errors
+    /// What the engine refuses.
+    pub(super) fn part(&mut self, next: bool) -> Result<(), StudyError> {
+        let part = |figure: &Figure| figure.title.split('.').next().unwrap_or("").to_owned();
+        let parts: Vec<_> = self.figures.iter().map(part).collect();
+        let begins = |n: &usize| *n == 0 || parts[*n] != parts[*n - 1];
+        let firsts: Vec<usize> = (0..parts.len()).filter(begins).collect();
+        let own = firsts.partition_point(|first| *first <= self.at).saturating_sub(1);
+        let by = if next { 1 } else { firsts.len().saturating_sub(1) };
+        self.at = firsts.get((own + by) % firsts.len().max(1)).copied().unwrap_or(0);
+        self.list = List::default();
+        self.fill()
+    }
+
     fn fill(&mut self) -> Result<(), StudyError> {
         let Some(figure) = self.figures.get_mut(self.at) else { return Ok(()) };
         if let (Some((ranked, unit)), true) = (&self.unit, figure.lines.is_empty()) {

@@ -166,6 +166,20 @@ fn voltage_agrees(place: Option<f64>, offer: Option<f64>) -> bool {
     }
 }
 
+impl Terminals {
+    /// Whether a candidate has the same number of phases, as far as both are known.
+    pub fn phases_agree(&self, c: &Candidate) -> bool {
+        self.phases.is_none() || c.phases.is_none() || self.phases == c.phases
+    }
+
+    /// Whether a candidate agrees in phases and voltages, as far as they are known.
+    pub fn connects(&self, c: &Candidate) -> bool {
+        self.phases_agree(c)
+            && voltage_agrees(self.hv_kv, c.hv_kv)
+            && voltage_agrees(self.lv_kv, c.lv_kv)
+    }
+}
+
 /// Indices of the candidates that fit the terminals and lie in the window of sizes, in catalogue order.
 ///
 /// The window is shaped by the distinct ratings of those that agree in phases and voltages (within 2 %); the
@@ -175,13 +189,8 @@ pub fn fitting(
     candidates: &[Candidate],
     sizes: Option<(usize, usize)>,
 ) -> Vec<usize> {
-    let connects = |c: &Candidate| {
-        (terminals.phases.is_none() || c.phases.is_none() || terminals.phases == c.phases)
-            && voltage_agrees(terminals.hv_kv, c.hv_kv)
-            && voltage_agrees(terminals.lv_kv, c.lv_kv)
-    };
     let connecting: Vec<usize> =
-        (0..candidates.len()).filter(|&i| connects(&candidates[i])).collect();
+        (0..candidates.len()).filter(|&i| terminals.connects(&candidates[i])).collect();
     let rating = |i: usize| candidates[i].losses.rated_kva;
     let mut ratings: Vec<f64> = connecting.iter().map(|&i| rating(i)).collect();
     ratings.sort_by(f64::total_cmp);

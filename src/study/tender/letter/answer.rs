@@ -1,6 +1,6 @@
 //! The answer to one bidder: where its bid stands, what it lacked, and how its figures come about.
 
-use super::lot::{About, excluded_because};
+use super::lot::{About, misses};
 use super::{asks, cautions, factor_scale, factors, flag};
 use crate::engine::working::Step;
 use crate::exchange::Letter;
@@ -57,10 +57,7 @@ fn standing(letter: &mut Letter, about: &About, name: &str) {
         parts.map(|(part, amount)| vec![part.to_owned(), group(amount, 2)]).to_vec(),
     );
     match bid.rank {
-        None => letter.text(format!(
-            "It is not ranked: it misses {}.",
-            excluded_because(about, bid).join("; ")
-        )),
+        None => letter.text(format!("It is not ranked: it misses {}.", misses(bid))),
         Some(rank) => {
             letter.text(format!("It ranks {rank} of {} by owning cost.", about.ranked().count()));
         }

@@ -5,12 +5,12 @@ use super::{day, flag};
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
 use crate::study::figures::{group, short};
-use crate::study::tender::Awarded;
 use crate::study::tender::decide::AwardResult;
 use crate::study::tender::deliver::{DeliverResult, DeliveredUnit};
+use crate::study::tender::{Awarded, LotResult};
 
 /// To whom, by whom, when and why.
-fn sentence(award: &Awarded) -> String {
+pub fn sentence(award: &Awarded) -> String {
     let bidder = award.bidder.as_ref().map_or(String::new(), |bidder| format!(" ({bidder})"));
     let why = award.why.as_ref().map_or(String::new(), |why| format!(", because: {why}"));
     let (bid, who) = (&award.bid, &award.awarded_by);
@@ -35,20 +35,26 @@ pub(in crate::study) fn standing(letter: &mut Letter, about: &About) {
     letter.heading(3, "Award");
     letter.text(format!("Awarded to {}", sentence(award)));
     letter.text(terms(award, about.currency));
-    let leads = about.result.recommended.as_ref();
-    if award.differs_now() || leads != award.recommended.as_ref() {
-        let led = |bid: Option<&String>| bid.map_or("none", String::as_str).to_owned();
-        letter.warning(format!(
-            "compared again now, {} comes to {} instead of {} {} and {} leads instead of {}: the basis has changed since, or the program (then {}); the award stands as it was made",
+    if let Some(changed) = changed_since(about.result, about.currency) {
+        letter.warning(changed);
+    }
+}
+
+/// How the comparison differs now from that of the award; none where it does not, or the lot is not awarded.
+pub fn changed_since(lot: &LotResult, currency: &str) -> Option<String> {
+    let (award, leads) = (lot.award.as_ref()?, lot.recommended.as_ref());
+    let led = |bid: Option<&String>| bid.map_or("none", String::as_str).to_owned();
+    (award.differs_now() || leads != award.recommended.as_ref()).then(|| {
+        format!(
+            "compared again now, {} comes to {} instead of {} {currency} and {} leads instead of {}: the basis has changed since, or the program (then {}); the award stands as it was made",
             award.bid,
             group(award.owning_cost_now, 2),
             group(award.owning_cost, 2),
-            about.currency,
             led(leads),
             led(award.recommended.as_ref()),
             award.program
-        ));
-    }
+        )
+    })
 }
 
 /// What awarding a lot came to.
