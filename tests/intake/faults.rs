@@ -209,3 +209,38 @@ fn what_bids_and_measured_units_name_must_be_there() {
     let test = desk.book.test_report("ZE-0101").expect("store").expect("report");
     assert_eq!(test.open_circuit_power_w, Some(1180.0));
 }
+
+/// The line of a problem is the one that an editor shows: whatever ends lines, behind blank lines, and behind
+/// quoted cells that hold line ends.
+#[test]
+fn lines_are_counted_as_an_editor_counts_them() {
+    let text = "\n\nunit,rated_kva,note,theirs\nA,big,,\n\n\n\nB,big,,\"two\nlines\"\nC,400,\"x\n\ny\",\n\
+                \"D\",400,fine,\"\n\n\"\n   \nE,big,,\n\nF,big,,";
+    let told = [4, 8, 10, 17, 19];
+    for end in ["\n", "\r\n", "\r"] {
+        for last in ["", end] {
+            let text = format!("{}{last}", text.replace('\n', end));
+            let mut desk = Desk::empty();
+            let options = Options { ignore_unknown: true, ..Options::default() };
+            let report = desk.bytes(What::Units, "l.csv", text.as_bytes(), options);
+            let lines: Vec<u64> = report.problems.list().iter().map(|p| p.line).collect();
+            assert_eq!(lines, told, "{end:?} {last:?}: {}", problems(&report));
+        }
+    }
+    // Where buffers end between the two signs of a line end.
+    let note = "x".repeat(493);
+    for shift in 0..3 {
+        let rows: String = (0..500).map(|n| format!("U{n:03},1,{note}\r\n")).collect();
+        let text = format!("unit,rated_kva,note{}\r\n{rows}Z,big,\r\n", " ".repeat(shift));
+        let report = Desk::empty().text(What::Units, "l.csv", &text);
+        assert_eq!(report.problems.list()[0].line, 502, "{}", problems(&report));
+        assert_eq!(report.problems.count(), 1);
+    }
+}
+
+#[test]
+fn a_row_without_end_is_told_where_it_begins() {
+    let text = format!("unit,rated_kva,note\r\nA,1,\r\nB,1,\"{}", "open\r\n".repeat(300_000));
+    let report = Desk::empty().text(What::Units, "l.csv", &text);
+    assert!(problems(&report).contains("l.csv:3: (file): (blank): a row is longer"), "{report:?}");
+}
