@@ -36,16 +36,16 @@ const FAULTS: &[(&[(&str, &str)], &str)] = &[
     (&[("profile", "ofice")], "profile: ofice: is no profile of the book; did you mean office?"),
     (&[("profile", "zzz")], "profile: zzz: is no profile of the book; import it first"),
     (&[("unit", "G")], "unit: G: stands on line 2 already"),
-    (&[("impedance_pct", "400")], "impedance_pct: 400: is outside above 0 … 60 %"),
+    (&[("impedance_pct", "400")], "impedance_pct: 400: is outside 0.01 … 60 %"),
     (&[("load_loss_w", "NaN")], "load_loss_w: NaN: is not a number; leave the cell blank"),
     (&[("load_loss_w", "inf")], "load_loss_w: inf: is infinite"),
     (&[("peak_kva", "1e999")], "peak_kva: 1e999: is infinite or beyond the range of numbers"),
     (&[("year_made", "3998")], "year_made: 3998: is outside 1880 … 2100"),
     (&[("year_made", "1990.5")], "year_made: 1990.5: is not a whole number"),
-    (&[("rated_kva", "0")], "rated_kva: 0: is outside above 0 … 2000000 kVA"),
+    (&[("rated_kva", "0")], "rated_kva: 0: is outside 0.1 … 2000000 kVA"),
     (&[("loss_factor_pu", "0.6")], "loss_factor_pu: 0.6: no load with load factor 0.5"),
     (&[("loss_factor_pu", "0.2")], "loss_factor_pu: 0.2: no load with load factor 0.5"),
-    (&[("note", "beep\u{7}")], "note: beep\\u{7}: holds the control character"),
+    (&[("note", "beep\u{7}")], "note: beep␇: holds the control character"),
     (&[("mounting", "roof")], "mounting: roof: is not one of pole, pad, indoor or substation"),
     (&[("phases", "2")], "phases: 2: is outside 1 | 3"),
     (
@@ -230,7 +230,8 @@ fn lines_are_counted_as_an_editor_counts_them() {
     // Where buffers end between the two signs of a line end.
     let note = "x".repeat(493);
     for shift in 0..3 {
-        let rows: String = (0..500).map(|n| format!("U{n:03},1,{note}\r\n")).collect();
+        let rows: String =
+            (0..500).flat_map(|n| [format!("U{n:03},1,"), format!("{note}\r\n")]).collect();
         let text = format!("unit,rated_kva,note{}\r\n{rows}Z,big,\r\n", " ".repeat(shift));
         let report = Desk::empty().text(What::Units, "l.csv", &text);
         assert_eq!(report.problems.list()[0].line, 502, "{}", problems(&report));

@@ -89,6 +89,10 @@ pub enum Kind {
     Date,
 }
 
+/// The least magnitude of a number that is not zero, in every column: what is nearer to zero is no measurement, and
+/// its powers and quotients leave the range of numbers.
+pub const LEAST: f64 = 1e-12;
+
 /// The facts of one column.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Column {
@@ -305,6 +309,12 @@ impl Column {
             (Kind::Money(a, b), Value::Money(m)) => a * 1000 <= m.0 && m.0 <= b * 1000,
             _ => true,
         };
+        if let Value::Real(x) = value
+            && x != 0.0
+            && x.abs() < LEAST
+        {
+            return Err(format!("is nearer to 0 than {LEAST:e}; write 0, or leave it blank"));
+        }
         if inside {
             return Ok(value);
         }
