@@ -20,6 +20,13 @@ use crate::engine::columns::BasisSheet;
 use crate::study::rank::By;
 use crate::study::{StudyError, Watch};
 
+/// Most characters of a filter: more is a paste gone astray.
+const LONGEST_FILTER: usize = 200;
+
+fn is_full(input: &Input) -> bool {
+    input.value().chars().count() >= LONGEST_FILTER
+}
+
 /// Why the dashboard was left.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum ExitReason {
@@ -221,6 +228,7 @@ impl App {
         match (action, &mut self.typing) {
             (Some(action), _) => self.act(action),
             (None, Some(input)) if self.help.is_none() => match edit(key) {
+                Some(InputRequest::InsertChar(_)) if is_full(input) => {}
                 Some(request) => {
                     input.handle(request);
                     self.filter_typed();
@@ -242,8 +250,10 @@ impl App {
     /// Takes pasted text: into the filter while it is typed, else nowhere.
     pub fn paste(&mut self, text: &str) {
         if let Some(input) = &mut self.typing {
-            for c in text.chars().filter(|c| !c.is_control()).take(200) {
-                input.handle(InputRequest::InsertChar(c));
+            for c in text.chars().filter(|c| !c.is_control()).take(LONGEST_FILTER) {
+                if !is_full(input) {
+                    input.handle(InputRequest::InsertChar(c));
+                }
             }
             self.filter_typed();
             self.settle();
