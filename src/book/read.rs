@@ -69,6 +69,14 @@ impl Book {
         Ok(found.into_iter().next())
     }
 
+    /// The test reports, in order of entry.
+    ///
+    /// # Errors
+    /// The store fails.
+    pub fn test_reports(&self) -> Result<Vec<TestReport>> {
+        records(&self.connection, &tables::TEST_REPORTS, TestReport::from_values, "", [])
+    }
+
     /// The offers, in the order in which they entered the catalogue.
     ///
     /// # Errors

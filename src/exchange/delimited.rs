@@ -103,7 +103,7 @@ impl Text {
         // end behind it, and those inside its quotes.
         let (end, guard) = (self.reader.position(), self.reader.get_ref());
         let is_closed = end.byte() < guard.given || guard.last == b'\n';
-        let inside = self.record.as_slice().iter().filter(|byte| **byte == b'\n').count() as u64;
+        let inside = self.record.as_slice().split(|byte| *byte == b'\n').skip(1).count() as u64;
         row.begin(end.line().saturating_sub(u64::from(is_closed) + inside).max(1));
         for (at, cell) in self.record.iter().enumerate() {
             decode(&mut self.encoding, at, cell, row);

@@ -1,13 +1,15 @@
 //! Everything doubtful in a book: missing, estimated, implausible, contradictory. Tells; changes nothing.
 
+use std::borrow::Cow;
 use std::ops::ControlFlow;
 
 use serde::Serialize;
 
 use crate::book::{Book, BookError};
-use crate::engine::columns::{Basis, Bid, Lot, Offer, Unit, VoltageModel, YesNo};
+use crate::engine::columns::{Basis, Bid, Lot, Offer, TestReport, Unit, VoltageModel, YesNo};
 use crate::engine::decision::LeftOut;
 use crate::engine::decision::place::{loading_contradicts, losses_contradict};
+use crate::engine::decision::tender::bid::adders_lower_price;
 use crate::engine::economics::Assumptions;
 use crate::engine::economics::traps;
 use crate::engine::flags::Flags;
@@ -54,7 +56,7 @@ impl Kind {
 /// One doubt.
 #[derive(Clone, Debug, PartialEq, Eq, Serialize)]
 pub struct Doubt {
-    /// What it is about: `unit`, `offer`, `lot`, `bid` or `basis`.
+    /// What it is about: `unit`, `test report`, `offer`, `lot`, `bid` or `basis`.
     pub subject: &'static str,
     /// Its key.
     pub key: String,
@@ -63,15 +65,30 @@ pub struct Doubt {
     /// What kind of doubt.
     pub kind: Kind,
     /// What is doubtful, in words.
-    pub what: String,
+    pub what: Cow<'static, str>,
 }
 
-/// Goes through a book: units, offers, lots, bids, bases, each in order of entry. `basis` names the one that the fleet is
+/// Goes through a book: units, test reports, offers, lots, bids, bases, each in order of entry. `basis` names the one that the fleet is
 /// held against; else the only or chosen one counts, and without one what depends on it is passed over.
 ///
 /// # Errors
 /// The book fails, does not know the named basis, or the work was stopped.
 pub fn check(book: &Book, basis: Option<&str>, watch: &Watch) -> Result<Vec<Doubt>, StudyError> {
+    let mut doubts = Vec::new();
+    each_doubt(book, basis, watch, &mut |doubt| doubts.push(doubt))?;
+    Ok(doubts)
+}
+
+/// The same, each doubt handed on as it is found: those of a large fleet are many.
+///
+/// # Errors
+/// As [`check`].
+pub fn each_doubt(
+    book: &Book,
+    basis: Option<&str>,
+    watch: &Watch,
+    each: &mut dyn FnMut(Doubt),
+) -> Result<(), StudyError> {
     let sheet = match book.basis(basis) {
         Ok(sheet) => Some(sheet),
         Err(BookError::WhichBasis { .. }) => None,
@@ -80,7 +97,7 @@ pub fn check(book: &Book, basis: Option<&str>, watch: &Watch) -> Result<Vec<Doub
     let basis = sheet.as_ref().map(|sheet| &sheet.basis);
     let counts = book.counts()?;
     watch.expect(usize::try_from(counts.units).unwrap_or(0));
-    let mut doubts = Doubts(Vec::new());
+    let mut doubts = Doubts(each);
     let profiles = Profiles::of(&book.profiles()?);
     let mut seen = 0;
     book.each_unit(|unit| {
@@ -96,6 +113,10 @@ pub fn check(book: &Book, basis: Option<&str>, watch: &Watch) -> Result<Vec<Doub
     })?;
     if watch.is_stopped() {
         return Err(StudyError::Stopped);
+    }
+    for report in book.test_reports()? {
+        let unit = book.unit(&report.unit)?;
+        doubts.test_report(&unit, &report);
     }
     for offer in book.offers()? {
         doubts.offer(&offer, basis);
@@ -130,7 +151,7 @@ pub fn check(book: &Book, basis: Option<&str>, watch: &Watch) -> Result<Vec<Doub
     for name in names {
         doubts.basis(book, &name)?;
     }
-    Ok(doubts.0)
+    Ok(())
 }
 
 /// The figures of a nameplate that units, offers and bids share.
@@ -160,17 +181,17 @@ impl Profiles {
     }
 }
 
-struct Doubts(Vec<Doubt>);
+struct Doubts<'a>(&'a mut dyn FnMut(Doubt));
 
-impl Doubts {
+impl Doubts<'_> {
     fn add(
         &mut self,
         (subject, key): (&'static str, &str),
         column: &'static str,
         kind: Kind,
-        what: impl Into<String>,
+        what: impl Into<Cow<'static, str>>,
     ) {
-        self.0.push(Doubt { subject, key: key.to_owned(), column, kind, what: what.into() });
+        (self.0)(Doubt { subject, key: key.to_owned(), column, kind, what: what.into() });
     }
 
     /// A flag of the engine, in its own words.
@@ -245,6 +266,9 @@ impl Doubts {
             (_, None, Some(_)) => {
                 self.flag(of, "load_loss_w", Estimated, Flags::LOAD_LOSS_FROM_TOTAL);
             }
+            (None, Some(_), Some(_)) => {
+                self.flag(of, "no_load_loss_w", Estimated, Flags::NO_LOAD_LOSS_FROM_TOTAL);
+            }
             _ => {}
         }
         if unit.peak_kva.is_none() {
@@ -306,6 +330,9 @@ impl Doubts {
         for odd in plausibility::contradictions(kva, z, i0, iron, copper) {
             self.add(of, odd.quantity, Kind::Contradictory, format!("{} {}", odd.value, odd.why));
         }
+        if plausibility::loss_base_is_far(kva, plate.loss_base_kva) {
+            self.flag(of, "loss_base_kva", Kind::Implausible, Flags::LOSS_BASE_FAR);
+        }
         let (p0, pk, total) = (plate.no_load_loss_w, plate.load_loss_w, plate.total_loss_w);
         if losses_contradict(p0, pk, total) {
             self.flag(of, "total_loss_w", Kind::Contradictory, Flags::LOSSES_CONTRADICT);
@@ -315,6 +342,16 @@ impl Doubts {
         }
         if group.is_some_and(|group| vector_group::clock(group).is_none()) {
             self.flag(of, "vector_group", Kind::Implausible, Flags::VECTOR_GROUP_UNREAD);
+        }
+    }
+
+    fn test_report(&mut self, unit: &Unit, report: &TestReport) {
+        let of = ("test report", unit.unit.as_str());
+        let (unusual, impossible) = plausibility::test_report(unit, report);
+        for (kind, doubts) in [(Kind::Implausible, unusual), (Kind::Contradictory, impossible)] {
+            for odd in doubts {
+                self.add(of, odd.quantity, kind, format!("{} {}", odd.value, odd.why));
+            }
         }
     }
 
@@ -370,6 +407,9 @@ impl Doubts {
         }
         if bid.reference_temp_c.is_none() && lot.is_some_and(|lot| lot.reference_temp_c.is_some()) {
             self.flag(of, "reference_temp_c", Kind::Missing, Flags::NO_REFERENCE_TEMP);
+        }
+        if adders_lower_price(bid) {
+            self.flag(of, "adder_cost", Kind::Implausible, Flags::ADDERS_LOWER_PRICE);
         }
         if bid.price.0 == 0 {
             self.add(of, "price", Kind::Implausible, "costs nothing");
