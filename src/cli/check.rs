@@ -63,8 +63,10 @@ pub(super) fn check(args: &Args, printer: &mut Printer) -> Result<Exit, Failure>
     match printer.format {
         Format::Json => printer.json(&Doubts { doubts: List(asked) })?,
         Format::Csv => {
-            printer.csv_line(KEYS)?;
-            asked.try_each(|doubt| printer.csv_line(cells(doubt)))?;
+            let mut lines = printer.csv_lines();
+            lines.line(KEYS)?;
+            asked.try_each(|doubt| lines.line(cells(doubt)))?;
+            lines.finish()?;
         }
         Format::Text => {
             printer.words(KEYS, widths)?;

@@ -118,7 +118,8 @@ impl Printer {
 
     /// Width of a cell as it is shown.
     pub(super) fn width(cell: &str) -> usize {
-        clean(cell).width()
+        let shown = clean(cell);
+        if shown.is_ascii() { shown.len() } else { shown.width() }
     }
 
     /// Writes a line of words in columns of some widths; the last is as wide as it is.
@@ -129,7 +130,7 @@ impl Printer {
     ) -> io::Result<()> {
         let mut line = String::new();
         for (at, (cell, width)) in cells.into_iter().zip(widths).enumerate() {
-            line.push_str(&clean(cell));
+            line.push_str(cell);
             if at + 1 < N {
                 line.extend(std::iter::repeat_n(' ', width.saturating_sub(Self::width(cell)) + 2));
             }
@@ -137,12 +138,9 @@ impl Printer {
         self.line(line.trim_end())
     }
 
-    /// Writes a line of words as CSV, as [`Printer::csv`] does.
-    pub(super) fn csv_line<const N: usize>(&mut self, cells: [&str; N]) -> Result<(), Failure> {
-        let mut csv = csv::WriterBuilder::new().buffer_capacity(1 << 9).from_writer(&mut self.out);
-        csv.write_record(cells.map(|cell| defused(cell).into_owned())).map_err(unwritten)?;
-        csv.flush()?;
-        Ok(())
+    /// Begins lines of words as CSV, as [`Printer::csv`] writes them.
+    pub(super) fn csv_lines(&mut self) -> CsvLines<'_> {
+        CsvLines(csv::Writer::from_writer(&mut self.out))
     }
 
     /// Writes rows as a text table with headings and units.
@@ -184,6 +182,24 @@ impl Printer {
             self.line(text.trim_end())?;
         }
         Ok(())
+    }
+}
+
+/// Lines of words as CSV.
+pub(super) struct CsvLines<'a>(csv::Writer<&'a mut BufWriter<io::Stdout>>);
+
+impl CsvLines<'_> {
+    /// Writes a line.
+    pub(super) fn line<const N: usize>(&mut self, cells: [&str; N]) -> Result<(), Failure> {
+        for cell in cells {
+            self.0.write_field(defused(cell).as_bytes()).map_err(unwritten)?;
+        }
+        self.0.write_record(None::<&[u8]>).map_err(unwritten)
+    }
+
+    /// Writes out what is held back.
+    pub(super) fn finish(mut self) -> io::Result<()> {
+        self.0.flush()
     }
 }
 

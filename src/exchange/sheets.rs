@@ -222,6 +222,9 @@ fn read(column: &Column, value: &DeValue<'_>) -> Result<Value, String> {
             }
         }
         DeValue::Float(number) if !is_text && !is_flag => column.read(number.as_str()),
+        DeValue::Datetime(_) if !is_text && !is_flag => {
+            Err("is a date or a time, and a number is wanted".to_owned())
+        }
         DeValue::Array(_) | DeValue::Table(_) => Err("is no single value".to_owned()),
         _ if is_text => Err("is text; write it in quotes".to_owned()),
         _ if is_flag => Err("is true or false, without quotes".to_owned()),

@@ -30,6 +30,10 @@ const fn mark(c: char) -> Option<char> {
 
 /// The text with marks for what would not be seen.
 pub fn visible(text: &str) -> Cow<'_, str> {
+    // Nearly all text is of this kind, and there is much of it.
+    if text.bytes().all(|byte| matches!(byte, b' '..=b'~')) {
+        return Cow::Borrowed(text);
+    }
     if text.chars().any(|c| mark(c).is_some()) {
         Cow::Owned(text.chars().map(|c| mark(c).unwrap_or(c)).collect())
     } else {

@@ -99,6 +99,18 @@ fn what_is_wrong_in_a_basis_is_told_by_line() {
             "energy_price_per_kwh = 0.1\nenergy_price_per_kwh = 0.2\n",
             "b.toml:7: energy_price_per_kwh: 0.2: is not TOML: duplicate key",
         ),
+        (
+            "energy_price_per_kwh = 0.1\nload_growth_years = 99999999999999999999999999999999999999999\n",
+            "b.toml:7: load_growth_years: 99999999999999999999999999999999999999999: is outside 1 … 200",
+        ),
+        (
+            "energy_price_per_kwh = 0.1\nload_growth_years = 2027-03-01\n",
+            "b.toml:7: load_growth_years: 2027-03-01: is a date or a time, and a number is wanted",
+        ),
+        (
+            "energy_price_per_kwh = 0.1\nload_growth_years = 2027-13-45\n",
+            "b.toml:7: load_growth_years: 2027-13-45: is not TOML: invalid date",
+        ),
         ("energy_price_per_kwh = \n", "b.toml:6: energy_price_per_kwh: (blank): is not TOML"),
         (
             "[range.horizn_years]\nlow = 1\n",

@@ -285,7 +285,10 @@ impl Column {
             },
             Kind::Integer(..) | Kind::IntegerOf(..) => {
                 let number: f64 = number(text)?;
-                if number.fract() != 0.0 || number.abs() > 9e15 {
+                if number.abs() > 9e15 {
+                    return Err(format!("is outside {}", self.range()));
+                }
+                if number.fract() != 0.0 {
                     return Err("is not a whole number".to_owned());
                 }
                 #[expect(clippy::cast_possible_truncation, reason = "whole and below 9e15")]
@@ -309,13 +312,11 @@ impl Column {
             (Kind::Money(a, b), Value::Money(m)) => a * 1000 <= m.0 && m.0 <= b * 1000,
             _ => true,
         };
-        if let Value::Real(x) = value
-            && x != 0.0
-            && x.abs() < LEAST
-        {
-            return Err(format!("is nearer to 0 than {LEAST:e}; write 0, or leave it blank"));
-        }
         if inside {
+            let tiny = matches!(value, Value::Real(x) if x != 0.0 && x.abs() < LEAST);
+            if tiny {
+                return Err(format!("is nearer to 0 than {LEAST:e}; write 0, or leave it blank"));
+            }
             return Ok(value);
         }
         let unit = self.unit();
