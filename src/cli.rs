@@ -19,6 +19,7 @@ mod rank;
 mod report;
 mod settle;
 mod tender;
+mod threads;
 mod timings;
 mod unit;
 mod work;
@@ -55,6 +56,7 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> Exit {
             };
         }
     };
+    threads::make();
     let mut printer = Printer::new(args.format);
     let timings = Timings::start(args.timings && !matches!(args.command, Some(Command::Rank(_))));
     let done = dispatch(&args, &mut printer);
@@ -62,7 +64,12 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> Exit {
     if let Some(line) = timings.finish() {
         printer.complain(&line);
     }
-    match done.and_then(|exit| flushed.map(|()| exit)) {
+    let whole = |exit| match exit {
+        // The terminal may be gone with its user.
+        Exit::Signal(_) => Ok(exit),
+        _ => flushed.map(|()| exit),
+    };
+    match done.and_then(whole) {
         Ok(exit) => exit,
         Err(failure) => {
             if let Some(message) = &failure.message {

@@ -18,12 +18,14 @@ pub mod series;
 pub mod sheets;
 mod source;
 pub mod target;
+mod visible;
 mod workbook;
 
 pub use layout::{Fault, Layout, counted, holds_numbers};
-pub use letter::{Letter, visible};
+pub use letter::Letter;
 pub use number::Decimals;
 pub use problem::{Problem, Problems};
 pub use recognise::{Decimal, Delimiter, Encoding, Hints, Recognised};
 pub use rows::{ReadError, Row, Rows};
 pub use source::{Source, SourceError};
+pub use visible::visible;

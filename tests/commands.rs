@@ -276,3 +276,193 @@ fn the_demo_files_are_taken_twice_without_a_change() {
     }
     assert_eq!(program.json(&["journal", "--format", "json", "--top", "1000"]), before);
 }
+
+/// Text that hides, turns or moves what a terminal shows comes from a file; text output and problems show marks, JSON
+/// and CSV keep it.
+#[test]
+fn hidden_characters_never_reach_the_terminal() {
+    let program = Program::new();
+    program.import_demo();
+    let trick = "x\u{202e}y\u{200b}z\u{2066}\u{feff}\u{ad}\u{e0041}";
+    let file = |name: &str, text: String| program.write(name, text);
+    let units = format!(
+        "unit,site,rated_kva,peak_kva,load_factor_pu,no_load_loss_w,load_loss_w,phases,hv_kv,lv_kv\n\
+         {trick},{trick},400,300,0.5,900,4600,3,20,0.4\n"
+    );
+    program.import("units", &file("u.csv", units), &["--why", trick]);
+    let bids = format!(
+        "tender,lot,bid,bidder,price,no_load_loss_w,load_loss_w\nol-2027-1,L1,{trick},{trick},9000,430,0\n"
+    );
+    program.import("bids", &file("b.csv", bids), &[]);
+    let wrong = format!("unit,rated_kva,{trick}\n{trick},big,\n\u{9b}2J,1,\n");
+    let wrong = file("w\u{202e}.csv", wrong);
+    let hidden = |text: &str| {
+        let is = |c: char| {
+            (c.is_control() && c != '\n')
+                || matches!(c, '\u{ad}' | '\u{200b}'..='\u{200f}' | '\u{202a}'..='\u{202e}' | '\u{2060}'..='\u{206f}' | '\u{feff}')
+                || ('\u{e0000}'..='\u{e007f}').contains(&c)
+        };
+        text.chars().find(|c| is(*c))
+    };
+    let wrong = wrong.to_string_lossy();
+    for arguments in [
+        &["rank"][..],
+        &["losses"],
+        &["check"],
+        &["journal"],
+        &["unit", trick],
+        &["unit", &trick[1..]],
+        &["unit", trick, "--working"],
+        &["tender", "ol-2027-1"],
+        &["tender", "ol-2027-1", "--working", "--bid", trick],
+        &["tender", trick],
+        &["report", "tender", "ol-2027-1", "-"],
+        &["import", "units", &wrong],
+        &["import", "units", &wrong, "--ignore-unknown"],
+        &["rank", "--basis", trick],
+    ] {
+        let output = program.run(arguments);
+        for bytes in [&output.stdout, &output.stderr] {
+            let text = String::from_utf8_lossy(bytes);
+            assert_eq!(hidden(&text), None, "{arguments:?}\n{text}");
+        }
+    }
+    assert!(program.done(&["rank", "--format", "json"]).contains(trick));
+    assert!(program.done(&["rank", "--format", "csv"]).contains(trick));
+}
+
+#[test]
+fn any_number_of_threads_that_is_asked_for_will_do() {
+    let program = small();
+    let wanted = program.done(&["rank", "--format", "json"]);
+    for threads in ["0", "1", "100000", "18446744073709551615", "-3", "many"] {
+        let mut command = program.command(&["rank", "--format", "json"]);
+        let output = command.env("RAYON_NUM_THREADS", threads).output().expect("starts");
+        assert_eq!(code(&output), 0, "{threads}: {}", errors(&output));
+        assert_eq!(String::from_utf8_lossy(&output.stdout), wanted, "{threads}");
+    }
+}
+
+#[test]
+fn a_backup_is_whole_or_not_there() {
+    let program = small();
+    let copy = program.home().join("copy.sqlite");
+    program.done(&["backup", &copy.to_string_lossy()]);
+    let beside = |name: &str| {
+        let entries = std::fs::read_dir(program.home()).expect("home");
+        let names = entries.map(|e| e.expect("entry").file_name().to_string_lossy().into_owned());
+        names.filter(|n| n.starts_with(name)).collect::<Vec<_>>()
+    };
+    assert_eq!(beside("copy"), ["copy.sqlite"]);
+    let before = std::fs::read(&copy).expect("copy");
+    let output = program.run(&["backup", &copy.to_string_lossy()]);
+    assert_eq!(code(&output), 1);
+    assert!(errors(&output).contains("is there already; nothing is overwritten"));
+    assert_eq!(std::fs::read(&copy).expect("copy"), before);
+    assert_eq!(beside("copy"), ["copy.sqlite"]);
+    let command = ["--book", &*copy.to_string_lossy(), "rank", "--format", "json"];
+    assert_eq!(program.json(&command), program.json(&["rank", "--format", "json"]));
+}
+
+#[test]
+fn a_trial_may_be_made_on_a_book_that_is_not_to_be_changed() {
+    let program = small();
+    let before = std::fs::read(program.book()).expect("book");
+    let units = program.write("more.csv", "unit,rated_kva\nNEW,400\n");
+    let command = ["import", "units", &*units.to_string_lossy(), "--dry-run", "--read-only"];
+    let said = program.done(&command);
+    assert!(said.contains("units: 1 would be new"), "{said}");
+    assert_eq!(std::fs::read(program.book()).expect("book"), before);
+    let output =
+        program.run(&command[..3].iter().copied().chain(["--read-only"]).collect::<Vec<_>>());
+    assert_eq!(code(&output), 2);
+}
+
+#[cfg(unix)]
+#[test]
+fn what_is_no_book_is_said_in_words() {
+    use std::os::unix::fs::PermissionsExt as _;
+
+    let program = small();
+    let book = program.book();
+    let said = |path: &std::path::Path| {
+        let output = program.run(&["--book", &path.to_string_lossy(), "rank"]);
+        assert_eq!(code(&output), 1, "{}", errors(&output));
+        errors(&output)
+    };
+    for version in ["0", "-1", "-2147483648"] {
+        let copy = program.home().join("damaged.sqlite");
+        std::fs::copy(&book, &copy).expect("copy");
+        let store = rusqlite::Connection::open(&copy).expect("store");
+        store.execute_batch(&format!("PRAGMA user_version = {version}")).expect("version");
+        drop(store);
+        let said = said(&copy);
+        assert!(said.contains("its version number is damaged; go back to a backup"), "{said}");
+    }
+    assert!(said(program.home()).contains("is not a book: it is a directory"));
+    let pipe = program.home().join("pipe");
+    let made = std::process::Command::new("mkfifo").arg(&pipe).status().expect("mkfifo");
+    assert!(made.success());
+    assert!(said(&pipe).contains("is not a book: it is no ordinary file"));
+    let locked = program.home().join("locked.sqlite");
+    std::fs::copy(&book, &locked).expect("copy");
+    std::fs::set_permissions(&locked, std::fs::Permissions::from_mode(0o0)).expect("mode");
+    // Who may read everything reads this too.
+    if std::fs::File::open(&locked).is_err() {
+        assert!(said(&locked).contains("locked.sqlite: Permission denied"));
+    }
+}
+
+/// A source without end is stopped at a bound and told so.
+#[test]
+fn a_source_without_end_is_stopped() {
+    use std::io::Write as _;
+
+    let program = Program::new();
+    let endless = |what: &str, name: &[&str], head: &str, row: &dyn Fn(u64) -> String| {
+        let arguments = [&["import", what, "-"], name].concat();
+        let mut command = program.command(&arguments);
+        let piped = command.stdin(Stdio::piped()).stdout(Stdio::piped()).stderr(Stdio::piped());
+        let mut child = piped.spawn().expect("starts");
+        let mut input = std::io::BufWriter::new(child.stdin.take().expect("input"));
+        let mut number = 0;
+        let mut wrote = input.write_all(head.as_bytes());
+        while wrote.is_ok() {
+            assert!(number < 40_000_000, "nobody stops it");
+            wrote = input.write_all(row(number).as_bytes());
+            number += 1;
+        }
+        let _ = input.into_parts();
+        let output = child.wait_with_output().expect("ends");
+        assert_eq!(code(&output), 3);
+        errors(&output)
+    };
+    let said = endless("profiles", &[], "interval,a\n", &|n| format!("{},1\n", n + 1));
+    assert!(said.contains("-:527042: (file): (blank): has more than 527040 rows"), "{said}");
+    let said = endless("units", &[], "unit,rated_kva\n", &|_| "a,x\n".to_owned());
+    assert!(
+        said.contains("-:5000002: (file): (blank): has more than 5000000 rows"),
+        "{}",
+        &said[said.len() - 300..]
+    );
+}
+
+#[test]
+fn a_no_load_loss_out_of_the_total_is_said() {
+    let program = small();
+    let units = program.write(
+        "total.csv",
+        "unit,rated_kva,load_loss_w,total_loss_w,peak_kva,load_factor_pu\nTOTAL,400,4600,5500,300,0.5\n",
+    );
+    program.import("units", &units, &[]);
+    for command in ["rank", "losses"] {
+        let json = program.json(&[command, "--format", "json"]);
+        let units = json["units"].as_array().expect("units");
+        let unit = units.iter().find(|u| u["unit"] == "TOTAL").expect("is there");
+        let flags = unit["flags"].as_array().expect("flags");
+        assert!(flags.contains(&"no_load_loss_from_total".into()), "{command}: {flags:?}");
+    }
+    assert!(
+        program.done(&["rank"]).contains("the no-load loss is total_loss_w less the load loss")
+    );
+}

@@ -191,7 +191,7 @@ fn ctrl_c_leaves_with_130() {
 
 #[test]
 fn signals_leave_with_128_and_their_number() {
-    for (name, code) in [("TERM", 143), ("HUP", 129), ("INT", 130)] {
+    for (name, code) in [("TERM", 143), ("HUP", 129), ("INT", 130), ("QUIT", 131)] {
         let mut pty = Pty::demo(&[]);
         pty.until_shown(READY);
         pty.signal(name);
@@ -209,14 +209,22 @@ fn a_signal_while_reading_leaves_too() {
     pty.is_given_back();
 }
 
+/// With the signal that the kernel sends then, and without: where the terminal is not the one that controls it.
 #[test]
 fn a_terminal_that_is_gone_ends_it() {
+    for controlling in [true, false] {
+        gone(controlling);
+    }
+}
+
+fn gone(controlling: bool) {
     let home = tempfile::tempdir().expect("a folder");
     let mut command = CommandBuilder::new(env!("CARGO_BIN_EXE_ironhum"));
     command.arg("demo");
     command.env_clear();
     command.env("HOME", home.path());
     command.env("TERM", "xterm");
+    command.set_controlling_tty(controlling);
     let pair = native_pty_system().openpty(PtySize::default()).expect("a pseudo-terminal");
     let mut child = pair.slave.spawn_command(command).expect("starts");
     drop(pair.slave);
@@ -231,10 +239,50 @@ fn a_terminal_that_is_gone_ends_it() {
     drop(reader);
     drop(pair.master);
     let start = Instant::now();
-    while child.try_wait().expect("can be waited for").is_none() {
-        assert!(start.elapsed() < PATIENCE, "it does not end");
+    let status = loop {
+        if let Some(status) = child.try_wait().expect("can be waited for") {
+            break status;
+        }
+        assert!(start.elapsed() < Duration::from_secs(20), "it does not end");
         std::thread::sleep(Duration::from_millis(10));
+    };
+    assert_eq!(status.exit_code(), 129, "as by SIGHUP, controlling {controlling}");
+}
+
+#[test]
+fn a_terminal_that_cannot_place_text_is_told_what_to_do() {
+    let mut command = CommandBuilder::new(env!("CARGO_BIN_EXE_ironhum"));
+    command.args(["--book", "none"]);
+    let mut pty = Pty::start(command, &[("TERM", "dumb")], 80, 24);
+    assert_eq!(pty.wait(), 2);
+    let said = pty.screen().split_whitespace().collect::<Vec<_>>().join(" ");
+    assert!(
+        said.contains("TERM is not dumb") && said.contains("ironhum rank --format csv"),
+        "{said}"
+    );
+    assert!(!pty.bytes().contains(&0x1b), "not one sequence");
+    // The demo prints instead.
+    let mut pty = Pty::demo(&[("TERM", "dumb")]);
+    assert_eq!(pty.wait(), 0);
+}
+
+/// A paste whose end never comes must not lock the user in; one that is told as keys is taken quickly.
+#[test]
+fn long_and_unfinished_pastes() {
+    let mut pty = Pty::demo(&[]);
+    pty.until_shown(READY);
+    pty.type_in("/");
+    pty.until_shown("filter:");
+    for _ in 0..100 {
+        pty.type_in(&"zelmory ".repeat(128));
     }
+    pty.type_in("\u{1b}");
+    pty.until_shown(READY);
+    pty.type_in("\u{1b}[200~never ends");
+    std::thread::sleep(Duration::from_millis(200));
+    pty.type_in("\u{3}");
+    assert_eq!(pty.wait(), 130);
+    pty.is_given_back();
 }
 
 #[test]

@@ -115,8 +115,8 @@ fn unknown_currency() {
 fn rate_of_zero() {
     let program = program();
     for (rate, said) in [
-        ("0", "wrong:5: USD: 0: is outside above 0"),
-        ("-0.9", "wrong:5: USD: -0.9: is outside above 0"),
+        ("0", "wrong:5: USD: 0: is outside 0.000000001 …"),
+        ("-0.9", "wrong:5: USD: -0.9: is outside 0.000000001 …"),
         ("nan", "wrong:5: USD: nan: is not a number"),
         ("inf", "wrong:5: USD: inf: is infinite"),
         ("\"0.9\"", "wrong:5: USD: 0.9: is a number; write it without quotes"),
@@ -124,6 +124,25 @@ fn rate_of_zero() {
         let tender = TENDER.replace("USD = 0.9", &format!("USD = {rate}"));
         rejected(&program, "tender", &tender, &[said]);
     }
+}
+
+/// A rate on which stored bids rest stays, and the tender's own currency is worth 1.
+#[test]
+fn rates_that_bids_rest_on() {
+    let program = program();
+    let none = TENDER.replace("USD = 0.9\n", "SEK = 0.09\n");
+    let said = "wrong:4: rates: (blank): rate USD has bids in the book and stays; keep it";
+    rejected(&program, "tender", &none, &[said]);
+    let gone = TENDER.replace("[rates]\nUSD = 0.9\n", "");
+    rejected(&program, "tender", &gone, &["rate USD has bids in the book and stays"]);
+    // In another currency the bids in the old one need a rate.
+    let other = TENDER.replace("\"EUR\"", "\"SEK\"");
+    rejected(&program, "tender", &other, &["wrong:4: rates: (blank): rate EUR has bids"]);
+    let own = TENDER.replace("USD = 0.9", "USD = 0.9\nEUR = 1.1");
+    let said = "wrong:6: EUR: 1.1: is the rate of EUR, the tender currency itself; take it out";
+    rejected(&program, "tender", &own, &[said]);
+    let one = TENDER.replace("USD = 0.9", "USD = 0.91\nEUR = 1");
+    program.import("tender", &program.write("one.toml", one), &[]);
 }
 
 #[test]
@@ -276,4 +295,50 @@ fn factors_that_look_like_money_per_watt() {
     program.import("bids", &program.write("heavy.csv", heavy), &[]);
     let (out, _) = shown(&["tender", "T", "--lot", "L"]);
     assert!(!out.contains(warning), "{out}");
+}
+
+/// A slip that makes a bid win is said beside the result and by `check`; it is no reason to refuse it.
+#[test]
+fn what_makes_a_bid_win_by_a_slip() {
+    let program = program();
+    let head = HEAD.trim_end();
+    let odd = format!(
+        "{head},adder_cost,loss_base_kva\n\
+         T,L,C,West,9000,EUR,1,430,4600,-1000000000000,\nT,L,D,West,9000,EUR,2,430,4600,,400000\n\
+         T,L,E,West,9000,EUR,2,0,4600,,\nT,L,F,West,9000,EUR,2,430,4600,-4500,400\n"
+    );
+    program.import("bids", &program.write("odd.csv", odd), &[]);
+    let json = program.json(&["tender", "T", "--lot", "L", "--format", "json"]);
+    let bids = json["lots"][0]["bids"].as_array().expect("bids");
+    let flags = |bid: &str| {
+        let bid = bids.iter().find(|b| b["bid"] == bid).expect("is there");
+        let flags = bid["flags"].as_array().expect("flags");
+        let keys = flags.iter().map(|f| f.as_str().expect("a key").to_owned());
+        keys.filter(|key| key != "no_reference_temp").collect::<Vec<_>>()
+    };
+    assert_eq!(bids[0]["bid"], "C", "it wins all the same");
+    assert_eq!(flags("C"), ["quantity_short", "adders_lower_price"]);
+    assert_eq!(flags("D"), ["loss_base_differs", "losses_swapped", "loss_base_far"]);
+    assert_eq!(flags("E"), ["nameplate_odd"]);
+    assert!(flags("F").is_empty() && flags("A").is_empty());
+    let flat = |text: String| text.split_whitespace().collect::<Vec<_>>().join(" ");
+    for arguments in [&["tender", "T", "--lot", "L"][..], &["report", "tender", "T", "-"]] {
+        let shown = flat(program.done(arguments));
+        for said in [
+            "the bid offers fewer units than the lot asks for",
+            "the adders take off more than half of the price",
+            "which no cooling stages are",
+            "a loss is 0 W or the nameplate is outside",
+        ] {
+            assert!(shown.contains(said), "{said}\n{shown}");
+        }
+    }
+    let doubts = flat(program.done(&["check"]));
+    for said in [
+        "bid T/L/C adder_cost implausible the adders take off",
+        "bid T/L/D loss_base_kva implausible loss_base_kva is below a quarter",
+        "bid T/L/E no_load_loss_w implausible is 0 W",
+    ] {
+        assert!(doubts.contains(said), "{said}\n{doubts}");
+    }
 }

@@ -66,6 +66,9 @@ pub enum BookError {
         /// The target.
         path: PathBuf,
     },
+    /// A copy was stopped.
+    #[error("stopped; no copy was made")]
+    Stopped,
     /// A name that the book does not hold.
     #[error("{}", unknown(.kind, .key, .known))]
     Unknown {

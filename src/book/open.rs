@@ -53,13 +53,18 @@ impl Book {
         let not_a_book = |why| BookError::NotABook { path: path.to_owned(), why };
         match std::fs::metadata(path) {
             Ok(meta) if meta.is_dir() => return Err(not_a_book("it is a directory")),
+            Ok(meta) if !meta.is_file() => return Err(not_a_book("it is no ordinary file")),
             Err(error) if error.kind() == std::io::ErrorKind::NotFound => {
                 if access != Access::Create {
                     return Err(BookError::Missing { path: path.to_owned() });
                 }
             }
             Err(source) => return Err(BookError::File { path: path.to_owned(), source }),
-            Ok(_) => {}
+            // The store would only say that it cannot be opened.
+            Ok(_) => drop(
+                std::fs::File::open(path)
+                    .map_err(|source| BookError::File { path: path.to_owned(), source })?,
+            ),
         }
         // Looked at read-only first, so that what is not ours is never written to.
         if path.exists() {
@@ -88,7 +93,7 @@ impl Book {
                 }
                 Some(old) if old < program => {
                     Self { connection: book, path: Some(path.to_owned()), frozen }
-                        .backup(&free_name(path, program))?;
+                        .backup(&free_name(path, program), &|| false)?;
                 }
                 None if access != Access::Create => return Err(not_a_book("it is empty")),
                 Some(_) if access == Access::ReadOnly => {
@@ -145,7 +150,7 @@ pub(super) fn flags(access: Access) -> OpenFlags {
 }
 
 /// What holds for every connection. A book may come from anyone: nothing in its schema is trusted.
-fn settle(connection: &Connection) -> Result<()> {
+pub(super) fn settle(connection: &Connection) -> Result<()> {
     connection.busy_timeout(Duration::from_secs(PATIENCE_SECONDS))?;
     connection.set_prepared_statement_cache_capacity(64);
     connection.pragma_update(None, "foreign_keys", true)?;
@@ -169,7 +174,10 @@ fn recognise(connection: &Connection) -> std::result::Result<Option<i64>, Recogn
         ))
     };
     match read() {
-        Ok((_, APPLICATION_ID, version)) => Ok(Some(version)),
+        Ok((_, APPLICATION_ID, version)) if version >= 1 => Ok(Some(version)),
+        Ok((_, APPLICATION_ID, _)) => {
+            Err(Recognised::Other("its version number is damaged; go back to a backup"))
+        }
         Ok((0, 0, 0)) => Ok(None),
         Ok(_) => Err(Recognised::Other("it is a database of another program")),
         Err(error) if error.sqlite_error_code() == Some(rusqlite::ErrorCode::NotADatabase) => {

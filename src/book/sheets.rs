@@ -106,7 +106,7 @@ impl Change<'_> {
     /// Saves a tender with its rates and lots. Bids and measured units of the book stay as they are.
     ///
     /// # Errors
-    /// A lot that has bids is gone from the sheet ([`BookError::InUse`]), something that was awarded is changed
+    /// A lot that has bids, or the rate of a currency of bids, is gone from the sheet ([`BookError::InUse`]), something that was awarded is changed
     /// ([`BookError::Awarded`]), or the store fails.
     pub fn save_tender(&self, sheet: &TenderSheet) -> Result<()> {
         self.keeps_awarded(sheet)?;
@@ -121,7 +121,16 @@ impl Change<'_> {
                 return Err(BookError::InUse { kind: "lot", key: lot.to_owned(), parts: "bids" });
             }
             Ok(())
-        })
+        })?;
+        let sql = "SELECT DISTINCT currency FROM bids WHERE tender = ?1 AND currency IS NOT NULL";
+        let mut used = self.transaction.prepare_cached(sql)?;
+        for currency in used.query_map([tender], |row| row.get::<_, String>(0))? {
+            let key = currency?;
+            if !self.knows_currency(tender, &key)? {
+                return Err(BookError::InUse { kind: "rate", key, parts: "bids" });
+            }
+        }
+        Ok(())
     }
 
     /// Puts the parts of a whole and removes those that it no longer has, where `may_go` agrees.

@@ -11,7 +11,7 @@ use super::open::STEPS;
 use super::tables::{BASES, BIDS, LOTS, OFFERS, TABLES, TENDERS, UNITS};
 use super::*;
 use crate::engine::columns::{
-    Award, Basis, BasisBudget, BasisRange, BasisSheet, Bid, Column, Kind, Lot, Money, Offer,
+    Award, Basis, BasisBudget, BasisRange, BasisSheet, Bid, Column, Kind, LEAST, Lot, Money, Offer,
     Tender, TenderRate, TenderSheet, Unit,
 };
 use crate::engine::loading::{PriceSeries, Profile};
@@ -109,19 +109,16 @@ fn edges(column: &Column) -> (Vec<Sql>, Vec<Sql>) {
             list.iter().map(|x| Sql::Integer(*x)).collect(),
             vec![Sql::Integer(list[0] - 1), Sql::Integer(2)],
         ),
-        Kind::Real(a, b) => (
-            vec![Sql::Real(a), Sql::Real(b)],
-            vec![
-                Sql::Real(a.next_down()),
-                Sql::Real(b.next_up()),
-                Sql::Real(f64::INFINITY),
-                Sql::Real(f64::NEG_INFINITY),
-            ],
-        ),
-        Kind::Above(a, b) => (
-            vec![Sql::Real(a.next_up()), Sql::Real(b)],
-            vec![Sql::Real(a), Sql::Real(b.next_up()), Sql::Real(f64::INFINITY)],
-        ),
+        Kind::Real(a, b) | Kind::Above(a, b) => {
+            let open = matches!(column.kind, Kind::Above(..));
+            let far = [f64::INFINITY, f64::NEG_INFINITY, b.next_up()];
+            let tiny = [LEAST.next_down(), -LEAST.next_down(), f64::from_bits(1)];
+            let (least, below) = if open { (a.next_up(), a) } else { (a, a.next_down()) };
+            let zero = [0.0, LEAST, -LEAST].into_iter().filter(|x| a < *x && *x <= b);
+            let real = |list: Vec<f64>| list.into_iter().map(Sql::Real).collect();
+            let outside = [far.as_slice(), &tiny, &[below]].concat();
+            (real([least, b].into_iter().chain(zero).collect()), real(outside))
+        }
         Kind::Money(a, b) => (
             vec![Sql::Integer(a * 1000), Sql::Integer(b * 1000)],
             vec![Sql::Integer(a * 1000 - 1), Sql::Integer(b * 1000 + 1)],
@@ -668,14 +665,19 @@ fn a_backup_overwrites_nothing_and_a_second_writer_waits_its_turn() {
     assert!(error.starts_with("another program is writing to the book"), "{error}");
     change.put(&UNITS, None, &unit("a").values()).expect("put");
     let copy = dir.path().join("copy.book");
-    other.backup(&copy).expect("backup beside a writer");
+    other.backup(&copy, &|| false).expect("backup beside a writer");
     change.commit().expect("commit");
     assert_eq!(
         Book::open(&copy, Access::ReadOnly).expect("copy").counts().expect("counts").units,
         0
     );
-    assert!(matches!(book.backup(&copy), Err(BookError::Exists { .. })));
-    assert!(book.backup(&dir.path().join("no/such/dir")).is_err());
+    assert!(matches!(book.backup(&copy, &|| false), Err(BookError::Exists { .. })));
+    assert!(book.backup(&dir.path().join("no/such/dir"), &|| false).is_err());
+    // A copy that is stopped leaves nothing, under no name.
+    let names = || fs::read_dir(dir.path()).expect("folder").count();
+    let (before, other) = (names(), dir.path().join("other"));
+    assert!(matches!(book.backup(&other, &|| true), Err(BookError::Stopped)));
+    assert_eq!((names(), other.exists()), (before, false));
 
     let mut reader = Book::open(&path, Access::ReadOnly).expect("reader");
     assert_eq!(reader.counts().expect("counts").units, 1);

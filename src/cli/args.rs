@@ -146,7 +146,7 @@ pub struct Import {
     /// What the file holds
     #[arg(value_parser = one_of(&What::WORDS))]
     pub what: What,
-    /// The file; - reads standard input
+    /// The file; - reads standard input. At most 2 GiB, and 5 million rows of records
     pub file: PathBuf,
     /// Rename a column of the file
     #[arg(long, value_name = "THEIRS=OURS")]

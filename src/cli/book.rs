@@ -1,13 +1,16 @@
 //! Which book is meant, how it is opened, and who writes to it.
 
 use std::path::{Path, PathBuf};
+use std::sync::Arc;
+use std::sync::atomic::{AtomicUsize, Ordering};
 
 use etcetera::BaseStrategy as _;
+use signal_hook::consts::{SIGHUP, SIGINT, SIGTERM};
 
 use super::args::Args;
 use super::exit::{Exit, Failure};
 use super::print::Printer;
-use crate::book::{Access, Actor, Book};
+use crate::book::{Access, Actor, Book, BookError};
 
 /// Names the book where --book does not.
 const VARIABLE: &str = "IRONHUM_BOOK";
@@ -82,10 +85,21 @@ pub(super) fn actor(why: Option<String>) -> Actor {
     }
 }
 
-/// `ironhum backup FILE`.
+/// `ironhum backup FILE`. A signal removes what was copied so far.
 pub(super) fn backup(args: &Args, file: &Path, printer: &mut Printer) -> Result<Exit, Failure> {
     let Opened { book, path } = open_to_read(args)?;
-    book.backup(file)?;
+    let caught = Arc::new(AtomicUsize::new(0));
+    for signal in [SIGINT, SIGTERM, SIGHUP] {
+        let number = usize::try_from(signal).unwrap_or(0);
+        signal_hook::flag::register_usize(signal, Arc::clone(&caught), number)?;
+    }
+    match book.backup(file, &|| caught.load(Ordering::Relaxed) != 0) {
+        Err(BookError::Stopped) => {
+            let signal = u8::try_from(caught.load(Ordering::Relaxed)).unwrap_or(0);
+            return Err(Failure::new(Exit::Signal(signal), BookError::Stopped.to_string()));
+        }
+        copied => copied?,
+    }
     printer.complain(&format!("{} is copied to {}", path.display(), file.display()));
     Ok(Exit::Done)
 }

@@ -21,8 +21,8 @@ const JOURNAL: usize = 1000;
 /// Opens the dashboard on the book that is meant.
 pub(super) fn open(args: &Args) -> Result<Exit, Failure> {
     if !on_terminal() {
-        let text = "the dashboard needs a terminal for input and output; without one use a command, \
-                    for instance: ironhum rank --format csv";
+        let text = "the dashboard needs a terminal for input and output that can place text (TERM is not dumb); \
+                    without one use a command, for instance: ironhum rank --format csv";
         return Err(Failure::new(Exit::Usage, text));
     }
     let path = book::path(args)?;
@@ -37,9 +37,11 @@ pub(super) fn open(args: &Args) -> Result<Exit, Failure> {
     on(args, path)
 }
 
-/// Whether input and output are terminals and nobody automates.
+/// Whether input and output are terminals on which text can be placed.
 pub(super) fn on_terminal() -> bool {
-    std::io::stdin().is_terminal() && std::io::stdout().is_terminal()
+    std::io::stdin().is_terminal()
+        && std::io::stdout().is_terminal()
+        && std::env::var_os("TERM").is_none_or(|term| term != "dumb")
 }
 
 /// Opens the dashboard on the book at `path`.

@@ -29,8 +29,12 @@ pub(super) fn import(
     .map_err(|error| Failure::new(Exit::Failed, error.to_string()))?;
     let path = book::path(args)?;
     let fresh = !path.exists();
-    let mut book =
-        if options.dry_run && fresh { Book::in_memory()? } else { book::open_to_write(args)?.book };
+    let mut book = match (options.dry_run, fresh) {
+        (true, true) => Book::in_memory()?,
+        // A trial stores nothing: it may be made on a book that is not to be changed.
+        (true, false) if args.read_only => book::open_to_read(args)?.book.apart()?,
+        _ => book::open_to_write(args)?.book,
+    };
     let rejects = match &options.rejects {
         None => None,
         Some(path) => {

@@ -1,6 +1,7 @@
 //! How results are written: text tables for people, CSV and JSON for programs. One buffered handle to standard
 //! output; a reader that stops early ends the program quietly.
 
+use std::borrow::Cow;
 use std::io::{self, BufWriter, Write as _};
 
 use serde::Serialize;
@@ -105,18 +106,41 @@ impl Printer {
         rows: impl Iterator<Item = R>,
     ) -> Result<(), Failure> {
         let mut csv = csv::Writer::from_writer(&mut self.out);
-        let broken = |error: csv::Error| match error.into_kind() {
-            csv::ErrorKind::Io(error) => Failure::from(error),
-            other => Failure::new(super::Exit::Failed, format!("{other:?}")),
-        };
-        csv.write_record(header).map_err(broken)?;
+        csv.write_record(header).map_err(unwritten)?;
         for row in rows {
             let row = object(&row)?;
             let cells = header.iter().map(|key| row.get(*key).map_or(String::new(), cell));
-            csv.write_record(cells).map_err(broken)?;
+            csv.write_record(cells).map_err(unwritten)?;
         }
         csv.flush()?;
         Ok(())
+    }
+
+    /// Width of a cell as it is shown.
+    pub(super) fn width(cell: &str) -> usize {
+        let shown = clean(cell);
+        if shown.is_ascii() { shown.len() } else { shown.width() }
+    }
+
+    /// Writes a line of words in columns of some widths; the last is as wide as it is.
+    pub(super) fn words<const N: usize>(
+        &mut self,
+        cells: [&str; N],
+        widths: [usize; N],
+    ) -> io::Result<()> {
+        let mut line = String::new();
+        for (at, (cell, width)) in cells.into_iter().zip(widths).enumerate() {
+            line.push_str(cell);
+            if at + 1 < N {
+                line.extend(std::iter::repeat_n(' ', width.saturating_sub(Self::width(cell)) + 2));
+            }
+        }
+        self.line(line.trim_end())
+    }
+
+    /// Begins lines of words as CSV, as [`Printer::csv`] writes them.
+    pub(super) fn csv_lines(&mut self) -> CsvLines<'_> {
+        CsvLines(csv::Writer::from_writer(&mut self.out))
     }
 
     /// Writes rows as a text table with headings and units.
@@ -161,6 +185,41 @@ impl Printer {
     }
 }
 
+/// Lines of words as CSV.
+pub(super) struct CsvLines<'a>(csv::Writer<&'a mut BufWriter<io::Stdout>>);
+
+impl CsvLines<'_> {
+    /// Writes a line.
+    pub(super) fn line<const N: usize>(&mut self, cells: [&str; N]) -> Result<(), Failure> {
+        for cell in cells {
+            self.0.write_field(defused(cell).as_bytes()).map_err(unwritten)?;
+        }
+        self.0.write_record(None::<&[u8]>).map_err(unwritten)
+    }
+
+    /// Writes out what is held back.
+    pub(super) fn finish(mut self) -> io::Result<()> {
+        self.0.flush()
+    }
+}
+
+/// Why a line of CSV could not be written.
+fn unwritten(error: csv::Error) -> Failure {
+    match error.into_kind() {
+        csv::ErrorKind::Io(error) => error.into(),
+        other => Failure::new(super::Exit::Failed, format!("{other:?}")),
+    }
+}
+
+/// Text that a spreadsheet would take for a formula, led by an apostrophe.
+fn defused(text: &str) -> Cow<'_, str> {
+    if text.starts_with(['=', '+', '-', '@', '\t', '\r', '−']) {
+        Cow::Owned(format!("'{text}"))
+    } else {
+        Cow::Borrowed(text)
+    }
+}
+
 /// A row as an object.
 fn object(row: &impl Serialize) -> Result<Map<String, Value>, Failure> {
     match serde_json::to_value(row)? {
@@ -173,10 +232,7 @@ fn object(row: &impl Serialize) -> Result<Map<String, Value>, Failure> {
 fn cell(value: &Value) -> String {
     match value {
         Value::Null => String::new(),
-        Value::String(text) if text.starts_with(['=', '+', '-', '@', '\t', '\r', '−']) => {
-            format!("'{text}")
-        }
-        Value::String(text) => text.clone(),
+        Value::String(text) => defused(text).into_owned(),
         Value::Array(list) => list.iter().map(cell).collect::<Vec<_>>().join(" "),
         other => other.to_string(),
     }
@@ -192,7 +248,7 @@ fn written(value: Option<&Value>, column: &TextColumn) -> (String, bool) {
             let text = if plain { format!("{number}") } else { group(number, column.places) };
             (text, true)
         }
-        Some(Value::String(text)) => (clean(text), false),
+        Some(Value::String(text)) => (clean(text).into_owned(), false),
         Some(Value::Bool(yes)) => ((if *yes { "yes" } else { "no" }).to_owned(), false),
         Some(Value::Array(list)) => {
             (list.iter().map(|v| written(Some(v), column).0).collect::<Vec<_>>().join(" "), false)

@@ -10,7 +10,7 @@ mod facts;
 mod records;
 
 pub use asked_back::asked_back;
-pub use facts::{Cell, Column, Kind, Money, Value, choices, nearest};
+pub use facts::{Cell, Column, Kind, LEAST, Money, Value, choices, nearest};
 pub use records::*;
 
 /// Declares one enumeration of trade words; the words are what files, SQL and JSON hold.

@@ -47,6 +47,10 @@ flags! {
     29, DEMAND_UNUSED, "demand_unused", "factor_method levelized does not use demand_charge_per_kw_year: what capacity costs per kW and year is investment_per_kw_year there";
     30, INVESTMENT_UNUSED, "investment_unused", "factor_method present-value does not use investment_per_kw_year: what capacity costs per kW and year is demand_charge_per_kw_year there";
     31, LOSS_VALUE_SCALE, "loss_value_scale", "the capitalised losses of the best offer are under 1 % or over 50 times its price: is the energy price per kWh, are losses in W and prices per unit?";
+    32, NO_LOAD_LOSS_FROM_TOTAL, "no_load_loss_from_total", "the no-load loss is total_loss_w less the load loss";
+    33, ADDERS_LOWER_PRICE, "adders_lower_price", "the adders take off more than half of the price: a rebate, or a slip?";
+    34, LOSS_BASE_FAR, "loss_base_far", "loss_base_kva is below a quarter or above four times rated_kva, which no cooling stages are: a slip?";
+    35, NAMEPLATE_ODD, "nameplate_odd", "a loss is 0 W or the nameplate is outside what is usual or possible; ironhum check says what";
     36, FROM_TEST, "from_test", "a blank of the nameplate is filled from the unit's test report";
 }
 

@@ -60,7 +60,7 @@ impl Text {
             None => Box::new(bytes),
         };
         let mut text = Self {
-            reader: splitter(delimiter).from_reader(RowGuard { inner, taken: 0 }),
+            reader: splitter(delimiter).from_reader(RowGuard::new(inner)),
             record: ByteRecord::new(),
             name,
             delimiter,
@@ -87,11 +87,11 @@ impl Text {
     /// Reads the next row; false at the end.
     pub(super) fn next(&mut self, row: &mut Row) -> Result<bool, ReadError> {
         self.reader.get_mut().taken = 0;
+        let line = self.reader.position().line();
         match self.reader.read_byte_record(&mut self.record) {
             Ok(true) => {}
             Ok(false) => return Ok(false),
             Err(error) => {
-                let line = self.reader.position().line();
                 let error = match error.into_kind() {
                     csv::ErrorKind::Io(error) => error,
                     other => unfit(format!("cannot be split into rows: {other:?}")),
@@ -99,7 +99,12 @@ impl Text {
                 return Err(ReadError::of_io(error, &self.name, line));
             }
         }
-        row.begin(self.record.position().map_or(0, csv::Position::line));
+        // Blank lines before a row are passed over unseen, so its line is counted back from its end: past the line
+        // end behind it, and those inside its quotes.
+        let (end, guard) = (self.reader.position(), self.reader.get_ref());
+        let is_closed = end.byte() < guard.given || guard.last == b'\n';
+        let inside = self.record.as_slice().split(|byte| *byte == b'\n').skip(1).count() as u64;
+        row.begin(end.line().saturating_sub(u64::from(is_closed) + inside).max(1));
         for (at, cell) in self.record.iter().enumerate() {
             decode(&mut self.encoding, at, cell, row);
         }
@@ -176,10 +181,42 @@ fn weigh(
     Decimals::undecided(delimiter).weigh(numbers.filter_map(|cell| std::str::from_utf8(cell).ok()))
 }
 
-/// Stops at a row that never ends: an open quote would swallow the file.
+/// Gives every line one kind of end (CR LF and a lone CR become LF), so that lines count as an editor counts them;
+/// and stops at a row that never ends: an open quote would swallow the file.
 struct RowGuard {
     inner: Box<dyn Read + Send>,
+    /// Bytes given since the row began.
     taken: usize,
+    /// Bytes given in all.
+    given: u64,
+    /// The byte given last.
+    last: u8,
+    /// Whether a CR came last, whose LF may follow.
+    after_cr: bool,
+}
+
+impl RowGuard {
+    fn new(inner: Box<dyn Read + Send>) -> Self {
+        Self { inner, taken: 0, given: 0, last: b'\n', after_cr: false }
+    }
+
+    /// Mends the line ends of what was read; the length that is left.
+    fn one_line_end(&mut self, bytes: &mut [u8]) -> usize {
+        let begins_amid = std::mem::replace(&mut self.after_cr, bytes.last() == Some(&b'\r'));
+        let first = usize::from(begins_amid && bytes.first() == Some(&b'\n'));
+        let (mut from, mut to) = match bytes.iter().position(|byte| *byte == b'\r') {
+            _ if first == 1 => (1, 0),
+            Some(at) => (at, at),
+            None => return bytes.len(),
+        };
+        while from < bytes.len() {
+            let byte = bytes[from];
+            bytes[to] = if byte == b'\r' { b'\n' } else { byte };
+            from += if byte == b'\r' && bytes.get(from + 1) == Some(&b'\n') { 2 } else { 1 };
+            to += 1;
+        }
+        to
+    }
 }
 
 impl Read for RowGuard {
@@ -187,9 +224,17 @@ impl Read for RowGuard {
         if self.taken > LONGEST_ROW {
             return Err(unfit("a row is longer than 1 MiB; is a quote left open?"));
         }
-        let read = self.inner.read(buffer)?;
-        self.taken += read;
-        Ok(read)
+        loop {
+            let read = self.inner.read(buffer)?;
+            let left = self.one_line_end(&mut buffer[..read]);
+            if left == 0 && read > 0 {
+                continue;
+            }
+            self.taken += left;
+            self.given += left as u64;
+            self.last = buffer[..left].last().copied().unwrap_or(self.last);
+            return Ok(left);
+        }
     }
 }
 

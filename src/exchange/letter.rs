@@ -102,28 +102,9 @@ impl Letter {
     }
 }
 
-/// Text from outside on one line: control characters and marks that turn the reading direction are made visible.
-pub fn visible(text: &str) -> String {
-    let seen = |c: char| match c {
-        '\u{0}'..='\u{1f}' => char::from_u32(0x2400 + u32::from(c)).unwrap_or('␦'),
-        '\u{7f}' => '␡',
-        '\u{200e}' | '\u{200f}' | '\u{202a}'..='\u{202e}' | '\u{2066}'..='\u{2069}' => '␦',
-        '\u{2028}' | '\u{2029}' => '␤',
-        c if c.is_control() => '␦',
-        c => c,
-    };
-    text.chars().map(seen).collect()
-}
-
 #[cfg(test)]
 mod tests {
     use super::*;
-
-    #[test]
-    fn what_is_not_seen_is_made_visible() {
-        assert_eq!(visible("a\u{1b}[31m\tb\nc\u{7f}\u{9b}"), "a␛[31m␉b␊c␡␦");
-        assert_eq!(visible("Süd \u{202e}dnob"), "Süd ␦dnob");
-    }
 
     #[test]
     fn empty_tables_and_lists_are_left_out() {

@@ -1,9 +1,10 @@
 //! What is wrong in a file, said by line, column, value and reason. Hostile text is made visible here.
 
-use std::borrow::Cow;
 use std::fmt;
 
 use serde::Serialize;
+
+use super::visible;
 
 /// One thing that is wrong in a file. Prints as `FILE:LINE: column: value: why`.
 #[derive(Clone, Debug, PartialEq, Eq, Serialize)]
@@ -32,7 +33,7 @@ pub const ROW: &str = "(row)";
 /// A problem's column where the whole file is meant.
 pub const FILE: &str = "(file)";
 
-/// The problems of one file: the first thousand kept, all counted.
+/// The problems of one file: the first thousand kept, and those of the file as a whole; all counted.
 #[derive(Clone, Debug, PartialEq, Eq, Serialize)]
 pub struct Problems {
     file: String,
@@ -54,7 +55,8 @@ impl Problems {
     /// Adds a problem. Values are cut and made visible.
     pub fn add(&mut self, line: u64, column: &str, value: &str, why: impl Into<String>) {
         self.count += 1;
-        if self.list.len() < Self::KEPT {
+        // What is wrong with the file as a whole is said whatever else is.
+        if self.list.len() < Self::KEPT || column == FILE {
             self.list.push(Problem {
                 file: self.file.clone(),
                 line,
@@ -100,28 +102,6 @@ fn cut(text: &str) -> String {
     }
 }
 
-/// Whether a character moves the cursor, hides or turns text around.
-fn is_hidden(c: char) -> bool {
-    c.is_control()
-        || matches!(c, '\u{200b}'..='\u{200f}' | '\u{2028}'..='\u{202e}' | '\u{2060}'..='\u{206f}' | '\u{feff}')
-}
-
-/// Text with control and hiding characters in a visible form, fit for a terminal.
-pub fn visible(text: &str) -> Cow<'_, str> {
-    if !text.chars().any(is_hidden) {
-        return Cow::Borrowed(text);
-    }
-    let mut out = String::with_capacity(text.len() + 16);
-    for c in text.chars() {
-        if is_hidden(c) {
-            out.extend(c.escape_default());
-        } else {
-            out.push(c);
-        }
-    }
-    Cow::Owned(out)
-}
-
 #[cfg(test)]
 mod tests {
     use super::*;
@@ -131,12 +111,12 @@ mod tests {
         let mut problems = Problems::new("a\u{1b}.csv");
         problems.add(7, "note", &"x\u{1b}[2J\u{202e}".repeat(30), "is odd");
         let text = problems.list()[0].to_string();
-        assert!(text.starts_with("a\\u{1b}.csv:7: note: x\\u{1b}[2J\\u{202e}x"), "{text}");
+        assert!(text.starts_with("a␛.csv:7: note: x␛[2J␦x"), "{text}");
         assert!(text.ends_with("…: is odd"), "{text}");
         problems.add(8, "unit", "  ", "is required and blank");
         assert_eq!(
             problems.list()[1].to_string(),
-            "a\\u{1b}.csv:8: unit: (blank): is required and blank"
+            "a␛.csv:8: unit: (blank): is required and blank"
         );
     }
 

@@ -180,7 +180,7 @@ impl fmt::Display for Recognised {
                 }
             }
             Self::Workbook { sheet } => {
-                write!(f, "workbook, sheet {}", super::problem::visible(sheet))
+                write!(f, "workbook, sheet {}", super::visible(sheet))
             }
             Self::Toml => f.write_str("TOML"),
         }

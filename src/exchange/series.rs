@@ -7,10 +7,13 @@ use axis::Axis;
 use super::layout::{check_map, counted, mapped, near};
 use super::problem::{FILE, Problems, ROW};
 use super::{Decimals, ReadError, Row, Rows};
-use crate::engine::columns::{Column, Value};
+use crate::engine::columns::{Column, LEAST, Value};
 
 /// Names that the first column may bear.
 const AXIS_NAMES: [&str; 2] = ["timestamp", "interval"];
+
+/// Most rows of a series file: the minutes of a leap year.
+const MOST_STEPS: u64 = 366 * 1440;
 
 /// The year of a file: its steps, and a column of values for each name.
 #[derive(Clone, Debug, PartialEq)]
@@ -67,7 +70,13 @@ impl Series {
         let is_timed = mapped(rows.header().cells()[0].trim(), map) == AXIS_NAMES[0];
         let mut axis = Axis::new(is_timed);
         let mut row = Row::default();
+        let mut count_of_rows = 0_u64;
         while rows.next(&mut row)? {
+            count_of_rows += 1;
+            if count_of_rows > MOST_STEPS {
+                let why = format!("has more than {MOST_STEPS} rows, the minutes of a leap year");
+                return Err(ReadError::Unfit { line: row.line, why });
+            }
             if row.cells().len() != width {
                 let why = format!("the header has {width}");
                 problems.add(row.line, ROW, &counted(row.cells().len(), "cell"), why);
@@ -109,12 +118,16 @@ impl Series {
     }
 }
 
-/// The values of a profile: any finite number.
-const ANY: Column = Column::real(f64::MIN, f64::MAX);
+/// The values of a profile, at any scale.
+const ANY: Column = Column::real(-1e12, 1e12);
 
-/// A value of a series; a blank is a gap.
+/// A value of a series; a blank is a gap. What a spreadsheet's rounding left of a zero is zero.
 fn number(facts: &Column, decimals: &mut Decimals, cell: &str) -> Result<f64, String> {
-    match decimals.plain(cell).and_then(|text| facts.read(&text))? {
+    let text = decimals.plain(cell)?;
+    if text.trim().parse::<f64>().is_ok_and(|value| value.abs() < LEAST) {
+        return Ok(0.0);
+    }
+    match facts.read(&text)? {
         Value::Real(value) => Ok(value),
         _ => Err("is a gap; every step needs a value".to_owned()),
     }

@@ -110,7 +110,11 @@ pub fn tender(text: &str, problems: &mut Problems) -> Option<Sheet<TenderSheet>>
     for (key, value) in in_order(&root) {
         match (key.get_ref().as_ref(), value.get_ref()) {
             ("rates", DeValue::Table(table)) => {
+                let line = reader.line(key);
+                reader.lines.insert("rates".to_owned(), line);
                 for (code, rate) in in_order(table) {
+                    let line = reader.line(code);
+                    reader.lines.insert(format!("rates.{}", code.get_ref()), line);
                     rates.extend(reader.rate(code, rate));
                 }
             }
@@ -160,8 +164,9 @@ pub fn tender(text: &str, problems: &mut Problems) -> Option<Sheet<TenderSheet>>
 fn parse<'t>(text: &'t str, problems: &mut Problems) -> Option<DeTable<'t>> {
     let (root, errors) = DeTable::parse_recoverable(text);
     for error in &errors {
-        let line = error.span().map_or(1, |span| line_at(text, span.start));
-        problems.add(line, FILE, "", format!("is not TOML: {}", error.message()));
+        let start = error.span().map_or(0, |span| span.start);
+        let (key, value) = entry_at(text, start).unwrap_or((FILE, ""));
+        problems.add(line_at(text, start), key, value, format!("is not TOML: {}", error.message()));
     }
     errors.is_empty().then(|| root.into_inner())
 }
@@ -178,6 +183,15 @@ fn in_order<'a, 't>(table: &'a DeTable<'t>) -> Vec<(&'a Key<'t>, &'a Item<'t>)> 
 
 fn line_at(text: &str, at: usize) -> u64 {
     1 + text.get(..at).map_or(0, |before| before.matches('\n').count() as u64)
+}
+
+/// The key and the value of the line at a place, where it is written as one.
+fn entry_at(text: &str, at: usize) -> Option<(&str, &str)> {
+    let from = text.get(..at)?.rfind('\n').map_or(0, |before| before + 1);
+    let (key, value) = text.get(from..)?.lines().next()?.split_once('=')?;
+    let key = key.trim();
+    let bare = |c: char| c.is_ascii_alphanumeric() || "_-.\"".contains(c);
+    (!key.is_empty() && key.chars().all(bare)).then_some((key, value.trim()))
 }
 
 /// A value as it is shown in a problem.
@@ -208,6 +222,9 @@ fn read(column: &Column, value: &DeValue<'_>) -> Result<Value, String> {
             }
         }
         DeValue::Float(number) if !is_text && !is_flag => column.read(number.as_str()),
+        DeValue::Datetime(_) if !is_text && !is_flag => {
+            Err("is a date or a time, and a number is wanted".to_owned())
+        }
         DeValue::Array(_) | DeValue::Table(_) => Err("is no single value".to_owned()),
         _ if is_text => Err("is text; write it in quotes".to_owned()),
         _ if is_flag => Err("is true or false, without quotes".to_owned()),

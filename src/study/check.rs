@@ -2,6 +2,7 @@
 
 mod tested;
 
+use std::borrow::Cow;
 use std::ops::ControlFlow;
 
 use rustc_hash::FxHashMap;
@@ -11,6 +12,7 @@ use crate::book::{Book, BookError};
 use crate::engine::columns::{Basis, Bid, Lot, Offer, Unit, VoltageModel, YesNo};
 use crate::engine::decision::LeftOut;
 use crate::engine::decision::place::loading_contradicts;
+use crate::engine::decision::tender::bid::adders_lower_price;
 use crate::engine::economics::Assumptions;
 use crate::engine::economics::traps;
 use crate::engine::flags::Flags;
@@ -59,7 +61,7 @@ impl Kind {
 /// One doubt.
 #[derive(Clone, Debug, PartialEq, Eq, Serialize)]
 pub struct Doubt {
-    /// What it is about: `unit`, `offer`, `lot`, `bid` or `basis`.
+    /// What it is about: `unit`, `test report`, `offer`, `lot`, `bid` or `basis`.
     pub subject: &'static str,
     /// Its key.
     pub key: String,
@@ -68,15 +70,30 @@ pub struct Doubt {
     /// What kind of doubt.
     pub kind: Kind,
     /// What is doubtful, in words.
-    pub what: String,
+    pub what: Cow<'static, str>,
 }
 
-/// Goes through a book: units, offers, lots, bids, bases, each in order of entry. `basis` names the one that the fleet is
+/// Goes through a book: units, test reports, offers, lots, bids, bases, each in order of entry. `basis` names the one that the fleet is
 /// held against; else the only or chosen one counts, and without one what depends on it is passed over.
 ///
 /// # Errors
 /// The book fails, does not know the named basis, or the work was stopped.
 pub fn check(book: &Book, basis: Option<&str>, watch: &Watch) -> Result<Vec<Doubt>, StudyError> {
+    let mut doubts = Vec::new();
+    each_doubt(book, basis, watch, &mut |doubt| doubts.push(doubt))?;
+    Ok(doubts)
+}
+
+/// The same, each doubt handed on as it is found: those of a large fleet are many.
+///
+/// # Errors
+/// As [`check`].
+pub fn each_doubt(
+    book: &Book,
+    basis: Option<&str>,
+    watch: &Watch,
+    each: &mut dyn FnMut(Doubt),
+) -> Result<(), StudyError> {
     let sheet = match book.basis(basis) {
         Ok(sheet) => Some(sheet),
         Err(BookError::WhichBasis { .. }) => None,
@@ -85,7 +102,7 @@ pub fn check(book: &Book, basis: Option<&str>, watch: &Watch) -> Result<Vec<Doub
     let basis = sheet.as_ref().map(|sheet| &sheet.basis);
     let counts = book.counts()?;
     watch.expect(usize::try_from(counts.units).unwrap_or(0));
-    let mut doubts = Doubts(Vec::new());
+    let mut doubts = Doubts(each);
     let profiles = Profiles::of(&book.profiles()?);
     let reports: FxHashMap<String, TestedUnit> = (book.tested_units()?.into_iter())
         .map(|(unit, report)| (unit.unit.clone(), TestedUnit { unit, report }))
@@ -138,7 +155,7 @@ pub fn check(book: &Book, basis: Option<&str>, watch: &Watch) -> Result<Vec<Doub
     for name in names {
         doubts.basis(book, &name)?;
     }
-    Ok(doubts.0)
+    Ok(())
 }
 
 /// The figures of a nameplate that units, offers and bids share.
@@ -168,17 +185,17 @@ impl Profiles {
     }
 }
 
-struct Doubts(Vec<Doubt>);
+struct Doubts<'a>(&'a mut dyn FnMut(Doubt));
 
-impl Doubts {
+impl Doubts<'_> {
     fn add(
         &mut self,
         (subject, key): (&'static str, &str),
         column: &'static str,
         kind: Kind,
-        what: impl Into<String>,
+        what: impl Into<Cow<'static, str>>,
     ) {
-        self.0.push(Doubt { subject, key: key.to_owned(), column, kind, what: what.into() });
+        (self.0)(Doubt { subject, key: key.to_owned(), column, kind, what: what.into() });
     }
 
     /// A flag of the engine, in its own words.
@@ -264,6 +281,9 @@ impl Doubts {
             (_, None, Some(_)) => {
                 self.flag(of, "load_loss_w", Estimated, Flags::LOAD_LOSS_FROM_TOTAL);
             }
+            (None, Some(_), Some(_)) => {
+                self.flag(of, "no_load_loss_w", Estimated, Flags::NO_LOAD_LOSS_FROM_TOTAL);
+            }
             _ => {}
         }
         if unit.peak_kva.is_none() {
@@ -324,6 +344,9 @@ impl Doubts {
         }
         for odd in plausibility::contradictions(kva, z, i0, iron, copper) {
             self.add(of, odd.quantity, Kind::Contradictory, format!("{} {}", odd.value, odd.why));
+        }
+        if plausibility::loss_base_is_far(kva, plate.loss_base_kva) {
+            self.flag(of, "loss_base_kva", Kind::Implausible, Flags::LOSS_BASE_FAR);
         }
         let (p0, pk, total) = (plate.no_load_loss_w, plate.load_loss_w, plate.total_loss_w);
         if losses::contradict(p0, pk, total) {
@@ -389,6 +412,9 @@ impl Doubts {
         }
         if bid.reference_temp_c.is_none() && lot.is_some_and(|lot| lot.reference_temp_c.is_some()) {
             self.flag(of, "reference_temp_c", Kind::Missing, Flags::NO_REFERENCE_TEMP);
+        }
+        if adders_lower_price(bid) {
+            self.flag(of, "adder_cost", Kind::Implausible, Flags::ADDERS_LOWER_PRICE);
         }
         if bid.price.0 == 0 {
             self.add(of, "price", Kind::Implausible, "costs nothing");

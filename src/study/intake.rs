@@ -127,6 +127,9 @@ pub enum IntakeError {
     /// The rejected rows cannot be written.
     #[error("the rejected rows cannot be written: {0}")]
     Rejects(std::io::Error),
+    /// There is no thread to read with.
+    #[error("the system gives no thread to read the file with: {0}")]
+    Thread(std::io::Error),
     /// A price series without a name.
     #[error("the price series needs a name; say --name NAME")]
     NoName,

@@ -5,6 +5,9 @@ use tui_input::{Input, InputRequest};
 use super::action::Place;
 use super::keys::Key;
 
+/// Most characters of a line: more is a paste gone astray.
+const LONGEST: usize = 200;
+
 /// What a line is typed for.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub(super) enum Of {
@@ -55,8 +58,10 @@ impl Entry {
 
     /// Types text in: control characters and what is beyond any sensible length are left out.
     pub(super) fn paste(&mut self, text: &str) {
-        for c in text.chars().filter(|c| !c.is_control()).take(200) {
-            self.input.handle(InputRequest::InsertChar(c));
+        for c in text.chars().filter(|c| !c.is_control()).take(LONGEST) {
+            if !self.is_full() {
+                self.input.handle(InputRequest::InsertChar(c));
+            }
         }
     }
 
@@ -64,9 +69,15 @@ impl Entry {
     pub(super) fn key(&mut self, key: Key) -> bool {
         let request = edit(key);
         request.is_some_and(|request| {
-            self.input.handle(request);
+            if !(matches!(request, InputRequest::InsertChar(_)) && self.is_full()) {
+                self.input.handle(request);
+            }
             true
         })
+    }
+
+    fn is_full(&self) -> bool {
+        self.input.value().chars().count() >= LONGEST
     }
 }
 

@@ -11,13 +11,13 @@ use std::time::{Duration, Instant};
 use ratatui::crossterm::event::{self, KeyEvent};
 use ratatui::crossterm::terminal;
 use ratatui::layout::Size;
-use signal_hook::consts::{SIGCONT, SIGHUP, SIGINT, SIGTERM, SIGTSTP};
+use signal_hook::consts::{SIGCONT, SIGHUP, SIGINT, SIGQUIT, SIGTERM, SIGTSTP};
 use signal_hook::iterator::Signals;
 
 use super::app::{App, ExitReason, Wish};
 use super::caps::Caps;
 use super::session::Session;
-use super::terminal::{Held, is_held};
+use super::terminal::{Held, is_gone, is_held};
 use super::work::{Done, Job, Worker};
 use crate::study::{StudyError, Watch};
 
@@ -64,34 +64,45 @@ pub fn run(
     let (events, incoming) = mpsc::channel();
     let (questions, asked) = mpsc::channel();
     // Signals first: one that comes while the terminal is taken is kept.
-    let mut signals = Signals::new([SIGTERM, SIGHUP, SIGINT, SIGTSTP, SIGCONT])?;
+    let mut signals = Signals::new([SIGTERM, SIGHUP, SIGINT, SIGQUIT, SIGTSTP, SIGCONT])?;
     let signal_handle = signals.handle();
     let mut held = Held::take()?;
     let over = Arc::new(AtomicBool::new(false));
 
     let to = events.clone();
-    thread::spawn(move || {
+    beside(move || {
         for signal in signals.forever() {
             if to.send(Event::Signal(signal)).is_err() {
                 return;
             }
         }
-    });
+    })?;
     let (to, ends) = (events.clone(), Arc::clone(&over));
-    thread::spawn(move || read_input(&to, &ends));
-    thread::spawn(move || work(desk_loader, &asked, events));
+    beside(move || read_input(&to, &ends))?;
+    beside(move || work(desk_loader, &asked, events))?;
 
-    let result = event_loop(caps, &mut held, &incoming, &questions);
+    let result = match event_loop(caps, &mut held, &incoming, &questions) {
+        // What cannot be written any more is no fault of the program: its user has gone.
+        Err(TuiError::Terminal(_)) if is_gone() => Ok(ExitReason::Signal(SIGHUP)),
+        result => result,
+    };
     over.store(true, Ordering::Relaxed);
     signal_handle.close();
     drop(held);
     result
 }
 
-/// Sends what is typed until the dashboard is over.
+/// Does something on a thread of its own; without one there is an error, not a panic.
+fn beside(work: impl FnOnce() + Send + 'static) -> io::Result<()> {
+    thread::Builder::new().spawn(work).map(drop)
+}
+
+/// Sends what is typed until the dashboard is over. A terminal that goes away without a signal says nothing: it is
+/// looked for while nobody types.
 fn read_input(to: &Sender<Event>, over: &AtomicBool) {
     while !over.load(Ordering::Relaxed) {
         let event = match event::poll(PROGRESS) {
+            Ok(false) if is_gone() => Event::InputLost,
             Ok(false) => continue,
             Ok(true) => match event::read() {
                 Ok(event::Event::Key(key)) => Event::Key(key),

@@ -3,7 +3,7 @@
 //! [`Held`] takes it (raw mode, alternate screen, hidden cursor) and gives it back when dropped; a panic gives it
 //! back before its message is printed. [`Pen`] is the backend that writes no colour where none is wanted.
 
-use std::io::{self, Stdout, Write};
+use std::io::{self, IsTerminal as _, Stdout, Write};
 use std::panic;
 use std::sync::Once;
 use std::sync::atomic::{AtomicBool, Ordering};
@@ -65,6 +65,11 @@ pub(super) fn is_held() -> bool {
     HELD.load(Ordering::SeqCst)
 }
 
+/// Whether the terminal has gone away: its other end is closed.
+pub(super) fn is_gone() -> bool {
+    !io::stdin().is_terminal() || !io::stdout().is_terminal()
+}
+
 impl Drop for Held {
     fn drop(&mut self) {
         give_back();
@@ -74,7 +79,19 @@ impl Drop for Held {
 fn seize() -> io::Result<()> {
     HELD.store(true, Ordering::SeqCst);
     enable_raw_mode()?;
+    keep_signals()?;
     execute!(io::stdout(), EnterAlternateScreen, EnableBracketedPaste, cursor::Hide)
+}
+
+/// Lets Ctrl-C, Ctrl-\\ and Ctrl-Z still be signals, as the kernel makes them: they work whatever is being read, a
+/// paste without end for instance.
+#[cfg(unix)]
+fn keep_signals() -> io::Result<()> {
+    use rustix::termios::{LocalModes, OptionalActions, tcgetattr, tcsetattr};
+    let input = io::stdin();
+    let mut modes = tcgetattr(&input)?;
+    modes.local_modes |= LocalModes::ISIG;
+    Ok(tcsetattr(&input, OptionalActions::Now, &modes)?)
 }
 
 /// Gives the terminal back; a second time does nothing. What fails here (a terminal that is gone) cannot be
@@ -179,7 +196,9 @@ impl<W: Write> Backend for Pen<W> {
         self.inner.hide_cursor()
     }
     fn show_cursor(&mut self) -> io::Result<()> {
-        self.inner.show_cursor()
+        // Where the terminal is gone there is nobody to tell, and nowhere to write it.
+        drop(self.inner.show_cursor());
+        Ok(())
     }
     fn get_cursor_position(&mut self) -> io::Result<Position> {
         // Nobody here needs it, and the terminal's answer would come in between the keys.

@@ -1,29 +1,11 @@
 //! Text at the drawing border: cleaned of what garbles a terminal, measured in cells, cut by grapheme; numbers
 //! grouped for reading. Owns no style.
 
-use std::borrow::Cow;
-
 use unicode_segmentation::UnicodeSegmentation as _;
 use unicode_width::UnicodeWidthStr as _;
 
+pub use crate::exchange::visible as clean;
 use crate::study::figures::group;
-
-/// Whether a character changes how what follows is shown instead of showing itself.
-fn garbles(c: char) -> bool {
-    c.is_control()
-        || matches!(c, '\u{061C}' | '\u{200E}' | '\u{200F}' | '\u{2028}' | '\u{2029}' | '\u{FEFF}')
-        || ('\u{202A}'..='\u{202E}').contains(&c)
-        || ('\u{2060}'..='\u{2069}').contains(&c)
-}
-
-/// Text from outside made safe to draw: control and direction characters become visible marks.
-pub fn clean(text: &str) -> Cow<'_, str> {
-    if text.chars().any(garbles) {
-        Cow::Owned(text.chars().map(|c| if garbles(c) { '\u{FFFD}' } else { c }).collect())
-    } else {
-        Cow::Borrowed(text)
-    }
-}
 
 /// Width in cells.
 pub fn width(text: &str) -> usize {
@@ -156,9 +138,9 @@ mod tests {
 
     #[test]
     fn nothing_from_outside_steers_the_terminal() {
-        assert_eq!(clean("T\u{1b}[2J1\u{202e}x\u{9b}"), "T\u{FFFD}[2J1\u{FFFD}x\u{FFFD}");
+        assert_eq!(clean("T\u{1b}[2J1\u{202e}x\u{9b}"), "T␛[2J1␦x␦");
         assert_eq!(wrap("one two three", 7), ["one two", "three"]);
-        assert_eq!(wrap("one\ntwo", 9), ["one\u{FFFD}two"]);
+        assert_eq!(wrap("one\ntwo", 9), ["one␊two"]);
         assert_eq!(wrap("abcdefgh", 3), ["abc", "def", "gh"]);
         assert!(wrap("a", 0).is_empty());
     }

@@ -54,6 +54,11 @@ fn doubts_about_units() {
             &[("no_load_loss_w", Missing)],
         ),
         (
+            "iron from total",
+            "400,3,20,0.4,24,Dyn5,4,,4600,5100,,1990,300,half,,,,",
+            &[("no_load_loss_w", Estimated)],
+        ),
+        (
             "no copper",
             "400,3,20,0.4,24,Dyn5,4,500,,,,1990,300,half,,,,",
             &[("load_loss_w", Missing)],
@@ -205,4 +210,28 @@ fn the_demo_fleet_has_doubts_of_every_kind() {
     let watch = Watch::default();
     watch.stop();
     assert_eq!(check(&desk.book, None, &watch).expect_err("stopped").to_string(), "stopped");
+}
+
+#[test]
+fn doubts_about_test_reports() {
+    let mut desk = Desk::empty();
+    let units = "unit,rated_kva,phases,hv_kv,lv_kv,no_load_loss_w,load_loss_w,peak_kva,load_factor_pu\n\
+                 A,400,3,20,0.4,900,4600,300,0.5\nB,400,3,20,0.4,900,4600,300,0.5\n";
+    assert!(desk.text(What::Units, "u.csv", units).stored);
+    let header = "unit,open_circuit_voltage_v,open_circuit_current_a,open_circuit_power_w,\
+                  short_circuit_voltage_v,short_circuit_current_a,short_circuit_power_w\n";
+    // B: millivolts, and the current of the short circuit in kA.
+    let reports =
+        format!("{header}A,400,8,910,800,11.547,4500\nB,400000,8,910,800,0.011547,4500\n");
+    let report = desk.text(What::Tests, "t.csv", &reports);
+    assert!(report.stored, "{}", problems(&report));
+    let doubts = told(&desk);
+    let of = |unit: &str| {
+        let own = doubts.iter().filter(|d| d.key == unit && d.what.starts_with("test report"));
+        own.map(|d| (d.column, d.kind, &*d.what)).collect::<Vec<_>>()
+    };
+    assert!(of("A").is_empty());
+    let [(column, kind, what)] = of("B")[..] else { panic!("{:?}", of("B")) };
+    assert_eq!((column, kind), ("open_circuit_voltage_v", Kind::Contradictory));
+    assert!(what.contains("is not the rated 400 V of the winding that was fed"), "{what}");
 }

@@ -36,16 +36,16 @@ const FAULTS: &[(&[(&str, &str)], &str)] = &[
     (&[("profile", "ofice")], "profile: ofice: is no profile of the book; did you mean office?"),
     (&[("profile", "zzz")], "profile: zzz: is no profile of the book; import it first"),
     (&[("unit", "G")], "unit: G: stands on line 2 already"),
-    (&[("impedance_pct", "400")], "impedance_pct: 400: is outside above 0 … 60 %"),
+    (&[("impedance_pct", "400")], "impedance_pct: 400: is outside 0.01 … 60 %"),
     (&[("load_loss_w", "NaN")], "load_loss_w: NaN: is not a number; leave the cell blank"),
     (&[("load_loss_w", "inf")], "load_loss_w: inf: is infinite"),
     (&[("peak_kva", "1e999")], "peak_kva: 1e999: is infinite or beyond the range of numbers"),
     (&[("year_made", "3998")], "year_made: 3998: is outside 1880 … 2100"),
     (&[("year_made", "1990.5")], "year_made: 1990.5: is not a whole number"),
-    (&[("rated_kva", "0")], "rated_kva: 0: is outside above 0 … 2000000 kVA"),
+    (&[("rated_kva", "0")], "rated_kva: 0: is outside 0.1 … 2000000 kVA"),
     (&[("loss_factor_pu", "0.6")], "loss_factor_pu: 0.6: no load with load factor 0.5"),
     (&[("loss_factor_pu", "0.2")], "loss_factor_pu: 0.2: no load with load factor 0.5"),
-    (&[("note", "beep\u{7}")], "note: beep\\u{7}: holds the control character"),
+    (&[("note", "beep\u{7}")], "note: beep␇: holds the control character"),
     (&[("mounting", "roof")], "mounting: roof: is not one of pole, pad, indoor or substation"),
     (&[("phases", "2")], "phases: 2: is outside 1 | 3"),
     (
@@ -210,4 +210,40 @@ fn what_bids_and_measured_units_name_must_be_there() {
     let (unit, report) = &tested[0];
     assert_eq!((tested.len(), unit.unit.as_str()), (1, "ZE-0101"));
     assert_eq!(report.open_circuit_power_w, Some(1180.0));
+}
+
+/// The line of a problem is the one that an editor shows: whatever ends lines, behind blank lines, and behind
+/// quoted cells that hold line ends.
+#[test]
+fn lines_are_counted_as_an_editor_counts_them() {
+    let text = "\n\nunit,rated_kva,note,theirs\nA,big,,\n\n\n\nB,big,,\"two\nlines\"\nC,400,\"x\n\ny\",\n\
+                \"D\",400,fine,\"\n\n\"\n   \nE,big,,\n\nF,big,,";
+    let told = [4, 8, 10, 17, 19];
+    for end in ["\n", "\r\n", "\r"] {
+        for last in ["", end] {
+            let text = format!("{}{last}", text.replace('\n', end));
+            let mut desk = Desk::empty();
+            let options = Options { ignore_unknown: true, ..Options::default() };
+            let report = desk.bytes(What::Units, "l.csv", text.as_bytes(), options);
+            let lines: Vec<u64> = report.problems.list().iter().map(|p| p.line).collect();
+            assert_eq!(lines, told, "{end:?} {last:?}: {}", problems(&report));
+        }
+    }
+    // Where buffers end between the two signs of a line end.
+    let note = "x".repeat(493);
+    for shift in 0..3 {
+        let rows: String =
+            (0..500).flat_map(|n| [format!("U{n:03},1,"), format!("{note}\r\n")]).collect();
+        let text = format!("unit,rated_kva,note{}\r\n{rows}Z,big,\r\n", " ".repeat(shift));
+        let report = Desk::empty().text(What::Units, "l.csv", &text);
+        assert_eq!(report.problems.list()[0].line, 502, "{}", problems(&report));
+        assert_eq!(report.problems.count(), 1);
+    }
+}
+
+#[test]
+fn a_row_without_end_is_told_where_it_begins() {
+    let text = format!("unit,rated_kva,note\r\nA,1,\r\nB,1,\"{}", "open\r\n".repeat(300_000));
+    let report = Desk::empty().text(What::Units, "l.csv", &text);
+    assert!(problems(&report).contains("l.csv:3: (file): (blank): a row is longer"), "{report:?}");
 }

@@ -97,9 +97,21 @@ fn what_is_wrong_in_a_basis_is_told_by_line() {
         ),
         (
             "energy_price_per_kwh = 0.1\nenergy_price_per_kwh = 0.2\n",
-            "b.toml:7: (file): (blank): is not TOML: duplicate key",
+            "b.toml:7: energy_price_per_kwh: 0.2: is not TOML: duplicate key",
         ),
-        ("energy_price_per_kwh = \n", "b.toml:6: (file): (blank): is not TOML"),
+        (
+            "energy_price_per_kwh = 0.1\nload_growth_years = 99999999999999999999999999999999999999999\n",
+            "b.toml:7: load_growth_years: 99999999999999999999999999999999999999999: is outside 1 … 200",
+        ),
+        (
+            "energy_price_per_kwh = 0.1\nload_growth_years = 2027-03-01\n",
+            "b.toml:7: load_growth_years: 2027-03-01: is a date or a time, and a number is wanted",
+        ),
+        (
+            "energy_price_per_kwh = 0.1\nload_growth_years = 2027-13-45\n",
+            "b.toml:7: load_growth_years: 2027-13-45: is not TOML: invalid date",
+        ),
+        ("energy_price_per_kwh = \n", "b.toml:6: energy_price_per_kwh: (blank): is not TOML"),
         (
             "[range.horizn_years]\nlow = 1\n",
             "b.toml:6: horizn_years: (blank): is no numeric input; did you mean horizon_years?",
@@ -204,12 +216,12 @@ fn what_is_wrong_in_a_tender_is_told_by_line() {
     let before = desk.dump();
     for (from, to, told) in [
         ("dated = 2026-11-16", "dated = \"soon\"", "t.toml:3: dated: soon: is not a date like"),
-        ("SEK = 0.09", "SEK = 0", "t.toml:6: SEK: 0: is outside above 0"),
+        ("SEK = 0.09", "SEK = 0", "t.toml:6: SEK: 0: is outside 0.000000001 …"),
         ("[rates]", "[rate]", "t.toml:5: rate: {…}: is no key of a tender; did you mean rates?"),
         (
             "rated_kva = 400",
             "rated_kva = 0",
-            "t.toml:10: rated_kva: 0: is outside above 0 … 2000000 kVA",
+            "t.toml:10: rated_kva: 0: is outside 0.1 … 2000000 kVA",
         ),
         ("rated_kva = 400", "", "t.toml:8: rated_kva: (blank): is required and not in the file"),
         ("quantity = 60", "quantity = 1.5", "t.toml:11: quantity: 1.5: is not a whole number"),

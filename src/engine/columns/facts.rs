@@ -89,6 +89,10 @@ pub enum Kind {
     Date,
 }
 
+/// The least magnitude of a number that is not zero, in every column: what is nearer to zero is no measurement, and
+/// its powers and quotients leave the range of numbers.
+pub const LEAST: f64 = 1e-12;
+
 /// The facts of one column.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Column {
@@ -281,7 +285,10 @@ impl Column {
             },
             Kind::Integer(..) | Kind::IntegerOf(..) => {
                 let number: f64 = number(text)?;
-                if number.fract() != 0.0 || number.abs() > 9e15 {
+                if number.abs() > 9e15 {
+                    return Err(format!("is outside {}", self.range()));
+                }
+                if number.fract() != 0.0 {
                     return Err("is not a whole number".to_owned());
                 }
                 #[expect(clippy::cast_possible_truncation, reason = "whole and below 9e15")]
@@ -306,6 +313,10 @@ impl Column {
             _ => true,
         };
         if inside {
+            let tiny = matches!(value, Value::Real(x) if x != 0.0 && x.abs() < LEAST);
+            if tiny {
+                return Err(format!("is nearer to 0 than {LEAST:e}; write 0, or leave it blank"));
+            }
             return Ok(value);
         }
         let unit = self.unit();

@@ -66,10 +66,10 @@ choice! {
     Distribution { Triangular = "triangular", Uniform = "uniform", Normal = "normal", Lognormal = "lognormal" }
 }
 
-const KVA: C = C::above(0.0, 2_000_000.0);
-const KV: C = C::above(0.0, 1_200.0);
+const KVA: C = C::real(0.1, 2_000_000.0);
+const KV: C = C::real(0.001, 1_200.0);
 const LOSS_W: C = C::real(0.0, 1e8);
-const IMPEDANCE_PCT: C = C::above(0.0, 60.0);
+const IMPEDANCE_PCT: C = C::real(0.01, 60.0);
 const TEMPERATURE_C: C = C::real(0.0, 250.0);
 const HOURS: C = C::real(0.0, 8_784.0);
 const SHARE_PU: C = C::real(0.0, 1.0);
@@ -139,7 +139,7 @@ record! {
         loss_factor_pu: Option<f64>, SHARE_PU, "mean of the squared load over the squared peak";
         profile: Option<String>, C::id(), "load profile of the year";
         load_growth_pct: Option<f64>, GROWTH_PCT.blank("basis, else 0"), "growth of the load a year";
-        power_factor: Option<f64>, C::above(0.0, 1.0).blank("1 (0.9 for regulation)"), "power factor of the load";
+        power_factor: Option<f64>, C::real(0.01, 1.0).blank("1 (0.9 for regulation)"), "power factor of the load";
         responsibility_pu: Option<f64>, SHARE_PU.blank("profile at the system peak, else basis, else 1"), "load at the system peak over own peak load";
         energised_hours: Option<f64>, HOURS.blank("basis, else 8760"), "hours a year under voltage";
         condition_pct: Option<f64>, C::real(0.0, 100.0), "condition, 100 = as new; shown, not computed with";
@@ -157,14 +157,14 @@ record! {
     /// A factory or site test report of a unit (methods, section 1).
     TestReport {
         unit: String, C::id().required(), "identifier of the unit";
-        open_circuit_voltage_v: Option<f64>, C::above(0.0, 1.2e6), "voltage of the open-circuit test";
-        open_circuit_current_a: Option<f64>, C::above(0.0, 1e6), "current of the open-circuit test";
-        open_circuit_power_w: Option<f64>, C::above(0.0, 1e8), "power of the open-circuit test";
-        short_circuit_voltage_v: Option<f64>, C::above(0.0, 1.2e6), "voltage of the short-circuit test";
-        short_circuit_current_a: Option<f64>, C::above(0.0, 1e6), "current of the short-circuit test";
-        short_circuit_power_w: Option<f64>, C::above(0.0, 1e8), "power of the short-circuit test";
-        hv_resistance_ohm: Option<f64>, C::above(0.0, 1e6), "resistance of the high-voltage winding (mean between lines if three-phase)";
-        lv_resistance_ohm: Option<f64>, C::above(0.0, 1e6), "resistance of the low-voltage winding (mean between lines if three-phase)";
+        open_circuit_voltage_v: Option<f64>, C::real(1e-6, 1.2e6), "voltage of the open-circuit test";
+        open_circuit_current_a: Option<f64>, C::real(1e-6, 1e6), "current of the open-circuit test";
+        open_circuit_power_w: Option<f64>, C::real(1e-6, 1e8), "power of the open-circuit test";
+        short_circuit_voltage_v: Option<f64>, C::real(1e-6, 1.2e6), "voltage of the short-circuit test";
+        short_circuit_current_a: Option<f64>, C::real(1e-6, 1e6), "current of the short-circuit test";
+        short_circuit_power_w: Option<f64>, C::real(1e-6, 1e8), "power of the short-circuit test";
+        hv_resistance_ohm: Option<f64>, C::real(1e-9, 1e6), "resistance of the high-voltage winding (mean between lines if three-phase)";
+        lv_resistance_ohm: Option<f64>, C::real(1e-9, 1e6), "resistance of the low-voltage winding (mean between lines if three-phase)";
         resistance_temp_c: Option<f64>, C::real(-50.0, 250.0), "winding temperature of the resistance measurement";
         test_temp_c: Option<f64>, C::real(-50.0, 250.0).blank("already corrected"), "winding temperature of the short-circuit test";
         open_circuit_side: Option<Side>, C::choice(Side::WORDS).blank("lv"), "winding fed in the open-circuit test";
@@ -194,7 +194,7 @@ record! {
         auxiliary_loss_w: Option<f64>, LOSS_W.blank("0"), "fans and pumps";
         price: Money, COST.required(), "price of one unit";
         install_cost: Option<Money>, COST.blank("0"), "cost of putting it in";
-        life_years: Option<f64>, C::above(0.0, 200.0).blank("basis"), "years of service that the price buys";
+        life_years: Option<f64>, C::real(0.1, 200.0).blank("basis"), "years of service that the price buys";
         lead_time_years: Option<f64>, C::real(0.0, 100.0).blank("0"), "years from order to delivery";
     }
 }
@@ -206,7 +206,7 @@ record! {
         currency: String, C::id().required(), "currency of all money (ISO 4217 code)";
         first_year: i64, YEAR.required(), "calendar year of year 1";
         horizon_years: i64, C::integer(1, 200).required(), "years looked at, N";
-        discount_rate_pct: f64, C::above(-100.0, 1000.0).required(), "nominal discount rate, i";
+        discount_rate_pct: f64, C::real(-50.0, 1000.0).required(), "nominal discount rate, i";
         cash_flow: Option<CashFlow>, C::choice(CashFlow::WORDS).blank("year-end"), "when running costs of a year are paid";
         energy_price_per_kwh: Option<f64>, C::real(0.0, 1e6), "flat energy price of year 1";
         price_series: Option<String>, C::id(), "price series of year 1, instead of the flat price";
@@ -223,14 +223,14 @@ record! {
         voltage_model: Option<VoltageModel>, C::choice(VoltageModel::WORDS).blank("rated"), "how voltage enters the losses";
         operating_voltage_pu: Option<f64>, C::real(0.5, 1.5).blank("1"), "high-voltage side voltage of the drop model";
         capital_recovery: Option<CapitalRecovery>, C::choice(CapitalRecovery::WORDS).blank("annuity"), "how capital is charged inside the horizon";
-        life_years: Option<f64>, C::above(0.0, 200.0), "years of service that a price buys where the offer names none";
+        life_years: Option<f64>, C::real(0.1, 200.0), "years of service that a price buys where the offer names none";
         equipment_escalation_pct: Option<f64>, GROWTH_PCT.blank("0"), "yearly rise of equipment prices";
         latest_replacement_years: Option<i64>, C::integer(0, 200).blank("horizon_years − 1"), "longest delay looked at, T";
         offer_sizes_down: Option<i64>, C::integer(0, 100), "sizes below the unit's that are looked at";
         offer_sizes_up: Option<i64>, C::integer(0, 100), "sizes above the unit's that are looked at";
-        loading_limit_pu: Option<f64>, C::above(0.0, 10.0).blank("no limit"), "highest peak load over rating of a new unit";
-        failure_shape: Option<f64>, C::above(0.0, 100.0), "Weibull shape of the age at failure, b";
-        failure_scale_years: Option<f64>, C::above(0.0, 1000.0).blank("no failures"), "Weibull scale of the age at failure, η";
+        loading_limit_pu: Option<f64>, C::real(0.01, 10.0).blank("no limit"), "highest peak load over rating of a new unit";
+        failure_shape: Option<f64>, C::real(0.01, 100.0), "Weibull shape of the age at failure, b";
+        failure_scale_years: Option<f64>, C::real(0.1, 1000.0).blank("no failures"), "Weibull scale of the age at failure, η";
         failure_cost: Option<f64>, C::real(0.0, 1e12).blank("0"), "cost of a failure besides the replacement";
         failure_cost_per_customer: Option<f64>, C::real(0.0, 1e9).blank("0"), "the same, for each customer cut off";
         emergency_premium_pct: Option<f64>, C::real(0.0, 1000.0).blank("0"), "surcharge on a forced purchase";
@@ -242,9 +242,9 @@ record! {
         carbon_kg_per_kwh: Option<f64>, C::real(0.0, 1e3).blank("0"), "CO2 of a kWh, where the price series has none";
         carbon_escalation_pct: Option<f64>, GROWTH_PCT.blank("0"), "yearly rise of the carbon price";
         factor_method: Option<FactorMethod>, C::choice(FactorMethod::WORDS).blank("present-value"), "method of the loss factors A and B";
-        fixed_charge_rate_pct: Option<f64>, C::above(0.0, 1000.0), "fixed charge rate of the levelized method, FCR";
-        increase_factor: Option<f64>, C::above(0.0, 100.0).blank("1"), "increase factor of the levelized method, IF";
-        transmission_efficiency_pu: Option<f64>, C::above(0.0, 1.0).blank("1"), "transmission efficiency of the levelized method, ET";
+        fixed_charge_rate_pct: Option<f64>, C::real(0.01, 1000.0), "fixed charge rate of the levelized method, FCR";
+        increase_factor: Option<f64>, C::real(0.01, 100.0).blank("1"), "increase factor of the levelized method, IF";
+        transmission_efficiency_pu: Option<f64>, C::real(0.01, 1.0).blank("1"), "transmission efficiency of the levelized method, ET";
         investment_per_kw_year: Option<f64>, C::real(0.0, 1e9).blank("0"), "levelised system investment of the levelized method, LIC, per kW and year";
         near_tie_pct: Option<f64>, C::real(0.0, 100.0).blank("0"), "bids within this of the least owning cost count as near-tied";
         law: Option<String>, C::id(), "minimum-efficiency law that offers must meet: eu-548-2014, us-10cfr431 or ca-sor-2016-311";
@@ -289,7 +289,7 @@ record! {
     /// The value of one unit of a currency in the tender currency.
     TenderRate {
         currency: String, C::id().required(), "currency (ISO 4217 code)";
-        rate: f64, C::above(0.0, 1e9).required(), "value of one unit in the tender currency";
+        rate: f64, C::real(1e-9, 1e9).required(), "value of one unit in the tender currency";
     }
 }
 
@@ -314,7 +314,7 @@ record! {
         impedance_pct: Option<f64>, IMPEDANCE_PCT, "wanted short-circuit impedance";
         impedance_tolerance_pct: Option<f64>, C::real(0.0, 100.0), "allowed difference in percent of the wanted impedance";
         max_sound_db: Option<f64>, C::real(0.0, 200.0), "highest sound level";
-        max_mass_kg: Option<f64>, C::above(0.0, 1e7), "highest mass";
+        max_mass_kg: Option<f64>, C::real(0.1, 1e7), "highest mass";
         max_delivery_weeks: Option<f64>, C::real(0.0, 1000.0), "latest delivery";
         law: Option<String>, C::id(), "minimum-efficiency law that bids must meet: eu-548-2014, us-10cfr431 or ca-sor-2016-311";
         near_tie_pct: Option<f64>, C::real(0.0, 100.0).blank("basis, else 0"), "bids within this of the least owning cost count as near-tied";
@@ -348,7 +348,7 @@ record! {
         install_cost: Option<Money>, COST.blank("0"), "putting one unit in";
         adder_cost: Option<Money>, C::signed_money().blank("0"), "other adders of one unit";
         sound_db: Option<f64>, C::real(0.0, 200.0), "sound level";
-        mass_kg: Option<f64>, C::above(0.0, 1e7), "mass of one unit";
+        mass_kg: Option<f64>, C::real(0.1, 1e7), "mass of one unit";
         delivery_weeks: Option<f64>, C::real(0.0, 1000.0), "weeks to delivery";
         warranty_years: Option<f64>, C::real(0.0, 100.0), "years of warranty";
         note: Option<String>, C::text(), "remark";

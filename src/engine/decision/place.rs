@@ -15,6 +15,7 @@ use crate::engine::flags::Flags;
 use crate::engine::loading::{Duty, Market, Ratios, VoltageDrop, factors};
 use crate::engine::transformer::circuit::PowerFactor;
 use crate::engine::transformer::losses::{Losses, contradict, quoted};
+use crate::engine::transformer::plausibility::loss_base_is_far;
 use crate::engine::transformer::voltage_drop::Supply;
 use crate::engine::working::Recorder;
 use stated::{first_known, known_or, said};
@@ -251,10 +252,12 @@ pub fn resolve_at<R: Recorder>(
         .with_if(blank_loss(f).is_some(), Flags::LOSS_ESTIMATED)
         .with_if(f.from_test, Flags::FROM_TEST)
         .with_if(pk.is_none() && total.is_some(), Flags::LOAD_LOSS_FROM_TOTAL)
+        .with_if(p0.is_none() && pk.is_some() && total.is_some(), Flags::NO_LOAD_LOSS_FROM_TOTAL)
         .with_if(
             base.is_some_and(|b| b != f.rated_kva) && (pk.is_some() || total.is_some()),
             Flags::LOSS_BASE_DIFFERS,
         )
+        .with_if(loss_base_is_far(f.rated_kva, base), Flags::LOSS_BASE_FAR)
         .with_if(losses.load_loss_w < losses.no_load_loss_w, Flags::LOSSES_SWAPPED);
     flags = flags.with_if(contradict(p0, pk, total), Flags::LOSSES_CONTRADICT);
 

@@ -91,6 +91,25 @@ pub fn contradictions(
     doubts
 }
 
+/// Whether the rating at which the load loss is quoted lies far from the rating: cooling stages do not.
+pub fn loss_base_is_far(rated_kva: f64, loss_base_kva: Option<f64>) -> bool {
+    loss_base_kva.is_some_and(|base| !(0.25..=4.0).contains(&(base / rated_kva)))
+}
+
+/// Whether anything about the losses (at the rating) and the impedance of a nameplate is doubtful.
+pub fn is_odd(
+    rated_kva: f64,
+    impedance_pct: Option<f64>,
+    no_load_loss_w: f64,
+    load_loss_w: f64,
+) -> bool {
+    let (p0, pk) = (Some(no_load_loss_w), Some(load_loss_w));
+    no_load_loss_w == 0.0
+        || load_loss_w == 0.0
+        || !nameplate(rated_kva, impedance_pct, p0, pk).is_empty()
+        || !contradictions(rated_kva, impedance_pct, None, p0, pk).is_empty()
+}
+
 /// Farthest that a loss, and the impedance, of a nameplate may be from a test (percent of the nameplate):
 /// tolerances of IEC 60076-1 table 1 (memory).
 const FROM_TEST_PCT: [(&str, f64); 3] =
@@ -130,6 +149,15 @@ mod tests {
         assert_eq!(names(None, Some(0.49), Some(500.0), None), ["no_load_current_pct"]);
         assert!(names(Some(3.0), Some(0.5), Some(500.0), Some(3000.0)).is_empty());
         assert!(names(Some(0.1), Some(0.1), None, None).is_empty());
+    }
+
+    #[test]
+    fn odd_nameplates() {
+        assert!(!is_odd(400.0, Some(4.0), 430.0, 4600.0));
+        assert!(is_odd(400.0, Some(4.0), 0.0, 4600.0) && is_odd(400.0, None, 430.0, 0.0));
+        assert!(is_odd(400.0, Some(40.0), 430.0, 4600.0) && is_odd(400.0, None, 430.0, 4e4));
+        assert!(!loss_base_is_far(400.0, None) && !loss_base_is_far(400.0, Some(250.0)));
+        assert!(loss_base_is_far(400.0, Some(4.0)) && loss_base_is_far(400.0, Some(4e5)));
     }
 
     #[test]

@@ -1,7 +1,8 @@
 //! A letter as Markdown. Text never becomes markup: signs that Markdown knows are escaped, HTML is written as
 //! entities, and lines that keep their spaces stand in a fence longer than any run of backticks in them.
 
-use super::{Block, Table, visible};
+use super::{Block, Table};
+use crate::exchange::visible;
 
 pub(super) fn write(blocks: &[Block]) -> String {
     let mut out = String::new();

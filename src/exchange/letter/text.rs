@@ -2,7 +2,8 @@
 
 use unicode_width::UnicodeWidthStr as _;
 
-use super::{Block, Table, visible};
+use super::{Block, Table};
+use crate::exchange::visible;
 
 /// Width to which sentences are wrapped, in columns of a terminal.
 const WIDTH: usize = 100;
@@ -87,10 +88,15 @@ fn wrapped(out: &mut String, lead: &str, text: &str) {
 
 fn columns(out: &mut String, table: &Table) {
     let heads = [
-        table.columns.iter().map(|column| visible(&column.heading)).collect::<Vec<_>>(),
-        table.columns.iter().map(|column| visible(&column.unit)).collect(),
+        table
+            .columns
+            .iter()
+            .map(|column| visible(&column.heading).into_owned())
+            .collect::<Vec<_>>(),
+        table.columns.iter().map(|column| visible(&column.unit).into_owned()).collect(),
     ];
-    let rows = table.rows.iter().map(|row| row.iter().map(|cell| visible(cell)).collect());
+    let rows =
+        table.rows.iter().map(|row| row.iter().map(|cell| visible(cell).into_owned()).collect());
     let lines: Vec<Vec<String>> = heads.into_iter().chain(rows).collect();
     let cell = |line: &Vec<String>, at: usize| line.get(at).map_or(0, |cell| cell.width());
     let widths: Vec<usize> = (0..table.columns.len())

@@ -6,7 +6,7 @@ use crate::engine::transformer::plausibility;
 use crate::engine::working::Silent;
 use crate::study::test_report::TestedUnit;
 
-impl Doubts {
+impl Doubts<'_> {
     pub(super) fn tested(&mut self, of: (&'static str, &str), tested: &TestedUnit, share: f64) {
         let said = match tested.read(&mut Silent, share) {
             Ok(said) => said,

@@ -3,12 +3,15 @@
 
 use std::sync::mpsc::{Receiver, Sender, channel};
 
+use super::IntakeError;
 use super::records::Twice;
 use crate::engine::columns::Value;
 use crate::exchange::{Fault, Layout, ReadError, Row, Rows};
 
 /// Rows of a batch.
 const ROWS: usize = 512;
+/// Most rows of a file: several times the largest fleet; without a bound a source without end would fill memory.
+const MOST_ROWS: u64 = 5_000_000;
 /// Batches on their way round.
 const BATCHES: usize = 4;
 
@@ -39,7 +42,7 @@ impl Batch {
         &mut self.rows[..self.filled]
     }
 
-    fn fill(&mut self, rows: &mut Rows, layout: &Layout, twice: &mut Twice) {
+    fn fill(&mut self, rows: &mut Rows, layout: &Layout, twice: &mut Twice, left: &mut u64) {
         self.filled = 0;
         while self.filled < ROWS && self.end.is_none() {
             if self.filled == self.rows.len() {
@@ -47,7 +50,12 @@ impl Batch {
             }
             let Read { row, values, faults } = &mut self.rows[self.filled];
             match rows.next(row) {
+                Ok(true) if *left == 0 => {
+                    let why = format!("has more than {MOST_ROWS} rows; split it");
+                    self.end = Some(Err(ReadError::Unfit { line: row.line, why }));
+                }
                 Ok(true) => {
+                    *left -= 1;
                     faults.clear();
                     layout.values(row, rows.decimals(), values, faults);
                     twice.check(layout, row, faults);
@@ -63,24 +71,26 @@ impl Batch {
 
 /// Reads a file to its end on a thread of its own; `take` puts what was read, batch by batch, on this one. An
 /// error of `take` stops the reading.
-pub(super) fn read_ahead<E>(
+pub(super) fn read_ahead(
     rows: &mut Rows,
     layout: &Layout,
     mut twice: Twice,
-    mut take: impl FnMut(&mut Batch) -> Result<(), E>,
-) -> Result<(), E> {
+    mut take: impl FnMut(&mut Batch) -> Result<(), IntakeError>,
+) -> Result<(), IntakeError> {
     let (empty, to_fill): (Sender<Batch>, Receiver<Batch>) = channel();
     let (full, to_take) = channel();
     // The channels are moved in and fall with the closure: either side ends when the other one does.
     std::thread::scope(move |scope| {
-        scope.spawn(move || {
+        let reader = std::thread::Builder::new().spawn_scoped(scope, move || {
+            let mut left = MOST_ROWS;
             for mut batch in to_fill {
-                batch.fill(rows, layout, &mut twice);
+                batch.fill(rows, layout, &mut twice, &mut left);
                 if full.send(batch).is_err() {
                     return;
                 }
             }
         });
+        reader.map_err(IntakeError::Thread)?;
         let send = |batch| empty.send(batch).is_ok();
         for _ in 0..BATCHES {
             send(Batch::default());

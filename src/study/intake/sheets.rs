@@ -3,6 +3,7 @@
 use super::{Intake, IntakeError, Report};
 use crate::book::{Book, BookError, Change, Tally};
 use crate::engine::columns::TenderSheet;
+use crate::engine::decision::tender::Rates;
 use crate::engine::decision::uncertainty::Spread;
 use crate::engine::economics::Assumptions;
 use crate::engine::law;
@@ -45,6 +46,11 @@ impl Intake<'_> {
         };
         let TenderSheet { rates, lots, .. } = &sheet.content;
         self.rows = 1 + (rates.len() + lots.len()) as u64;
+        if let Err(refusal) = Rates::new(&sheet.content.tender, rates) {
+            let own = &sheet.content.tender.currency;
+            let line = sheet.line(&format!("rates.{own}"));
+            self.problems.add(line, own, &refusal.value, refusal.why);
+        }
         for lot in lots {
             self.known_law(&sheet, &format!("{}.law", lot.lot), lot.law.as_deref());
         }
@@ -89,6 +95,9 @@ impl Intake<'_> {
             Err(error @ BookError::Unknown { kind: "price series", .. }) => {
                 let line = sheet.line("price_series");
                 self.problems.add(line, "price_series", "", error.to_string());
+            }
+            Err(error @ BookError::InUse { kind: "rate", .. }) => {
+                self.problems.add(sheet.line("rates"), "rates", "", error.to_string());
             }
             Err(error @ (BookError::InUse { .. } | BookError::Awarded { .. })) => {
                 self.problems.add(1, "lot", "", error.to_string());

@@ -148,7 +148,7 @@ fn swings(
 ) -> Result<Vec<Swing>, Refusal> {
     let mut swings = Vec::new();
     for input in uncertain.inputs().inputs() {
-        let [low, high] = input.spread.ends();
+        let [low, high] = input.ends();
         let at = |value: f64| -> Result<(f64, Option<f64>, String), Refusal> {
             let drawn = uncertain.inputs().with_one(input, value)?;
             let standing = field.standing(&uncertain.factors(&drawn)?);

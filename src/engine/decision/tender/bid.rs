@@ -8,6 +8,7 @@ use crate::engine::economics::loss_factors::LossFactors;
 use crate::engine::economics::owning_cost::{OwningCost, Priced, owning_cost};
 use crate::engine::flags::Flags;
 use crate::engine::transformer::losses::{Losses, contradict, quoted};
+use crate::engine::transformer::plausibility::loss_base_is_far;
 use crate::engine::transformer::temperature::{load_loss_at, vanishing_temp_c};
 use crate::engine::working::{Formula, Recorder};
 
@@ -88,8 +89,7 @@ pub fn comparable<R: Recorder>(w: &mut R, terms: &Terms, bid: &Bid) -> Result<Co
     }
     flags = flags.with_if(losses.load_loss_w < losses.no_load_loss_w, Flags::LOSSES_SWAPPED);
 
-    let adders = [bid.freight_cost, bid.install_cost, bid.adder_cost];
-    let adders = Money(adders.iter().flatten().map(|adder| adder.0).sum());
+    let adders = adders(bid);
     let ratio = lot.rated_kva / rated_kva;
     Ok(Comparable {
         losses,
@@ -102,12 +102,24 @@ pub fn comparable<R: Recorder>(w: &mut R, terms: &Terms, bid: &Bid) -> Result<Co
     })
 }
 
+/// Freight, installation and other adders of one unit, in the bid's currency.
+fn adders(bid: &Bid) -> Money {
+    let adders = [bid.freight_cost, bid.install_cost, bid.adder_cost];
+    Money(adders.iter().flatten().map(|adder| adder.0).sum())
+}
+
+/// Whether the adders of a bid take off more than half of its price, which a rebate hardly does.
+pub fn adders_lower_price(bid: &Bid) -> bool {
+    adders(bid).amount() < -0.5 * bid.price.amount()
+}
+
 fn quotation_flags(bid: &Bid, rated_kva: f64) -> Flags {
     let contradicts = contradict(Some(bid.no_load_loss_w), bid.load_loss_w, bid.total_loss_w);
     Flags::NONE
         .with_if(bid.load_loss_w.is_none(), Flags::LOAD_LOSS_FROM_TOTAL)
         .with_if(contradicts, Flags::LOSSES_CONTRADICT)
         .with_if(bid.loss_base_kva.is_some_and(|base| base != rated_kva), Flags::LOSS_BASE_DIFFERS)
+        .with_if(loss_base_is_far(rated_kva, bid.loss_base_kva), Flags::LOSS_BASE_FAR)
 }
 
 /// The lot's factors for a bid of `rated_kva`: B·(S_lot/S_bid)².

@@ -1,9 +1,10 @@
 //! What a bid misses: the keys of the lot's limits that it does not keep.
 //! Equality passes; a blank passes and is flagged. Limits hold at the bid's rating, after correction.
 
-use super::bid::Comparable;
+use super::bid::{Comparable, adders_lower_price};
 use crate::engine::columns::{Bid, Lot};
 use crate::engine::flags::Flags;
+use crate::engine::transformer::plausibility::is_odd;
 use crate::engine::transformer::vector_group;
 
 /// What a bid misses, by the key of the limit, and what is doubtful about the answer.
@@ -49,6 +50,9 @@ pub fn against(lot: &Lot, bid: &Bid, on_terms: &Comparable, law: Option<bool>) -
     found.doubt(lot.law.is_some() && law.is_none(), Flags::LAW_NOT_CHECKED);
     let short = matches!((bid.quantity, lot.quantity), (Some(n), asked) if n < asked.unwrap_or(1));
     found.doubt(short, Flags::QUANTITY_SHORT);
+    found.doubt(adders_lower_price(bid), Flags::ADDERS_LOWER_PRICE);
+    let (p0, pk) = (losses.no_load_loss_w, on_terms.quoted_load_loss_w);
+    found.doubt(is_odd(losses.rated_kva, bid.impedance_pct, p0, pk), Flags::NAMEPLATE_ODD);
     found
 }
 

@@ -5,7 +5,7 @@
 
 use super::{Copula, RankCorrelation, Spread, uniforms};
 use crate::engine::Refusal;
-use crate::engine::columns::{Basis, BasisSheet, Column, Kind, Lot, Value, nearest};
+use crate::engine::columns::{Basis, BasisSheet, Column, Kind, LEAST, Lot, Value, nearest};
 
 /// Inputs of a lot that its factors depend on.
 const OF_LOT: &[&str] =
@@ -26,6 +26,13 @@ pub struct Input {
     /// How far it may lie.
     pub spread: Spread,
     place: Place,
+}
+
+impl Input {
+    /// The ends between which the input is swung on its own, inside its physical range.
+    pub fn ends(&self) -> [f64; 2] {
+        self.spread.ends().map(|end| clamped(self.column, end))
+    }
 }
 
 /// A basis and a lot with their uncertain inputs.
@@ -172,8 +179,9 @@ fn number(value: &Value) -> Option<f64> {
     }
 }
 
-/// The nearest value inside the column's physical range.
+/// The nearest value inside the column's physical range; next to zero that is zero.
 fn clamped(column: &Column, value: f64) -> f64 {
+    let value = if value.abs() < LEAST { 0.0 } else { value };
     match column.kind {
         Kind::Real(least, most) | Kind::Above(least, most) => value.clamp(least, most),
         #[expect(clippy::cast_precision_loss, reason = "counts of years and sizes")]
@@ -225,8 +233,10 @@ mod tests {
         let share = inputs(vec![range("responsibility_pu", 1.5, 2.0)]).expect("numeric");
         let drawn = share.draw(1, 0).expect("moved");
         assert_eq!((drawn.basis.responsibility_pu, drawn.moved), (Some(1.0), true));
-        let rate = inputs(vec![range("discount_rate_pct", -300.0, -200.0)]).expect("numeric");
+        let rate = inputs(vec![range("energy_escalation_pct", -300.0, -200.0)]).expect("numeric");
         assert!(rate.draw(1, 0).is_err(), "−100 % itself is no rate");
+        let none = inputs(vec![range("responsibility_pu", 1e-13, 2e-13)]).expect("numeric");
+        assert_eq!(none.draw(1, 0).expect("zero").basis.responsibility_pu, Some(0.0));
     }
 
     #[test]
