@@ -102,7 +102,7 @@ fn a_report_that_contradicts_is_told_and_not_used() {
     assert!(
         of("TZ")
             .iter()
-            .any(|d| d.contains("no_load_loss_w") && d.contains("+23.3 % off in the test report")),
+            .any(|d| d.contains("no_load_loss_w") && d.contains("+23.3 % off: the test report gives 148")),
         "{:?}",
         of("TZ")
     );

@@ -120,11 +120,15 @@ pub fn against_test(figures: [(&'static str, Option<f64>, Option<f64>); 3]) -> V
     let doubt = |(quantity, plate, test): (&'static str, Option<f64>, Option<f64>)| {
         let (plate, test) = plate.zip(test)?;
         let allowed = FROM_TEST_PCT.iter().find(|(name, _)| *name == quantity)?.1;
-        let percent = 100.0 * (test / plate - 1.0);
+        let apart = 100.0 * (test - plate);
+        let off = match plate {
+            0.0 => String::new(),
+            _ => format!("is {:+.1} % off: ", apart / plate),
+        };
         let why = format!(
-            "is {percent:+.1} % off in the test report, which gives {test:.4}; up to {allowed} % is usual: are both of one unit?"
+            "{off}the test report gives {test:.4}, and up to {allowed} % apart is usual: are both of one unit?"
         );
-        (percent.abs() > allowed).then_some(Doubt { quantity, value: plate, why })
+        (apart.abs() > allowed * plate).then_some(Doubt { quantity, value: plate, why })
     };
     figures.into_iter().filter_map(doubt).collect()
 }
