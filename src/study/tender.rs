@@ -378,6 +378,7 @@ fn evaluate_lot(
         nearest_border,
         near_tie_pct: terms.near_tie_pct,
         computed: Computed::by(lot),
+        stray_share_pu: terms.stray_share_pu,
         award,
         risk: None,
     })
@@ -494,6 +495,7 @@ impl Contest {
             losses.load_loss_w,
             &winner.factors,
         ));
+        found.extend(field.of_stray_share(w, terms.stray_share_pu));
         if let Some(basis) = basis.filter(|_| Computed::by(terms.lot).any()) {
             let at = format!("lot {}", terms.lot.lot);
             let of_basis = field.of_basis(w, terms.lot, &terms.rates, basis);

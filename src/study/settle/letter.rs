@@ -4,7 +4,7 @@ use super::{LotSettlement, SettleResult, UnitSettlement};
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
 use crate::study::figures::{group, short};
-use crate::study::tender::letter::{cautions, day, flag};
+use crate::study::tender::letter::{cautions, day, flag, flag_at};
 
 /// The settlement of a tender as a letter.
 pub fn settlement(result: &SettleResult) -> Letter {
@@ -54,7 +54,7 @@ pub(in crate::study) fn section(
     for (key, serials) in said {
         let all = serials.len() == lot.units.len();
         let of = if all { "all units".to_owned() } else { serials.join(", ") };
-        letter.warning(format!("{of}: {}", flag(key)));
+        letter.warning(format!("{of}: {}", flag_at(key, lot.guaranteed.stray_share_pu)));
     }
     for key in lot.flags.iter().filter(|key| **key != "factor_scale") {
         letter.warning(flag(key));

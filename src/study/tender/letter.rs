@@ -13,9 +13,10 @@ mod risk;
 
 use super::award::{BidderPackage, Package};
 use super::{Case, TenderResult};
+use crate::engine::flags::Flags;
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
-use crate::study::figures::{figure, group};
+use crate::study::figures::{figure, group, short};
 use crate::study::losses::flag_meaning;
 
 pub use answer::answer;
@@ -71,6 +72,15 @@ fn money(amount: f64) -> String {
 /// A flag with its meaning.
 pub(in crate::study) fn flag(key: &str) -> String {
     format!("{key}: {}", flag_meaning(key).unwrap_or_default())
+}
+
+/// A flag with its meaning, and the stray share where that is what is doubtful.
+pub(in crate::study) fn flag_at(key: &str, stray_share_pu: f64) -> String {
+    let said = flag(key);
+    if Flags::SPLIT_UNKNOWN.keys().contains(&key) {
+        return format!("{said} (here {} of the load loss)", short(stray_share_pu));
+    }
+    said
 }
 
 /// Lots each to its own winner, or all to one bidder; nothing for a tender of one lot.

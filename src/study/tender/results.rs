@@ -67,6 +67,9 @@ pub struct LotResult {
     /// Which factors come from the basis.
     #[serde(skip)]
     pub computed: Computed,
+    /// Stray share by which load losses of unknown split are brought to the lot's temperature.
+    #[serde(skip)]
+    pub stray_share_pu: f64,
     /// The award of the lot, where the book has one.
     pub award: Option<Awarded>,
     /// How sure the winner is, where that was asked.

@@ -98,6 +98,7 @@ mod tests {
                 factor_aux_per_kw: 1.0,
             },
             load_weight: 1.0,
+            load_loss_per_stray_w: 0.0,
             flags: Flags::NONE,
         };
         let lot = |law: Option<&str>| Lot {

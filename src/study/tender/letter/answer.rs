@@ -1,7 +1,7 @@
 //! The answer to one bidder: where its bid stands, what it lacked, and how its figures come about.
 
 use super::lot::{About, excluded_because};
-use super::{asks, cautions, factor_scale, factors, flag};
+use super::{asks, cautions, factor_scale, factors, flag_at};
 use crate::engine::working::Step;
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
@@ -69,7 +69,7 @@ fn standing(letter: &mut Letter, about: &About, name: &str) {
         letter.text(lacks(&lacked, name, currency));
     }
     for key in &bid.flags {
-        letter.warning(flag(key));
+        letter.warning(flag_at(key, result.stray_share_pu));
     }
 }
 

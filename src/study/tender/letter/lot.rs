@@ -1,6 +1,6 @@
 //! The sections of one lot: what it asks, factors, ranking, who is out, the winner map, what would change the winner.
 
-use super::{column, flag, money};
+use super::{column, flag, flag_at, money};
 use crate::engine::columns::{Bid, Column as Fact, Lot};
 use crate::engine::flags::Flags;
 use crate::exchange::Letter;
@@ -304,6 +304,11 @@ fn input(quantity: &str, winner: &str, currency: &str) -> (String, String, usize
             ("mean energy price of year 1".to_owned(), "per kWh".to_owned(), 5)
         }
         "peak_pu" => ("peak load of year 1".to_owned(), "pu".to_owned(), 3),
+        "stray_share_pu" => (
+            "stray share of the load losses brought to another temperature".to_owned(),
+            "pu".to_owned(),
+            3,
+        ),
         other => (other.to_owned(), String::new(), 3),
     };
     (name, unit, places)
@@ -325,7 +330,8 @@ pub(in crate::study) fn doubts(letter: &mut Letter, about: &About) {
         }
     }
     for (key, bids) in said {
-        letter.warning(format!("{}: {}", bids.join(", "), flag(key)));
+        let said = flag_at(key, about.result.stray_share_pu);
+        letter.warning(format!("{}: {said}", bids.join(", ")));
     }
 }
 
