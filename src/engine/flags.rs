@@ -33,7 +33,7 @@ flags! {
     15, LIMIT_UNKNOWN, "limit_unknown", "a value that the lot limits is blank in the bid; it passes";
     16, LAW_RELAXED, "law_relaxed", "no offer meets the law in a year in which the unit may fail; a forced purchase passes it over";
     17, VERIFY_LAW, "verify_law", "the legal table is marked as remembered: verify it in the official text";
-    18, FACTOR_SCALE, "factor_scale", "capitalised losses are under 1 % of the price of every bid: check that the factors are per kW, not per W";
+    18, FACTOR_SCALE, "factor_scale", "no-load and load loss are capitalised at under 1 % of the price of every bid: check that the factors are per kW, not per W";
     19, NO_LIFE, "no_life", "no life for this offer";
     20, DROP_AT_RMS, "drop_at_rms", "voltage drop at the RMS load: no profile to integrate over";
     21, RESPONSIBILITY_DEFAULT, "responsibility_default", "demand charge at full own peak: no responsibility_pu and no system load are known";
@@ -47,6 +47,8 @@ flags! {
     29, DEMAND_UNUSED, "demand_unused", "factor_method levelized does not use demand_charge_per_kw_year: what capacity costs per kW and year is investment_per_kw_year there";
     30, INVESTMENT_UNUSED, "investment_unused", "factor_method present-value does not use investment_per_kw_year: what capacity costs per kW and year is demand_charge_per_kw_year there";
     31, LOSS_VALUE_SCALE, "loss_value_scale", "the capitalised losses of the best offer are under 1 % or over 50 times its price: is the energy price per kWh, are losses in W and prices per unit?";
+    32, LOSS_SCALE, "loss_scale", "a loss is below 0.02 W (no-load) or 0.2 W (load) per kVA of the rating: were kW written in a column of W? (common practice, no source)";
+    33, TEST_TEMP_BLANK, "test_temp_blank", "test_temp_c is blank, so the load loss counts as one at the lot's reference temperature, but the bid was quoted at another: where the report gives it at the bid's temperature, import that as test_temp_c";
 }
 
 impl Flags {

@@ -384,15 +384,15 @@ fn evaluate_lot(
     })
 }
 
-/// Whether every bid's capitalised losses are under 1 % of its price.
+/// Whether the no-load and the load loss of every bid are capitalised at under 1 % of its price. Auxiliaries and adders
+/// are left out: a right factor of theirs would hide wrong ones.
 fn factors_look_per_watt<'a>(costs: impl IntoIterator<Item = &'a OwningCost>) -> bool {
     let mut costs = costs.into_iter().peekable();
-    costs.peek().is_some()
-        && costs.all(|c| c.no_load_cost + c.load_cost + c.auxiliary_cost < 0.01 * c.price)
+    costs.peek().is_some() && costs.all(|c| c.no_load_cost + c.load_cost < 0.01 * c.price)
 }
 
-/// Whether the factors of a lot look like money per W instead of per kW: every bid's capitalised losses are under 1 %
-/// of its price.
+/// Whether the factors of a lot look like money per W instead of per kW: no-load and load loss of every bid are
+/// capitalised at under 1 % of its price.
 ///
 /// # Errors
 /// As [`evaluate`].
