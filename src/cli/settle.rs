@@ -51,6 +51,9 @@ pub(super) fn settle(
     }
     for lot in &result.lots {
         warn_of_scale(printer, &lot.lot, &lot.flags);
+        for unit in &lot.units {
+            warn_of_scale(printer, &format!("{}, unit {}", lot.lot, unit.serial), &unit.flags);
+        }
     }
     match printer.format {
         Format::Json => printer.json(&result)?,

@@ -78,6 +78,11 @@ fn tests_come_to_the_lots_temperature_and_rating() {
 
     let corrected = settled(lot.clone(), bid.clone(), vec![measured("A", "1", 200.0, 3900.0)]);
     near(corrected.units[0].load_excess_w, 3900.0 - 4000.0 * 300.0 / 310.0, 1e-12);
+    // Nothing says that the test was corrected, and the bid was quoted at another temperature.
+    assert_eq!(corrected.units[0].flags, ["split_unknown", "test_temp_blank"]);
+    let same = Bid { reference_temp_c: Some(75.0), ..bid.clone() };
+    let plain = settled(lot.clone(), same, vec![measured("A", "1", 200.0, 3900.0)]);
+    assert!(plain.units[0].flags.is_empty());
     let no_reference = Lot { reference_temp_c: None, ..lot };
     let as_read = settled(no_reference, bid, vec![cold]);
     assert_eq!(as_read.units[0].load_excess_w, -500.0);
@@ -145,4 +150,27 @@ fn json_has_the_keys_of_the_contract() {
     let of_unit =
         "serial no_load_excess_w load_excess_w auxiliary_excess_w penalty beyond_tolerance ";
     assert!(keys(&json["lots"][0]["units"][0]).starts_with(of_unit));
+}
+
+/// 0.54 and 4.6 are kW in columns of W; 0 W was not measured. Told of bid and unit, rejected is neither.
+#[test]
+fn kw_in_a_column_of_watt_is_doubted() {
+    let lot = lot(630.0, 10_000.0, 3000.0, 0.0);
+    let sound = || bid("A", 9000.0, 540.0, 4600.0);
+    let flags = |bid: Bid, p0, pk| {
+        settled(lot.clone(), bid, vec![measured("A", "1", p0, pk)]).units.remove(0).flags
+    };
+    assert!(!flags(sound(), 540.0, 4600.0).contains(&"loss_scale"));
+    for (p0, pk) in [(0.54, 4600.0), (540.0, 4.6), (0.0, 0.0)] {
+        assert!(flags(sound(), p0, pk).contains(&"loss_scale"), "{p0} {pk}");
+    }
+    let evaluated = |p0, pk| {
+        let bids = vec![bid("A", 9000.0, p0, pk)];
+        let result = ironhum::study::tender::evaluate(&sheet("USD", lot.clone(), bids), None, None);
+        result.expect("complete").lots.remove(0).bids.remove(0)
+    };
+    assert!(!evaluated(540.0, 4600.0).flags.contains(&"loss_scale"));
+    let in_kw = evaluated(0.54, 4.6);
+    assert!(in_kw.flags.contains(&"loss_scale"));
+    assert_eq!(in_kw.rank, Some(1));
 }

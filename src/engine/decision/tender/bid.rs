@@ -8,6 +8,7 @@ use crate::engine::economics::loss_factors::LossFactors;
 use crate::engine::economics::owning_cost::{OwningCost, Priced, owning_cost};
 use crate::engine::flags::Flags;
 use crate::engine::transformer::losses::{Losses, quoted};
+use crate::engine::transformer::plausibility::looks_in_kw;
 use crate::engine::transformer::temperature::{load_loss_at, vanishing_temp_c};
 use crate::engine::working::{Formula, Recorder, Silent};
 
@@ -111,7 +112,10 @@ pub fn comparable<R: Recorder>(w: &mut R, terms: &Terms, bid: &Bid) -> Result<Co
         (Some(_), Some(_)) => {}
         _ => flags = flags.with(Flags::NO_REFERENCE_TEMP),
     }
-    flags = flags.with_if(losses.load_loss_w < losses.no_load_loss_w, Flags::LOSSES_SWAPPED);
+    let (p0, pk) = (losses.no_load_loss_w, losses.load_loss_w);
+    flags = flags
+        .with_if(pk < p0, Flags::LOSSES_SWAPPED)
+        .with_if(looks_in_kw(rated_kva, p0, pk), Flags::LOSS_SCALE);
 
     let adders = [bid.freight_cost, bid.install_cost, bid.adder_cost];
     let adders = Money(adders.iter().flatten().map(|adder| adder.0).sum());
