@@ -315,6 +315,10 @@ pub struct ReportTender {
 
 /// Options of `award`.
 #[derive(Clone, Debug, clap::Args)]
+#[command(
+    after_help = "The award and its journal entry carry the name of the user who is logged on: $USER, else $LOGNAME, \
+    else $USERNAME. Set one of them for one command to sign with another name: USER=\"A. Buyer\" ironhum award …"
+)]
 pub struct Award {
     /// The tender
     pub tender: String,
@@ -327,7 +331,10 @@ pub struct Award {
     /// Take the award back; the journal keeps it
     #[arg(long, conflicts_with = "bid")]
     pub withdraw: bool,
-    /// Why; needed where another bid leads, and to take an award back
+    /// Award it although it misses a limit of the lot
+    #[arg(long, conflicts_with = "withdraw")]
+    pub despite: bool,
+    /// Why; needed where another bid is recommended, and to take an award back
     #[arg(long, value_name = "TEXT")]
     pub why: Option<String>,
 }
@@ -340,9 +347,12 @@ pub struct Deliver {
     /// Only this lot
     #[arg(long, value_name = "LOT")]
     pub lot: Option<String>,
-    /// Leave this unit out, because it is rejected, for instance
+    /// Leave this unit out, this time; units beyond tolerance are always left out
     #[arg(long, value_name = "SERIAL")]
     pub except: Vec<String>,
+    /// Take this unit although it is beyond tolerance
+    #[arg(long, value_name = "SERIAL")]
+    pub also: Vec<String>,
     /// What stands before the serial number in the identifier of the unit
     #[arg(long, value_name = "TEXT")]
     pub prefix: Option<String>,

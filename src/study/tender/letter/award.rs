@@ -136,7 +136,7 @@ pub fn delivered(result: &DeliverResult) -> Letter {
         .collect();
     if !rejectable.is_empty() {
         letter.warning(format!(
-            "{} may be rejected as beyond tolerance; a rejected unit is kept out of the fleet with --except SERIAL",
+            "{} may be rejected as beyond tolerance and is in the fleet",
             rejectable.join(", ")
         ));
     }
@@ -145,5 +145,8 @@ pub fn delivered(result: &DeliverResult) -> Letter {
             "To rank them, import what the place asks of them (columns unit, rated_kva, site, peak_kva, profile): ironhum import units FILE.",
         );
     }
+    letter.text(
+        "A unit that goes back to its maker leaves the computations with in_service = no (columns unit, rated_kva, in_service): ironhum import units FILE; it stays in the book with its history.",
+    );
     letter
 }
