@@ -277,3 +277,23 @@ fn factors_that_look_like_money_per_watt() {
     let (out, _) = shown(&["tender", "T", "--lot", "L"]);
     assert!(!out.contains(warning), "{out}");
 }
+
+/// The lot has two units; a third serial number is taken with a warning.
+#[test]
+fn more_measured_units_than_the_lot_has() {
+    let program = program();
+    let take = |serials: &[&str]| {
+        let rows = serials.iter().map(|serial| format!("T,L,A,{serial},430,4600\n"));
+        let head = "tender,lot,bid,serial,no_load_loss_w,load_loss_w\n".to_owned();
+        let file = program.write("measured.csv", head + &rows.collect::<String>());
+        text(&program.run(&["import", "measured", &file.to_string_lossy()]))
+    };
+    let (code, _, error) = take(&["s1", "s2"]);
+    assert_eq!((code, error.contains("are measured")), (Some(0), false), "{error}");
+    let (code, out, error) = take(&["S2"]);
+    assert_eq!((code, out.as_str()), (Some(0), "measured: 1 new, 0 changed, 0 the same.\n"));
+    assert!(
+        error.contains("3 units of bid A are measured, but lot L of tender T has 2"),
+        "{error}"
+    );
+}

@@ -33,17 +33,30 @@ pub struct AwardResult {
     pub flags: Vec<&'static str>,
 }
 
-/// Awards a lot to a bid. Another bid than the one that leads needs a reason.
+/// Which bid a lot goes to.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Choice<'a> {
+    /// The lot.
+    pub lot: &'a str,
+    /// The bid.
+    pub bid: &'a str,
+    /// Also where it misses a limit of the lot.
+    pub despite: bool,
+}
+
+/// Awards a lot to a bid. Another bid than the one that is recommended needs a reason; one that misses a limit must be
+/// meant despite that.
 ///
 /// # Errors
-/// As [`super::evaluate`]; an unknown bid, no reason where one is needed, a lot that is awarded to another bid.
+/// As [`super::evaluate`]; an unknown bid, no reason where one is needed, an excluded bid that is not meant despite
+/// what it misses, a lot that is awarded to another bid.
 pub fn award(
     book: &mut Book,
     case: &Case,
-    lot: &str,
-    bid: &str,
+    choice: Choice,
     actor: &Actor,
 ) -> Result<AwardResult, StudyError> {
+    let Choice { lot, bid, despite } = choice;
     let sheet = &case.sheet;
     let reasoned = has_reason(actor)?;
     let evaluated = case.evaluate(Some(lot))?;
@@ -54,6 +67,13 @@ pub fn award(
             return Err(BookError::Awarded { tender, lot }.into());
         }
         return Ok(told(case, of_lot, chosen, standing.clone(), "same"));
+    }
+    if !chosen.excluded.is_empty() && !despite {
+        let misses = chosen.excluded.join(", ");
+        let why = format!(
+            "misses {misses} and is not ranked; to award it all the same: --despite --why TEXT"
+        );
+        return Err(StudyError::refused(format!("lot {lot}"))(Refusal::new("bid", bid, why)));
     }
     if of_lot.recommended.as_deref() != Some(bid) && !reasoned {
         let why = needs_reason(chosen, of_lot.recommended.as_deref());
@@ -133,7 +153,7 @@ fn needs_reason(chosen: &BidResult, leads: Option<&str>) -> String {
     };
     match leads {
         Some(leads) => {
-            format!("does not lead ({leads} does){misses}; to award it say why: --why TEXT")
+            format!("is not recommended ({leads} is){misses}; to award it say why: --why TEXT")
         }
         None => format!("is not ranked{misses}; to award it say why: --why TEXT"),
     }
