@@ -311,7 +311,7 @@ fn a_report_is_written_whole_and_the_same_again() {
         "\nNear tie, within 1 % of the least owning cost. By owning cost: O1-ALT, O1.",
         "\n| O1-ALT | 43.8 |\n",
         "\n| discount rate | % | 6.000 | 1.443 | J1 | 6.972 | O1 |\n",
-        "\n10 000 draws of the factors from the ranges of basis plan-2027, seed 1:",
+        "\n10 000 draws from the ranges of basis plan-2027, seed 1:",
         "\n## Settlement of lot L1, bid O1 of Oskavend\n",
         "\nPenalty: 1 622.79 EUR.\n",
         "\n## Cautions\n",
