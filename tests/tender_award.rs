@@ -152,6 +152,23 @@ fn settlement_goes_by_the_terms_of_the_award() {
     let flat = shown.split_whitespace().collect::<Vec<_>>().join(" ");
     assert!(flat.contains("compared again now, O1 comes to"), "{shown}");
     assert!(flat.contains("instead of 26 086.30 EUR"), "{shown}");
+    assert!(!flat.contains("O1 is recommended instead of O1"), "{shown}");
+    // The answer to a bidder goes by the award, and says in one line what would be otherwise.
+    let bid = program.done(&["tender", TENDER, "--lot", "L1", "--bid", "O1", "--working"]);
+    let flat = bid.split_whitespace().collect::<Vec<_>>().join(" ");
+    for said in [
+        "The lot is awarded to O1 (Oskavend) by tester on",
+        "goes by the factors and corrections kept with the award",
+        "A 15 218.65 no-load (iron) loss kept with the award",
+        "owning cost 26 086.30",
+        "today's basis would say otherwise: A ",
+        "stray share 0.3 instead of 0.1; O1 at ",
+    ] {
+        assert!(flat.contains(said), "{said}\n{bid}");
+    }
+    let now = &lot["bids"][1];
+    assert_eq!(now["bid"], "O1");
+    assert!(!flat.contains(&format!("= {} EUR", now["owning_cost"])), "{bid}");
     let report = program.done(&["report", "tender", TENDER, "-"]);
     assert!(report.contains("settled by the factors and the stray share of the award"), "{report}");
 

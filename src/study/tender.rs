@@ -122,8 +122,28 @@ pub fn working(
     let bid = find_bid(sheet, &lot.lot, bid)?;
     let mut factors = Working::default();
     let (terms, _) = terms(&mut factors, sheet, basis, lot)?;
+    opened(&terms, factors, bid)
+}
+
+/// The same under the terms of the lot's award, whose factors are kept with it; none where it is not awarded.
+///
+/// # Errors
+/// As [`working`].
+pub fn working_as_awarded(
+    sheet: &TenderSheet,
+    basis: Option<&BasisForFactors>,
+    lot: &str,
+    bid: &str,
+) -> Result<Option<BidWorking>, StudyError> {
+    let Some(award) = award_of(sheet, lot) else { return Ok(None) };
+    let bid = find_bid(sheet, lot, bid)?;
+    let (terms, _) = terms_at_award(sheet, basis, find_lot(sheet, lot)?, award)?;
+    opened(&terms, Working::default(), bid).map(Some)
+}
+
+fn opened(terms: &Terms, factors: Working, bid: &Bid) -> Result<BidWorking, StudyError> {
     let mut on_terms = Working::default();
-    let comparable = bring(&mut on_terms, &terms, bid)?;
+    let comparable = bring(&mut on_terms, terms, bid)?;
     let open = |figure: &dyn Fn(&mut Working)| {
         let mut working = Working::default();
         figure(&mut working);
@@ -136,10 +156,10 @@ pub fn working(
             comparable.owning_cost(w);
         }),
         owning_cost_at_tolerance: open(&|w| {
-            comparable.at_tolerance(w, &terms);
+            comparable.at_tolerance(w, terms);
         }),
         lot_cost: open(&|w| {
-            comparable.lot_cost(w, &terms);
+            comparable.lot_cost(w, terms);
         }),
     })
 }
@@ -224,14 +244,14 @@ pub(super) fn terms_at_award<'a>(
     };
     let tender = format!("tender {}", sheet.tender.tender);
     let rates = Rates::new(&sheet.tender, &sheet.rates).map_err(StudyError::refused(tender))?;
-    let first_year = basis.map(|basis| basis.assumptions.first_year);
+    let assumptions = basis.map(|basis| basis.assumptions);
     let terms = Terms {
         lot,
         rates,
         factors,
         stray_share_pu: award.stray_share_pu,
-        near_tie_pct: lot.near_tie_pct.unwrap_or(0.0),
-        purchase: legal::purchase(&sheet.tender, first_year),
+        near_tie_pct: lot.near_tie_pct.or(assumptions.map(|a| a.near_tie_pct)).unwrap_or(0.0),
+        purchase: legal::purchase(&sheet.tender, assumptions.map(|a| a.first_year)),
     };
     Ok((terms, Flags::NONE))
 }
@@ -321,6 +341,12 @@ impl<'a> Judged<'a> {
         lot: &'a Lot,
     ) -> Result<Self, StudyError> {
         let (terms, flags) = terms(&mut Silent, sheet, basis, lot)?;
+        Self::under(sheet, terms, flags)
+    }
+
+    /// The bids of a lot under some terms.
+    fn under(sheet: &'a TenderSheet, terms: Terms<'a>, flags: Flags) -> Result<Self, StudyError> {
+        let lot = terms.lot;
         let bids = bids_of(sheet, &lot.lot).map(|bid| Assessed::new(&terms, bid));
         let bids: Vec<Assessed> = bids.collect::<Result<_, _>>()?;
         let standings: Vec<Standing> = bids.iter().map(Assessed::standing).collect();
@@ -346,8 +372,34 @@ fn evaluate_lot(
     basis: Option<&BasisForFactors>,
     lot: &Lot,
 ) -> Result<LotResult, StudyError> {
-    let judged = Judged::new(sheet, basis, lot)?;
-    let Judged { terms, ranking, contest, .. } = &judged;
+    result_of(sheet, basis, &Judged::new(sheet, basis, lot)?)
+}
+
+/// The evaluation of a lot under the terms of its award, with the bid that was recommended then; none where it is not
+/// awarded.
+///
+/// # Errors
+/// As [`evaluate`].
+pub fn as_awarded(
+    sheet: &TenderSheet,
+    basis: Option<&BasisForFactors>,
+    lot: &str,
+) -> Result<Option<LotResult>, StudyError> {
+    let Some(award) = award_of(sheet, lot) else { return Ok(None) };
+    let (terms, flags) = terms_at_award(sheet, basis, find_lot(sheet, lot)?, award)?;
+    // The factors are kept: nothing of the basis moves them.
+    let result = result_of(sheet, None, &Judged::under(sheet, terms, flags)?)?;
+    let recommended = award.recommended.clone();
+    Ok(Some(LotResult { recommended, as_awarded: true, ..result }))
+}
+
+fn result_of(
+    sheet: &TenderSheet,
+    basis: Option<&BasisForFactors>,
+    judged: &Judged,
+) -> Result<LotResult, StudyError> {
+    let Judged { terms, ranking, contest, .. } = judged;
+    let lot = terms.lot;
     let contestant = |j| judged.contestant(j);
     let map = WinnerMap::new(&contest.planes, &terms.factors);
     let borders = contest.borders(&map, contestant);
@@ -380,6 +432,7 @@ fn evaluate_lot(
         computed: Computed::by(lot),
         stray_share_pu: terms.stray_share_pu,
         award,
+        as_awarded: false,
         risk: None,
     })
 }

@@ -72,6 +72,9 @@ pub struct LotResult {
     pub stray_share_pu: f64,
     /// The award of the lot, where the book has one.
     pub award: Option<Awarded>,
+    /// Whether it is compared under the terms of the award.
+    #[serde(skip)]
+    pub as_awarded: bool,
     /// How sure the winner is, where that was asked.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub risk: Option<RiskResult>,

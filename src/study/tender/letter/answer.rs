@@ -1,5 +1,6 @@
 //! The answer to one bidder: where its bid stands, what it lacked, and how its figures come about.
 
+use super::award::by_its_terms;
 use super::lot::{About, excluded_because};
 use super::{asks, cautions, factor_scale, factors, flag_at};
 use crate::engine::working::Step;
@@ -9,9 +10,9 @@ use crate::study::StudyError;
 use crate::study::explain::StepRow;
 use crate::study::figures::group;
 use crate::study::tender::shortfall::{Shortfall, shortfall};
-use crate::study::tender::{Case, TenderResult, working};
+use crate::study::tender::{Case, TenderResult, as_awarded, working, working_as_awarded};
 
-/// Answers for a bid in each lot that has one of that name.
+/// Answers for a bid in each lot that has one of that name; where the lot is awarded, by the terms of the award.
 ///
 /// # Errors
 /// As [`crate::study::tender::evaluate`].
@@ -19,17 +20,27 @@ pub fn answer(case: &Case, result: &TenderResult, bid: &str) -> Result<Letter, S
     let mut letter = Letter::default();
     letter.heading(1, format!("Tender {}: bid {bid}", result.tender));
     for of in result.lots.iter().filter(|lot| lot.bids.iter().any(|of| of.bid == bid)) {
-        let about = About::new(case, result, of);
+        let (sheet, basis) = (&case.sheet, case.basis());
+        let kept = as_awarded(sheet, basis.as_ref(), &of.lot)?;
+        let about = About::new(case, result, kept.as_ref().unwrap_or(of));
         asks(&mut letter, &about);
+        by_its_terms(&mut letter, &about, of, bid);
         factor_scale(&mut letter, &about);
         factors(&mut letter, &about);
         standing(&mut letter, &about, bid);
-        let w = working(&case.sheet, case.basis().as_ref(), &of.lot, bid)?;
+        let w = match working_as_awarded(sheet, basis.as_ref(), &of.lot, bid)? {
+            Some(working) => working,
+            None => working(sheet, basis.as_ref(), &of.lot, bid)?,
+        };
         letter.heading(3, "How its owning cost comes about");
         let rows = |steps: &[Step]| StepRow::lines(&StepRow::tree(steps), 0);
         letter.lines([rows(&w.on_terms), rows(&w.owning_cost)].concat());
         letter.heading(3, "How the factors come about");
-        letter.lines(rows(&w.factors));
+        if about.result.as_awarded {
+            letter.text("They are kept with the award as they were then.");
+        } else {
+            letter.lines(rows(&w.factors));
+        }
     }
     cautions(&mut letter);
     Ok(letter)

@@ -2,12 +2,13 @@
 
 use super::lot::About;
 use super::{day, flag};
+use crate::engine::decision::equal_pv;
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
 use crate::study::figures::{group, short};
-use crate::study::tender::Awarded;
 use crate::study::tender::decide::AwardResult;
 use crate::study::tender::deliver::{DeliverResult, DeliveredUnit};
+use crate::study::tender::{Awarded, LotResult};
 
 /// To whom, by whom, when and why.
 fn sentence(award: &Awarded) -> String {
@@ -36,18 +37,77 @@ pub(in crate::study) fn standing(letter: &mut Letter, about: &About) {
     letter.text(format!("Awarded to {}", sentence(award)));
     letter.text(terms(award, about.currency));
     let leads = about.result.recommended.as_ref();
-    if award.differs_now() || leads != award.recommended.as_ref() {
-        let led = |bid: Option<&String>| bid.map_or("none", String::as_str).to_owned();
-        letter.warning(format!(
-            "compared again now, {} comes to {} instead of {} {} and {} leads instead of {}: the basis has changed since, or the program (then {}); the award stands as it was made",
+    let mut otherwise = Vec::new();
+    if award.differs_now() {
+        otherwise.push(format!(
+            "{} comes to {} instead of {} {}",
             award.bid,
             group(award.owning_cost_now, 2),
             group(award.owning_cost, 2),
-            about.currency,
-            led(leads),
-            led(award.recommended.as_ref()),
+            about.currency
+        ));
+    }
+    if leads != award.recommended.as_ref() {
+        let named = |bid: Option<&String>| bid.map_or("no bid", String::as_str).to_owned();
+        let (now, then) = (named(leads), named(award.recommended.as_ref()));
+        otherwise.push(format!("{now} is recommended instead of {then}"));
+    }
+    if !otherwise.is_empty() {
+        letter.warning(format!(
+            "compared again now, {}: the basis has changed since, or the program (then {}); the award stands as it was made",
+            otherwise.join(" and "),
             award.program
         ));
+    }
+}
+
+/// By whose terms an answer goes, and in one line what today's basis would say otherwise of a bid.
+pub(super) fn by_its_terms(letter: &mut Letter, about: &About, today: &LotResult, bid: &str) {
+    let (kept, Some(award)) = (about.result, &about.result.award) else { return };
+    letter.text(format!("The lot is awarded to {}", sentence(award)));
+    letter.text("This answer goes by the factors and corrections kept with the award.");
+    let of = |lot: &LotResult| {
+        let own = lot.bids.iter().find(|own| own.bid == bid);
+        own.map(|own| (own.owning_cost, own.rank, own.excluded.clone()))
+    };
+    let mut otherwise = Vec::new();
+    for (name, then, now) in [
+        ("A", kept.factor_a_per_kw, today.factor_a_per_kw),
+        ("B", kept.factor_b_per_kw, today.factor_b_per_kw),
+        ("A aux", kept.factor_aux_per_kw, today.factor_aux_per_kw),
+    ] {
+        if !equal_pv(then, now) {
+            otherwise.push(format!("{name} {} instead of {}", group(now, 2), group(then, 2)));
+        }
+    }
+    if kept.stray_share_pu != today.stray_share_pu {
+        let (now, then) = (short(today.stray_share_pu), short(kept.stray_share_pu));
+        otherwise.push(format!("stray share {now} instead of {then}"));
+    }
+    if let (Some((then, rank, misses)), Some((now, rank_now, misses_now))) = (of(kept), of(today)) {
+        if !equal_pv(then, now) {
+            let (now, then) = (group(now, 2), group(then, 2));
+            otherwise.push(format!("{bid} at {now} instead of {then} {}", about.currency));
+        }
+        let place =
+            |rank: Option<usize>| rank.map_or("not ranked".to_owned(), |n| format!("rank {n}"));
+        if rank != rank_now {
+            otherwise.push(format!("{} instead of {}", place(rank_now), place(rank)));
+        }
+        if misses != misses_now {
+            let said = |keys: &[&str]| {
+                if keys.is_empty() { "nothing".to_owned() } else { keys.join(", ") }
+            };
+            otherwise.push(format!("it misses {} instead of {}", said(&misses_now), said(&misses)));
+        }
+    }
+    if kept.recommended != today.recommended {
+        let named = |bid: &Option<String>| bid.clone().unwrap_or_else(|| "no bid".to_owned());
+        let (now, then) = (named(&today.recommended), named(&kept.recommended));
+        otherwise.push(format!("{now} recommended instead of {then}"));
+    }
+    if !otherwise.is_empty() {
+        letter.warning(format!("today's basis would say otherwise: {}", otherwise.join("; ")));
     }
 }
 

@@ -89,7 +89,11 @@ pub(in crate::study) fn factors(letter: &mut Letter, about: &About) {
         ],
         rows.into_iter()
             .map(|(symbol, value, of, computed)| {
-                let from = if computed { from.clone() } else { "stated in the lot".to_owned() };
+                let from = match (result.as_awarded, computed) {
+                    (true, _) => "kept with the award".to_owned(),
+                    (false, true) => from.clone(),
+                    (false, false) => "stated in the lot".to_owned(),
+                };
                 vec![symbol.to_owned(), group(value, 2), of.to_owned(), from]
             })
             .collect(),
