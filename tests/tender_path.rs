@@ -347,3 +347,43 @@ fn hostile_names_stay_text() {
     assert!(shown.contains("=cmd() ␦dnE"), "{shown}");
     assert!(!shown.contains('\u{202e}'), "{shown}");
 }
+
+/// What was published can be shown with its working afterwards, and the report under the factors of the basis.
+#[test]
+fn published_factors_keep_their_working() {
+    let program = demo();
+    let flat = |text: String| text.split_whitespace().collect::<Vec<_>>().join(" ");
+    let ask = ["factors", "--tender", TENDER, "--lot", "L1"];
+    let (code, _, error) = text(&program.run(&["factors", "--from-basis"]));
+    assert_eq!(code, Some(2), "{error}");
+    let before = program.json(&[&ask[..], &["--format", "json"]].concat());
+    let tender = std::fs::read_to_string(support::demo_fleet("tender.toml")).expect("the demo");
+    let stated =
+        "factor_a_per_kw = 15218.65\nfactor_b_per_kw = 2840.61\nfactor_aux_per_kw = 12600.0\n";
+    let publish = |stated: &str| {
+        let text = tender.replacen("peak_pu", &format!("{stated}peak_pu"), 1);
+        program.import("tender", &program.write("tender.toml", text), &[]);
+    };
+    publish(stated);
+    let shown = flat(program.done(&ask));
+    assert!(shown.contains("the working to publish: ironhum factors --tender ol-2027-1 --lot L1 --from-basis --working."), "{shown}");
+    let from_basis = [&ask[..], &["--from-basis"]].concat();
+    let after = program.json(&[&from_basis[..], &["--format", "json"]].concat());
+    assert_eq!(after, before, "as if the lot stated nothing");
+    let shown = flat(program.done(&[&from_basis[..], &["--working"]].concat()));
+    assert!(shown.contains("The lot states A 15 218.65, B 2 840.61, A aux 12 600.00 EUR/kW, which is not what this basis gives now"), "{shown}");
+    assert!(shown.contains("8760·(0.08500003·16.65265"), "{shown}");
+    let aux = after["factor_aux_per_kw"].as_f64().expect("a factor");
+    publish(&stated.replace("12600.0", &format!("{aux:.2}")));
+    assert!(flat(program.done(&from_basis)).contains("to the cent what this basis gives."));
+
+    let report = program.done(&["report", "tender", TENDER, "-", "--lot", "L1", "--from-basis"]);
+    assert!(report.contains("compared as if no lot stated its factors"), "{report}");
+    // What is settled goes by what was published.
+    let part = |report: &str| report.split("## Settlement").nth(1).map(str::to_owned);
+    assert_eq!(
+        part(&report),
+        part(&program.done(&["report", "tender", TENDER, "-", "--lot", "L1"]))
+    );
+    assert!(part(&report).is_some());
+}

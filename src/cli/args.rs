@@ -238,6 +238,9 @@ pub struct Factors {
     /// Yearly growth of the load
     #[arg(long, value_name = "PCT", allow_negative_numbers = true)]
     pub load_growth_pct: Option<f64>,
+    /// Take every factor from the basis, also where the lot states its own: the working to publish
+    #[arg(long, requires = "tender")]
+    pub from_basis: bool,
     /// Show how each factor comes about
     #[arg(long)]
     pub working: bool,
@@ -308,6 +311,9 @@ pub struct ReportTender {
     /// Only this lot
     #[arg(long, value_name = "LOT")]
     pub lot: Option<String>,
+    /// Take every factor from the basis, also where a lot states its own
+    #[arg(long)]
+    pub from_basis: bool,
     /// How the risk is drawn, where the basis names ranges.
     #[command(flatten)]
     pub drawn: Drawn,

@@ -8,6 +8,7 @@ use crate::engine::columns::{Lot, TenderSheet};
 use crate::engine::decision::Context;
 use crate::engine::decision::tender::factors::Computed;
 use crate::engine::decision::uncertainty::RankCorrelation;
+use crate::engine::economics::loss_factors::LossFactors;
 use crate::study::settle::{SettleResult, settle};
 use crate::study::{Desk, StudyError};
 
@@ -17,6 +18,8 @@ pub struct Case {
     /// The tender with all that came in for it.
     pub sheet: TenderSheet,
     basis: Option<(Desk, Context)>,
+    /// The lots as they were put out, where the factors that they state are set aside.
+    put_out: Option<Vec<Lot>>,
 }
 
 /// How a simulation is drawn.
@@ -34,6 +37,15 @@ impl Default for Draws {
     fn default() -> Self {
         Self { draws: 10_000, seed: 1, correlations: Vec::new() }
     }
+}
+
+/// The factors of a lot that states all of them.
+fn stated(lot: &Lot) -> Option<LossFactors> {
+    Some(LossFactors {
+        factor_a_per_kw: lot.factor_a_per_kw?,
+        factor_b_per_kw: lot.factor_b_per_kw?,
+        factor_aux_per_kw: lot.factor_aux_per_kw?,
+    })
 }
 
 impl Case {
@@ -80,19 +92,25 @@ impl Case {
     /// What the engine refuses of the basis.
     pub fn new(sheet: TenderSheet, desk: Option<Desk>) -> Result<Self, StudyError> {
         let ready = |desk: Desk| desk.context().map(|context| (desk, context));
-        Ok(Self { sheet, basis: desk.map(ready).transpose()? })
+        Ok(Self { sheet, basis: desk.map(ready).transpose()?, put_out: None })
     }
 
     /// The same case as if no lot stated its factors: each comes from the basis, so that its ranges and what it rests
     /// on show how safe a winner by published factors is.
     #[must_use]
     pub fn from_basis(mut self) -> Self {
+        self.put_out.get_or_insert_with(|| self.sheet.lots.clone());
         for lot in &mut self.sheet.lots {
             lot.factor_a_per_kw = None;
             lot.factor_b_per_kw = None;
             lot.factor_aux_per_kw = None;
         }
         self
+    }
+
+    /// Whether the factors that lots state are set aside.
+    pub fn is_from_basis(&self) -> bool {
+        self.put_out.is_some()
     }
 
     /// The basis, where there is one.
@@ -126,15 +144,23 @@ impl Case {
     /// # Errors
     /// As [`evaluate`].
     pub fn factors(&self, lot: &str) -> Result<LotFactors, StudyError> {
-        lot_factors(&self.sheet, self.basis().as_ref(), lot)
+        let own = lot_factors(&self.sheet, self.basis().as_ref(), lot)?;
+        let published = self.put_out.iter().flatten().find(|put_out| put_out.lot == lot);
+        Ok(LotFactors { published: published.and_then(stated), ..own })
     }
 
-    /// Settles the measured units of one lot, or of all.
+    /// Settles the measured units of one lot, or of all, always by the lots as they were put out.
     ///
     /// # Errors
     /// As [`settle`].
     pub fn settle(&self, lot: Option<&str>) -> Result<SettleResult, StudyError> {
-        settle(&self.sheet, self.basis().as_ref(), lot)
+        match &self.put_out {
+            None => settle(&self.sheet, self.basis().as_ref(), lot),
+            Some(put_out) => {
+                let sheet = TenderSheet { lots: put_out.clone(), ..self.sheet.clone() };
+                settle(&sheet, self.basis().as_ref(), lot)
+            }
+        }
     }
 
     /// Says of each lot that has a ranked bid how sure its winner is.

@@ -36,6 +36,7 @@ pub fn result(case: &Case, result: &TenderResult) -> Letter {
         1,
         format!("Tender {}: owning cost per unit in {}", result.tender, result.currency),
     );
+    set_aside(&mut letter, case);
     for of in &result.lots {
         let about = lot::About::new(case, result, of);
         asks(&mut letter, &about);
@@ -54,6 +55,16 @@ pub fn result(case: &Case, result: &TenderResult) -> Letter {
     }
     packages(&mut letter, result);
     letter
+}
+
+/// Says that the factors which lots state are set aside, where they are.
+pub(super) fn set_aside(letter: &mut Letter, case: &Case) {
+    if case.is_from_basis() {
+        letter.warning(format!(
+            "compared as if no lot stated its factors: each comes from basis {}; what is settled goes by the stated ones",
+            case.basis_name().unwrap_or_default()
+        ));
+    }
 }
 
 /// The column of a figure, headed as everywhere.

@@ -4,7 +4,7 @@ use super::award::standing;
 use super::lot::About;
 use super::{
     asks, cautions, changes, cost_bars, doubts, excluded, factor_scale, factors, map, money,
-    near_tie, packages, ranking, risk, winner,
+    near_tie, packages, ranking, risk, set_aside, winner,
 };
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
@@ -26,6 +26,7 @@ pub fn report(
 ) -> Result<Letter, StudyError> {
     let mut letter = Letter::default();
     letter.heading(1, format!("Tender {}: bids compared by owning cost", result.tender));
+    set_aside(&mut letter, case);
     opening(&mut letter, case, result);
     for of in &result.lots {
         let about = About::new(case, result, of);
