@@ -90,6 +90,8 @@ pub struct Guaranteed {
     pub auxiliary_loss_w: f64,
     /// The lot's reference temperature.
     pub reference_temp_c: Option<f64>,
+    /// The temperature at which the bid quoted its load loss.
+    pub quoted_temp_c: Option<f64>,
     /// The lot's rule for losses above the guarantee.
     pub tolerance: &'static str,
     /// Winding metal, by which a test at another temperature is corrected.
@@ -289,6 +291,7 @@ impl<'a> Guarantee<'a> {
                 load_loss_w: losses.load_loss_w,
                 auxiliary_loss_w: losses.auxiliary_loss_w,
                 reference_temp_c: self.terms.lot.reference_temp_c,
+                quoted_temp_c: self.bid.reference_temp_c,
                 tolerance: self.terms.tolerance().word(),
                 winding_metal: self.bid.winding_metal.unwrap_or(WindingMetal::Copper).word(),
                 stray_share_pu: self.terms.stray_share_pu,

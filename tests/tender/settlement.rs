@@ -174,3 +174,32 @@ fn kw_in_a_column_of_watt_is_doubted() {
     assert!(in_kw.flags.contains(&"loss_scale"));
     assert_eq!(in_kw.rank, Some(1));
 }
+
+/// A unit that reads just what was guaranteed, at the temperature of the quotation, is never charged: the two forms of the
+/// stray share leave room, they do not take it. And the letter says that both are used.
+#[test]
+fn a_unit_at_its_guarantee_is_not_charged() {
+    let lot = Lot { reference_temp_c: Some(75.0), ..lot(400.0, 9000.0, 3000.0, 0.0) };
+    let bid = Bid { reference_temp_c: Some(85.0), ..bid("A", 900.0, 400.0, 4000.0) };
+    for share in [0.0, 0.1, 0.3, 0.5, 1.0] {
+        let basis = ironhum::engine::columns::Basis {
+            stray_share_pu: Some(share),
+            ..crate::sheets::basis("USD", 10, 5.0, 0.1)
+        };
+        let (assumptions, market) = crate::sheets::resolved(&basis);
+        let basis =
+            ironhum::study::tender::BasisForFactors { assumptions: &assumptions, market: &market };
+        let mut sheet = sheet("USD", lot.clone(), vec![bid.clone()]);
+        sheet.measured =
+            vec![Measured { test_temp_c: Some(85.0), ..measured("A", "1", 400.0, 4000.0) }];
+        let result = settle(&sheet, Some(&basis), None).expect("complete");
+        let excess = result.lots[0].units[0].load_excess_w;
+        assert!(excess <= 1e-9, "{share}: {excess}");
+        // s(1−s)(r − 1/r)² of the guarantee is all that they differ by.
+        let r: f64 = 320.0 / 310.0;
+        let room = 4000.0 * share * (1.0 - share) * (r - 1.0 / r).powi(2);
+        assert!(excess >= -1.1 * room - 1e-9, "{share}: {excess} {room}");
+        let letter = ironhum::study::settle::letter::settlement(&result).to_markdown();
+        assert!(letter.contains("a unit exactly at its guarantee is not charged"), "{letter}");
+    }
+}

@@ -87,6 +87,13 @@ fn correction(letter: &mut Letter, lot: &LotSettlement) {
             short(g.stray_share_pu),
             short(reference)
         ));
+        if let Some(quoted) = g.quoted_temp_c.filter(|quoted| *quoted != reference) {
+            letter.text(format!(
+                "The guarantee came from {} °C with that share of the loss there, the tests with that share of the loss at {} °C. Between the two a test never comes out above the guarantee by the correction alone: a unit exactly at its guarantee is not charged.",
+                short(quoted),
+                short(reference)
+            ));
+        }
     }
 }
 

@@ -18,6 +18,7 @@ const LABELS: &[&str] = &[
     "no_load_loss_w",
     "auxiliary_loss_w",
     "reference_temp_c",
+    "quoted_temp_c",
     "stray_share_pu",
     "test_load_loss_w",
     "test_temp_c",
