@@ -336,8 +336,8 @@ record! {
         serial: String, C::id().required(), "serial number";
         no_load_loss_w: f64, LOSS_W.required(), "measured no-load loss";
         load_loss_w: f64, LOSS_W.required(), "measured load loss at rated current";
-        auxiliary_loss_w: Option<f64>, LOSS_W.blank("no excess"), "measured auxiliary loss";
-        test_temp_c: Option<f64>, C::real(-50.0, 250.0).blank("already corrected"), "winding temperature of the test";
+        auxiliary_loss_w: Option<f64>, LOSS_W.blank("not measured: no excess"), "measured auxiliary loss";
+        test_temp_c: Option<f64>, C::real(-50.0, 250.0).blank("loss is at the lot's reference temperature"), "winding temperature at which the load loss was read; not that of the quotation";
         tested_on: Option<String>, C::date(), "date of the test";
     }
 }
