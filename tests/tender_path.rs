@@ -303,6 +303,8 @@ fn a_report_is_written_whole_and_the_same_again() {
     assert_eq!(program.done(&["report", "tender", TENDER, "-"]), report);
     for said in [
         "# Tender ol-2027-1: bids compared by owning cost\n",
+        "\n| L1 | 60 | least owning cost | O1-ALT | Oskavend | 25 954 | 1 557 221 | 0.00 |\n\
+         | L1 | 60 | recommended, second | O1 | Oskavend | 26 086 | 1 565 178 | 0.51 |\n",
         "\n### How the factors come about\n\n```text\n",
         "\n| 1 | O1-ALT | Oskavend | 13 980 | 190 | 3 120 | 8 664 | 0 | 25 954 | 0 | 27 259 | 1 557 221 |\n",
         "\n| M1 | Morruskel | 6 370 000 SEK | 110 300 | 85 | 25 000 | 10 400.0 | 107 553.6 | 1 500.0 | – |\n",
