@@ -214,6 +214,27 @@ fn a_settlement_reads_as_a_letter() {
     ] {
         assert!(flat.contains(said), "{said}\n{shown}");
     }
+    // 56 W of iron and 37 W of copper too much, and what is owed without that unit: 1 622.79 − 957.35.
+    for said in [
+        "- 0427-04: (A 15 218.65 × 56.0 W + B 2 840.61 × 37.0 W)/1000 = 957.35 EUR",
+        "If the units that may be rejected are rejected, the penalty of the others: 665.44 EUR.",
+    ] {
+        assert!(flat.contains(said), "{said}\n{shown}");
+    }
+    let all = program.done(&["settle", TENDER, "--working"]);
+    for said in [
+        "Owning cost of one unit as promised: lot L1, bid O1",
+        "Mean owning cost as delivered: lot L1, bid O1",
+        "How far the no-load loss of 0427-04 lies above",
+        "Penalty without the units that may be rejected: lot L1, bid O1",
+    ] {
+        assert!(all.contains(said), "{said}\n{all}");
+    }
+    let one = program.done(&["settle", TENDER, "--working", "owning_cost_promised"]);
+    assert!(one.starts_with("How owning_cost_promised comes about:"), "{one}");
+    let (code, _, error) = text(&program.run(&["settle", TENDER, "--bid", "V1"]));
+    assert_eq!(code, Some(2));
+    assert!(error.contains("bid V1 is not in the measured units of tender ol-2027-1"), "{error}");
     let one = program.done(&["settle", TENDER, "--serial", "0427-08"]);
     assert_eq!(lines(&one, "Unit ").len(), 1, "{one}");
     assert!(
@@ -388,4 +409,26 @@ fn published_factors_keep_their_working() {
         part(&program.done(&["report", "tender", TENDER, "-", "--lot", "L1"]))
     );
     assert!(part(&report).is_some());
+}
+
+/// The letter to one supplier: in its currency too, without a figure of another, blanks said.
+#[test]
+fn a_supplier_is_told_in_its_own_currency() {
+    let program = demo();
+    let measured = "tender,lot,bid,serial,no_load_loss_w,load_loss_w,test_temp_c\n\
+                    ol-2027-1,L2,M1,m-1,11000,110000,85\nol-2027-1,L2,M1,m-2,10600,109000,85\n";
+    program.import("measured", &program.write("measured.csv", measured), &[]);
+    let shown = program.done(&["settle", TENDER, "--lot", "L2", "--bid", "M1"]);
+    let flat = shown.split_whitespace().collect::<Vec<_>>().join(" ");
+    // Mean 400 W of iron too much; 15000 EUR/kW, two units, 0.0885 EUR for a SEK.
+    for said in [
+        "- each of 2 units, by the mean: (A 15 000.00 × 400.0 W)/1000 = 6 000.00 EUR",
+        "Penalty: 12 000.00 EUR (135 593.22 SEK at the rate stored with the tender, 1 SEK = 0.0885 EUR).",
+        "not measured 6 000.00 67 796.61",
+        "Auxiliary losses of some units were not measured: no excess is counted for them.",
+        "The guarantee came from 85 °C",
+    ] {
+        assert!(flat.contains(said), "{said}\n{shown}");
+    }
+    assert!(!shown.contains("O1") && !shown.contains("K1") && !shown.contains("J2"), "{shown}");
 }

@@ -375,9 +375,12 @@ pub struct Settle {
     /// Only this lot
     #[arg(long, value_name = "LOT")]
     pub lot: Option<String>,
-    /// Show how each penalty comes about
-    #[arg(long)]
-    pub working: bool,
+    /// Only this bid: the letter to its supplier
+    #[arg(long, value_name = "BID")]
+    pub bid: Option<String>,
+    /// Show how each figure comes about, or the one that is named
+    #[arg(long, value_name = "FIGURE", num_args = 0..=1, default_missing_value = "")]
+    pub working: Option<String>,
     /// Show the working of this unit only
     #[arg(long, value_name = "SERIAL")]
     pub serial: Option<String>,

@@ -140,7 +140,8 @@ fn promise(letter: &mut Letter, lot: &LotSettlement, currency: &str) {
 fn units(letter: &mut Letter, lot: &LotSettlement, currency: &str) {
     let at =
         lot.guaranteed.reference_temp_c.map_or(String::new(), |c| format!(" at {} °C", short(c)));
-    let with_aux = lot.units.iter().any(|unit| unit.auxiliary_loss_w.is_some());
+    let with_aux = lot.guaranteed.auxiliary_loss_w > 0.0
+        || lot.units.iter().any(|unit| unit.auxiliary_loss_w.is_some());
     let mut columns = vec![
         Column::words("serial"),
         Column::words("tested on"),
@@ -155,6 +156,7 @@ fn units(letter: &mut Letter, lot: &LotSettlement, currency: &str) {
         columns.push(Column::figures("aux excess", "W"));
     }
     columns.push(Column::figures("penalty", currency));
+    columns.extend(lot.bid_currency.as_ref().map(|code| Column::figures("penalty", code)));
     columns.push(Column::words("remark"));
     let blank = || "–".to_owned();
     let row = |unit: &UnitSettlement| {
@@ -169,13 +171,50 @@ fn units(letter: &mut Letter, lot: &LotSettlement, currency: &str) {
             group(unit.load_excess_w, 1),
         ];
         if with_aux {
-            cells.push(unit.auxiliary_excess_w.map_or_else(blank, |w| group(w, 1)));
+            let not = || "not measured".to_owned();
+            cells.push(unit.auxiliary_excess_w.map_or_else(not, |w| group(w, 1)));
         }
         cells.push(group(unit.penalty, 2));
+        cells.extend(unit.penalty_in_bid_currency.map(|amount| group(amount, 2)));
         cells.push(if unit.beyond_tolerance { "beyond tolerance" } else { "" }.to_owned());
         cells
     };
     letter.table(columns, lot.units.iter().map(row).collect());
+}
+
+/// How each penalty comes about, in a line.
+fn comes_about(lot: &LotSettlement, currency: &str) -> Vec<String> {
+    let line = |of: &str, excesses: [f64; 3], owed: f64| {
+        let factors = [
+            ("A", lot.factor_a_per_kw),
+            ("B", lot.factor_b_per_kw),
+            ("A aux", lot.factor_aux_per_kw),
+        ];
+        let parts: Vec<String> = factors
+            .iter()
+            .zip(excesses)
+            .filter(|(_, excess)| *excess > 0.0)
+            .map(|((name, factor), w)| format!("{name} {} × {} W", group(*factor, 2), group(w, 1)))
+            .collect();
+        format!("{of}: ({})/1000 = {} {currency}", parts.join(" + "), group(owed, 2))
+    };
+    let owes = |owed: f64| owed > 0.0;
+    match &lot.mean_excess {
+        Some(mean) => {
+            let excesses = [mean.no_load_excess_w, mean.load_excess_w, mean.auxiliary_excess_w];
+            let owed = lot.units.first().map_or(0.0, |unit| unit.penalty);
+            let of = format!("each of {} units, by the mean", lot.units.len());
+            Some(line(&of, excesses, owed)).filter(|_| owes(owed)).into_iter().collect()
+        }
+        None => {
+            let of_unit = |unit: &UnitSettlement| {
+                let aux = unit.auxiliary_excess_w.unwrap_or(0.0);
+                let excesses = [unit.no_load_excess_w, unit.load_excess_w, aux];
+                line(&unit.serial, excesses, unit.penalty)
+            };
+            lot.units.iter().filter(|unit| owes(unit.penalty)).map(of_unit).collect()
+        }
+    }
 }
 
 fn outcome(letter: &mut Letter, lot: &LotSettlement, currency: &str) {
@@ -187,7 +226,28 @@ fn outcome(letter: &mut Letter, lot: &LotSettlement, currency: &str) {
             group(mean.auxiliary_excess_w, 1)
         ));
     }
-    letter.text(format!("Penalty: {} {currency}.", group(lot.penalty, 2)));
+    letter.points(comes_about(lot, currency));
+    let foreign = match (&lot.bid_currency, lot.bid_rate, lot.penalty_in_bid_currency) {
+        (Some(code), Some(rate), Some(amount)) => format!(
+            " ({} {code} at the rate stored with the tender, 1 {code} = {rate} {currency})",
+            group(amount, 2)
+        ),
+        _ => String::new(),
+    };
+    letter.text(format!("Penalty: {} {currency}{foreign}.", group(lot.penalty, 2)));
+    if let Some(rest) = lot.penalty_without_rejectable {
+        letter.text(format!(
+            "If the units that may be rejected are rejected, the penalty of the others: {} {currency}.",
+            group(rest, 2)
+        ));
+    }
+    if lot.guaranteed.auxiliary_loss_w > 0.0
+        && lot.units.iter().any(|unit| unit.auxiliary_loss_w.is_none())
+    {
+        letter.text(
+            "Auxiliary losses of some units were not measured: no excess is counted for them.",
+        );
+    }
     letter.text(format!(
         "Owning cost of one unit: promised {}, delivered {} {currency} (mean of the measured units, before the penalty).",
         group(lot.owning_cost_promised, 0),
