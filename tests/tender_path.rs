@@ -95,7 +95,7 @@ fn the_text_says_who_wins_elsewhere_and_what_must_move() {
     assert_eq!(lot["near_tie_order"], serde_json::json!(["O1", "O1-ALT"]));
     let flat = shown.split_whitespace().collect::<Vec<_>>().join(" ");
     for said in [
-        "By owning cost: O1-ALT, O1. By price with adders, which leads here: O1, O1-ALT.",
+        "By owning cost: O1-ALT, O1. By price with adders, of which the first is recommended: O1, O1-ALT.",
         "Out: P1 misses max_no_load_loss_w (410 W, at most 387 W).",
         "Out: J2 misses max_sound_db (79 dB, at most 75 dB).",
         "K1: load_loss_from_total:",
@@ -259,7 +259,7 @@ fn one_bidder_is_answered() {
         (shown.split_whitespace().collect::<Vec<_>>().join(" "), shown)
     };
     let (flat, shown) = answer("V1");
-    let said = "O1-ALT costs least to own: 25 953.69 EUR a unit, 939.07 EUR less than V1 (3.62 %). Any one of \
+    let said = "O1-ALT has the least owning cost: 25 953.69 EUR a unit, 939.07 EUR less than V1 (3.62 %). Any one of \
                 these would have made that up: a price lower by 939.07 EUR; a no-load loss lower by 61.7 W; \
                 a load loss lower by 330.6 W.";
     assert!(flat.contains(said), "{shown}");
@@ -284,6 +284,11 @@ fn one_bidder_is_answered() {
     assert!(shown.contains("= 6370000·0.0885"), "{shown}");
     assert!(shown.contains("107553.6"), "{shown}");
     assert!(!shown.contains("would have made that up"), "{shown}");
+    let (flat, shown) = answer("O1");
+    assert!(
+        flat.contains("It is the recommended bid. Near tie, within 1 % of the least owning cost."),
+        "{shown}"
+    );
     let (flat, shown) = answer("P1");
     assert!(
         flat.contains("It is not ranked: it misses max_no_load_loss_w (410 W, at most 387 W)."),

@@ -352,7 +352,7 @@ record! {
         factor_aux_per_kw: f64, C::real(-1e12, 1e12).required(), "value of a kW of auxiliary loss at the award";
         stray_share_pu: f64, SHARE_PU.required(), "stray part of a load loss whose split is not known, at the award";
         owning_cost: f64, C::real(-1e15, 1e15).required(), "owning cost of one unit at the award";
-        recommended: Option<String>, C::id(), "the bid that led at the award";
+        recommended: Option<String>, C::id(), "the bid that was recommended at the award";
         basis: Option<String>, C::id(), "the basis of the comparison";
         program: String, C::id().required(), "version of the program that compared";
         awarded_at: String, C::id().required(), "when (UTC)";

@@ -146,14 +146,14 @@ fn find<'a>(
     })
 }
 
-fn needs_reason(chosen: &BidResult, leads: Option<&str>) -> String {
+fn needs_reason(chosen: &BidResult, recommended: Option<&str>) -> String {
     let misses = match chosen.excluded.as_slice() {
         [] => String::new(),
         keys => format!(" and misses {}", keys.join(", ")),
     };
-    match leads {
-        Some(leads) => {
-            format!("is not recommended ({leads} is){misses}; to award it say why: --why TEXT")
+    match recommended {
+        Some(other) => {
+            format!("is not recommended ({other} is){misses}; to award it say why: --why TEXT")
         }
         None => format!("is not ranked{misses}; to award it say why: --why TEXT"),
     }

@@ -44,7 +44,7 @@ pub struct LotResult {
     pub bids: Vec<BidResult>,
     /// The bid of least owning cost.
     pub least_owning_cost: Option<String>,
-    /// The bid that leads: of the near-tied ones that of lowest price with adders.
+    /// The recommended bid: of the near-tied ones that of lowest price with adders.
     pub recommended: Option<String>,
     /// How far the second lies above the first in percent.
     pub margin_pct: Option<f64>,
@@ -131,7 +131,7 @@ pub struct Awarded {
     pub awarded_at: String,
     /// Why, in their own words.
     pub why: Option<String>,
-    /// The bid that led at the award.
+    /// The bid that was recommended at the award.
     pub recommended: Option<String>,
     /// The basis of the comparison.
     pub basis: Option<String>,

@@ -2,7 +2,7 @@
 
 use super::award::by_its_terms;
 use super::lot::{About, excluded_because};
-use super::{asks, cautions, factor_scale, factors, flag_at};
+use super::{asks, cautions, factor_scale, factors, flag_at, near_tie};
 use crate::engine::working::Step;
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
@@ -76,6 +76,10 @@ fn standing(letter: &mut Letter, about: &About, name: &str) {
             letter.text(format!("It ranks {rank} of {} by owning cost.", about.ranked().count()));
         }
     }
+    if result.recommended.as_deref() == Some(name) {
+        letter.text("It is the recommended bid.");
+    }
+    near_tie(letter, about);
     if let Some(lacked) = shortfall(result, bid) {
         letter.text(lacks(&lacked, name, currency));
     }
@@ -84,7 +88,7 @@ fn standing(letter: &mut Letter, about: &About, name: &str) {
     }
 }
 
-/// What the bid lacked against the cheapest to own.
+/// What the bid lacked against that of least owning cost.
 fn lacks(lacked: &Shortfall, name: &str, currency: &str) -> String {
     let mut ways = Vec::new();
     if let Some(less) = lacked.price {
@@ -98,7 +102,7 @@ fn lacks(lacked: &Shortfall, name: &str, currency: &str) -> String {
     }
     let percent = lacked.gap_pct.map_or(String::new(), |pct| format!(" ({} %)", group(pct, 2)));
     let first = format!(
-        "{} costs least to own: {} {currency} a unit, {} {currency} less than {name}{percent}.",
+        "{} has the least owning cost: {} {currency} a unit, {} {currency} less than {name}{percent}.",
         lacked.least,
         group(lacked.least_owning_cost, 2),
         group(lacked.gap, 2)

@@ -143,9 +143,11 @@ pub(in crate::study) fn ranking(letter: &mut Letter, about: &About) {
 pub(in crate::study) fn winner(letter: &mut Letter, about: &About) {
     let result = about.result;
     let mut text = match (&result.least_owning_cost, &result.recommended) {
-        (Some(least), Some(leads)) if least == leads => format!("{least} costs least to own."),
+        (Some(least), Some(leads)) if least == leads => {
+            format!("{least} has the least owning cost and is recommended.")
+        }
         (Some(least), Some(leads)) => format!(
-            "{least} costs least to own; {leads} leads inside the near-tie band, its price with adders is lowest."
+            "{least} has the least owning cost; {leads} is recommended: inside the near-tie band its price with adders is lowest."
         ),
         _ if result.bids.is_empty() => {
             format!("No bid for lot {} yet; import them: ironhum import bids FILE.", result.lot)
@@ -153,7 +155,10 @@ pub(in crate::study) fn winner(letter: &mut Letter, about: &About) {
         _ => "No bid can be ranked: each one misses something.".to_owned(),
     };
     if let Some(margin) = result.margin_pct {
-        text.push_str(&format!(" The second costs {} % more to own.", group(margin, 2)));
+        text.push_str(&format!(
+            " The second lies {} % above the least owning cost.",
+            group(margin, 2)
+        ));
     }
     letter.text(text);
 }
@@ -166,7 +171,7 @@ pub(in crate::study) fn near_tie(letter: &mut Letter, about: &About) {
     }
     let tied = about.ranked().filter(|bid| bid.near_tie).map(|bid| bid.bid.as_str());
     letter.text(format!(
-        "Near tie, within {} % of the least owning cost. By owning cost: {}. By price with adders, which leads here: {}.",
+        "Near tie, within {} % of the least owning cost. By owning cost: {}. By price with adders, of which the first is recommended: {}.",
         short(result.near_tie_pct),
         tied.collect::<Vec<_>>().join(", "),
         result.near_tie_order.join(", ")
