@@ -11,6 +11,15 @@ use crate::engine::columns::{Basis, BasisSheet, Column, Kind, Lot, Value, neares
 const OF_LOT: &[&str] =
     &["peak_pu", "loss_factor_pu", "factor_a_per_kw", "factor_b_per_kw", "factor_aux_per_kw"];
 
+/// The names that a range may have: every numeric column of a basis, and of a lot what its factors depend on.
+pub fn may_have_ranges() -> impl Iterator<Item = &'static str> {
+    Basis::COLUMNS.iter().filter(numeric).map(|column| column.name).chain(OF_LOT.iter().copied())
+}
+
+fn numeric(column: &&Column) -> bool {
+    matches!(column.kind, Kind::Real(..) | Kind::Above(..) | Kind::Integer(..))
+}
+
 /// The record that holds an input, and its place among the columns.
 #[derive(Clone, Copy, Debug, PartialEq)]
 enum Place {
@@ -136,9 +145,6 @@ impl Inputs {
 }
 
 fn find(name: &str) -> Result<(&'static Column, Place), Refusal> {
-    let numeric = |column: &&Column| {
-        matches!(column.kind, Kind::Real(..) | Kind::Above(..) | Kind::Integer(..))
-    };
     let of_basis = Basis::COLUMNS.iter().position(|column| column.name == name);
     let of_lot =
         Lot::COLUMNS.iter().position(|column| column.name == name && OF_LOT.contains(&name));
@@ -148,8 +154,7 @@ fn find(name: &str) -> Result<(&'static Column, Place), Refusal> {
         (None, None) => None,
     };
     found.filter(|(column, _)| numeric(column)).ok_or_else(|| {
-        let known = Basis::COLUMNS.iter().filter(numeric).map(|column| column.name);
-        let near = nearest(name, known.chain(OF_LOT.iter().copied()));
+        let near = nearest(name, may_have_ranges());
         let hint = near.map(|near| format!("; did you mean {near}?")).unwrap_or_default();
         Refusal::new("range", name, format!("is not a numeric input of a basis or a lot{hint}"))
     })
