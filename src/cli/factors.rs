@@ -29,7 +29,9 @@ pub(super) fn factors(
         match printer.format {
             Format::Json => printer.json(&result)?,
             Format::Csv => printer.csv(KEYS, std::iter::once(&result))?,
-            Format::Text => printer.letter(&letter::lot_factors(&result, options.working))?,
+            Format::Text => {
+                printer.letter(&letter::lot_factors(&case, &result, options.working))?;
+            }
         }
         return Ok(Exit::Done);
     }
@@ -79,20 +81,21 @@ pub(super) fn factors(
             }
             if options.working {
                 printer.line("")?;
-                working(printer, &result.working, 0)?;
+                working(printer, &result.working, 0, &result.currency)?;
             }
         }
     }
     Ok(Exit::Done)
 }
 
-/// A working as indented text: parts under the figure that they give.
+/// A working as indented text: parts under the figure that they give, money in a currency.
 pub(super) fn working(
     printer: &mut Printer,
     steps: &[StepRow],
     depth: usize,
+    currency: &str,
 ) -> Result<(), Failure> {
-    for line in StepRow::lines(steps, depth) {
+    for line in StepRow::lines_in(steps, depth, currency) {
         printer.line(line)?;
     }
     Ok(())

@@ -76,7 +76,8 @@ pub(super) fn settle(
             let settled = Settled(&case);
             if let Some(figure) = options.working.as_ref().filter(|figure| !figure.is_empty()) {
                 printer.line(format!("How {figure} comes about:"))?;
-                return write_working(printer, &settled.working(figure)?, 1).map(|()| Exit::Done);
+                return write_working(printer, &settled.working(figure)?, 1, &result.currency)
+                    .map(|()| Exit::Done);
             }
             printer.letter(&letter::settlement(&result))?;
             let only = options.serial.as_deref();
@@ -88,7 +89,7 @@ pub(super) fn settle(
                 for (figure, called) in to_open(lot, n, only) {
                     printer.line("")?;
                     printer.line(called)?;
-                    write_working(printer, &settled.working(&figure)?, 0)?;
+                    write_working(printer, &settled.working(&figure)?, 0, &result.currency)?;
                 }
             }
         }

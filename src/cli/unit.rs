@@ -54,7 +54,7 @@ pub(super) fn unit(args: &Args, options: &Unit, printer: &mut Printer) -> Result
             for figure in &dossier.working {
                 printer.line("")?;
                 printer.line(format!("How {} comes about:", figure.figure))?;
-                working(printer, &figure.steps, 1)?;
+                working(printer, &figure.steps, 1, &dossier.currency)?;
             }
         }
     }

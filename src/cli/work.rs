@@ -38,7 +38,7 @@ fn run(printer: &mut Printer, calc: &str, inputs: &[String]) -> Result<Exit, Fai
                 printer.line(format!("{name:<28} {value}"))?;
             }
             printer.line("")?;
-            working(printer, &result.steps, 0)?;
+            working(printer, &result.steps, 0, "money")?;
             printer.line("")?;
             printer.line(format!("Source: {}", result.source))?;
         }

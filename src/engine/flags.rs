@@ -29,8 +29,8 @@ flags! {
     11, CARBON_SERIES, "carbon_series", "both the basis and the price series give CO2 per kWh; the series counts";
     12, LOSS_ESTIMATED, "loss_estimated", "a loss is estimated from the fleet's known units";
     13, SPLIT_UNKNOWN, "split_unknown", "the load loss is brought to another temperature and its split into I²R and stray is not known: stray_share_pu of the basis is used; ask the maker for the loss at the reference temperature, and give stray_share_pu a range to see whether it decides";
-    14, NO_REFERENCE_TEMP, "no_reference_temp", "no reference temperature: the load loss is compared as quoted";
-    15, LIMIT_UNKNOWN, "limit_unknown", "a value that the lot limits is blank in the bid; it passes";
+    14, NO_REFERENCE_TEMP, "no_reference_temp", "no reference temperature of the bid or of the lot: the load loss is compared as quoted; ask for it and import the bid (or the lot) with reference_temp_c";
+    15, LIMIT_UNKNOWN, "limit_unknown", "a value that the lot limits is blank in the bid; it passes: ask the bidder and import the bid again";
     16, LAW_RELAXED, "law_relaxed", "no offer meets the law in a year in which the unit may fail; a forced purchase passes it over";
     17, VERIFY_LAW, "verify_law", "the legal table is marked as remembered: verify it in the official text";
     18, FACTOR_SCALE, "factor_scale", "no-load and load loss are capitalised at under 1 % of the price of every bid: check that the factors are per kW, not per W";

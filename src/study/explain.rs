@@ -64,16 +64,27 @@ impl StepRow {
     /// A working as lines, `depth` steps in: parts indented below the figure that they give. Of three or
     /// more years by one formula the first is written in full, the others in a line each.
     pub fn lines(rows: &[Self], depth: usize) -> Vec<String> {
+        Self::lines_in(rows, depth, "money")
+    }
+
+    /// The same with the name of the currency that its money is in.
+    pub fn lines_in(rows: &[Self], depth: usize, currency: &str) -> Vec<String> {
+        let unit = |row: &Self| match row.unit.strip_prefix("money") {
+            Some("") => currency.to_owned(),
+            Some(per) if per.starts_with('/') => format!("{currency}{per}"),
+            _ => row.unit.to_owned(),
+        };
         let indent = "    ".repeat(depth);
         let mut lines = Vec::new();
         for (n, row) in rows.iter().enumerate() {
             if Self::goes_on(rows, n) {
-                let (of, value) = (&row.of, row.value);
-                lines.push(format!("{indent}{of}: {} = {value} {}", row.substituted, row.unit));
+                let (of, value) = (&row.of, readable(row.value));
+                lines.push(format!("{indent}{of}: {} = {value} {}", row.substituted, unit(row)));
                 continue;
             }
             if let Some(symbol) = row.formula.strip_suffix(" = as stated") {
-                lines.push(format!("{indent}{symbol} = {} {}   {}", row.value, row.unit, row.name));
+                let value = readable(row.value);
+                lines.push(format!("{indent}{symbol} = {value} {}   {}", unit(row), row.name));
                 continue;
             }
             lines.push(format!("{indent}{}", row.name));
@@ -82,11 +93,17 @@ impl StepRow {
             if !row.formula.ends_with(&row.substituted) {
                 lines.push(format!("{indent}  = {}", row.substituted));
             }
-            lines.push(format!("{indent}  = {} {}   [{}]", row.value, row.unit, row.source));
-            lines.extend(Self::lines(&row.steps, depth + 1));
+            let value = readable(row.value);
+            lines.push(format!("{indent}  = {value} {}   [{}]", unit(row), row.source));
+            lines.extend(Self::lines_in(&row.steps, depth + 1, currency));
         }
         lines
     }
+}
+
+/// A value as text shows it: twelve significant digits, which leaves out the noise of the last ones. JSON is exact.
+fn readable(value: f64) -> f64 {
+    format!("{value:.11e}").parse().unwrap_or(value)
 }
 
 /// How a figure comes about; the last step is the figure.
@@ -221,4 +238,37 @@ pub(super) fn nth<'a, T>(list: &'a [T], n: &str) -> Result<(&'a T, usize), Refus
     let place = n.parse().ok();
     let item = place.and_then(|n: usize| Some((list.get(n)?, n)));
     item.ok_or_else(|| Refusal::new("figure", n, "is no place in the result"))
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// Text leaves out the noise of the last digits and names the currency; JSON is the number itself.
+    #[test]
+    fn text_is_readable_and_json_is_exact() {
+        let noisy = 36_552.659_999_999_996;
+        let row = |unit| StepRow {
+            name: "owning cost".to_owned(),
+            formula: "TOC = a + b".to_owned(),
+            substituted: "1 + 2".to_owned(),
+            value: noisy,
+            unit,
+            source: "definition",
+            of: String::new(),
+            steps: Vec::new(),
+        };
+        let shown = |unit| StepRow::lines_in(&[row(unit)], 0, "EUR").join("\n");
+        assert!(
+            shown("money").ends_with("\n  = 36552.66 EUR   [definition]"),
+            "{}",
+            shown("money")
+        );
+        assert!(shown("money/kW").contains("= 36552.66 EUR/kW "));
+        assert!(shown("money of the bid").contains("= 36552.66 money of the bid "));
+        let json = serde_json::to_string(&row("money")).expect("plain data");
+        assert!(json.contains("36552.659999999996") && json.contains("\"money\""), "{json}");
+        assert_eq!([readable(0.0), readable(1.0 / 3.0)], [0.0, 0.333_333_333_333]);
+        assert!(readable(f64::MAX).is_finite());
+    }
 }

@@ -320,6 +320,7 @@ impl<'a> Assessed<'a> {
             near_tie,
             excluded: self.found.misses.clone(),
             flags: self.on_terms.flags.with(self.found.flags).keys(),
+            limits_unknown: self.found.unknown.clone(),
             losses: self.on_terms.losses,
         }
     }

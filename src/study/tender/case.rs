@@ -126,6 +126,13 @@ impl Case {
         self.basis.as_ref().map(|(desk, _)| desk.sheet.basis.name.as_str())
     }
 
+    /// What the money in the working of factors is called: the currency, where basis and tender share it.
+    pub fn currency_of_factors(&self) -> &str {
+        let own = self.sheet.tender.currency.as_str();
+        let same = |(_, context): &(Desk, Context)| context.assumptions.currency == own;
+        if self.basis.as_ref().is_none_or(same) { own } else { "money" }
+    }
+
     /// Whether the basis says how far any input may lie.
     pub fn has_ranges(&self) -> bool {
         self.basis.as_ref().is_some_and(|(desk, _)| !desk.sheet.ranges.is_empty())

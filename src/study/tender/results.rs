@@ -113,6 +113,9 @@ pub struct BidResult {
     pub excluded: Vec<&'static str>,
     /// What is doubtful about it.
     pub flags: Vec<&'static str>,
+    /// Limits that were not held against it, because its value is blank.
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    pub limits_unknown: Vec<&'static str>,
     /// Its losses at its rating and the lot's reference temperature: what the figures are computed from.
     #[serde(skip)]
     pub losses: Losses,

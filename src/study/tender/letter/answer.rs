@@ -1,7 +1,7 @@
 //! The answer to one bidder: where its bid stands, what it lacked, and how its figures come about.
 
 use super::award::by_its_terms;
-use super::lot::{About, excluded_because};
+use super::lot::{About, doubted, excluded_because};
 use super::{asks, cautions, factor_scale, factors, flag_at, near_tie};
 use crate::engine::working::Step;
 use crate::exchange::Letter;
@@ -33,13 +33,14 @@ pub fn answer(case: &Case, result: &TenderResult, bid: &str) -> Result<Letter, S
             None => working(sheet, basis.as_ref(), &of.lot, bid)?,
         };
         letter.heading(3, "How its owning cost comes about");
-        let rows = |steps: &[Step]| StepRow::lines(&StepRow::tree(steps), 0);
+        let rows = |steps: &[Step]| StepRow::lines_in(&StepRow::tree(steps), 0, &result.currency);
         letter.lines([rows(&w.on_terms), rows(&w.owning_cost)].concat());
         letter.heading(3, "How the factors come about");
         if about.result.as_awarded {
             letter.text("They are kept with the award as they were then.");
         } else {
-            letter.lines(rows(&w.factors));
+            let money = case.currency_of_factors();
+            letter.lines(StepRow::lines_in(&StepRow::tree(&w.factors), 0, money));
         }
     }
     cautions(&mut letter);
@@ -84,7 +85,7 @@ fn standing(letter: &mut Letter, about: &About, name: &str) {
         letter.text(lacks(&lacked, name, currency));
     }
     for key in &bid.flags {
-        letter.warning(flag_at(key, result.stray_share_pu));
+        letter.warning(format!("{}: {}", doubted(bid, key), flag_at(key, result.stray_share_pu)));
     }
 }
 

@@ -6,10 +6,10 @@ use crate::exchange::Letter;
 use crate::exchange::letter::Column;
 use crate::study::explain::StepRow;
 use crate::study::figures::{group, short};
-use crate::study::tender::{InCurrency, LegalLimit, LotFactors};
+use crate::study::tender::{Case, InCurrency, LegalLimit, LotFactors};
 
 /// The published factors of a lot, with their working where it is wanted.
-pub fn lot_factors(factors: &LotFactors, working: bool) -> Letter {
+pub fn lot_factors(case: &Case, factors: &LotFactors, working: bool) -> Letter {
     let mut letter = Letter::default();
     letter.heading(1, format!("Loss factors of tender {}, lot {}", factors.tender, factors.lot));
     let again = format!(
@@ -75,7 +75,7 @@ pub fn lot_factors(factors: &LotFactors, working: bool) -> Letter {
     }
     if working {
         letter.heading(2, "Working");
-        letter.lines(StepRow::lines(&factors.working, 0));
+        letter.lines(StepRow::lines_in(&factors.working, 0, case.currency_of_factors()));
     }
     letter
 }

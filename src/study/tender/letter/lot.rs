@@ -329,12 +329,12 @@ pub(in crate::study) fn doubts(letter: &mut Letter, about: &About) {
     for key in about.result.flags.iter().filter(|key| !scale.contains(key)) {
         letter.warning(flag(key));
     }
-    let mut said: Vec<(&str, Vec<&str>)> = Vec::new();
+    let mut said: Vec<(&str, Vec<String>)> = Vec::new();
     for bid in &about.result.bids {
         for key in &bid.flags {
             match said.iter_mut().find(|(known, _)| known == key) {
-                Some((_, bids)) => bids.push(&bid.bid),
-                None => said.push((key, vec![&bid.bid])),
+                Some((_, bids)) => bids.push(doubted(bid, key)),
+                None => said.push((key, vec![doubted(bid, key)])),
             }
         }
     }
@@ -342,6 +342,14 @@ pub(in crate::study) fn doubts(letter: &mut Letter, about: &About) {
         let said = flag_at(key, about.result.stray_share_pu);
         letter.warning(format!("{}: {said}", bids.join(", ")));
     }
+}
+
+/// The name of a bid of which something is doubtful, with the limits where those could not be held against it.
+pub(super) fn doubted(bid: &BidResult, key: &str) -> String {
+    if Flags::LIMIT_UNKNOWN.keys().contains(&key) {
+        return format!("{} ({})", bid.bid, bid.limits_unknown.join(", "));
+    }
+    bid.bid.clone()
 }
 
 /// The unit of an input of a basis or a lot, by the facts of its column.
