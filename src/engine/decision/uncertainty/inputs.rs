@@ -77,7 +77,8 @@ impl Inputs {
                 return Err(Refusal::new("range", &range.quantity, why));
             }
             let base = match place {
-                Place::Basis(at) => number(&basis[at]),
+                // A blank counts as what the column says that it means.
+                Place::Basis(at) => number(&basis[at]).or_else(|| column.blank.parse().ok()),
                 Place::Lot(at) => number(&lot[at]),
             };
             list.push(Input { column, spread: Spread::of(range, base)?, place });
@@ -223,6 +224,16 @@ mod tests {
         assert!(!drawn.moved);
         let one = inputs.with_one(&inputs.inputs()[1], 0.9).expect("inside");
         assert_eq!((one.basis.discount_rate_pct, one.lot.peak_pu), (6.0, Some(0.9)));
+    }
+
+    #[test]
+    fn a_blank_input_lies_about_its_default() {
+        let ranges = vec![range("stray_share_pu", 0.0, 0.3)];
+        let triangular =
+            ranges.into_iter().map(|range| BasisRange { distribution: None, ..range }).collect();
+        let inputs = inputs(triangular).expect("blank is 0");
+        let spread = Spread::Triangular { low: 0.0, mode: 0.0, high: 0.3 };
+        assert_eq!(inputs.inputs()[0].spread, spread);
     }
 
     #[test]
