@@ -75,9 +75,10 @@ pub(super) fn settle(
         Format::Text => {
             let settled = Settled(&case);
             if let Some(figure) = options.working.as_ref().filter(|figure| !figure.is_empty()) {
+                let steps = settled.working(figure)?;
                 printer.line(format!("How {figure} comes about:"))?;
-                return write_working(printer, &settled.working(figure)?, 1, &result.currency)
-                    .map(|()| Exit::Done);
+                write_working(printer, &steps, 1, &result.currency)?;
+                return Ok(Exit::Done);
             }
             printer.letter(&letter::settlement(&result))?;
             let only = options.serial.as_deref();

@@ -198,23 +198,18 @@ fn comes_about(lot: &LotSettlement, currency: &str) -> Vec<String> {
             .collect();
         format!("{of}: ({})/1000 = {} {currency}", parts.join(" + "), group(owed, 2))
     };
-    let owes = |owed: f64| owed > 0.0;
-    match &lot.mean_excess {
-        Some(mean) => {
-            let excesses = [mean.no_load_excess_w, mean.load_excess_w, mean.auxiliary_excess_w];
-            let owed = lot.units.first().map_or(0.0, |unit| unit.penalty);
-            let of = format!("each of {} units, by the mean", lot.units.len());
-            Some(line(&of, excesses, owed)).filter(|_| owes(owed)).into_iter().collect()
-        }
-        None => {
-            let of_unit = |unit: &UnitSettlement| {
-                let aux = unit.auxiliary_excess_w.unwrap_or(0.0);
-                let excesses = [unit.no_load_excess_w, unit.load_excess_w, aux];
-                line(&unit.serial, excesses, unit.penalty)
-            };
-            lot.units.iter().filter(|unit| owes(unit.penalty)).map(of_unit).collect()
-        }
+    if let Some(mean) = &lot.mean_excess {
+        let excesses = [mean.no_load_excess_w, mean.load_excess_w, mean.auxiliary_excess_w];
+        let owed = lot.units.first().map_or(0.0, |unit| unit.penalty);
+        let of = format!("each of {} units, by the mean", lot.units.len());
+        return if owed > 0.0 { vec![line(&of, excesses, owed)] } else { Vec::new() };
     }
+    let of_unit = |unit: &UnitSettlement| {
+        let aux = unit.auxiliary_excess_w.unwrap_or(0.0);
+        let excesses = [unit.no_load_excess_w, unit.load_excess_w, aux];
+        line(&unit.serial, excesses, unit.penalty)
+    };
+    lot.units.iter().filter(|unit| unit.penalty > 0.0).map(of_unit).collect()
 }
 
 fn outcome(letter: &mut Letter, lot: &LotSettlement, currency: &str) {

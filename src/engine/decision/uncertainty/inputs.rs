@@ -13,10 +13,14 @@ const OF_LOT: &[&str] =
 
 /// The names that a range may have: every numeric column of a basis, and of a lot what its factors depend on.
 pub fn may_have_ranges() -> impl Iterator<Item = &'static str> {
-    Basis::COLUMNS.iter().filter(numeric).map(|column| column.name).chain(OF_LOT.iter().copied())
+    Basis::COLUMNS
+        .iter()
+        .filter(|c| is_numeric(c))
+        .map(|column| column.name)
+        .chain(OF_LOT.iter().copied())
 }
 
-fn numeric(column: &&Column) -> bool {
+fn is_numeric(column: &Column) -> bool {
     matches!(column.kind, Kind::Real(..) | Kind::Above(..) | Kind::Integer(..))
 }
 
@@ -154,7 +158,7 @@ fn find(name: &str) -> Result<(&'static Column, Place), Refusal> {
         (None, Some(at)) => Some((&Lot::COLUMNS[at], Place::Lot(at))),
         (None, None) => None,
     };
-    found.filter(|(column, _)| numeric(column)).ok_or_else(|| {
+    found.filter(|(column, _)| is_numeric(column)).ok_or_else(|| {
         let near = nearest(name, may_have_ranges());
         let hint = near.map(|near| format!("; did you mean {near}?")).unwrap_or_default();
         Refusal::new("range", name, format!("is not a numeric input of a basis or a lot{hint}"))
