@@ -297,3 +297,36 @@ fn more_measured_units_than_the_lot_has() {
         "{error}"
     );
 }
+
+/// A bid in kW would own best of all: it is told before the figures, at the award, in the report and beside CSV.
+#[test]
+fn losses_in_kw_are_told_wherever_the_bid_is_shown() {
+    let program = program();
+    let in_kw = format!("{HEAD}T,L,C,West,9100,EUR,2,0.43,4.6\n");
+    program.import("bids", &program.write("kw.csv", in_kw), &[]);
+    let warning = "were kW written in a column of W?";
+    let shown = |arguments: &[&str]| {
+        let (code, out, error) = text(&program.run(arguments));
+        assert_eq!(code, Some(0), "{error}");
+        let flat = |text: &str| text.split_whitespace().collect::<Vec<_>>().join(" ");
+        (flat(&out), flat(&error))
+    };
+    for arguments in [
+        &["tender", "T", "--lot", "L"][..],
+        &["tender", "T", "--bid", "C"],
+        &["report", "tender", "T", "-"],
+        &["award", "T", "--lot", "L", "--bid", "C"],
+        &["check"],
+    ] {
+        let (out, _) = shown(arguments);
+        assert!(out.contains(warning), "{arguments:?}: {out}");
+        if arguments == ["tender", "T", "--lot", "L"] {
+            assert_eq!(out.matches(warning).count(), 1, "{out}");
+            assert!(out.find(warning) < out.find("9 100"), "before the figures: {out}");
+        }
+    }
+    let (out, error) = shown(&["tender", "T", "--format", "csv"]);
+    assert!(!out.contains(warning) && error.contains(warning), "{error}");
+    let (out, _) = shown(&["tender", "T", "--bid", "A"]);
+    assert!(!out.contains(warning), "not the matter of another bidder: {out}");
+}

@@ -7,6 +7,7 @@ use super::{Awarded, BidResult, Case, LotResult, TenderResult, find_lot, terms};
 use crate::book::{Actor, Book, BookError};
 use crate::engine::Refusal;
 use crate::engine::columns::{Award, Column, Value};
+use crate::engine::flags::Flags;
 use crate::engine::working::Silent;
 use crate::study::StudyError;
 
@@ -29,7 +30,7 @@ pub struct AwardResult {
     pub excluded: Vec<&'static str>,
     /// Other bids of the lot of which measured units are in the book.
     pub measured_of_others: Vec<String>,
-    /// What is doubtful about the lot.
+    /// What is doubtful about the lot, and whether losses of the bid look like kW.
     pub flags: Vec<&'static str>,
 }
 
@@ -159,6 +160,12 @@ fn needs_reason(chosen: &BidResult, recommended: Option<&str>) -> String {
     }
 }
 
+/// The doubt that losses of the bid are kW, where it stands: an award is the last place to see it.
+fn scale_of(bid: &BidResult) -> impl Iterator<Item = &'static str> {
+    let doubts = bid.flags.clone();
+    Flags::LOSS_SCALE.keys().into_iter().filter(move |key| doubts.contains(key))
+}
+
 fn told(
     case: &Case,
     lot: &LotResult,
@@ -182,6 +189,6 @@ fn told(
         outcome,
         excluded: bid.excluded.clone(),
         measured_of_others: others,
-        flags: lot.flags.clone(),
+        flags: lot.flags.iter().copied().chain(scale_of(bid)).collect(),
     }
 }

@@ -24,7 +24,8 @@ pub use award::{awarded as award, delivered};
 pub(super) use bars::cost_bars;
 pub use factors::lot_factors;
 pub(super) use lot::{
-    asks, changes, doubts, excluded, factor_scale, factors, map, near_tie, ranking, winner,
+    asks, changes, doubts, excluded, factor_scale, factors, loss_scale, map, near_tie, ranking,
+    winner,
 };
 pub use report::report;
 pub(super) use risk::risk;
@@ -41,6 +42,7 @@ pub fn result(case: &Case, result: &TenderResult) -> Letter {
         let about = lot::About::new(case, result, of);
         asks(&mut letter, &about);
         factor_scale(&mut letter, &about);
+        loss_scale(&mut letter, &about);
         factors(&mut letter, &about);
         ranking(&mut letter, &about);
         cost_bars(&mut letter, &about);

@@ -68,6 +68,17 @@ pub(in crate::study) fn factor_scale(letter: &mut Letter, about: &About) {
     }
 }
 
+/// The warning that losses of bids look like kW; it too stands before the figures, as such a bid owns far too well.
+pub(in crate::study) fn loss_scale(letter: &mut Letter, about: &About) {
+    for key in Flags::LOSS_SCALE.keys() {
+        let of = about.result.bids.iter().filter(|bid| bid.flags.contains(&key));
+        let bids: Vec<&str> = of.map(|bid| bid.bid.as_str()).collect();
+        if !bids.is_empty() {
+            letter.warning(format!("{}: {}", bids.join(", "), flag(key)));
+        }
+    }
+}
+
 /// What a kW of loss is worth.
 pub(in crate::study) fn factors(letter: &mut Letter, about: &About) {
     let (result, currency) = (about.result, about.currency);
@@ -331,7 +342,7 @@ pub(in crate::study) fn doubts(letter: &mut Letter, about: &About) {
     }
     let mut said: Vec<(&str, Vec<String>)> = Vec::new();
     for bid in &about.result.bids {
-        for key in &bid.flags {
+        for key in bid.flags.iter().filter(|key| !Flags::LOSS_SCALE.keys().contains(key)) {
             match said.iter_mut().find(|(known, _)| known == key) {
                 Some((_, bids)) => bids.push(doubted(bid, key)),
                 None => said.push((key, vec![doubted(bid, key)])),

@@ -3,8 +3,8 @@
 use super::award::standing;
 use super::lot::About;
 use super::{
-    asks, cautions, changes, cost_bars, doubts, excluded, factor_scale, factors, map, money,
-    near_tie, packages, ranking, risk, set_aside, winner,
+    asks, cautions, changes, cost_bars, doubts, excluded, factor_scale, factors, loss_scale, map,
+    money, near_tie, packages, ranking, risk, set_aside, winner,
 };
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
@@ -32,6 +32,7 @@ pub fn report(
         let about = About::new(case, result, of);
         asks(&mut letter, &about);
         factor_scale(&mut letter, &about);
+        loss_scale(&mut letter, &about);
         factors(&mut letter, &about);
         let working = case.factors(&of.lot)?.working;
         letter.heading(3, "How the factors come about");
