@@ -166,6 +166,8 @@ fn settlement_goes_by_the_terms_of_the_award() {
     ] {
         assert!(flat.contains(said), "{said}\n{bid}");
     }
+    let aside = program.done(&["tender", TENDER, "--lot", "L1", "--bid", "O1", "--from-basis"]);
+    assert!(!aside.contains("kept with the award"), "asked for the basis: {aside}");
     let now = &lot["bids"][1];
     assert_eq!(now["bid"], "O1");
     assert!(!flat.contains(&format!("= {} EUR", now["owning_cost"])), "{bid}");

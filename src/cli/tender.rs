@@ -13,9 +13,7 @@ use crate::engine::flags::Flags;
 use crate::study::StudyError;
 use crate::study::explain::StepRow;
 use crate::study::losses::flag_meaning;
-use crate::study::tender::{
-    BidResult, Case, Draws, LotResult, TenderResult, letter, working, working_as_awarded,
-};
+use crate::study::tender::{BidResult, Case, Draws, LotResult, TenderResult, letter, working};
 
 const KEYS: &[&str] = &[
     "lot",
@@ -156,15 +154,9 @@ fn write_workings(
     let wanted = |bid: &&BidResult| only.is_none_or(|only| only == bid.bid);
     for lot in &result.lots {
         for bid in lot.bids.iter().filter(wanted) {
-            // An answer for one bid goes by the terms of the award.
-            let (sheet, basis) = (&case.sheet, basis.as_ref());
-            let kept = match only {
-                Some(bid) => working_as_awarded(sheet, basis, &lot.lot, bid)?,
-                None => None,
-            };
-            let w = match kept {
-                Some(kept) => kept,
-                None => working(sheet, basis, &lot.lot, &bid.bid)?,
+            let w = match only {
+                Some(bid) => case.answering(&lot.lot, bid)?,
+                None => working(&case.sheet, basis.as_ref(), &lot.lot, &bid.bid)?,
             };
             printer.line("")?;
             printer.line(format!("Lot {}, bid {}", lot.lot, bid.bid))?;

@@ -1,7 +1,10 @@
 //! A tender of a book with the basis that fills what its lots leave open: what every command on a tender begins with.
 
 use super::risk::{Question, risk};
-use super::{BasisForFactors, LotFactors, TenderResult, award_of, evaluate, lot_factors};
+use super::{
+    BasisForFactors, BidWorking, LotFactors, LotResult, TenderResult, as_awarded, award_of,
+    evaluate, lot_factors, working, working_as_awarded,
+};
 use crate::book::{Book, BookError};
 use crate::engine::Refusal;
 use crate::engine::columns::{Lot, TenderSheet};
@@ -144,6 +147,32 @@ impl Case {
     /// As [`evaluate`].
     pub fn evaluate(&self, lot: Option<&str>) -> Result<TenderResult, StudyError> {
         evaluate(&self.sheet, self.basis().as_ref(), lot)
+    }
+
+    /// The evaluation of an awarded lot by the terms of its award; none where it is not awarded, or where what lots
+    /// state is set aside.
+    ///
+    /// # Errors
+    /// As [`evaluate`].
+    pub fn as_awarded(&self, lot: &str) -> Result<Option<LotResult>, StudyError> {
+        if self.is_from_basis() {
+            return Ok(None);
+        }
+        as_awarded(&self.sheet, self.basis().as_ref(), lot)
+    }
+
+    /// The working of a bid as its bidder is answered: by the terms of the award as in [`Case::as_awarded`], else today's.
+    ///
+    /// # Errors
+    /// As [`working`].
+    pub fn answering(&self, lot: &str, bid: &str) -> Result<BidWorking, StudyError> {
+        let (sheet, basis) = (&self.sheet, self.basis());
+        let aside = self.is_from_basis();
+        let kept = if aside { None } else { working_as_awarded(sheet, basis.as_ref(), lot, bid)? };
+        match kept {
+            Some(kept) => Ok(kept),
+            None => working(sheet, basis.as_ref(), lot, bid),
+        }
     }
 
     /// The factors of a lot as they are published.

@@ -10,7 +10,7 @@ use crate::study::StudyError;
 use crate::study::explain::StepRow;
 use crate::study::figures::group;
 use crate::study::tender::shortfall::{Shortfall, shortfall};
-use crate::study::tender::{Case, TenderResult, as_awarded, working, working_as_awarded};
+use crate::study::tender::{Case, TenderResult};
 
 /// Answers for a bid in each lot that has one of that name; where the lot is awarded, by the terms of the award.
 ///
@@ -20,18 +20,14 @@ pub fn answer(case: &Case, result: &TenderResult, bid: &str) -> Result<Letter, S
     let mut letter = Letter::default();
     letter.heading(1, format!("Tender {}: bid {bid}", result.tender));
     for of in result.lots.iter().filter(|lot| lot.bids.iter().any(|of| of.bid == bid)) {
-        let (sheet, basis) = (&case.sheet, case.basis());
-        let kept = as_awarded(sheet, basis.as_ref(), &of.lot)?;
+        let kept = case.as_awarded(&of.lot)?;
         let about = About::new(case, result, kept.as_ref().unwrap_or(of));
         asks(&mut letter, &about);
         by_its_terms(&mut letter, &about, of, bid);
         factor_scale(&mut letter, &about);
         factors(&mut letter, &about);
         standing(&mut letter, &about, bid);
-        let w = match working_as_awarded(sheet, basis.as_ref(), &of.lot, bid)? {
-            Some(working) => working,
-            None => working(sheet, basis.as_ref(), &of.lot, bid)?,
-        };
+        let w = case.answering(&of.lot, bid)?;
         letter.heading(3, "How its owning cost comes about");
         let rows = |steps: &[Step]| StepRow::lines_in(&StepRow::tree(steps), 0, &result.currency);
         letter.lines([rows(&w.on_terms), rows(&w.owning_cost)].concat());

@@ -63,7 +63,8 @@ pub(in crate::study) fn standing(letter: &mut Letter, about: &About) {
 
 /// By whose terms an answer goes, and in one line what today's basis would say otherwise of a bid.
 pub(super) fn by_its_terms(letter: &mut Letter, about: &About, today: &LotResult, bid: &str) {
-    let (kept, Some(award)) = (about.result, &about.result.award) else { return };
+    let kept = about.result;
+    let Some(award) = kept.award.as_ref().filter(|_| kept.as_awarded) else { return };
     letter.text(format!("The lot is awarded to {}", sentence(award)));
     letter.text("This answer goes by the factors and corrections kept with the award.");
     let of = |lot: &LotResult| {
