@@ -20,7 +20,7 @@ mod source;
 pub mod target;
 mod workbook;
 
-pub use layout::{Fault, Layout, holds_numbers};
+pub use layout::{Fault, Layout, counted, holds_numbers};
 pub use letter::{Letter, visible};
 pub use number::Decimals;
 pub use problem::{Problem, Problems};

@@ -18,6 +18,7 @@ pub mod offers_open;
 pub mod rank;
 pub mod settle;
 pub mod tender;
+pub mod test_report;
 pub mod unit;
 pub mod watch;
 pub mod work;

@@ -178,7 +178,7 @@ fn units_left_out_are_named_with_the_reason() {
     );
     assert_eq!(result["units"][0]["unit"], "007", "leading zeros count");
     assert!(
-        program.done(&["rank"]).contains("1 units are left out")
+        program.done(&["rank"]).contains("1 unit left out")
             || program.done(&["rank"]).contains("left out")
     );
 }

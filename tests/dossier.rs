@@ -265,3 +265,24 @@ fn indicators_of_a_replacement() {
     let per_tonne = (9000.0 - saved * annuity(0.05, 10.0)) / tonnes;
     assert!((k("cost_per_t_co2") - per_tonne).abs() < 1e-9, "saves money besides");
 }
+
+/// By the equation of methods section 2: 380 kVA on 25 kVA at 4 % is βZ = 0.6, above the 0.5 of the collapse at power
+/// factor 1; on 630 kVA it is 0.024.
+#[test]
+fn a_fit_by_voltage_drop_asks_whether_the_voltage_holds() {
+    let program = small();
+    let offer = "offer,rated_kva,impedance_pct,no_load_loss_w,load_loss_w,price,life_years\n\
+                 L25,25,4,70,600,3500,40\n";
+    program.import("offers", &program.write("small.csv", offer), &[]);
+    let drop = BASIS.replace("name = \"b\"", "name = \"drop\"\nvoltage_model = \"drop\"");
+    program.import("basis", &program.write("drop.toml", drop), &[]);
+    let fit = |offer, basis| {
+        let asked = ["unit", "W1", "--fit", offer, "--basis", basis, "--format", "json"];
+        program.json(&asked)["fit"].clone()
+    };
+    assert_eq!(fit("L630", "drop")["holds_voltage"], true);
+    let small = fit("L25", "drop");
+    assert_eq!((&small["holds_voltage"], &small["fits"]), (&false.into(), &false.into()));
+    assert_eq!(small["misses"], serde_json::json!(["voltage_drop"]));
+    assert_eq!(fit("L25", "b")["holds_voltage"], Value::Null);
+}

@@ -67,7 +67,7 @@ fn the_demo_ranks_and_flags_units_without_losses() {
     assert!(flagged(&unit) && flagged(&unit["keep_or_replace"]));
     let text = program.done(&["unit", "ZE-0108"]);
     assert!(text.contains("Estimated no_load_loss_w: ") && text.contains("! loss_estimated: "));
-    assert!(program.done(&["rank"]).contains("have estimated losses"));
+    assert!(program.done(&["rank"]).contains("with estimated losses"));
 }
 
 /// The places at the ends, against a book in which the unit states the losses of that end: the others as they were.

@@ -373,6 +373,7 @@ fn engine(c: &Case) -> (Context, Vec<Candidate>, UnitFacts, Terminals) {
         phases: Some(3),
         winding_metal: None,
         insulation: None,
+        from_test: false,
         profile: 0,
     };
     let terminals = Terminals {

@@ -309,6 +309,33 @@ fn a_changed_basis_is_stored_with_its_old_value_in_the_journal() {
 }
 
 #[test]
+fn an_award_is_stored_with_its_reason_in_the_journal() {
+    let mut pty = Pty::demo(&[]);
+    pty.until_shown(READY);
+    pty.type_in("3w");
+    pty.until_shown("Award lot L1");
+    pty.type_in("\u{1b}");
+    pty.until_shown("what if");
+    pty.type_in("w");
+    pty.until_shown("a reason is needed");
+    pty.type_in("least over its life\r");
+    pty.until_shown("is awarded to O1-ALT");
+    pty.type_in("5");
+    pty.until_shown("chosen award ol-2027-1/L1");
+    pty.type_in("q");
+    assert_eq!(pty.wait(), 0);
+    let book = pty.home.path().join("ironhum").join("demo.sqlite");
+    let tender = std::process::Command::new(env!("CARGO_BIN_EXE_ironhum"))
+        .args(["tender", "ol-2027-1", "--format", "json", "--book"])
+        .arg(book)
+        .output()
+        .expect("runs");
+    let tender = String::from_utf8_lossy(&tender.stdout).into_owned();
+    assert!(tender.contains("least over its life"), "{tender}");
+    assert_eq!(tender.matches("awarded_by").count(), 1, "{tender}");
+}
+
+#[test]
 fn a_working_is_handed_to_the_terminal() {
     for (variables, start) in [
         (&[][..], "\u{1b}]52;c;b2wtMjAyNy0x"),

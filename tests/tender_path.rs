@@ -202,7 +202,7 @@ fn a_settlement_reads_as_a_letter() {
     let flat = shown.split_whitespace().collect::<Vec<_>>().join(" ");
     for said in [
         "Settlement of lot L1, bid O1 of Oskavend",
-        "8 of 60 units were measured. Guaranteed for one unit of 400 kVA: no-load loss 330 W, load loss 2 860 W at 75 °C.",
+        "Measured: 8 of 60 units. Guaranteed for one unit of 400 kVA: no-load loss 330 W, load loss 2 860 W at 75 °C.",
         "A 15 218.65 (no-load loss), B 2 840.61 (load loss at 400 kVA)",
         "brought to 75 °C with windings of copper and a stray share of 0.1 of the load loss",
         "0427-07 2027-05-19 326 2 467 22.5 2 842.3 −4.0 −17.7 0.00",

@@ -121,7 +121,7 @@ fn figures_with_voltage_drop_open() {
     let unit = book.unit("ZE-0135").expect("is in the book");
     let question = Question::new(&desk, &context, &unit).expect("is on the desk");
     let steps = question.working("losses.load_energy_kwh").expect("opens");
-    let text = StepRow::lines(&steps, 0).join("\n");
+    let text = StepRow::lines(&steps, 0, "EUR").join("\n");
     assert!(text.contains("v_hv = 1.02") && text.contains("load-duration histogram"), "{text}");
 }
 

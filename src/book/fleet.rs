@@ -2,8 +2,8 @@
 
 use std::ops::RangeInclusive;
 
-use rusqlite::Connection;
 use rusqlite::types::ValueRef;
+use rusqlite::{Connection, Row};
 use rustc_hash::FxHashMap;
 
 use super::open::reader;
@@ -11,43 +11,24 @@ use super::{Book, Result};
 use crate::engine::columns::{Column, Insulation, Kind, Unit, WindingMetal};
 use crate::engine::decision::UnitFacts;
 use crate::engine::decision::fit::Terminals;
-use crate::engine::decision::fleet::FleetColumns;
+use crate::engine::decision::fleet::{FleetColumns, NUMBERS};
 use crate::engine::transformer::vector_group;
 
 /// Rows below which one connection reads everything.
 const SMALL: i64 = 50_000;
 
-/// The columns read, in this order; numbers first.
-const NUMBERS: &[&str] = &[
-    "rated_kva",
-    "no_load_loss_w",
-    "load_loss_w",
-    "peak_kva",
-    "load_growth_pct",
-    "hv_kv",
-    "lv_kv",
-    "year_made",
-    "phases",
-    "loss_base_kva",
-    "total_loss_w",
-    "auxiliary_loss_w",
-    "auxiliary_hours",
-    "load_factor_pu",
-    "loss_factor_pu",
-    "responsibility_pu",
-    "energised_hours",
-    "power_factor",
-    "failure_cost",
-    "removal_cost",
-    "scrap_value",
-    "customers",
-    "impedance_pct",
-];
+/// The numbers of the terminals, read behind those of [`NUMBERS`]; then the texts.
+const TERMINALS: [&str; 3] = ["phases", "hv_kv", "lv_kv"];
 const TEXTS: &[&str] =
     &["unit", "profile", "site", "vector_group", "in_service", "winding_metal", "insulation"];
 
 /// The numbers of the profiles by the bytes of their names.
 type Profiles = FxHashMap<Vec<u8>, u32>;
+
+/// The names of all columns of numbers that are read, in this order.
+fn numbers() -> impl Iterator<Item = &'static str> {
+    NUMBERS.into_iter().chain(TERMINALS)
+}
 
 fn column(name: &str) -> Option<&'static Column> {
     Unit::COLUMNS.iter().find(|column| column.name == name)
@@ -109,14 +90,15 @@ fn read(
     range: RangeInclusive<i64>,
     room: usize,
 ) -> Result<FleetColumns> {
-    let names: Vec<String> =
-        NUMBERS.iter().chain(TEXTS).filter_map(|name| column(name).map(Column::sql_name)).collect();
+    let names: Vec<String> = numbers()
+        .chain(TEXTS.iter().copied())
+        .filter_map(|name| column(name).map(Column::sql_name))
+        .collect();
     let sql = format!(
         "SELECT {}, id FROM units WHERE id BETWEEN ?1 AND ?2 ORDER BY id",
         names.join(", ")
     );
-    let scale: Vec<f64> = NUMBERS
-        .iter()
+    let scale: Vec<f64> = numbers()
         .map(|name| match column(name).map(|c| c.kind) {
             Some(Kind::Money(..)) => 1000.0,
             _ => 1.0,
@@ -127,83 +109,44 @@ fn read(
     let mut fleet = FleetColumns::default();
     let size = usize::try_from(range.end() - range.start() + 1).unwrap_or(0);
     fleet.reserve(room.max(size));
-    let mut numbers = [f64::NAN; NUMBERS.len()];
-    while let Some(row) = rows.next()? {
-        for (i, number) in numbers.iter_mut().enumerate() {
+    let number = |row: &Row, i: usize| -> Result<f64> {
+        Ok(match row.get_ref(i)? {
+            ValueRef::Real(value) => value,
             #[expect(clippy::cast_precision_loss, reason = "whole columns are below 2^53")]
-            let value = match row.get_ref(i)? {
-                ValueRef::Real(value) => value,
-                ValueRef::Integer(value) => value as f64 / scale[i],
-                _ => f64::NAN,
-            };
-            *number = value;
+            ValueRef::Integer(value) => value as f64 / scale[i],
+            _ => f64::NAN,
+        })
+    };
+    while let Some(row) = rows.next()? {
+        let mut numbers = [f64::NAN; NUMBERS.len()];
+        for (i, value) in numbers.iter_mut().enumerate() {
+            *value = number(row, i)?;
         }
-        let bytes = |i: usize| match row.get_ref(NUMBERS.len() + i) {
+        let known = |i: usize| {
+            number(row, NUMBERS.len() + i).map(|value| (!value.is_nan()).then_some(value))
+        };
+        let bytes = |i: usize| match row.get_ref(NUMBERS.len() + TERMINALS.len() + i) {
             Ok(ValueRef::Text(text)) => Some(text),
             _ => None,
         };
         let text = |i: usize| bytes(i).and_then(|text| std::str::from_utf8(text).ok());
         let profile = bytes(1).and_then(|name| profiles.get(name).copied()).unwrap_or(u32::MAX);
-        let [
-            rated_kva,
-            no_load_loss_w,
-            load_loss_w,
-            peak_kva,
-            load_growth_pct,
-            hv_kv,
-            lv_kv,
-            year_made,
-            phases,
-            loss_base_kva,
-            total_loss_w,
-            auxiliary_loss_w,
-            auxiliary_hours,
-            load_factor_pu,
-            loss_factor_pu,
-            responsibility_pu,
-            energised_hours,
-            power_factor,
-            failure_cost,
-            removal_cost,
-            scrap_value,
-            customers,
-            impedance_pct,
-        ] = numbers;
-        let known = |value: f64| (!value.is_nan()).then_some(value);
+        let facts = UnitFacts::of_numbers(numbers);
         let terminals = Terminals {
             #[expect(clippy::cast_possible_truncation, reason = "1 or 3")]
-            phases: known(phases).map(|n| n as i64),
-            hv_kv: known(hv_kv),
-            lv_kv: known(lv_kv),
+            phases: known(0)?.map(|n| n as i64),
+            hv_kv: known(1)?,
+            lv_kv: known(2)?,
             clock: text(3).and_then(vector_group::clock),
-            rated_kva,
+            rated_kva: facts.rated_kva,
         };
         let facts = UnitFacts {
             in_service: bytes(4) != Some(b"no"),
-            rated_kva,
-            loss_base_kva,
-            no_load_loss_w,
-            load_loss_w,
-            total_loss_w,
-            auxiliary_loss_w,
-            auxiliary_hours,
-            peak_kva,
-            load_factor_pu,
-            loss_factor_pu,
-            load_growth_pct,
-            responsibility_pu,
-            energised_hours,
-            power_factor,
-            year_made,
-            failure_cost,
-            removal_cost,
-            scrap_value,
-            customers,
-            impedance_pct,
             phases: terminals.phases,
             winding_metal: text(5).and_then(WindingMetal::from_word),
             insulation: text(6).and_then(Insulation::from_word),
             profile,
+            ..facts
         };
         fleet.push(text(0).unwrap_or(""), text(2), row.get(names.len())?, terminals, &facts);
     }

@@ -43,16 +43,6 @@ impl Book {
         self.entries(&sql, [limit])
     }
 
-    /// The entries about one thing (`unit` and its identifier, for instance), newest first.
-    ///
-    /// # Errors
-    /// The store fails.
-    pub fn journal_of(&self, kind: &str, key: &str) -> Result<Vec<JournalEntry>> {
-        let sql =
-            format!("SELECT {COLUMNS} FROM journal WHERE kind = ?1 AND key = ?2 ORDER BY id DESC");
-        self.entries(&sql, [kind, key])
-    }
-
     fn entries(&self, sql: &str, params: impl rusqlite::Params) -> Result<Vec<JournalEntry>> {
         let mut statement = self.connection.prepare_cached(sql)?;
         let entries = statement.query_map(params, entry)?.collect::<rusqlite::Result<_>>()?;

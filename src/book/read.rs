@@ -3,6 +3,7 @@
 use std::ops::ControlFlow;
 
 use rusqlite::{Connection, OptionalExtension as _, Params, Row};
+use rustc_hash::FxHashMap;
 use serde::Serialize;
 
 use super::change::CURRENT_BASIS;
@@ -58,15 +59,22 @@ impl Book {
         found.into_iter().next().map_or_else(|| Err(self.unknown(&tables::UNITS, unit)), Ok)
     }
 
-    /// The test report of a unit, where there is one.
+    /// The units that have a test report, each with it, in order of entry.
     ///
     /// # Errors
     /// The store fails.
-    pub fn test_report(&self, unit: &str) -> Result<Option<TestReport>> {
+    pub fn tested_units(&self) -> Result<Vec<(Unit, TestReport)>> {
         let from = TestReport::from_values;
-        let found =
-            records(&self.connection, &tables::TEST_REPORTS, from, "WHERE unit = ?1", [unit])?;
-        Ok(found.into_iter().next())
+        let reports = records(&self.connection, &tables::TEST_REPORTS, from, "", [])?;
+        if reports.is_empty() {
+            return Ok(Vec::new());
+        }
+        let mut reports: FxHashMap<String, TestReport> =
+            reports.into_iter().map(|report| (report.unit.clone(), report)).collect();
+        let tested = "WHERE unit IN (SELECT unit FROM test_reports)";
+        let units = records(&self.connection, &tables::UNITS, Unit::from_values, tested, [])?;
+        let with = |unit: Unit| reports.remove(&unit.unit).map(|report| (unit, report));
+        Ok(units.into_iter().filter_map(with).collect())
     }
 
     /// The offers, in the order in which they entered the catalogue.

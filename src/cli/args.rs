@@ -8,6 +8,7 @@ use clap::{Parser, Subcommand, ValueEnum};
 use crate::engine::transformer::ageing::Paper;
 use crate::exchange::{Decimal, Delimiter, Encoding};
 use crate::study::intake::What;
+use crate::study::rank::By;
 
 /// How results are written.
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
@@ -193,14 +194,11 @@ pub struct Shown {
     pub top: Option<usize>,
 }
 
-/// By what the ranking is ordered.
-#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
-pub enum RankBy {
-    /// What the best choice saves.
-    #[default]
-    Saving,
-    /// What a year's delay costs.
-    Waiting,
+/// Reads an order of the ranking as a command offers it: by a figure of money.
+fn order() -> impl TypedValueParser<Value = By> {
+    const ORDERS: [By; 2] = [By::Saving, By::Waiting];
+    PossibleValuesParser::new(ORDERS.map(By::word))
+        .map(|word| ORDERS.into_iter().find(|by| by.word() == word).unwrap_or_default())
 }
 
 /// Options of `rank`.
@@ -210,8 +208,8 @@ pub struct Rank {
     #[arg(long, value_name = "N")]
     pub top: Option<usize>,
     /// The figure that orders the ranking
-    #[arg(long, value_enum, default_value_t)]
-    pub by: RankBy,
+    #[arg(long, value_name = "BY", default_value = By::Saving.word(), value_parser = order())]
+    pub by: By,
 }
 
 /// Options of `factors`.

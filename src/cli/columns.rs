@@ -5,7 +5,9 @@ use serde::Serialize;
 use super::args::Format;
 use super::exit::{Exit, Failure};
 use super::print::{Printer, TextColumn};
-use crate::engine::columns::{Basis, Bid, Column, Lot, Measured, Offer, Tender, TestReport, Unit};
+use crate::engine::columns::{
+    Basis, Bid, Column, Lot, Measured, Offer, PRICES, STEP, Tender, TestReport, Unit,
+};
 use crate::engine::decision::uncertainty::inputs::may_have_ranges;
 use crate::study::intake::What;
 
@@ -23,30 +25,6 @@ struct Row {
 struct Result {
     columns: Vec<Row>,
 }
-
-/// Columns of files that hold series: their headers are names.
-const SERIES: &[Column] = &[
-    Column {
-        name: "timestamp",
-        meaning: "start of the step, ISO 8601 (or interval: its number); then one column per profile",
-        ..Column::text().required()
-    },
-    Column {
-        name: "price_per_kwh",
-        meaning: "price of the step (prices file)",
-        ..Column::real(-1e6, 1e6).required()
-    },
-    Column {
-        name: "co2_kg_per_kwh",
-        meaning: "CO2 of a kWh in the step (prices file)",
-        ..Column::real(0.0, 1e3)
-    },
-    Column {
-        name: "system_load",
-        meaning: "load of the system in the step, any scale (prices file)",
-        ..Column::real(0.0, 1e12)
-    },
-];
 
 /// What stands before the example of a TOML file.
 const LAYOUT: &str = "A file of this layout (everything in it is invented):";
@@ -132,8 +110,8 @@ pub(super) fn columns(what: What, printer: &mut Printer) -> std::result::Result<
     let lists: &[&[Column]] = match what {
         What::Units => &[Unit::COLUMNS],
         What::Tests => &[TestReport::COLUMNS],
-        What::Profiles => &[&[SERIES[0]]],
-        What::Prices => &[SERIES],
+        What::Profiles => &[&[STEP]],
+        What::Prices => &[&[STEP], PRICES],
         What::Offers => &[Offer::COLUMNS],
         What::Basis => &[Basis::COLUMNS],
         What::Tender => &[Tender::COLUMNS, Lot::COLUMNS],

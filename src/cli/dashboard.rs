@@ -7,8 +7,13 @@ use super::args::{Args, Colour};
 use super::book;
 use super::exit::{Exit, Failure};
 use crate::book::{Access, Book, JournalEntry};
+use crate::engine::columns::TenderSheet;
+use crate::study::figures::short;
+use crate::study::tender::decide::{self, Choice};
 use crate::study::{Desk, StudyError};
-use crate::tui::{self, BasisWriter, Caps, ColourWish, ExitReason, JournalLine, Session};
+use crate::tui::{
+    self, AwardWriter, Awarding, BasisWriter, Caps, ColourWish, ExitReason, JournalLine, Session,
+};
 
 /// Entries of the journal that are shown.
 const JOURNAL: usize = 1000;
@@ -65,9 +70,6 @@ fn session(path: &Path, basis: Option<&str>, may_write: bool) -> Result<Session,
         .iter()
         .map(|tender| book.tender(&tender.tender))
         .collect::<Result<_, _>>()?;
-    let lines = |book: &Book| -> Result<Vec<JournalLine>, StudyError> {
-        Ok(book.journal(JOURNAL)?.into_iter().map(line).collect())
-    };
     let journal = lines(&book)?;
     let own = path.to_owned();
     // Opened for writing only while it writes: another program may write meanwhile.
@@ -76,6 +78,8 @@ fn session(path: &Path, basis: Option<&str>, may_write: bool) -> Result<Session,
         book.save_basis(sheet, &book::actor(Some("changed on the dashboard".to_owned())))?;
         lines(&book)
     });
+    let own = path.to_owned();
+    let award: AwardWriter = Box::new(move |asked| award(&own, asked));
     let name = path.file_name().map(|name| name.to_string_lossy().into_owned());
     Ok(Session {
         title: name.unwrap_or_default(),
@@ -85,7 +89,24 @@ fn session(path: &Path, basis: Option<&str>, may_write: bool) -> Result<Session,
         journal,
         record: Some(Box::new(move |unit| book.unit(unit).ok())),
         save: may_write.then_some(save),
+        award: may_write.then_some(award),
     })
+}
+
+/// The journal, newest first.
+fn lines(book: &Book) -> Result<Vec<JournalLine>, StudyError> {
+    Ok(book.journal(JOURNAL)?.into_iter().map(line).collect())
+}
+
+/// Awards as `ironhum award` does, if the book still holds what was shown.
+fn award(path: &Path, asked: &Awarding) -> Result<(TenderSheet, Vec<JournalLine>), StudyError> {
+    let mut book = Book::open(path, Access::ReadWrite)?;
+    let actor = book::actor(asked.why.clone());
+    let shown = (&*asked.sheet, &*asked.basis);
+    // The screen says what a bid misses before the reason is typed.
+    let choice = Choice { lot: &asked.lot, bid: &asked.bid, despite: true };
+    decide::award_as_shown(&mut book, shown, choice, &actor)?;
+    Ok((book.tender(&asked.sheet.tender.tender)?, lines(&book)?))
 }
 
 fn line(entry: JournalEntry) -> JournalLine {
@@ -102,16 +123,23 @@ fn line(entry: JournalEntry) -> JournalLine {
     }
 }
 
-/// `column old → new` for each changed column.
+/// `column old → new` for each changed column; of what is new or gone the value alone.
 fn details(what: &serde_json::Value) -> String {
     let text = |value: &serde_json::Value| match value {
         serde_json::Value::Null => "blank".to_owned(),
         serde_json::Value::String(text) => text.clone(),
+        serde_json::Value::Number(number) if !number.is_i64() => {
+            number.as_f64().map_or_else(|| number.to_string(), short)
+        }
         other => other.to_string(),
     };
     let Some(columns) = what.as_object() else { return String::new() };
     let moved = columns.iter().filter_map(|(column, change)| {
-        Some(format!("{column} {} → {}", text(change.get("old")?), text(change.get("new")?)))
+        Some(match (change.get("old"), change.get("new")) {
+            (Some(old), Some(new)) => format!("{column} {} → {}", text(old), text(new)),
+            (Some(only), None) | (None, Some(only)) => format!("{column} {}", text(only)),
+            (None, None) => return None,
+        })
     });
     moved.collect::<Vec<_>>().join(", ")
 }

@@ -88,14 +88,14 @@ pub(super) fn factors(
     Ok(Exit::Done)
 }
 
-/// A working as indented text: parts under the figure that they give, money in a currency.
+/// A working as indented text, amounts in `currency`: parts under the figure that they give.
 pub(super) fn working(
     printer: &mut Printer,
     steps: &[StepRow],
     depth: usize,
     currency: &str,
 ) -> Result<(), Failure> {
-    for line in StepRow::lines_in(steps, depth, currency) {
+    for line in StepRow::lines(steps, depth, currency) {
         printer.line(line)?;
     }
     Ok(())

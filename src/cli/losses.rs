@@ -5,6 +5,7 @@ use super::book::{self, Opened};
 use super::exit::{Exit, Failure};
 use super::print::{Printer, TextColumn};
 use super::rank::write_left_out;
+use crate::exchange::counted;
 use crate::study::Desk;
 use crate::study::figures::group;
 use crate::study::losses::{losses as ask, voltage_words};
@@ -36,10 +37,10 @@ pub(super) fn losses(args: &Args, options: &Shown, printer: &mut Printer) -> Res
         Format::Text => {
             let t = &result.totals;
             printer.line(format!(
-                "Basis {}, year {}: {} units lose {} kWh iron, {} kWh copper and {} kWh auxiliaries, which cost {} {}.",
+                "Basis {}, year {}: {}; losses of {} kWh iron, {} kWh copper and {} kWh auxiliaries cost {} {}.",
                 result.basis,
                 result.year,
-                t.units,
+                counted(t.units, "unit"),
                 group(t.no_load_energy_kwh, 0),
                 group(t.load_energy_kwh, 0),
                 group(t.auxiliary_energy_kwh, 0),

@@ -2,15 +2,16 @@
 
 use serde::Serialize;
 
-use super::args::{Args, Format, Rank, RankBy};
+use super::args::{Args, Format, Rank};
 use super::book::{self, Opened};
 use super::exit::{Exit, Failure};
 use super::print::{Printer, TextColumn};
 use super::timings::Timings;
+use crate::exchange::counted;
 use crate::study::figures::group;
 use crate::study::losses::flag_meaning;
 use crate::study::losses::voltage_words;
-use crate::study::rank::{By, LeftOutRow, RankRow, Ranking, rank as ask};
+use crate::study::rank::{LeftOutRow, RankRow, Ranking, rank as ask};
 use crate::study::{Desk, Watch};
 
 const KEYS: &[&str] = &[
@@ -57,11 +58,7 @@ pub(super) fn rank(args: &Args, options: &Rank, printer: &mut Printer) -> Result
     timings.phase("open");
     let desk = Desk::read(&book, args.basis.as_deref())?;
     timings.phase("read");
-    let by = match options.by {
-        RankBy::Saving => By::Saving,
-        RankBy::Waiting => By::Waiting,
-    };
-    let ranking = ask(&desk, by, options.top, &Watch::default())?;
+    let ranking = ask(&desk, options.by, options.top, &Watch::default())?;
     timings.phase("rank");
     write(&desk, &ranking, printer)?;
     printer.flush()?;
@@ -83,8 +80,11 @@ pub(super) fn write(desk: &Desk, ranking: &Ranking, printer: &mut Printer) -> Re
             let a = &ranking.context.assumptions;
             let t = &ranking.totals;
             printer.line(format!(
-                "Basis {}: {} units ranked over {} years, {} of them save by replacing.",
-                a.name, t.units, a.years, t.units_saving
+                "Basis {}: {} ranked over {}, {} of them saving by replacing.",
+                a.name,
+                counted(t.units, "unit"),
+                counted(a.years, "year"),
+                t.units_saving
             ))?;
             printer.line(format!(
                 "Present value {c} {}: keep all {}, best {}, saving {}.",
@@ -106,7 +106,8 @@ pub(super) fn write(desk: &Desk, ranking: &Ranking, printer: &mut Printer) -> Re
             if estimated > 0 {
                 printer.line("")?;
                 printer.line(format!(
-                    "{estimated} units have estimated losses: \"if low\" and \"if high\" are their places with losses at the ends of the 95 % interval."
+                    "{} with estimated losses: \"if low\" and \"if high\" are their places with losses at the ends of the 95 % interval.",
+                    counted(estimated, "unit")
                 ))?;
             }
             legend(printer, rows.iter().flat_map(|row| row.flags.iter().copied()))?;
@@ -167,7 +168,7 @@ pub(super) fn write_left_out<'a>(
     }
     printer.line("")?;
     let total: usize = reasons.iter().map(|(_, units)| units.len()).sum();
-    printer.line(format!("{total} units are left out:"))?;
+    printer.line(format!("{} left out:", counted(total, "unit")))?;
     for (why, units) in reasons {
         let named: Vec<&str> = units.iter().take(12).copied().collect();
         let more = match units.len().saturating_sub(named.len()) {

@@ -77,7 +77,7 @@ pub(super) fn settle(
             if let Some(figure) = options.working.as_ref().filter(|figure| !figure.is_empty()) {
                 let steps = settled.working(figure)?;
                 printer.line(format!("How {figure} comes about:"))?;
-                write_working(printer, &steps, 1, &result.currency)?;
+                write_working(printer, &steps, 1, case.money())?;
                 return Ok(Exit::Done);
             }
             printer.letter(&letter::settlement(&result))?;
@@ -90,7 +90,7 @@ pub(super) fn settle(
                 for (figure, called) in to_open(lot, n, only) {
                     printer.line("")?;
                     printer.line(called)?;
-                    write_working(printer, &settled.working(&figure)?, 0, &result.currency)?;
+                    write_working(printer, &settled.working(&figure)?, 0, case.money())?;
                 }
             }
         }

@@ -161,10 +161,8 @@ fn write_workings(
             printer.line("")?;
             printer.line(format!("Lot {}, bid {}", lot.lot, bid.bid))?;
             let figures = [&w.owning_cost, &w.owning_cost_at_tolerance, &w.lot_cost];
-            let money = case.currency_of_factors();
-            write_working(printer, &StepRow::tree(&w.factors), 0, money)?;
-            for steps in std::iter::once(&w.on_terms).chain(figures) {
-                write_working(printer, &StepRow::tree(steps), 0, &result.currency)?;
+            for steps in [&w.factors, &w.on_terms].into_iter().chain(figures) {
+                write_working(printer, &StepRow::tree(steps), 0, case.money())?;
             }
         }
     }

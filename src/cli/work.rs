@@ -5,6 +5,7 @@ use super::exit::{Exit, Failure};
 use super::factors::working;
 use super::print::{Printer, TextColumn};
 use crate::study::StudyError;
+use crate::study::explain::MONEY;
 use crate::study::work::{CalcRow, InputRow, list, work as ask};
 
 #[derive(serde::Serialize)]
@@ -38,7 +39,7 @@ fn run(printer: &mut Printer, calc: &str, inputs: &[String]) -> Result<Exit, Fai
                 printer.line(format!("{name:<28} {value}"))?;
             }
             printer.line("")?;
-            working(printer, &result.steps, 0, "money")?;
+            working(printer, &result.steps, 0, MONEY)?;
             printer.line("")?;
             printer.line(format!("Source: {}", result.source))?;
         }

@@ -36,6 +36,9 @@ macro_rules! choice {
             fn to_value(&self) -> $crate::engine::columns::Value {
                 $crate::engine::columns::Value::Text(self.word().to_owned())
             }
+            fn blank() -> Self {
+                [$(Self::$variant),+][0]
+            }
         }
     };
 }

@@ -8,6 +8,7 @@ pub mod keep_or_replace;
 pub mod parts;
 pub mod place;
 pub mod side_by_side;
+pub mod stated_load;
 pub mod tender;
 pub mod uncertainty;
 

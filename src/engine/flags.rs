@@ -49,6 +49,7 @@ flags! {
     31, LOSS_VALUE_SCALE, "loss_value_scale", "the capitalised losses of the best offer are under 1 % or over 50 times its price: is the energy price per kWh, are losses in W and prices per unit?";
     32, LOSS_SCALE, "loss_scale", "a loss is below 0.02 W (no-load) or 0.2 W (load) per kVA of the rating: were kW written in a column of W? (common practice, no source)";
     33, TEST_TEMP_BLANK, "test_temp_blank", "test_temp_c is blank, so the load loss counts as one at the lot's reference temperature, but the bid was quoted at another: where the report gives it at the bid's temperature, import that as test_temp_c";
+    36, FROM_TEST, "from_test", "a blank of the nameplate is filled from the unit's test report";
 }
 
 impl Flags {

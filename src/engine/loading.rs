@@ -8,4 +8,5 @@ pub mod stepped;
 
 pub use duty::{Duty, VoltageDrop};
 pub use prices::{Market, PriceSeries, Weights};
-pub use profile::{Profile, Ratios};
+pub use profile::Profile;
+pub use stepped::Ratios;

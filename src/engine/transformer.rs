@@ -15,7 +15,7 @@ pub mod parallel;
 pub mod plausibility;
 pub mod regulation;
 pub mod temperature;
+pub mod test_report;
 pub mod thermal;
 pub mod vector_group;
 pub mod voltage_drop;
-pub mod windings;

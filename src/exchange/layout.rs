@@ -150,7 +150,7 @@ impl Layout {
         values.clear();
         values.resize(self.columns.len(), Value::Blank);
         if row.cells().len() != self.places.len() {
-            let value = count(row.cells().len(), "cell");
+            let value = counted(row.cells().len(), "cell");
             let why = format!("the header has {}", self.places.len());
             faults.push(Fault { column: ROW, value, why });
             return;
@@ -177,7 +177,7 @@ impl Layout {
 }
 
 /// `1 cell`, `2 cells`.
-pub(super) fn count(number: usize, what: &str) -> String {
+pub fn counted(number: usize, what: &str) -> String {
     format!("{number} {what}{}", if number == 1 { "" } else { "s" })
 }
 

@@ -3,7 +3,7 @@
 
 use crate::engine::columns::{Column, Value};
 use crate::engine::loading::factors;
-use crate::engine::transformer::windings;
+use crate::engine::transformer::vector_group::two_windings;
 
 /// A rule between columns. What breaks it is said of the first of them.
 #[derive(Debug)]
@@ -60,7 +60,7 @@ const VOLTAGES: Rule = Rule {
 const TWO_WINDINGS: Rule = Rule {
     columns: &["vector_group"],
     judge: |v| match v[0] {
-        Value::Text(group) => windings::refused(group).map_or(Ok(()), |why| Err(why.to_owned())),
+        Value::Text(group) => two_windings(group).map_err(|refusal| refusal.why),
         _ => Ok(()),
     },
 };

@@ -4,7 +4,7 @@ mod axis;
 
 use axis::Axis;
 
-use super::layout::{check_map, count, mapped, near};
+use super::layout::{check_map, counted, mapped, near};
 use super::problem::{FILE, Problems, ROW};
 use super::{Decimals, ReadError, Row, Rows};
 use crate::engine::columns::{Column, Value};
@@ -70,7 +70,7 @@ impl Series {
         while rows.next(&mut row)? {
             if row.cells().len() != width {
                 let why = format!("the header has {width}");
-                problems.add(row.line, ROW, &count(row.cells().len(), "cell"), why);
+                problems.add(row.line, ROW, &counted(row.cells().len(), "cell"), why);
                 axis.spoil();
                 continue;
             }

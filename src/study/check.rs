@@ -1,25 +1,30 @@
 //! Everything doubtful in a book: missing, estimated, implausible, contradictory. Tells; changes nothing.
 
+mod tested;
+
 use std::ops::ControlFlow;
 
+use rustc_hash::FxHashMap;
 use serde::Serialize;
 
 use crate::book::{Book, BookError};
 use crate::engine::columns::{Basis, Bid, Lot, Measured, Offer, Unit, VoltageModel, YesNo};
 use crate::engine::decision::LeftOut;
-use crate::engine::decision::place::{loading_contradicts, losses_contradict};
+use crate::engine::decision::place::loading_contradicts;
 use crate::engine::economics::Assumptions;
 use crate::engine::economics::traps;
 use crate::engine::flags::Flags;
 use crate::engine::loading::{Profile, Ratios};
-use crate::engine::transformer::losses::quoted;
+use crate::engine::transformer::losses::{self, quoted};
 use crate::engine::transformer::plausibility::{self, looks_in_kw};
 use crate::engine::transformer::vector_group;
 use crate::engine::working::Silent;
 use crate::study::tender::{BasisForFactors, looks_per_watt};
+use crate::study::test_report::TestedUnit;
 use crate::study::{Desk, StudyError, Watch};
 
-/// Peak over rating above which a load is implausible (per unit).
+/// Peak over rating above which the reading itself is doubted (per unit): common practice, no source. A load above the
+/// rating alone is possible; the flag `overloaded` of a result says so.
 const OVERLOAD_PU: f64 = 1.2;
 /// A discount rate below this many percent was perhaps meant as a fraction.
 const FRACTION_PCT: f64 = 0.5;
@@ -83,6 +88,9 @@ pub fn check(book: &Book, basis: Option<&str>, watch: &Watch) -> Result<Vec<Doub
     watch.expect(usize::try_from(counts.units).unwrap_or(0));
     let mut doubts = Doubts(Vec::new());
     let profiles = Profiles::of(&book.profiles()?);
+    let reports: FxHashMap<String, TestedUnit> = (book.tested_units()?.into_iter())
+        .map(|(unit, report)| (unit.unit.clone(), TestedUnit { unit, report }))
+        .collect();
     let mut seen = 0;
     book.each_unit(|unit| {
         seen += 1;
@@ -92,7 +100,7 @@ pub fn check(book: &Book, basis: Option<&str>, watch: &Watch) -> Result<Vec<Doub
                 return ControlFlow::Break(());
             }
         }
-        doubts.unit(&unit, &profiles, basis);
+        doubts.unit(&unit, reports.get(&unit.unit), &profiles, basis);
         ControlFlow::Continue(())
     })?;
     if watch.is_stopped() {
@@ -189,10 +197,21 @@ impl Doubts {
         }
     }
 
-    fn unit(&mut self, unit: &Unit, profiles: &Profiles, basis: Option<&Basis>) {
+    fn unit(
+        &mut self,
+        unit: &Unit,
+        tested: Option<&TestedUnit>,
+        profiles: &Profiles,
+        basis: Option<&Basis>,
+    ) {
         let of = ("unit", unit.unit.as_str());
+        let share = basis.and_then(|basis| basis.stray_share_pu).unwrap_or(0.0);
+        let filled = tested.and_then(|tested| tested.filled(share));
         if unit.in_service != Some(YesNo::No) {
-            self.missing_of_unit(of, unit, basis);
+            self.missing_of_unit(of, filled.as_ref().unwrap_or(unit), basis);
+        }
+        if let Some(tested) = tested {
+            self.tested(of, tested, share);
         }
         self.plate(
             of,
@@ -316,7 +335,7 @@ impl Doubts {
             self.add(of, odd.quantity, Kind::Contradictory, format!("{} {}", odd.value, odd.why));
         }
         let (p0, pk, total) = (plate.no_load_loss_w, plate.load_loss_w, plate.total_loss_w);
-        if losses_contradict(p0, pk, total) {
+        if losses::contradict(p0, pk, total) {
             self.flag(of, "total_loss_w", Kind::Contradictory, Flags::LOSSES_CONTRADICT);
         }
         if p0.zip(pk).is_some_and(|(p0, pk)| pk < p0) {

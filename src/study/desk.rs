@@ -2,12 +2,14 @@
 
 use std::sync::{Arc, OnceLock};
 
+use rustc_hash::FxHashMap;
+
 use crate::book::Book;
 use crate::engine::Refusal;
-use crate::engine::columns::{BasisSheet, CapitalRecovery, Offer, Unit, VoltageModel};
+use crate::engine::columns::{BasisSheet, CapitalRecovery, Offer, TestReport, Unit, VoltageModel};
 use crate::engine::decision::estimate::FleetEstimate;
 use crate::engine::decision::fleet::FleetColumns;
-use crate::engine::decision::{Candidate, Context, UnitFacts};
+use crate::engine::decision::{Candidate, Context};
 use crate::engine::economics::Assumptions;
 use crate::engine::economics::assumptions::EnergyPrice;
 use crate::engine::flags::Flags;
@@ -15,6 +17,7 @@ use crate::engine::law::{self, Subject};
 use crate::engine::loading::{Market, PriceSeries, Profile, Ratios};
 use crate::engine::working::Silent;
 use crate::study::StudyError;
+use crate::study::test_report::TestedUnit;
 
 /// How often a book is read again that others write to meanwhile.
 const TRIES: usize = 5;
@@ -39,6 +42,8 @@ pub struct Desk {
     pub ratios: Vec<Ratios>,
     /// The price series of the book that the basis may name.
     pub series: Arc<Vec<PriceSeries>>,
+    /// The units that have a test report, by name; blanks of the fleet are filled from them.
+    tested: Arc<FxHashMap<String, TestedUnit>>,
     /// The basis.
     pub sheet: BasisSheet,
 }
@@ -55,8 +60,9 @@ impl Desk {
             let sheet = book.basis(basis)?;
             let series = Self::series_of(book, &sheet)?;
             let (fleet, offers, profiles) = (book.fleet()?, book.offers()?, book.profiles()?);
+            let tested = book.tested_units()?;
             if book.data_version()? == version {
-                return Self::new(fleet, offers, profiles, series, sheet);
+                return Ok(Self::new(fleet, offers, profiles, series, sheet)?.with_tests(tested));
             }
         }
         Err(StudyError::Busy)
@@ -100,14 +106,58 @@ impl Desk {
             profiles: profiles.into(),
             ratios,
             series: series.into(),
+            tested: Arc::default(),
             sheet,
         })
+    }
+
+    /// The same desk with the test reports of units: blanks of their nameplates are filled from them.
+    #[must_use]
+    pub fn with_tests(mut self, tested: Vec<(Unit, TestReport)>) -> Self {
+        let named =
+            |(unit, report): (Unit, TestReport)| (unit.unit.clone(), TestedUnit { unit, report });
+        self.tested = Arc::new(tested.into_iter().map(named).collect());
+        self.take_tests();
+        self
     }
 
     /// The same desk under another basis.
     #[must_use]
     pub fn with_basis(&self, sheet: BasisSheet) -> Self {
-        Self { sheet, ..self.clone() }
+        let mut desk = Self { sheet, ..self.clone() };
+        if desk.stray_share_pu() != self.stray_share_pu() {
+            desk.take_tests();
+        }
+        desk
+    }
+
+    /// Stray part of a load loss of which the split is not known.
+    pub fn stray_share_pu(&self) -> f64 {
+        self.sheet.basis.stray_share_pu.unwrap_or(0.0)
+    }
+
+    /// A unit with its test report, where it has one.
+    pub fn tested(&self, unit: &str) -> Option<&TestedUnit> {
+        self.tested.get(unit)
+    }
+
+    fn take_tests(&mut self) {
+        let share = self.stray_share_pu();
+        let filled: FxHashMap<&str, Unit> = self
+            .tested
+            .iter()
+            .filter_map(|(name, tested)| Some((name.as_str(), tested.filled(share)?)))
+            .collect();
+        if filled.is_empty() {
+            return;
+        }
+        let fleet = Arc::make_mut(&mut self.fleet);
+        for i in 0..fleet.len() {
+            if let Some(filled) = filled.get(fleet.unit.get(i)) {
+                fleet.take_test(i, filled);
+            }
+        }
+        self.estimate = Arc::default();
     }
 
     /// The basis resolved, with its prices: what the engine computes with.
@@ -206,15 +256,6 @@ impl Desk {
     /// The name of an offer by its index.
     pub fn offer_name(&self, candidate: usize) -> &str {
         self.offers.get(candidate).map_or("", |offer| &offer.offer)
-    }
-
-    /// The facts of a unit record against the profiles on the desk.
-    pub fn facts(&self, unit: &Unit) -> UnitFacts {
-        let profile = unit
-            .profile
-            .as_deref()
-            .and_then(|name| self.profiles.iter().position(|p| p.profile == name));
-        UnitFacts::of_unit(unit, profile)
     }
 
     /// Index of a unit in the fleet by its identifier.

@@ -8,6 +8,9 @@ use super::StudyError;
 use crate::engine::Refusal;
 use crate::engine::working::{Step, Working};
 
+/// What steps call an amount in any currency.
+pub const MONEY: &str = "money";
+
 /// One step of a working.
 #[derive(Clone, Debug, PartialEq, Serialize)]
 pub struct StepRow {
@@ -62,29 +65,21 @@ impl StepRow {
     }
 
     /// A working as lines, `depth` steps in: parts indented below the figure that they give. Of three or
-    /// more years by one formula the first is written in full, the others in a line each.
-    pub fn lines(rows: &[Self], depth: usize) -> Vec<String> {
-        Self::lines_in(rows, depth, "money")
-    }
-
-    /// The same with the name of the currency that its money is in.
-    pub fn lines_in(rows: &[Self], depth: usize, currency: &str) -> Vec<String> {
-        let unit = |row: &Self| match row.unit.strip_prefix("money") {
-            Some("") => currency.to_owned(),
-            Some(per) if per.starts_with('/') => format!("{currency}{per}"),
-            _ => row.unit.to_owned(),
-        };
+    /// more years by one formula the first is written in full, the others in a line each. Amounts are written in
+    /// `currency`; [`MONEY`] leaves it open.
+    pub fn lines(rows: &[Self], depth: usize, currency: &str) -> Vec<String> {
         let indent = "    ".repeat(depth);
         let mut lines = Vec::new();
         for (n, row) in rows.iter().enumerate() {
+            let unit = row.unit.replace(MONEY, currency);
             if Self::goes_on(rows, n) {
                 let (of, value) = (&row.of, readable(row.value));
-                lines.push(format!("{indent}{of}: {} = {value} {}", row.substituted, unit(row)));
+                lines.push(format!("{indent}{of}: {} = {value} {unit}", row.substituted));
                 continue;
             }
             if let Some(symbol) = row.formula.strip_suffix(" = as stated") {
                 let value = readable(row.value);
-                lines.push(format!("{indent}{symbol} = {value} {}   {}", unit(row), row.name));
+                lines.push(format!("{indent}{symbol} = {value} {unit}   {}", row.name));
                 continue;
             }
             lines.push(format!("{indent}{}", row.name));
@@ -94,8 +89,8 @@ impl StepRow {
                 lines.push(format!("{indent}  = {}", row.substituted));
             }
             let value = readable(row.value);
-            lines.push(format!("{indent}  = {value} {}   [{}]", unit(row), row.source));
-            lines.extend(Self::lines_in(&row.steps, depth + 1, currency));
+            lines.push(format!("{indent}  = {value} {unit}   [{}]", row.source));
+            lines.extend(Self::lines(&row.steps, depth + 1, currency));
         }
         lines
     }
@@ -258,14 +253,13 @@ mod tests {
             of: String::new(),
             steps: Vec::new(),
         };
-        let shown = |unit| StepRow::lines_in(&[row(unit)], 0, "EUR").join("\n");
+        let shown = |unit| StepRow::lines(&[row(unit)], 0, "EUR").join("\n");
         assert!(
             shown("money").ends_with("\n  = 36552.66 EUR   [definition]"),
             "{}",
             shown("money")
         );
         assert!(shown("money/kW").contains("= 36552.66 EUR/kW "));
-        assert!(shown("money of the bid").contains("= 36552.66 money of the bid "));
         let json = serde_json::to_string(&row("money")).expect("plain data");
         assert!(json.contains("36552.659999999996") && json.contains("\"money\""), "{json}");
         assert_eq!([readable(0.0), readable(1.0 / 3.0)], [0.0, 0.333_333_333_333]);

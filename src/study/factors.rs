@@ -6,14 +6,13 @@ use crate::engine::Refusal;
 use crate::engine::columns::{FactorMethod, Lot, Unit};
 use crate::engine::decision::Context;
 use crate::engine::decision::common_load::CommonLoad;
-use crate::engine::decision::place::resolve;
-use crate::engine::decision::place::stated::{self, first_known, known_or};
+use crate::engine::decision::stated_load::StatedLoad;
 use crate::engine::economics::loss_factors::{
     LossFactors, difference_pct, levelized, of_duty, present_value,
 };
 use crate::engine::economics::traps;
 use crate::engine::flags::Flags;
-use crate::engine::loading::{Duty, factors};
+use crate::engine::loading::Duty;
 use crate::engine::working::{Recorder, Silent, Working};
 use crate::study::explain::{Explained, StepRow, numbers};
 use crate::study::{Desk, StudyError};
@@ -34,6 +33,17 @@ pub struct LoadAsked {
 }
 
 impl LoadAsked {
+    /// What is stated in numbers.
+    fn numbers(&self) -> StatedLoad {
+        StatedLoad {
+            peak_pu: self.peak_pu,
+            loss_factor_pu: self.loss_factor_pu,
+            load_factor_pu: self.load_factor_pu,
+            load_growth_pct: self.load_growth_pct,
+            profile: None,
+        }
+    }
+
     /// Holds what is stated against the facts of the columns of a lot, which ask the same.
     fn check(&self) -> Result<(), Refusal> {
         let stated = [
@@ -108,14 +118,9 @@ impl Question<'_> {
     /// unit can be computed.
     fn load<R: Recorder>(&self, w: &mut R) -> Result<(Duty, &'static str), StudyError> {
         if *self.asked != LoadAsked::default() {
-            return Ok((self.stated(w)?, "as stated"));
+            return Ok((self.stated(w)?.duty(w, self.context)?, "as stated"));
         }
-        let mut load = CommonLoad::default();
-        for i in 0..self.desk.fleet.len() {
-            if let Ok(place) = resolve(&mut Silent, &self.desk.fleet.facts(i), self.context) {
-                load.add(&place);
-            }
-        }
+        let load = CommonLoad::of_fleet(&self.desk.fleet, self.context);
         let Some(duty) = load.duty(w, &self.context.assumptions) else {
             let why =
                 "no unit of the fleet can be computed; state a load (profile, loss or load factor)";
@@ -124,60 +129,22 @@ impl Question<'_> {
         Ok((duty, "the fleet's own, each unit weighed by its load loss"))
     }
 
-    /// The duty of a stated load; what is not stated is the basis's.
-    fn stated<R: Recorder>(&self, w: &mut R) -> Result<Duty, StudyError> {
-        let (desk, context, asked) = (self.desk, self.context, self.asked);
-        let a = &context.assumptions;
+    /// The load that was stated, its profile looked up.
+    fn stated<R: Recorder>(&self, w: &mut R) -> Result<StatedLoad, StudyError> {
+        let (desk, asked) = (self.desk, self.asked);
         asked.check()?;
         let profile = match &asked.profile {
             None => None,
             Some(name) => {
                 let found = desk.profiles.iter().position(|p| p.profile == *name);
-                Some(found.ok_or_else(|| {
+                let index = found.ok_or_else(|| {
                     let known = desk.profiles.iter().map(|p| p.profile.as_str());
                     StudyError::unknown("profile", name, "the book", known)
-                })?)
+                })?;
+                Some((index, desk.profiles[index].ratios(w)?))
             }
         };
-        if let (Some(lf), Some(lsf)) = (asked.load_factor_pu, asked.loss_factor_pu) {
-            factors::check(lf, lsf)?;
-        }
-        let ratios = match profile {
-            Some(p) if w.listens() => Some(desk.profiles[p].ratios(w)?),
-            Some(p) => Some(context.ratios[p]),
-            None => None,
-        };
-        let peak = [(asked.peak_pu, "as asked")];
-        let peak_kva = known_or(w, &stated::PEAK_PU, peak, (1.0, "the default"));
-        let from =
-            [(ratios.map(|r| r.loss_factor_pu), "the profile"), (asked.loss_factor_pu, "as asked")];
-        let loss_factor_pu =
-            match (first_known(w, &stated::LOSS_FACTOR, from), asked.load_factor_pu) {
-                (Some(known), _) => known,
-                (None, Some(lf)) => factors::loss_factor(w, lf, a.loss_factor_weight_pu),
-                (None, None) => {
-                    let why = "say how the load runs: a profile, a loss factor or a load factor";
-                    return Err(Refusal::new("loss_factor_pu", "", why).into());
-                }
-            };
-        let growth = [(asked.load_growth_pct.map(|pct| pct / 100.0), "as asked")];
-        let constant = context.market.constant;
-        let load = profile.map_or_else(|| Ok(constant), |p| context.market.profiles[p].clone())?;
-        Ok(Duty {
-            peak_kva,
-            load_growth_pu: known_or(w, &stated::GROWTH, growth, (a.load_growth, "the basis")),
-            load_factor_pu: ratios.map(|r| r.load_factor_pu).or(asked.load_factor_pu),
-            loss_factor_pu,
-            energised_hours: a.energised_hours,
-            auxiliary_hours: a.auxiliary_hours.unwrap_or(a.energised_hours),
-            power_factor: None,
-            responsibility_pu: load.responsibility_pu.or(a.responsibility_pu).unwrap_or(1.0),
-            no_load_price_per_kwh: constant.price_per_kwh,
-            load_price_per_kwh: load.price_per_kwh,
-            no_load_co2_kg_per_kwh: constant.co2_kg_per_kwh,
-            drop: None,
-            load_co2_kg_per_kwh: load.co2_kg_per_kwh,
-        })
+        Ok(StatedLoad { profile, ..asked.numbers() })
     }
 
     /// What is doubtful about the basis and about what was stated of the load.

@@ -45,6 +45,12 @@ figures! {
     "capital" "capital" "money" 0 "price and installation of the best choice at today's price";
     "energy_saved_kwh" "energy saved" "kWh" 0 "in the first year of service of the best choice";
     "co2_saved_kg" "CO2 saved" "kg" 0 "in the first year of service of the best choice";
+    "now_irr_pct" "rate of return, now" "%" 2 "rate of return of buying the best offer now";
+    "discounted_payback_years" "discounted payback" "years" 1 "years until the discounted savings of the best choice make up its capital";
+    "co2_avoided_t" "CO2 avoided" "t" 1 "by the best choice over the horizon";
+    "cost_per_t_co2" "cost of that CO2" "money/t" 2 "what the best choice costs for each tonne that it avoids; negative where it saves";
+    "keep_euac" "equal yearly: keep" "money" 0 "equal yearly cost of keeping over the horizon";
+    "best_euac" "equal yearly: best" "money" 0 "equal yearly cost of the best choice over the horizon";
     "flags" "flags" "" 0 "what is doubtful";
     "rank_low" "if low" "" 0 "place if the estimated losses of the unit were at the lower ends of their 95 % intervals";
     "rank_high" "if high" "" 0 "place if the estimated losses of the unit were at the upper ends of their 95 % intervals";

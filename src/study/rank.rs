@@ -15,6 +15,7 @@ use crate::engine::decision::{Context, LeftOut};
 use crate::engine::exact_sum::ExactSum;
 use crate::engine::flags::Flags;
 use crate::engine::working::Silent;
+use crate::study::offers_open::left_out_because;
 use crate::study::{Desk, StudyError, Watch};
 
 /// By what the ranking is ordered.
@@ -349,7 +350,7 @@ impl Ranking {
     /// Unit number `n` of those left out; none beyond the last.
     pub fn left_out_row<'a>(&self, desk: &'a Desk, n: usize) -> Option<LeftOutRow<'a>> {
         let i = *self.left_out.get(n)? as usize;
-        let why = self.outcomes[i].left_out?.why();
+        let why = left_out_because(desk, &self.context, i, self.outcomes[i].left_out?);
         Some(LeftOutRow { unit: desk.fleet.unit.get(i), why })
     }
 

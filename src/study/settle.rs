@@ -21,10 +21,10 @@ use crate::engine::decision::tender::Terms;
 use crate::engine::decision::tender::bid::Comparable;
 use crate::engine::decision::tender::rates::amount_in_currency;
 use crate::engine::decision::tender::settlement::{
-    Delivered, Excess, beyond, delivered, mean, mean_cost, penalty, penalty_of_mean,
-    penalty_of_units,
+    Delivered, beyond, delivered, mean, mean_cost, penalty_of_mean, penalty_of_units,
 };
 use crate::engine::decision::tender::tolerance::Exceeded;
+use crate::engine::economics::penalty::{Excess, penalty};
 use crate::engine::flags::Flags;
 use crate::engine::working::{Recorder, Silent, Step, Working};
 

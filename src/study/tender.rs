@@ -10,6 +10,7 @@ pub mod decide;
 pub mod deliver;
 mod factors;
 pub mod letter;
+mod misses;
 mod results;
 pub mod risk;
 pub mod shortfall;
@@ -33,6 +34,7 @@ use crate::engine::working::{Recorder, Silent, Step, Working};
 pub use crate::engine::decision::tender::BasisForFactors;
 pub use case::{Case, Draws};
 pub use factors::{InCurrency, LegalLimit, LotFactors, LotQuestion, lot_factors};
+pub use misses::Miss;
 pub use results::*;
 
 /// Evaluates the bids of a tender: of one lot, or of all.
@@ -281,6 +283,7 @@ struct Assessed<'a> {
     on_terms: Comparable,
     cost: OwningCost,
     found: Findings,
+    misses: Vec<Miss>,
 }
 
 impl<'a> Assessed<'a> {
@@ -290,9 +293,12 @@ impl<'a> Assessed<'a> {
         let verdict = before_the_law(terms, bid, &on_terms)?;
         let meets = verdict.as_ref().and_then(|verdict| verdict.meets);
         let mut found = limits::against(terms.lot, bid, &on_terms, meets);
+        let miss =
+            |key: &&'static str| Miss::of(key, terms.lot, bid, &on_terms.losses, verdict.as_ref());
+        let misses = found.misses.iter().map(miss).collect();
         found.flags =
             found.flags.with_if(verdict.is_some_and(|verdict| verdict.verify), Flags::VERIFY_LAW);
-        Ok(Self { bid, on_terms, cost, found })
+        Ok(Self { bid, on_terms, cost, found, misses })
     }
 
     fn standing(&self) -> Standing {
@@ -322,6 +328,7 @@ impl<'a> Assessed<'a> {
             flags: self.on_terms.flags.with(self.found.flags).keys(),
             limits_unknown: self.found.unknown.clone(),
             losses: self.on_terms.losses,
+            misses: self.misses.clone(),
         }
     }
 }

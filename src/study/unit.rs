@@ -21,7 +21,7 @@ use crate::engine::decision::keep_or_replace::{
     Decision, Replacement, YearChoice, decide, equal_yearly_cost,
 };
 use crate::engine::decision::parts::{PolicyCost, of_choice};
-use crate::engine::decision::place::{Place, losses, power_factor, resolve};
+use crate::engine::decision::place::{Place, known, losses, power_factor, resolve};
 use crate::engine::decision::{Context, LeftOut, UnitFacts};
 use crate::engine::economics::loss_factors::present_value;
 use crate::engine::economics::owning_cost::{Priced, owning_cost};
@@ -38,6 +38,8 @@ use crate::study::estimate::EstimatedRow;
 use crate::study::explain::FigureWorking;
 use crate::study::law::VerdictRow;
 use crate::study::losses::{LossesRow, of_unit, word};
+use crate::study::offers_open::left_out_because;
+use crate::study::test_report::{TestRow, TestedUnit};
 use crate::study::unit::thermal::ThermalRow;
 use crate::study::{Desk, StudyError};
 
@@ -202,6 +204,8 @@ pub struct Dossier<'a> {
     pub currency: String,
     /// What the book holds of it; blanks are null.
     pub nameplate: Map<String, Value>,
+    /// What its test report says, and which blanks of the nameplate are filled from it.
+    pub tests: Option<TestRow>,
     pub circuit: Option<CircuitRow>,
     pub power_factor: f64,
     pub load_points: Vec<LoadPoint>,
@@ -241,6 +245,10 @@ impl<'a> Question<'a> {
         Ok(Self { desk, context, index, unit, heat: Heat::default(), fit: None })
     }
 
+    fn tested(&self) -> Option<&TestedUnit> {
+        self.desk.tested(&self.unit.unit)
+    }
+
     fn facts(&self) -> UnitFacts {
         self.desk.fleet.facts(self.index)
     }
@@ -265,11 +273,14 @@ impl<'a> Question<'a> {
     }
 
     fn circuit<R: Recorder>(&self, w: &mut R, losses: &Losses) -> Option<Circuit> {
-        of_nameplate(w, losses.rated_kva, losses.load_loss_w, self.unit.impedance_pct?).ok()
+        of_nameplate(w, losses.rated_kva, losses.load_loss_w, known(self.facts().impedance_pct)?)
+            .ok()
     }
 
     fn magnetising<R: Recorder>(&self, w: &mut R, losses: &Losses) -> Option<Magnetising> {
-        let current = self.unit.no_load_current_pct?;
+        let of_test = || self.tested()?.read(&mut Silent, self.desk.stray_share_pu()).ok();
+        let current = self.unit.no_load_current_pct;
+        let current = current.or_else(|| of_test()?.no_load_current_pct)?;
         magnetising(w, losses.rated_kva, losses.no_load_loss_w, current).ok()
     }
 
@@ -308,6 +319,7 @@ impl<'a> Question<'a> {
             basis: a.name.clone(),
             currency: a.currency.clone(),
             nameplate: json_of(Unit::COLUMNS, &self.unit.values()),
+            tests: self.tested().map(|tested| TestRow::of(tested, self.desk.stray_share_pu())),
             circuit: circuit.map(|c| CircuitRow {
                 r_pu: c.r_pu,
                 x_pu: c.x_pu,
@@ -331,7 +343,10 @@ impl<'a> Question<'a> {
             }),
             losses: of_unit(self.desk, self.context, self.index).ok(),
             estimated: EstimatedRow::of(self.context, &self.facts()),
-            left_out: decided.as_ref().err().map(|why| why.why()),
+            left_out: decided
+                .as_ref()
+                .err()
+                .map(|why| left_out_because(self.desk, self.context, self.index, *why)),
             thermal: self.thermal(place.as_ref().ok(), decided.as_ref().ok().map(|(_, d)| d)),
             fit: self.fitted().map(|fit| fit.row()).transpose()?,
             law: self.verdict()?.map(|(verdict, on)| VerdictRow::of(&verdict, on)),

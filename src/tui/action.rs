@@ -43,6 +43,10 @@ pub enum Place {
     On(Screen),
     /// While the filter is typed.
     Filter,
+    /// While a value of the basis is typed.
+    Value,
+    /// While the reason of an award is typed.
+    Reason,
     /// In the help.
     Help,
     /// In the panel that opens a figure.
@@ -58,6 +62,8 @@ impl Place {
             Self::Everywhere => "Everywhere",
             Self::List => "Moving",
             Self::Filter => "While typing a filter",
+            Self::Value => "While typing a value",
+            Self::Reason => "While typing why it is awarded",
             Self::Help => "In the help",
             Self::Working => "In the working of a figure",
             Self::WhatIf => "What if",
@@ -91,11 +97,15 @@ pub enum Action {
     Working,
     NextFigure,
     PreviousFigure,
+    NextPart,
+    PreviousPart,
     Copy,
     Filter,
     FilterKeep,
     FilterDrop,
-    FilterErase,
+    EntryTake,
+    EntryLeave,
+    EntryErase,
     Sort,
     LeftOut,
     NextUnit,
@@ -107,6 +117,8 @@ pub enum Action {
     TenderView,
     WhatIf,
     Risk,
+    Award,
+    TypeValue,
     Less,
     More,
     MuchLess,
@@ -161,9 +173,19 @@ actions! {
     Place::Filter => {
         "filter-keep" Action::FilterKeep, [key(KeyCode::Enter), key(KeyCode::Tab)], "keep", "Stop typing and keep the filter.", shown;
         "filter-drop" Action::FilterDrop, [key(KeyCode::Esc)], "drop", "Stop typing and show all units again.", shown;
-        "filter-erase" Action::FilterErase, [Key::ctrl('u')], "erase", "Erase what was typed.", shown;
+        "filter-erase" Action::EntryErase, [Key::ctrl('u')], "erase", "Erase what was typed.", shown;
         "filter-up" Action::Up, [key(KeyCode::Up)], "up", "One line up in the list.";
         "filter-down" Action::Down, [key(KeyCode::Down)], "down", "One line down in the list.";
+    }
+    Place::Value => {
+        "value-take" Action::EntryTake, [key(KeyCode::Enter)], "take", "Take the value; the ranking follows at once. The word blank leaves it open. Nothing is stored yet.", shown;
+        "value-leave" Action::EntryLeave, [key(KeyCode::Esc)], "leave", "Leave the value as it is.", shown;
+        "value-erase" Action::EntryErase, [Key::ctrl('u')], "erase", "Erase what was typed.", shown;
+    }
+    Place::Reason => {
+        "reason-award" Action::EntryTake, [key(KeyCode::Enter)], "award", "Award the lot: who, when, why and the terms go into the book and its journal.", shown;
+        "reason-leave" Action::EntryLeave, [key(KeyCode::Esc)], "leave", "Award nothing; nothing is stored.", shown;
+        "reason-erase" Action::EntryErase, [Key::ctrl('u')], "erase", "Erase what was typed.", shown;
     }
     FLEET => {
         "open" Action::Open, [key(KeyCode::Enter), char('o')], "open", "Open the unit under the cursor.", shown;
@@ -180,18 +202,20 @@ actions! {
     }
     TENDER => {
         "next-lot" Action::NextLot, [key(KeyCode::Right), char('n')], "next lot", "The next lot of the tender.", shown;
-        "previous-lot" Action::PreviousLot, [key(KeyCode::Left), char('p')], "previous", "The previous lot of the tender.", shown;
+        "previous-lot" Action::PreviousLot, [key(KeyCode::Left), char('p')], "previous", "The previous lot of the tender.";
         "bid-working" Action::Working, [char('e'), key(KeyCode::F(6))], "explain", "How the figures of the bid under the cursor come about, step by step.", shown;
-        "tender-view" Action::TenderView, [char('m'), key(KeyCode::F(3))], "map/changes", "In turn: the bids, the map of who wins at other factors, what must move before another wins.", shown;
+        "tender-view" Action::TenderView, [char('m'), key(KeyCode::F(3))], "map", "In turn: the bids, the map of who wins at other factors, what must move before another wins.", shown;
         "what-if" Action::WhatIf, [char('v'), key(KeyCode::F(7))], "what if", "Move a factor, or the price or a loss of the bid under the cursor, and see the ranking follow. Nothing is stored.", shown;
         "risk" Action::Risk, [char('u'), key(KeyCode::F(9))], "how sure", "Draw the uncertain inputs of the basis: how probably each bid of the lot is the cheapest to own.", shown;
+        "award" Action::Award, [char('w'), key(KeyCode::F(2))], "award", "Award the lot to the bid under the cursor: asks why, and stores nothing before Enter.", shown;
         "next-tender" Action::NextTender, [char('t'), key(KeyCode::F(4))], "next tender", "The next tender of the book.";
     }
     BASIS => {
+        "type-value" Action::TypeValue, [key(KeyCode::Enter), char('v')], "type", "Type the value of the assumption under the cursor.", shown;
         "less" Action::Less, [key(KeyCode::Left), char('-')], "less", "A small step down, or the word before.", shown;
         "more" Action::More, [key(KeyCode::Right), char('+'), char('=')], "more", "A small step up, or the next word.", shown;
-        "much-less" Action::MuchLess, [char('<'), char(','), Key::shift(KeyCode::Left)], "far less", "A step down ten times as large.", shown;
-        "much-more" Action::MuchMore, [char('>'), char('.'), Key::shift(KeyCode::Right)], "far more", "A step up ten times as large.", shown;
+        "much-less" Action::MuchLess, [char('<'), char(','), Key::shift(KeyCode::Left)], "far less", "A step down ten times as large.";
+        "much-more" Action::MuchMore, [char('>'), char('.'), Key::shift(KeyCode::Right)], "far more", "A step up ten times as large.";
         "store" Action::Save, [char('w'), key(KeyCode::F(2))], "store", "Store the changed assumptions in the book; asks once more. The journal keeps the old ones.", shown;
         "reset" Action::Reset, [char('r'), key(KeyCode::Delete)], "reset", "Put the assumption under the cursor back as it is stored.", shown;
         "reset-all" Action::ResetAll, [char('R'), key(KeyCode::F(8))], "reset all", "Put every assumption back as it is stored.";
@@ -219,7 +243,9 @@ actions! {
     Place::Working => {
         "working-close" Action::Back, [key(KeyCode::Esc), char('e'), char('q'), key(KeyCode::F(6)), key(KeyCode::Enter), key(KeyCode::Backspace)], "close", "Close the working.", shown;
         "next-figure" Action::NextFigure, [key(KeyCode::Right), char('n')], "next figure", "The working of the next figure.", shown;
-        "previous-figure" Action::PreviousFigure, [key(KeyCode::Left), char('p')], "previous", "The working of the figure before.", shown;
+        "previous-figure" Action::PreviousFigure, [key(KeyCode::Left), char('p')], "previous", "The working of the figure before.";
+        "next-part" Action::NextPart, [char('>'), char('.'), Key::shift(KeyCode::Right)], "next part", "The first figure of the next part: losses, loading, heat, law.", shown;
+        "previous-part" Action::PreviousPart, [char('<'), char(','), Key::shift(KeyCode::Left)], "previous part", "The first figure of the part before.";
         "copy" Action::Copy, [char('y'), char('c')], "copy", "Hand the working to the terminal as text to be copied.", shown;
     }
     Place::Everywhere => {

@@ -5,16 +5,16 @@ use std::sync::Arc;
 
 use ratatui::crossterm::event::{KeyEvent, KeyEventKind};
 use ratatui::layout::Size;
-use tui_input::{Input, InputRequest};
 
 use super::action::{self, Action, Place, Screen};
 use super::caps::Caps;
 use super::clipboard::Clipboard;
+use super::entry::{Entry, Of};
 use super::keys::Key;
 use super::list::{List, Step};
-use super::session::{JournalLine, Session};
+use super::session::{Awarding, JournalLine, Session};
 use super::theme::Theme;
-use super::work::{Answer, Done, Job, Kind, Question, Ranked, View, ViewSpec};
+use super::work::{Answer, Done, Job, Kind, Question, Ranked, View, ViewSpec, Writes};
 use super::{basis, frame, help, tender, text, unit, working};
 use crate::engine::columns::BasisSheet;
 use crate::study::rank::By;
@@ -71,7 +71,7 @@ pub(super) struct Opened {
     pub(super) title: String,
     pub(super) basis_source: String,
     pub(super) journal: Vec<JournalLine>,
-    pub(super) can_save: bool,
+    pub(super) writes: Writes,
 }
 
 /// The state of the dashboard.
@@ -96,8 +96,8 @@ pub struct App {
     pub(super) fleet: List,
     pub(super) show_left_out: bool,
     pub(super) left_out: List,
-    /// The filter while it is typed.
-    pub(super) typing: Option<Input>,
+    /// The line that is typed.
+    pub(super) typing: Option<Entry>,
     pub(super) unit: unit::State,
     /// The unit under the cursor of the fleet, where it is shown beside the list.
     pub(super) glance: unit::State,
@@ -190,8 +190,15 @@ impl App {
     pub fn places(&self) -> Vec<Place> {
         if self.help.is_some() {
             vec![Place::Help, Place::List, Place::Everywhere]
-        } else if self.typing.is_some() {
-            vec![Place::Filter]
+        } else {
+            self.places_below_help()
+        }
+    }
+
+    /// The same, were the help closed.
+    pub(super) fn places_below_help(&self) -> Vec<Place> {
+        if let Some(entry) = &self.typing {
+            vec![entry.place()]
         } else if self.working.is_some() {
             vec![Place::Working, Place::List, Place::Everywhere]
         } else if self.moves_inputs() {
@@ -220,32 +227,26 @@ impl App {
         }
         match (action, &mut self.typing) {
             (Some(action), _) => self.act(action),
-            (None, Some(input)) if self.help.is_none() => match edit(key) {
-                Some(request) => {
-                    input.handle(request);
-                    self.filter_typed();
-                }
-                None => {
+            (None, Some(entry)) if self.help.is_none() => {
+                if entry.key(key) {
+                    self.typed();
+                } else if let Some(action) =
+                    action::of_key(&[Place::Everywhere], key).filter(|_| key.typed().is_none())
+                {
                     // Keys that type nothing still do what they do everywhere.
-                    if let Some(action) =
-                        action::of_key(&[Place::Everywhere], key).filter(|_| key.typed().is_none())
-                    {
-                        self.act(action);
-                    }
+                    self.act(action);
                 }
-            },
+            }
             _ => {}
         }
         self.settle();
     }
 
-    /// Takes pasted text: into the filter while it is typed, else nowhere.
+    /// Takes pasted text: into the line that is typed, else nowhere.
     pub fn paste(&mut self, text: &str) {
-        if let Some(input) = &mut self.typing {
-            for c in text.chars().filter(|c| !c.is_control()).take(200) {
-                input.handle(InputRequest::InsertChar(c));
-            }
-            self.filter_typed();
+        if let Some(entry) = &mut self.typing {
+            entry.paste(text);
+            self.typed();
             self.settle();
         }
     }
@@ -297,19 +298,41 @@ impl App {
                     }
                 }
             }
+            Action::NextPart | Action::PreviousPart => {
+                let turned = self.working.as_mut().map(|p| p.part(action == Action::NextPart));
+                if let Some(Err(error)) = turned {
+                    self.message = Some(error.to_string());
+                }
+            }
             Action::Copy => self.copy(),
             Action::Filter => {
-                self.typing = Some(Input::new(self.wanted.filter.clone()));
+                self.typing = Some(Entry::filter(self.wanted.filter.clone()));
             }
-            Action::FilterKeep => self.typing = None,
+            Action::FilterKeep | Action::EntryLeave => self.typing = None,
             Action::FilterDrop => {
                 self.typing = None;
                 self.show(ViewSpec { filter: String::new(), ..self.wanted.clone() });
             }
-            Action::FilterErase => {
-                self.typing = Some(Input::default());
-                self.filter_typed();
+            Action::EntryErase => {
+                if let Some(entry) = &mut self.typing {
+                    entry.input.reset();
+                    self.typed();
+                }
             }
+            Action::EntryTake => self.take_entry(),
+            Action::Award => match tender::award(self) {
+                Ok(of) => {
+                    self.typing = Some(Entry::new(of));
+                    if !tender::shows_all(self) {
+                        self.tender.view = tender::View::Bids;
+                    }
+                }
+                Err(why) => self.message = Some(self.theme.spell(&why).into_owned()),
+            },
+            Action::TypeValue => match self.basis.can_type() {
+                Ok(()) => self.typing = Some(Entry::new(Of::Value)),
+                Err(why) => self.message = Some(why),
+            },
             Action::Sort => {
                 let at = By::WORDS.iter().position(|(by, _)| *by == self.wanted.by).unwrap_or(0);
                 let by = By::WORDS[(at + 1) % By::WORDS.len()].0;
@@ -527,10 +550,11 @@ impl App {
             self.unit.facts = List::default();
             self.unit.years = List::default();
             self.unit.record = None;
-            let name = ranked.desk.fleet.unit.get(i).to_owned();
-            self.ask("Reading the unit", Question::Record(name));
         }
         self.unit.open(&ranked, i);
+        if self.unit.more.is_none() {
+            self.ask("Reading the unit", Question::Record(ranked, i));
+        }
     }
 
     /// Asks for another view of the ranked fleet.
@@ -544,9 +568,55 @@ impl App {
         }
     }
 
-    fn filter_typed(&mut self) {
-        let filter = self.typing.as_ref().map_or("", Input::value).to_owned();
-        self.show(ViewSpec { filter, ..self.wanted.clone() });
+    /// Something was typed: what was said of it no longer holds, and a filter is at work at once.
+    fn typed(&mut self) {
+        self.message = None;
+        if let Some(Entry { of: Of::Filter, input }) = &self.typing {
+            let filter = input.value().to_owned();
+            self.show(ViewSpec { filter, ..self.wanted.clone() });
+        }
+    }
+
+    /// Takes the line that was typed; what cannot be taken stays and says why.
+    fn take_entry(&mut self) {
+        let Some(Entry { of, input }) = &self.typing else { return };
+        let (of, text) = (of.clone(), input.value().trim().to_owned());
+        let taken = match of {
+            Of::Filter => Ok(()),
+            Of::Value => self.take_value(&text),
+            Of::Reason { lot, bid } => self.take_award(lot, bid, &text),
+        };
+        match taken {
+            Ok(()) => self.typing = None,
+            Err(why) => self.message = Some(self.theme.spell(&why).into_owned()),
+        }
+    }
+
+    fn take_value(&mut self, text: &str) -> Result<(), String> {
+        if self.is_storing() {
+            return Ok(());
+        }
+        let Some(ranked) = &self.ranked else { return Ok(()) };
+        if self.basis.set(&ranked.desk, text)? {
+            self.rank_draft();
+        }
+        Ok(())
+    }
+
+    fn take_award(&mut self, lot: String, bid: String, why: &str) -> Result<(), String> {
+        tender::reasoned(self, &bid, why)?;
+        let (Some(sheet), Some(ranked)) = (tender::shown(self), &self.ranked) else {
+            return Ok(());
+        };
+        let asked = Awarding {
+            sheet: Arc::clone(&sheet.sheet),
+            basis: Box::new(ranked.desk.sheet.clone()),
+            lot,
+            bid,
+            why: (!why.is_empty()).then(|| why.to_owned()),
+        };
+        self.ask("Storing the award", Question::Award(Box::new(asked)));
+        Ok(())
     }
 
     /// Takes an answer of the worker; one that is not the newest of its kind is dropped.
@@ -557,7 +627,7 @@ impl App {
         }
         self.asking.busy[kind] = None;
         match done.answer {
-            Ok(Answer::Opened(session, can_save)) => self.take_session(*session, can_save),
+            Ok(Answer::Opened(session, writes)) => self.take_session(*session, writes),
             Ok(Answer::Ranked(ranked, view)) => {
                 if self.stored.is_none() {
                     self.stored = Some(Arc::clone(&ranked));
@@ -579,7 +649,7 @@ impl App {
                 }
                 self.look(view, unit);
                 if let Some(i) = self.unit.index {
-                    self.unit.open(&ranked, i);
+                    self.open_unit(i);
                 }
             }
             Ok(Answer::View(ranked, view)) => {
@@ -588,7 +658,9 @@ impl App {
                     self.look(view, unit);
                 }
             }
-            Ok(Answer::Record(unit, record)) => self.unit.take_record(&unit, record),
+            Ok(Answer::Record(ranked, i, record, more)) => {
+                self.unit.take_record(&ranked, i, record, more);
+            }
             Ok(Answer::WhatIf(evaluated, number)) => {
                 if self.tender.counts(number) {
                     let bid = tender::under_cursor(self).map(|(_, _, bid)| bid.to_owned());
@@ -604,6 +676,7 @@ impl App {
                 }
             }
             Ok(Answer::Saved(sheet, journal)) => self.saved(*sheet, journal),
+            Ok(Answer::Awarded(asked, journal)) => self.awarded(&asked, journal),
             Err(error) if done.kind == Kind::Open => self.exit = Some(Err(error)),
             Err(error) if self.ranked.is_none() => self.exit = Some(Err(error)),
             Err(StudyError::Stopped) => self.stopped(),
@@ -618,9 +691,9 @@ impl App {
         self.settle();
     }
 
-    fn take_session(&mut self, session: Session, can_save: bool) {
+    fn take_session(&mut self, session: Session, writes: Writes) {
         let Session { title, desk, basis_source, journal, .. } = session;
-        self.opened = Some(Opened { title, basis_source, journal, can_save });
+        self.opened = Some(Opened { title, basis_source, journal, writes });
         self.basis.open(&desk);
         self.ask("Ranking the fleet", Question::Rank(Box::new(desk), self.wanted.clone()));
     }
@@ -693,9 +766,10 @@ impl App {
 
     /// What is being stored stays as it is until it is stored.
     fn is_storing(&mut self) -> bool {
-        let storing = self.asking.busy[Kind::Save as usize].is_some();
+        let busy = |kind: Kind| self.asking.busy[kind as usize].is_some();
+        let storing = busy(Kind::Save) || busy(Kind::Award);
         if storing {
-            self.message = Some("The basis is being stored; one moment.".to_owned());
+            self.message = Some("The book is being written; one moment.".to_owned());
         }
         storing
     }
@@ -719,7 +793,7 @@ impl App {
             1 => "1 change".to_owned(),
             n => format!("{n} changes"),
         };
-        self.message = Some(if !self.opened.as_ref().is_some_and(|opened| opened.can_save) {
+        self.message = Some(if !self.opened.as_ref().is_some_and(|opened| opened.writes.basis) {
             "The book is open for reading only; nothing can be stored.".to_owned()
         } else if !self.basis.is_changed() {
             "Nothing was changed.".to_owned()
@@ -746,26 +820,23 @@ impl App {
         }
     }
 
+    fn awarded(&mut self, asked: &Awarding, journal: Vec<JournalLine>) {
+        if let Some(opened) = &mut self.opened {
+            opened.journal = journal;
+        }
+        // The tender as it stands now comes with the ranking.
+        self.rank_draft();
+        let (lot, bid) = (text::cut(&asked.lot, 16), text::cut(&asked.bid, 20));
+        self.message =
+            Some(format!("Lot {lot} is awarded to {bid}. The journal (5) says by whom and why."));
+        if self.leaving {
+            self.exit = Some(Ok(ExitReason::Quit));
+        }
+    }
+
     fn rank_draft(&mut self) {
         let (Some(ranked), Some(sheet)) = (&self.ranked, self.basis.sheet()) else { return };
         let desk = ranked.desk.with_basis(sheet);
         self.ask("Ranking the fleet", Question::Rank(Box::new(desk), self.wanted.clone()));
-    }
-}
-
-/// What a key does to a line of text.
-fn edit(key: Key) -> Option<InputRequest> {
-    use ratatui::crossterm::event::KeyCode;
-    if let Some(c) = key.typed() {
-        return Some(InputRequest::InsertChar(c));
-    }
-    match (key.code, key.modifiers.is_empty()) {
-        (KeyCode::Backspace, true) => Some(InputRequest::DeletePrevChar),
-        (KeyCode::Delete, true) => Some(InputRequest::DeleteNextChar),
-        (KeyCode::Left, true) => Some(InputRequest::GoToPrevChar),
-        (KeyCode::Right, true) => Some(InputRequest::GoToNextChar),
-        (KeyCode::Home, true) => Some(InputRequest::GoToStart),
-        (KeyCode::End, true) => Some(InputRequest::GoToEnd),
-        _ => None,
     }
 }

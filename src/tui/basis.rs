@@ -2,6 +2,7 @@
 
 pub(super) mod draw;
 mod nudge;
+mod typed;
 
 pub(super) use nudge::stepped;
 
@@ -103,6 +104,35 @@ impl State {
         };
         self.draft[at] = nudge::moved(column, stored, &self.draft, at, desk, steps, large)?;
         Ok(())
+    }
+
+    /// Whether the assumption under the cursor can be typed.
+    ///
+    /// # Errors
+    /// Why it cannot.
+    pub(super) fn can_type(&self) -> Result<(), String> {
+        match Basis::COLUMNS.get(self.list.cursor).map(|column| column.name) {
+            Some("name" | "currency") | None => {
+                Err("It is changed in the basis file only.".to_owned())
+            }
+            Some(_) => Ok(()),
+        }
+    }
+
+    /// Sets the assumption under the cursor to what was typed; says whether that changed anything.
+    ///
+    /// # Errors
+    /// Why it cannot be that.
+    pub(super) fn set(&mut self, desk: &Desk, typed: &str) -> Result<bool, String> {
+        let Some(column) = Basis::COLUMNS.get(self.list.cursor) else { return Ok(false) };
+        let series: Vec<&str> = desk.series.iter().map(|series| series.name.as_str()).collect();
+        let value = typed::read(column, typed, &series)?;
+        let now = &mut self.draft[self.list.cursor];
+        let changes = value.as_ref().is_some_and(|value| value != now);
+        if let Some(value) = value {
+            *now = value;
+        }
+        Ok(changes)
     }
 
     /// Puts the assumption under the cursor, or all, back as stored; says whether anything changed.

@@ -10,6 +10,7 @@ use crate::study::rank::Ranking;
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
 pub struct Extent {
     place: usize,
+    could_be: usize,
     unit: usize,
     site: usize,
     rating: usize,
@@ -63,6 +64,15 @@ impl Most {
     }
 }
 
+/// Width of two places with a stroke between them: those that the units of estimated losses could take.
+fn could_be(ranking: &Ranking) -> usize {
+    let ends = ranking.could_stand.values().map(|could| [could.low, could.high]);
+    let wide = |place: Option<usize>| place.map_or(0, |place| text::width(&text::count(place)));
+    ends.map(|ends| ends.map(wide).into_iter().max().unwrap_or(0))
+        .max()
+        .map_or(0, |wide| 2 * wide + 1)
+}
+
 impl Extent {
     /// Measures a ranked fleet.
     pub fn of(desk: &Desk, ranking: &Ranking) -> Self {
@@ -76,6 +86,7 @@ impl Extent {
         let offers = desk.offers.iter().map(|offer| text::width(&offer.offer));
         Self {
             place: text::width(&text::count(ranking.order.len())),
+            could_be: could_be(ranking),
             unit: most.unit,
             site: most.site,
             rating: wide(most.rating, usize::from(most.broken)),
@@ -91,6 +102,7 @@ impl Extent {
     pub fn width(&self, key: &str) -> usize {
         match key {
             "rank" => self.place,
+            "rank_low" => self.could_be,
             "unit" => self.unit,
             "site" => self.site,
             "rated_kva" => self.rating,

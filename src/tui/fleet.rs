@@ -10,12 +10,12 @@ use super::bar::{self, Parts};
 use super::frame::{put, put_line, select};
 use super::text;
 use super::theme::Part;
-use super::unit::{LEGEND, choices, not_yet_words, scale};
+use super::unit::{LEGEND, choices, not_yet_words, scale, span};
 use super::words::currency_in;
 use super::work::Ranked;
-use crate::engine::decision::LeftOut;
 use crate::study::figures::{Figure, figure};
 use crate::study::losses;
+use crate::study::offers_open::left_out_because;
 use crate::study::rank::{By, RankRow};
 
 /// Lines above the list: headings, units.
@@ -59,8 +59,9 @@ struct Column {
     most: usize,
 }
 
-const COLUMNS: [Column; 12] = [
+const COLUMNS: [Column; 13] = [
     Column { key: "rank", number: true, rank: 0, most: 9 },
+    Column { key: COULD_BE, number: false, rank: 1, most: 13 },
     Column { key: "unit", number: false, rank: 0, most: 16 },
     Column { key: "site", number: false, rank: 4, most: 18 },
     Column { key: "rated_kva", number: true, rank: 2, most: 9 },
@@ -75,13 +76,17 @@ const COLUMNS: [Column; 12] = [
 ];
 
 /// Cells of the narrowest and the widest bar.
-const BAR: (usize, usize) = (20, 40);
+const BAR: (usize, usize) = (18, 40);
+
+/// Where units of estimated losses could stand; there is no such column where none is estimated.
+const COULD_BE: &str = "rank_low";
 
 fn cell(row: &RankRow, key: &str) -> String {
     let money = |value: f64| text::number(value, 0);
     let whole = |n: Option<i64>| n.map_or(String::new(), |n| n.to_string());
     match key {
         "rank" => text::count(row.rank),
+        COULD_BE => span(row).unwrap_or_default(),
         "unit" => row.unit.to_owned(),
         "site" => row.site.unwrap_or("").to_owned(),
         "rated_kva" => text::plain(row.rated_kva, 1),
@@ -139,6 +144,10 @@ fn ranking(app: &App, ranked: &Ranked, area: Rect, buffer: &mut Buffer) {
     }
     let figures: Vec<(&Column, &Figure)> =
         COLUMNS.iter().filter_map(|c| Some((c, figure(c.key)?))).collect();
+    let heading = |n: usize| {
+        let (column, figure): (&Column, &Figure) = figures[n];
+        if column.key == COULD_BE { "could be" } else { figure.heading }
+    };
     let cells: Vec<Vec<String>> = rows
         .iter()
         .map(|(row, _)| figures.iter().map(|(c, _)| cell(row, c.key)).collect())
@@ -146,8 +155,9 @@ fn ranking(app: &App, ranked: &Ranked, area: Rect, buffer: &mut Buffer) {
     let unit = |figure: &Figure| currency_in(figure.unit, &currency);
     let widths: Vec<usize> = figures
         .iter()
-        .map(|(column, figure)| {
-            let heading = text::width(figure.heading).max(text::width(&unit(figure)));
+        .enumerate()
+        .map(|(n, (column, figure))| {
+            let heading = text::width(heading(n)).max(text::width(&unit(figure)));
             ranked.extent.width(column.key).min(column.most).max(heading)
         })
         .collect();
@@ -164,7 +174,9 @@ fn ranking(app: &App, ranked: &Ranked, area: Rect, buffer: &mut Buffer) {
         if column.key == ordered_by { 0 } else { column.rank }
     };
     let room = usize::from(area.width).saturating_sub(2);
-    let mut kept: Vec<usize> = (0..figures.len()).collect();
+    let estimates = !ranked.ranking.could_stand.is_empty();
+    let mut kept: Vec<usize> =
+        (0..figures.len()).filter(|n| estimates || figures[*n].0.key != COULD_BE).collect();
     let used = |kept: &[usize]| kept.iter().map(|n| widths[*n] + 2).sum::<usize>();
     while used(&kept) + BAR.0 > room {
         let Some(least) = kept.iter().copied().max_by_key(|n| rank(*n)) else { break };
@@ -188,12 +200,14 @@ fn ranking(app: &App, ranked: &Ranked, area: Rect, buffer: &mut Buffer) {
             line
         })
     };
-    let headings = join(&mut kept.iter().map(|n| (*n, figures[*n].1.heading.to_owned())));
+    let headings = join(&mut kept.iter().map(|n| (*n, heading(*n).to_owned())));
     let units = join(&mut kept.iter().map(|n| (*n, unit(figures[*n].1))));
     let mut above = vec![Span::styled(headings, theme.heading())];
     above.extend(bar::legend(theme, &[(Part::Iron, "iron"), (Part::Copper, "copper")]));
     put_line(buffer, area, 0, &Line::from(above));
-    let scale_said = format!("full {} {currency}/year", text::number(scale, 0));
+    let full = format!("{} {currency}/year", text::number(scale, 0));
+    let said = format!("full {full}");
+    let scale_said = if text::width(&said) <= cells_of_bar { said } else { full };
     let scale_said = text::right(&scale_said, cells_of_bar);
     put(buffer, area, 1, &format!("{units}{scale_said}"), theme.muted());
 
@@ -284,11 +298,20 @@ fn detail(app: &App, ranked: &Ranked, i: usize, cells: usize) -> Vec<Line<'stati
         Line::default(),
     ];
     let Some(row) = ranked.ranking.row(&ranked.desk, ranked.place[i] as usize) else {
-        let why = ranked.ranking.outcomes[i].left_out.map_or("", LeftOut::why);
+        let why = ranked.ranking.outcomes[i]
+            .left_out
+            .map_or("", |why| left_out_because(&ranked.desk, &ranked.ranking.context, i, why));
         let said = text::wrap(&format!("left out: {why}"), cells);
         lines.extend(said.into_iter().map(Line::raw));
         return lines;
     };
+    if let Some(span) = span(&row) {
+        let said =
+            format!("place {}, could be {span} by its estimated losses", text::count(row.rank));
+        lines.pop();
+        lines.extend(text::wrap(&said, cells).into_iter().map(Line::raw));
+        lines.push(Line::default());
+    }
     if let Some(Ok(known)) = app.glance.dossier.as_ref().map(|dossier| &dossier.known) {
         let choices = choices(&ranked.desk, known, ranked.ranking.context.assumptions.first_year);
         let scale = scale(&choices);

@@ -10,11 +10,12 @@ use ratatui::widgets::{Clear, Widget as _};
 
 use super::action::{self, Action, ActionDef, Place, Screen};
 use super::app::App;
+use super::entry::{Entry, Of};
 use super::theme;
 use super::{basis, fleet, help, journal, tender, text, unit, working};
 
 /// The smallest terminal in which the screens are drawn.
-pub(super) const LEAST: Size = Size { width: 60, height: 16 };
+pub(super) const LEAST: Size = Size { width: 60, height: 15 };
 
 /// The parts of the terminal.
 pub(super) struct Areas {
@@ -57,7 +58,10 @@ pub(super) fn list_height(app: &App) -> usize {
     }
     usize::from(match app.screen {
         Screen::Fleet => fleet::rows(app, body),
-        Screen::Unit => unit::draw::areas(body, app.unit.table).facts.height,
+        Screen::Unit => {
+            let columns = unit::draw::columns(unit::draw::areas(body, app.unit.table).facts);
+            columns.iter().map(|column| column.height).sum()
+        }
         Screen::Basis => basis::draw::areas(body).list.height.saturating_sub(1),
         Screen::Tender => tender::draw::rows(app, body),
         Screen::Journal => body.height.saturating_sub(journal::AROUND),
@@ -177,24 +181,8 @@ impl App {
     }
 
     fn status(&self, area: Rect, buffer: &mut Buffer) -> Option<(u16, u16)> {
-        if let Some(input) = self.typing.as_ref().filter(|_| self.help.is_none()) {
-            let room = usize::from(area.width.saturating_sub(24));
-            let scroll = input.visual_scroll(room.saturating_sub(1));
-            let typed: String = text::clean(input.value()).chars().skip(scroll).collect();
-            let shown = self.view.places.len() + self.view.left_out.len();
-            put(
-                buffer,
-                area,
-                0,
-                &format!(" filter: {}", text::cut(&typed, room)),
-                self.theme.heading(),
-            );
-            let found = Line::raw(format!("{} found ", text::count(shown)));
-            put_right(buffer, area, 0, &found);
-            let x = area.x
-                + 9
-                + u16::try_from(input.visual_cursor().saturating_sub(scroll)).unwrap_or(0);
-            return (x < area.right() && area.height > 0).then_some((x, area.y));
+        if let Some(entry) = self.typing.as_ref().filter(|_| self.help.is_none()) {
+            return self.typed_line(entry, area, buffer);
         }
         if let Some(message) = &self.message {
             put(buffer, area, 0, &format!(" {message}"), self.theme.warning());
@@ -218,6 +206,29 @@ impl App {
             }
         }
         None
+    }
+
+    /// The line that is typed, with its cursor; what it asks for before it, what it comes to after it.
+    fn typed_line(&self, entry: &Entry, area: Rect, buffer: &mut Buffer) -> Option<(u16, u16)> {
+        let (asks, said) = match &entry.of {
+            Of::Filter => {
+                let found = self.view.places.len() + self.view.left_out.len();
+                ("filter".to_owned(), format!("{} found", text::count(found)))
+            }
+            Of::Value => basis::draw::asks(self),
+            Of::Reason { .. } => ("why".to_owned(), String::new()),
+        };
+        let (asks, said) = (format!(" {asks}: "), format!("{said} "));
+        let before = text::width(&asks);
+        let room = usize::from(area.width).saturating_sub(before + text::width(&said) + 2);
+        let scroll = entry.input.visual_scroll(room.saturating_sub(1));
+        let typed: String = text::clean(entry.text()).chars().skip(scroll).collect();
+        let line = format!("{asks}{}", text::cut(&typed, room));
+        put(buffer, area, 0, &line, self.theme.heading());
+        put_right(buffer, area, 0, &Line::styled(said, self.theme.muted()));
+        let x = before + entry.input.visual_cursor().saturating_sub(scroll);
+        let x = area.x.saturating_add(u16::try_from(x).unwrap_or(u16::MAX));
+        (x < area.right() && area.height > 0).then_some((x, area.y))
     }
 
     /// What the figures are not; the help says it in full.
@@ -263,6 +274,11 @@ impl App {
 
     fn context(&self, area: Rect, buffer: &mut Buffer) {
         let ascii = self.theme.caps().ascii;
+        // What is wrong with a typed line stands below it; its keys come back with the next one.
+        if let (Some(message), Some(_), None) = (&self.message, &self.typing, &self.help) {
+            put(buffer, area, 0, &format!(" {message}"), self.theme.warning());
+            return;
+        }
         let mut spans = vec![Span::raw(" ")];
         let mut room = usize::from(area.width).saturating_sub(1);
         let reachable = action::reachable(&self.places());

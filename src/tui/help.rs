@@ -4,9 +4,10 @@ use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
 use ratatui::text::{Line, Span};
 
-use super::action::{self, Place};
+use super::action::{self, Place, Screen};
 use super::app::App;
 use super::frame::put_line;
+use super::keys::Key;
 use super::text;
 use super::theme::Part;
 
@@ -14,24 +15,31 @@ use super::theme::Part;
 pub(super) fn lines(app: &App, cells: usize) -> Vec<Line<'static>> {
     let theme = app.theme;
     let ascii = theme.caps().ascii;
-    let here = if app.working.is_some() {
-        Place::Working
-    } else if app.moves_inputs() {
-        Place::WhatIf
-    } else {
-        Place::On(app.screen)
+    // Of a line that is typed the keys are its own, and those everywhere that type nothing.
+    let typed = app.typing.is_some();
+    let mut here = app.places_below_help();
+    if typed {
+        here.push(Place::Everywhere);
+    }
+    let reachable = action::reachable(&here);
+    // Below the keys of a screen those of the lines that are typed on it.
+    let lines_of = |place: &Place| match place {
+        Place::On(Screen::Fleet) => Some(Place::Filter),
+        Place::On(Screen::Tender) => Some(Place::Reason),
+        Place::On(Screen::Basis) => Some(Place::Value),
+        _ => None,
     };
-    let places = [here, Place::Filter, Place::List, Place::Everywhere];
-    let reachable = action::reachable(&[here, Place::List, Place::Everywhere]);
+    let places = here.iter().flat_map(|place| [Some(*place), lines_of(place)]).flatten();
     let mut lines = Vec::new();
     for place in places {
-        let here: Vec<_> = if place == Place::Filter {
-            if here != Place::On(action::Screen::Fleet) {
-                continue;
-            }
-            action::reachable(&[Place::Filter])
+        let here: Vec<_> = if here.contains(&place) {
+            let types = |key: &Key| typed && place == Place::Everywhere && key.typed().is_some();
+            let of = reachable.iter().filter(|(def, _)| def.place == place).cloned();
+            of.map(|(def, keys)| (def, keys.into_iter().filter(|key| !types(key)).collect()))
+                .filter(|(_, keys): &(_, Vec<Key>)| !keys.is_empty())
+                .collect()
         } else {
-            reachable.iter().filter(|(def, _)| def.place == place).cloned().collect()
+            action::reachable(&[place])
         };
         if here.is_empty() {
             continue;

@@ -42,18 +42,22 @@ pub(super) fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
     let Some(line) = lines.get(list.cursor) else { return };
     let below = Rect { y: area.y + height + 2, height: 3, ..area };
     let mut said = Vec::new();
+    // Why comes first: details may be longer than there is room for.
+    if !line.why.is_empty() {
+        said.push(format!("why: {}", line.why));
+    }
     if !line.details.is_empty() {
         said.push(line.details.clone());
     }
     if !line.source.is_empty() {
         said.push(format!("from {}", line.source));
     }
-    if !line.why.is_empty() {
-        said.push(format!("why: {}", line.why));
-    }
-    let wrapped =
-        said.iter().flat_map(|s| text::wrap(s, usize::from(area.width.saturating_sub(2))));
-    for (y, line) in (0..3).zip(wrapped) {
+    let cells = usize::from(area.width.saturating_sub(2));
+    let wrapped: Vec<String> = said.iter().flat_map(|said| text::wrap(said, cells)).collect();
+    let more = wrapped.len() > usize::from(below.height);
+    for (y, line) in (0..below.height).zip(wrapped) {
+        // What finds no room is told by an ellipsis; `ironhum journal` says it in full.
+        let line = if more && y + 1 == below.height { format!("{line} …") } else { line };
         put(buffer, below, y, &format!(" {line}"), theme.plain());
     }
 }

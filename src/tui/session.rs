@@ -2,6 +2,7 @@
 //! and no database.
 
 use std::fmt;
+use std::sync::Arc;
 
 use crate::engine::columns::{BasisSheet, TenderSheet, Unit};
 use crate::study::{Desk, StudyError};
@@ -11,6 +12,26 @@ pub type RecordReader = Box<dyn FnMut(&str) -> Option<Unit> + Send>;
 
 /// Stores a changed basis and gives the journal as it stands then, newest first.
 pub type BasisWriter = Box<dyn FnMut(&BasisSheet) -> Result<Vec<JournalLine>, StudyError> + Send>;
+
+/// What is to be awarded, and what the screen showed when that was asked.
+#[derive(Clone, Debug)]
+pub struct Awarding {
+    /// The tender as it was shown.
+    pub sheet: Arc<TenderSheet>,
+    /// The basis as it was shown.
+    pub basis: Box<BasisSheet>,
+    /// The lot.
+    pub lot: String,
+    /// The bid that it goes to.
+    pub bid: String,
+    /// Why, in the words of who awards.
+    pub why: Option<String>,
+}
+
+/// Stores an award and gives the tender and the journal as they stand then. It refuses where the book no longer
+/// holds what was shown.
+pub type AwardWriter =
+    Box<dyn FnMut(&Awarding) -> Result<(TenderSheet, Vec<JournalLine>), StudyError> + Send>;
 
 /// What the dashboard is opened with.
 pub struct Session {
@@ -28,6 +49,8 @@ pub struct Session {
     pub record: Option<RecordReader>,
     /// Stores a changed basis; none where nothing may be written.
     pub save: Option<BasisWriter>,
+    /// Stores an award; none where nothing may be written.
+    pub award: Option<AwardWriter>,
 }
 
 impl fmt::Debug for Session {

@@ -1,9 +1,13 @@
 //! The tender screen: bids by owning cost, what is out and why, who wins at other factors, what would change the
 //! winner. State here; drawing in `draw`, the winner map in `map`.
 
+mod award;
 pub(super) mod draw;
 mod map;
+mod regions;
 mod what_if;
+
+pub(super) use award::{award, reasoned};
 
 use std::sync::Arc;
 

@@ -23,6 +23,9 @@ pub enum Part {
     Other,
 }
 
+/// Number of looks of the regions of a map: each a fill and, where there are colours, a colour.
+pub(super) const REGION_LOOKS: usize = 6;
+
 /// How things look on this terminal.
 #[derive(Clone, Copy, Debug)]
 pub struct Theme {
@@ -132,20 +135,17 @@ impl Theme {
         if self.caps.ascii { '>' } else { '▶' }
     }
 
-    /// The fill of region number `n` of a map: neighbours in rank differ.
-    pub fn region_fill(self, n: usize) -> char {
-        const SHADES: [char; 6] = ['░', '·', '▒', ' ', '▓', '-'];
-        const ASCII: [char; 6] = ['.', ' ', ':', '-', '+', ','];
-        match (self.coloured(), self.caps.ascii) {
-            (true, false) => '▒',
-            (false, false) => SHADES[n % SHADES.len()],
-            (_, true) => ASCII[n % ASCII.len()],
-        }
+    /// The fill of a region of a map by its look.
+    pub fn region_fill(self, look: usize) -> char {
+        const SHADES: [char; REGION_LOOKS] = ['░', '▒', '·', '▓', '-', '+'];
+        const ASCII: [char; REGION_LOOKS] = ['.', ':', '-', '+', '=', ','];
+        let fills = if self.caps.ascii { ASCII } else { SHADES };
+        fills[look % REGION_LOOKS]
     }
 
-    /// Colour of region number `n` of a map.
-    pub fn region(self, n: usize) -> Style {
-        const SIXTEEN: [Color; 6] = [
+    /// Colour of a region of a map by its look.
+    pub fn region(self, look: usize) -> Style {
+        const SIXTEEN: [Color; REGION_LOOKS] = [
             Color::Blue,
             Color::Yellow,
             Color::Cyan,
@@ -153,8 +153,8 @@ impl Theme {
             Color::DarkGray,
             Color::Green,
         ];
-        const MANY: [u8; 6] = [32, 172, 37, 133, 245, 65];
-        self.fg(SIXTEEN[n % SIXTEEN.len()], MANY[n % MANY.len()])
+        const MANY: [u8; REGION_LOOKS] = [32, 172, 37, 133, 245, 65];
+        self.fg(SIXTEEN[look % REGION_LOOKS], MANY[look % REGION_LOOKS])
     }
 }
 

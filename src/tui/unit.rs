@@ -2,13 +2,18 @@
 
 pub(super) mod draw;
 mod facts;
+mod more;
 mod table;
+
+pub(super) use facts::of_columns;
+pub use more::More;
 
 use std::sync::Arc;
 
 use super::app::App;
 use super::bar::{self, Parts};
 use super::list::List;
+use super::text;
 use super::theme::Part;
 use super::work::Ranked;
 use crate::engine::columns::Unit;
@@ -16,7 +21,8 @@ use crate::engine::decision::Place;
 use crate::engine::decision::keep_or_replace::{Decision, YearChoice};
 use crate::engine::decision::parts::PolicyCost;
 use crate::study::Desk;
-use crate::study::offers_open::{NotYet, not_yet};
+use crate::study::offers_open::{NotYet, left_out_because, not_yet};
+use crate::study::rank::RankRow;
 use crate::study::unit::{ChoiceCosts, choice_costs, decision};
 
 /// State of the screen.
@@ -28,6 +34,8 @@ pub(super) struct State {
     pub(super) dossier: Option<Dossier>,
     /// Its whole record, once it was read.
     pub(super) record: Option<Box<Unit>>,
+    /// What else its dossier says under the basis as it stands, once it was computed.
+    pub(super) more: Option<Box<More>>,
     /// The years as a table instead of a chart.
     pub(super) table: bool,
     /// First line of the facts that is shown.
@@ -67,9 +75,12 @@ impl State {
                     .map(|costs| Box::new(Known { place, decision, costs, not_yet }))
                     .map_err(|error| error.to_string())
             }
-            Ok(Err(why)) => Err(why.why().to_owned()),
+            Ok(Err(why)) => Err(left_out_because(desk, context, i, why).to_owned()),
             Err(error) => Err(error.to_string()),
         };
+        if !self.shows(ranked, i) {
+            self.more = None;
+        }
         self.index = Some(i);
         self.dossier = Some(Dossier { ranked: Arc::clone(ranked), index: i, known });
     }
@@ -80,12 +91,16 @@ impl State {
         dossier.is_some_and(|d| d.index == i && Arc::ptr_eq(&d.ranked, ranked))
     }
 
-    /// Takes the record of a unit, if it is still the one that is shown.
-    pub(super) fn take_record(&mut self, unit: &str, record: Option<Box<Unit>>) {
-        if let (Some(dossier), Some(i)) = (&self.dossier, self.index)
-            && dossier.ranked.desk.fleet.unit.get(i) == unit
-        {
-            self.record = record;
+    /// Takes the record of a unit and what else is said of it, if it is still the one that is shown.
+    pub(super) fn take_record(
+        &mut self,
+        ranked: &Arc<Ranked>,
+        i: usize,
+        record: Option<Box<Unit>>,
+        more: Option<Box<More>>,
+    ) {
+        if self.shows(ranked, i) {
+            (self.record, self.more) = (record, more);
         }
     }
 }
@@ -143,6 +158,16 @@ pub(super) fn choices(desk: &Desk, known: &Known, first_year: i64) -> [Choice; 3
     ]
 }
 
+/// Between which places a unit stands whose losses are estimated, in words; none where they are not.
+pub(super) fn span(row: &RankRow<'_>) -> Option<String> {
+    let (low, high) = match (row.rank_low, row.rank_high) {
+        (None, None) => return None,
+        (Some(low), Some(high)) => (row.rank.min(low).min(high), row.rank.max(low).max(high)),
+        (Some(end), None) | (None, Some(end)) => (row.rank.min(end), row.rank.max(end)),
+    };
+    Some(format!("{}-{}", text::count(low), text::count(high)))
+}
+
 /// Why nothing can be bought in the first year, in words.
 pub(super) fn not_yet_words(not_yet: Option<&NotYet>) -> String {
     not_yet.map_or("none open".to_owned(), |not_yet| {
@@ -176,6 +201,7 @@ pub(super) fn record(app: &App, desk: &Desk, i: usize) -> Unit {
 
 /// Lines of the facts.
 pub(super) fn facts_len(app: &App) -> usize {
-    let size = draw::areas(super::frame::body(app), app.unit.table).facts;
-    facts::lines(app, usize::from(size.width)).len()
+    let facts = draw::areas(super::frame::body(app), app.unit.table).facts;
+    let wide = draw::columns(facts).first().map_or(0, |column| usize::from(column.width));
+    facts::lines(app, wide).len()
 }

@@ -9,7 +9,8 @@ use rayon::prelude::*;
 
 use super::bar;
 use super::extent::Extent;
-use super::session::{BasisWriter, JournalLine, RecordReader, Session};
+use super::session::{AwardWriter, Awarding, BasisWriter, JournalLine, RecordReader, Session};
+use super::unit::{self, More};
 use crate::engine::columns::{BasisSheet, TenderSheet, Unit};
 use crate::engine::decision::Context;
 use crate::engine::loading::PriceSeries;
@@ -109,10 +110,12 @@ pub enum Question {
     Rank(Box<Desk>, ViewSpec),
     /// Filter and order a ranked fleet.
     View(Arc<Ranked>, ViewSpec),
-    /// The whole record of a unit.
-    Record(String),
+    /// The whole record of a unit, and what else its dossier says.
+    Record(Arc<Ranked>, usize),
     /// Store a basis.
     Save(Box<BasisSheet>),
+    /// Store an award.
+    Award(Box<Awarding>),
     /// Evaluate a tender that was changed on the screen.
     WhatIf(Arc<Ranked>, Arc<TenderSheet>, u64),
     /// How sure the winner of a lot is.
@@ -128,13 +131,14 @@ pub enum Kind {
     View,
     Record,
     Save,
+    Award,
     WhatIf,
     Risk,
 }
 
 impl Kind {
     /// Number of kinds.
-    pub const COUNT: usize = 7;
+    pub const COUNT: usize = 8;
 }
 
 impl Question {
@@ -144,8 +148,9 @@ impl Question {
             Self::Open => Kind::Open,
             Self::Rank(..) => Kind::Rank,
             Self::View(..) => Kind::View,
-            Self::Record(_) => Kind::Record,
+            Self::Record(..) => Kind::Record,
             Self::Save(_) => Kind::Save,
+            Self::Award(_) => Kind::Award,
             Self::WhatIf(..) => Kind::WhatIf,
             Self::Risk(..) => Kind::Risk,
         }
@@ -163,19 +168,30 @@ pub struct Job {
     pub question: Question,
 }
 
+/// What can be stored.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub struct Writes {
+    /// A changed basis.
+    pub basis: bool,
+    /// An award.
+    pub award: bool,
+}
+
 /// An answer.
 #[derive(Debug)]
 pub enum Answer {
-    /// What was opened, and whether a basis can be stored.
-    Opened(Box<Session>, bool),
+    /// What was opened, and what of it can be stored.
+    Opened(Box<Session>, Writes),
     /// A ranked fleet and what is shown of it.
     Ranked(Arc<Ranked>, View),
     /// What is shown of a ranked fleet.
     View(Arc<Ranked>, View),
-    /// A record.
-    Record(String, Option<Box<Unit>>),
+    /// A record, and what else the dossier says of the unit.
+    Record(Arc<Ranked>, usize, Option<Box<Unit>>, Option<Box<More>>),
     /// The basis is stored; the journal as it stands now.
     Saved(Box<BasisSheet>, Vec<JournalLine>),
+    /// The award is stored; the journal as it stands now.
+    Awarded(Box<Awarding>, Vec<JournalLine>),
     /// What a changed tender comes to; the number is that of the question.
     WhatIf(Evaluated, u64),
     /// How sure the winner of a lot is; the number is that of the question.
@@ -198,13 +214,14 @@ pub struct Worker<L> {
     loader: Option<L>,
     record: Option<RecordReader>,
     save: Option<BasisWriter>,
+    award: Option<AwardWriter>,
     tenders: Vec<Arc<TenderSheet>>,
 }
 
 impl<L: FnOnce(&Watch) -> Result<Session, StudyError>> Worker<L> {
     /// A worker that opens with `loader`.
     pub fn new(loader: L) -> Self {
-        Self { loader: Some(loader), record: None, save: None, tenders: Vec::new() }
+        Self { loader: Some(loader), record: None, save: None, award: None, tenders: Vec::new() }
     }
 
     /// Answers one question.
@@ -221,7 +238,9 @@ impl<L: FnOnce(&Watch) -> Result<Session, StudyError>> Worker<L> {
                 self.record = session.record.take();
                 self.tenders = session.tenders.drain(..).map(Arc::new).collect();
                 self.save = session.save.take();
-                Ok(Answer::Opened(Box::new(session), self.save.is_some()))
+                self.award = session.award.take();
+                let writes = Writes { basis: self.save.is_some(), award: self.award.is_some() };
+                Ok(Answer::Opened(Box::new(session), writes))
             }
             Question::Rank(desk, spec) => {
                 let ranked = Arc::new(Ranked::new(*desk, &self.tenders, watch)?);
@@ -232,9 +251,23 @@ impl<L: FnOnce(&Watch) -> Result<Session, StudyError>> Worker<L> {
                 let view = view(&ranked, spec, watch)?;
                 Ok(Answer::View(ranked, view))
             }
-            Question::Record(unit) => {
-                let record = self.record.as_mut().and_then(|read| read(&unit)).map(Box::new);
-                Ok(Answer::Record(unit, record))
+            Question::Record(ranked, i) => {
+                let unit = ranked.desk.fleet.unit.get(i);
+                let record = self.record.as_mut().and_then(|read| read(unit)).map(Box::new);
+                let known = record.as_deref().cloned();
+                let known = known.unwrap_or_else(|| unit::of_columns(&ranked.desk, i));
+                let more = More::of(&ranked, &known).ok().map(Box::new);
+                Ok(Answer::Record(ranked, i, record, more))
+            }
+            Question::Award(asked) => {
+                let award = self.award.as_mut().ok_or(StudyError::Stopped)?;
+                let (sheet, journal) = award(&asked)?;
+                let same =
+                    |known: &&mut Arc<TenderSheet>| known.tender.tender == sheet.tender.tender;
+                if let Some(known) = self.tenders.iter_mut().find(same) {
+                    *known = Arc::new(sheet);
+                }
+                Ok(Answer::Awarded(asked, journal))
             }
             Question::WhatIf(ranked, sheet, number) => {
                 Ok(Answer::WhatIf(Evaluated::new(&ranked.ranking.context, &sheet), number))

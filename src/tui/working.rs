@@ -16,7 +16,7 @@ use super::work::Ranked;
 use super::{tender, unit};
 use crate::engine::columns::Unit;
 use crate::study::StudyError;
-use crate::study::explain::{Explained as _, StepRow};
+use crate::study::explain::{Explained as _, MONEY, StepRow};
 use crate::study::figures::figure;
 use crate::study::tender::BasisForFactors;
 use crate::study::unit::Question;
@@ -55,12 +55,28 @@ impl Panel {
         self.fill()
     }
 
+    /// Shows the first figure of the next part, or of the one before; goes round.
+    ///
+    /// # Errors
+    /// What the engine refuses.
+    pub(super) fn part(&mut self, next: bool) -> Result<(), StudyError> {
+        let part = |figure: &Figure| figure.title.split('.').next().unwrap_or("").to_owned();
+        let parts: Vec<_> = self.figures.iter().map(part).collect();
+        let begins = |n: &usize| *n == 0 || parts[*n] != parts[*n - 1];
+        let firsts: Vec<usize> = (0..parts.len()).filter(begins).collect();
+        let own = firsts.partition_point(|first| *first <= self.at).saturating_sub(1);
+        let by = if next { 1 } else { firsts.len().saturating_sub(1) };
+        self.at = firsts.get((own + by) % firsts.len().max(1)).copied().unwrap_or(0);
+        self.list = List::default();
+        self.fill()
+    }
+
     fn fill(&mut self) -> Result<(), StudyError> {
         let Some(figure) = self.figures.get_mut(self.at) else { return Ok(()) };
         if let (Some((ranked, unit)), true) = (&self.unit, figure.lines.is_empty()) {
             let question = Question::new(&ranked.desk, &ranked.ranking.context, unit)?;
-            let lines = StepRow::lines(&question.working(&figure.title)?, 0);
-            figure.lines = in_currency(lines, &ranked.desk.sheet.basis.currency);
+            let currency = text::cut(&ranked.desk.sheet.basis.currency, 8);
+            figure.lines = StepRow::lines(&question.working(&figure.title)?, 0, &currency);
         }
         Ok(())
     }
@@ -77,17 +93,6 @@ impl Panel {
         let head = format!("{}: {}", text::clean(&self.of), figure.title);
         std::iter::once(head).chain(lines).collect::<Vec<_>>().join("\n") + "\n"
     }
-}
-
-/// Steps with the currency for "money" in units.
-fn in_currency(lines: Vec<String>, currency: &str) -> Vec<String> {
-    let currency = text::cut(currency, 8);
-    let unit = |line: String| {
-        ["/kW", " [", "   "].iter().fold(line, |line, after| {
-            line.replace(&format!(" money{after}"), &format!(" {currency}{after}"))
-        })
-    };
-    lines.into_iter().map(unit).collect()
 }
 
 fn heading(key: &str) -> &'static str {
@@ -131,11 +136,10 @@ fn of_bid(app: &App, ranked: &Arc<Ranked>) -> Option<Result<Panel, StudyError>> 
     let working = crate::study::tender::working(sheet, Some(&basis), lot, bid);
     Some(working.map(|working| {
         let opened = |title: &str, steps: &[_]| {
-            let mut lines = StepRow::lines(&StepRow::tree(steps), 0);
-            // Where the basis is in another currency a step says "money" of either.
-            if sheet.tender.currency == context.assumptions.currency {
-                lines = in_currency(lines, &sheet.tender.currency);
-            }
+            // Where the basis is in another currency a step is in either.
+            let same = sheet.tender.currency == context.assumptions.currency;
+            let currency = if same { &sheet.tender.currency } else { MONEY };
+            let lines = StepRow::lines(&StepRow::tree(steps), 0, &text::cut(currency, 8));
             Figure { title: title.to_owned(), lines }
         };
         let figures = vec![

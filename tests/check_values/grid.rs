@@ -53,10 +53,7 @@ pub(crate) fn grid(id: &str, i: &In) -> Outcome {
                 );
                 base.n("impedance_pu")
             };
-            Figures::of("R_pu", pu(i.n("R_ohm")))
-                .and("X_pu", pu(i.n("X_ohm")))
-                .and("Iexc_pu", i.n("Iexc_LV_A") / i.n("IL_A"))
-                .into()
+            Figures::of("R_pu", pu(i.n("R_ohm"))).and("X_pu", pu(i.n("X_ohm"))).into()
         }
         "T3-Fitzgerald-2.15" => {
             let z = i.list("Z_pu_250");

@@ -62,7 +62,6 @@ pub(crate) fn tests_and_efficiency(id: &str, i: &In) -> Outcome {
             let copper = open_circuit_copper(&mut Silent, Phases::One, i.n("Ioc_A"), r2);
             Figures::of("Re2_mohm", 1000.0 * r2)
                 .and("oc_copper_W", copper)
-                .and("core_W", i.n("Poc_W") - copper)
                 .tighter("Re2_mohm", 5e-4)
                 .tighter("oc_copper_W", 5e-3)
                 .into()

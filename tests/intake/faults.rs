@@ -206,6 +206,8 @@ fn what_bids_and_measured_units_name_must_be_there() {
     assert_eq!(desk.dump(), before);
     let good = desk.text(What::Tests, "t.csv", "unit,open_circuit_power_w\nZE-0101,1180\n");
     assert!(good.stored);
-    let test = desk.book.test_report("ZE-0101").expect("store").expect("report");
-    assert_eq!(test.open_circuit_power_w, Some(1180.0));
+    let tested = desk.book.tested_units().expect("store");
+    let (unit, report) = &tested[0];
+    assert_eq!((tested.len(), unit.unit.as_str()), (1, "ZE-0101"));
+    assert_eq!(report.open_circuit_power_w, Some(1180.0));
 }

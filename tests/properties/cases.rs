@@ -1,11 +1,11 @@
 //! Random fleets, catalogues and bases as a book would hold them, and the desk on which they lie.
 
 use ironhum::engine::columns::{
-    Basis, BasisSheet, CapitalRecovery, CashFlow, Money, Offer, Unit, VoltageModel,
+    Basis, BasisSheet, CapitalRecovery, CashFlow, Money, Offer, Unit, Value, VoltageModel, YesNo,
 };
 use ironhum::engine::decision::UnitFacts;
 use ironhum::engine::decision::fit::Terminals;
-use ironhum::engine::decision::fleet::FleetColumns;
+use ironhum::engine::decision::fleet::{FleetColumns, NUMBERS};
 use ironhum::engine::loading::Profile;
 use ironhum::study::Desk;
 use proptest::prelude::*;
@@ -44,6 +44,24 @@ impl Case {
         let profiles = profiles();
         for (row, unit) in (1..).zip(&self.units) {
             let profile = profiles.iter().position(|p| Some(&p.profile) == unit.profile.as_ref());
+            let values = unit.values();
+            let number = |name: &str| {
+                let at = Unit::COLUMNS.iter().position(|column| column.name == name);
+                match at.map(|at| &values[at]) {
+                    Some(Value::Real(x)) => *x,
+                    Some(Value::Integer(n)) => *n as f64,
+                    Some(Value::Money(money)) => money.amount(),
+                    _ => f64::NAN,
+                }
+            };
+            let facts = UnitFacts {
+                in_service: unit.in_service != Some(YesNo::No),
+                phases: unit.phases,
+                winding_metal: unit.winding_metal,
+                insulation: unit.insulation,
+                profile: profile.and_then(|at| u32::try_from(at).ok()).unwrap_or(u32::MAX),
+                ..UnitFacts::of_numbers(NUMBERS.map(number))
+            };
             let terminals = Terminals {
                 phases: unit.phases,
                 hv_kv: unit.hv_kv,
@@ -51,7 +69,7 @@ impl Case {
                 clock: None,
                 rated_kva: unit.rated_kva,
             };
-            fleet.push(&unit.unit, None, row, terminals, &UnitFacts::of_unit(unit, profile));
+            fleet.push(&unit.unit, None, row, terminals, &facts);
         }
         let sheet =
             BasisSheet { basis: self.basis.clone(), ranges: Vec::new(), budgets: Vec::new() };

@@ -17,7 +17,8 @@ struct Demo {
     units: Arc<HashMap<String, Unit>>,
 }
 
-fn read() -> Demo {
+/// A book with the demo fleet.
+pub(crate) fn book() -> Book {
     let mut book = Book::in_memory().unwrap();
     let actor = Actor { who: "ana".into(), at: "2026-11-01T08:00:00Z".into(), why: None };
     for (what, file) in [
@@ -35,6 +36,11 @@ fn read() -> Demo {
         let report = import(&mut book, what, source, options, &actor, &Watch::default()).unwrap();
         assert!(report.problems.is_empty(), "{file}: {}", report.problems);
     }
+    book
+}
+
+fn read() -> Demo {
+    let book = book();
     let tenders = book.tenders().unwrap();
     let units = book.units().unwrap().into_iter().map(|unit| (unit.unit.clone(), unit));
     Demo {
@@ -57,6 +63,7 @@ pub(crate) fn session() -> Session {
         journal: journal(),
         record: Some(Box::new(move |unit| units.get(unit).cloned())),
         save: None,
+        award: None,
     }
 }
 

@@ -3,7 +3,7 @@
 use crate::bench::{ASCII, Bench, COLOUR, PLAIN, SIXTEEN};
 
 /// Name of the view and the keys that lead to it.
-const VIEWS: [(&str, &str); 17] = [
+const VIEWS: [(&str, &str); 20] = [
     ("fleet", "<Down><Down>"),
     ("fleet_filter", "/zel 01"),
     ("fleet_by_waiting", "s"),
@@ -19,6 +19,9 @@ const VIEWS: [(&str, &str); 17] = [
     ("unit_working", "<Enter>e"),
     ("bid_working", "3e"),
     ("basis", "4<Down><Down>>"),
+    ("basis_typed", "4<Down><Down><Enter>6,25<Enter>"),
+    ("unit_more", "<Enter><PageDown>"),
+    ("tender_help", "3?"),
     ("journal", "5"),
     ("help", "4?"),
 ];

@@ -3,10 +3,12 @@
 use crate::cli::exit::Failure;
 use crate::cli::print::{Printer, TextColumn};
 use crate::engine::columns;
+use crate::exchange::counted;
 use crate::study::estimate::EstimatedRow;
 use crate::study::figures::group;
 use crate::study::law::VerdictRow;
 use crate::study::losses::{flag_meaning, voltage_words};
+use crate::study::test_report::TestRow;
 use crate::study::unit::thermal::{HeatRow, ThermalRow};
 use crate::study::unit::{Dossier, FitRow, KeepOrReplace};
 
@@ -17,8 +19,12 @@ pub(super) fn text(printer: &mut Printer, d: &Dossier<'_>) -> Result<(), Failure
         let value = d.nameplate.get(column.name).filter(|v| !v.is_null());
         if let Some(value) = value.filter(|_| column.name != "unit") {
             let value = value.as_str().map_or_else(|| value.to_string(), str::to_owned);
-            printer.line(format!("  {:<22} {value} {}", column.name, column.unit()))?;
+            let unit = column.unit().replace("money", &d.currency);
+            printer.line(format!("  {:<22} {value} {unit}", column.name))?;
         }
+    }
+    if let Some(tests) = &d.tests {
+        report(printer, tests)?;
     }
     if let Some(c) = &d.circuit {
         printer.line("")?;
@@ -51,11 +57,11 @@ pub(super) fn text(printer: &mut Printer, d: &Dossier<'_>) -> Result<(), Failure
     }
     for (name, loss) in d.estimated.iter().flat_map(EstimatedRow::losses) {
         printer.line(format!(
-            "Estimated {name}: {} W, with 95 % between {} and {} W; from {} units by {}{}.",
+            "Estimated {name}: {} W, with 95 % between {} and {} W; from {} by {}{}.",
             group(loss.estimate_w, 0),
             group(loss.low_w, 0),
             group(loss.high_w, 0),
-            loss.known_units,
+            counted(loss.known_units, "unit"),
             loss.terms.join(", "),
             match loss.units_set_aside {
                 0 => String::new(),
@@ -126,6 +132,34 @@ pub(super) fn text(printer: &mut Printer, d: &Dossier<'_>) -> Result<(), Failure
     }
     for flag in &d.flags {
         printer.line(format!("! {flag}: {}", flag_meaning(flag).unwrap_or_default()))?;
+    }
+    Ok(())
+}
+
+/// What the test report says and fills.
+fn report(printer: &mut Printer, tests: &TestRow) -> Result<(), Failure> {
+    printer.line("")?;
+    let on = tests.tested_on.as_deref().map_or(String::new(), |on| format!(" of {on}"));
+    if let Some(why) = &tests.why {
+        printer.line(format!("Test report{on}: not used. {why}."))?;
+        return Ok(());
+    }
+    let at = format!("W at {} °C", group(tests.reference_temp_c, 0));
+    let said = [
+        ("no-load loss", tests.no_load_loss_w, 1, "W"),
+        ("no-load current", tests.no_load_current_pct, 3, "%"),
+        ("load loss", tests.load_loss_w, 1, at.as_str()),
+        ("its I²R part", tests.resistive_loss_w, 1, at.as_str()),
+        ("its stray part", tests.stray_loss_w, 1, at.as_str()),
+        ("impedance", tests.impedance_pct, 3, "%"),
+    ];
+    let said = said.iter().filter_map(|(what, value, places, unit)| {
+        Some(format!("{what} {} {unit}", group((*value)?, *places)))
+    });
+    printer.line(format!("Test report{on}: {}.", said.collect::<Vec<_>>().join(", ")))?;
+    if !tests.fills.is_empty() {
+        let filled = tests.fills.join(", ");
+        printer.line(format!("Blank on the nameplate and filled from it: {filled}."))?;
     }
     Ok(())
 }

@@ -354,14 +354,7 @@ pub trait Cell: Sized {
     /// The value of the field.
     fn to_value(&self) -> Value;
     /// What an untouched field holds.
-    fn blank() -> Self {
-        Self::from_value(&Value::Blank)
-            .or_else(|| Self::from_value(&Value::Real(0.0)))
-            .or_else(|| Self::from_value(&Value::Integer(0)))
-            .or_else(|| Self::from_value(&Value::Money(Money(0))))
-            .or_else(|| Self::from_value(&Value::Text(String::new())))
-            .expect("every plain field type reads a zero or an empty text")
-    }
+    fn blank() -> Self;
 }
 
 impl Cell for String {
@@ -370,6 +363,9 @@ impl Cell for String {
     }
     fn to_value(&self) -> Value {
         Value::Text(self.clone())
+    }
+    fn blank() -> Self {
+        Self::new()
     }
 }
 
@@ -380,6 +376,9 @@ impl Cell for f64 {
     fn to_value(&self) -> Value {
         Value::Real(*self)
     }
+    fn blank() -> Self {
+        0.0
+    }
 }
 
 impl Cell for i64 {
@@ -388,6 +387,9 @@ impl Cell for i64 {
     }
     fn to_value(&self) -> Value {
         Value::Integer(*self)
+    }
+    fn blank() -> Self {
+        0
     }
 }
 
@@ -398,6 +400,9 @@ impl Cell for bool {
     fn to_value(&self) -> Value {
         Value::Integer(i64::from(*self))
     }
+    fn blank() -> Self {
+        false
+    }
 }
 
 impl Cell for Money {
@@ -406,6 +411,9 @@ impl Cell for Money {
     }
     fn to_value(&self) -> Value {
         Value::Money(*self)
+    }
+    fn blank() -> Self {
+        Self(0)
     }
 }
 
@@ -418,6 +426,9 @@ impl<T: Cell> Cell for Option<T> {
     }
     fn to_value(&self) -> Value {
         self.as_ref().map_or(Value::Blank, T::to_value)
+    }
+    fn blank() -> Self {
+        None
     }
 }
 

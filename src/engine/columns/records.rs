@@ -77,6 +77,34 @@ const GROWTH_PCT: C = C::above(-100.0, 100.0);
 const YEAR: C = C::integer(1950, 2200);
 const COST: C = C::money();
 
+/// Files of series begin with the time of a step; then one column per profile.
+pub const STEP: C = C {
+    name: "timestamp",
+    meaning: "start of the step, ISO 8601 (or interval: its number); then one column per profile",
+    ..C::text().required()
+};
+/// The columns of a price file behind the time of a step.
+pub const PRICES: &[C] = &[
+    C {
+        name: "price_per_kwh",
+        meaning: "price of the step (prices file)",
+        ..C::real(-1e6, 1e6).required()
+    },
+    C {
+        name: "co2_kg_per_kwh",
+        meaning: "CO2 of a kWh in the step (prices file)",
+        ..C::real(0.0, 1e3)
+    },
+    C {
+        name: "system_load",
+        meaning: "load of the system in the step, any scale (prices file)",
+        ..C::real(-1e12, 1e12)
+    },
+];
+
+/// First and last year of manufacture that a book holds.
+pub const YEARS_MADE: (i64, i64) = (1880, 2100);
+
 record! {
     /// A transformer of the fleet.
     Unit {
@@ -104,7 +132,7 @@ record! {
         auxiliary_loss_w: Option<f64>, LOSS_W.blank("0"), "fans and pumps";
         auxiliary_hours: Option<f64>, HOURS.blank("basis, else the energised hours"), "hours a year that fans and pumps run";
         no_load_current_pct: Option<f64>, C::real(0.0, 100.0), "no-load current";
-        year_made: Option<i64>, C::integer(1880, 2100), "year of manufacture";
+        year_made: Option<i64>, C::integer(YEARS_MADE.0, YEARS_MADE.1), "year of manufacture";
         in_service: Option<YesNo>, C::choice(YesNo::WORDS).blank("yes"), "whether it is energised";
         peak_kva: Option<f64>, C::real(0.0, 1e7), "highest load of year 1";
         load_factor_pu: Option<f64>, SHARE_PU, "mean load over peak load";

@@ -1,11 +1,13 @@
 //! One load that stands for many: the duty under which one transformer of a fleet's load loss would burn in
 //! year 1 what the fleet burns. Each unit is weighed by its load loss.
 
-use super::place::Place;
+use super::Context;
+use super::fleet::FleetColumns;
+use super::place::{Place, resolve};
 use crate::engine::economics::Assumptions;
 use crate::engine::exact_sum::ExactSum;
 use crate::engine::loading::Duty;
-use crate::engine::working::{Formula, Recorder};
+use crate::engine::working::{Formula, Recorder, Silent};
 
 const SOURCE: &str = "own definition: one unit of rating 1 that loses in year 1 what all lose";
 
@@ -62,8 +64,19 @@ pub struct CommonLoad {
 }
 
 impl CommonLoad {
+    /// The sums over the units of a fleet that can be computed.
+    pub fn of_fleet(fleet: &FleetColumns, context: &Context) -> Self {
+        let mut load = Self::default();
+        for i in 0..fleet.len() {
+            if let Ok(place) = resolve(&mut Silent, &fleet.facts(i), context) {
+                load.add(&place);
+            }
+        }
+        load
+    }
+
     /// Counts a place in.
-    pub fn add(&mut self, place: &Place) {
+    fn add(&mut self, place: &Place) {
         let (l, d) = (&place.losses, &place.duty);
         let beta = d.peak_kva / l.rated_kva;
         let at_peak = l.load_loss_w * (beta * beta);

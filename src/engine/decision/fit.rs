@@ -5,7 +5,6 @@ use crate::engine::columns::Offer;
 use crate::engine::economics::Assumptions;
 use crate::engine::loading::Duty;
 use crate::engine::loading::duty::growth;
-use crate::engine::transformer::circuit::of_nameplate;
 use crate::engine::transformer::losses::{Losses, quoted};
 use crate::engine::transformer::vector_group;
 use crate::engine::transformer::voltage_drop::Supply;
@@ -52,7 +51,7 @@ impl Candidate {
     /// # Errors
     /// Losses that contradict each other.
     pub fn of_offer(offer: &Offer) -> Result<Self, Refusal> {
-        let mut losses = quoted(
+        let losses = quoted(
             &mut Silent,
             offer.rated_kva,
             offer.loss_base_kva,
@@ -61,11 +60,9 @@ impl Candidate {
             None,
             offer.auxiliary_loss_w,
         )?;
-        let circuit = |z| of_nameplate(&mut Silent, losses.rated_kva, losses.load_loss_w, z).ok();
-        losses.reactance_pu = offer.impedance_pct.and_then(circuit).map(|circuit| circuit.x_pu);
         Ok(Self {
             offer: offer.offer.clone(),
-            losses,
+            losses: losses.with_impedance(&mut Silent, offer.impedance_pct),
             price: offer.price.amount(),
             install_cost: offer.install_cost.unwrap_or_default().amount(),
             life_years: offer.life_years,
@@ -110,10 +107,7 @@ impl Candidate {
 
     /// Whether the voltage holds at the peak of every year after `t`; at rated voltage it always does.
     pub fn holds_voltage(&self, duty: &Duty, t: usize, a: &Assumptions) -> bool {
-        duty.drop.as_ref().is_none_or(|drop| {
-            let peak_pu = highest_peak(duty, t, a) / self.losses.rated_kva;
-            Supply::of(&self.losses, drop).carries(peak_pu)
-        })
+        holds_voltage(&self.losses, duty, t, a).unwrap_or(true)
     }
 
     /// Whether it carries the peak of every year after `t`: its voltage holds, and the load is within the limit.
@@ -121,14 +115,32 @@ impl Candidate {
         if !self.holds_voltage(duty, t, a) {
             return false;
         }
-        let Some(limit) = a.loading_limit_pu else { return true };
-        highest_peak(duty, t, a) <= limit * self.losses.rated_kva * (1.0 + 1e-12)
+        let rated_kva = self.losses.rated_kva;
+        a.loading_limit_pu
+            .is_none_or(|limit| within_limit(highest_peak(duty, t, a), rated_kva, limit))
     }
 }
 
-/// Highest peak of the years after `t` (kVA): the load grows or shrinks steadily, so that of the last or first.
-pub(super) fn highest_peak(duty: &Duty, t: usize, a: &Assumptions) -> f64 {
-    let k = if duty.load_growth_pu > 0.0 { a.years } else { t + 1 };
+/// Whether the voltage behind a transformer holds at the peak of every year after `t`; none at rated voltage, where it
+/// is not asked.
+pub fn holds_voltage(losses: &Losses, duty: &Duty, t: usize, a: &Assumptions) -> Option<bool> {
+    let drop = duty.drop.as_ref()?;
+    Some(Supply::of(losses, drop).carries(highest_peak(duty, t, a) / losses.rated_kva))
+}
+
+/// Whether a peak load keeps a loading limit; equality up to rounding passes.
+pub fn within_limit(peak_kva: f64, rated_kva: f64, limit_pu: f64) -> bool {
+    peak_kva <= limit_pu * rated_kva * (1.0 + 1e-12)
+}
+
+/// The year after `t` with the highest peak: the load grows or shrinks steadily, so it is the last or the first.
+pub fn year_of_highest_peak(duty: &Duty, t: usize, a: &Assumptions) -> usize {
+    if duty.load_growth_pu > 0.0 { a.years } else { t + 1 }
+}
+
+/// Highest peak of the years after `t` (kVA).
+pub fn highest_peak(duty: &Duty, t: usize, a: &Assumptions) -> f64 {
+    let k = year_of_highest_peak(duty, t, a);
     duty.peak_kva * growth(duty.load_growth_pu, k, a.load_growth_years)
 }
 
@@ -154,6 +166,20 @@ fn voltage_agrees(place: Option<f64>, offer: Option<f64>) -> bool {
     }
 }
 
+impl Terminals {
+    /// Whether a candidate has the same number of phases, as far as both are known.
+    pub fn phases_agree(&self, c: &Candidate) -> bool {
+        self.phases.is_none() || c.phases.is_none() || self.phases == c.phases
+    }
+
+    /// Whether a candidate agrees in phases and voltages, as far as they are known.
+    pub fn connects(&self, c: &Candidate) -> bool {
+        self.phases_agree(c)
+            && voltage_agrees(self.hv_kv, c.hv_kv)
+            && voltage_agrees(self.lv_kv, c.lv_kv)
+    }
+}
+
 /// Indices of the candidates that fit the terminals and lie in the window of sizes, in catalogue order.
 ///
 /// The window is shaped by the distinct ratings of those that agree in phases and voltages (within 2 %); the
@@ -163,13 +189,8 @@ pub fn fitting(
     candidates: &[Candidate],
     sizes: Option<(usize, usize)>,
 ) -> Vec<usize> {
-    let connects = |c: &Candidate| {
-        (terminals.phases.is_none() || c.phases.is_none() || terminals.phases == c.phases)
-            && voltage_agrees(terminals.hv_kv, c.hv_kv)
-            && voltage_agrees(terminals.lv_kv, c.lv_kv)
-    };
     let connecting: Vec<usize> =
-        (0..candidates.len()).filter(|&i| connects(&candidates[i])).collect();
+        (0..candidates.len()).filter(|&i| terminals.connects(&candidates[i])).collect();
     let rating = |i: usize| candidates[i].losses.rated_kva;
     let mut ratings: Vec<f64> = connecting.iter().map(|&i| rating(i)).collect();
     ratings.sort_by(f64::total_cmp);

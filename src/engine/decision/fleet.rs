@@ -7,7 +7,7 @@
 mod columns;
 mod sums;
 
-pub use columns::{FleetColumns, Names};
+pub use columns::{FleetColumns, NUMBERS, Names};
 
 use std::ops::Range;
 

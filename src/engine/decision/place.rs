@@ -7,14 +7,14 @@ pub mod stated;
 
 use std::sync::Arc;
 
-use crate::engine::columns::{Insulation, Unit, VoltageModel, WindingMetal, YesNo};
+use crate::engine::columns::{Insulation, VoltageModel, WindingMetal};
 use crate::engine::decision::estimate::{End, FleetEstimate};
 use crate::engine::decision::fit::{Candidate, highest_peak};
 use crate::engine::economics::Assumptions;
 use crate::engine::flags::Flags;
 use crate::engine::loading::{Duty, Market, Ratios, VoltageDrop, factors};
-use crate::engine::transformer::circuit::{PowerFactor, of_nameplate};
-use crate::engine::transformer::losses::{Losses, quoted};
+use crate::engine::transformer::circuit::PowerFactor;
+use crate::engine::transformer::losses::{Losses, contradict, quoted};
 use crate::engine::transformer::voltage_drop::Supply;
 use crate::engine::working::Recorder;
 use stated::{first_known, known_or, said};
@@ -47,50 +47,15 @@ pub struct UnitFacts {
     pub phases: Option<i64>,
     pub winding_metal: Option<WindingMetal>,
     pub insulation: Option<Insulation>,
+    /// Whether blanks of the nameplate are filled from a test report.
+    pub from_test: bool,
     /// Index of the load profile; `u32::MAX` = none.
     pub profile: u32,
 }
 
-pub(super) fn known(value: f64) -> Option<f64> {
+/// A number of a unit's facts; none where it is unknown.
+pub fn known(value: f64) -> Option<f64> {
     if value.is_nan() { None } else { Some(value) }
-}
-
-impl UnitFacts {
-    /// The facts of a unit; `profile` is the index of its profile.
-    #[expect(clippy::cast_precision_loss, reason = "years and customers are small")]
-    pub fn of_unit(unit: &Unit, profile: Option<usize>) -> Self {
-        let real = |value: Option<f64>| value.unwrap_or(f64::NAN);
-        let money = |value: Option<crate::engine::columns::Money>| {
-            value.map_or(f64::NAN, crate::engine::columns::Money::amount)
-        };
-        Self {
-            in_service: unit.in_service != Some(YesNo::No),
-            rated_kva: unit.rated_kva,
-            loss_base_kva: real(unit.loss_base_kva),
-            no_load_loss_w: real(unit.no_load_loss_w),
-            load_loss_w: real(unit.load_loss_w),
-            total_loss_w: real(unit.total_loss_w),
-            auxiliary_loss_w: real(unit.auxiliary_loss_w),
-            auxiliary_hours: real(unit.auxiliary_hours),
-            peak_kva: real(unit.peak_kva),
-            load_factor_pu: real(unit.load_factor_pu),
-            loss_factor_pu: real(unit.loss_factor_pu),
-            load_growth_pct: real(unit.load_growth_pct),
-            responsibility_pu: real(unit.responsibility_pu),
-            energised_hours: real(unit.energised_hours),
-            power_factor: real(unit.power_factor),
-            year_made: unit.year_made.map_or(f64::NAN, |y| y as f64),
-            failure_cost: money(unit.failure_cost),
-            removal_cost: money(unit.removal_cost),
-            scrap_value: money(unit.scrap_value),
-            customers: unit.customers.map_or(f64::NAN, |n| n as f64),
-            impedance_pct: real(unit.impedance_pct),
-            phases: unit.phases,
-            winding_metal: unit.winding_metal,
-            insulation: unit.insulation,
-            profile: profile.and_then(|p| u32::try_from(p).ok()).unwrap_or(u32::MAX),
-        }
-    }
 }
 
 /// What a basis brings to every unit: assumptions, prices, and the ratios of the profiles.
@@ -210,18 +175,6 @@ impl LeftOut {
     }
 }
 
-/// Whether the total loss and its two parts differ by more than 1 % (W).
-pub fn losses_contradict(
-    no_load_loss_w: Option<f64>,
-    load_loss_w: Option<f64>,
-    total_loss_w: Option<f64>,
-) -> bool {
-    match (no_load_loss_w, load_loss_w, total_loss_w) {
-        (Some(p0), Some(pk), Some(total)) => (p0 + pk - total).abs() > 0.01 * total,
-        _ => false,
-    }
-}
-
 /// Whether a load or loss factor given beside a profile differs from the profile's by more than 0.05.
 pub fn loading_contradicts(
     ratios: &Ratios,
@@ -296,13 +249,14 @@ pub fn resolve_at<R: Recorder>(
     let base = known(f.loss_base_kva);
     flags = flags
         .with_if(blank_loss(f).is_some(), Flags::LOSS_ESTIMATED)
+        .with_if(f.from_test, Flags::FROM_TEST)
         .with_if(pk.is_none() && total.is_some(), Flags::LOAD_LOSS_FROM_TOTAL)
         .with_if(
             base.is_some_and(|b| b != f.rated_kva) && (pk.is_some() || total.is_some()),
             Flags::LOSS_BASE_DIFFERS,
         )
         .with_if(losses.load_loss_w < losses.no_load_loss_w, Flags::LOSSES_SWAPPED);
-    flags = flags.with_if(losses_contradict(p0, pk, total), Flags::LOSSES_CONTRADICT);
+    flags = flags.with_if(contradict(p0, pk, total), Flags::LOSSES_CONTRADICT);
 
     said(w, &stated::RATING, f.rated_kva, "the unit");
     let peak = [(known(f.peak_kva), "the unit")];
@@ -436,9 +390,7 @@ fn voltage_drop<R: Recorder>(
     let power_factor = known_or(w, &stated::POWER_FACTOR, own, (1.0, "the default"));
     let v_hv_pu = ctx.assumptions.operating_voltage_pu;
     said(w, &stated::OPERATING_VOLTAGE, v_hv_pu, "the basis");
-    losses.reactance_pu = known(f.impedance_pct)
-        .and_then(|z| of_nameplate(w, losses.rated_kva, losses.load_loss_w, z).ok())
-        .map(|circuit| circuit.x_pu);
+    *losses = losses.with_impedance(w, known(f.impedance_pct));
     let duration = ctx.durations.get(f.profile as usize).cloned();
     *flags = flags
         .with_if(losses.reactance_pu.is_none(), Flags::IMPEDANCE_UNKNOWN)

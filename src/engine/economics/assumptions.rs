@@ -3,7 +3,7 @@
 use super::discounting::payment;
 use super::failure::Weibull;
 use crate::engine::Refusal;
-use crate::engine::columns::{Basis, CapitalRecovery, CashFlow, FactorMethod, VoltageModel};
+use crate::engine::columns::{Basis, CapitalRecovery, CashFlow, FactorMethod, Value, VoltageModel};
 use crate::engine::loading::duty::growth;
 
 /// Where the energy price comes from.
@@ -116,12 +116,12 @@ fn rate(quantity: &'static str, pct: f64) -> Result<f64, Refusal> {
     Err(Refusal::new(quantity, pct, "a rate must be above −100 %; write 6 for six percent a year"))
 }
 
-fn years(quantity: &'static str, value: i64, least: i64) -> Result<usize, Refusal> {
-    if (least..=200).contains(&value) {
-        #[expect(clippy::cast_possible_truncation, clippy::cast_sign_loss, reason = "0 to 200")]
-        return Ok(value as usize);
-    }
-    Err(Refusal::new(quantity, value, format!("must lie between {least} and 200 years")))
+/// A whole number of the basis, within the range that its column has.
+fn whole(quantity: &'static str, value: i64) -> Result<usize, Refusal> {
+    let column = Basis::COLUMNS.iter().find(|column| column.name == quantity);
+    let read = column.map_or(Ok(Value::Blank), |column| column.read(&value.to_string()));
+    read.map_err(|why| Refusal::new(quantity, value, why))?;
+    usize::try_from(value).map_err(|_| Refusal::new(quantity, value, "cannot be negative"))
 }
 
 impl Assumptions {
@@ -132,7 +132,7 @@ impl Assumptions {
     /// without a life is refused later, where an offer names none either.
     pub fn resolve(basis: &Basis) -> Result<Self, Refusal> {
         let pct = |quantity, value: Option<f64>| rate(quantity, value.unwrap_or(0.0));
-        let horizon = years("horizon_years", basis.horizon_years, 1)?;
+        let horizon = whole("horizon_years", basis.horizon_years)?;
         let energy_price = match (basis.energy_price_per_kwh, &basis.price_series) {
             (Some(_), Some(series)) => {
                 let why = "stands beside energy_price_per_kwh; keep one of the two";
@@ -146,18 +146,18 @@ impl Assumptions {
             }
         };
         let latest = match basis.latest_replacement_years {
-            Some(latest) => years("latest_replacement_years", latest, 0)?.min(horizon - 1),
+            Some(latest) => whole("latest_replacement_years", latest)?.min(horizon - 1),
             None => horizon - 1,
         };
         let growth_years = match basis.load_growth_years {
-            Some(value) => years("load_growth_years", value, 1)?,
+            Some(value) => whole("load_growth_years", value)?,
             None => horizon,
         };
         let offer_sizes = match (basis.offer_sizes_down, basis.offer_sizes_up) {
             (None, None) => None,
             (down, up) => Some((
-                years("offer_sizes_down", down.unwrap_or(0), 0)?,
-                years("offer_sizes_up", up.unwrap_or(0), 0)?,
+                whole("offer_sizes_down", down.unwrap_or(0))?,
+                whole("offer_sizes_up", up.unwrap_or(0))?,
             )),
         };
         let failure = match (basis.failure_shape, basis.failure_scale_years) {

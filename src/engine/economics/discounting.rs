@@ -1,5 +1,6 @@
 //! Discounting: annuities and the years of a horizon. i = 0 is an ordinary rate.
 
+use super::Assumptions;
 use crate::engine::columns::CashFlow;
 use crate::engine::working::{Formula, Recorder};
 
@@ -41,6 +42,31 @@ pub fn running(i: f64, k: usize, cash_flow: CashFlow) -> f64 {
         CashFlow::YearEnd => (1.0 + i).powf(-k),
         CashFlow::MidYear => (1.0 + i).powf(-(k - 0.5)),
     }
+}
+
+/// Sums over a horizon: Σ_k d_k·index_k, and the same with the squared growth of the load.
+#[derive(Clone, Copy, Debug, Default)]
+pub(super) struct Sums {
+    pub plain: f64,
+    pub grown: f64,
+}
+
+/// Sums years 1 to `years` of running costs whose price escalates; `growth` is the load of year k over year 1.
+pub(super) fn sums(
+    i: f64,
+    cash_flow: CashFlow,
+    years: usize,
+    escalation: f64,
+    growth: impl Fn(usize) -> f64,
+) -> Sums {
+    let mut sums = Sums::default();
+    for k in 1..=years {
+        let term = running(i, k, cash_flow) * Assumptions::index(escalation, k);
+        let grown = growth(k);
+        sums.plain += term;
+        sums.grown += term * grown * grown;
+    }
+    sums
 }
 
 /// What a payment at time `t` is worth at time 0, v^t.

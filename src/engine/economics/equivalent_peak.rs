@@ -1,10 +1,11 @@
 //! The levelised (equivalent) peak load of a growing load: the constant peak that makes the same copper loss in
 //! present value; and the growth rate of a load that doubles in some years.
 
-use super::discounting::running;
+use super::discounting::{Sums, sums};
 use super::interest::check_rate;
 use crate::engine::Refusal;
 use crate::engine::columns::{CashFlow, choice};
+use crate::engine::loading::duty;
 use crate::engine::working::{Formula, Recorder};
 
 choice! {
@@ -51,17 +52,12 @@ pub fn equivalent_peak<R: Recorder>(
     if years == 0 || years > 200 {
         return Err(Refusal::new("years", years, "lie between 1 and 200"));
     }
-    let (mut square, mut plain, mut past) = (0.0, 0.0, 0.0);
-    for k in 1..=years {
-        let d = running(rate, k, cash_flow);
-        let ratio = match growth {
-            Growth::Compound => (1.0 + g).powf(past),
-            Growth::Linear => 1.0 + g * past,
-        };
-        square += ratio * ratio * d;
-        plain += d;
-        past += 1.0;
-    }
+    #[expect(clippy::cast_precision_loss, reason = "at most 200 years")]
+    let grown = |k: usize| match growth {
+        Growth::Compound => duty::growth(g, k, years),
+        Growth::Linear => 1.0 + g * (k - 1) as f64,
+    };
+    let Sums { plain, grown: square } = sums(rate, cash_flow, years, 0.0, grown);
     let formula = if growth == Growth::Compound { &COMPOUND } else { &LINEAR };
     let value = first_peak * (square / plain).sqrt();
     Ok(w.step(formula, &[("P_1", first_peak), ("g", g)], value))

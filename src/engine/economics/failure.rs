@@ -13,20 +13,26 @@ pub struct Weibull {
     pub scale_years: f64,
 }
 
-const FAILS_IN_YEAR: Formula = Formula {
-    name: "probability that a unit of age a fails within the year",
+const FAILS_WITHIN: Formula = Formula {
+    name: "probability that a unit of age a fails within n years",
     symbol: "h",
-    formula: "1 − exp((a/η)^b − ((a+1)/η)^b)",
-    unit: "1/year",
+    formula: "1 − exp((a/η)^b − ((a+n)/η)^b)",
+    unit: "pu",
     source: "Weibull 1951, conditional on having lived to age a",
 };
 
 impl Weibull {
     /// Probability that a unit that has reached `age` fails before `age` + 1 (years).
     pub fn fails_in_year<R: Recorder>(&self, w: &mut R, age: f64) -> f64 {
+        self.fails_within(w, age, 1.0)
+    }
+
+    /// Probability that a unit of `age` fails within `years` (pu).
+    pub fn fails_within<R: Recorder>(&self, w: &mut R, age: f64, years: f64) -> f64 {
         let hazard = |x: f64| (x / self.scale_years).powf(self.shape);
-        let value = -(hazard(age) - hazard(age + 1.0)).exp_m1();
-        w.step(&FAILS_IN_YEAR, &[("a", age), ("η", self.scale_years), ("b", self.shape)], value)
+        let value = -(hazard(age) - hazard(age + years)).exp_m1();
+        let inputs = [("a", age), ("η", self.scale_years), ("b", self.shape), ("n", years)];
+        w.step(&FAILS_WITHIN, &inputs, value)
     }
 }
 

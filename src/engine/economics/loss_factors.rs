@@ -1,7 +1,7 @@
 //! Capitalised loss factors A, B and auxiliary: what a kW of loss is worth, once, in today's money.
 
 use super::Assumptions;
-use super::discounting::running;
+use super::discounting::{self, Sums};
 use crate::engine::Refusal;
 use crate::engine::columns::{CashFlow, FactorMethod};
 use crate::engine::loading::Duty;
@@ -80,22 +80,9 @@ static CARBON_GROWN: Horizon = horizon(
     ],
 );
 
-/// Σ_k d_k·index_k, and the same with the squared growth of the load.
-#[derive(Clone, Copy, Debug, Default)]
-struct Sums {
-    plain: f64,
-    grown: f64,
-}
-
 fn sums(a: &Assumptions, duty: &Duty, escalation: f64) -> Sums {
-    let mut sums = Sums::default();
-    for k in 1..=a.years {
-        let term = running(a.rate, k, a.cash_flow) * Assumptions::index(escalation, k);
-        let grown = growth(duty.load_growth_pu, k, a.load_growth_years);
-        sums.plain += term;
-        sums.grown += term * grown * grown;
-    }
-    sums
+    let grown = |k| growth(duty.load_growth_pu, k, a.load_growth_years);
+    discounting::sums(a.rate, a.cash_flow, a.years, escalation, grown)
 }
 
 /// The factors of a duty on a transformer of `rated_kva`, by the method of the basis.
@@ -294,11 +281,9 @@ pub fn levelized<R: Recorder>(
         let why = "is required by factor_method \"levelized\"";
         return Err(Refusal::new("fixed_charge_rate_pct", "", why));
     };
-    let discount = |k| running(a.rate, k, a.cash_flow);
-    let plain = (1..=a.years).map(discount).sum::<f64>();
+    let Sums { plain, grown: flat } = sums(a, duty, 0.0);
     let crf = 1.0 / plain;
     let energy = sums(a, duty, a.energy_escalation).plain;
-    let flat = sums(a, duty, 0.0).grown;
     let beta = duty.peak_kva / rated_kva;
     let (et, increase) = (a.transmission_efficiency_pu, a.increase_factor);
     let divisor = et * fcr * increase;

@@ -1,7 +1,8 @@
 //! Load profiles: a year of equal steps at any scale, and the ratios that the economics needs of them.
 
 use crate::engine::Refusal;
-use crate::engine::working::{Formula, Recorder, Silent};
+use crate::engine::loading::stepped::{self, Ratios};
+use crate::engine::working::{Recorder, Silent};
 
 /// A load profile of a year. Reverse flow loads the windings too, so absolute values count.
 #[derive(Clone, Debug, PartialEq)]
@@ -16,59 +17,26 @@ pub struct Profile {
     pub values: Vec<f64>,
 }
 
-/// What is left of a profile when its scale is taken away.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Ratios {
-    /// Greatest value, in the profile's own scale.
-    pub peak: f64,
-    /// Mean over peak, LF.
-    pub load_factor_pu: f64,
-    /// Mean square over peak square, LsF.
-    pub loss_factor_pu: f64,
-}
-
-const LOAD_FACTOR: Formula = Formula {
-    name: "load factor of the profile",
-    symbol: "LF",
-    formula: "Σ_t (|s_t|/s_max)/n",
-    unit: "pu",
-    source: "mean over peak; methods, section 3",
-};
-const LOSS_FACTOR: Formula = Formula {
-    name: "loss factor of the profile",
-    symbol: "LsF",
-    formula: "Σ_t (s_t/s_max)²/n",
-    unit: "pu",
-    source: "mean square over peak square; methods, section 3",
-};
-
 impl Profile {
     /// The ratios LF = mean/peak and LsF = mean(s²)/peak².
     ///
     /// # Errors
     /// An empty profile and one that is never above zero have no ratios.
     pub fn ratios<R: Recorder>(&self, w: &mut R) -> Result<Ratios, Refusal> {
-        let peak = self.values.iter().fold(0.0, |peak: f64, s| peak.max(s.abs()));
-        if peak.is_nan() || peak <= 0.0 || !peak.is_finite() {
+        let steps = self.values.iter().map(|s| (*s, 1.0));
+        stepped::ratios(w, &self.profile, steps).map_err(|_| {
             let why = "has no value above zero; a profile needs the shape of a year's load";
-            return Err(Refusal::new("profile", &self.profile, why));
-        }
-        #[expect(clippy::cast_precision_loss, reason = "a year has at most half a million steps")]
-        let steps = self.values.len() as f64;
-        let (sum, square) = self.values.iter().fold((0.0, 0.0), |(sum, square), s| {
-            let s = s.abs() / peak;
-            (sum + s, square + s * s)
-        });
-        let mut mean = |formula, sum: f64| {
-            let value = w.step(formula, &[("s_max", peak), ("n", steps)], sum / steps);
-            w.about(&|| self.profile.clone());
-            value
-        };
-        Ok(Ratios {
-            peak,
-            load_factor_pu: mean(&LOAD_FACTOR, sum),
-            loss_factor_pu: mean(&LOSS_FACTOR, square),
+            Refusal::new("profile", &self.profile, why)
         })
+    }
+
+    /// The load of each step (of its magnitude) where the greatest of the year is `peak`, in the unit of that.
+    ///
+    /// # Errors
+    /// As [`Profile::ratios`].
+    pub fn loads(&self, peak: f64) -> Result<Vec<f64>, Refusal> {
+        let greatest = self.ratios(&mut Silent)?.peak;
+        Ok(self.values.iter().map(|s| s.abs() / greatest * peak).collect())
     }
 
     /// The load-duration histogram: for each of `bins` equal steps of s = |load|/peak the share of the year and

@@ -3,9 +3,9 @@
 use crate::engine::Refusal;
 use crate::engine::working::{Formula, Recorder};
 
-/// The ratios of a load.
+/// What is left of a load when its scale is taken away.
 #[derive(Clone, Copy, Debug, PartialEq)]
-pub struct SteppedLoad {
+pub struct Ratios {
     /// Greatest load, in the unit of the steps.
     pub peak: f64,
     /// Mean over peak, LF.
@@ -17,41 +17,49 @@ pub struct SteppedLoad {
 const LF: Formula = Formula {
     name: "load factor, exact",
     symbol: "LF",
-    formula: "Σ S·Δt/(S_peak·Σ Δt)",
+    formula: "Σ (|S|/S_peak)·Δt/T",
     unit: "pu",
-    source: "definition; methods, section 3",
+    source: "mean over peak; methods, section 3",
 };
 const LSF: Formula = Formula {
     name: "loss factor, exact",
     symbol: "LsF",
-    formula: "Σ S²·Δt/(S_peak²·Σ Δt)",
+    formula: "Σ (S/S_peak)²·Δt/T",
     unit: "pu",
-    source: "definition; methods, section 3",
+    source: "mean square over peak square; methods, section 3",
 };
 
-/// Exact load and loss factor of a load in steps of (load, hours). The magnitude of the load counts.
+/// Exact load and loss factor of a load in steps of (load, duration), at any scale of both. The magnitude of the
+/// load counts: reverse flow loads the windings too. `of` says in the working whose load it is.
 ///
 /// # Errors
-/// No hours, negative hours, no load above zero.
-pub fn ratios<R: Recorder>(w: &mut R, steps: &[(f64, f64)]) -> Result<SteppedLoad, Refusal> {
-    let (mut peak, mut sum, mut square, mut hours) = (0.0_f64, 0.0, 0.0, 0.0);
-    for (load, h) in steps {
-        if *h < 0.0 || h.is_nan() {
-            return Err(Refusal::new("hours", h, "cannot be negative"));
+/// A duration below zero or none at all, no load above zero.
+pub fn ratios<R: Recorder>(
+    w: &mut R,
+    of: &str,
+    steps: impl Iterator<Item = (f64, f64)> + Clone,
+) -> Result<Ratios, Refusal> {
+    let peak = steps.clone().fold(0.0, |peak: f64, (load, _)| peak.max(load.abs()));
+    let (mut sum, mut square, mut duration) = (0.0, 0.0, 0.0);
+    for (load, step) in steps {
+        if step < 0.0 || step.is_nan() {
+            return Err(Refusal::new("hours", step, "cannot be negative"));
         }
-        let s = load.abs();
-        peak = peak.max(s);
-        sum += s * h;
-        square += s * s * h;
-        hours += h;
+        let s = load.abs() / peak;
+        sum += s * step;
+        square += s * s * step;
+        duration += step;
     }
-    if hours <= 0.0 || peak <= 0.0 {
+    if duration <= 0.0 || peak <= 0.0 || !peak.is_finite() {
         let why = "needs at least one load above zero that stands for some hours";
         return Err(Refusal::new("load", peak, why));
     }
-    let lf = w.step(&LF, &[("S_peak", peak)], sum / (peak * hours));
-    let lsf = w.step(&LSF, &[("S_peak", peak)], square / (peak * peak * hours));
-    Ok(SteppedLoad { peak, load_factor_pu: lf, loss_factor_pu: lsf })
+    let mut mean = |formula, sum: f64| {
+        let value = w.step(formula, &[("S_peak", peak), ("T", duration)], sum / duration);
+        w.about(&|| of.to_owned());
+        value
+    };
+    Ok(Ratios { peak, load_factor_pu: mean(&LF, sum), loss_factor_pu: mean(&LSF, square) })
 }
 
 const WEIGHT: Formula = Formula {
@@ -195,10 +203,14 @@ mod tests {
     use crate::engine::loading::factors;
     use crate::engine::working::Silent;
 
+    fn of(steps: &[(f64, f64)]) -> Result<Ratios, Refusal> {
+        ratios(&mut Silent, "", steps.iter().copied())
+    }
+
     /// T2-exact-two-level; the implied weight gives the loss factor back.
     #[test]
     fn two_level_load() {
-        let r = ratios(&mut Silent, &[(1.0, 6.0), (-0.25, 18.0)]).expect("loaded");
+        let r = of(&[(1.0, 6.0), (-0.25, 18.0)]).expect("loaded");
         assert_eq!((r.load_factor_pu, r.loss_factor_pu), (0.4375, 0.296_875));
         let w = implied_weight(&mut Silent, r.load_factor_pu, r.loss_factor_pu).expect("inside");
         let back = factors::loss_factor(&mut Silent, r.load_factor_pu, w);
@@ -208,9 +220,9 @@ mod tests {
 
     #[test]
     fn impossible_loads_are_refused() {
-        assert!(ratios(&mut Silent, &[(0.0, 24.0)]).is_err());
-        assert!(ratios(&mut Silent, &[]).is_err());
-        assert!(ratios(&mut Silent, &[(1.0, -1.0)]).is_err());
+        assert!(of(&[(0.0, 24.0)]).is_err());
+        assert!(of(&[]).is_err());
+        assert!(of(&[(1.0, -1.0)]).is_err());
         assert!(load_factor_of_energy(&mut Silent, 8760.0, 0.5, 8760.0).is_err());
         assert!(diversity(&mut Silent, &[1.0, 2.0], 3.5).is_err());
         assert_eq!(diversity(&mut Silent, &[1.0, 2.0], 3.0).expect("together"), (1.0, 1.0));

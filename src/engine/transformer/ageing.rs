@@ -53,10 +53,8 @@ const F_AA: Formula = Formula {
     source: "IEEE C57.91",
 };
 
-/// Reference hot-spot temperature of units with 65 °C average rise (°C), IEEE C57.91; 95 °C for 55 °C rise.
-pub const REFERENCE_HOT_SPOT_C: f64 = 110.0;
-
-/// Ageing acceleration factor at a hot-spot temperature (°C).
+/// Ageing acceleration factor at a hot-spot temperature (°C); the reference is 110 °C for units with 65 °C average
+/// rise, 95 °C for 55 °C rise (IEEE C57.91).
 pub fn acceleration<R: Recorder>(w: &mut R, hot_spot_c: f64, reference_c: f64) -> f64 {
     let value = (15_000.0 / (reference_c + 273.0) - 15_000.0 / (hot_spot_c + 273.0)).exp();
     w.step(&F_AA, &[("θ_ref", reference_c), ("θh", hot_spot_c)], value)
@@ -92,10 +90,6 @@ pub fn equivalent<R: Recorder>(
     Ok(w.close(&F_EQA, &[], aged / all))
 }
 
-/// Normal insulation life (h), IEEE C57.91 by functional tests; 65 000, 135 000 and 150 000 h by other
-/// criteria of the end of life (memory).
-pub const NORMAL_LIFE_HOURS: f64 = 180_000.0;
-
 const LIFE_LOST: Formula = Formula {
     name: "life lost in the hours",
     symbol: "L",
@@ -104,7 +98,8 @@ const LIFE_LOST: Formula = Formula {
     source: "IEEE C57.91",
 };
 
-/// Life lost in `hours` of equivalent ageing factor `factor`, in percent of `life_hours`.
+/// Life lost in `hours` of equivalent ageing factor `factor`, in percent of `life_hours`: 180 000 h by functional
+/// tests (IEEE C57.91); 65 000, 135 000 and 150 000 h by other criteria of the end of life (memory).
 ///
 /// # Errors
 /// A life that is not above zero.

@@ -100,9 +100,6 @@ pub fn at_frequency<R: Recorder>(w: &mut R, split: CoreSplit, f_hz: f64) -> Core
     }
 }
 
-/// The exponent of flux density in hysteresis loss where none is given (Steinmetz).
-pub const STEINMETZ: f64 = 1.6;
-
 const FLUX: Formula = Formula {
     name: "flux density, new over old",
     symbol: "B_r",
@@ -126,7 +123,7 @@ const EDDY_NEW: Formula = Formula {
 };
 
 /// Core loss at another voltage and frequency: `voltage_ratio` and `frequency_ratio` are new over old, `exponent`
-/// that of flux density in hysteresis (W).
+/// that of flux density in hysteresis, 1.6 by Steinmetz (W).
 ///
 /// # Errors
 /// A ratio that is not above zero.

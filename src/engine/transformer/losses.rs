@@ -1,5 +1,6 @@
 //! Losses of a transformer at a load and over a year: iron follows voltage, copper follows current.
 
+use super::circuit::of_nameplate;
 use crate::engine::Refusal;
 use crate::engine::loading::Duty;
 use crate::engine::loading::duty::peak_of_year;
@@ -19,6 +20,17 @@ pub struct Losses {
     pub auxiliary_loss_w: f64,
     /// Series reactance per unit of the rating; none where it is not known. Only the drop voltage model asks.
     pub reactance_pu: Option<f64>,
+}
+
+impl Losses {
+    /// The same with the reactance that a short-circuit impedance gives beside the load loss; none where it is blank
+    /// or below the resistance.
+    #[must_use]
+    pub fn with_impedance<R: Recorder>(self, w: &mut R, impedance_pct: Option<f64>) -> Self {
+        let circuit =
+            impedance_pct.and_then(|z| of_nameplate(w, self.rated_kva, self.load_loss_w, z).ok());
+        Self { reactance_pu: circuit.map(|circuit| circuit.x_pu), ..self }
+    }
 }
 
 /// Energy lost in a year.
@@ -129,6 +141,18 @@ pub fn quoted<R: Recorder>(
     })
 }
 
+/// Whether the total loss and its two parts differ by more than 1 % of it (W).
+pub fn contradict(
+    no_load_loss_w: Option<f64>,
+    load_loss_w: Option<f64>,
+    total_loss_w: Option<f64>,
+) -> bool {
+    match (no_load_loss_w, load_loss_w, total_loss_w) {
+        (Some(p0), Some(pk), Some(total)) => (p0 + pk - total).abs() > 0.01 * total,
+        _ => false,
+    }
+}
+
 const AT_LOAD: Formula = Formula {
     name: "loss at a load",
     symbol: "P",
@@ -151,6 +175,12 @@ const NO_LOAD_ENERGY: Formula = Formula {
     unit: "kWh",
     source: "methods, section 4",
 };
+const NO_LOAD_ENERGY_AT_VOLTAGE: Formula = Formula {
+    name: "energy of the no-load loss in a year at the operating voltage",
+    formula: "P0·v_hv²·h/1000",
+    source: "methods, sections 2 and 4 (drop voltage model)",
+    ..NO_LOAD_ENERGY
+};
 const LOAD_ENERGY: Formula = Formula {
     name: "energy of the load loss in year k",
     symbol: "Ek",
@@ -166,10 +196,40 @@ const AUXILIARY_ENERGY: Formula = Formula {
     source: "methods, section 4",
 };
 
+/// Energy of the no-load loss in a year (kWh).
+fn no_load_energy<R: Recorder>(w: &mut R, losses: &Losses, duty: &Duty) -> f64 {
+    let (p0, h) = (losses.no_load_loss_w, duty.energised_hours);
+    let v = duty.drop.as_ref().map_or(1.0, |drop| drop.v_hv_pu);
+    let formula = if duty.drop.is_some() { &NO_LOAD_ENERGY_AT_VOLTAGE } else { &NO_LOAD_ENERGY };
+    w.step(formula, &[("P0", p0), ("v_hv", v), ("h", h)], p0 * v * v * h / 1000.0)
+}
+
 /// Energy of fans and pumps in a year (kWh).
-pub fn auxiliary_energy_kwh<R: Recorder>(w: &mut R, losses: &Losses, duty: &Duty) -> f64 {
-    let inputs = [("P_aux", losses.auxiliary_loss_w), ("h_aux", duty.auxiliary_hours)];
-    w.step(&AUXILIARY_ENERGY, &inputs, losses.auxiliary_loss_w * duty.auxiliary_hours / 1000.0)
+pub fn auxiliary_energy<R: Recorder>(w: &mut R, losses: &Losses, duty: &Duty) -> f64 {
+    let (p_aux, h_aux) = (losses.auxiliary_loss_w, duty.auxiliary_hours);
+    w.step(&AUXILIARY_ENERGY, &[("P_aux", p_aux), ("h_aux", h_aux)], p_aux * h_aux / 1000.0)
+}
+
+/// Energy of the load loss in year `k` at rated voltage (kWh).
+fn load_energy<R: Recorder>(
+    w: &mut R,
+    losses: &Losses,
+    duty: &Duty,
+    k: usize,
+    growth_years: usize,
+) -> f64 {
+    w.open();
+    let (peak, h) = (peak_of_year(w, duty, k, growth_years), duty.energised_hours);
+    let beta = peak / losses.rated_kva;
+    let value = losses.load_loss_w * (beta * beta) * duty.loss_factor_pu * h / 1000.0;
+    let inputs = [
+        ("Pk", losses.load_loss_w),
+        ("S_k", peak),
+        ("S_r", losses.rated_kva),
+        ("LsF", duty.loss_factor_pu),
+        ("h", h),
+    ];
+    w.close(&LOAD_ENERGY, &inputs, value)
 }
 
 /// Energy lost in year `k` under a duty: at rated voltage, or by the drop voltage model where the duty has one.
@@ -180,27 +240,14 @@ pub fn annual_energy<R: Recorder>(
     k: usize,
     growth_years: usize,
 ) -> Energy {
-    if let Some(drop) = &duty.drop {
-        return voltage_drop::annual_energy(w, losses, drop, duty, k, growth_years);
-    }
-    let h = duty.energised_hours;
-    let no_load = losses.no_load_loss_w * h / 1000.0;
-    w.step(&NO_LOAD_ENERGY, &[("P0", losses.no_load_loss_w), ("h", h)], no_load);
-    w.open();
-    let peak = peak_of_year(w, duty, k, growth_years);
-    let beta = peak / losses.rated_kva;
-    let load = losses.load_loss_w * (beta * beta) * duty.loss_factor_pu * h / 1000.0;
-    let inputs = [
-        ("Pk", losses.load_loss_w),
-        ("S_k", peak),
-        ("S_r", losses.rated_kva),
-        ("LsF", duty.loss_factor_pu),
-        ("h", h),
-    ];
-    w.close(&LOAD_ENERGY, &inputs, load);
-    let auxiliary =
-        if losses.auxiliary_loss_w > 0.0 { auxiliary_energy_kwh(w, losses, duty) } else { 0.0 };
-    Energy { no_load_energy_kwh: no_load, load_energy_kwh: load, auxiliary_energy_kwh: auxiliary }
+    let no_load_energy_kwh = no_load_energy(w, losses, duty);
+    let load_energy_kwh = match &duty.drop {
+        None => load_energy(w, losses, duty, k, growth_years),
+        Some(drop) => voltage_drop::load_energy(w, losses, drop, duty, k, growth_years),
+    };
+    let auxiliary_energy_kwh =
+        if losses.auxiliary_loss_w > 0.0 { auxiliary_energy(w, losses, duty) } else { 0.0 };
+    Energy { no_load_energy_kwh, load_energy_kwh, auxiliary_energy_kwh }
 }
 
 const EFFICIENCY: Formula = Formula {
@@ -231,12 +278,8 @@ pub fn annual_efficiency_pct<R: Recorder>(w: &mut R, energy: &Energy, duty: &Dut
     let inputs = [("S_1", duty.peak_kva), ("LF", lf), ("cosφ", pf), ("h", duty.energised_hours)];
     w.step(&DELIVERED, &inputs, delivered);
     let value = 100.0 * delivered / (delivered + energy.total_kwh());
-    let inputs = [
-        ("W", delivered),
-        ("E0", energy.no_load_energy_kwh),
-        ("Ek", energy.load_energy_kwh),
-        ("Ea", energy.auxiliary_energy_kwh),
-    ];
+    let [e0, ek, ea] = energy.inputs();
+    let inputs = [("W", delivered), e0, ek, ea];
     Some(w.close(&EFFICIENCY, &inputs, value))
 }
 

@@ -100,6 +100,13 @@ pub struct OpenCircuit {
     pub magnetising_reactance_ohm: Option<f64>,
 }
 
+const P0: Formula = Formula {
+    name: "no-load loss",
+    symbol: "P0",
+    formula: "P",
+    unit: "W",
+    source: "power of the open-circuit test at rated voltage; methods, section 1",
+};
 const IW: Formula = Formula {
     name: "working part of the no-load current",
     symbol: "I_w",
@@ -152,6 +159,7 @@ pub fn open_circuit<R: Recorder>(
         );
         return Err(Refusal::new("open_circuit_voltage_v", v, why));
     }
+    w.step(&P0, &[("P", test.power_w)], test.power_w);
     let working = test.power_w / (m * v);
     w.step(&IW, &[("P0", test.power_w), ("m", m), ("V", v)], working);
     let current = test.current_a;
@@ -402,17 +410,29 @@ pub struct CorrectedLoss {
     pub stray_loss_w: Option<f64>,
 }
 
+const RESISTIVE_AT_REFERENCE: Formula = Formula {
+    name: "I²R part of the load loss at the reference temperature",
+    symbol: "P_I2R_ref",
+    formula: "P_measured·x",
+    unit: "W",
+    source: "IEC 60076-1 Annex E (memory)",
+};
+const STRAY_AT_REFERENCE: Formula = Formula {
+    name: "stray part of the load loss at the reference temperature",
+    symbol: "P_stray_ref",
+    formula: "P_measured/x",
+    unit: "W",
+    source: "IEC 60076-1 Annex E (memory)",
+};
+
 /// Brings a load loss at test temperature to the reference temperature; `resistive_w` is its I²R part at test
 /// temperature where resistances were measured.
-///
-/// # Errors
-/// A stray share outside 0 to 1.
 pub fn at_reference<R: Recorder>(
     w: &mut R,
     load_loss_w: f64,
     resistive_w: Option<f64>,
     correction: Correction,
-) -> Result<CorrectedLoss, Refusal> {
+) -> CorrectedLoss {
     let t0 = vanishing_temp_c(correction.metal);
     let to = correction.reference_temp_c;
     let from = correction.test_temp_c.unwrap_or(to);
@@ -420,18 +440,24 @@ pub fn at_reference<R: Recorder>(
         let loss = if from == to {
             load_loss_w
         } else {
-            load_loss_at_reference(w, load_loss_w, correction.stray_share_pu, t0, from, to)?
+            load_loss_at_reference(w, load_loss_w, correction.stray_share_pu, t0, from, to)
         };
-        return Ok(CorrectedLoss { load_loss_w: loss, resistive_loss_w: None, stray_loss_w: None });
+        return CorrectedLoss { load_loss_w: loss, resistive_loss_w: None, stray_loss_w: None };
     };
-    let (stray, x) = (load_loss_w - resistive, (t0 + to) / (t0 + from));
-    let loss =
-        if from == to { load_loss_w } else { load_loss_at(w, resistive, stray, t0, from, to) };
-    Ok(CorrectedLoss {
-        load_loss_w: loss,
-        resistive_loss_w: Some(resistive * x),
-        stray_loss_w: Some(stray / x),
-    })
+    let stray = load_loss_w - resistive;
+    if from == to {
+        return CorrectedLoss {
+            load_loss_w,
+            resistive_loss_w: Some(resistive),
+            stray_loss_w: Some(stray),
+        };
+    }
+    let loss = load_loss_at(w, resistive, stray, t0, from, to);
+    let x = (t0 + to) / (t0 + from);
+    let (own, other) = (resistive * x, stray / x);
+    w.step(&RESISTIVE_AT_REFERENCE, &[("P_measured", resistive), ("x", x)], own);
+    w.step(&STRAY_AT_REFERENCE, &[("P_measured", stray), ("x", x)], other);
+    CorrectedLoss { load_loss_w: loss, resistive_loss_w: Some(own), stray_loss_w: Some(other) }
 }
 
 /// The per-unit circuit with its load loss brought to another temperature: the reactance stays.
@@ -632,12 +658,11 @@ mod tests {
             reference_temp_c: 75.0,
             stray_share_pu: 0.0,
         };
-        let measured = at_reference(&mut Silent, 1200.0, Some(1050.0), correction).expect("sound");
+        let measured = at_reference(&mut Silent, 1200.0, Some(1050.0), correction);
         assert!((measured.load_loss_w / 1_364.900_65 - 1.0).abs() < 1e-8);
         let stray_share_pu = measured.stray_loss_w.expect("split") / measured.load_loss_w;
         let share =
-            at_reference(&mut Silent, 1200.0, None, Correction { stray_share_pu, ..correction })
-                .expect("sound");
+            at_reference(&mut Silent, 1200.0, None, Correction { stray_share_pu, ..correction });
         assert!((share.load_loss_w / measured.load_loss_w - 1.0).abs() < 1e-12);
     }
 }

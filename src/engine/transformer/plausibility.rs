@@ -112,6 +112,25 @@ pub fn contradictions(
     doubts
 }
 
+/// Farthest that a loss, and the impedance, of a nameplate may be from a test (percent of the nameplate):
+/// tolerances of IEC 60076-1 table 1 (memory).
+const FROM_TEST_PCT: [(&str, f64); 3] =
+    [("no_load_loss_w", 15.0), ("load_loss_w", 15.0), ("impedance_pct", 10.0)];
+
+/// Figures of a nameplate that its own test does not bear out: name, nameplate, test.
+pub fn against_test(figures: [(&'static str, Option<f64>, Option<f64>); 3]) -> Vec<Doubt> {
+    let doubt = |(quantity, plate, test): (&'static str, Option<f64>, Option<f64>)| {
+        let (plate, test) = plate.zip(test)?;
+        let allowed = FROM_TEST_PCT.iter().find(|(name, _)| *name == quantity)?.1;
+        let percent = 100.0 * (test / plate - 1.0);
+        let why = format!(
+            "is {percent:+.1} % off in the test report, which gives {test:.4}; up to {allowed} % is usual: are both of one unit?"
+        );
+        (percent.abs() > allowed).then_some(Doubt { quantity, value: plate, why })
+    };
+    figures.into_iter().filter_map(doubt).collect()
+}
+
 /// Doubt about the thickness of core sheets (mm) at 50 or 60 Hz.
 pub fn lamination(thickness_mm: f64) -> Option<Doubt> {
     let why = "core sheets at 50 or 60 Hz are 0.2 to 1 mm thick".to_owned();

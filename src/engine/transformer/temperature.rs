@@ -1,6 +1,5 @@
 //! Load loss at another winding temperature (IEC 60076-1 Annex E, memory): I²R rises, stray falls.
 
-use crate::engine::Refusal;
 use crate::engine::columns::WindingMetal;
 use crate::engine::working::{Formula, Recorder};
 
@@ -47,7 +46,7 @@ pub fn load_loss_at<R: Recorder>(
 }
 
 const AT_REFERENCE: Formula = Formula {
-    name: "load loss at the reference temperature, stray part s of it",
+    name: "measured load loss at the reference temperature, stray part s of it",
     symbol: "Pk",
     formula: "P_test/((1−s)·x + s/x)",
     unit: "W",
@@ -55,10 +54,7 @@ const AT_REFERENCE: Formula = Formula {
 };
 
 /// Brings a load loss measured at `test_c` to `reference_c` where only the stray share of the loss at the
-/// reference temperature is known (W, °C).
-///
-/// # Errors
-/// A share outside 0 to 1.
+/// reference temperature is known, 0 to 1 (W, °C).
 pub fn load_loss_at_reference<R: Recorder>(
     w: &mut R,
     measured_w: f64,
@@ -66,17 +62,13 @@ pub fn load_loss_at_reference<R: Recorder>(
     metal_t0_c: f64,
     test_c: f64,
     reference_c: f64,
-) -> Result<f64, Refusal> {
-    if !(0.0..=1.0).contains(&stray_share_pu) {
-        let why = "lies between 0 and 1: the stray part of the load loss at reference temperature";
-        return Err(Refusal::new("stray_share_pu", stray_share_pu, why));
-    }
+) -> f64 {
     w.open();
     let x = (metal_t0_c + test_c) / (metal_t0_c + reference_c);
     w.step(&RATIO, &[("T0", metal_t0_c), ("θ", test_c), ("θ_from", reference_c)], x);
     let s = stray_share_pu;
     let value = measured_w / ((1.0 - s) * x + s / x);
-    Ok(w.close(&AT_REFERENCE, &[("P_test", measured_w), ("s", s), ("x", x)], value))
+    w.close(&AT_REFERENCE, &[("P_test", measured_w), ("s", s), ("x", x)], value)
 }
 
 #[cfg(test)]
@@ -91,5 +83,14 @@ mod tests {
         assert!((at(235.0) / 1364.90065 - 1.0).abs() < 1e-8);
         assert!((at(225.0) / 1371.559289 - 1.0).abs() < 1e-8);
         assert!((at(234.5) / 1365.221325 - 1.0).abs() < 1e-8);
+    }
+
+    /// What is measured is what the loss at the reference temperature becomes at that of the test.
+    #[test]
+    fn test_and_reference_agree() {
+        let (pk, s) = (4000.0, 0.1);
+        let test = load_loss_at(&mut Silent, (1.0 - s) * pk, s * pk, 235.0, 75.0, 21.0);
+        let back = load_loss_at_reference(&mut Silent, test, s, 235.0, 21.0, 75.0);
+        assert!((back / pk - 1.0).abs() < 1e-14);
     }
 }

@@ -166,6 +166,8 @@ const LOSS_RATIO: Formula = Formula {
 const fn rise(name: &'static str, symbol: &'static str, unit: &'static str) -> Formula {
     Formula { name, symbol, formula: "as stated", unit, source: "IEC 60076-7 (memory)" }
 }
+const TYPICAL_LOSS_RATIO: Formula =
+    rise("load loss over no-load loss at rated load, typical: there is no no-load loss", "R", "");
 /// Top-oil rise at rated load.
 pub const TOP_OIL_RISE: Formula = rise("top-oil rise at rated load", "Δθor", "K");
 /// Average winding over average oil.
@@ -188,8 +190,11 @@ impl ThermalModel {
     /// Load loss over no-load loss at rated load, R; the typical one where there is no no-load loss.
     pub fn loss_ratio<R: Recorder>(w: &mut R, mode: CoolingMode, losses: &Losses) -> f64 {
         let (p0, pk) = (losses.no_load_loss_w, losses.load_loss_w);
-        let value = if p0 > 0.0 { pk / p0 } else { mode.typical_rises().loss_ratio };
-        w.step(&LOSS_RATIO, &[("Pk", pk), ("P0", p0)], value)
+        if p0 > 0.0 {
+            w.step(&LOSS_RATIO, &[("Pk", pk), ("P0", p0)], pk / p0)
+        } else {
+            w.step(&TYPICAL_LOSS_RATIO, &[], mode.typical_rises().loss_ratio)
+        }
     }
 
     /// Holds all constants and rises in their ranges.

@@ -1,8 +1,8 @@
 //! The "drop" voltage model (methods, section 2): iron at the operating voltage of the high-voltage side, copper
-//! with the current that flows at the voltage left on the low-voltage side, and the energy of a year from it.
+//! with the current that flows at the voltage left on the low-voltage side, and the energy that it loses in a year.
 
 use super::circuit::{Circuit, PowerFactor, resistance_pu};
-use super::losses::{Energy, Losses, auxiliary_energy_kwh};
+use super::losses::Losses;
 use crate::engine::Refusal;
 use crate::engine::loading::duty::peak_of_year;
 use crate::engine::loading::{Duty, VoltageDrop};
@@ -157,13 +157,6 @@ pub fn mean_square_current<R: Recorder>(
     Ok(w.step(&MEAN_SQUARE, &inputs, sum))
 }
 
-const NO_LOAD_ENERGY: Formula = Formula {
-    name: "energy of the no-load loss in a year at the operating voltage",
-    symbol: "E0",
-    formula: "P0·v_hv²·h/1000",
-    unit: "kWh",
-    source: "methods, sections 2 and 4 (drop voltage model)",
-};
 const LOAD_ENERGY: Formula = Formula {
     name: "energy of the load loss in year k",
     symbol: "Ek",
@@ -172,31 +165,26 @@ const LOAD_ENERGY: Formula = Formula {
     source: "methods, sections 2 and 4 (drop voltage model)",
 };
 
-/// Energy lost in year `k` under a duty by the drop model; [`super::losses::annual_energy`] asks for it. Infinite
-/// where the load cannot be carried.
-pub(super) fn annual_energy<R: Recorder>(
+/// Energy of the load loss in year `k` by the drop model (kWh); [`super::losses::annual_energy`] asks for it.
+/// Infinite where the load cannot be carried.
+pub(super) fn load_energy<R: Recorder>(
     w: &mut R,
     losses: &Losses,
     drop: &VoltageDrop,
     duty: &Duty,
     k: usize,
     growth_years: usize,
-) -> Energy {
-    let (h, v) = (duty.energised_hours, drop.v_hv_pu);
-    let no_load = losses.no_load_loss_w * v * v * h / 1000.0;
-    w.step(&NO_LOAD_ENERGY, &[("P0", losses.no_load_loss_w), ("v_hv", v), ("h", h)], no_load);
+) -> f64 {
     w.open();
     resistance_pu(w, losses.rated_kva, losses.load_loss_w);
     let peak = peak_of_year(w, duty, k, growth_years) / losses.rated_kva;
     let parts = drop.duration.as_deref();
     let supply = Supply::of(losses, drop);
     let square = mean_square_current(w, &supply, peak, duty.loss_factor_pu, parts);
-    let square = square.unwrap_or(f64::INFINITY);
-    let load = losses.load_loss_w * square * h / 1000.0;
-    w.close(&LOAD_ENERGY, &[("Pk", losses.load_loss_w), ("i_rms", square.sqrt()), ("h", h)], load);
-    let auxiliary =
-        if losses.auxiliary_loss_w > 0.0 { auxiliary_energy_kwh(w, losses, duty) } else { 0.0 };
-    Energy { no_load_energy_kwh: no_load, load_energy_kwh: load, auxiliary_energy_kwh: auxiliary }
+    let (square, h) = (square.unwrap_or(f64::INFINITY), duty.energised_hours);
+    let value = losses.load_loss_w * square * h / 1000.0;
+    let inputs = [("Pk", losses.load_loss_w), ("i_rms", square.sqrt()), ("h", h)];
+    w.close(&LOAD_ENERGY, &inputs, value)
 }
 
 #[cfg(test)]

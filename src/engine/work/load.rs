@@ -29,8 +29,7 @@ calc! {
             None
         } else {
             let hours = i.hours.as_long_as("hours", i.load.len())?;
-            let steps: Vec<(f64, f64)> = i.load.iter().copied().zip(hours).collect();
-            Some(stepped::ratios(w, &steps)?)
+            Some(stepped::ratios(w, "", i.load.iter().copied().zip(hours))?)
         };
         let (lf, lsf) = match (stepped, i.load_factor_pu, i.loss_factor_pu) {
             (Some(r), None, None) => (Some(r.load_factor_pu), r.loss_factor_pu),

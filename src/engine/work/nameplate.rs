@@ -1,16 +1,16 @@
 //! Calculations of the nameplate: from tests, corrections of measured losses, per unit, from winding to winding.
 
-use super::input::{Input, KV, KVA, LOSS_W, SHARE, TEMPERATURE_C, calc, need};
+use super::input::{Input, KV, KVA, LOSS_W, SHARE, TEMPERATURE_C, calc};
 use super::{Calc, result};
 use crate::engine::Refusal;
-use crate::engine::columns::{Side, WindingMetal};
+use crate::engine::columns::{Side, TestReport, WindingMetal};
 use crate::engine::transformer::circuit::{self, Base, Carried};
-use crate::engine::transformer::nameplate::{self, Correction, Phases, Resistances, Test};
+use crate::engine::transformer::nameplate::{self, Phases};
 use crate::engine::transformer::plausibility;
 use crate::engine::transformer::temperature::{
     load_loss_at, load_loss_at_reference, vanishing_temp_c,
 };
-use crate::engine::transformer::vector_group::two_windings;
+use crate::engine::transformer::test_report::{self, Plate};
 
 pub(super) const CALCS: &[Calc] = &[
     TESTS_TO_NAMEPLATE,
@@ -48,93 +48,66 @@ calc! {
         stray_share_pu: f64, SHARE.default("0"), "stray part of the load loss at reference temperature where no resistances are given";
     }
     |i, w| {
-        if let Some(group) = &i.vector_group {
-            two_windings(group)?;
-        }
-        let phases = Phases::of(i.phases)?;
-        let rated_v = |side| if side == Side::Hv { i.hv_kv } else { i.lv_kv }.map(|kv| 1000.0 * kv);
-        let test = |v, a, p| Some(Test { voltage_v: v?, current_a: a?, power_w: p? });
-        let open = test(i.open_circuit_voltage_v, i.open_circuit_current_a, i.open_circuit_power_w);
-        let short =
-            test(i.short_circuit_voltage_v, i.short_circuit_current_a, i.short_circuit_power_w);
-        if open.is_none() && short.is_none() {
-            let why = "voltage, current and power of an open-circuit or a short-circuit test are needed";
-            return Err(Refusal::new("open_circuit_power_w", "", why));
-        }
+        let plate = Plate {
+            rated_kva: i.rated_kva,
+            phases: Phases::of(i.phases)?,
+            hv_kv: i.hv_kv,
+            lv_kv: i.lv_kv,
+            vector_group: i.vector_group.as_deref(),
+            winding_metal: i.winding_metal,
+            reference_temp_c: i.reference_temp_c,
+            stray_share_pu: i.stray_share_pu,
+        };
+        let report = TestReport {
+            unit: String::new(),
+            open_circuit_voltage_v: i.open_circuit_voltage_v,
+            open_circuit_current_a: i.open_circuit_current_a,
+            open_circuit_power_w: i.open_circuit_power_w,
+            short_circuit_voltage_v: i.short_circuit_voltage_v,
+            short_circuit_current_a: i.short_circuit_current_a,
+            short_circuit_power_w: i.short_circuit_power_w,
+            hv_resistance_ohm: i.hv_resistance_ohm,
+            lv_resistance_ohm: i.lv_resistance_ohm,
+            resistance_temp_c: i.resistance_temp_c,
+            test_temp_c: i.test_temp_c,
+            open_circuit_side: Some(i.open_circuit_side),
+            short_circuit_side: Some(i.short_circuit_side),
+            tested_on: None,
+        };
+        let tested = test_report::read(w, &plate, &report)?;
         let mut out = super::Results::default();
-        if let Some(test) = open {
-            let iron = nameplate::open_circuit(w, phases, test, rated_v(i.open_circuit_side))?;
+        if let Some(iron) = tested.open {
             out = out
                 .and("no_load_loss_w", iron.no_load_loss_w)
+                .and("no_load_current_pct", tested.no_load_current_pct)
                 .and("working_current_a", iron.working_current_a)
                 .and("magnetising_current_a", iron.magnetising_current_a)
                 .and("core_resistance_ohm", iron.core_resistance_ohm)
                 .and("magnetising_reactance_ohm", iron.magnetising_reactance_ohm);
         }
-        let Some(test) = short else { return Ok(out) };
-        let why = "is needed: rated voltage of the winding that was fed in the short-circuit test";
-        let name = if i.short_circuit_side == Side::Hv { "hv_kv" } else { "lv_kv" };
-        let fed_v = need(name, rated_v(i.short_circuit_side), why)?;
-        let copper = nameplate::short_circuit(w, phases, test, i.rated_kva, fed_v)?;
-        let correction = Correction {
-            metal: i.winding_metal,
-            test_temp_c: i.test_temp_c,
-            reference_temp_c: i.reference_temp_c,
-            stray_share_pu: i.stray_share_pu,
-        };
-        let resistive = match (i.hv_resistance_ohm, i.lv_resistance_ohm) {
-            (Some(hv_ohm), Some(lv_ohm)) => {
-                let why = "is needed for the current that the winding resistance carries";
-                let hv_v = need("hv_kv", rated_v(Side::Hv), why)?;
-                let lv_v = need("lv_kv", rated_v(Side::Lv), why)?;
-                let hv_a = nameplate::rated_current(w, phases, i.rated_kva, hv_v)?;
-                let lv_a = nameplate::rated_current(w, phases, i.rated_kva, lv_v)?;
-                let measured = Resistances { hv_ohm, lv_ohm, temp_c: i.resistance_temp_c };
-                let at = Some(i.test_temp_c.unwrap_or(i.reference_temp_c));
-                let t0 = vanishing_temp_c(i.winding_metal);
-                let loss = copper.load_loss_w;
-                let amperes = [hv_a, lv_a];
-                Some(nameplate::resistive_loss(w, phases, measured, amperes, loss, t0, at)?)
-            }
-            (None, None) => None,
-            _ => {
-                let why = "the resistances of both windings are needed to split the load loss";
-                return Err(Refusal::new("lv_resistance_ohm", "", why));
-            }
-        };
-        let at = nameplate::at_reference(w, copper.load_loss_w, resistive, correction)?;
-        let circuit = if at.load_loss_w == copper.load_loss_w {
-            copper.circuit
-        } else {
-            nameplate::circuit_at(w, copper.circuit, i.rated_kva, at.load_loss_w)
-        };
+        let Some(copper) = tested.short else { return Ok(out) };
         out = out
-            .and("load_loss_w", at.load_loss_w)
-            .and("impedance_pct", 100.0 * circuit.z_pu())
-            .and("r_pu", circuit.r_pu)
-            .and("x_pu", circuit.x_pu)
-            .and("z_pu", circuit.z_pu())
-            .and("impedance_voltage_v", copper.impedance_voltage_v)
-            .and("test_load_loss_w", copper.load_loss_w)
-            .and("series_impedance_ohm", copper.impedance_ohm)
-            .and("series_resistance_ohm", copper.resistance_ohm)
-            .and("series_reactance_ohm", copper.reactance_ohm)
-            .and("resistive_loss_w", at.resistive_loss_w)
-            .and("stray_loss_w", at.stray_loss_w);
-        if let (Some(open), Some(hv), Some(lv)) = (open, rated_v(Side::Hv), rated_v(Side::Lv)) {
-            let volts = |side| if side == Side::Hv { hv } else { lv };
-            let (from, to) = (volts(i.short_circuit_side), volts(i.open_circuit_side));
-            let ohm = Carried::Impedance(copper.resistance_ohm);
-            let ohm = circuit::transfer(w, ohm, from, to)?;
-            let lost = nameplate::open_circuit_copper(w, phases, open.current_a, ohm);
+            .and("load_loss_w", copper.corrected.load_loss_w)
+            .and("impedance_pct", copper.impedance_pct)
+            .and("r_pu", copper.circuit.r_pu)
+            .and("x_pu", copper.circuit.x_pu)
+            .and("z_pu", copper.circuit.z_pu())
+            .and("impedance_voltage_v", copper.test.impedance_voltage_v)
+            .and("test_load_loss_w", copper.test.load_loss_w)
+            .and("series_impedance_ohm", copper.test.impedance_ohm)
+            .and("series_resistance_ohm", copper.test.resistance_ohm)
+            .and("series_reactance_ohm", copper.test.reactance_ohm)
+            .and("resistive_loss_w", copper.corrected.resistive_loss_w)
+            .and("stray_loss_w", copper.corrected.stray_loss_w);
+        let iron_w = tested.open.map(|iron| iron.no_load_loss_w);
+        if let (Some([ohm, lost]), Some(iron_w)) = (tested.open_circuit_copper, iron_w) {
             out = out
                 .and("resistance_at_open_circuit_side_ohm", ohm)
                 .and("open_circuit_copper_w", lost)
-                .and("core_loss_w", open.power_w - lost);
+                .and("core_loss_w", iron_w - lost);
         }
-        let iron_w = open.map(|test| test.power_w);
-        let impedance = Some(100.0 * circuit.z_pu());
-        let doubts = plausibility::nameplate(i.rated_kva, impedance, iron_w, Some(at.load_loss_w));
+        let (impedance, load) = (Some(copper.impedance_pct), Some(copper.corrected.load_loss_w));
+        let doubts = plausibility::nameplate(i.rated_kva, impedance, iron_w, load);
         let doubts: Vec<String> = doubts.iter().map(ToString::to_string).collect();
         Ok(out.and("doubts", doubts))
     }
@@ -195,7 +168,7 @@ calc! {
         }
         let Some(resistive) = i.resistive_loss_w else {
             let (from, to) = (i.test_temp_c, i.reference_temp_c);
-            let loss = load_loss_at_reference(w, i.load_loss_w, i.stray_share_pu, t0, from, to)?;
+            let loss = load_loss_at_reference(w, i.load_loss_w, i.stray_share_pu, t0, from, to);
             return Ok(result("load_loss_w", loss)
                 .and("stray_loss_w", i.stray_share_pu * loss));
         };

@@ -269,7 +269,7 @@ calc! {
         let excess = Excess {
             no_load_w: i.no_load_excess_w,
             load_w: i.load_excess_w,
-            auxiliary_w: i.auxiliary_excess_w,
+            auxiliary_w: Some(i.auxiliary_excess_w),
         };
         Ok(result("penalty", penalty(w, &factors, &excess)))
     }

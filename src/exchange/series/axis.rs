@@ -1,5 +1,6 @@
 //! The time axis of a series file: equal steps over one full year, by time or by running number.
 
+use crate::exchange::counted;
 use chrono::{DateTime, NaiveDateTime};
 
 /// Minutes of an ordinary and of a leap year.
@@ -101,7 +102,7 @@ impl Axis {
         if self.is_spoilt {
             return Ok(None);
         }
-        let found = format!("{} rows", self.count);
+        let found = counted(usize::try_from(self.count).unwrap_or(usize::MAX), "row");
         let whole = |step: u32| YEARS.contains(&(u64::from(step) * u64::from(self.count)));
         let step = if self.is_timed {
             self.step.and_then(|seconds| u32::try_from(seconds / 60).ok()).filter(|s| whole(*s))

@@ -2,18 +2,11 @@
 
 use super::{Intake, IntakeError, Report};
 use crate::book::{Book, Tally};
-use crate::engine::columns::Column;
+use crate::engine::columns::{Column, PRICES};
 use crate::engine::loading::{PriceSeries, Profile};
 use crate::engine::working::Silent;
 use crate::exchange::series::{Names, Series, SeriesColumn, holds_numbers};
 use crate::exchange::{Rows, Source};
-
-/// Columns of a price file, the required one first.
-const PRICES: [Column; 3] = [
-    Column { name: "price_per_kwh", ..Column::real(-1e6, 1e6) },
-    Column { name: "co2_kg_per_kwh", ..Column::real(0.0, 1e3) },
-    Column { name: "system_load", ..Column::real(-1e12, 1e12) },
-];
 
 impl Intake<'_> {
     pub(super) fn profiles(
@@ -52,8 +45,7 @@ impl Intake<'_> {
         let name = self.options.name.clone().or_else(|| source.stem().map(ToOwned::to_owned));
         let name = name.ok_or(IntakeError::NoName)?;
         let ignore_unknown = self.options.ignore_unknown;
-        let Some(series) = self.series(source, Names::Of { known: &PRICES, ignore_unknown })?
-        else {
+        let Some(series) = self.series(source, Names::Of { known: PRICES, ignore_unknown })? else {
             return Ok(self.report(Tally::default()));
         };
         self.rows = 1;

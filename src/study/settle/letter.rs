@@ -1,8 +1,8 @@
 //! What the settlement of a tender says, as a letter that can go to the bidder.
 
 use super::{LotSettlement, SettleResult, UnitSettlement};
-use crate::exchange::Letter;
 use crate::exchange::letter::Column;
+use crate::exchange::{Letter, counted};
 use crate::study::figures::{group, short};
 use crate::study::tender::letter::{cautions, day, flag, flag_at};
 
@@ -106,9 +106,9 @@ fn promise(letter: &mut Letter, lot: &LotSettlement, currency: &str) {
         w => format!(", auxiliary loss {} W", short(w)),
     };
     letter.text(format!(
-        "{} of {} units were measured. Guaranteed for one unit of {} kVA: no-load loss {} W, load loss {} W{at}{aux}.",
+        "Measured: {} of {}. Guaranteed for one unit of {} kVA: no-load loss {} W, load loss {} W{at}{aux}.",
         lot.units.len(),
-        lot.quantity,
+        counted(usize::try_from(lot.quantity).unwrap_or(0), "unit"),
         short(g.rated_kva),
         short(g.no_load_loss_w),
         short(g.load_loss_w)

@@ -5,9 +5,10 @@ use crate::engine::columns::{Measured, Settlement};
 use crate::engine::decision::place::stated::{LOAD_LOSS, said};
 use crate::engine::decision::tender::rates::amount_in_currency;
 use crate::engine::decision::tender::settlement::{
-    beyond, delivered, mean, mean_cost, penalty, penalty_of_mean, penalty_of_units,
+    beyond, delivered, mean, mean_cost, penalty_of_mean, penalty_of_units,
 };
 use crate::engine::economics::loss_factors::LossFactors;
+use crate::engine::economics::penalty::penalty;
 use crate::engine::working::{Formula, Recorder as _, Silent, Step, Working};
 use crate::study::StudyError;
 use crate::study::explain::{Explained, nth, numbers};

@@ -12,6 +12,7 @@ use crate::engine::decision::Context;
 use crate::engine::decision::tender::factors::Computed;
 use crate::engine::decision::uncertainty::RankCorrelation;
 use crate::engine::economics::loss_factors::LossFactors;
+use crate::study::explain::MONEY;
 use crate::study::settle::{SettleResult, settle};
 use crate::study::{Desk, StudyError};
 
@@ -124,16 +125,19 @@ impl Case {
         })
     }
 
+    /// What amounts of the steps are written in: the currency of the tender, or "money" where the basis is in
+    /// another and a step may be in either.
+    pub fn money(&self) -> &str {
+        let own = self.sheet.tender.currency.as_str();
+        match &self.basis {
+            Some((_, context)) if context.assumptions.currency != own => MONEY,
+            _ => own,
+        }
+    }
+
     /// Name of the basis, where there is one.
     pub fn basis_name(&self) -> Option<&str> {
         self.basis.as_ref().map(|(desk, _)| desk.sheet.basis.name.as_str())
-    }
-
-    /// What the money in the working of factors is called: the currency, where basis and tender share it.
-    pub fn currency_of_factors(&self) -> &str {
-        let own = self.sheet.tender.currency.as_str();
-        let same = |(_, context): &(Desk, Context)| context.assumptions.currency == own;
-        if self.basis.as_ref().is_none_or(same) { own } else { "money" }
     }
 
     /// Whether the basis says how far any input may lie.

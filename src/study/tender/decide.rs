@@ -6,7 +6,7 @@ use serde::Serialize;
 use super::{Awarded, BidResult, Case, LotResult, TenderResult, find_lot, terms};
 use crate::book::{Actor, Book, BookError};
 use crate::engine::Refusal;
-use crate::engine::columns::{Award, Column, Value};
+use crate::engine::columns::{Award, BasisSheet, Column, TenderSheet, Value};
 use crate::engine::flags::Flags;
 use crate::engine::working::Silent;
 use crate::study::StudyError;
@@ -102,6 +102,25 @@ pub fn award(
     Ok(told(case, of_lot, chosen, Awarded::of(&record, chosen), "new"))
 }
 
+/// Awards as [`award`] does, if the book still holds the tender and the basis that were shown when it was asked.
+///
+/// # Errors
+/// As [`award`]; something was changed in the book since.
+pub fn award_as_shown(
+    book: &mut Book,
+    (tender, basis): (&TenderSheet, &BasisSheet),
+    choice: Choice,
+    actor: &Actor,
+) -> Result<AwardResult, StudyError> {
+    let (name, of) = (&tender.tender.tender, Some(basis.basis.name.as_str()));
+    let case = Case::read(book, name, of)?;
+    if case.sheet != *tender || book.basis(of)? != *basis {
+        let why = "or its basis was changed in the book since it was opened; leave, open it again and look";
+        return Err(Refusal::new("tender", name, why).into());
+    }
+    award(book, &case, choice, actor)
+}
+
 /// Takes the award of a lot back; the journal keeps it.
 ///
 /// # Errors
@@ -120,8 +139,8 @@ pub fn withdraw(
     let evaluated = case.evaluate(Some(lot))?;
     let change = book.change(actor, None)?;
     let record = change.withdraw(&case.sheet.tender.tender, lot)?;
-    change.commit()?;
     let (of_lot, bid) = find(&evaluated, lot, &record.bid)?;
+    change.commit()?;
     Ok(told(case, of_lot, bid, Awarded::of(&record, bid), "withdrawn"))
 }
 

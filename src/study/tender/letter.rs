@@ -20,7 +20,7 @@ use crate::study::figures::{figure, group, short};
 use crate::study::losses::flag_meaning;
 
 pub use answer::answer;
-pub use award::{awarded as award, delivered};
+pub use award::{awarded as award, changed_since, delivered, sentence};
 pub(super) use bars::cost_bars;
 pub use factors::lot_factors;
 pub(super) use lot::{

@@ -7,6 +7,7 @@ use serde::ser::SerializeMap as _;
 use serde::{Serialize, Serializer};
 
 use super::award::Awards;
+use super::misses::Miss;
 use super::risk::RiskResult;
 use crate::engine::columns::Award;
 use crate::engine::decision::equal_pv;
@@ -119,6 +120,9 @@ pub struct BidResult {
     /// Its losses at its rating and the lot's reference temperature: what the figures are computed from.
     #[serde(skip)]
     pub losses: Losses,
+    /// The limits that it misses, with what is offered and what is asked.
+    #[serde(skip)]
+    pub misses: Vec<Miss>,
 }
 
 /// The award of a lot as the book has it: the terms under which the bid was chosen.

@@ -1,13 +1,19 @@
 //! How an offer or a bid fits a place: terminals, the unit it would run beside, the busbar behind it, its load, the law.
 
-use serde::Serialize;
+mod asked;
+mod row;
+mod workings;
+
+pub use asked::FitAsked;
+pub use row::{BesideRow, FitRow};
 
 use super::Question;
 use super::thermal::{Body, HeatRow};
-use super::workings::of_heat;
 use crate::engine::Refusal;
-use crate::engine::columns::{Offer, TenderSheet, Unit};
 use crate::engine::decision::Place;
+use crate::engine::decision::fit::{
+    highest_peak, holds_voltage, within_limit, year_of_highest_peak,
+};
 use crate::engine::decision::place::power_factor;
 use crate::engine::decision::side_by_side::{
     IMPEDANCE_PCT, RATIO_PCT, Rated, Sharing, VOLTAGE_PCT, circulating_pu, difference_pct,
@@ -17,144 +23,11 @@ use crate::engine::law::{self, Subject};
 use crate::engine::loading::duty::{loading_pu, peak_of_year};
 use crate::engine::transformer::circuit::PowerFactor;
 use crate::engine::transformer::fault::fault_current;
-use crate::engine::transformer::losses::{Losses, quoted};
+use crate::engine::transformer::losses::quoted;
 use crate::engine::transformer::nameplate::Phases;
 use crate::engine::transformer::regulation::exact_pct;
-use crate::engine::transformer::vector_group::{phases, two_windings};
-use crate::engine::working::{Recorder, Silent, Working};
-use crate::study::StudyError;
-use crate::study::law::{self as rows, VerdictRow};
-use crate::study::tender::{find_bid, find_lot};
-
-/// What is to be fitted, and beside what.
-#[derive(Clone, Debug, PartialEq)]
-pub struct FitAsked {
-    /// The offer or bid, as the record of a unit.
-    proposed: Unit,
-    losses: Losses,
-    /// The unit that it would run beside, in parallel.
-    pub beside: Option<Unit>,
-    /// Fault level of the network at the primary (MVA); none = infinite.
-    pub network_mva: Option<f64>,
-    /// Highest fault level that the switchgear at the secondary bears (MVA).
-    pub fault_limit_mva: Option<f64>,
-}
-
-impl FitAsked {
-    /// An offer of the catalogue.
-    ///
-    /// # Errors
-    /// Losses that contradict each other; a transformer of another kind than two windings.
-    pub fn of_offer(offer: &Offer) -> Result<Self, Refusal> {
-        Self::of(Unit {
-            unit: offer.offer.clone(),
-            rated_kva: offer.rated_kva,
-            loss_base_kva: offer.loss_base_kva,
-            phases: offer.phases,
-            hv_kv: offer.hv_kv,
-            lv_kv: offer.lv_kv,
-            vector_group: offer.vector_group.clone(),
-            cooling: offer.cooling.clone(),
-            insulation: offer.insulation,
-            winding_metal: offer.winding_metal,
-            impedance_pct: offer.impedance_pct,
-            no_load_loss_w: Some(offer.no_load_loss_w),
-            load_loss_w: Some(offer.load_loss_w),
-            reference_temp_c: offer.reference_temp_c,
-            auxiliary_loss_w: offer.auxiliary_loss_w,
-            ..Unit::blank()
-        })
-    }
-
-    /// A bid of a tender; voltages are the lot's, and so is what the bid leaves blank.
-    ///
-    /// # Errors
-    /// As [`FitAsked::of_offer`]; an unknown lot or bid.
-    pub fn of_bid(sheet: &TenderSheet, lot: &str, bid: &str) -> Result<Self, StudyError> {
-        let (lot, bid) = (find_lot(sheet, lot)?, find_bid(sheet, lot, bid)?);
-        let group = bid.vector_group.clone().or_else(|| lot.vector_group.clone());
-        Ok(Self::of(Unit {
-            unit: format!("{} {} {}", bid.tender, bid.lot, bid.bid),
-            rated_kva: bid.rated_kva.unwrap_or(lot.rated_kva),
-            loss_base_kva: bid.loss_base_kva,
-            phases: group.as_deref().and_then(phases),
-            hv_kv: lot.hv_kv,
-            lv_kv: lot.lv_kv,
-            vector_group: group,
-            insulation: bid.insulation,
-            winding_metal: bid.winding_metal,
-            impedance_pct: bid.impedance_pct.or(lot.impedance_pct),
-            no_load_loss_w: Some(bid.no_load_loss_w),
-            load_loss_w: bid.load_loss_w,
-            total_loss_w: bid.total_loss_w,
-            reference_temp_c: bid.reference_temp_c.or(lot.reference_temp_c),
-            auxiliary_loss_w: bid.auxiliary_loss_w,
-            ..Unit::blank()
-        })?)
-    }
-
-    fn of(proposed: Unit) -> Result<Self, Refusal> {
-        if let Some(group) = &proposed.vector_group {
-            two_windings(group)?;
-        }
-        let (p0, pk, total) =
-            (proposed.no_load_loss_w, proposed.load_loss_w, proposed.total_loss_w);
-        let (base, auxiliary) = (proposed.loss_base_kva, proposed.auxiliary_loss_w);
-        let losses = quoted(&mut Silent, proposed.rated_kva, base, p0, pk, total, auxiliary)?;
-        Ok(Self { proposed, losses, beside: None, network_mva: None, fault_limit_mva: None })
-    }
-}
-
-/// How an offer fits a place. What is not known is null; `misses` names what does not fit, `unknown` what could not
-/// be looked at.
-#[derive(Clone, Debug, PartialEq, Serialize)]
-#[expect(missing_docs, reason = "the keys of the result; `figures` says what they are")]
-pub struct FitRow {
-    pub proposed: String,
-    pub fits: bool,
-    pub misses: Vec<&'static str>,
-    pub unknown: Vec<&'static str>,
-    pub phases_agree: Option<bool>,
-    pub hv_difference_pct: Option<f64>,
-    pub lv_difference_pct: Option<f64>,
-    pub voltages_agree: Option<bool>,
-    pub vector_groups_agree: Option<bool>,
-    /// Peak of year 1 and highest peak of the horizon over its rating.
-    pub peak_pu: Option<f64>,
-    pub highest_peak_pu: Option<f64>,
-    pub loading_limit_pu: Option<f64>,
-    pub within_loading_limit: Option<bool>,
-    /// At the peak of year 1.
-    pub regulation_pct: Option<f64>,
-    pub fault_level_mva: Option<f64>,
-    pub fault_current_a: Option<f64>,
-    pub fault_limit_mva: Option<f64>,
-    pub within_fault_limit: Option<bool>,
-    pub beside: Option<BesideRow>,
-    /// How hot it gets under the load of year 1; none for a dry-type one.
-    pub thermal: Option<HeatRow>,
-    pub law: Option<VerdictRow>,
-    pub notes: Vec<String>,
-}
-
-/// How it would run in parallel with another unit.
-#[derive(Clone, Debug, PartialEq, Serialize)]
-#[expect(missing_docs, reason = "the keys of the result; `figures` says what they are")]
-pub struct BesideRow {
-    pub unit: String,
-    pub ratio_difference_pct: Option<f64>,
-    pub ratios_agree: Option<bool>,
-    pub vector_groups_agree: Option<bool>,
-    pub impedance_difference_pct: Option<f64>,
-    pub impedances_agree: Option<bool>,
-    /// Peaks of year 1 of both places together.
-    pub load_kva: Option<f64>,
-    pub loading_pu: Option<f64>,
-    pub beside_loading_pu: Option<f64>,
-    pub bank_limit_kva: Option<f64>,
-    /// Current at no load over its own rated current.
-    pub circulating_pu: Option<f64>,
-}
+use crate::engine::working::{Recorder, Silent};
+use crate::study::law::VerdictRow;
 
 /// An offer beside the place that it is fitted to.
 pub(super) struct Fit<'a> {
@@ -211,9 +84,19 @@ impl Fit<'_> {
     fn highest_peak_pu<R: Recorder>(&self, w: &mut R) -> Option<f64> {
         let a = &self.question.context.assumptions;
         let duty = &self.place.as_ref()?.duty;
-        let k = if duty.load_growth_pu > 0.0 { a.years } else { 1 };
-        let peak_kva = peak_of_year(w, duty, k, a.load_growth_years);
+        let peak_kva = peak_of_year(w, duty, year_of_highest_peak(duty, 0, a), a.load_growth_years);
         Some(loading_pu(w, peak_kva, self.asked.losses.rated_kva))
+    }
+
+    fn holds_voltage(&self) -> Option<bool> {
+        let a = &self.question.context.assumptions;
+        holds_voltage(&self.asked.losses, &self.place.as_ref()?.duty, 0, a)
+    }
+
+    fn within_loading_limit(&self) -> Option<bool> {
+        let a = &self.question.context.assumptions;
+        let peak_kva = highest_peak(&self.place.as_ref()?.duty, 0, a);
+        Some(within_limit(peak_kva, self.asked.losses.rated_kva, a.loading_limit_pu?))
     }
 
     fn regulation_pct<R: Recorder>(&self, w: &mut R) -> Result<Option<f64>, Refusal> {
@@ -330,8 +213,6 @@ impl Fit<'_> {
             (Some(true), Some(true)) => Some(true),
             _ => None,
         };
-        let highest = self.highest_peak_pu(w);
-        let loading_limit_pu = self.question.context.assumptions.loading_limit_pu;
         let level = self.fault_level_mva(w)?;
         let limit = self.asked.fault_limit_mva;
         let beside = self.beside_row()?;
@@ -347,11 +228,10 @@ impl Fit<'_> {
             voltages_agree: both(agrees(hv), agrees(lv)),
             vector_groups_agree: groups_agree(&own, &there),
             peak_pu: self.peak_pu(w),
-            highest_peak_pu: highest,
-            loading_limit_pu,
-            within_loading_limit: highest
-                .zip(loading_limit_pu)
-                .map(|(peak, limit)| peak <= limit * (1.0 + 1e-12)),
+            highest_peak_pu: self.highest_peak_pu(w),
+            loading_limit_pu: self.question.context.assumptions.loading_limit_pu,
+            within_loading_limit: self.within_loading_limit(),
+            holds_voltage: self.holds_voltage(),
             regulation_pct: self.regulation_pct(w)?,
             fault_level_mva: level,
             fault_current_a: self.fault_current_a(w)?,
@@ -375,6 +255,9 @@ impl Fit<'_> {
         ];
         if row.loading_limit_pu.is_some() {
             checks.push(("loading_limit_pu", row.within_loading_limit));
+        }
+        if row.holds_voltage.is_some() {
+            checks.push(("voltage_drop", row.holds_voltage));
         }
         if row.fault_limit_mva.is_some() {
             checks.push(("fault_limit_mva", row.within_fault_limit));
@@ -419,79 +302,5 @@ impl Fit<'_> {
         }
         notes.push("screening: protection settings, switchgear ratings and paralleling follow local codes, the manufacturer's instructions and licensed engineers".to_owned());
         notes
-    }
-
-    /// States a figure of the fit.
-    pub(super) fn state(&self, w: &mut Working, place: &[&str]) -> Result<(), Refusal> {
-        match place {
-            ["hv_difference_pct"] => {
-                self.voltage_pct(w, |side| side.hv_kv);
-            }
-            ["lv_difference_pct"] => {
-                self.voltage_pct(w, |side| side.lv_kv);
-            }
-            ["peak_pu"] => {
-                self.peak_pu(w);
-            }
-            ["highest_peak_pu"] => {
-                self.highest_peak_pu(w);
-            }
-            ["regulation_pct"] => {
-                self.regulation_pct(w)?;
-            }
-            ["fault_level_mva"] => {
-                self.fault_level_mva(w)?;
-            }
-            ["fault_current_a"] => {
-                self.fault_current_a(w)?;
-            }
-            ["law", "limits", n, side] => {
-                if let Some((verdict, _)) = self.verdict()? {
-                    rows::state(w, verdict, n, side);
-                }
-            }
-            ["thermal", quantity] => {
-                if let (Some(place), Some(body)) = (&self.place, self.body()) {
-                    let mut all = Working::default();
-                    self.question.state_body(&mut all, place, &body, quantity)?;
-                    w.append(of_heat(all, quantity));
-                }
-            }
-            ["beside", quantity] => self.state_beside(w, quantity)?,
-            _ => {}
-        }
-        Ok(())
-    }
-
-    fn state_beside(&self, w: &mut Working, quantity: &str) -> Result<(), Refusal> {
-        match quantity {
-            "ratio_difference_pct" => {
-                if let Some(beside) = self.beside() {
-                    ratio_difference_pct(w, &self.own(), &beside);
-                }
-            }
-            "impedance_difference_pct" => {
-                self.impedance_pct(w);
-            }
-            "circulating_pu" => {
-                self.circulating_pu(w)?;
-            }
-            "load_kva" => {
-                self.load_kva(w);
-            }
-            "bank_limit_kva" => {
-                self.sharing(w)?;
-            }
-            _ => {
-                let mut all = Working::default();
-                self.sharing(&mut all)?;
-                let one = if quantity == "loading_pu" { "1" } else { "2" };
-                let (loadings, before): (Vec<_>, Vec<_>) =
-                    all.into_steps().into_iter().partition(|step| step.formula.symbol == "loading");
-                w.append(before.into_iter().filter(|step| step.formula.symbol != "S_max"));
-                w.append(loadings.into_iter().filter(|step| step.of.ends_with(one)));
-            }
-        }
-        Ok(())
     }
 }

@@ -155,9 +155,7 @@ impl Question<'_> {
             let why = "is blank: without it there is no course of the load over the year, only the steady state at the peak";
             return Err(Refusal::new("profile", "", why));
         };
-        let peak = profile.ratios(&mut Silent)?.peak;
-        let scale = place.duty.peak_kva / rated_kva;
-        let load: Vec<f64> = profile.values.iter().map(|s| s.abs() / peak * scale).collect();
+        let load = profile.loads(place.duty.peak_pu(&mut Silent, rated_kva))?;
         let ambient = match self.heat.ambient {
             Ambient::Constant(ambient_c) => vec![ambient_c; load.len()],
             Ambient::Series { name, step_minutes, values } => {

@@ -10,9 +10,7 @@ use crate::engine::decision::{LeftOut, Place};
 use crate::engine::economics::assumptions::EnergyPrice;
 use crate::engine::economics::running_cost;
 use crate::engine::transformer::circuit::{PowerFactor, core_resistance, resistance_pu};
-use crate::engine::transformer::losses::{
-    annual_efficiency_pct, annual_energy, auxiliary_energy_kwh,
-};
+use crate::engine::transformer::losses::{annual_efficiency_pct, annual_energy, auxiliary_energy};
 use crate::engine::transformer::{efficiency, regulation};
 use crate::engine::working::{Step, Working};
 use crate::study::StudyError;
@@ -37,6 +35,7 @@ const LABELS: &[&str] = &[
     "ambient_c",
     "hot_spot_limit_c",
     "top_oil_limit_c",
+    "reference_temp_c",
 ];
 
 /// How the losses at the rating come about.
@@ -84,6 +83,7 @@ impl Explained for Question<'_> {
             ["power_factor"] => {
                 power_factor(w, &self.facts());
             }
+            ["tests", quantity] => self.of_test(w, quantity)?,
             ["loading", quantity] => self.loading(w, quantity)?,
             ["losses", quantity] => self.year_1(w, quantity)?,
             ["law", "limits", n, side] => {
@@ -128,6 +128,29 @@ impl Question<'_> {
         let place = self.place(&mut all).map_err(|why| self.refused(why))?;
         w.append(all.only(symbols));
         Ok(place)
+    }
+
+    /// A figure of the test report: the steps up to the one that gives it.
+    fn of_test(&self, w: &mut Working, quantity: &str) -> Result<(), Refusal> {
+        let Some(tested) = self.tested() else { return Ok(()) };
+        let mut all = Working::default();
+        tested.read(&mut all, self.desk.stray_share_pu())?;
+        let (gives, told): (&[&str], &[&str]) = match quantity {
+            "no_load_loss_w" => (&["P0"], &[]),
+            "no_load_current_pct" => (&["I0_pct"], &["I_r"]),
+            "load_loss_w" => (&["Pk"], &[]),
+            "resistive_loss_w" => (&["P_I2R", "P_I2R_ref"], &[]),
+            "stray_loss_w" => (&["P_stray", "P_stray_ref"], &["Pk", "P_I2R"]),
+            "r_pu" => (&["R"], &["Pk"]),
+            "x_pu" => (&["X"], &["Pk", "V_z", "Z", "R"]),
+            _ => (&["Z_pct"], &["Pk", "V_z", "Z", "R", "X"]),
+        };
+        let steps = all.into_steps();
+        let end = steps.iter().rposition(|step| gives.contains(&step.formula.symbol));
+        let upto = steps.into_iter().take(end.map_or(0, |n| n + 1));
+        let asked = |symbol| gives.contains(&symbol) || told.contains(&symbol);
+        w.append(upto.filter(|step| asked(step.formula.symbol)));
+        Ok(())
     }
 
     /// What is estimated of a loss that the nameplate leaves blank.
@@ -258,7 +281,7 @@ impl Question<'_> {
             }
             "auxiliary_energy_kwh" => {
                 let place = self.told(w, &["h_aux"])?;
-                auxiliary_energy_kwh(w, &place.losses, &place.duty);
+                auxiliary_energy(w, &place.losses, &place.duty);
             }
             "no_load_energy_kwh" | "load_energy_kwh" => {
                 let symbol = if quantity == "load_energy_kwh" { "Ek" } else { "E0" };

@@ -4,7 +4,7 @@ use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
 use ratatui::text::{Line, Span};
 
-use crate::engine::columns::{Basis, Column, Value};
+use crate::engine::columns::{Basis, Column, Kind, Value};
 use crate::tui::app::App;
 use crate::tui::frame::{put, select};
 use crate::tui::text;
@@ -54,12 +54,8 @@ fn shown(column: &Column, value: &Value) -> String {
     match value {
         Value::Blank => String::new(),
         Value::Text(text) => text::clean(text).into_owned(),
-        Value::Integer(1) if matches!(column.kind, crate::engine::columns::Kind::Flag) => {
-            "yes".to_owned()
-        }
-        Value::Integer(_) if matches!(column.kind, crate::engine::columns::Kind::Flag) => {
-            "no".to_owned()
-        }
+        Value::Integer(1) if matches!(column.kind, Kind::Flag) => "yes".to_owned(),
+        Value::Integer(_) if matches!(column.kind, Kind::Flag) => "no".to_owned(),
         Value::Integer(n) => n.to_string(),
         Value::Real(x) => text::plain(*x, 6),
         Value::Money(money) => text::plain(money.amount(), 3),
@@ -207,13 +203,30 @@ fn ranks(app: &App, stored: &Ranked, now: &Ranked, area: Rect, buffer: &mut Buff
     }
 }
 
+/// What is asked for while the assumption under the cursor is typed, and what it may be.
+pub(in crate::tui) fn asks(app: &App) -> (String, String) {
+    let at = app.basis.list.cursor;
+    let (Some(column), Some(value)) = (Basis::COLUMNS.get(at), app.basis.draft.get(at)) else {
+        return Default::default();
+    };
+    let now =
+        if *value == Value::Blank { super::typed::BLANK.to_owned() } else { shown(column, value) };
+    let unit = currency_in(unit_of(column), &currency(app));
+    let range = match column.kind {
+        Kind::Choice(_) => String::new(),
+        _ => format!("{} {unit}", column.range()),
+    };
+    let asks = format!("{}, now {}", column.name, text::cut(&now, 20));
+    (app.theme.spell(&asks).into_owned(), app.theme.spell(range.trim()).into_owned())
+}
+
 /// Where the basis came from, in the status line.
 pub(in crate::tui) fn status(app: &App) -> Line<'static> {
     let Some(opened) = &app.opened else { return Line::default() };
     let source = text::cut(&opened.basis_source, 40);
     let said = if app.basis.is_refused() {
         " The figures are of the last basis that could be computed with."
-    } else if app.basis.is_changed() && opened.can_save {
+    } else if app.basis.is_changed() && opened.writes.basis {
         " Changed for all screens, not stored; w stores it."
     } else if app.basis.is_changed() {
         " Changed for all screens, not stored."

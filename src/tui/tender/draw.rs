@@ -8,9 +8,10 @@ use super::{View, lot, map, risk, shown, sign};
 use crate::engine::columns::{Basis, Bid, Lot};
 use crate::study::figures::figure;
 use crate::study::losses::flag_meaning;
-use crate::study::tender::{BidResult, ChangeResult, LotResult, MoveResult};
+use crate::study::tender::{BidResult, ChangeResult, LotResult, Miss, MoveResult, letter};
 use crate::tui::app::App;
 use crate::tui::bar::{self, Parts};
+use crate::tui::entry::Of;
 use crate::tui::frame::{put, put_line, put_right, select};
 use crate::tui::text;
 use crate::tui::theme::{Part, Theme};
@@ -18,8 +19,8 @@ use crate::tui::words::{currency_in, unit_of};
 
 /// Lines above the bids: headings, units.
 const HEADER: u16 = 2;
-/// Lines below the bids: the one under the cursor, the near-tied ones.
-const DETAILS: u16 = 9;
+/// Lines below the bids: the one under the cursor, the near-tied ones. At least so many, and at most.
+const DETAILS: [u16; 2] = [9, 16];
 
 /// Least body in which something stands beside the bids, and in which all of it does.
 const WIDE: u16 = 120;
@@ -72,9 +73,9 @@ fn areas(body: Rect, view: View, bids: usize) -> Areas {
 /// The bids, and right below them the details; where it is tight the bids get the larger half.
 fn split(area: Rect, bids: usize) -> (Rect, Rect) {
     let wanted = u16::try_from(bids).unwrap_or(u16::MAX).saturating_add(HEADER);
-    let most = area.height.saturating_sub(DETAILS).max(area.height / 2 + 1).min(area.height);
+    let most = area.height.saturating_sub(DETAILS[0]).max(area.height / 2 + 1).min(area.height);
     let list = Rect { height: wanted.min(most), ..area };
-    (list, Rect { y: list.bottom(), height: DETAILS.min(area.height - list.height), ..area })
+    (list, Rect { y: list.bottom(), height: DETAILS[1].min(area.height - list.height), ..area })
 }
 
 /// Lines of the list of bids.
@@ -108,7 +109,9 @@ pub(in crate::tui) fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
     let currency = text::cut(&tender.sheet.tender.currency, 8);
     head(app, asked, result, &currency, areas.head, buffer);
     bids(app, result, &currency, areas.list, buffer);
-    if app.tender.what_if.open {
+    if let Some(Of::Reason { lot, bid }) = app.typing.as_ref().map(|entry| &entry.of) {
+        super::award::draw(app, [lot, bid], &currency, areas.details, buffer);
+    } else if app.tender.what_if.open {
         inputs(app, areas.details, buffer);
     } else {
         details(app, result, &currency, areas.details, buffer);
@@ -136,6 +139,13 @@ fn head(app: &App, asked: &Lot, lot: &LotResult, currency: &str, area: Rect, buf
     put_line(buffer, area, 0, &line);
     if app.tender.what_if.of(app.tender.tender).is_some() {
         let said = Line::styled("what if: changed, not stored ", theme.changed());
+        if line.width() + said.width() < usize::from(area.width) {
+            put_right(buffer, area, 0, &said);
+        }
+    }
+    if let Some(award) = &lot.award {
+        let said = format!("awarded to {} ", text::cut(&award.bid, 20));
+        let said = Line::styled(said, theme.heading());
         if line.width() + said.width() < usize::from(area.width) {
             put_right(buffer, area, 0, &said);
         }
@@ -255,8 +265,8 @@ fn bids(app: &App, lot: &LotResult, currency: &str, area: Rect, buffer: &mut Buf
         if bid.rank.is_some() {
             put_line(buffer, at, y, &Line::from(bar::bar(theme, &cost(bid), scale, cells)));
         } else {
-            let misses = format!("misses {}", bid.excluded.join(", "));
-            put(buffer, at, y, &misses, theme.warning());
+            let misses: Vec<String> = bid.misses.iter().map(Miss::in_short).collect();
+            put(buffer, at, y, &theme.spell(&misses.join("; ")), theme.warning());
         }
     }
 }
@@ -297,6 +307,11 @@ fn inputs(app: &App, area: Rect, buffer: &mut Buffer) {
             select(buffer, line.intersection(area));
         }
     }
+}
+
+/// The limits that a bid misses, each with what is offered and what is asked.
+pub(super) fn misses(bid: &BidResult) -> String {
+    bid.misses.iter().map(Miss::in_full).collect::<Vec<_>>().join("; ")
 }
 
 fn details(app: &App, lot: &LotResult, currency: &str, area: Rect, buffer: &mut Buffer) {
@@ -344,7 +359,8 @@ fn details(app: &App, lot: &LotResult, currency: &str, area: Rect, buffer: &mut 
             lines.extend(text::wrap(&said, cells).into_iter().map(|l| (l, theme.plain())));
         }
         if !bid.excluded.is_empty() {
-            let said = format!("Out, not ranked: misses {}.", bid.excluded.join(", "));
+            let said = format!("Out, not ranked: misses {}.", misses(bid));
+            let said = theme.spell(&said);
             lines.extend(text::wrap(&said, cells).into_iter().map(|l| (l, theme.warning())));
         }
         let doubts = bid.flags.iter().filter_map(|key| flag_meaning(key));
@@ -371,7 +387,13 @@ fn details(app: &App, lot: &LotResult, currency: &str, area: Rect, buffer: &mut 
     if let Some(leads) = &lot.recommended {
         verdict.push(format!("{} leads.", text::cut(leads, 20)));
     }
-    let verdict = text::wrap(&verdict.join(" "), cells);
+    let mut verdict = text::wrap(&verdict.join(" "), cells);
+    if let Some(award) = &lot.award {
+        verdict.extend(text::wrap(&format!("Awarded to {}", letter::sentence(award)), cells));
+    }
+    if let Some(changed) = letter::changed_since(lot, currency) {
+        verdict.extend(text::wrap(&format!("! {changed}"), cells));
+    }
     // The verdict always has its place at the bottom.
     let foot = u16::try_from(verdict.len()).unwrap_or(0).min(area.height);
     let upper = area.height - foot;

@@ -4,14 +4,19 @@ use std::collections::BTreeSet;
 
 use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
+use ratatui::style::{Modifier, Style};
 use ratatui::text::{Line, Span};
 
+use super::regions::Regions;
 use super::sign;
 use crate::study::tender::LotResult;
 use crate::study::tender::risk::RiskResult;
-use crate::tui::frame::{put, put_line, put_over, put_right};
+use crate::tui::frame::{put, put_line, put_right};
 use crate::tui::text;
 use crate::tui::theme::Theme;
+
+/// Cells between two signs of a region, across and down.
+pub(super) const LATTICE: [u16; 2] = [8, 3];
 
 /// Draws the map of a lot with its legend,
 /// with the factors that were drawn.
@@ -24,8 +29,8 @@ pub(super) fn draw(
     buffer: &mut Buffer,
 ) {
     let map = &lot.map;
-    let winners: Vec<usize> =
-        (0..map.bids.len()).filter(|n| !map.bids[*n].polygon.is_empty()).collect();
+    let won = |n: &usize| !map.bids[*n].polygon.is_empty();
+    let winners: Vec<usize> = (0..map.bids.len()).filter(won).collect();
     put(buffer, area, 0, " Which bid is the cheapest to own at other factors", theme.heading());
     if winners.is_empty() {
         put(buffer, area, 2, " No bid is admitted.", theme.muted());
@@ -33,72 +38,61 @@ pub(super) fn draw(
     }
     let (top, zero) = (text::number(map.b_max, 0), "0");
     let margin = u16::try_from(text::width(&top) + 2).unwrap_or(u16::MAX);
-    let legend = legend(theme, lot, &winners, usize::from(area.width));
-    let below = u16::try_from(legend.len()).unwrap_or(0).min(6);
-    // Title and the name of B above, the axis, its labels and the legend below.
-    let Some(height) = area.height.checked_sub(4 + below).filter(|h| *h >= 3) else { return };
     let Some(width) = area.width.checked_sub(margin + 1).filter(|w| *w >= 12) else { return };
-    put(buffer, area, 1, &format!(" B, {currency}/kW"), theme.muted());
-    if let Some(risk) = risk {
-        let said =
-            format!("{} {} draws, seed {} ", theme.cloud(), text::count(risk.draws), risk.seed);
-        put_right(buffer, area, 1, &Line::styled(said, theme.muted()));
-    }
+    // Title and the name of B above, the axis, its labels and the legend below. The legend says which regions have
+    // a cell, and the cells are as many as the legend leaves; it is longest where every region is named in it.
+    let most = area.height.saturating_sub(7);
+    let room = [usize::from(area.width), usize::from(most)];
+    let legend_of = |regions: &Regions| legend(theme, lot, &winners, regions, room);
+    let below = u16::try_from(legend_of(&Regions::all(&winners)).len()).unwrap_or(most);
+    let Some(height) = area.height.checked_sub(4 + below).filter(|h| *h >= 3) else { return };
     let plot = Rect { x: area.x + margin, y: area.y + 2, width, height };
-    for (y, label) in [(0, top.as_str()), (height - 1, zero)] {
-        let line = format!("{} ", text::right(label, usize::from(margin) - 1));
-        put(buffer, Rect { width: margin, ..plot_left(plot, margin) }, y, &line, theme.muted());
-    }
-    for y in 0..height {
-        for x in 0..width {
-            let a = map.a_max * (f64::from(x) + 0.5) / f64::from(width);
-            let b = map.b_max * (f64::from(height - 1 - y) + 0.5) / f64::from(height);
-            let winner = winners.iter().copied().find(|n| holds(&map.bids[*n].polygon, [a, b]));
-            let Some(n) = winner else { continue };
-            let Some(cell) = buffer.cell_mut((plot.x + x, plot.y + y)) else { continue };
-            // A sign on a lattice, the fill of the region between.
-            let on_lattice = x % 8 == 4 && y % 3 == 1;
-            cell.set_char(if on_lattice { sign(n + 1) } else { theme.region_fill(n) });
-            cell.set_style(if on_lattice { theme.heading() } else { theme.region(n) });
-        }
-    }
+
+    let today = [
+        at(lot.factor_a_per_kw, map.a_max, width),
+        height - 1 - at(lot.factor_b_per_kw, map.b_max, height),
+    ];
+    let mut regions = Regions::new(lot, &winners, [width, height]);
+    regions.take(today);
     let cloud = risk.map_or(&[][..], |risk| &risk.cloud);
-    for (x, y) in drawn(cloud, [map.a_max, map.b_max], [width, height]) {
-        if let Some(cell) = buffer.cell_mut((plot.x + x, plot.y + height - 1 - y)) {
-            cell.set_char(theme.cloud());
-            cell.set_style(theme.heading());
-        }
-    }
-    let today = format!(
+    let cloud = drawn(cloud, [map.a_max, map.b_max], [width, height]);
+
+    let today_said = format!(
         "◆ today {} / {}",
         text::number(lot.factor_a_per_kw, 0),
         text::number(lot.factor_b_per_kw, 0)
     );
-    let at = |value: f64, most: f64, cells: u16| {
-        #[expect(
-            clippy::cast_possible_truncation,
-            clippy::cast_sign_loss,
-            reason = "inside the plot"
-        )]
-        let cell = (value / most * f64::from(cells)).max(0.0) as u16;
-        cell.min(cells - 1)
+    let mut said = vec![format!("B, {currency}/kW"), today_said];
+    if let Some(risk) = risk {
+        said.push(format!(
+            "{} {} draws, seed {}",
+            theme.cloud(),
+            text::count(risk.draws),
+            risk.seed
+        ));
+    }
+    put(buffer, area, 1, &format!(" {}", said.join("   ")), theme.muted());
+    for (y, label) in [(0, top.as_str()), (height - 1, zero)] {
+        let line = format!("{} ", text::right(label, usize::from(margin) - 1));
+        put(buffer, Rect { width: margin, ..plot_left(plot, margin) }, y, &line, theme.muted());
+    }
+    let mut set = |[x, y]: [u16; 2], shown: char, style: Style| {
+        if let Some(cell) = buffer.cell_mut((plot.x + x, plot.y + y)) {
+            cell.set_char(shown);
+            cell.set_style(style);
+        }
     };
-    let x = at(lot.factor_a_per_kw, map.a_max, width);
-    let y = height - 1 - at(lot.factor_b_per_kw, map.b_max, height);
-    let wide = u16::try_from(text::width(&today)).unwrap_or(u16::MAX);
-    let from = x.min(width.saturating_sub(wide));
-    let mark = if from == x { today } else { "◆".to_owned() };
-    put_over(
-        buffer,
-        Rect {
-            x: plot.x + from.max(if from == x { 0 } else { x }),
-            width: u16::try_from(text::width(&mark)).unwrap_or(1).min(width),
-            ..plot
-        },
-        y,
-        &mark,
-        theme.heading(),
-    );
+    for (at, n) in regions.cells() {
+        let look = regions.looks[n];
+        set(at, theme.region_fill(look), theme.region(look));
+    }
+    for (x, up) in cloud {
+        set([x, height - 1 - up], theme.cloud(), theme.heading());
+    }
+    for (at, n) in regions.signs() {
+        set(at, sign(n + 1), theme.region(regions.looks[n]).add_modifier(Modifier::BOLD));
+    }
+    set(today, '◆', theme.selected());
     let axis = Rect { y: plot.bottom(), height: 2, ..plot };
     put(buffer, axis, 0, &"─".repeat(usize::from(width)), theme.plain());
     put(buffer, axis, 1, "0", theme.muted());
@@ -106,9 +100,16 @@ pub(super) fn draw(
         Line::styled(format!("A, {currency}/kW   {}", text::number(map.a_max, 0)), theme.muted());
     put_right(buffer, axis, 1, &most);
     let under = Rect { y: axis.bottom(), height: below, ..area };
-    for (y, line) in (0..below).zip(&legend) {
+    for (y, line) in (0..below).zip(&legend_of(&regions)) {
         put_line(buffer, under, y, line);
     }
+}
+
+/// The cell of a value on an axis.
+fn at(value: f64, most: f64, cells: u16) -> u16 {
+    #[expect(clippy::cast_possible_truncation, clippy::cast_sign_loss, reason = "inside the plot")]
+    let cell = (value / most * f64::from(cells)).max(0.0) as u16;
+    cell.min(cells - 1)
 }
 
 /// The cells of a plot in which points lie, from its lower left.
@@ -132,52 +133,63 @@ fn plot_left(plot: Rect, margin: u16) -> Rect {
     Rect { x: plot.x - margin, ..plot }
 }
 
-/// Whether a convex polygon with its corners counter-clockwise holds a point.
-fn holds(polygon: &[[f64; 2]], [a, b]: [f64; 2]) -> bool {
-    polygon.iter().zip(polygon.iter().cycle().skip(1)).all(|(from, to)| {
-        (to[0] - from[0]) * (b - from[1]) - (to[1] - from[1]) * (a - from[0]) >= 0.0
-    })
+/// The regions with their signs and their shares of the map, then those too small for a cell, in at most so many
+/// lines; what finds no room is counted.
+fn legend(
+    theme: Theme,
+    lot: &LotResult,
+    winners: &[usize],
+    regions: &Regions,
+    [cells, most]: [usize; 2],
+) -> Vec<Line<'static>> {
+    let said = |n: usize| {
+        let cell = &lot.map.bids[n];
+        format!("{} {}  ", text::cut(&cell.bid, 14), share(cell.share))
+    };
+    let (drawn, small): (Vec<usize>, Vec<usize>) =
+        winners.iter().partition(|n| regions.has_cell(**n));
+    let mut entries: Vec<Vec<Span>> = Vec::new();
+    for n in drawn {
+        let look = regions.looks[n];
+        let style = theme.region(look);
+        entries.push(vec![
+            Span::styled(sign(n + 1).to_string(), style.add_modifier(Modifier::BOLD)),
+            Span::styled(theme.region_fill(look).to_string(), style),
+            Span::raw(format!(" {}", said(n))),
+        ]);
+    }
+    for (at, n) in small.into_iter().enumerate() {
+        let before = if at == 0 { "too small to draw: " } else { "" };
+        entries.push(vec![Span::raw(format!("{before}{}", said(n)))]);
+    }
+    let all = entries.len();
+    let kept = (0..=all).rev().map(|kept| {
+        let mut shown = entries[..kept].to_vec();
+        if kept < all {
+            shown.push(vec![Span::raw(format!("and {} more, on a larger screen", all - kept))]);
+        }
+        in_lines(&shown, cells)
+    });
+    kept.into_iter().find(|lines: &Vec<Line>| lines.len() <= most).unwrap_or_default()
 }
 
-/// The regions with their signs and their shares of the map, in as many lines as are needed.
-fn legend(theme: Theme, lot: &LotResult, winners: &[usize], cells: usize) -> Vec<Line<'static>> {
-    let mut lines = vec![Vec::new()];
-    let mut used = 1;
-    for n in winners {
-        let cell = &lot.map.bids[*n];
-        let said = format!(" {} {}  ", text::cut(&cell.bid, 14), share(cell.share));
-        let wide = text::width(&said) + 2;
-        if used + wide > cells && used > 1 {
-            lines.push(Vec::new());
-            used = 1;
-        }
-        used += wide;
-        if let Some(line) = lines.last_mut() {
-            line.push(Span::styled(format!("{}", sign(n + 1)), theme.heading()));
-            line.push(Span::styled(theme.region_fill(*n).to_string(), theme.region(*n)));
-            line.push(Span::raw(said));
+/// Entries one after the other, in lines of at most so many cells.
+fn in_lines(entries: &[Vec<Span<'static>>], cells: usize) -> Vec<Line<'static>> {
+    let mut lines: Vec<Line> = Vec::new();
+    for entry in entries {
+        let wide: usize = entry.iter().map(Span::width).sum();
+        match lines.last_mut() {
+            Some(line) if line.width() + wide <= cells => line.spans.extend(entry.iter().cloned()),
+            _ => {
+                let lead = std::iter::once(Span::raw(" "));
+                lines.push(lead.chain(entry.iter().cloned()).collect());
+            }
         }
     }
-    let lead = |line: Vec<Span<'static>>| {
-        Line::from(std::iter::once(Span::raw(" ")).chain(line).collect::<Vec<_>>())
-    };
-    lines.into_iter().map(lead).collect()
+    lines
 }
 
 fn share(share: f64) -> String {
     let percent = text::number(share * 100.0, 0);
     if percent == "0" { "<1 %".to_owned() } else { format!("{percent} %") }
-}
-
-#[cfg(test)]
-mod tests {
-    use super::*;
-
-    #[test]
-    fn polygon_holds_what_lies_in_it() {
-        let triangle = [[0.0, 0.0], [2.0, 0.0], [0.0, 2.0]];
-        assert!(holds(&triangle, [0.5, 0.5]));
-        assert!(holds(&triangle, [1.0, 1.0]), "its edge belongs to it");
-        assert!(!holds(&triangle, [1.5, 1.0]));
-    }
 }

@@ -4,7 +4,7 @@ use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
 use ratatui::text::{Line, Span};
 
-use super::{Dossier, Known, LEGEND, year};
+use super::{Dossier, Known, LEGEND, span, year};
 use crate::tui::app::App;
 use crate::tui::bar;
 use crate::tui::chart::{self, Reference};
@@ -31,7 +31,10 @@ pub(in crate::tui) fn areas(body: Rect, table: bool) -> Areas {
     let rest = Rect { y: body.y + head.height, height: body.height - head.height, ..body };
     let large = rest.width >= 110;
     let wide_table = table && !large;
-    let beside = (rest.width * 2 / 5).min(44);
+    let beside = match rest.width {
+        TWO_COLUMNS.. => 2 * COLUMN + GAP,
+        width => (width * 2 / 5).min(COLUMN),
+    };
     let left = rest.width - beside;
     let top = CHOICES.min(rest.height);
     let below = Rect { y: rest.y + top, height: rest.height - top, ..rest };
@@ -49,6 +52,20 @@ pub(in crate::tui) fn areas(body: Rect, table: bool) -> Areas {
             ..below
         },
     }
+}
+
+/// Cells of a column of facts, and between two; the least width of a body that has two.
+const COLUMN: u16 = 44;
+const GAP: u16 = 3;
+const TWO_COLUMNS: u16 = 150;
+
+/// The columns of the facts.
+pub(in crate::tui) fn columns(facts: Rect) -> Vec<Rect> {
+    if facts.width < 2 * COLUMN {
+        return vec![facts];
+    }
+    let column = |n: u16| Rect { x: facts.x + n * (COLUMN + GAP), width: COLUMN, ..facts };
+    vec![column(0), column(1)]
 }
 
 /// Draws the screen.
@@ -70,7 +87,12 @@ pub(in crate::tui) fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
     let ranked = text::count(dossier.ranked.ranking.order.len());
     let place = match place {
         u32::MAX => "not ranked".to_owned(),
-        place => format!("place {} of {ranked} by saving", text::count(place as usize + 1)),
+        place => {
+            let row = dossier.ranked.ranking.row(&dossier.ranked.desk, place as usize);
+            let span = row.and_then(|row| span(&row));
+            let span = span.map_or(String::new(), |span| format!(", could be {span}"));
+            format!("place {} of {ranked} by saving{span}", text::count(place as usize + 1))
+        }
     };
     let line = Line::from(vec![
         Span::styled(format!(" {}", text::cut(fleet.unit.get(i), 30)), theme.heading()),
@@ -80,9 +102,14 @@ pub(in crate::tui) fn draw(app: &App, area: Rect, buffer: &mut Buffer) {
     let room = usize::from(areas.head.width).saturating_sub(line.width() + 3);
     put_right(buffer, areas.head, 0, &Line::raw(format!("{} ", text::cut(&place, room))));
 
-    let lines = super::facts::lines(app, usize::from(areas.facts.width));
-    for (y, line) in (0..areas.facts.height).zip(lines.iter().skip(app.unit.facts.cursor)) {
-        put_line(buffer, areas.facts, y, line);
+    let columns = columns(areas.facts);
+    let wide = columns.first().map_or(0, |column| usize::from(column.width));
+    let lines = super::facts::lines(app, wide);
+    let mut lines = lines.iter().skip(app.unit.facts.cursor);
+    for column in columns {
+        for (y, line) in (0..column.height).zip(lines.by_ref()) {
+            put_line(buffer, column, y, line);
+        }
     }
     if let Ok(known) = &dossier.known {
         choices(theme, dossier, known, areas.choices, buffer);

@@ -28,6 +28,9 @@ pub(super) fn lines(app: &App, cells: usize) -> Vec<Line<'static>> {
                 lines.push(Line::from(vec![mark, Span::raw(line)]));
             }
         }
+        if let Some(more) = &app.unit.more {
+            more.indicators(currency, cells, theme, &mut lines);
+        }
         if let Ok(row) = losses::of_unit(desk, &dossier.ranked.ranking.context, i) {
             lines.push(Line::styled("Loading and losses of year 1", theme.heading()));
             for (key, value) in [
@@ -48,6 +51,11 @@ pub(super) fn lines(app: &App, cells: usize) -> Vec<Line<'static>> {
             }
         }
     }
+    if let Some(more) = &app.unit.more {
+        more.losses(cells, theme, &mut lines);
+        more.heat(cells, theme, &mut lines);
+        more.law(cells, theme, &mut lines);
+    }
     let record = super::record(app, desk, i);
     lines.push(Line::styled("Record", theme.heading()));
     for (column, value) in Unit::COLUMNS.iter().zip(record.values()) {
@@ -56,10 +64,13 @@ pub(super) fn lines(app: &App, cells: usize) -> Vec<Line<'static>> {
             lines.push(fact(column.name, &theme.spell(&shown), cells));
         }
     }
+    if let Some(more) = &app.unit.more {
+        more.notes(cells, theme, &mut lines);
+    }
     lines
 }
 
-fn fact(name: &str, value: &str, cells: usize) -> Line<'static> {
+pub(super) fn fact(name: &str, value: &str, cells: usize) -> Line<'static> {
     let wide = text::width(value).min(cells);
     let name = text::left(name, cells.saturating_sub(wide + 1));
     Line::raw(format!("{name} {}", text::cut(value, wide)))
@@ -82,7 +93,7 @@ fn shown(column: &Column, value: &Value, currency: &str) -> String {
 }
 
 /// What the columns of the fleet hold of a unit's record.
-pub(super) fn of_columns(desk: &Desk, i: usize) -> Unit {
+pub(in crate::tui) fn of_columns(desk: &Desk, i: usize) -> Unit {
     let f = desk.fleet.facts(i);
     let known = |x: f64| (!x.is_nan()).then_some(x);
     #[expect(clippy::cast_possible_truncation, reason = "whole and small")]

@@ -3,7 +3,7 @@
 
 use rustc_hash::FxHashMap;
 
-use crate::engine::columns::{Insulation, WindingMetal};
+use crate::engine::columns::{Insulation, Unit, WindingMetal};
 use crate::engine::decision::fit::Terminals;
 use crate::engine::decision::place::UnitFacts;
 
@@ -70,6 +70,13 @@ impl Numbers {
         }
         self.len += 1;
     }
+    fn set(&mut self, i: usize, number: f64) {
+        if number.to_bits() != self.get(i).to_bits() {
+            self.room = self.len;
+            self.fill();
+            self.known[i] = number;
+        }
+    }
     /// Makes the numbers that stand for nothing so far.
     #[inline]
     fn fill(&mut self) {
@@ -113,8 +120,29 @@ macro_rules! columns {
             pub terminals: Vec<Terminals>,
             pub winding_metal: Vec<Option<WindingMetal>>,
             pub insulation: Vec<Option<Insulation>>,
+            /// Whether blanks are filled from a test report; empty while none is.
+            from_test: Vec<bool>,
             $(pub $name: Numbers,)+
             kinds: Kinds,
+        }
+
+        /// The names of the columns of numbers.
+        pub const NUMBERS: [&str; [$(stringify!($name)),+].len()] = [$(stringify!($name)),+];
+
+        impl UnitFacts {
+            /// A unit in service of which only numbers are known, in the order of [`NUMBERS`].
+            #[inline]
+            pub fn of_numbers([$($name),+]: [f64; NUMBERS.len()]) -> Self {
+                Self {
+                    in_service: true,
+                    profile: u32::MAX,
+                    phases: None,
+                    winding_metal: None,
+                    insulation: None,
+                    from_test: false,
+                    $($name,)+
+                }
+            }
         }
 
         impl FleetColumns {
@@ -127,6 +155,7 @@ macro_rules! columns {
                     phases: self.terminals[self.kind[i] as usize].phases,
                     winding_metal: self.winding_metal[i],
                     insulation: self.insulation[i],
+                    from_test: self.from_test.get(i).copied().unwrap_or(false),
                     $($name: self.$name.get(i),)+
                 }
             }
@@ -213,6 +242,20 @@ impl FleetColumns {
     /// Whether there is none.
     pub fn is_empty(&self) -> bool {
         self.kind.is_empty()
+    }
+
+    /// Takes the losses and impedance of unit number `i` from its record, filled from a test report.
+    pub fn take_test(&mut self, i: usize, filled: &Unit) {
+        self.from_test.resize(self.len(), false);
+        self.from_test[i] = true;
+        for (column, value) in [
+            (&mut self.no_load_loss_w, filled.no_load_loss_w),
+            (&mut self.load_loss_w, filled.load_loss_w),
+            (&mut self.loss_base_kva, filled.loss_base_kva),
+            (&mut self.impedance_pct, filled.impedance_pct),
+        ] {
+            column.set(i, value.unwrap_or(f64::NAN));
+        }
     }
 
     /// Site of unit number `i`.

@@ -2,6 +2,7 @@
 //! by candidate and delay. All run from the end of the horizon backwards: index t holds years t+1 … N.
 
 use crate::engine::Refusal;
+use crate::engine::columns::YEARS_MADE;
 use crate::engine::decision::fit::Candidate;
 use crate::engine::decision::keep_or_replace::age;
 use crate::engine::economics::{Assumptions, capital, discounting, running_cost};
@@ -91,8 +92,8 @@ impl Ages {
     }
 }
 
-/// First and last year of manufacture for which ages are kept ready.
-const MADE: std::ops::RangeInclusive<i64> = 1880..=2100;
+/// Years of manufacture for which ages are kept ready: all that a book holds.
+const MADE: std::ops::RangeInclusive<i64> = YEARS_MADE.0..=YEARS_MADE.1;
 
 /// Everything that depends on the basis alone.
 #[derive(Clone, Debug)]

@@ -129,6 +129,7 @@ fn unit() -> impl Strategy<Value = UnitFacts> {
             phases: None,
             winding_metal: None,
             insulation: None,
+            from_test: false,
             profile,
         })
 }

@@ -3,7 +3,7 @@
 use super::age;
 use crate::engine::decision::fit::Candidate;
 use crate::engine::decision::place::Place;
-use crate::engine::economics::{Assumptions, running_cost};
+use crate::engine::economics::{Assumptions, payback, running_cost};
 use crate::engine::loading::Duty;
 use crate::engine::transformer::losses::{Energy, Losses, annual_energy};
 use crate::engine::working::{Formula, Recorder};
@@ -43,14 +43,6 @@ const RUN_SAVED: Formula = Formula {
     unit: "money",
     source: "methods, section 7",
 };
-const PAYBACK: Formula = Formula {
-    name: "simple payback of the replacement, undiscounted",
-    symbol: "payback",
-    formula: "(P + removal_less_scrap)/saved",
-    unit: "years",
-    source: "methods, section 7",
-};
-
 /// A replacement, the unit that it replaces beside it. Here its first year of service.
 #[derive(Clone, Copy, Debug)]
 pub struct Replacement<'a> {
@@ -133,12 +125,7 @@ impl Replacement<'_> {
 
     /// Simple payback, undiscounted (years); none where nothing is saved.
     pub fn payback_years<R: Recorder>(&self, w: &mut R) -> Option<f64> {
-        w.open();
-        let price = self.candidate.capital(w);
-        let saved = self.saved_in(w, self.offset + 1);
-        let scrap = self.place.removal_less_scrap;
-        let inputs = [("P", price), ("removal_less_scrap", scrap), ("saved", saved)];
-        let value = w.close(&PAYBACK, &inputs, (price + scrap) / saved);
-        (saved > 0.0).then_some(value)
+        let (paid, saved) = (self.paid(w), self.saved_in(w, self.offset + 1));
+        payback::simple(w, paid, saved)
     }
 }

@@ -61,7 +61,8 @@ pub fn equal_yearly_cost<R: Recorder>(w: &mut R, pv: f64, a: &Assumptions) -> f6
 }
 
 impl Replacement<'_> {
-    fn paid<R: Recorder>(&self, w: &mut R) -> f64 {
+    /// Price and installation, and removal less scrap.
+    pub(super) fn paid<R: Recorder>(&self, w: &mut R) -> f64 {
         w.open();
         let price = self.candidate.capital(w);
         let scrap = self.place.removal_less_scrap;

@@ -7,7 +7,7 @@ use crate::engine::columns::{Bid, Money, WindingMetal};
 use crate::engine::economics::loss_factors::LossFactors;
 use crate::engine::economics::owning_cost::{OwningCost, Priced, owning_cost};
 use crate::engine::flags::Flags;
-use crate::engine::transformer::losses::{Losses, quoted};
+use crate::engine::transformer::losses::{Losses, contradict, quoted};
 use crate::engine::transformer::plausibility::looks_in_kw;
 use crate::engine::transformer::temperature::{load_loss_at, vanishing_temp_c};
 use crate::engine::working::{Formula, Recorder, Silent};
@@ -133,10 +133,7 @@ pub fn comparable<R: Recorder>(w: &mut R, terms: &Terms, bid: &Bid) -> Result<Co
 }
 
 fn quotation_flags(bid: &Bid, rated_kva: f64) -> Flags {
-    let contradicts = match (bid.load_loss_w, bid.total_loss_w) {
-        (Some(pk), Some(total)) => (bid.no_load_loss_w + pk - total).abs() > 0.01 * total,
-        _ => false,
-    };
+    let contradicts = contradict(Some(bid.no_load_loss_w), bid.load_loss_w, bid.total_loss_w);
     Flags::NONE
         .with_if(bid.load_loss_w.is_none(), Flags::LOAD_LOSS_FROM_TOTAL)
         .with_if(contradicts, Flags::LOSSES_CONTRADICT)

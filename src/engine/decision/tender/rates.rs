@@ -31,7 +31,7 @@ const AMOUNT_IN_CURRENCY: Formula = Formula {
     name: "the amount in the currency of the bid",
     symbol: "amount_bid",
     formula: "own/rate",
-    unit: "money of the bid",
+    unit: "of the bid's currency",
     source: "rate stored with the tender; methods, section 8",
 };
 

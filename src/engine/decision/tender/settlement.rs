@@ -7,44 +7,12 @@ use super::Terms;
 use super::bid::Comparable;
 use super::tolerance::{self, Exceeded};
 use crate::engine::columns::{Bid, Measured, Tolerance, WindingMetal};
-use crate::engine::economics::loss_factors::LossFactors;
+use crate::engine::economics::penalty::Excess;
 use crate::engine::flags::Flags;
 use crate::engine::transformer::losses::Losses;
 use crate::engine::transformer::plausibility::looks_in_kw;
-use crate::engine::transformer::temperature::vanishing_temp_c;
+use crate::engine::transformer::temperature::{load_loss_at_reference, vanishing_temp_c};
 use crate::engine::working::{Formula, Recorder};
-
-const RATIO: Formula = Formula {
-    name: "ratio of winding resistances, test to reference",
-    symbol: "x",
-    formula: "(T0+θ_test)/(T0+θ_ref)",
-    unit: "",
-    source: "IEC 60076-1 Annex E (memory)",
-};
-const FROM_TEST: Formula = Formula {
-    name: "measured load loss at the reference temperature",
-    symbol: "Pk",
-    formula: "P_test/((1−s)·x + s/x)",
-    unit: "W",
-    source: "IEC 60076-1 Annex E (memory), stray share s at the reference temperature; methods, section 8",
-};
-
-/// A measured load loss at the reference temperature; `stray_share_pu` is the stray part there.
-pub fn load_loss_from_test<R: Recorder>(
-    w: &mut R,
-    test_w: f64,
-    stray_share_pu: f64,
-    metal_t0_c: f64,
-    test_c: f64,
-    reference_c: f64,
-) -> f64 {
-    w.open();
-    let x = (metal_t0_c + test_c) / (metal_t0_c + reference_c);
-    w.step(&RATIO, &[("T0", metal_t0_c), ("θ_test", test_c), ("θ_ref", reference_c)], x);
-    let s = stray_share_pu;
-    let value = test_w / ((1.0 - s) * x + s / x);
-    w.close(&FROM_TEST, &[("P_test", test_w), ("s", s), ("x", x)], value)
-}
 
 /// A delivered unit against its guarantee.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -55,17 +23,6 @@ pub struct Delivered {
     pub excess: Excess,
     /// What is doubtful.
     pub flags: Flags,
-}
-
-/// Losses above the guarantee; below it they are negative.
-#[derive(Clone, Copy, Debug, Default, PartialEq)]
-pub struct Excess {
-    /// Of the no-load loss.
-    pub no_load_w: f64,
-    /// Of the load loss.
-    pub load_w: f64,
-    /// Of the auxiliary loss; none where it was not measured.
-    pub auxiliary_w: Option<f64>,
 }
 
 const EXCESS: Formula = Formula {
@@ -90,7 +47,7 @@ pub fn delivered<R: Recorder>(
             flags = flags.with_if(test_c != reference_c, Flags::SPLIT_UNKNOWN);
             let t0 = vanishing_temp_c(bid.winding_metal.unwrap_or(WindingMetal::Copper));
             let (test_w, stray) = (measured.load_loss_w, terms.stray_share_pu);
-            load_loss_from_test(w, test_w, stray, t0, test_c, reference_c)
+            load_loss_at_reference(w, test_w, stray, t0, test_c, reference_c)
         }
         (Some(_), None) => {
             flags = flags.with(Flags::NO_REFERENCE_TEMP);
@@ -153,32 +110,6 @@ pub fn mean<R: Recorder>(w: &mut R, units: &[Excess]) -> Excess {
     }
 }
 
-const PENALTY: Formula = Formula {
-    name: "penalty for losses above the guarantee, each loss on its own, no credit",
-    symbol: "penalty",
-    formula: "(A·max(0, ΔP0) + B·max(0, ΔPk) + A_aux·max(0, ΔPa))/1000",
-    unit: "money",
-    source: "rule of City of Colton purchase specification, June 1988; methods, section 8",
-};
-
-/// Penalty for an excess of one unit (or of the mean unit). `factors` hold B for the bid's rating.
-pub fn penalty<R: Recorder>(w: &mut R, factors: &LossFactors, excess: &Excess) -> f64 {
-    let (a, b, x) = (factors.factor_a_per_kw, factors.factor_b_per_kw, factors.factor_aux_per_kw);
-    let auxiliary = excess.auxiliary_w.unwrap_or(0.0);
-    let value =
-        (a * excess.no_load_w.max(0.0) + b * excess.load_w.max(0.0) + x * auxiliary.max(0.0))
-            / 1000.0;
-    let inputs = [
-        ("A", a),
-        ("ΔP0", excess.no_load_w),
-        ("B", b),
-        ("ΔPk", excess.load_w),
-        ("A_aux", x),
-        ("ΔPa", auxiliary),
-    ];
-    w.step(&PENALTY, &inputs, value)
-}
-
 const OF_UNITS: Formula = Formula {
     name: "penalty of all measured units",
     symbol: "penalty_lot",
@@ -236,20 +167,4 @@ pub fn beyond<R: Recorder>(
     let found = tolerance::exceeded(w, rule, &guaranteed.losses, excess.no_load_w, excess.load_w);
     let rejectable = !found.is_empty() && rule != Tolerance::Ieee;
     (found, rejectable)
-}
-
-#[cfg(test)]
-mod tests {
-    use super::*;
-    use crate::engine::working::Silent;
-
-    /// The correction is the inverse of bringing a loss from the reference to the test temperature.
-    #[test]
-    fn test_and_reference_agree() {
-        use crate::engine::transformer::temperature::load_loss_at;
-        let (pk, s) = (4000.0, 0.1);
-        let test = load_loss_at(&mut Silent, (1.0 - s) * pk, s * pk, 235.0, 75.0, 21.0);
-        let back = load_loss_from_test(&mut Silent, test, s, 235.0, 21.0, 75.0);
-        assert!((back / pk - 1.0).abs() < 1e-14);
-    }
 }

@@ -1,4 +1,4 @@
-//! What a Weibull age at failure says of a unit: hazard, survival, failure within some years, mean life, B10.
+//! What a Weibull age at failure says of a unit: hazard, survival, mean life, B10.
 
 use super::Weibull;
 use crate::engine::Refusal;
@@ -17,13 +17,6 @@ const SURVIVAL: Formula = Formula {
     formula: "exp(−(a/η)^b)",
     unit: "pu",
     source: "Weibull 1951",
-};
-const FAILS_WITHIN: Formula = Formula {
-    name: "probability that a unit of age a fails within n years",
-    symbol: "p",
-    formula: "1 − exp((a/η)^b − ((a+n)/η)^b)",
-    unit: "pu",
-    source: "Weibull 1951, conditional on having lived to age a",
 };
 const MEAN_LIFE: Formula = Formula {
     name: "mean life",
@@ -65,14 +58,6 @@ impl Weibull {
     pub fn survival<R: Recorder>(&self, w: &mut R, age: f64) -> f64 {
         let value = (-(age / self.scale_years).powf(self.shape)).exp();
         w.step(&SURVIVAL, &[("a", age), ("η", self.scale_years), ("b", self.shape)], value)
-    }
-
-    /// Probability that a unit of `age` fails within `years` (pu).
-    pub fn fails_within<R: Recorder>(&self, w: &mut R, age: f64, years: f64) -> f64 {
-        let x = |age: f64| (age / self.scale_years).powf(self.shape);
-        let value = -(x(age) - x(age + years)).exp_m1();
-        let inputs = [("a", age), ("η", self.scale_years), ("b", self.shape), ("n", years)];
-        w.step(&FAILS_WITHIN, &inputs, value)
     }
 
     /// Mean life (years).
@@ -130,8 +115,6 @@ mod tests {
         let e = Weibull::new(1.0, 40.0).expect("sound");
         assert!((e.hazard(&mut Silent, 30.0) - 0.025).abs() < 1e-15);
         assert!((e.mean_life(&mut Silent) - 40.0).abs() < 1e-12);
-        let year = e.fails_in_year(&mut Silent, 17.0);
-        assert!((e.fails_within(&mut Silent, 17.0, 1.0) - year).abs() < 1e-15);
         let b10 = e.quantile(&mut Silent, 0.1);
         assert!((e.survival(&mut Silent, b10) - 0.9).abs() < 1e-14);
         assert!(Weibull::new(0.0, 40.0).is_err() && Weibull::new(1.0, f64::NAN).is_err());

@@ -1,7 +1,7 @@
 //! The answer to one bidder: where its bid stands, what it lacked, and how its figures come about.
 
 use super::award::by_its_terms;
-use super::lot::{About, doubted, excluded_because};
+use super::lot::{About, doubted, misses};
 use super::{asks, cautions, factor_scale, factors, flag_at, near_tie};
 use crate::engine::working::Step;
 use crate::exchange::Letter;
@@ -29,14 +29,13 @@ pub fn answer(case: &Case, result: &TenderResult, bid: &str) -> Result<Letter, S
         standing(&mut letter, &about, bid);
         let w = case.answering(&of.lot, bid)?;
         letter.heading(3, "How its owning cost comes about");
-        let rows = |steps: &[Step]| StepRow::lines_in(&StepRow::tree(steps), 0, &result.currency);
+        let rows = |steps: &[Step]| StepRow::lines(&StepRow::tree(steps), 0, case.money());
         letter.lines([rows(&w.on_terms), rows(&w.owning_cost)].concat());
         letter.heading(3, "How the factors come about");
         if about.result.as_awarded {
             letter.text("They are kept with the award as they were then.");
         } else {
-            let money = case.currency_of_factors();
-            letter.lines(StepRow::lines_in(&StepRow::tree(&w.factors), 0, money));
+            letter.lines(rows(&w.factors));
         }
     }
     cautions(&mut letter);
@@ -65,10 +64,7 @@ fn standing(letter: &mut Letter, about: &About, name: &str) {
         parts.map(|(part, amount)| vec![part.to_owned(), group(amount, 2)]).to_vec(),
     );
     match bid.rank {
-        None => letter.text(format!(
-            "It is not ranked: it misses {}.",
-            excluded_because(about, bid).join("; ")
-        )),
+        None => letter.text(format!("It is not ranked: it misses {}.", misses(bid))),
         Some(rank) => {
             letter.text(format!("It ranks {rank} of {} by owning cost.", about.ranked().count()));
         }

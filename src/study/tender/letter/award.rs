@@ -11,7 +11,7 @@ use crate::study::tender::deliver::{DeliverResult, DeliveredUnit};
 use crate::study::tender::{Awarded, LotResult};
 
 /// To whom, by whom, when and why.
-fn sentence(award: &Awarded) -> String {
+pub fn sentence(award: &Awarded) -> String {
     let bidder = award.bidder.as_ref().map_or(String::new(), |bidder| format!(" ({bidder})"));
     let why = award.why.as_ref().map_or(String::new(), |why| format!(", because: {why}"));
     let (bid, who) = (&award.bid, &award.awarded_by);
@@ -36,29 +36,35 @@ pub(in crate::study) fn standing(letter: &mut Letter, about: &About) {
     letter.heading(3, "Award");
     letter.text(format!("Awarded to {}", sentence(award)));
     letter.text(terms(award, about.currency));
-    let leads = about.result.recommended.as_ref();
+    if let Some(changed) = changed_since(about.result, about.currency) {
+        letter.warning(changed);
+    }
+}
+
+/// How the comparison differs now from that of the award; none where it does not, or the lot is not awarded.
+pub fn changed_since(lot: &LotResult, currency: &str) -> Option<String> {
+    let (award, recommended) = (lot.award.as_ref()?, lot.recommended.as_ref());
     let mut otherwise = Vec::new();
     if award.differs_now() {
         otherwise.push(format!(
-            "{} comes to {} instead of {} {}",
+            "{} comes to {} instead of {} {currency}",
             award.bid,
             group(award.owning_cost_now, 2),
             group(award.owning_cost, 2),
-            about.currency
         ));
     }
-    if leads != award.recommended.as_ref() {
+    if recommended != award.recommended.as_ref() {
         let named = |bid: Option<&String>| bid.map_or("no bid", String::as_str).to_owned();
-        let (now, then) = (named(leads), named(award.recommended.as_ref()));
+        let (now, then) = (named(recommended), named(award.recommended.as_ref()));
         otherwise.push(format!("{now} is recommended instead of {then}"));
     }
-    if !otherwise.is_empty() {
-        letter.warning(format!(
+    (!otherwise.is_empty()).then(|| {
+        format!(
             "compared again now, {}: the basis has changed since, or the program (then {}); the award stands as it was made",
             otherwise.join(" and "),
             award.program
-        ));
-    }
+        )
+    })
 }
 
 /// By whose terms an answer goes, and in one line what today's basis would say otherwise of a bid.

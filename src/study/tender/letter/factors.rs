@@ -75,7 +75,7 @@ pub fn lot_factors(case: &Case, factors: &LotFactors, working: bool) -> Letter {
     }
     if working {
         letter.heading(2, "Working");
-        letter.lines(StepRow::lines_in(&factors.working, 0, case.currency_of_factors()));
+        letter.lines(StepRow::lines(&factors.working, 0, case.money()));
     }
     letter
 }

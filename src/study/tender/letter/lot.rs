@@ -6,8 +6,9 @@ use crate::engine::flags::Flags;
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
 use crate::study::figures::{group, short};
-use crate::study::tender::{BidResult, Case, ChangeResult, LotResult, MoveResult, TenderResult};
-use crate::study::tender::{bids_of, verdict};
+use crate::study::tender::{
+    BidResult, Case, ChangeResult, LotResult, Miss, MoveResult, TenderResult, bids_of,
+};
 
 /// A lot with what is said of it.
 #[derive(Clone, Copy)]
@@ -192,59 +193,13 @@ pub(in crate::study) fn near_tie(letter: &mut Letter, about: &About) {
 /// Who is out, and why.
 pub(in crate::study) fn excluded(letter: &mut Letter, about: &About) {
     let out = about.result.bids.iter().filter(|bid| bid.rank.is_none());
-    let point = |bid: &BidResult| {
-        format!("Out: {} misses {}.", bid.bid, excluded_because(about, bid).join("; "))
-    };
+    let point = |bid: &BidResult| format!("Out: {} misses {}.", bid.bid, misses(bid));
     letter.points(out.map(point).collect());
 }
 
 /// What a bid misses, each with what it offers and what is asked.
-pub(super) fn excluded_because(about: &About, bid: &BidResult) -> Vec<String> {
-    bid.excluded.iter().map(|key| reason(about, bid, key)).collect()
-}
-
-/// What a bid misses: the key of the limit, what it offers and what is asked.
-fn reason(about: &About, result: &BidResult, key: &str) -> String {
-    let (Some(lot), Some(bid)) = (about.lot, about.bid(&result.bid)) else {
-        return key.to_owned();
-    };
-    let losses = &result.losses;
-    let most = |offered: Option<f64>, limit: Option<f64>, unit: &str| {
-        let (offered, limit) = (offered.unwrap_or(f64::NAN), limit.unwrap_or(f64::NAN));
-        format!("{} {unit}, at most {} {unit}", short(offered), short(limit))
-    };
-    let word = |text: &Option<String>| text.clone().unwrap_or_default();
-    let why = match key {
-        "rated_kva" => {
-            format!("{} kVA, at least {} kVA", short(losses.rated_kva), short(lot.rated_kva))
-        }
-        "vector_group" => {
-            format!("{} cannot stand for {}", word(&bid.vector_group), word(&lot.vector_group))
-        }
-        "max_no_load_loss_w" => most(Some(losses.no_load_loss_w), lot.max_no_load_loss_w, "W"),
-        "max_load_loss_w" => most(Some(losses.load_loss_w), lot.max_load_loss_w, "W"),
-        "impedance_pct" => format!(
-            "{} %, {} % ± {} % of it",
-            short(bid.impedance_pct.unwrap_or(f64::NAN)),
-            short(lot.impedance_pct.unwrap_or(f64::NAN)),
-            short(lot.impedance_tolerance_pct.unwrap_or(f64::NAN))
-        ),
-        "max_sound_db" => most(bid.sound_db, lot.max_sound_db, "dB"),
-        "max_mass_kg" => most(bid.mass_kg, lot.max_mass_kg, "kg"),
-        "max_delivery_weeks" => most(bid.delivery_weeks, lot.max_delivery_weeks, "weeks"),
-        "law" => {
-            let basis = about.case.basis();
-            let asked = verdict(&about.case.sheet, basis.as_ref(), &lot.lot, &bid.bid);
-            let missed = asked.ok().flatten().and_then(|verdict| {
-                let limit = verdict.limits.iter().find(|limit| !limit.meets())?;
-                let (value, bound) = (short(limit.value), short(limit.limit));
-                Some(format!("{} {value} against {bound}, {}", limit.quantity, limit.source))
-            });
-            missed.unwrap_or_else(|| word(&lot.law))
-        }
-        _ => return key.to_owned(),
-    };
-    format!("{key} ({why})")
+pub(super) fn misses(bid: &BidResult) -> String {
+    bid.misses.iter().map(Miss::in_full).collect::<Vec<_>>().join("; ")
 }
 
 /// Who wins at other factors, and how far the nearest border is.

@@ -36,7 +36,7 @@ pub fn report(
         factors(&mut letter, &about);
         let working = case.factors(&of.lot)?.working;
         letter.heading(3, "How the factors come about");
-        letter.lines(StepRow::lines_in(&working, 0, case.currency_of_factors()));
+        letter.lines(StepRow::lines(&working, 0, case.money()));
         if !of.bids.is_empty() {
             letter.heading(3, "What is compared");
         }
