@@ -84,7 +84,7 @@ fn tender(c: &mut Criterion) {
             fixed: bid.price.amount(),
             no_load_kw: bid.no_load_loss_w / 1000.0,
             load_kw: bid.load_loss_w.unwrap_or(0.0) / 1000.0,
-            auxiliary_kw: 0.0,
+            ..Plane::default()
         })
         .collect();
     let today = LossFactors {

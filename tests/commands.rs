@@ -466,3 +466,21 @@ fn a_no_load_loss_out_of_the_total_is_said() {
         program.done(&["rank"]).contains("the no-load loss is total_loss_w less the load loss")
     );
 }
+
+/// The example of a file's layout is a file that is taken, and names what may have a range.
+#[test]
+fn columns_of_toml_files_show_a_file_that_is_taken() {
+    let program = Program::new();
+    for what in ["basis", "tender"] {
+        let shown = program.done(&["columns", what]);
+        let (facts, example) = shown.split_once("invented):\n").expect("has an example");
+        program.import(what, &program.write("example.toml", example), &[]);
+        assert_eq!(facts.contains("A [range.NAME] may stand for: "), what == "basis", "{facts}");
+    }
+    let shown = program.done(&["columns", "basis"]);
+    let named = shown.split("may stand for: ").nth(1).and_then(|rest| rest.split(".\n").next());
+    let names: Vec<&str> = named.expect("a list").split(", ").collect();
+    assert!(names.contains(&"stray_share_pu") && names.contains(&"peak_pu"), "{names:?}");
+    assert!(!names.contains(&"cash_flow") && !names.contains(&"max_mass_kg"), "{names:?}");
+    assert!(!program.done(&["columns", "units"]).contains("layout"));
+}

@@ -68,8 +68,13 @@ fn another_bid_needs_a_reason_and_an_award_stands() {
     let to = |bid: &'static str| ["award", TENDER, "--lot", "L1", "--bid", bid];
     let (code, error) = refused(&program, &to("V1"));
     assert_eq!(code, Some(3));
-    assert!(error.contains("bid V1: does not lead (O1 does); to award it say why"), "{error}");
-    let (code, error) = refused(&program, &[&to("P1")[..], &["--why", " "]].concat());
+    assert!(error.contains("bid V1: is not recommended (O1 is); to award it say why"), "{error}");
+    // A bid that misses a limit must be meant: a reason alone may be a slip of the hand.
+    let (code, error) = refused(&program, &[&to("P1")[..], &["--why", "sister units"]].concat());
+    assert_eq!(code, Some(3));
+    assert!(error.contains("bid P1: misses max_no_load_loss_w"), "{error}");
+    assert!(error.contains("--despite --why TEXT"), "{error}");
+    let (code, error) = refused(&program, &[&to("P1")[..], &["--despite", "--why", " "]].concat());
     assert_eq!(code, Some(3));
     assert!(error.contains("misses max_no_load_loss_w"), "{error}");
     let (code, error) = refused(&program, &[&to("V1")[..], &["--why", "a\u{1b}[2J"]].concat());
@@ -86,7 +91,8 @@ fn another_bid_needs_a_reason_and_an_award_stands() {
     assert_eq!(code, Some(2));
 
     let why = "maker of 38 sister units; the board agreed on 3 December";
-    let result = award(&program, "L1", "P1", why);
+    let given = [&to("P1")[..], &["--despite", "--why", why, "--format", "json"]].concat();
+    let result = program.json(&given);
     assert_eq!(result["excluded"], json!(["max_no_load_loss_w"]));
     assert_eq!(result["measured_of_others"], json!(["O1"]));
     let (code, error) = refused(&program, &[&to("O1")[..], &["--why", "second thoughts"]].concat());
@@ -146,7 +152,27 @@ fn settlement_goes_by_the_terms_of_the_award() {
     let flat = shown.split_whitespace().collect::<Vec<_>>().join(" ");
     assert!(flat.contains("compared again now, O1 comes to"), "{shown}");
     assert!(flat.contains("instead of 26 086.30 EUR"), "{shown}");
+    assert!(!flat.contains("O1 is recommended instead of O1"), "{shown}");
+    // The answer to a bidder goes by the award, and says in one line what would be otherwise.
+    let bid = program.done(&["tender", TENDER, "--lot", "L1", "--bid", "O1", "--working"]);
+    let flat = bid.split_whitespace().collect::<Vec<_>>().join(" ");
+    for said in [
+        "The lot is awarded to O1 (Oskavend) by tester on",
+        "goes by the factors and corrections kept with the award",
+        "A 15 218.65 no-load (iron) loss kept with the award",
+        "owning cost 26 086.30",
+        "today's basis would say otherwise: A ",
+        "stray share 0.3 instead of 0.1; O1 at ",
+    ] {
+        assert!(flat.contains(said), "{said}\n{bid}");
+    }
+    let aside = program.done(&["tender", TENDER, "--lot", "L1", "--bid", "O1", "--from-basis"]);
+    assert!(!aside.contains("kept with the award"), "asked for the basis: {aside}");
+    let now = &lot["bids"][1];
+    assert_eq!(now["bid"], "O1");
+    assert!(!flat.contains(&format!("= {} EUR", now["owning_cost"])), "{bid}");
     let report = program.done(&["report", "tender", TENDER, "-"]);
+    assert!(report.contains("| L1 | 60 | awarded, second | O1 | Oskavend |"), "{report}");
     assert!(report.contains("settled by the factors and the stray share of the award"), "{report}");
 
     // With two bases and none chosen the settlement of an awarded lot still needs none.
@@ -171,7 +197,11 @@ fn what_was_awarded_is_not_changed_by_an_import() {
     };
     let bids = file("bids.csv");
     let lower = bids.replace("400,,330,2860", "400,,340,2860");
-    refuse("bids", &lower, "no_load_loss_w: 340: would change: bid O1 is awarded ol-2027-1/L1");
+    refuse("bids", &lower, "no_load_loss_w: 340: would change bid O1: ol-2027-1/L1 is awarded");
+    // The other bids are what it was compared with.
+    let rival = bids.replace("O1-ALT,Oskavend,13980", "O1-ALT,Oskavend,11980");
+    refuse("bids", &rival, "price: 11980: would change bid O1-ALT: ol-2027-1/L1 is awarded");
+    refuse("bids", &rival, "ironhum award ol-2027-1 --lot L1 --withdraw --why TEXT");
     let tender = file("tender.toml");
     refuse("tender", &tender.replace("SEK = 0.0885", "SEK = 0.09"), "is awarded");
     refuse(
@@ -189,6 +219,9 @@ fn what_was_awarded_is_not_changed_by_an_import() {
     program.import("bids", &program.write("bids.csv", remark), &[]);
     let lot = tender.replace("max_sound_db = 75", "max_sound_db = 80");
     program.import("tender", &program.write("tender.toml", lot), &[]);
+    // Once the award is withdrawn they may change.
+    program.done(&["award", TENDER, "--lot", "L1", "--withdraw", "--why", "an error in a bid"]);
+    program.import("bids", &program.write("bids.csv", rival), &[]);
 }
 
 #[test]
@@ -219,7 +252,11 @@ fn measured_units_enter_the_fleet_once() {
         first["left_out"][0],
         json!({"lot": "L1", "serial": "0427-04", "why": "is excepted"})
     );
-    let again = program.json(&["deliver", TENDER, "--except", "0427-04", "--format", "json"]);
+    // Beyond tolerance it does not slip in later.
+    let again = program.json(&["deliver", TENDER, "--format", "json"]);
+    assert_eq!(again["left_out"][0]["serial"], "0427-04");
+    let why = again["left_out"][0]["why"].as_str().expect("a reason");
+    assert!(why.contains("is beyond tolerance") && why.contains("--also SERIAL"), "{why}");
     assert_eq!(again["units"][0]["unit"], "T-0427-01", "the unit keeps its name");
     assert_eq!(outcomes(&again), vec!["same".to_owned(); 7]);
 
@@ -248,8 +285,14 @@ fn measured_units_enter_the_fleet_once() {
     assert_eq!(outcomes(&deliver(&["--except", "0427-04"])), vec!["same".to_owned(); 7]);
     let measured = std::fs::read_to_string(demo_fleet("measured.csv")).expect("the demo");
     let corrected = measured.replace("0427-07,326,2467", "0427-07,327,2467");
-    program.import("measured", &program.write("measured.csv", corrected), &[]);
-    let third = deliver(&[]);
+    let corrected = program.write("measured.csv", corrected);
+    let (code, error) = refused(&program, &["import", "measured", &corrected.to_string_lossy()]);
+    assert_eq!(code, Some(3));
+    let said =
+        "no_load_loss_w: 327: would change what 0427-07 measured: it is in the fleet as T-0427-07";
+    assert!(error.contains(said) && error.contains("--why TEXT"), "{error}");
+    program.import("measured", &corrected, &["--why", "misread, report of 3 June"]);
+    let third = deliver(&["--also", "0427-04"]);
     assert_eq!(third["units"][6]["outcome"], "changed");
     assert_eq!(third["units"][3]["outcome"], "new", "0427-04 is accepted after all");
     assert_eq!(third["units"][3]["rejectable"], true);
@@ -283,8 +326,10 @@ fn a_unit_of_that_name_from_elsewhere_is_not_touched() {
         100.0
     );
     let shown = program.done(&["deliver", TENDER, "--prefix", "ol-"]);
-    assert!(shown.contains("8 new, 0 changed"), "{shown}");
-    assert!(shown.contains("0427-04 may be rejected"), "{shown}");
+    assert!(shown.contains("7 new, 0 changed"), "{shown}");
+    let flat = shown.split_whitespace().collect::<Vec<_>>().join(" ");
+    assert!(flat.contains("0427-04 of lot L1 is beyond tolerance"), "{shown}");
+    assert!(flat.contains("in_service = no"), "{shown}");
     let csv = program.done(&["deliver", TENDER, "--format", "csv"]);
     assert!(csv.starts_with("unit,serial,lot,bid,rated_kva,"), "{csv}");
     assert!(

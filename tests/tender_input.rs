@@ -342,3 +342,56 @@ fn what_makes_a_bid_win_by_a_slip() {
         assert!(doubts.contains(said), "{said}\n{doubts}");
     }
 }
+
+/// The lot has two units; a third serial number is taken with a warning.
+#[test]
+fn more_measured_units_than_the_lot_has() {
+    let program = program();
+    let take = |serials: &[&str]| {
+        let rows = serials.iter().map(|serial| format!("T,L,A,{serial},430,4600\n"));
+        let head = "tender,lot,bid,serial,no_load_loss_w,load_loss_w\n".to_owned();
+        let file = program.write("measured.csv", head + &rows.collect::<String>());
+        text(&program.run(&["import", "measured", &file.to_string_lossy()]))
+    };
+    let (code, _, error) = take(&["s1", "s2"]);
+    assert_eq!((code, error.contains("are measured")), (Some(0), false), "{error}");
+    let (code, out, error) = take(&["S2"]);
+    assert_eq!((code, out.as_str()), (Some(0), "measured: 1 new, 0 changed, 0 the same.\n"));
+    assert!(
+        error.contains("3 units of bid A are measured, but lot L of tender T has 2"),
+        "{error}"
+    );
+}
+
+/// A bid in kW would own best of all: it is told before the figures, at the award, in the report and beside CSV.
+#[test]
+fn losses_in_kw_are_told_wherever_the_bid_is_shown() {
+    let program = program();
+    let in_kw = format!("{HEAD}T,L,C,West,9100,EUR,2,0.43,4.6\n");
+    program.import("bids", &program.write("kw.csv", in_kw), &[]);
+    let warning = "were kW written in a column of W?";
+    let shown = |arguments: &[&str]| {
+        let (code, out, error) = text(&program.run(arguments));
+        assert_eq!(code, Some(0), "{error}");
+        let flat = |text: &str| text.split_whitespace().collect::<Vec<_>>().join(" ");
+        (flat(&out), flat(&error))
+    };
+    for arguments in [
+        &["tender", "T", "--lot", "L"][..],
+        &["tender", "T", "--bid", "C"],
+        &["report", "tender", "T", "-"],
+        &["award", "T", "--lot", "L", "--bid", "C"],
+        &["check"],
+    ] {
+        let (out, _) = shown(arguments);
+        assert!(out.contains(warning), "{arguments:?}: {out}");
+        if arguments == ["tender", "T", "--lot", "L"] {
+            assert_eq!(out.matches(warning).count(), 1, "{out}");
+            assert!(out.find(warning) < out.find("9 100"), "before the figures: {out}");
+        }
+    }
+    let (out, error) = shown(&["tender", "T", "--format", "csv"]);
+    assert!(!out.contains(warning) && error.contains(warning), "{error}");
+    let (out, _) = shown(&["tender", "T", "--bid", "A"]);
+    assert!(!out.contains(warning), "not the matter of another bidder: {out}");
+}

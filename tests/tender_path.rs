@@ -95,7 +95,7 @@ fn the_text_says_who_wins_elsewhere_and_what_must_move() {
     assert_eq!(lot["near_tie_order"], serde_json::json!(["O1", "O1-ALT"]));
     let flat = shown.split_whitespace().collect::<Vec<_>>().join(" ");
     for said in [
-        "By owning cost: O1-ALT, O1. By price with adders, which leads here: O1, O1-ALT.",
+        "By owning cost: O1-ALT, O1. By price with adders, of which the first is recommended: O1, O1-ALT.",
         "Out: P1 misses max_no_load_loss_w (410 W, at most 387 W).",
         "Out: J2 misses max_sound_db (79 dB, at most 75 dB).",
         "K1: load_loss_from_total:",
@@ -214,6 +214,27 @@ fn a_settlement_reads_as_a_letter() {
     ] {
         assert!(flat.contains(said), "{said}\n{shown}");
     }
+    // 56 W of iron and 37 W of copper too much, and what is owed without that unit.
+    for said in [
+        "- 0427-04: (A 15 218.65 × 56.0 W + B 2 840.61 × 37.0 W)/1000 = 957.35 EUR",
+        "If the units that may be rejected are rejected, the penalty of the others: 665.45 EUR.",
+    ] {
+        assert!(flat.contains(said), "{said}\n{shown}");
+    }
+    let all = program.done(&["settle", TENDER, "--working"]);
+    for said in [
+        "Owning cost of one unit as promised: lot L1, bid O1",
+        "Mean owning cost as delivered: lot L1, bid O1",
+        "How far the no-load loss of 0427-04 lies above",
+        "Penalty without the units that may be rejected: lot L1, bid O1",
+    ] {
+        assert!(all.contains(said), "{said}\n{all}");
+    }
+    let one = program.done(&["settle", TENDER, "--working", "owning_cost_promised"]);
+    assert!(one.starts_with("How owning_cost_promised comes about:"), "{one}");
+    let (code, _, error) = text(&program.run(&["settle", TENDER, "--bid", "V1"]));
+    assert_eq!(code, Some(2));
+    assert!(error.contains("bid V1 is not in the measured units of tender ol-2027-1"), "{error}");
     let one = program.done(&["settle", TENDER, "--serial", "0427-08"]);
     assert_eq!(lines(&one, "Unit ").len(), 1, "{one}");
     assert!(
@@ -238,7 +259,7 @@ fn one_bidder_is_answered() {
         (shown.split_whitespace().collect::<Vec<_>>().join(" "), shown)
     };
     let (flat, shown) = answer("V1");
-    let said = "O1-ALT costs least to own: 25 953.69 EUR a unit, 939.07 EUR less than V1 (3.62 %). Any one of \
+    let said = "O1-ALT has the least owning cost: 25 953.69 EUR a unit, 939.07 EUR less than V1 (3.62 %). Any one of \
                 these would have made that up: a price lower by 939.07 EUR; a no-load loss lower by 61.7 W; \
                 a load loss lower by 330.6 W.";
     assert!(flat.contains(said), "{shown}");
@@ -263,6 +284,11 @@ fn one_bidder_is_answered() {
     assert!(shown.contains("= 6370000·0.0885"), "{shown}");
     assert!(shown.contains("107553.6"), "{shown}");
     assert!(!shown.contains("would have made that up"), "{shown}");
+    let (flat, shown) = answer("O1");
+    assert!(
+        flat.contains("It is the recommended bid. Near tie, within 1 % of the least owning cost."),
+        "{shown}"
+    );
     let (flat, shown) = answer("P1");
     assert!(
         flat.contains("It is not ranked: it misses max_no_load_loss_w (410 W, at most 387 W)."),
@@ -303,6 +329,8 @@ fn a_report_is_written_whole_and_the_same_again() {
     assert_eq!(program.done(&["report", "tender", TENDER, "-"]), report);
     for said in [
         "# Tender ol-2027-1: bids compared by owning cost\n",
+        "\n| L1 | 60 | least owning cost | O1-ALT | Oskavend | 25 954 | 1 557 221 | 0.00 |\n\
+         | L1 | 60 | recommended, second | O1 | Oskavend | 26 086 | 1 565 178 | 0.51 |\n",
         "\n### How the factors come about\n\n```text\n",
         "\n| 1 | O1-ALT | Oskavend | 13 980 | 190 | 3 120 | 8 664 | 0 | 25 954 | 0 | 27 259 | 1 557 221 |\n",
         "\n| M1 | Morruskel | 6 370 000 SEK | 110 300 | 85 | 25 000 | 10 400.0 | 107 553.6 | 1 500.0 | – |\n",
@@ -311,7 +339,7 @@ fn a_report_is_written_whole_and_the_same_again() {
         "\nNear tie, within 1 % of the least owning cost. By owning cost: O1-ALT, O1.",
         "\n| O1-ALT | 43.8 |\n",
         "\n| discount rate | % | 6.000 | 1.443 | J1 | 6.972 | O1 |\n",
-        "\n10 000 draws of the factors from the ranges of basis plan-2027, seed 1:",
+        "\n10 000 draws from the ranges of basis plan-2027, seed 1:",
         "\n## Settlement of lot L1, bid O1 of Oskavend\n",
         "\nPenalty: 1 622.79 EUR.\n",
         "\n## Cautions\n",
@@ -346,4 +374,66 @@ fn hostile_names_stay_text() {
     let shown = program.done(&["tender", TENDER]);
     assert!(shown.contains("=cmd() ␦dnE"), "{shown}");
     assert!(!shown.contains('\u{202e}'), "{shown}");
+}
+
+/// What was published can be shown with its working afterwards, and the report under the factors of the basis.
+#[test]
+fn published_factors_keep_their_working() {
+    let program = demo();
+    let flat = |text: String| text.split_whitespace().collect::<Vec<_>>().join(" ");
+    let ask = ["factors", "--tender", TENDER, "--lot", "L1"];
+    let (code, _, error) = text(&program.run(&["factors", "--from-basis"]));
+    assert_eq!(code, Some(2), "{error}");
+    let before = program.json(&[&ask[..], &["--format", "json"]].concat());
+    let tender = std::fs::read_to_string(support::demo_fleet("tender.toml")).expect("the demo");
+    let stated =
+        "factor_a_per_kw = 15218.65\nfactor_b_per_kw = 2840.61\nfactor_aux_per_kw = 12600.0\n";
+    let publish = |stated: &str| {
+        let text = tender.replacen("peak_pu", &format!("{stated}peak_pu"), 1);
+        program.import("tender", &program.write("tender.toml", text), &[]);
+    };
+    publish(stated);
+    let shown = flat(program.done(&ask));
+    assert!(shown.contains("the working to publish: ironhum factors --tender ol-2027-1 --lot L1 --from-basis --working."), "{shown}");
+    let from_basis = [&ask[..], &["--from-basis"]].concat();
+    let after = program.json(&[&from_basis[..], &["--format", "json"]].concat());
+    assert_eq!(after, before, "as if the lot stated nothing");
+    let shown = flat(program.done(&[&from_basis[..], &["--working"]].concat()));
+    assert!(shown.contains("The lot states A 15 218.65, B 2 840.61, A aux 12 600.00 EUR/kW, which is not what this basis gives now"), "{shown}");
+    assert!(shown.contains("8760·(0.08500003·16.65265"), "{shown}");
+    let aux = after["factor_aux_per_kw"].as_f64().expect("a factor");
+    publish(&stated.replace("12600.0", &format!("{aux:.2}")));
+    assert!(flat(program.done(&from_basis)).contains("to the cent what this basis gives."));
+
+    let report = program.done(&["report", "tender", TENDER, "-", "--lot", "L1", "--from-basis"]);
+    assert!(report.contains("compared as if no lot stated its factors"), "{report}");
+    // What is settled goes by what was published.
+    let part = |report: &str| report.split("## Settlement").nth(1).map(str::to_owned);
+    assert_eq!(
+        part(&report),
+        part(&program.done(&["report", "tender", TENDER, "-", "--lot", "L1"]))
+    );
+    assert!(part(&report).is_some());
+}
+
+/// The letter to one supplier: in its currency too, without a figure of another, blanks said.
+#[test]
+fn a_supplier_is_told_in_its_own_currency() {
+    let program = demo();
+    let measured = "tender,lot,bid,serial,no_load_loss_w,load_loss_w,test_temp_c\n\
+                    ol-2027-1,L2,M1,m-1,11000,110000,85\nol-2027-1,L2,M1,m-2,10600,109000,85\n";
+    program.import("measured", &program.write("measured.csv", measured), &[]);
+    let shown = program.done(&["settle", TENDER, "--lot", "L2", "--bid", "M1"]);
+    let flat = shown.split_whitespace().collect::<Vec<_>>().join(" ");
+    // Mean 400 W of iron too much; 15000 EUR/kW, two units, 0.0885 EUR for a SEK.
+    for said in [
+        "- each of 2 units, by the mean: (A 15 000.00 × 400.0 W)/1000 = 6 000.00 EUR",
+        "Penalty: 12 000.00 EUR (135 593.22 SEK at the rate stored with the tender, 1 SEK = 0.0885 EUR).",
+        "not measured 6 000.00 67 796.61",
+        "Auxiliary losses of some units were not measured: no excess is counted for them.",
+        "The guarantee came from 85 °C",
+    ] {
+        assert!(flat.contains(said), "{said}\n{shown}");
+    }
+    assert!(!shown.contains("O1") && !shown.contains("K1") && !shown.contains("J2"), "{shown}");
 }

@@ -100,9 +100,8 @@ fn a_report_that_contradicts_is_told_and_not_used() {
     );
     assert!(of("TX").iter().all(|d| !d.contains("_loss_w")), "{:?}", of("TX"));
     assert!(
-        of("TZ")
-            .iter()
-            .any(|d| d.contains("no_load_loss_w") && d.contains("+23.3 % off: the test report gives 148")),
+        of("TZ").iter().any(|d| d.contains("no_load_loss_w")
+            && d.contains("+23.3 % off: the test report gives 148")),
         "{:?}",
         of("TZ")
     );

@@ -4,7 +4,9 @@
 mod support;
 
 use ironhum::book::{Access, Book};
-use ironhum::engine::columns::{CapitalRecovery, CashFlow, FactorMethod, VoltageModel};
+use ironhum::engine::columns::{
+    Award, CapitalRecovery, CashFlow, FactorMethod, Measured, VoltageModel,
+};
 use ironhum::study::Desk;
 use ironhum::study::explain::{Explained, Opening, StepRow};
 use ironhum::study::factors::{self, LoadAsked};
@@ -183,4 +185,30 @@ fn every_figure_of_a_tender_and_its_settlement_opens() {
     assert_eq!(walked, 9 + 5 + 4, "the other method, two limits for each insulation");
     let settled = walk(&Settled(&case));
     assert!(settled > 20, "{settled} figures of the settlement");
+    // Awarded under other factors, and settled in another currency on the mean of the lot, one unit beyond tolerance.
+    let mut sheet = case.sheet.clone();
+    let award = |lot: &str, bid: &str| Award {
+        lot: lot.into(),
+        bid: bid.into(),
+        factor_a_per_kw: 12_345.0,
+        factor_b_per_kw: 2345.0,
+        factor_aux_per_kw: 345.0,
+        stray_share_pu: 0.2,
+        ..Award::blank()
+    };
+    sheet.awards = vec![award("L1", "O1"), award("L2", "M1")];
+    let of_mean = |serial: &str, no_load_loss_w: f64| Measured {
+        tender: "ol-2027-1".into(),
+        lot: "L2".into(),
+        bid: "M1".into(),
+        serial: serial.into(),
+        no_load_loss_w,
+        load_loss_w: 110_000.0,
+        auxiliary_loss_w: Some(1600.0),
+        ..Measured::blank()
+    };
+    sheet.measured.extend([of_mean("m-1", 10_500.0), of_mean("m-2", 13_000.0)]);
+    let awarded = Case::new(sheet, Some(Desk::read(&book, None).expect("a desk"))).expect("sound");
+    let more = walk(&Settled(&awarded));
+    assert!(more > settled + 20, "{more} figures");
 }

@@ -116,6 +116,37 @@ impl Change<'_> {
         Ok(statement.query_row([tender, lot, bid, serial], |row| row.get(0)).optional()?)
     }
 
+    /// The unit of the fleet that a measured unit became, where it did.
+    ///
+    /// # Errors
+    /// The store fails.
+    pub fn delivered(
+        &self,
+        tender: &str,
+        lot: &str,
+        bid: &str,
+        serial: &str,
+    ) -> Result<Option<String>> {
+        let sql = "SELECT unit FROM deliveries WHERE tender = ?1 AND lot = ?2 AND bid = ?3 AND serial = ?4";
+        let mut statement = self.transaction.prepare_cached(sql)?;
+        Ok(statement.query_row([tender, lot, bid, serial], |row| row.get(0)).optional()?)
+    }
+
+    /// Bids of a lot of which more units are measured than the lot has: the bid, how many, and how many it has.
+    ///
+    /// # Errors
+    /// The store fails.
+    pub fn measured_beyond(&self, tender: &str, lot: &str) -> Result<Vec<(String, i64, i64)>> {
+        let sql = "SELECT m.bid, COUNT(*), COALESCE(l.quantity, 1) FROM measured m \
+                   JOIN lots l ON l.tender = m.tender AND l.lot = m.lot \
+                   WHERE m.tender = ?1 AND m.lot = ?2 \
+                   GROUP BY m.bid HAVING COUNT(*) > COALESCE(l.quantity, 1) ORDER BY MIN(m.id)";
+        let mut statement = self.transaction.prepare_cached(sql)?;
+        let rows = statement
+            .query_map([tender, lot], |row| Ok((row.get(0)?, row.get(1)?, row.get(2)?)))?;
+        Ok(rows.collect::<std::result::Result<_, _>>()?)
+    }
+
     /// Holds that a tender sheet leaves what was awarded as it is.
     ///
     /// # Errors

@@ -236,6 +236,9 @@ pub struct Factors {
     /// Yearly growth of the load
     #[arg(long, value_name = "PCT", allow_negative_numbers = true)]
     pub load_growth_pct: Option<f64>,
+    /// Take every factor from the basis, also where the lot states its own: the working to publish
+    #[arg(long, requires = "tender")]
+    pub from_basis: bool,
     /// Show how each factor comes about
     #[arg(long)]
     pub working: bool,
@@ -306,6 +309,9 @@ pub struct ReportTender {
     /// Only this lot
     #[arg(long, value_name = "LOT")]
     pub lot: Option<String>,
+    /// Take every factor from the basis, also where a lot states its own
+    #[arg(long)]
+    pub from_basis: bool,
     /// How the risk is drawn, where the basis names ranges.
     #[command(flatten)]
     pub drawn: Drawn,
@@ -313,6 +319,10 @@ pub struct ReportTender {
 
 /// Options of `award`.
 #[derive(Clone, Debug, clap::Args)]
+#[command(
+    after_help = "The award and its journal entry carry the name of the user who is logged on: $USER, else $LOGNAME, \
+    else $USERNAME. Set one of them for one command to sign with another name: USER=\"A. Buyer\" ironhum award …"
+)]
 pub struct Award {
     /// The tender
     pub tender: String,
@@ -325,7 +335,10 @@ pub struct Award {
     /// Take the award back; the journal keeps it
     #[arg(long, conflicts_with = "bid")]
     pub withdraw: bool,
-    /// Why; needed where another bid leads, and to take an award back
+    /// Award it although it misses a limit of the lot
+    #[arg(long, conflicts_with = "withdraw")]
+    pub despite: bool,
+    /// Why; needed where another bid is recommended, and to take an award back
     #[arg(long, value_name = "TEXT")]
     pub why: Option<String>,
 }
@@ -338,9 +351,12 @@ pub struct Deliver {
     /// Only this lot
     #[arg(long, value_name = "LOT")]
     pub lot: Option<String>,
-    /// Leave this unit out, because it is rejected, for instance
+    /// Leave this unit out, this time; units beyond tolerance are always left out
     #[arg(long, value_name = "SERIAL")]
     pub except: Vec<String>,
+    /// Take this unit although it is beyond tolerance
+    #[arg(long, value_name = "SERIAL")]
+    pub also: Vec<String>,
     /// What stands before the serial number in the identifier of the unit
     #[arg(long, value_name = "TEXT")]
     pub prefix: Option<String>,
@@ -357,9 +373,12 @@ pub struct Settle {
     /// Only this lot
     #[arg(long, value_name = "LOT")]
     pub lot: Option<String>,
-    /// Show how each penalty comes about
-    #[arg(long)]
-    pub working: bool,
+    /// Only this bid: the letter to its supplier
+    #[arg(long, value_name = "BID")]
+    pub bid: Option<String>,
+    /// Show how each figure comes about, or the one that is named
+    #[arg(long, value_name = "FIGURE", num_args = 0..=1, default_missing_value = "")]
+    pub working: Option<String>,
     /// Show the working of this unit only
     #[arg(long, value_name = "SERIAL")]
     pub serial: Option<String>,

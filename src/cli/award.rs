@@ -5,7 +5,7 @@ use super::book::{self, Opened};
 use super::exit::{Exit, Failure};
 use super::print::Printer;
 use super::tender::warn_of_scale;
-use crate::study::tender::decide::{self, AwardResult};
+use crate::study::tender::decide::{self, AwardResult, Choice};
 use crate::study::tender::deliver::{self, Wanted};
 use crate::study::tender::{Case, letter};
 
@@ -54,7 +54,10 @@ pub(super) fn award(args: &Args, options: &Award, printer: &mut Printer) -> Resu
     let case = Case::read(&book, &options.tender, args.basis.as_deref())?;
     let actor = book::actor(options.why.clone());
     let result = match &options.bid {
-        Some(bid) => decide::award(&mut book, &case, &options.lot, bid, &actor)?,
+        Some(bid) => {
+            let choice = Choice { lot: &options.lot, bid, despite: options.despite };
+            decide::award(&mut book, &case, choice, &actor)?
+        }
         None => decide::withdraw(&mut book, &case, &options.lot, &actor)?,
     };
     let AwardResult { tender, lot, outcome, award, flags, .. } = &result;
@@ -79,6 +82,7 @@ pub(super) fn deliver(
     let wanted = Wanted {
         lot: options.lot.as_deref(),
         except: &options.except,
+        also: &options.also,
         prefix: options.prefix.as_deref().unwrap_or_default(),
     };
     let actor = book::actor(options.why.clone());

@@ -9,7 +9,7 @@ use super::exit::{Exit, Failure};
 use crate::book::{Access, Book, JournalEntry};
 use crate::engine::columns::TenderSheet;
 use crate::study::figures::short;
-use crate::study::tender::decide;
+use crate::study::tender::decide::{self, Choice};
 use crate::study::{Desk, StudyError};
 use crate::tui::{
     self, AwardWriter, Awarding, BasisWriter, Caps, ColourWish, ExitReason, JournalLine, Session,
@@ -105,7 +105,9 @@ fn award(path: &Path, asked: &Awarding) -> Result<(TenderSheet, Vec<JournalLine>
     let mut book = Book::open(path, Access::ReadWrite)?;
     let actor = book::actor(asked.why.clone());
     let shown = (&*asked.sheet, &*asked.basis);
-    decide::award_as_shown(&mut book, shown, &asked.lot, &asked.bid, &actor)?;
+    // The screen says what a bid misses before the reason is typed.
+    let choice = Choice { lot: &asked.lot, bid: &asked.bid, despite: true };
+    decide::award_as_shown(&mut book, shown, choice, &actor)?;
     Ok((book.tender(&asked.sheet.tender.tender)?, lines(&book)?))
 }
 

@@ -22,12 +22,16 @@ pub(super) fn factors(
 ) -> Result<Exit, Failure> {
     let Opened { book, .. } = book::open_to_read(args)?;
     if let (Some(tender), Some(lot)) = (&options.tender, &options.lot) {
-        let result = Case::read(&book, tender, args.basis.as_deref())?.factors(lot)?;
+        let case = Case::read(&book, tender, args.basis.as_deref())?;
+        let case = if options.from_basis { case.from_basis() } else { case };
+        let result = case.factors(lot)?;
         warn_of_scale(printer, lot, &result.flags);
         match printer.format {
             Format::Json => printer.json(&result)?,
             Format::Csv => printer.csv(KEYS, std::iter::once(&result))?,
-            Format::Text => printer.letter(&letter::lot_factors(&result, options.working))?,
+            Format::Text => {
+                printer.letter(&letter::lot_factors(&case, &result, options.working))?;
+            }
         }
         return Ok(Exit::Done);
     }

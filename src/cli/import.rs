@@ -91,6 +91,9 @@ fn say(printer: &mut Printer, report: &Report, dry_run: bool) -> Result<(), Fail
     if unsaid > 0 {
         printer.complain(&format!("and {unsaid} more problems"));
     }
+    for warning in report.warnings.iter().filter(|_| !report.rejected) {
+        printer.complain(&format!("{}: {warning}", report.file));
+    }
     match printer.format {
         Format::Json => printer.json(report)?,
         Format::Csv => {

@@ -24,6 +24,7 @@ fn tender(args: &Args, options: &ReportTender, printer: &mut Printer) -> Result<
     is_markdown(&options.file)?;
     let Opened { book, .. } = book::open_to_read(args)?;
     let case = Case::read(&book, &options.tender, args.basis.as_deref())?;
+    let case = if options.from_basis { case.from_basis() } else { case };
     let lot = options.lot.as_deref();
     let mut result = case.evaluate(lot)?;
     let asked = draws(&options.drawn)?;

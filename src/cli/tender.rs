@@ -112,12 +112,14 @@ pub(super) fn tender(
     Ok(said(printer, &result))
 }
 
-/// Warns that factors look like money per W, where the result itself is no text for people.
+/// Warns that factors look like money per W, or losses like kW, where the result itself is no text for people.
 pub(super) fn warn_of_scale(printer: &Printer, lot: &str, flags: &[&str]) {
     if printer.format == Format::Text {
         return;
     }
-    for key in Flags::FACTOR_SCALE.keys().iter().filter(|key| flags.contains(key)) {
+    for key in
+        Flags::FACTOR_SCALE.with(Flags::LOSS_SCALE).keys().iter().filter(|key| flags.contains(key))
+    {
         let meaning = flag_meaning(key).unwrap_or_default();
         printer.complain(&format!("lot {lot}: {key}: {meaning}"));
     }
@@ -128,6 +130,9 @@ pub(super) fn said(printer: &Printer, result: &TenderResult) -> Exit {
     let mut won = false;
     for lot in &result.lots {
         warn_of_scale(printer, &lot.lot, &lot.flags);
+        for bid in &lot.bids {
+            warn_of_scale(printer, &format!("{}, bid {}", lot.lot, bid.bid), &bid.flags);
+        }
         won |= lot.least_owning_cost.is_some();
         let why = match (&lot.least_owning_cost, lot.bids.is_empty()) {
             (Some(_), _) => continue,
@@ -149,7 +154,10 @@ fn write_workings(
     let wanted = |bid: &&BidResult| only.is_none_or(|only| only == bid.bid);
     for lot in &result.lots {
         for bid in lot.bids.iter().filter(wanted) {
-            let w = working(&case.sheet, basis.as_ref(), &lot.lot, &bid.bid)?;
+            let w = match only {
+                Some(bid) => case.answering(&lot.lot, bid)?,
+                None => working(&case.sheet, basis.as_ref(), &lot.lot, &bid.bid)?,
+            };
             printer.line("")?;
             printer.line(format!("Lot {}, bid {}", lot.lot, bid.bid))?;
             let figures = [&w.owning_cost, &w.owning_cost_at_tolerance, &w.lot_cost];

@@ -28,12 +28,12 @@ flags! {
     10, VECTOR_GROUP_UNREAD, "vector_group_unread", "the vector group has no clock number that could be read; it is passed over";
     11, CARBON_SERIES, "carbon_series", "both the basis and the price series give CO2 per kWh; the series counts";
     12, LOSS_ESTIMATED, "loss_estimated", "a loss is estimated from the fleet's known units";
-    13, SPLIT_UNKNOWN, "split_unknown", "the stray part of the load loss is the basis's stray_share_pu";
-    14, NO_REFERENCE_TEMP, "no_reference_temp", "no reference temperature: the load loss is compared as quoted";
-    15, LIMIT_UNKNOWN, "limit_unknown", "a value that the lot limits is blank in the bid; it passes";
+    13, SPLIT_UNKNOWN, "split_unknown", "the load loss is brought to another temperature and its split into I²R and stray is not known: stray_share_pu of the basis is used; ask the maker for the loss at the reference temperature, and give stray_share_pu a range to see whether it decides";
+    14, NO_REFERENCE_TEMP, "no_reference_temp", "no reference temperature of the bid or of the lot: the load loss is compared as quoted; ask for it and import the bid (or the lot) with reference_temp_c";
+    15, LIMIT_UNKNOWN, "limit_unknown", "a value that the lot limits is blank in the bid; it passes: ask the bidder and import the bid again";
     16, LAW_RELAXED, "law_relaxed", "no offer meets the law in a year in which the unit may fail; a forced purchase passes it over";
     17, VERIFY_LAW, "verify_law", "the legal table is marked as remembered: verify it in the official text";
-    18, FACTOR_SCALE, "factor_scale", "capitalised losses are under 1 % of the price of every bid: check that the factors are per kW, not per W";
+    18, FACTOR_SCALE, "factor_scale", "no-load and load loss are capitalised at under 1 % of the price of every bid: check that the factors are per kW, not per W";
     19, NO_LIFE, "no_life", "no life for this offer";
     20, DROP_AT_RMS, "drop_at_rms", "voltage drop at the RMS load: no profile to integrate over";
     21, RESPONSIBILITY_DEFAULT, "responsibility_default", "demand charge at full own peak: no responsibility_pu and no system load are known";
@@ -51,6 +51,8 @@ flags! {
     33, ADDERS_LOWER_PRICE, "adders_lower_price", "the adders take off more than half of the price: a rebate, or a slip?";
     34, LOSS_BASE_FAR, "loss_base_far", "loss_base_kva is below a quarter or above four times rated_kva, which no cooling stages are: a slip?";
     35, NAMEPLATE_ODD, "nameplate_odd", "a loss is 0 W or the nameplate is outside what is usual or possible; ironhum check says what";
+    37, LOSS_SCALE, "loss_scale", "a loss is below 0.02 W (no-load) or 0.2 W (load) per kVA of the rating: were kW written in a column of W? (common practice, no source)";
+    38, TEST_TEMP_BLANK, "test_temp_blank", "test_temp_c is blank, so the load loss counts as one at the lot's reference temperature, but the bid was quoted at another: where the report gives it at the bid's temperature, import that as test_temp_c";
     36, FROM_TEST, "from_test", "a blank of the nameplate is filled from the unit's test report";
 }
 

@@ -9,7 +9,7 @@ use rustc_hash::FxHashMap;
 use serde::Serialize;
 
 use crate::book::{Book, BookError};
-use crate::engine::columns::{Basis, Bid, Lot, Offer, Unit, VoltageModel, YesNo};
+use crate::engine::columns::{Basis, Bid, Lot, Measured, Offer, Unit, VoltageModel, YesNo};
 use crate::engine::decision::LeftOut;
 use crate::engine::decision::place::loading_contradicts;
 use crate::engine::decision::tender::bid::adders_lower_price;
@@ -18,7 +18,8 @@ use crate::engine::economics::traps;
 use crate::engine::flags::Flags;
 use crate::engine::loading::{Profile, Ratios};
 use crate::engine::transformer::losses::{self, quoted};
-use crate::engine::transformer::{plausibility, vector_group};
+use crate::engine::transformer::plausibility::{self, looks_in_kw};
+use crate::engine::transformer::vector_group;
 use crate::engine::working::Silent;
 use crate::study::tender::{BasisForFactors, looks_per_watt};
 use crate::study::test_report::TestedUnit;
@@ -61,7 +62,7 @@ impl Kind {
 /// One doubt.
 #[derive(Clone, Debug, PartialEq, Eq, Serialize)]
 pub struct Doubt {
-    /// What it is about: `unit`, `test report`, `offer`, `lot`, `bid` or `basis`.
+    /// What it is about: `unit`, `offer`, `lot`, `bid`, `measured` or `basis`.
     pub subject: &'static str,
     /// Its key.
     pub key: String,
@@ -143,8 +144,16 @@ pub fn each_doubt(
                 doubts.flag(of, "factor_a_per_kw", Kind::Implausible, Flags::FACTOR_SCALE);
             }
         }
+        let lot_of = |lot: &str| sheet.lots.iter().find(|of| of.lot == lot);
         for bid in &sheet.bids {
-            doubts.bid(bid, sheet.lots.iter().find(|lot| lot.lot == bid.lot));
+            let lot = lot_of(&bid.lot);
+            doubts.bid(bid, lot);
+            let measured: Vec<&Measured> = sheet
+                .measured
+                .iter()
+                .filter(|unit| unit.lot == bid.lot && unit.bid == bid.bid)
+                .collect();
+            doubts.measured(bid, lot, &measured);
         }
     }
     let names = book.bases()?;
@@ -418,6 +427,25 @@ impl Doubts<'_> {
         }
         if bid.price.0 == 0 {
             self.add(of, "price", Kind::Implausible, "costs nothing");
+        }
+    }
+
+    /// The measured units of a bid.
+    fn measured(&mut self, bid: &Bid, lot: Option<&Lot>, units: &[&Measured]) {
+        let Some(lot) = lot else { return };
+        let rated_kva = bid.rated_kva.unwrap_or(lot.rated_kva);
+        for unit in units {
+            let key = format!("{}/{}/{}/{}", unit.tender, unit.lot, unit.bid, unit.serial);
+            if looks_in_kw(rated_kva, unit.no_load_loss_w, unit.load_loss_w) {
+                let of = ("measured", key.as_str());
+                self.flag(of, "no_load_loss_w", Kind::Implausible, Flags::LOSS_SCALE);
+            }
+        }
+        let quantity = lot.quantity.unwrap_or(1);
+        if i64::try_from(units.len()).is_ok_and(|units| units > quantity) {
+            let key = format!("{}/{}/{}", bid.tender, bid.lot, bid.bid);
+            let what = format!("{} units are measured, the lot has {quantity}", units.len());
+            self.add(("measured", &key), "serial", Kind::Contradictory, what);
         }
     }
 

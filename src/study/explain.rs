@@ -73,12 +73,13 @@ impl StepRow {
         for (n, row) in rows.iter().enumerate() {
             let unit = row.unit.replace(MONEY, currency);
             if Self::goes_on(rows, n) {
-                let (of, value) = (&row.of, row.value);
+                let (of, value) = (&row.of, readable(row.value));
                 lines.push(format!("{indent}{of}: {} = {value} {unit}", row.substituted));
                 continue;
             }
             if let Some(symbol) = row.formula.strip_suffix(" = as stated") {
-                lines.push(format!("{indent}{symbol} = {} {unit}   {}", row.value, row.name));
+                let value = readable(row.value);
+                lines.push(format!("{indent}{symbol} = {value} {unit}   {}", row.name));
                 continue;
             }
             lines.push(format!("{indent}{}", row.name));
@@ -87,11 +88,17 @@ impl StepRow {
             if !row.formula.ends_with(&row.substituted) {
                 lines.push(format!("{indent}  = {}", row.substituted));
             }
-            lines.push(format!("{indent}  = {} {unit}   [{}]", row.value, row.source));
+            let value = readable(row.value);
+            lines.push(format!("{indent}  = {value} {unit}   [{}]", row.source));
             lines.extend(Self::lines(&row.steps, depth + 1, currency));
         }
         lines
     }
+}
+
+/// A value as text shows it: twelve significant digits, which leaves out the noise of the last ones. JSON is exact.
+fn readable(value: f64) -> f64 {
+    format!("{value:.11e}").parse().unwrap_or(value)
 }
 
 /// How a figure comes about; the last step is the figure.
@@ -226,4 +233,36 @@ pub(super) fn nth<'a, T>(list: &'a [T], n: &str) -> Result<(&'a T, usize), Refus
     let place = n.parse().ok();
     let item = place.and_then(|n: usize| Some((list.get(n)?, n)));
     item.ok_or_else(|| Refusal::new("figure", n, "is no place in the result"))
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// Text leaves out the noise of the last digits and names the currency; JSON is the number itself.
+    #[test]
+    fn text_is_readable_and_json_is_exact() {
+        let noisy = 36_552.659_999_999_996;
+        let row = |unit| StepRow {
+            name: "owning cost".to_owned(),
+            formula: "TOC = a + b".to_owned(),
+            substituted: "1 + 2".to_owned(),
+            value: noisy,
+            unit,
+            source: "definition",
+            of: String::new(),
+            steps: Vec::new(),
+        };
+        let shown = |unit| StepRow::lines(&[row(unit)], 0, "EUR").join("\n");
+        assert!(
+            shown("money").ends_with("\n  = 36552.66 EUR   [definition]"),
+            "{}",
+            shown("money")
+        );
+        assert!(shown("money/kW").contains("= 36552.66 EUR/kW "));
+        let json = serde_json::to_string(&row("money")).expect("plain data");
+        assert!(json.contains("36552.659999999996") && json.contains("\"money\""), "{json}");
+        assert_eq!([readable(0.0), readable(1.0 / 3.0)], [0.0, 0.333_333_333_333]);
+        assert!(readable(f64::MAX).is_finite());
+    }
 }

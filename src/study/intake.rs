@@ -112,6 +112,9 @@ pub struct Report {
     pub stored: bool,
     /// What is wrong.
     pub problems: Problems,
+    /// What is doubtful, though taken.
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    pub warnings: Vec<String>,
 }
 
 /// Why a file could not even be judged.
@@ -162,6 +165,7 @@ pub fn import(
         rows: 0,
         bad: 0,
         is_unfit: false,
+        warnings: Vec::new(),
     };
     match what {
         What::Profiles => intake.profiles(book, source),
@@ -187,6 +191,7 @@ struct Intake<'a> {
     /// Whether the file as a whole cannot be taken, bad rows left or not.
     is_unfit: bool,
     problems: Problems,
+    warnings: Vec<String>,
 }
 
 impl Intake<'_> {
@@ -217,6 +222,7 @@ impl Intake<'_> {
             rejected,
             stored,
             problems: self.problems,
+            warnings: self.warnings,
         }
     }
 }

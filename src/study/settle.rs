@@ -15,9 +15,11 @@ use super::tender::{
     BasisForFactors, award_of, bids_of, bring, factor_scale, find_bid, find_lot, terms,
     terms_at_award,
 };
+use crate::engine::Refusal;
 use crate::engine::columns::{Award, Bid, Lot, Measured, Settlement, TenderSheet, WindingMetal};
 use crate::engine::decision::tender::Terms;
 use crate::engine::decision::tender::bid::Comparable;
+use crate::engine::decision::tender::rates::amount_in_currency;
 use crate::engine::decision::tender::settlement::{
     Delivered, beyond, delivered, mean, mean_cost, penalty_of_mean, penalty_of_units,
 };
@@ -75,6 +77,14 @@ pub struct LotSettlement {
     pub awarded_at: Option<String>,
     /// What is doubtful about the factors or the lot.
     pub flags: Vec<&'static str>,
+    /// Penalty of the units that remain if those that may be rejected are; none where no unit may.
+    pub penalty_without_rejectable: Option<f64>,
+    /// Currency of the bid, where it is another than the tender's.
+    pub bid_currency: Option<String>,
+    /// The rate stored with the tender: one unit of that currency in the tender's.
+    pub bid_rate: Option<f64>,
+    /// The penalty in the currency of the bid.
+    pub penalty_in_bid_currency: Option<f64>,
 }
 
 /// Guaranteed losses of one unit.
@@ -90,6 +100,8 @@ pub struct Guaranteed {
     pub auxiliary_loss_w: f64,
     /// The lot's reference temperature.
     pub reference_temp_c: Option<f64>,
+    /// The temperature at which the bid quoted its load loss.
+    pub quoted_temp_c: Option<f64>,
     /// The lot's rule for losses above the guarantee.
     pub tolerance: &'static str,
     /// Winding metal, by which a test at another temperature is corrected.
@@ -144,6 +156,8 @@ pub struct UnitSettlement {
     pub tested_on: Option<String>,
     /// Parts of the tolerance that it exceeds.
     pub exceeds: Vec<ExceedsRow>,
+    /// The penalty in the currency of the bid, where it is another than the tender's.
+    pub penalty_in_bid_currency: Option<f64>,
 }
 
 /// A part of the tolerance that a unit exceeds; percent of the guarantee.
@@ -221,6 +235,8 @@ struct Guarantee<'a> {
     units: Vec<&'a Measured>,
     flags: Flags,
     award: Option<&'a Award>,
+    /// Currency of the bid and its rate, where it is another than the tender's.
+    foreign: Option<(&'a str, f64)>,
 }
 
 impl<'a> Guarantee<'a> {
@@ -239,7 +255,10 @@ impl<'a> Guarantee<'a> {
         // As it is shown wherever the tender is.
         let flags = flags.with_if(factor_scale(sheet, &terms)?, Flags::FACTOR_SCALE);
         let units = measured_of(sheet, bid).collect();
-        Ok(Self { terms, bid, promise, units, flags, award })
+        let foreign = bid.currency.as_deref().filter(|code| *code != sheet.tender.currency);
+        let rated = |code| Ok::<_, Refusal>((code, terms.rates.of(Some(code))?));
+        let foreign = foreign.map(rated).transpose()?;
+        Ok(Self { terms, bid, promise, units, flags, award, foreign })
     }
 
     fn rule(&self) -> Settlement {
@@ -264,13 +283,14 @@ impl<'a> Guarantee<'a> {
         let units: Vec<UnitSettlement> =
             self.units.iter().map(|unit| self.settle_unit(unit, of_mean)).collect();
         let tested = units.len();
+        let owed = of_mean.map_or_else(
+            || penalty_of_units(&mut Silent, units.iter().map(|unit| unit.penalty)),
+            |of_mean| penalty_of_mean(&mut Silent, of_mean, tested),
+        );
         LotSettlement {
             lot: self.bid.lot.clone(),
             bid: self.bid.bid.clone(),
-            penalty: of_mean.map_or_else(
-                || penalty_of_units(&mut Silent, units.iter().map(|unit| unit.penalty)),
-                |of_mean| penalty_of_mean(&mut Silent, of_mean, tested),
-            ),
+            penalty: owed,
             settlement: self.rule().word(),
             owning_cost_promised: self.promise.owning_cost(&mut Silent).total(),
             owning_cost_delivered: mean_cost(
@@ -289,6 +309,7 @@ impl<'a> Guarantee<'a> {
                 load_loss_w: losses.load_loss_w,
                 auxiliary_loss_w: losses.auxiliary_loss_w,
                 reference_temp_c: self.terms.lot.reference_temp_c,
+                quoted_temp_c: self.bid.reference_temp_c,
                 tolerance: self.terms.tolerance().word(),
                 winding_metal: self.bid.winding_metal.unwrap_or(WindingMetal::Copper).word(),
                 stray_share_pu: self.terms.stray_share_pu,
@@ -301,8 +322,32 @@ impl<'a> Guarantee<'a> {
             awarded_to: self.award.map(|award| award.bid.clone()),
             awarded_at: self.award.map(|award| award.awarded_at.clone()),
             flags: self.flags.keys(),
+            penalty_without_rejectable: self.penalty_of_accepted(&mut Silent, &units),
+            bid_currency: self.foreign.map(|(code, _)| code.to_owned()),
+            bid_rate: self.foreign.map(|(_, rate)| rate),
+            penalty_in_bid_currency: self
+                .foreign
+                .map(|(_, rate)| amount_in_currency(&mut Silent, owed, rate)),
             units,
         }
+    }
+
+    /// The penalty of the units that may not be rejected; none where none may.
+    fn penalty_of_accepted<R: Recorder>(&self, w: &mut R, units: &[UnitSettlement]) -> Option<f64> {
+        if !units.iter().any(|unit| unit.rejectable) {
+            return None;
+        }
+        let kept = || units.iter().zip(&self.units).filter(|(unit, _)| !unit.rejectable);
+        Some(match self.rule() {
+            Settlement::Unit => penalty_of_units(w, kept().map(|(unit, _)| unit.penalty)),
+            Settlement::LotMean => {
+                let excesses: Vec<Excess> =
+                    kept().map(|(_, unit)| self.delivered(unit).excess).collect();
+                let mean = mean(w, &excesses);
+                let of_mean = penalty(w, &self.promise.factors, &mean);
+                penalty_of_mean(w, of_mean, excesses.len())
+            }
+        })
     }
 
     /// A unit as a bid with the losses that were measured.
@@ -316,12 +361,13 @@ impl<'a> Guarantee<'a> {
         let (excess, factors) = (delivered.excess, &self.promise.factors);
         let (exceeded, rejectable) = beyond(&mut Silent, &self.terms, &self.promise, &excess);
         let as_delivered = self.as_delivered(&mut Silent, unit);
+        let owed = of_mean.unwrap_or_else(|| penalty(&mut Silent, factors, &excess));
         UnitSettlement {
             serial: unit.serial.clone(),
             no_load_excess_w: excess.no_load_w,
             load_excess_w: excess.load_w,
             auxiliary_excess_w: excess.auxiliary_w,
-            penalty: of_mean.unwrap_or_else(|| penalty(&mut Silent, factors, &excess)),
+            penalty: owed,
             beyond_tolerance: !exceeded.is_empty(),
             rejectable,
             owning_cost_delivered: as_delivered.owning_cost(&mut Silent).total(),
@@ -340,6 +386,9 @@ impl<'a> Guarantee<'a> {
                     allowed_pct,
                 })
                 .collect(),
+            penalty_in_bid_currency: self
+                .foreign
+                .map(|(_, rate)| amount_in_currency(&mut Silent, owed, rate)),
         }
     }
 }

@@ -124,8 +124,28 @@ pub fn working(
     let bid = find_bid(sheet, &lot.lot, bid)?;
     let mut factors = Working::default();
     let (terms, _) = terms(&mut factors, sheet, basis, lot)?;
+    opened(&terms, factors, bid)
+}
+
+/// The same under the terms of the lot's award, whose factors are kept with it; none where it is not awarded.
+///
+/// # Errors
+/// As [`working`].
+pub fn working_as_awarded(
+    sheet: &TenderSheet,
+    basis: Option<&BasisForFactors>,
+    lot: &str,
+    bid: &str,
+) -> Result<Option<BidWorking>, StudyError> {
+    let Some(award) = award_of(sheet, lot) else { return Ok(None) };
+    let bid = find_bid(sheet, lot, bid)?;
+    let (terms, _) = terms_at_award(sheet, basis, find_lot(sheet, lot)?, award)?;
+    opened(&terms, Working::default(), bid).map(Some)
+}
+
+fn opened(terms: &Terms, factors: Working, bid: &Bid) -> Result<BidWorking, StudyError> {
     let mut on_terms = Working::default();
-    let comparable = bring(&mut on_terms, &terms, bid)?;
+    let comparable = bring(&mut on_terms, terms, bid)?;
     let open = |figure: &dyn Fn(&mut Working)| {
         let mut working = Working::default();
         figure(&mut working);
@@ -138,10 +158,10 @@ pub fn working(
             comparable.owning_cost(w);
         }),
         owning_cost_at_tolerance: open(&|w| {
-            comparable.at_tolerance(w, &terms);
+            comparable.at_tolerance(w, terms);
         }),
         lot_cost: open(&|w| {
-            comparable.lot_cost(w, &terms);
+            comparable.lot_cost(w, terms);
         }),
     })
 }
@@ -226,14 +246,14 @@ pub(super) fn terms_at_award<'a>(
     };
     let tender = format!("tender {}", sheet.tender.tender);
     let rates = Rates::new(&sheet.tender, &sheet.rates).map_err(StudyError::refused(tender))?;
-    let first_year = basis.map(|basis| basis.assumptions.first_year);
+    let assumptions = basis.map(|basis| basis.assumptions);
     let terms = Terms {
         lot,
         rates,
         factors,
         stray_share_pu: award.stray_share_pu,
-        near_tie_pct: lot.near_tie_pct.unwrap_or(0.0),
-        purchase: legal::purchase(&sheet.tender, first_year),
+        near_tie_pct: lot.near_tie_pct.or(assumptions.map(|a| a.near_tie_pct)).unwrap_or(0.0),
+        purchase: legal::purchase(&sheet.tender, assumptions.map(|a| a.first_year)),
     };
     Ok((terms, Flags::NONE))
 }
@@ -306,6 +326,7 @@ impl<'a> Assessed<'a> {
             near_tie,
             excluded: self.found.misses.clone(),
             flags: self.on_terms.flags.with(self.found.flags).keys(),
+            limits_unknown: self.found.unknown.clone(),
             losses: self.on_terms.losses,
             misses: self.misses.clone(),
         }
@@ -328,6 +349,12 @@ impl<'a> Judged<'a> {
         lot: &'a Lot,
     ) -> Result<Self, StudyError> {
         let (terms, flags) = terms(&mut Silent, sheet, basis, lot)?;
+        Self::under(sheet, terms, flags)
+    }
+
+    /// The bids of a lot under some terms.
+    fn under(sheet: &'a TenderSheet, terms: Terms<'a>, flags: Flags) -> Result<Self, StudyError> {
+        let lot = terms.lot;
         let bids = bids_of(sheet, &lot.lot).map(|bid| Assessed::new(&terms, bid));
         let bids: Vec<Assessed> = bids.collect::<Result<_, _>>()?;
         let standings: Vec<Standing> = bids.iter().map(Assessed::standing).collect();
@@ -353,8 +380,34 @@ fn evaluate_lot(
     basis: Option<&BasisForFactors>,
     lot: &Lot,
 ) -> Result<LotResult, StudyError> {
-    let judged = Judged::new(sheet, basis, lot)?;
-    let Judged { terms, ranking, contest, .. } = &judged;
+    result_of(sheet, basis, &Judged::new(sheet, basis, lot)?)
+}
+
+/// The evaluation of a lot under the terms of its award, with the bid that was recommended then; none where it is not
+/// awarded.
+///
+/// # Errors
+/// As [`evaluate`].
+pub fn as_awarded(
+    sheet: &TenderSheet,
+    basis: Option<&BasisForFactors>,
+    lot: &str,
+) -> Result<Option<LotResult>, StudyError> {
+    let Some(award) = award_of(sheet, lot) else { return Ok(None) };
+    let (terms, flags) = terms_at_award(sheet, basis, find_lot(sheet, lot)?, award)?;
+    // The factors are kept: nothing of the basis moves them.
+    let result = result_of(sheet, None, &Judged::under(sheet, terms, flags)?)?;
+    let recommended = award.recommended.clone();
+    Ok(Some(LotResult { recommended, as_awarded: true, ..result }))
+}
+
+fn result_of(
+    sheet: &TenderSheet,
+    basis: Option<&BasisForFactors>,
+    judged: &Judged,
+) -> Result<LotResult, StudyError> {
+    let Judged { terms, ranking, contest, .. } = judged;
+    let lot = terms.lot;
     let contestant = |j| judged.contestant(j);
     let map = WinnerMap::new(&contest.planes, &terms.factors);
     let borders = contest.borders(&map, contestant);
@@ -385,20 +438,22 @@ fn evaluate_lot(
         nearest_border,
         near_tie_pct: terms.near_tie_pct,
         computed: Computed::by(lot),
+        stray_share_pu: terms.stray_share_pu,
         award,
+        as_awarded: false,
         risk: None,
     })
 }
 
-/// Whether every bid's capitalised losses are under 1 % of its price.
+/// Whether the no-load and the load loss of every bid are capitalised at under 1 % of its price. Auxiliaries and adders
+/// are left out: a right factor of theirs would hide wrong ones.
 fn factors_look_per_watt<'a>(costs: impl IntoIterator<Item = &'a OwningCost>) -> bool {
     let mut costs = costs.into_iter().peekable();
-    costs.peek().is_some()
-        && costs.all(|c| c.no_load_cost + c.load_cost + c.auxiliary_cost < 0.01 * c.price)
+    costs.peek().is_some() && costs.all(|c| c.no_load_cost + c.load_cost < 0.01 * c.price)
 }
 
-/// Whether the factors of a lot look like money per W instead of per kW: every bid's capitalised losses are under 1 %
-/// of its price.
+/// Whether the factors of a lot look like money per W instead of per kW: no-load and load loss of every bid are
+/// capitalised at under 1 % of its price.
 ///
 /// # Errors
 /// As [`evaluate`].
@@ -501,6 +556,7 @@ impl Contest {
             losses.load_loss_w,
             &winner.factors,
         ));
+        found.extend(field.of_stray_share(w, terms.stray_share_pu));
         if let Some(basis) = basis.filter(|_| Computed::by(terms.lot).any()) {
             let at = format!("lot {}", terms.lot.lot);
             let of_basis = field.of_basis(w, terms.lot, &terms.rates, basis);

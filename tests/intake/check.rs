@@ -156,6 +156,20 @@ fn doubts_about_offers_bids_and_bases() {
     assert_eq!(about(&doubts, "T/L/torn"), [("total_loss_w", Kind::Contradictory)]);
     assert_eq!(about(&doubts, "plan"), [("discount_rate_pct", Kind::Implausible)]);
     assert!(doubts.iter().any(|d| d.key == "plan" && d.what.contains("6 is six percent")));
+    // Losses in kW, of a bid and of what was measured, and more units than the lot has.
+    let in_kw = "tender,lot,bid,price,no_load_loss_w,load_loss_w,reference_temp_c\nT,L,small,9000,0.5,4.6,75\n";
+    assert!(desk.text(What::Bids, "k.csv", in_kw).stored);
+    let measured = "tender,lot,bid,serial,no_load_loss_w,load_loss_w\n\
+        T,L,fine,1,500,4600\nT,L,fine,2,0,0\n";
+    assert!(desk.text(What::Measured, "m.csv", measured).stored);
+    let doubts = told(&desk);
+    assert_eq!(
+        about(&doubts, "T/L/small"),
+        [("no_load_loss_w", Kind::Implausible), ("load_loss_w", Kind::Implausible)]
+    );
+    assert_eq!(about(&doubts, "T/L/fine/1"), []);
+    assert_eq!(about(&doubts, "T/L/fine/2"), [("no_load_loss_w", Kind::Implausible)]);
+    assert_eq!(about(&doubts, "T/L/fine"), [("serial", Kind::Contradictory)]);
     let unknown = check(&desk.book, Some("plam"), &Watch::default()).expect_err("unknown");
     assert!(unknown.to_string().contains("did you mean plan?"), "{unknown}");
 }

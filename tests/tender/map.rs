@@ -42,6 +42,7 @@ fn random_bid(rng: &mut ChaCha8Rng) -> Plane {
         no_load_kw: p0,
         load_kw: pk,
         auxiliary_kw: if rng.random_range(0..4) == 0 { rng.random_range(0.0..0.1) } else { 0.0 },
+        ..Plane::default()
     }
 }
 
@@ -53,6 +54,7 @@ fn mix(a: &Plane, b: &Plane, part: f64) -> Plane {
         no_load_kw: mix(a.no_load_kw, b.no_load_kw),
         load_kw: mix(a.load_kw, b.load_kw),
         auxiliary_kw: mix(a.auxiliary_kw, b.auxiliary_kw),
+        ..Plane::default()
     }
 }
 

@@ -19,7 +19,7 @@ fn shares_agree_with_scipy() {
                 fixed: number(&bid[0]),
                 no_load_kw: number(&bid[1]),
                 load_kw: number(&bid[2]),
-                auxiliary_kw: 0.0,
+                ..Plane::default()
             })
             .collect();
         let factors = LossFactors {

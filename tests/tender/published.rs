@@ -107,6 +107,15 @@ fn factors_per_watt_are_noticed() {
     };
     assert_eq!(of(4500.0, 2000.0), (33_125.0, vec![]));
     assert_eq!(of(4.5, 2.0).1, ["factor_scale"]);
+    // Neither a right factor of auxiliaries nor adders hide it.
+    let fan = Bid {
+        auxiliary_loss_w: Some(60.0),
+        freight_cost: Some(crate::sheets::money(2000.0)),
+        ..bid("A", 24_000.0, 250.0, 4000.0)
+    };
+    let aux_right = sheet("USD", lot(1000.0, 4.5, 2.0, 4500.0), vec![fan]);
+    let result = evaluate(&aux_right, None, None).expect("complete");
+    assert_eq!(result.lots[0].flags, ["factor_scale"]);
 }
 
 /// A and B by annuity: 7 %, 25 years, 0.1 per kWh, 8760 h, RMS load 0.4 (form of a manufacturer's FAQ, numbers

@@ -211,3 +211,74 @@ fn price_series_take_no_flat_price() {
     let series = ask(&sheet, Some(&spot), 5).expect("complete");
     assert_eq!(series.cloud, ask(&flat, None, 5).expect("complete").cloud);
 }
+
+/// A bid quoted at 85 °C for a lot at 75 °C with its split unknown: under 0 stray it has the least owning cost, with
+/// more of it the rival has. The lot states its factors: nothing else is uncertain.
+#[test]
+fn the_stray_share_of_converted_bids_acts() {
+    let lot = Lot {
+        lot: "L".into(),
+        rated_kva: 630.0,
+        reference_temp_c: Some(75.0),
+        factor_a_per_kw: Some(10_000.0),
+        factor_b_per_kw: Some(3000.0),
+        factor_aux_per_kw: Some(9000.0),
+        ..Lot::blank()
+    };
+    let at = |c: f64, bid: Bid| Bid { reference_temp_c: Some(c), ..bid };
+    let bids = vec![
+        at(85.0, bid("hot", 10_000.0, 500.0, 4500.0)),
+        at(75.0, bid("cold", 10_000.0, 500.0, 4450.0)),
+    ];
+    let tender = sheet("EUR", lot, bids);
+    let with = |share: Option<f64>| Basis { stray_share_pu: share, ..basis("EUR", 25, 6.0, 0.09) };
+    let evaluated = |share: f64| {
+        let (assumptions, market) = resolved(&with(Some(share)));
+        let today = BasisForFactors { assumptions: &assumptions, market: &market };
+        evaluate(&tender, Some(&today), None).expect("complete").lots.remove(0)
+    };
+    let uncertain = BasisSheet {
+        basis: with(None),
+        ranges: vec![range("stray_share_pu", Distribution::Uniform, 0.0, 0.4)],
+        budgets: Vec::new(),
+    };
+    let (assumptions, market) = resolved(&uncertain.basis);
+    let today = BasisForFactors { assumptions: &assumptions, market: &market };
+    let ask = |draws: usize| {
+        let question =
+            Question { basis: &uncertain, series: None, correlations: &[], seed: 7, draws };
+        risk(&tender, &today, "L", &question).expect("complete")
+    };
+    let result = ask(4000);
+    let (low, high) = (evaluated(0.0), evaluated(0.4));
+    let cost = |lot: &ironhum::study::tender::LotResult| {
+        lot.bids.iter().find(|bid| bid.bid == "hot").expect("known").owning_cost
+    };
+    let swing = &result.swing[0];
+    assert_eq!((swing.quantity, result.swing.len()), ("stray_share_pu", 1));
+    near(swing.owning_cost_low, cost(&low), 1e-12);
+    near(swing.owning_cost_high, cost(&high), 1e-12);
+    assert_eq!((swing.winner_low.as_str(), swing.winner_high.as_str()), ("hot", "cold"));
+    assert_eq!(low.least_owning_cost.as_deref(), Some("hot"));
+    assert_eq!(high.least_owning_cost.as_deref(), Some("cold"));
+    // It must move to where both cost the same, and that part of the draws is won by the converted bid.
+    let change = low.changes.0.iter().find(|change| change.quantity == "stray_share_pu");
+    let change = change.expect("a bid is converted");
+    let up = change.up.as_ref().expect("cold wins above");
+    assert_eq!((change.base, &change.down, up.bid.as_str()), (0.0, &None, "cold"));
+    let there = evaluated(up.to);
+    near(there.bids[0].owning_cost, there.bids[1].owning_cost, 1e-12);
+    near(result.bids[0].probability_pu, up.to / 0.4, 0.03);
+    // The same bytes at any thread count.
+    let at = |threads: usize| {
+        let pool =
+            rayon::ThreadPoolBuilder::new().num_threads(threads).build().expect("starts threads");
+        serde_json::to_string(&pool.install(|| ask(3001))).expect("plain data")
+    };
+    assert_eq!(at(1), at(3));
+    // Where no bid is converted it moves nothing, and is not told.
+    let mut plain = tender.clone();
+    plain.bids[0].reference_temp_c = Some(75.0);
+    let lot = evaluate(&plain, Some(&today), None).expect("complete").lots.remove(0);
+    assert!(lot.changes.0.iter().all(|change| change.quantity != "stray_share_pu"));
+}

@@ -78,6 +78,11 @@ fn tests_come_to_the_lots_temperature_and_rating() {
 
     let corrected = settled(lot.clone(), bid.clone(), vec![measured("A", "1", 200.0, 3900.0)]);
     near(corrected.units[0].load_excess_w, 3900.0 - 4000.0 * 300.0 / 310.0, 1e-12);
+    // Nothing says that the test was corrected, and the bid was quoted at another temperature.
+    assert_eq!(corrected.units[0].flags, ["split_unknown", "test_temp_blank"]);
+    let same = Bid { reference_temp_c: Some(75.0), ..bid.clone() };
+    let plain = settled(lot.clone(), same, vec![measured("A", "1", 200.0, 3900.0)]);
+    assert!(plain.units[0].flags.is_empty());
     let no_reference = Lot { reference_temp_c: None, ..lot };
     let as_read = settled(no_reference, bid, vec![cold]);
     assert_eq!(as_read.units[0].load_excess_w, -500.0);
@@ -145,4 +150,56 @@ fn json_has_the_keys_of_the_contract() {
     let of_unit =
         "serial no_load_excess_w load_excess_w auxiliary_excess_w penalty beyond_tolerance ";
     assert!(keys(&json["lots"][0]["units"][0]).starts_with(of_unit));
+}
+
+/// 0.54 and 4.6 are kW in columns of W; 0 W was not measured. Told of bid and unit, rejected is neither.
+#[test]
+fn kw_in_a_column_of_watt_is_doubted() {
+    let lot = lot(630.0, 10_000.0, 3000.0, 0.0);
+    let sound = || bid("A", 9000.0, 540.0, 4600.0);
+    let flags = |bid: Bid, p0, pk| {
+        settled(lot.clone(), bid, vec![measured("A", "1", p0, pk)]).units.remove(0).flags
+    };
+    assert!(!flags(sound(), 540.0, 4600.0).contains(&"loss_scale"));
+    for (p0, pk) in [(0.54, 4600.0), (540.0, 4.6), (0.0, 0.0)] {
+        assert!(flags(sound(), p0, pk).contains(&"loss_scale"), "{p0} {pk}");
+    }
+    let evaluated = |p0, pk| {
+        let bids = vec![bid("A", 9000.0, p0, pk)];
+        let result = ironhum::study::tender::evaluate(&sheet("USD", lot.clone(), bids), None, None);
+        result.expect("complete").lots.remove(0).bids.remove(0)
+    };
+    assert!(!evaluated(540.0, 4600.0).flags.contains(&"loss_scale"));
+    let in_kw = evaluated(0.54, 4.6);
+    assert!(in_kw.flags.contains(&"loss_scale"));
+    assert_eq!(in_kw.rank, Some(1));
+}
+
+/// A unit that reads just what was guaranteed, at the temperature of the quotation, is never charged: the two forms of the
+/// stray share leave room, they do not take it. And the letter says that both are used.
+#[test]
+fn a_unit_at_its_guarantee_is_not_charged() {
+    let lot = Lot { reference_temp_c: Some(75.0), ..lot(400.0, 9000.0, 3000.0, 0.0) };
+    let bid = Bid { reference_temp_c: Some(85.0), ..bid("A", 900.0, 400.0, 4000.0) };
+    for share in [0.0, 0.1, 0.3, 0.5, 1.0] {
+        let basis = ironhum::engine::columns::Basis {
+            stray_share_pu: Some(share),
+            ..crate::sheets::basis("USD", 10, 5.0, 0.1)
+        };
+        let (assumptions, market) = crate::sheets::resolved(&basis);
+        let basis =
+            ironhum::study::tender::BasisForFactors { assumptions: &assumptions, market: &market };
+        let mut sheet = sheet("USD", lot.clone(), vec![bid.clone()]);
+        sheet.measured =
+            vec![Measured { test_temp_c: Some(85.0), ..measured("A", "1", 400.0, 4000.0) }];
+        let result = settle(&sheet, Some(&basis), None).expect("complete");
+        let excess = result.lots[0].units[0].load_excess_w;
+        assert!(excess <= 1e-9, "{share}: {excess}");
+        // s(1−s)(r − 1/r)² of the guarantee is all that they differ by.
+        let r: f64 = 320.0 / 310.0;
+        let room = 4000.0 * share * (1.0 - share) * (r - 1.0 / r).powi(2);
+        assert!(excess >= -1.1 * room - 1e-9, "{share}: {excess} {room}");
+        let letter = ironhum::study::settle::letter::settlement(&result).to_markdown();
+        assert!(letter.contains("a unit exactly at its guarantee is not charged"), "{letter}");
+    }
 }

@@ -110,6 +110,9 @@ fn limits_exclude_by_key_and_equality_passes() {
 
     let blank = only(strict.clone(), bid("A", 1.0, 500.0, 4000.0));
     assert!(blank.excluded.is_empty() && blank.flags.contains(&"limit_unknown"));
+    let named =
+        ["vector_group", "impedance_pct", "max_sound_db", "max_mass_kg", "max_delivery_weeks"];
+    assert_eq!(blank.limits_unknown, named);
 
     let poor = Bid {
         rated_kva: Some(399.0),

@@ -4,7 +4,7 @@ use std::sync::{Arc, Mutex};
 
 use ironhum::book::{Actor, Book};
 use ironhum::engine::columns::Award;
-use ironhum::study::tender::decide::award_as_shown;
+use ironhum::study::tender::decide::{Choice, award_as_shown};
 use ironhum::tui::{JournalLine, Session};
 
 use crate::bench::{ASCII, Bench, COLOUR, PLAIN};
@@ -19,7 +19,8 @@ fn session() -> (Session, Arc<Mutex<Book>>) {
         let actor =
             Actor { who: "ana".into(), at: "2026-12-01T09:30:00Z".into(), why: asked.why.clone() };
         let shown = (&*asked.sheet, &*asked.basis);
-        award_as_shown(&mut book, shown, &asked.lot, &asked.bid, &actor)?;
+        let choice = Choice { lot: &asked.lot, bid: &asked.bid, despite: true };
+        award_as_shown(&mut book, shown, choice, &actor)?;
         let journal = book.journal(3)?.into_iter().map(|entry| JournalLine {
             at: entry.at,
             who: entry.who,

@@ -364,8 +364,8 @@ record! {
         serial: String, C::id().required(), "serial number";
         no_load_loss_w: f64, LOSS_W.required(), "measured no-load loss";
         load_loss_w: f64, LOSS_W.required(), "measured load loss at rated current";
-        auxiliary_loss_w: Option<f64>, LOSS_W.blank("no excess"), "measured auxiliary loss";
-        test_temp_c: Option<f64>, C::real(-50.0, 250.0).blank("already corrected"), "winding temperature of the test";
+        auxiliary_loss_w: Option<f64>, LOSS_W.blank("not measured: no excess"), "measured auxiliary loss";
+        test_temp_c: Option<f64>, C::real(-50.0, 250.0).blank("loss is at the lot's reference temperature"), "winding temperature at which the load loss was read; not that of the quotation";
         tested_on: Option<String>, C::date(), "date of the test";
     }
 }
@@ -380,7 +380,7 @@ record! {
         factor_aux_per_kw: f64, C::real(-1e12, 1e12).required(), "value of a kW of auxiliary loss at the award";
         stray_share_pu: f64, SHARE_PU.required(), "stray part of a load loss whose split is not known, at the award";
         owning_cost: f64, C::real(-1e15, 1e15).required(), "owning cost of one unit at the award";
-        recommended: Option<String>, C::id(), "the bid that led at the award";
+        recommended: Option<String>, C::id(), "the bid that was recommended at the award";
         basis: Option<String>, C::id(), "the basis of the comparison";
         program: String, C::id().required(), "version of the program that compared";
         awarded_at: String, C::id().required(), "when (UTC)";

@@ -25,7 +25,7 @@ use chrono::NaiveDate;
 use crate::engine::columns::{Lot, Tolerance};
 use crate::engine::economics::loss_factors::LossFactors;
 
-pub use bid::Plane;
+pub use bid::{Plane, Valuation};
 pub use factors::BasisForFactors;
 pub use rates::Rates;
 

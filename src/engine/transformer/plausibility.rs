@@ -29,6 +29,16 @@ const RESISTANCE_PU: f64 = 0.05;
 const LARGE_KVA: f64 = 30_000.0;
 const LARGE_EFFICIENCY_PCT: f64 = 99.5;
 
+/// Losses of transformers lie above these (W per kVA of the rating); kW written in a column of W lie below.
+const LEAST_NO_LOAD_W_PER_KVA: f64 = 0.02;
+const LEAST_LOAD_W_PER_KVA: f64 = 0.2;
+
+/// Whether a loss is so low for the rating that kW may stand for W; 0 W is.
+pub fn looks_in_kw(rated_kva: f64, no_load_loss_w: f64, load_loss_w: f64) -> bool {
+    no_load_loss_w < LEAST_NO_LOAD_W_PER_KVA * rated_kva
+        || load_loss_w < LEAST_LOAD_W_PER_KVA * rated_kva
+}
+
 /// Doubts about a nameplate; what is blank is not looked at.
 pub fn nameplate(
     rated_kva: f64,
@@ -43,6 +53,17 @@ pub fn nameplate(
     {
         let why = format!("usual at {rated_kva} kVA are {from} to {to} %, rising with the voltage");
         doubts.push(Doubt { quantity: "impedance_pct", value: z, why });
+    }
+    for (quantity, loss, least) in [
+        ("no_load_loss_w", no_load_loss_w, LEAST_NO_LOAD_W_PER_KVA),
+        ("load_loss_w", load_loss_w, LEAST_LOAD_W_PER_KVA),
+    ] {
+        if let Some(value) = loss.filter(|loss| *loss > 0.0 && *loss < least * rated_kva) {
+            let why = format!(
+                "W is below {least} W per kVA of the rating: were kW written in a column of W?"
+            );
+            doubts.push(Doubt { quantity, value, why });
+        }
     }
     if let Some(pk) = load_loss_w
         && pk / (1000.0 * rated_kva) >= RESISTANCE_PU
@@ -175,6 +196,11 @@ mod tests {
         assert!(names(40_000.0, Some(16.2), Some(18_000.0), Some(136_000.0)).is_empty());
         assert_eq!(names(40_000.0, None, Some(80_000.0), Some(200_000.0)), ["load_loss_w"]);
         assert_eq!(names(50.0, None, None, Some(2500.0)), ["load_loss_w"]);
+        assert_eq!(names(630.0, None, Some(0.54), Some(4.6)), ["no_load_loss_w", "load_loss_w"]);
+        assert!(looks_in_kw(630.0, 0.54, 4600.0) && looks_in_kw(630.0, 540.0, 4.6));
+        assert!(looks_in_kw(630.0, 0.0, 4600.0) && !looks_in_kw(630.0, 230.0, 4600.0));
+        // The largest units have the lowest losses for their size.
+        assert!(!looks_in_kw(1_000_000.0, 150_000.0, 1_500_000.0));
         assert!(lamination(0.27).is_none() && lamination(2.7).is_some());
     }
 }

@@ -1,6 +1,6 @@
 //! Files of records: units, test reports, offers, bids, measured units. Row by row, never the whole file.
 
-use std::collections::{HashMap, HashSet};
+use std::collections::{BTreeSet, HashMap, HashSet};
 
 use super::ahead::{Batch, Read, read_ahead};
 use super::{Intake, IntakeError, Report, What};
@@ -46,7 +46,7 @@ impl Intake<'_> {
         let change = book.change(self.actor, Some(&self.file))?;
         let mut upsert = change.upsert(table, None, &layout.present(), self.options.clear_blank)?;
         let rules = Rules::of(rules, table.columns);
-        let mut ties = Ties::of(self.what, table, &change)?;
+        let mut ties = Ties::of(self.what, table, &change, self.actor.why.is_some())?;
         let put = |batch: &mut Batch| -> Result<(), IntakeError> {
             self.look(batch.bytes)?;
             for Read { row, values, faults } in batch.rows() {
@@ -65,11 +65,12 @@ impl Intake<'_> {
                         ties.same_bidder(known, values, |place, why| {
                             faults.push(fault(place, why));
                         });
-                        ties.keeps_awarded(known, values, |place, why| {
+                        ties.keeps_evidence(known, values, |place, why| {
                             faults.push(fault(place, why));
                         })?;
                     }
                     if faults.is_empty() {
+                        ties.note_lot(values);
                         upsert.put(known, values)?;
                         continue;
                     }
@@ -95,6 +96,7 @@ impl Intake<'_> {
             rejects.finish().map_err(IntakeError::Rejects)?;
         }
         drop(upsert);
+        self.warnings = ties.too_many()?;
         drop(ties);
         let tally = change.tally();
         if self.stays() {
@@ -182,10 +184,19 @@ struct Ties<'c> {
     profiles: HashSet<String>,
     /// Places of the naming columns.
     places: Vec<usize>,
+    /// Whether the change gives a reason.
+    reasoned: bool,
+    /// Tender and lot of measured units of the file.
+    measured: BTreeSet<(String, String)>,
 }
 
 impl<'c> Ties<'c> {
-    fn of(what: What, table: &Table, change: &'c Change<'c>) -> Result<Self, IntakeError> {
+    fn of(
+        what: What,
+        table: &Table,
+        change: &'c Change<'c>,
+        reasoned: bool,
+    ) -> Result<Self, IntakeError> {
         let columns: &[&str] = match what {
             What::Units => &["profile"],
             What::Tests => &["unit"],
@@ -198,7 +209,7 @@ impl<'c> Ties<'c> {
             _ => HashSet::new(),
         };
         let places = columns.iter().filter_map(|name| table.position(name)).collect();
-        Ok(Self { change, what, profiles, places })
+        Ok(Self { change, what, profiles, places, reasoned, measured: BTreeSet::new() })
     }
 
     fn judge(
@@ -282,34 +293,74 @@ impl<'c> Ties<'c> {
         }
     }
 
-    /// Holds that what a bid was awarded for stays; a remark may change.
-    fn keeps_awarded(
+    /// Holds that what a dispute may rest on stays: the bids of an awarded lot, a remark apart, and without a reason
+    /// the measured losses of a unit that is in the fleet.
+    fn keeps_evidence(
         &self,
         known: &Known,
         values: &[Value],
         mut broken: impl FnMut(usize, String),
     ) -> Result<(), IntakeError> {
-        if self.what != What::Bids {
+        let table = match self.what {
+            What::Bids => &BIDS,
+            What::Measured => &MEASURED,
+            _ => return Ok(()),
+        };
+        let remark = |place: &usize| table.columns[*place].name == "note";
+        let changed: Vec<usize> = known.differs(values).filter(|place| !remark(place)).collect();
+        if changed.is_empty() {
             return Ok(());
         }
-        let text = |place: usize| match &values[place] {
-            Value::Text(text) => text.as_str(),
+        let named = |name: &str| match table.position(name).map(|place| &values[place]) {
+            Some(Value::Text(text)) => text.as_str(),
             _ => "",
         };
-        let remark = |place: &usize| BIDS.columns[*place].name == "note";
-        let changed: Vec<usize> = known.differs(values).filter(|place| !remark(place)).collect();
-        let (tender, lot) = (text(self.places[0]), text(self.places[1]));
-        let bid = BIDS.position("bid").map_or("", text);
-        if changed.is_empty() || self.change.awarded(tender, lot)?.is_none_or(|a| a.bid != bid) {
-            return Ok(());
-        }
+        let [tender, lot, bid] = ["tender", "lot", "bid"].map(named);
+        let why = if self.what == What::Bids {
+            if self.change.awarded(tender, lot)?.is_none() {
+                return Ok(());
+            }
+            format!(
+                "would change bid {bid}: {tender}/{lot} is awarded, and what was offered for it stays; withdraw the \
+                 award first: ironhum award {tender} --lot {lot} --withdraw --why TEXT"
+            )
+        } else {
+            let serial = named("serial");
+            match self.change.delivered(tender, lot, bid, serial)? {
+                Some(unit) if !self.reasoned => format!(
+                    "would change what {serial} measured: it is in the fleet as {unit}, and what was settled stays; to \
+                     correct it import it alone and say why: --why TEXT"
+                ),
+                _ => return Ok(()),
+            }
+        };
         for place in changed {
-            let why = format!(
-                "would change: bid {bid} is awarded {tender}/{lot}, what it offers stays; withdraw the award first"
-            );
-            broken(place, why);
+            broken(place, why.clone());
         }
         Ok(())
+    }
+
+    /// Notes the lot of a measured unit.
+    fn note_lot(&mut self, values: &[Value]) {
+        if self.what != What::Measured {
+            return;
+        }
+        let text = |at: usize| shown(&values[self.places[at]]);
+        self.measured.insert((text(0), text(1)));
+    }
+
+    /// Lots of the file of which more units are measured now than they have.
+    fn too_many(&self) -> Result<Vec<String>, IntakeError> {
+        let mut said = Vec::new();
+        for (tender, lot) in &self.measured {
+            for (bid, measured, quantity) in self.change.measured_beyond(tender, lot)? {
+                said.push(format!(
+                    "{measured} units of bid {bid} are measured, but lot {lot} of tender {tender} has {quantity}: is a \
+                     serial number written in two ways, or does the unit belong to another lot?"
+                ));
+            }
+        }
+        Ok(said)
     }
 }
 

@@ -4,7 +4,7 @@ use super::{LotSettlement, SettleResult, UnitSettlement};
 use crate::exchange::letter::Column;
 use crate::exchange::{Letter, counted};
 use crate::study::figures::{group, short};
-use crate::study::tender::letter::{cautions, day, flag};
+use crate::study::tender::letter::{cautions, day, flag, flag_at};
 
 /// The settlement of a tender as a letter.
 pub fn settlement(result: &SettleResult) -> Letter {
@@ -54,7 +54,7 @@ pub(in crate::study) fn section(
     for (key, serials) in said {
         let all = serials.len() == lot.units.len();
         let of = if all { "all units".to_owned() } else { serials.join(", ") };
-        letter.warning(format!("{of}: {}", flag(key)));
+        letter.warning(format!("{of}: {}", flag_at(key, lot.guaranteed.stray_share_pu)));
     }
     for key in lot.flags.iter().filter(|key| **key != "factor_scale") {
         letter.warning(flag(key));
@@ -87,6 +87,13 @@ fn correction(letter: &mut Letter, lot: &LotSettlement) {
             short(g.stray_share_pu),
             short(reference)
         ));
+        if let Some(quoted) = g.quoted_temp_c.filter(|quoted| *quoted != reference) {
+            letter.text(format!(
+                "The guarantee came from {} °C with that share of the loss there, the tests with that share of the loss at {} °C. Between the two a test never comes out above the guarantee by the correction alone: a unit exactly at its guarantee is not charged.",
+                short(quoted),
+                short(reference)
+            ));
+        }
     }
 }
 
@@ -133,7 +140,8 @@ fn promise(letter: &mut Letter, lot: &LotSettlement, currency: &str) {
 fn units(letter: &mut Letter, lot: &LotSettlement, currency: &str) {
     let at =
         lot.guaranteed.reference_temp_c.map_or(String::new(), |c| format!(" at {} °C", short(c)));
-    let with_aux = lot.units.iter().any(|unit| unit.auxiliary_loss_w.is_some());
+    let with_aux = lot.guaranteed.auxiliary_loss_w > 0.0
+        || lot.units.iter().any(|unit| unit.auxiliary_loss_w.is_some());
     let mut columns = vec![
         Column::words("serial"),
         Column::words("tested on"),
@@ -148,6 +156,7 @@ fn units(letter: &mut Letter, lot: &LotSettlement, currency: &str) {
         columns.push(Column::figures("aux excess", "W"));
     }
     columns.push(Column::figures("penalty", currency));
+    columns.extend(lot.bid_currency.as_ref().map(|code| Column::figures("penalty", code)));
     columns.push(Column::words("remark"));
     let blank = || "–".to_owned();
     let row = |unit: &UnitSettlement| {
@@ -162,13 +171,45 @@ fn units(letter: &mut Letter, lot: &LotSettlement, currency: &str) {
             group(unit.load_excess_w, 1),
         ];
         if with_aux {
-            cells.push(unit.auxiliary_excess_w.map_or_else(blank, |w| group(w, 1)));
+            let not = || "not measured".to_owned();
+            cells.push(unit.auxiliary_excess_w.map_or_else(not, |w| group(w, 1)));
         }
         cells.push(group(unit.penalty, 2));
+        cells.extend(unit.penalty_in_bid_currency.map(|amount| group(amount, 2)));
         cells.push(if unit.beyond_tolerance { "beyond tolerance" } else { "" }.to_owned());
         cells
     };
     letter.table(columns, lot.units.iter().map(row).collect());
+}
+
+/// How each penalty comes about, in a line.
+fn comes_about(lot: &LotSettlement, currency: &str) -> Vec<String> {
+    let line = |of: &str, excesses: [f64; 3], owed: f64| {
+        let factors = [
+            ("A", lot.factor_a_per_kw),
+            ("B", lot.factor_b_per_kw),
+            ("A aux", lot.factor_aux_per_kw),
+        ];
+        let parts: Vec<String> = factors
+            .iter()
+            .zip(excesses)
+            .filter(|(_, excess)| *excess > 0.0)
+            .map(|((name, factor), w)| format!("{name} {} × {} W", group(*factor, 2), group(w, 1)))
+            .collect();
+        format!("{of}: ({})/1000 = {} {currency}", parts.join(" + "), group(owed, 2))
+    };
+    if let Some(mean) = &lot.mean_excess {
+        let excesses = [mean.no_load_excess_w, mean.load_excess_w, mean.auxiliary_excess_w];
+        let owed = lot.units.first().map_or(0.0, |unit| unit.penalty);
+        let of = format!("each of {} units, by the mean", lot.units.len());
+        return if owed > 0.0 { vec![line(&of, excesses, owed)] } else { Vec::new() };
+    }
+    let of_unit = |unit: &UnitSettlement| {
+        let aux = unit.auxiliary_excess_w.unwrap_or(0.0);
+        let excesses = [unit.no_load_excess_w, unit.load_excess_w, aux];
+        line(&unit.serial, excesses, unit.penalty)
+    };
+    lot.units.iter().filter(|unit| unit.penalty > 0.0).map(of_unit).collect()
 }
 
 fn outcome(letter: &mut Letter, lot: &LotSettlement, currency: &str) {
@@ -180,7 +221,28 @@ fn outcome(letter: &mut Letter, lot: &LotSettlement, currency: &str) {
             group(mean.auxiliary_excess_w, 1)
         ));
     }
-    letter.text(format!("Penalty: {} {currency}.", group(lot.penalty, 2)));
+    letter.points(comes_about(lot, currency));
+    let foreign = match (&lot.bid_currency, lot.bid_rate, lot.penalty_in_bid_currency) {
+        (Some(code), Some(rate), Some(amount)) => format!(
+            " ({} {code} at the rate stored with the tender, 1 {code} = {rate} {currency})",
+            group(amount, 2)
+        ),
+        _ => String::new(),
+    };
+    letter.text(format!("Penalty: {} {currency}{foreign}.", group(lot.penalty, 2)));
+    if let Some(rest) = lot.penalty_without_rejectable {
+        letter.text(format!(
+            "If the units that may be rejected are rejected, the penalty of the others: {} {currency}.",
+            group(rest, 2)
+        ));
+    }
+    if lot.guaranteed.auxiliary_loss_w > 0.0
+        && lot.units.iter().any(|unit| unit.auxiliary_loss_w.is_none())
+    {
+        letter.text(
+            "Auxiliary losses of some units were not measured: no excess is counted for them.",
+        );
+    }
     letter.text(format!(
         "Owning cost of one unit: promised {}, delivered {} {currency} (mean of the measured units, before the penalty).",
         group(lot.owning_cost_promised, 0),

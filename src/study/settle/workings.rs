@@ -3,11 +3,13 @@
 use super::{Guarantee, LotSettlement, settle};
 use crate::engine::columns::{Measured, Settlement};
 use crate::engine::decision::place::stated::{LOAD_LOSS, said};
+use crate::engine::decision::tender::rates::amount_in_currency;
 use crate::engine::decision::tender::settlement::{
     beyond, delivered, mean, mean_cost, penalty_of_mean, penalty_of_units,
 };
+use crate::engine::economics::loss_factors::LossFactors;
 use crate::engine::economics::penalty::penalty;
-use crate::engine::working::{Recorder as _, Silent, Step, Working};
+use crate::engine::working::{Formula, Recorder as _, Silent, Step, Working};
 use crate::study::StudyError;
 use crate::study::explain::{Explained, nth, numbers};
 use crate::study::tender::{Case, bring, factors, find_bid, find_lot};
@@ -19,10 +21,12 @@ const LABELS: &[&str] = &[
     "no_load_loss_w",
     "auxiliary_loss_w",
     "reference_temp_c",
+    "quoted_temp_c",
     "stray_share_pu",
     "test_load_loss_w",
     "test_temp_c",
     "allowed_pct",
+    "bid_rate",
 ];
 
 /// The settlement of a tender as a result that can be opened.
@@ -54,6 +58,18 @@ impl Explained for Settled<'_> {
                 return guarantee.state_unit(w, guarantee.units[m], place);
             }
             ["penalty"] => guarantee.state_lot_penalty(w, settled)?,
+            ["penalty_in_bid_currency"] => {
+                guarantee.state_lot_penalty(w, settled)?;
+                guarantee.in_bid_currency(w, settled.penalty);
+            }
+            ["penalty_without_rejectable"] => {
+                for (unit, own) in settled.units.iter().zip(&guarantee.units) {
+                    if guarantee.rule() == Settlement::Unit && !unit.rejectable {
+                        guarantee.state_unit_penalty(w, own)?;
+                    }
+                }
+                guarantee.penalty_of_accepted(w, &settled.units);
+            }
             ["owning_cost_promised"] => {
                 bring(w, &guarantee.terms, bid)?.owning_cost(w);
             }
@@ -76,9 +92,11 @@ impl Explained for Settled<'_> {
                 w.append(about(all, loss_of(quantity)));
             }
             _ => {
-                let (_, steps) = factors(sheet, basis, &lot.lot)?;
                 let mut all = Working::default();
-                all.append(steps);
+                match guarantee.award.filter(|award| award.bid == bid.bid) {
+                    Some(_) => kept(&mut all, &guarantee.terms.factors),
+                    None => all.append(factors(sheet, basis, &lot.lot)?.1),
+                }
                 bring(&mut all, &guarantee.terms, bid)?;
                 w.append(all.only(match place {
                     ["factor_a_per_kw"] => &["A"],
@@ -89,6 +107,31 @@ impl Explained for Settled<'_> {
         }
         Ok(())
     }
+}
+
+const KEPT_A: Formula = Formula {
+    name: "value of a kW of no-load loss, kept with the award",
+    symbol: "A",
+    formula: "as stated",
+    unit: "money/kW",
+    source: "the award; methods, section 8",
+};
+const KEPT_B: Formula = Formula {
+    name: "value of a kW of load loss at the lot's rating, kept with the award",
+    symbol: "B",
+    ..KEPT_A
+};
+const KEPT_AUX: Formula = Formula {
+    name: "value of a kW of auxiliary loss, kept with the award",
+    symbol: "A_aux",
+    ..KEPT_A
+};
+
+/// The factors of an award.
+fn kept(w: &mut Working, factors: &LossFactors) {
+    w.step(&KEPT_A, &[], factors.factor_a_per_kw);
+    w.step(&KEPT_B, &[], factors.factor_b_per_kw);
+    w.step(&KEPT_AUX, &[], factors.factor_aux_per_kw);
 }
 
 /// The loss that a quantity is of, as the steps name it.
@@ -126,6 +169,22 @@ impl Guarantee<'_> {
         Ok(())
     }
 
+    /// States the penalty of a unit in one step.
+    fn state_unit_penalty(&self, w: &mut Working, unit: &Measured) -> Result<(), StudyError> {
+        let mut all = Working::default();
+        self.state_penalty(&mut all, unit)?;
+        w.append(all.into_steps().pop());
+        w.about(&|| unit.serial.clone());
+        Ok(())
+    }
+
+    /// States an amount in the currency of the bid, where that is another.
+    fn in_bid_currency(&self, w: &mut Working, amount: f64) {
+        if let Some((_, rate)) = self.foreign {
+            amount_in_currency(w, amount, rate);
+        }
+    }
+
     fn state_lot_penalty(
         &self,
         w: &mut Working,
@@ -138,10 +197,7 @@ impl Guarantee<'_> {
             return Ok(());
         }
         for unit in &self.units {
-            let mut all = Working::default();
-            self.state_penalty(&mut all, unit)?;
-            w.append(all.into_steps().pop());
-            w.about(&|| unit.serial.clone());
+            self.state_unit_penalty(w, unit)?;
         }
         penalty_of_units(w, settled.units.iter().map(|unit| unit.penalty));
         Ok(())
@@ -157,6 +213,11 @@ impl Guarantee<'_> {
         let measured = delivered(&mut all, &self.terms, self.bid, &self.promise, unit);
         match place {
             ["penalty"] => self.state_penalty(w, unit)?,
+            ["penalty_in_bid_currency"] => {
+                self.state_penalty(w, unit)?;
+                let owed = w.steps().last().map_or(0.0, |step| step.value);
+                self.in_bid_currency(w, owed);
+            }
             ["owning_cost_delivered"] => {
                 self.as_delivered(w, unit).owning_cost(w);
             }

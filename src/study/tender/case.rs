@@ -1,13 +1,17 @@
 //! A tender of a book with the basis that fills what its lots leave open: what every command on a tender begins with.
 
 use super::risk::{Question, risk};
-use super::{BasisForFactors, LotFactors, TenderResult, award_of, evaluate, lot_factors};
+use super::{
+    BasisForFactors, BidWorking, LotFactors, LotResult, TenderResult, as_awarded, award_of,
+    evaluate, lot_factors, working, working_as_awarded,
+};
 use crate::book::{Book, BookError};
 use crate::engine::Refusal;
 use crate::engine::columns::{Lot, TenderSheet};
 use crate::engine::decision::Context;
 use crate::engine::decision::tender::factors::Computed;
 use crate::engine::decision::uncertainty::RankCorrelation;
+use crate::engine::economics::loss_factors::LossFactors;
 use crate::study::explain::MONEY;
 use crate::study::settle::{SettleResult, settle};
 use crate::study::{Desk, StudyError};
@@ -18,6 +22,8 @@ pub struct Case {
     /// The tender with all that came in for it.
     pub sheet: TenderSheet,
     basis: Option<(Desk, Context)>,
+    /// The lots as they were put out, where the factors that they state are set aside.
+    put_out: Option<Vec<Lot>>,
 }
 
 /// How a simulation is drawn.
@@ -35,6 +41,15 @@ impl Default for Draws {
     fn default() -> Self {
         Self { draws: 10_000, seed: 1, correlations: Vec::new() }
     }
+}
+
+/// The factors of a lot that states all of them.
+fn stated(lot: &Lot) -> Option<LossFactors> {
+    Some(LossFactors {
+        factor_a_per_kw: lot.factor_a_per_kw?,
+        factor_b_per_kw: lot.factor_b_per_kw?,
+        factor_aux_per_kw: lot.factor_aux_per_kw?,
+    })
 }
 
 impl Case {
@@ -81,19 +96,25 @@ impl Case {
     /// What the engine refuses of the basis.
     pub fn new(sheet: TenderSheet, desk: Option<Desk>) -> Result<Self, StudyError> {
         let ready = |desk: Desk| desk.context().map(|context| (desk, context));
-        Ok(Self { sheet, basis: desk.map(ready).transpose()? })
+        Ok(Self { sheet, basis: desk.map(ready).transpose()?, put_out: None })
     }
 
     /// The same case as if no lot stated its factors: each comes from the basis, so that its ranges and what it rests
     /// on show how safe a winner by published factors is.
     #[must_use]
     pub fn from_basis(mut self) -> Self {
+        self.put_out.get_or_insert_with(|| self.sheet.lots.clone());
         for lot in &mut self.sheet.lots {
             lot.factor_a_per_kw = None;
             lot.factor_b_per_kw = None;
             lot.factor_aux_per_kw = None;
         }
         self
+    }
+
+    /// Whether the factors that lots state are set aside.
+    pub fn is_from_basis(&self) -> bool {
+        self.put_out.is_some()
     }
 
     /// The basis, where there is one.
@@ -132,20 +153,54 @@ impl Case {
         evaluate(&self.sheet, self.basis().as_ref(), lot)
     }
 
+    /// The evaluation of an awarded lot by the terms of its award; none where it is not awarded, or where what lots
+    /// state is set aside.
+    ///
+    /// # Errors
+    /// As [`evaluate`].
+    pub fn as_awarded(&self, lot: &str) -> Result<Option<LotResult>, StudyError> {
+        if self.is_from_basis() {
+            return Ok(None);
+        }
+        as_awarded(&self.sheet, self.basis().as_ref(), lot)
+    }
+
+    /// The working of a bid as its bidder is answered: by the terms of the award as in [`Case::as_awarded`], else today's.
+    ///
+    /// # Errors
+    /// As [`working`].
+    pub fn answering(&self, lot: &str, bid: &str) -> Result<BidWorking, StudyError> {
+        let (sheet, basis) = (&self.sheet, self.basis());
+        let aside = self.is_from_basis();
+        let kept = if aside { None } else { working_as_awarded(sheet, basis.as_ref(), lot, bid)? };
+        match kept {
+            Some(kept) => Ok(kept),
+            None => working(sheet, basis.as_ref(), lot, bid),
+        }
+    }
+
     /// The factors of a lot as they are published.
     ///
     /// # Errors
     /// As [`evaluate`].
     pub fn factors(&self, lot: &str) -> Result<LotFactors, StudyError> {
-        lot_factors(&self.sheet, self.basis().as_ref(), lot)
+        let own = lot_factors(&self.sheet, self.basis().as_ref(), lot)?;
+        let published = self.put_out.iter().flatten().find(|put_out| put_out.lot == lot);
+        Ok(LotFactors { published: published.and_then(stated), ..own })
     }
 
-    /// Settles the measured units of one lot, or of all.
+    /// Settles the measured units of one lot, or of all, always by the lots as they were put out.
     ///
     /// # Errors
     /// As [`settle`].
     pub fn settle(&self, lot: Option<&str>) -> Result<SettleResult, StudyError> {
-        settle(&self.sheet, self.basis().as_ref(), lot)
+        match &self.put_out {
+            None => settle(&self.sheet, self.basis().as_ref(), lot),
+            Some(put_out) => {
+                let sheet = TenderSheet { lots: put_out.clone(), ..self.sheet.clone() };
+                settle(&sheet, self.basis().as_ref(), lot)
+            }
+        }
     }
 
     /// Says of each lot that has a ranked bid how sure its winner is.

@@ -7,6 +7,7 @@ use super::{Awarded, BidResult, Case, LotResult, TenderResult, find_lot, terms};
 use crate::book::{Actor, Book, BookError};
 use crate::engine::Refusal;
 use crate::engine::columns::{Award, BasisSheet, Column, TenderSheet, Value};
+use crate::engine::flags::Flags;
 use crate::engine::working::Silent;
 use crate::study::StudyError;
 
@@ -29,21 +30,34 @@ pub struct AwardResult {
     pub excluded: Vec<&'static str>,
     /// Other bids of the lot of which measured units are in the book.
     pub measured_of_others: Vec<String>,
-    /// What is doubtful about the lot.
+    /// What is doubtful about the lot, and whether losses of the bid look like kW.
     pub flags: Vec<&'static str>,
 }
 
-/// Awards a lot to a bid. Another bid than the one that leads needs a reason.
+/// Which bid a lot goes to.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Choice<'a> {
+    /// The lot.
+    pub lot: &'a str,
+    /// The bid.
+    pub bid: &'a str,
+    /// Also where it misses a limit of the lot.
+    pub despite: bool,
+}
+
+/// Awards a lot to a bid. Another bid than the one that is recommended needs a reason; one that misses a limit must be
+/// meant despite that.
 ///
 /// # Errors
-/// As [`super::evaluate`]; an unknown bid, no reason where one is needed, a lot that is awarded to another bid.
+/// As [`super::evaluate`]; an unknown bid, no reason where one is needed, an excluded bid that is not meant despite
+/// what it misses, a lot that is awarded to another bid.
 pub fn award(
     book: &mut Book,
     case: &Case,
-    lot: &str,
-    bid: &str,
+    choice: Choice,
     actor: &Actor,
 ) -> Result<AwardResult, StudyError> {
+    let Choice { lot, bid, despite } = choice;
     let sheet = &case.sheet;
     let reasoned = has_reason(actor)?;
     let evaluated = case.evaluate(Some(lot))?;
@@ -54,6 +68,13 @@ pub fn award(
             return Err(BookError::Awarded { tender, lot }.into());
         }
         return Ok(told(case, of_lot, chosen, standing.clone(), "same"));
+    }
+    if !chosen.excluded.is_empty() && !despite {
+        let misses = chosen.excluded.join(", ");
+        let why = format!(
+            "misses {misses} and is not ranked; to award it all the same: --despite --why TEXT"
+        );
+        return Err(StudyError::refused(format!("lot {lot}"))(Refusal::new("bid", bid, why)));
     }
     if of_lot.recommended.as_deref() != Some(bid) && !reasoned {
         let why = needs_reason(chosen, of_lot.recommended.as_deref());
@@ -88,8 +109,7 @@ pub fn award(
 pub fn award_as_shown(
     book: &mut Book,
     (tender, basis): (&TenderSheet, &BasisSheet),
-    lot: &str,
-    bid: &str,
+    choice: Choice,
     actor: &Actor,
 ) -> Result<AwardResult, StudyError> {
     let (name, of) = (&tender.tender.tender, Some(basis.basis.name.as_str()));
@@ -98,7 +118,7 @@ pub fn award_as_shown(
         let why = "or its basis was changed in the book since it was opened; leave, open it again and look";
         return Err(Refusal::new("tender", name, why).into());
     }
-    award(book, &case, lot, bid, actor)
+    award(book, &case, choice, actor)
 }
 
 /// Takes the award of a lot back; the journal keeps it.
@@ -146,17 +166,23 @@ fn find<'a>(
     })
 }
 
-fn needs_reason(chosen: &BidResult, leads: Option<&str>) -> String {
+fn needs_reason(chosen: &BidResult, recommended: Option<&str>) -> String {
     let misses = match chosen.excluded.as_slice() {
         [] => String::new(),
         keys => format!(" and misses {}", keys.join(", ")),
     };
-    match leads {
-        Some(leads) => {
-            format!("does not lead ({leads} does){misses}; to award it say why: --why TEXT")
+    match recommended {
+        Some(other) => {
+            format!("is not recommended ({other} is){misses}; to award it say why: --why TEXT")
         }
         None => format!("is not ranked{misses}; to award it say why: --why TEXT"),
     }
+}
+
+/// The doubt that losses of the bid are kW, where it stands: an award is the last place to see it.
+fn scale_of(bid: &BidResult) -> impl Iterator<Item = &'static str> {
+    let doubts = bid.flags.clone();
+    Flags::LOSS_SCALE.keys().into_iter().filter(move |key| doubts.contains(key))
 }
 
 fn told(
@@ -182,6 +208,6 @@ fn told(
         outcome,
         excluded: bid.excluded.clone(),
         measured_of_others: others,
-        flags: lot.flags.clone(),
+        flags: lot.flags.iter().copied().chain(scale_of(bid)).collect(),
     }
 }

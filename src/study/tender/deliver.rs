@@ -17,8 +17,11 @@ use crate::study::settle::{LotSettlement, UnitSettlement};
 pub struct Wanted<'a> {
     /// Only this lot.
     pub lot: Option<&'a str>,
-    /// Serial numbers that are left out: rejected units, for instance.
+    /// Serial numbers that are left out.
     pub except: &'a [String],
+    /// Serial numbers that are taken although they are beyond tolerance; others of that kind are left out, so that a
+    /// rejected unit does not come in with a later delivery.
+    pub also: &'a [String],
     /// What stands before the serial number in the identifier of the unit.
     pub prefix: &'a str,
 }
@@ -73,7 +76,7 @@ pub struct NotDelivered {
 /// Takes the measured units of the awarded bids into the fleet.
 ///
 /// # Errors
-/// As [`crate::study::settle::settle`]; an unknown serial number among the exceptions, a unit of that identifier that
+/// As [`crate::study::settle::settle`]; an unknown serial number among those that are named, a unit of that identifier that
 /// came from elsewhere, nothing that could be taken.
 pub fn deliver(
     book: &mut Book,
@@ -110,6 +113,13 @@ pub fn deliver(
                 result.left_out.push(leave(Some(&unit.serial), "is excepted"));
                 continue;
             }
+            let is_it =
+                |d: &&Delivery| d.lot == lot.lot && d.bid == of_bid.bid && d.serial == unit.serial;
+            let taken = wanted.also.contains(&unit.serial) || earlier.iter().any(|d| is_it(&d));
+            if unit.beyond_tolerance && !taken {
+                result.left_out.push(leave(Some(&unit.serial), BEYOND));
+                continue;
+            }
             result.units.push(fleet.take(case, of_bid, unit)?);
         }
     }
@@ -121,9 +131,13 @@ pub fn deliver(
     Ok(result)
 }
 
+/// Why a unit beyond tolerance is left out.
+const BEYOND: &str = "is beyond tolerance; if it is accepted all the same, name it: --also SERIAL";
+
 fn known_serials(case: &Case, wanted: &Wanted) -> Result<(), StudyError> {
     let serials = || case.sheet.measured.iter().map(|unit| unit.serial.as_str());
-    match wanted.except.iter().find(|serial| !serials().any(|known| known == **serial)) {
+    let mut named = wanted.except.iter().chain(wanted.also);
+    match named.find(|serial| !serials().any(|known| known == **serial)) {
         None => Ok(()),
         Some(serial) => {
             let place = format!("tender {}", case.sheet.tender.tender);

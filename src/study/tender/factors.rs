@@ -50,6 +50,9 @@ pub struct LotFactors {
     pub law: Vec<LegalLimit>,
     /// What is doubtful.
     pub flags: Vec<&'static str>,
+    /// The factors that the lot states, where they are set aside here to show how they came about.
+    #[serde(skip)]
+    pub published: Option<LossFactors>,
 }
 
 /// The factors in one currency.
@@ -120,6 +123,7 @@ pub fn lot_factors(
             .map(|(other, method)| differs(&own, &other, method)),
         law: floor(&terms)?,
         flags: flags.keys(),
+        published: None,
     })
 }
 

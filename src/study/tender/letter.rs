@@ -13,9 +13,10 @@ mod risk;
 
 use super::award::{BidderPackage, Package};
 use super::{Case, TenderResult};
+use crate::engine::flags::Flags;
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
-use crate::study::figures::{figure, group};
+use crate::study::figures::{figure, group, short};
 use crate::study::losses::flag_meaning;
 
 pub use answer::answer;
@@ -23,7 +24,8 @@ pub use award::{awarded as award, changed_since, delivered, sentence};
 pub(super) use bars::cost_bars;
 pub use factors::lot_factors;
 pub(super) use lot::{
-    asks, changes, doubts, excluded, factor_scale, factors, map, near_tie, ranking, winner,
+    asks, changes, doubts, excluded, factor_scale, factors, loss_scale, map, near_tie, ranking,
+    winner,
 };
 pub use report::report;
 pub(super) use risk::risk;
@@ -35,10 +37,12 @@ pub fn result(case: &Case, result: &TenderResult) -> Letter {
         1,
         format!("Tender {}: owning cost per unit in {}", result.tender, result.currency),
     );
+    set_aside(&mut letter, case);
     for of in &result.lots {
         let about = lot::About::new(case, result, of);
         asks(&mut letter, &about);
         factor_scale(&mut letter, &about);
+        loss_scale(&mut letter, &about);
         factors(&mut letter, &about);
         ranking(&mut letter, &about);
         cost_bars(&mut letter, &about);
@@ -53,6 +57,16 @@ pub fn result(case: &Case, result: &TenderResult) -> Letter {
     }
     packages(&mut letter, result);
     letter
+}
+
+/// Says that the factors which lots state are set aside, where they are.
+pub(super) fn set_aside(letter: &mut Letter, case: &Case) {
+    if case.is_from_basis() {
+        letter.warning(format!(
+            "compared as if no lot stated its factors: each comes from basis {}; what is settled goes by the stated ones",
+            case.basis_name().unwrap_or_default()
+        ));
+    }
 }
 
 /// The column of a figure, headed as everywhere.
@@ -71,6 +85,15 @@ fn money(amount: f64) -> String {
 /// A flag with its meaning.
 pub(in crate::study) fn flag(key: &str) -> String {
     format!("{key}: {}", flag_meaning(key).unwrap_or_default())
+}
+
+/// A flag with its meaning, and the stray share where that is what is doubtful.
+pub(in crate::study) fn flag_at(key: &str, stray_share_pu: f64) -> String {
+    let said = flag(key);
+    if Flags::SPLIT_UNKNOWN.keys().contains(&key) {
+        return format!("{said} (here {} of the load loss)", short(stray_share_pu));
+    }
+    said
 }
 
 /// Lots each to its own winner, or all to one bidder; nothing for a tender of one lot.

@@ -45,7 +45,7 @@ pub struct LotResult {
     pub bids: Vec<BidResult>,
     /// The bid of least owning cost.
     pub least_owning_cost: Option<String>,
-    /// The bid that leads: of the near-tied ones that of lowest price with adders.
+    /// The recommended bid: of the near-tied ones that of lowest price with adders.
     pub recommended: Option<String>,
     /// How far the second lies above the first in percent.
     pub margin_pct: Option<f64>,
@@ -68,8 +68,14 @@ pub struct LotResult {
     /// Which factors come from the basis.
     #[serde(skip)]
     pub computed: Computed,
+    /// Stray share by which load losses of unknown split are brought to the lot's temperature.
+    #[serde(skip)]
+    pub stray_share_pu: f64,
     /// The award of the lot, where the book has one.
     pub award: Option<Awarded>,
+    /// Whether it is compared under the terms of the award.
+    #[serde(skip)]
+    pub as_awarded: bool,
     /// How sure the winner is, where that was asked.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub risk: Option<RiskResult>,
@@ -108,6 +114,9 @@ pub struct BidResult {
     pub excluded: Vec<&'static str>,
     /// What is doubtful about it.
     pub flags: Vec<&'static str>,
+    /// Limits that were not held against it, because its value is blank.
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    pub limits_unknown: Vec<&'static str>,
     /// Its losses at its rating and the lot's reference temperature: what the figures are computed from.
     #[serde(skip)]
     pub losses: Losses,
@@ -129,7 +138,7 @@ pub struct Awarded {
     pub awarded_at: String,
     /// Why, in their own words.
     pub why: Option<String>,
-    /// The bid that led at the award.
+    /// The bid that was recommended at the award.
     pub recommended: Option<String>,
     /// The basis of the comparison.
     pub basis: Option<String>,

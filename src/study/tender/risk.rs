@@ -1,7 +1,8 @@
 //! How sure the winner of a lot is when the inputs of the basis are not: probability of least owning cost, regret,
 //! quantiles, and what each input does on its own.
 //!
-//! The bids are those that [`super::evaluate`] admits under the basis as it stands; only the loss factors are drawn.
+//! The bids are those that [`super::evaluate`] admits under the basis as it stands; what is drawn are the loss factors
+//! and the stray share by which load losses of unknown split came to the lot's temperature.
 //! Amounts are per unit in the tender currency.
 
 use serde::Serialize;
@@ -118,7 +119,7 @@ pub fn risk(
     let uncertain = UncertainFactors::new(basis, series, lot, judged.terms.rates, correlations)
         .map_err(refused())?;
     let cloud = uncertain.cloud(seed, draws).map_err(refused())?;
-    let prospects = prospects(field.planes, &cloud.factors);
+    let prospects = prospects(field.planes, &cloud.valuations);
     let of_bid = |i: &usize| {
         let j = judged.contest.bids.iter().position(|bid| bid == i)?;
         let prospect = prospects.get(j)?;
@@ -137,7 +138,11 @@ pub fn risk(
         moved_draws: cloud.moved,
         bids: judged.ranking.order.iter().filter_map(of_bid).collect(),
         swing: swings(&uncertain, &field, &judged).map_err(refused())?,
-        cloud: cloud.factors.iter().map(|f| [f.factor_a_per_kw, f.factor_b_per_kw]).collect(),
+        cloud: cloud
+            .valuations
+            .iter()
+            .map(|v| [v.factors.factor_a_per_kw, v.factors.factor_b_per_kw])
+            .collect(),
     })
 }
 
@@ -151,7 +156,7 @@ fn swings(
         let [low, high] = input.ends();
         let at = |value: f64| -> Result<(f64, Option<f64>, String), Refusal> {
             let drawn = uncertain.inputs().with_one(input, value)?;
-            let standing = field.standing(&uncertain.factors(&drawn)?);
+            let standing = field.standing_under(&uncertain.valuation(&drawn)?);
             Ok((standing.owning_cost, standing.lead, judged.contestant(standing.cheapest)))
         };
         let (owning_cost_low, lead_low, winner_low) = at(low)?;

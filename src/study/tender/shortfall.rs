@@ -1,4 +1,4 @@
-//! What a bid lacked against the one that costs least to own: how much lower its price, or one of its losses, would
+//! What a bid lacked against the one of least owning cost: how much lower its price, or one of its losses, would
 //! have had to be. Amounts per unit in the tender currency.
 
 use super::{BidResult, LotResult};
@@ -6,7 +6,7 @@ use super::{BidResult, LotResult};
 /// What a bid lacked; a figure that could not have made it up alone is none.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Shortfall {
-    /// The bid that costs least to own.
+    /// The bid of least owning cost.
     pub least: String,
     /// Its owning cost.
     pub least_owning_cost: f64,

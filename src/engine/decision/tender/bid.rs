@@ -8,9 +8,9 @@ use crate::engine::economics::loss_factors::LossFactors;
 use crate::engine::economics::owning_cost::{OwningCost, Priced, owning_cost};
 use crate::engine::flags::Flags;
 use crate::engine::transformer::losses::{Losses, contradict, quoted};
-use crate::engine::transformer::plausibility::loss_base_is_far;
+use crate::engine::transformer::plausibility::{looks_in_kw, loss_base_is_far};
 use crate::engine::transformer::temperature::{load_loss_at, vanishing_temp_c};
-use crate::engine::working::{Formula, Recorder};
+use crate::engine::working::{Formula, Recorder, Silent};
 
 /// A bid on the lot's terms.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -27,12 +27,14 @@ pub struct Comparable {
     pub factors: LossFactors,
     /// (S_lot/S_bid)²: what a W of this bid's load loss counts at the lot's rating.
     pub load_weight: f64,
+    /// What a stray share higher by 1 adds to the load loss; 0 where it was not brought to another temperature.
+    pub load_loss_per_stray_w: f64,
     /// What is doubtful.
     pub flags: Flags,
 }
 
 /// The owning cost of a bid as a plane over the factors: fixed + A·P0 + B·Pk + A_aux·P_aux (kW).
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Copy, Debug, Default, PartialEq)]
 pub struct Plane {
     /// Price and adders.
     pub fixed: f64,
@@ -42,14 +44,33 @@ pub struct Plane {
     pub load_kw: f64,
     /// Auxiliary loss.
     pub auxiliary_kw: f64,
+    /// What a stray share higher by 1 adds to the load loss, as it counts at the lot's rating: the conversion to
+    /// another temperature is linear in the share.
+    pub load_per_stray_kw: f64,
+}
+
+/// What bids are valued under: the factors, and how far the stray share lies above that of the planes.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Valuation {
+    /// The factors.
+    pub factors: LossFactors,
+    /// Stray share less that of the planes.
+    pub stray_more_pu: f64,
 }
 
 impl Plane {
     /// The owning cost at some factors.
     pub fn at(&self, factors: &LossFactors) -> f64 {
+        self.under(&Valuation { factors: *factors, stray_more_pu: 0.0 })
+    }
+
+    /// The owning cost at some factors and another stray share.
+    pub fn under(&self, valued: &Valuation) -> f64 {
+        let factors = &valued.factors;
+        let load_kw = self.load_kw + valued.stray_more_pu * self.load_per_stray_kw;
         self.fixed
             + factors.factor_a_per_kw * self.no_load_kw
-            + factors.factor_b_per_kw * self.load_kw
+            + factors.factor_b_per_kw * load_kw
             + factors.factor_aux_per_kw * self.auxiliary_kw
     }
 }
@@ -75,6 +96,7 @@ pub fn comparable<R: Recorder>(w: &mut R, terms: &Terms, bid: &Bid) -> Result<Co
     let mut losses = quoted(w, rated_kva, bid.loss_base_kva, p0, pk, total, aux)?;
     let quoted_load_loss_w = losses.load_loss_w;
     let mut flags = quotation_flags(bid, rated_kva);
+    let mut load_loss_per_stray_w = 0.0;
 
     match (bid.reference_temp_c, lot.reference_temp_c) {
         (Some(quoted_c), Some(lot_c)) if quoted_c != lot_c => {
@@ -82,12 +104,18 @@ pub fn comparable<R: Recorder>(w: &mut R, terms: &Terms, bid: &Bid) -> Result<Co
             let stray = terms.stray_share_pu * pk;
             let t0 = vanishing_temp_c(bid.winding_metal.unwrap_or(WindingMetal::Copper));
             losses.load_loss_w = load_loss_at(w, pk - stray, stray, t0, quoted_c, lot_c);
+            let all =
+                |resistive, stray| load_loss_at(&mut Silent, resistive, stray, t0, quoted_c, lot_c);
+            load_loss_per_stray_w = all(0.0, pk) - all(pk, 0.0);
             flags = flags.with(Flags::SPLIT_UNKNOWN);
         }
         (Some(_), Some(_)) => {}
         _ => flags = flags.with(Flags::NO_REFERENCE_TEMP),
     }
-    flags = flags.with_if(losses.load_loss_w < losses.no_load_loss_w, Flags::LOSSES_SWAPPED);
+    let (p0, pk) = (losses.no_load_loss_w, losses.load_loss_w);
+    flags = flags
+        .with_if(pk < p0, Flags::LOSSES_SWAPPED)
+        .with_if(looks_in_kw(rated_kva, p0, pk), Flags::LOSS_SCALE);
 
     let adders = adders(bid);
     let ratio = lot.rated_kva / rated_kva;
@@ -98,6 +126,7 @@ pub fn comparable<R: Recorder>(w: &mut R, terms: &Terms, bid: &Bid) -> Result<Co
         added_cost: Rates::convert(w, adders.amount(), rate, "freight, installation, adders"),
         factors: factors_at(w, terms, rated_kva),
         load_weight: ratio * ratio,
+        load_loss_per_stray_w,
         flags,
     })
 }
@@ -192,6 +221,7 @@ impl Comparable {
             no_load_kw: self.losses.no_load_loss_w / 1000.0,
             load_kw: self.losses.load_loss_w * self.load_weight / 1000.0,
             auxiliary_kw: self.losses.auxiliary_loss_w / 1000.0,
+            load_per_stray_kw: self.load_loss_per_stray_w * self.load_weight / 1000.0,
         }
     }
 }

@@ -5,7 +5,7 @@
 
 use super::factors::{BasisForFactors, Computed, of_lot};
 use super::map::{Point, least};
-use super::{Plane, Rates};
+use super::{Plane, Rates, Valuation};
 use crate::engine::Refusal;
 use crate::engine::columns::Lot;
 use crate::engine::economics::loss_factors::LossFactors;
@@ -115,19 +115,29 @@ pub struct FieldStanding {
 impl Field<'_> {
     /// Where today's winner stands at other factors.
     pub fn standing(&self, factors: &LossFactors) -> FieldStanding {
-        let best = self.leads(factors).reduce(|a, b| if b.1 < a.1 { b } else { a });
+        self.standing_under(&Valuation { factors: *factors, stray_more_pu: 0.0 })
+    }
+
+    /// Where today's winner stands at other factors and another stray share.
+    pub fn standing_under(&self, valued: &Valuation) -> FieldStanding {
+        let best = self.leads(valued).reduce(|a, b| if b.1 < a.1 { b } else { a });
         FieldStanding {
-            owning_cost: self.planes[self.winner].at(factors),
+            owning_cost: self.planes[self.winner].under(valued),
             lead: best.map(|(_, lead)| lead),
             cheapest: best.filter(|(_, lead)| *lead < 0.0).map_or(self.winner, |(j, _)| j),
         }
     }
 
     /// How far each rival lies above the winner.
-    fn leads(&self, factors: &LossFactors) -> impl Iterator<Item = (usize, f64)> {
-        let winner = self.planes[self.winner].at(factors);
+    fn leads(&self, valued: &Valuation) -> impl Iterator<Item = (usize, f64)> {
+        let winner = self.planes[self.winner].under(valued);
         let others = self.planes.iter().enumerate().filter(|&(j, _)| j != self.winner);
-        others.map(move |(j, plane)| (j, plane.at(factors) - winner))
+        others.map(move |(j, plane)| (j, plane.under(valued) - winner))
+    }
+
+    /// How far each rival lies above the winner today.
+    fn leads_today(&self) -> Vec<(usize, f64)> {
+        self.leads(&Valuation { factors: self.factors, stray_more_pu: 0.0 }).collect()
     }
 
     /// The change of an input in which each rival's lead is linear; `slope` is that of a rival's lead.
@@ -138,16 +148,27 @@ impl Field<'_> {
         base: f64,
         slope: impl Fn(&Plane, &Plane) -> f64,
     ) -> Change {
+        self.linear_to(w, quantity, (base, f64::INFINITY), slope)
+    }
+
+    /// The same of an input that goes no higher than `most`.
+    fn linear_to<R: Recorder>(
+        &self,
+        w: &mut R,
+        quantity: &'static str,
+        (base, most): (f64, f64),
+        slope: impl Fn(&Plane, &Plane) -> f64,
+    ) -> Change {
         // Down, up: the nearest move with the lead and the slope that give it.
         let mut nearest: [Option<(Move, f64, f64)>; 2] = [None; 2];
-        for (bid, lead) in self.leads(&self.factors) {
+        for (bid, lead) in self.leads_today() {
             let slope = slope(&self.planes[bid], &self.planes[self.winner]);
             // A tie that the order has broken can leave a lead below zero by rounding.
             let lead = lead.max(0.0);
             let by = lead / slope.abs();
             let up = slope < 0.0;
             let to = if up { base + by } else { base - by };
-            if !by.is_finite() || (!up && to < 0.0) {
+            if !by.is_finite() || to < 0.0 || to > most {
                 continue;
             }
             let side = &mut nearest[usize::from(up)];
@@ -194,6 +215,17 @@ impl Field<'_> {
             self.linear(w, "no_load_loss_w", no_load_loss_w, |_, _| -a / 1000.0),
             self.linear(w, "load_loss_w", load_loss_w, |_, _| -b / 1000.0),
         ]
+    }
+
+    /// The stray share by which load losses of unknown split were brought to the lot's temperature; none where no
+    /// bid was.
+    pub fn of_stray_share<R: Recorder>(&self, w: &mut R, stray_share_pu: f64) -> Option<Change> {
+        let b = self.factors.factor_b_per_kw;
+        self.planes.iter().any(|plane| plane.load_per_stray_kw != 0.0).then(|| {
+            self.linear_to(w, "stray_share_pu", (stray_share_pu, 1.0), |rival, winner| {
+                b * (rival.load_per_stray_kw - winner.load_per_stray_kw)
+            })
+        })
     }
 
     /// What the factors are computed from: discount rate, mean energy price, and the load where B is computed.
@@ -349,7 +381,7 @@ pub fn nearest_border<R: Recorder>(w: &mut R, field: &Field) -> Option<NearestBo
     let today = [field.factors.factor_a_per_kw, field.factors.factor_b_per_kw];
     let winner = field.planes[field.winner];
     let mut found: Vec<NearestBorder> = Vec::new();
-    for (bid, lead) in field.leads(&field.factors) {
+    for (bid, lead) in field.leads_today() {
         let rival = field.planes[bid];
         let (p, q) = (rival.no_load_kw - winner.no_load_kw, rival.load_kw - winner.load_kw);
         let lead = lead.max(0.0);
@@ -378,7 +410,7 @@ mod tests {
     use super::*;
 
     fn plane(fixed: f64, no_load_kw: f64, load_kw: f64) -> Plane {
-        Plane { fixed, no_load_kw, load_kw, auxiliary_kw: 0.0 }
+        Plane { fixed, no_load_kw, load_kw, ..Plane::default() }
     }
     fn field(planes: &[Plane], winner: usize, a: f64, b: f64) -> Field<'_> {
         let factors =

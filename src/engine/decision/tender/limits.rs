@@ -14,6 +14,8 @@ pub struct Findings {
     pub misses: Vec<&'static str>,
     /// Whether it meets the law that the lot names; none where none is named or it is not known.
     pub law: Option<bool>,
+    /// Limits that could not be held against the bid, because its value is blank.
+    pub unknown: Vec<&'static str>,
     /// Doubts.
     pub flags: Flags,
 }
@@ -32,7 +34,7 @@ pub fn against(lot: &Lot, bid: &Bid, on_terms: &Comparable, law: Option<bool>) -
     let (asked, offered) = (lot.vector_group.as_deref(), bid.vector_group.as_deref());
     found.miss("vector_group", !vector_group::agree(asked, offered));
     let unread = |group: Option<&str>| group.is_some_and(|g| vector_group::clock(g).is_none());
-    found.doubt(asked.is_some() && offered.is_none(), Flags::LIMIT_UNKNOWN);
+    found.blank("vector_group", asked.is_some() && offered.is_none());
     found.doubt(unread(asked) || (asked.is_some() && unread(offered)), Flags::VECTOR_GROUP_UNREAD);
 
     found.at_most("max_no_load_loss_w", Some(losses.no_load_loss_w), lot.max_no_load_loss_w);
@@ -63,6 +65,14 @@ impl Findings {
         }
     }
 
+    /// A value that a limit needs and that is blank passes, flagged.
+    fn blank(&mut self, key: &'static str, is_blank: bool) {
+        if is_blank {
+            self.unknown.push(key);
+        }
+        self.doubt(is_blank, Flags::LIMIT_UNKNOWN);
+    }
+
     fn doubt(&mut self, condition: bool, flag: Flags) {
         self.flags = self.flags.with_if(condition, flag);
     }
@@ -70,7 +80,7 @@ impl Findings {
     fn at_most(&mut self, key: &'static str, value: Option<f64>, limit: Option<f64>) {
         match (value, limit) {
             (Some(value), Some(limit)) => self.miss(key, above(value, limit)),
-            (None, Some(_)) => self.doubt(true, Flags::LIMIT_UNKNOWN),
+            (None, Some(_)) => self.blank(key, true),
             (_, None) => {}
         }
     }
@@ -102,6 +112,7 @@ mod tests {
                 factor_aux_per_kw: 1.0,
             },
             load_weight: 1.0,
+            load_loss_per_stray_w: 0.0,
             flags: Flags::NONE,
         };
         let lot = |law: Option<&str>| Lot {

@@ -356,7 +356,7 @@ mod tests {
     use super::*;
 
     fn plane(fixed: f64, no_load_kw: f64, load_kw: f64) -> Plane {
-        Plane { fixed, no_load_kw, load_kw, auxiliary_kw: 0.0 }
+        Plane { fixed, no_load_kw, load_kw, ..Plane::default() }
     }
     fn today(a: f64, b: f64) -> LossFactors {
         LossFactors { factor_a_per_kw: a, factor_b_per_kw: b, factor_aux_per_kw: 0.0 }

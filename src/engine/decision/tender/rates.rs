@@ -27,6 +27,19 @@ const IN_CURRENCY: Formula = Formula {
     source: "rate stored with the tender; methods, section 8",
 };
 
+const AMOUNT_IN_CURRENCY: Formula = Formula {
+    name: "the amount in the currency of the bid",
+    symbol: "amount_bid",
+    formula: "own/rate",
+    unit: "of the bid's currency",
+    source: "rate stored with the tender; methods, section 8",
+};
+
+/// An amount of the tender currency in the currency of a bid, of `rate`.
+pub fn amount_in_currency<R: Recorder>(w: &mut R, own: f64, rate: f64) -> f64 {
+    w.step(&AMOUNT_IN_CURRENCY, &[("own", own), ("rate", rate)], own / rate)
+}
+
 /// A factor of the tender currency in a currency of `rate`.
 pub fn in_currency<R: Recorder>(w: &mut R, own: f64, rate: f64) -> f64 {
     w.step(&IN_CURRENCY, &[("own", own), ("rate", rate)], own / rate)

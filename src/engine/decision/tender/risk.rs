@@ -1,18 +1,18 @@
-//! How sure the winner is: every bid on one cloud of factors drawn from the ranges of the basis.
+//! How sure the winner is: every bid on one cloud of factors and stray shares drawn from the ranges of the basis.
 //!
-//! Owning cost is linear in (A, B, A_aux), so the cloud is drawn once and each bid is a dot product with it.
+//! Owning cost is linear in (A, B, A_aux) and in the stray share, so the cloud is drawn once and each bid is a product
+//! with it.
 //! Sums over draws run in their order, whatever thread did the work.
 
 use rayon::prelude::*;
 
 use super::factors::{BasisForFactors, of_lot};
-use super::{Plane, Rates};
+use super::{Plane, Rates, Valuation};
 use crate::engine::Refusal;
 use crate::engine::columns::{BasisSheet, Lot};
 use crate::engine::decision::uncertainty::inputs::Drawn;
 use crate::engine::decision::uncertainty::{Inputs, RankCorrelation, quantile};
 use crate::engine::economics::assumptions::{Assumptions, EnergyPrice};
-use crate::engine::economics::loss_factors::LossFactors;
 use crate::engine::loading::{Market, PriceSeries, Weights};
 use crate::engine::working::Silent;
 
@@ -21,15 +21,17 @@ use crate::engine::working::Silent;
 pub struct UncertainFactors<'a> {
     rates: Rates<'a>,
     inputs: Inputs,
+    /// Stray share under the basis as it stands.
+    stray_share_pu: f64,
     /// Mean price of the basis's series, and whether the series knows its CO2.
     series: Option<(Weights, bool)>,
 }
 
-/// Factors drawn, and how many of the draws left a physical range and were moved to its edge.
+/// Factors and stray shares drawn, and how many of the draws left a physical range and were moved to its edge.
 #[derive(Clone, Debug, Default, PartialEq)]
 pub struct Cloud {
-    /// The factors of each draw.
-    pub factors: Vec<LossFactors>,
+    /// What bids are valued under in each draw.
+    pub valuations: Vec<Valuation>,
     /// Draws in which a value was moved.
     pub moved: usize,
 }
@@ -63,7 +65,8 @@ impl<'a> UncertainFactors<'a> {
                 return Err(Refusal::new("price_series", name, why));
             }
         };
-        Ok(Self { rates, inputs: Inputs::new(sheet, lot, correlations)?, series })
+        let stray_share_pu = Assumptions::resolve(&sheet.basis)?.stray_share_pu;
+        Ok(Self { rates, inputs: Inputs::new(sheet, lot, correlations)?, stray_share_pu, series })
     }
 
     /// The inputs that are uncertain.
@@ -71,11 +74,11 @@ impl<'a> UncertainFactors<'a> {
         &self.inputs
     }
 
-    /// The factors of a basis and a lot.
+    /// The factors of a basis and a lot, and how far its stray share lies above that of the basis as it stands.
     ///
     /// # Errors
     /// They cannot be computed from these values.
-    pub fn factors(&self, drawn: &Drawn) -> Result<LossFactors, Refusal> {
+    pub fn valuation(&self, drawn: &Drawn) -> Result<Valuation, Refusal> {
         let assumptions = Assumptions::resolve(&drawn.basis)?;
         let carbon = assumptions.carbon_kg_per_kwh;
         let market = match (&assumptions.energy_price, self.series) {
@@ -93,24 +96,26 @@ impl<'a> UncertainFactors<'a> {
             }
         };
         let basis = BasisForFactors { assumptions: &assumptions, market: &market };
-        of_lot(&mut Silent, &drawn.lot, &self.rates, Some(&basis)).map(|(factors, _)| factors)
+        let (factors, _) = of_lot(&mut Silent, &drawn.lot, &self.rates, Some(&basis))?;
+        let stray_more_pu = assumptions.stray_share_pu - self.stray_share_pu;
+        Ok(Valuation { factors, stray_more_pu })
     }
 
-    /// `draws` factors of `seed`: the same for each draw at any number of draws and threads.
+    /// `draws` draws of `seed`: the same for each draw at any number of draws and threads.
     ///
     /// # Errors
     /// A draw from which no factors can be computed.
     pub fn cloud(&self, seed: u64, draws: usize) -> Result<Cloud, Refusal> {
         let draw = |item: usize| {
             let drawn = self.inputs.draw(seed, item as u64)?;
-            Ok((self.factors(&drawn)?, drawn.moved))
+            Ok((self.valuation(&drawn)?, drawn.moved))
         };
         // All are drawn before the first refusal is taken, so that it is the same one at any thread count.
         let all: Vec<Result<_, Refusal>> = (0..draws).into_par_iter().map(draw).collect();
-        let all: Vec<(LossFactors, bool)> = all.into_iter().collect::<Result<_, _>>()?;
+        let all: Vec<(Valuation, bool)> = all.into_iter().collect::<Result<_, _>>()?;
         Ok(Cloud {
             moved: all.iter().filter(|(_, moved)| *moved).count(),
-            factors: all.into_iter().map(|(factors, _)| factors).collect(),
+            valuations: all.into_iter().map(|(valuation, _)| valuation).collect(),
         })
     }
 }
@@ -131,16 +136,16 @@ pub struct Prospect {
 }
 
 /// How each bid fares over the cloud; nothing of no draws.
-pub fn prospects(planes: &[Plane], cloud: &[LossFactors]) -> Vec<Prospect> {
-    let cheapest = |factors: &LossFactors| {
-        let costs = planes.iter().map(|plane| plane.at(factors)).enumerate();
+pub fn prospects(planes: &[Plane], cloud: &[Valuation]) -> Vec<Prospect> {
+    let cheapest = |valued: &Valuation| {
+        let costs = planes.iter().map(|plane| plane.under(valued)).enumerate();
         costs.reduce(|best, next| if next.1 < best.1 { next } else { best })
     };
     let winners: Vec<(usize, f64)> = cloud.par_iter().filter_map(cheapest).collect();
     #[expect(clippy::cast_precision_loss, reason = "far fewer draws than 2^53")]
     let draws = winners.len() as f64;
     let fares = |(i, plane): (usize, &Plane)| {
-        let mut costs: Vec<f64> = cloud.iter().map(|factors| plane.at(factors)).collect();
+        let mut costs: Vec<f64> = cloud.iter().map(|valued| plane.under(valued)).collect();
         let regret: f64 = costs.iter().zip(&winners).map(|(cost, (_, least))| cost - least).sum();
         #[expect(clippy::cast_precision_loss, reason = "far fewer draws than 2^53")]
         let wins = winners.iter().filter(|(winner, _)| *winner == i).count() as f64;

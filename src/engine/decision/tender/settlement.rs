@@ -10,6 +10,7 @@ use crate::engine::columns::{Bid, Measured, Tolerance, WindingMetal};
 use crate::engine::economics::penalty::Excess;
 use crate::engine::flags::Flags;
 use crate::engine::transformer::losses::Losses;
+use crate::engine::transformer::plausibility::looks_in_kw;
 use crate::engine::transformer::temperature::{load_loss_at_reference, vanishing_temp_c};
 use crate::engine::working::{Formula, Recorder};
 
@@ -52,9 +53,16 @@ pub fn delivered<R: Recorder>(
             flags = flags.with(Flags::NO_REFERENCE_TEMP);
             measured.load_loss_w
         }
-        (None, _) => measured.load_loss_w,
+        (None, reference) => {
+            let other = |quoted: f64| reference.is_some_and(|reference| quoted != reference);
+            let blank = bid.reference_temp_c.is_some_and(other);
+            flags = flags.with_if(blank, Flags::TEST_TEMP_BLANK);
+            measured.load_loss_w
+        }
     };
     let promise = &guaranteed.losses;
+    let in_kw = looks_in_kw(promise.rated_kva, measured.no_load_loss_w, load_loss_w);
+    flags = flags.with_if(in_kw, Flags::LOSS_SCALE);
     let mut above = |measured: f64, guaranteed: f64, of: &'static str| {
         let inputs = [("measured", measured), ("guaranteed", guaranteed)];
         let value = w.step(&EXCESS, &inputs, measured - guaranteed);

@@ -11,6 +11,19 @@ use crate::engine::columns::{Basis, BasisSheet, Column, Kind, LEAST, Lot, Value,
 const OF_LOT: &[&str] =
     &["peak_pu", "loss_factor_pu", "factor_a_per_kw", "factor_b_per_kw", "factor_aux_per_kw"];
 
+/// The names that a range may have: every numeric column of a basis, and of a lot what its factors depend on.
+pub fn may_have_ranges() -> impl Iterator<Item = &'static str> {
+    Basis::COLUMNS
+        .iter()
+        .filter(|c| is_numeric(c))
+        .map(|column| column.name)
+        .chain(OF_LOT.iter().copied())
+}
+
+fn is_numeric(column: &Column) -> bool {
+    matches!(column.kind, Kind::Real(..) | Kind::Above(..) | Kind::Integer(..))
+}
+
 /// The record that holds an input, and its place among the columns.
 #[derive(Clone, Copy, Debug, PartialEq)]
 enum Place {
@@ -75,7 +88,8 @@ impl Inputs {
                 return Err(Refusal::new("range", &range.quantity, why));
             }
             let base = match place {
-                Place::Basis(at) => number(&basis[at]),
+                // A blank counts as what the column says that it means.
+                Place::Basis(at) => number(&basis[at]).or_else(|| column.blank.parse().ok()),
                 Place::Lot(at) => number(&lot[at]),
             };
             list.push(Input { column, spread: Spread::of(range, base)?, place });
@@ -143,9 +157,6 @@ impl Inputs {
 }
 
 fn find(name: &str) -> Result<(&'static Column, Place), Refusal> {
-    let numeric = |column: &&Column| {
-        matches!(column.kind, Kind::Real(..) | Kind::Above(..) | Kind::Integer(..))
-    };
     let of_basis = Basis::COLUMNS.iter().position(|column| column.name == name);
     let of_lot =
         Lot::COLUMNS.iter().position(|column| column.name == name && OF_LOT.contains(&name));
@@ -154,9 +165,8 @@ fn find(name: &str) -> Result<(&'static Column, Place), Refusal> {
         (None, Some(at)) => Some((&Lot::COLUMNS[at], Place::Lot(at))),
         (None, None) => None,
     };
-    found.filter(|(column, _)| numeric(column)).ok_or_else(|| {
-        let known = Basis::COLUMNS.iter().filter(numeric).map(|column| column.name);
-        let near = nearest(name, known.chain(OF_LOT.iter().copied()));
+    found.filter(|(column, _)| is_numeric(column)).ok_or_else(|| {
+        let near = nearest(name, may_have_ranges());
         let hint = near.map(|near| format!("; did you mean {near}?")).unwrap_or_default();
         Refusal::new("range", name, format!("is not a numeric input of a basis or a lot{hint}"))
     })
@@ -226,6 +236,16 @@ mod tests {
         assert!(!drawn.moved);
         let one = inputs.with_one(&inputs.inputs()[1], 0.9).expect("inside");
         assert_eq!((one.basis.discount_rate_pct, one.lot.peak_pu), (6.0, Some(0.9)));
+    }
+
+    #[test]
+    fn a_blank_input_lies_about_its_default() {
+        let ranges = vec![range("stray_share_pu", 0.0, 0.3)];
+        let triangular =
+            ranges.into_iter().map(|range| BasisRange { distribution: None, ..range }).collect();
+        let inputs = inputs(triangular).expect("blank is 0");
+        let spread = Spread::Triangular { low: 0.0, mode: 0.0, high: 0.3 };
+        assert_eq!(inputs.inputs()[0].spread, spread);
     }
 
     #[test]

@@ -1,7 +1,8 @@
 //! The answer to one bidder: where its bid stands, what it lacked, and how its figures come about.
 
-use super::lot::{About, misses};
-use super::{asks, cautions, factor_scale, factors, flag};
+use super::award::by_its_terms;
+use super::lot::{About, doubted, misses};
+use super::{asks, cautions, factor_scale, factors, flag_at, near_tie};
 use crate::engine::working::Step;
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
@@ -9,9 +10,9 @@ use crate::study::StudyError;
 use crate::study::explain::StepRow;
 use crate::study::figures::group;
 use crate::study::tender::shortfall::{Shortfall, shortfall};
-use crate::study::tender::{Case, TenderResult, working};
+use crate::study::tender::{Case, TenderResult};
 
-/// Answers for a bid in each lot that has one of that name.
+/// Answers for a bid in each lot that has one of that name; where the lot is awarded, by the terms of the award.
 ///
 /// # Errors
 /// As [`crate::study::tender::evaluate`].
@@ -19,17 +20,23 @@ pub fn answer(case: &Case, result: &TenderResult, bid: &str) -> Result<Letter, S
     let mut letter = Letter::default();
     letter.heading(1, format!("Tender {}: bid {bid}", result.tender));
     for of in result.lots.iter().filter(|lot| lot.bids.iter().any(|of| of.bid == bid)) {
-        let about = About::new(case, result, of);
+        let kept = case.as_awarded(&of.lot)?;
+        let about = About::new(case, result, kept.as_ref().unwrap_or(of));
         asks(&mut letter, &about);
+        by_its_terms(&mut letter, &about, of, bid);
         factor_scale(&mut letter, &about);
         factors(&mut letter, &about);
         standing(&mut letter, &about, bid);
-        let w = working(&case.sheet, case.basis().as_ref(), &of.lot, bid)?;
+        let w = case.answering(&of.lot, bid)?;
         letter.heading(3, "How its owning cost comes about");
         let rows = |steps: &[Step]| StepRow::lines(&StepRow::tree(steps), 0, case.money());
         letter.lines([rows(&w.on_terms), rows(&w.owning_cost)].concat());
         letter.heading(3, "How the factors come about");
-        letter.lines(rows(&w.factors));
+        if about.result.as_awarded {
+            letter.text("They are kept with the award as they were then.");
+        } else {
+            letter.lines(rows(&w.factors));
+        }
     }
     cautions(&mut letter);
     Ok(letter)
@@ -62,15 +69,19 @@ fn standing(letter: &mut Letter, about: &About, name: &str) {
             letter.text(format!("It ranks {rank} of {} by owning cost.", about.ranked().count()));
         }
     }
+    if result.recommended.as_deref() == Some(name) {
+        letter.text("It is the recommended bid.");
+    }
+    near_tie(letter, about);
     if let Some(lacked) = shortfall(result, bid) {
         letter.text(lacks(&lacked, name, currency));
     }
     for key in &bid.flags {
-        letter.warning(flag(key));
+        letter.warning(format!("{}: {}", doubted(bid, key), flag_at(key, result.stray_share_pu)));
     }
 }
 
-/// What the bid lacked against the cheapest to own.
+/// What the bid lacked against that of least owning cost.
 fn lacks(lacked: &Shortfall, name: &str, currency: &str) -> String {
     let mut ways = Vec::new();
     if let Some(less) = lacked.price {
@@ -84,7 +95,7 @@ fn lacks(lacked: &Shortfall, name: &str, currency: &str) -> String {
     }
     let percent = lacked.gap_pct.map_or(String::new(), |pct| format!(" ({} %)", group(pct, 2)));
     let first = format!(
-        "{} costs least to own: {} {currency} a unit, {} {currency} less than {name}{percent}.",
+        "{} has the least owning cost: {} {currency} a unit, {} {currency} less than {name}{percent}.",
         lacked.least,
         group(lacked.least_owning_cost, 2),
         group(lacked.gap, 2)

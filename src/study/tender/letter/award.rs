@@ -2,6 +2,7 @@
 
 use super::lot::About;
 use super::{day, flag};
+use crate::engine::decision::equal_pv;
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
 use crate::study::figures::{group, short};
@@ -42,19 +43,79 @@ pub(in crate::study) fn standing(letter: &mut Letter, about: &About) {
 
 /// How the comparison differs now from that of the award; none where it does not, or the lot is not awarded.
 pub fn changed_since(lot: &LotResult, currency: &str) -> Option<String> {
-    let (award, leads) = (lot.award.as_ref()?, lot.recommended.as_ref());
-    let led = |bid: Option<&String>| bid.map_or("none", String::as_str).to_owned();
-    (award.differs_now() || leads != award.recommended.as_ref()).then(|| {
-        format!(
-            "compared again now, {} comes to {} instead of {} {currency} and {} leads instead of {}: the basis has changed since, or the program (then {}); the award stands as it was made",
+    let (award, recommended) = (lot.award.as_ref()?, lot.recommended.as_ref());
+    let mut otherwise = Vec::new();
+    if award.differs_now() {
+        otherwise.push(format!(
+            "{} comes to {} instead of {} {currency}",
             award.bid,
             group(award.owning_cost_now, 2),
             group(award.owning_cost, 2),
-            led(leads),
-            led(award.recommended.as_ref()),
+        ));
+    }
+    if recommended != award.recommended.as_ref() {
+        let named = |bid: Option<&String>| bid.map_or("no bid", String::as_str).to_owned();
+        let (now, then) = (named(recommended), named(award.recommended.as_ref()));
+        otherwise.push(format!("{now} is recommended instead of {then}"));
+    }
+    (!otherwise.is_empty()).then(|| {
+        format!(
+            "compared again now, {}: the basis has changed since, or the program (then {}); the award stands as it was made",
+            otherwise.join(" and "),
             award.program
         )
     })
+}
+
+/// By whose terms an answer goes, and in one line what today's basis would say otherwise of a bid.
+pub(super) fn by_its_terms(letter: &mut Letter, about: &About, today: &LotResult, bid: &str) {
+    let kept = about.result;
+    let Some(award) = kept.award.as_ref().filter(|_| kept.as_awarded) else { return };
+    letter.text(format!("The lot is awarded to {}", sentence(award)));
+    letter.text("This answer goes by the factors and corrections kept with the award.");
+    let of = |lot: &LotResult| {
+        let own = lot.bids.iter().find(|own| own.bid == bid);
+        own.map(|own| (own.owning_cost, own.rank, own.excluded.clone()))
+    };
+    let mut otherwise = Vec::new();
+    for (name, then, now) in [
+        ("A", kept.factor_a_per_kw, today.factor_a_per_kw),
+        ("B", kept.factor_b_per_kw, today.factor_b_per_kw),
+        ("A aux", kept.factor_aux_per_kw, today.factor_aux_per_kw),
+    ] {
+        if !equal_pv(then, now) {
+            otherwise.push(format!("{name} {} instead of {}", group(now, 2), group(then, 2)));
+        }
+    }
+    if kept.stray_share_pu != today.stray_share_pu {
+        let (now, then) = (short(today.stray_share_pu), short(kept.stray_share_pu));
+        otherwise.push(format!("stray share {now} instead of {then}"));
+    }
+    if let (Some((then, rank, misses)), Some((now, rank_now, misses_now))) = (of(kept), of(today)) {
+        if !equal_pv(then, now) {
+            let (now, then) = (group(now, 2), group(then, 2));
+            otherwise.push(format!("{bid} at {now} instead of {then} {}", about.currency));
+        }
+        let place =
+            |rank: Option<usize>| rank.map_or("not ranked".to_owned(), |n| format!("rank {n}"));
+        if rank != rank_now {
+            otherwise.push(format!("{} instead of {}", place(rank_now), place(rank)));
+        }
+        if misses != misses_now {
+            let said = |keys: &[&str]| {
+                if keys.is_empty() { "nothing".to_owned() } else { keys.join(", ") }
+            };
+            otherwise.push(format!("it misses {} instead of {}", said(&misses_now), said(&misses)));
+        }
+    }
+    if kept.recommended != today.recommended {
+        let named = |bid: &Option<String>| bid.clone().unwrap_or_else(|| "no bid".to_owned());
+        let (now, then) = (named(&today.recommended), named(&kept.recommended));
+        otherwise.push(format!("{now} recommended instead of {then}"));
+    }
+    if !otherwise.is_empty() {
+        letter.warning(format!("today's basis would say otherwise: {}", otherwise.join("; ")));
+    }
 }
 
 /// What awarding a lot came to.
@@ -142,7 +203,7 @@ pub fn delivered(result: &DeliverResult) -> Letter {
         .collect();
     if !rejectable.is_empty() {
         letter.warning(format!(
-            "{} may be rejected as beyond tolerance; a rejected unit is kept out of the fleet with --except SERIAL",
+            "{} may be rejected as beyond tolerance and is in the fleet",
             rejectable.join(", ")
         ));
     }
@@ -151,5 +212,8 @@ pub fn delivered(result: &DeliverResult) -> Letter {
             "To rank them, import what the place asks of them (columns unit, rated_kva, site, peak_kva, profile): ironhum import units FILE.",
         );
     }
+    letter.text(
+        "A unit that goes back to its maker leaves the computations with in_service = no (columns unit, rated_kva, in_service): ironhum import units FILE; it stays in the book with its history.",
+    );
     letter
 }

@@ -1,18 +1,25 @@
 //! The factors of a lot as they go into the tender documents.
 
 use super::flag;
+use crate::engine::economics::loss_factors::LossFactors;
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
-use crate::study::explain::{MONEY, StepRow};
+use crate::study::explain::StepRow;
 use crate::study::figures::{group, short};
-use crate::study::tender::{InCurrency, LegalLimit, LotFactors};
+use crate::study::tender::{Case, InCurrency, LegalLimit, LotFactors};
 
 /// The published factors of a lot, with their working where it is wanted.
-pub fn lot_factors(factors: &LotFactors, working: bool) -> Letter {
+pub fn lot_factors(case: &Case, factors: &LotFactors, working: bool) -> Letter {
     let mut letter = Letter::default();
     letter.heading(1, format!("Loss factors of tender {}, lot {}", factors.tender, factors.lot));
+    let again = format!(
+        "ironhum factors --tender {} --lot {} --from-basis --working",
+        factors.tender, factors.lot
+    );
     letter.text(match &factors.basis {
-        None => "The lot states every factor itself.".to_owned(),
+        None => format!(
+            "The lot states every factor itself. How they come about, which is the working to publish: {again}."
+        ),
         Some(basis) => {
             let stated = match factors.stated.as_slice() {
                 [] => String::new(),
@@ -51,10 +58,12 @@ pub fn lot_factors(factors: &LotFactors, working: bool) -> Letter {
         ));
     }
     letter.points(factors.law.iter().map(legal).collect());
-    if factors.basis.is_some() {
-        letter.text(
-            "Once they are published they must not move with the basis: write them below [[lot]] of the tender file and import it again.",
-        );
+    if let Some(published) = &factors.published {
+        letter.text(stands(factors, published));
+    } else if factors.basis.is_some() {
+        letter.text(format!(
+            "Once they are published they must not move with the basis: write them below [[lot]] of the tender file and import it again. Their working is to be had afterwards with: {again}."
+        ));
         letter.lines(vec![
             format!("factor_a_per_kw = {:.2}", factors.factor_a_per_kw),
             format!("factor_b_per_kw = {:.2}", factors.factor_b_per_kw),
@@ -66,9 +75,27 @@ pub fn lot_factors(factors: &LotFactors, working: bool) -> Letter {
     }
     if working {
         letter.heading(2, "Working");
-        letter.lines(StepRow::lines(&factors.working, 0, MONEY));
+        letter.lines(StepRow::lines(&factors.working, 0, case.money()));
     }
     letter
+}
+
+/// Whether the factors that the lot states are those of the basis, as far as they are written.
+fn stands(own: &LotFactors, published: &LossFactors) -> String {
+    let pairs = [
+        (published.factor_a_per_kw, own.factor_a_per_kw),
+        (published.factor_b_per_kw, own.factor_b_per_kw),
+        (published.factor_aux_per_kw, own.factor_aux_per_kw),
+    ];
+    let [a, b, aux] = pairs.map(|(stated, _)| group(stated, 2));
+    let said = format!("The lot states A {a}, B {b}, A aux {aux} {}/kW", own.currency);
+    // Half of the last place that is published.
+    if pairs.iter().all(|(stated, own)| (stated - own).abs() <= 0.005 + 1e-9) {
+        return format!("{said}: to the cent what this basis gives.");
+    }
+    format!(
+        "{said}, which is not what this basis gives now: it has changed since they were published, or they came of another (--basis NAME)."
+    )
 }
 
 /// A legal limit in a line.

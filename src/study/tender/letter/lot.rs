@@ -1,6 +1,6 @@
 //! The sections of one lot: what it asks, factors, ranking, who is out, the winner map, what would change the winner.
 
-use super::{column, flag, money};
+use super::{column, flag, flag_at, money};
 use crate::engine::columns::{Bid, Column as Fact, Lot};
 use crate::engine::flags::Flags;
 use crate::exchange::Letter;
@@ -69,6 +69,17 @@ pub(in crate::study) fn factor_scale(letter: &mut Letter, about: &About) {
     }
 }
 
+/// The warning that losses of bids look like kW; it too stands before the figures, as such a bid owns far too well.
+pub(in crate::study) fn loss_scale(letter: &mut Letter, about: &About) {
+    for key in Flags::LOSS_SCALE.keys() {
+        let of = about.result.bids.iter().filter(|bid| bid.flags.contains(&key));
+        let bids: Vec<&str> = of.map(|bid| bid.bid.as_str()).collect();
+        if !bids.is_empty() {
+            letter.warning(format!("{}: {}", bids.join(", "), flag(key)));
+        }
+    }
+}
+
 /// What a kW of loss is worth.
 pub(in crate::study) fn factors(letter: &mut Letter, about: &About) {
     let (result, currency) = (about.result, about.currency);
@@ -90,7 +101,11 @@ pub(in crate::study) fn factors(letter: &mut Letter, about: &About) {
         ],
         rows.into_iter()
             .map(|(symbol, value, of, computed)| {
-                let from = if computed { from.clone() } else { "stated in the lot".to_owned() };
+                let from = match (result.as_awarded, computed) {
+                    (true, _) => "kept with the award".to_owned(),
+                    (false, true) => from.clone(),
+                    (false, false) => "stated in the lot".to_owned(),
+                };
                 vec![symbol.to_owned(), group(value, 2), of.to_owned(), from]
             })
             .collect(),
@@ -140,9 +155,11 @@ pub(in crate::study) fn ranking(letter: &mut Letter, about: &About) {
 pub(in crate::study) fn winner(letter: &mut Letter, about: &About) {
     let result = about.result;
     let mut text = match (&result.least_owning_cost, &result.recommended) {
-        (Some(least), Some(leads)) if least == leads => format!("{least} costs least to own."),
+        (Some(least), Some(leads)) if least == leads => {
+            format!("{least} has the least owning cost and is recommended.")
+        }
         (Some(least), Some(leads)) => format!(
-            "{least} costs least to own; {leads} leads inside the near-tie band, its price with adders is lowest."
+            "{least} has the least owning cost; {leads} is recommended: inside the near-tie band its price with adders is lowest."
         ),
         _ if result.bids.is_empty() => {
             format!("No bid for lot {} yet; import them: ironhum import bids FILE.", result.lot)
@@ -150,7 +167,10 @@ pub(in crate::study) fn winner(letter: &mut Letter, about: &About) {
         _ => "No bid can be ranked: each one misses something.".to_owned(),
     };
     if let Some(margin) = result.margin_pct {
-        text.push_str(&format!(" The second costs {} % more to own.", group(margin, 2)));
+        text.push_str(&format!(
+            " The second lies {} % above the least owning cost.",
+            group(margin, 2)
+        ));
     }
     letter.text(text);
 }
@@ -163,7 +183,7 @@ pub(in crate::study) fn near_tie(letter: &mut Letter, about: &About) {
     }
     let tied = about.ranked().filter(|bid| bid.near_tie).map(|bid| bid.bid.as_str());
     letter.text(format!(
-        "Near tie, within {} % of the least owning cost. By owning cost: {}. By price with adders, which leads here: {}.",
+        "Near tie, within {} % of the least owning cost. By owning cost: {}. By price with adders, of which the first is recommended: {}.",
         short(result.near_tie_pct),
         tied.collect::<Vec<_>>().join(", "),
         result.near_tie_order.join(", ")
@@ -259,6 +279,11 @@ fn input(quantity: &str, winner: &str, currency: &str) -> (String, String, usize
             ("mean energy price of year 1".to_owned(), "per kWh".to_owned(), 5)
         }
         "peak_pu" => ("peak load of year 1".to_owned(), "pu".to_owned(), 3),
+        "stray_share_pu" => (
+            "stray share of the load losses brought to another temperature".to_owned(),
+            "pu".to_owned(),
+            3,
+        ),
         other => (other.to_owned(), String::new(), 3),
     };
     (name, unit, places)
@@ -270,18 +295,27 @@ pub(in crate::study) fn doubts(letter: &mut Letter, about: &About) {
     for key in about.result.flags.iter().filter(|key| !scale.contains(key)) {
         letter.warning(flag(key));
     }
-    let mut said: Vec<(&str, Vec<&str>)> = Vec::new();
+    let mut said: Vec<(&str, Vec<String>)> = Vec::new();
     for bid in &about.result.bids {
-        for key in &bid.flags {
+        for key in bid.flags.iter().filter(|key| !Flags::LOSS_SCALE.keys().contains(key)) {
             match said.iter_mut().find(|(known, _)| known == key) {
-                Some((_, bids)) => bids.push(&bid.bid),
-                None => said.push((key, vec![&bid.bid])),
+                Some((_, bids)) => bids.push(doubted(bid, key)),
+                None => said.push((key, vec![doubted(bid, key)])),
             }
         }
     }
     for (key, bids) in said {
-        letter.warning(format!("{}: {}", bids.join(", "), flag(key)));
+        let said = flag_at(key, about.result.stray_share_pu);
+        letter.warning(format!("{}: {said}", bids.join(", ")));
     }
+}
+
+/// The name of a bid of which something is doubtful, with the limits where those could not be held against it.
+pub(super) fn doubted(bid: &BidResult, key: &str) -> String {
+    if Flags::LIMIT_UNKNOWN.keys().contains(&key) {
+        return format!("{} ({})", bid.bid, bid.limits_unknown.join(", "));
+    }
+    bid.bid.clone()
 }
 
 /// The unit of an input of a basis or a lot, by the facts of its column.

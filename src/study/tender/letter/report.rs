@@ -3,8 +3,8 @@
 use super::award::standing;
 use super::lot::About;
 use super::{
-    asks, cautions, changes, cost_bars, doubts, excluded, factor_scale, factors, map, money,
-    near_tie, packages, ranking, risk, winner,
+    asks, cautions, changes, cost_bars, doubts, excluded, factor_scale, factors, loss_scale, map,
+    money, near_tie, packages, ranking, risk, set_aside, winner,
 };
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
@@ -26,11 +26,13 @@ pub fn report(
 ) -> Result<Letter, StudyError> {
     let mut letter = Letter::default();
     letter.heading(1, format!("Tender {}: bids compared by owning cost", result.tender));
+    set_aside(&mut letter, case);
     opening(&mut letter, case, result);
     for of in &result.lots {
         let about = About::new(case, result, of);
         asks(&mut letter, &about);
         factor_scale(&mut letter, &about);
+        loss_scale(&mut letter, &about);
         factors(&mut letter, &about);
         let working = case.factors(&of.lot)?.working;
         letter.heading(3, "How the factors come about");
@@ -79,32 +81,63 @@ fn opening(letter: &mut Letter, case: &Case, result: &TenderResult) {
     letter.text(
         "Owning cost of a unit = price + A·no-load loss + B·load loss + A aux·auxiliary loss + freight, installation and other adders; losses in kW.",
     );
-    let row = |lot: &LotResult| {
-        let leads = lot.recommended.as_ref();
-        let bid = leads.and_then(|name| lot.bids.iter().find(|bid| bid.bid == *name));
-        let blank = || "–".to_owned();
-        vec![
-            lot.lot.clone(),
-            lot.quantity.to_string(),
-            leads.cloned().unwrap_or_else(blank),
-            bid.and_then(|bid| bid.bidder.clone()).unwrap_or_else(blank),
-            bid.map_or_else(blank, |bid| money(bid.owning_cost)),
-            bid.map_or_else(blank, |bid| money(bid.lot_cost)),
-            lot.margin_pct.map_or_else(blank, |margin| group(margin, 2)),
-        ]
-    };
     letter.table(
         vec![
             Column::words("lot"),
             Column::figures("units", ""),
-            Column::words("recommended"),
+            Column::words("is"),
+            Column::words("bid"),
             Column::words("bidder"),
             Column::figures("owning cost", currency),
             Column::figures("whole lot", currency),
-            Column::figures("second above first", "%"),
+            Column::figures("above the least", "%"),
         ],
-        result.lots.iter().map(row).collect(),
+        result.lots.iter().flat_map(outcome).collect(),
     );
+}
+
+/// The bids that count in a lot, a row for each: that of least owning cost, the next, the recommended, the awarded one.
+fn outcome(lot: &LotResult) -> Vec<Vec<String>> {
+    let blank = || "–".to_owned();
+    let least = lot.bids.iter().find(|bid| bid.rank == Some(1)).map(|bid| bid.owning_cost);
+    let above = |bid: &BidResult| {
+        let least = least.filter(|least| *least > 0.0)?;
+        Some(group(100.0 * (bid.owning_cost / least - 1.0), 2))
+    };
+    let row = |bid: &BidResult| {
+        let is = |name: Option<&String>| name == Some(&bid.bid);
+        let parts = [
+            (bid.rank == Some(1), "least owning cost"),
+            (is(lot.recommended.as_ref()), "recommended"),
+            (is(lot.award.as_ref().map(|award| &award.bid)), "awarded"),
+            (bid.rank == Some(2), "second"),
+        ];
+        let mut words: Vec<&str> =
+            parts.iter().filter(|(holds, _)| *holds).map(|(_, word)| *word).collect();
+        if words.is_empty() {
+            return None;
+        }
+        if bid.rank.is_none() {
+            words.push("excluded");
+        }
+        Some(vec![
+            lot.lot.clone(),
+            lot.quantity.to_string(),
+            words.join(", "),
+            bid.bid.clone(),
+            bid.bidder.clone().unwrap_or_else(blank),
+            money(bid.owning_cost),
+            money(bid.lot_cost),
+            above(bid).unwrap_or_else(blank),
+        ])
+    };
+    let rows: Vec<Vec<String>> = lot.bids.iter().filter_map(row).collect();
+    if rows.is_empty() {
+        let (name, units) = (lot.lot.clone(), lot.quantity.to_string());
+        let none = "no bid is ranked".to_owned();
+        return vec![vec![name, units, none, blank(), blank(), blank(), blank(), blank()]];
+    }
+    rows
 }
 
 /// What was offered, and the losses that are compared: at the bid's rating and the lot's reference temperature.

@@ -13,7 +13,7 @@ pub(in crate::study) fn risk(letter: &mut Letter, about: &About) {
     let Some(risk) = &about.result.risk else { return };
     letter.heading(3, "How sure the winner is");
     letter.text(format!(
-        "{} draws of the factors from the ranges of basis {}, seed {}: the same seed gives the same figures.",
+        "{} draws from the ranges of basis {}, seed {}: the same seed gives the same figures.",
         group(as_float(risk.draws), 0),
         about.case.basis_name().unwrap_or_default(),
         risk.seed
@@ -61,7 +61,10 @@ fn swings(letter: &mut Letter, about: &About, risk: &RiskResult) {
         letter.text("The basis names no range: nothing is uncertain. Add [range.discount_rate_pct] with low and high, for instance.");
         return;
     }
-    let moves = |swing: &Swing| swing.owning_cost_low != swing.owning_cost_high;
+    // Where only rivals move, the winner's lead does.
+    let moves = |swing: &Swing| {
+        swing.owning_cost_low != swing.owning_cost_high || swing.lead_low != swing.lead_high
+    };
     if !risk.swing.iter().any(moves) {
         letter.text("No range of the basis moves these factors: the lot states them itself. How sure the winner is if they had come from the basis: --from-basis.");
         return;
@@ -100,7 +103,7 @@ fn swings(letter: &mut Letter, about: &About, risk: &RiskResult) {
         risk.swing.iter().filter(|s| !moves(s)).map(|swing| swing.quantity).collect();
     if !still.is_empty() {
         letter.text(format!(
-            "Without effect here, because the lot states its own figure or its factors do not use it: {}.",
+            "Without effect here, because the lot states its own figure, or neither its factors nor its bids use it: {}.",
             still.join(", ")
         ));
     }
