@@ -50,10 +50,10 @@ flags! {
     32, NO_LOAD_LOSS_FROM_TOTAL, "no_load_loss_from_total", "the no-load loss is total_loss_w less the load loss";
     33, ADDERS_LOWER_PRICE, "adders_lower_price", "the adders take off more than half of the price: a rebate, or a slip?";
     34, LOSS_BASE_FAR, "loss_base_far", "loss_base_kva is below a quarter or above four times rated_kva, which no cooling stages are: a slip?";
-    35, NAMEPLATE_ODD, "nameplate_odd", "a loss is 0 W or the nameplate is outside what is usual or possible; ironhum check says what";
+    35, NAMEPLATE_ODD, "nameplate_odd", "the nameplate is outside what is usual or possible; ironhum check says what";
+    36, FROM_TEST, "from_test", "a blank of the nameplate is filled from the unit's test report";
     37, LOSS_SCALE, "loss_scale", "a loss is below 0.02 W (no-load) or 0.2 W (load) per kVA of the rating: were kW written in a column of W? (common practice, no source)";
     38, TEST_TEMP_BLANK, "test_temp_blank", "test_temp_c is blank, so the load loss counts as one at the lot's reference temperature, but the bid was quoted at another: where the report gives it at the bid's temperature, import that as test_temp_c";
-    36, FROM_TEST, "from_test", "a blank of the nameplate is filled from the unit's test report";
 }
 
 impl Flags {

@@ -550,7 +550,7 @@ fn a_value_of_the_basis_is_typed_and_held_against_its_column() {
     let mut bench = bench();
     bench.keys("4<Down><Down><Enter>");
     assert!(bench.screen().contains("discount_rate_pct, now 6: "), "{}", bench.screen());
-    assert!(bench.screen().contains("above -100"), "{}", bench.screen());
+    assert!(bench.screen().contains("-50 … 1000 %"), "{}", bench.screen());
     // A comma could be either sign.
     let screen = bench.keys("6,25<Enter>").screen();
     assert!(screen.contains("6,25 is not a number; the decimal sign is a point"), "{screen}");

@@ -46,14 +46,7 @@ pub fn nameplate(
     no_load_loss_w: Option<f64>,
     load_loss_w: Option<f64>,
 ) -> Vec<Doubt> {
-    let mut doubts = Vec::new();
-    let band = IMPEDANCE.iter().find(|(kva, ..)| rated_kva <= *kva);
-    if let (Some(z), Some((_, from, to))) = (impedance_pct, band)
-        && !(*from..=*to).contains(&z)
-    {
-        let why = format!("usual at {rated_kva} kVA are {from} to {to} %, rising with the voltage");
-        doubts.push(Doubt { quantity: "impedance_pct", value: z, why });
-    }
+    let mut doubts = unusual(rated_kva, impedance_pct, no_load_loss_w, load_loss_w);
     for (quantity, loss, least) in [
         ("no_load_loss_w", no_load_loss_w, LEAST_NO_LOAD_W_PER_KVA),
         ("load_loss_w", load_loss_w, LEAST_LOAD_W_PER_KVA),
@@ -64,6 +57,24 @@ pub fn nameplate(
             );
             doubts.push(Doubt { quantity, value, why });
         }
+    }
+    doubts
+}
+
+/// Doubts besides the scale of the losses.
+fn unusual(
+    rated_kva: f64,
+    impedance_pct: Option<f64>,
+    no_load_loss_w: Option<f64>,
+    load_loss_w: Option<f64>,
+) -> Vec<Doubt> {
+    let mut doubts = Vec::new();
+    let band = IMPEDANCE.iter().find(|(kva, ..)| rated_kva <= *kva);
+    if let (Some(z), Some((_, from, to))) = (impedance_pct, band)
+        && !(*from..=*to).contains(&z)
+    {
+        let why = format!("usual at {rated_kva} kVA are {from} to {to} %, rising with the voltage");
+        doubts.push(Doubt { quantity: "impedance_pct", value: z, why });
     }
     if let Some(pk) = load_loss_w
         && pk / (1000.0 * rated_kva) >= RESISTANCE_PU
@@ -117,7 +128,8 @@ pub fn loss_base_is_far(rated_kva: f64, loss_base_kva: Option<f64>) -> bool {
     loss_base_kva.is_some_and(|base| !(0.25..=4.0).contains(&(base / rated_kva)))
 }
 
-/// Whether anything about the losses (at the rating) and the impedance of a nameplate is doubtful.
+/// Whether anything about the losses (at the rating) and the impedance of a nameplate is doubtful besides the scale of
+/// the losses, which [`looks_in_kw`] tells.
 pub fn is_odd(
     rated_kva: f64,
     impedance_pct: Option<f64>,
@@ -125,9 +137,7 @@ pub fn is_odd(
     load_loss_w: f64,
 ) -> bool {
     let (p0, pk) = (Some(no_load_loss_w), Some(load_loss_w));
-    no_load_loss_w == 0.0
-        || load_loss_w == 0.0
-        || !nameplate(rated_kva, impedance_pct, p0, pk).is_empty()
+    !unusual(rated_kva, impedance_pct, p0, pk).is_empty()
         || !contradictions(rated_kva, impedance_pct, None, p0, pk).is_empty()
 }
 
@@ -179,7 +189,6 @@ mod tests {
     #[test]
     fn odd_nameplates() {
         assert!(!is_odd(400.0, Some(4.0), 430.0, 4600.0));
-        assert!(is_odd(400.0, Some(4.0), 0.0, 4600.0) && is_odd(400.0, None, 430.0, 0.0));
         assert!(is_odd(400.0, Some(40.0), 430.0, 4600.0) && is_odd(400.0, None, 430.0, 4e4));
         assert!(!loss_base_is_far(400.0, None) && !loss_base_is_far(400.0, Some(250.0)));
         assert!(loss_base_is_far(400.0, Some(4.0)) && loss_base_is_far(400.0, Some(4e5)));
