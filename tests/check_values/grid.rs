@@ -1,5 +1,8 @@
 //! Check values T3 of the network: per unit, parallel units, short circuit.
 
+use ironhum::engine::transformer::nameplate::{Phases, no_load_current_pct, rated_current};
+use ironhum::engine::working::Silent;
+
 use crate::harness::{Answers, Figures, In, Outcome, not_the_wrong_one, work};
 
 pub(crate) fn grid(id: &str, i: &In) -> Outcome {
@@ -53,7 +56,13 @@ pub(crate) fn grid(id: &str, i: &In) -> Outcome {
                 );
                 base.n("impedance_pu")
             };
-            Figures::of("R_pu", pu(i.n("R_ohm"))).and("X_pu", pu(i.n("X_ohm"))).into()
+            let kva = i.n("VH_V") * i.n("IH_A") / 1000.0;
+            let rated = rated_current(&mut Silent, Phases::One, kva, i.n("VL_V")).expect("sound");
+            let exciting = no_load_current_pct(&mut Silent, i.n("Iexc_LV_A"), rated);
+            Figures::of("R_pu", pu(i.n("R_ohm")))
+                .and("X_pu", pu(i.n("X_ohm")))
+                .and("Iexc_pu", exciting / 100.0)
+                .into()
         }
         "T3-Fitzgerald-2.15" => {
             let z = i.list("Z_pu_250");

@@ -1,7 +1,7 @@
 //! Check values T3 of one transformer: tests, circuit, regulation, efficiency.
 
 use ironhum::engine::transformer::circuit::{Carried, transfer};
-use ironhum::engine::transformer::nameplate::{Phases, open_circuit_copper};
+use ironhum::engine::transformer::nameplate::{Phases, core_loss, open_circuit_copper};
 use ironhum::engine::work::Worked;
 use ironhum::engine::working::Silent;
 
@@ -62,6 +62,7 @@ pub(crate) fn tests_and_efficiency(id: &str, i: &In) -> Outcome {
             let copper = open_circuit_copper(&mut Silent, Phases::One, i.n("Ioc_A"), r2);
             Figures::of("Re2_mohm", 1000.0 * r2)
                 .and("oc_copper_W", copper)
+                .and("core_W", core_loss(&mut Silent, i.n("Poc_W"), copper))
                 .tighter("Re2_mohm", 5e-4)
                 .tighter("oc_copper_W", 5e-3)
                 .into()

@@ -492,6 +492,34 @@ pub fn open_circuit_copper<R: Recorder>(
     w.step(&OPEN_CIRCUIT_COPPER, &inputs, value)
 }
 
+const CORE: Formula = Formula {
+    name: "core loss: no-load loss less the copper loss of the no-load current",
+    symbol: "P_core",
+    formula: "P0 − P_cu0",
+    unit: "W",
+    source: "Kosow Ex 14.20; normally neglected",
+};
+
+/// Core loss inside an open-circuit test (W).
+pub fn core_loss<R: Recorder>(w: &mut R, no_load_loss_w: f64, copper_w: f64) -> f64 {
+    let inputs = [("P0", no_load_loss_w), ("P_cu0", copper_w)];
+    w.step(&CORE, &inputs, no_load_loss_w - copper_w)
+}
+
+const NO_LOAD_CURRENT: Formula = Formula {
+    name: "no-load current in percent of rated current",
+    symbol: "I0_pct",
+    formula: "100·I0/I_r",
+    unit: "%",
+    source: "definition",
+};
+
+/// No-load current in percent of the rated current of the winding that was fed.
+pub fn no_load_current_pct<R: Recorder>(w: &mut R, current_a: f64, rated_a: f64) -> f64 {
+    let inputs = [("I0", current_a), ("I_r", rated_a)];
+    w.step(&NO_LOAD_CURRENT, &inputs, 100.0 * current_a / rated_a)
+}
+
 const WAVEFORM: Formula = Formula {
     name: "no-load loss corrected for the waveform",
     symbol: "P0",

@@ -78,9 +78,9 @@ pub struct Tested {
     pub no_load_current_pct: Option<f64>,
     /// Short-circuit test and what follows from it.
     pub short: Option<Shorted>,
-    /// Series resistance brought to the winding that was fed in the open-circuit test (Ω), and the copper loss of the
-    /// no-load current in it (W); none unless both tests and both voltages are known.
-    pub open_circuit_copper: Option<[f64; 2]>,
+    /// Series resistance brought to the winding that was fed in the open-circuit test (Ω), the copper loss of the no-load
+    /// current in it, and the core loss that is left (W); none unless both tests and both voltages are known.
+    pub open_circuit_copper: Option<[f64; 3]>,
 }
 
 /// A short-circuit test brought to the reference temperature.
@@ -96,13 +96,6 @@ pub struct Shorted {
     pub impedance_pct: f64,
 }
 
-const NO_LOAD_CURRENT: Formula = Formula {
-    name: "no-load current in percent of rated current",
-    symbol: "I0_pct",
-    formula: "100·I0/I_r",
-    unit: "%",
-    source: "definition",
-};
 const IMPEDANCE_PCT: Formula = Formula {
     name: "impedance in percent",
     symbol: "Z_pct",
@@ -134,9 +127,8 @@ pub fn read<R: Recorder>(w: &mut R, plate: &Plate, report: &TestReport) -> Resul
         tested.open = Some(nameplate::open_circuit(w, plate.phases, test, plate.rated_v(fed))?);
         if let Some(volts) = plate.rated_v(fed) {
             let rated = nameplate::rated_current(w, plate.phases, plate.rated_kva, volts)?;
-            let percent = 100.0 * test.current_a / rated;
-            let inputs = [("I0", test.current_a), ("I_r", rated)];
-            tested.no_load_current_pct = Some(w.step(&NO_LOAD_CURRENT, &inputs, percent));
+            let percent = nameplate::no_load_current_pct(w, test.current_a, rated);
+            tested.no_load_current_pct = Some(percent);
         }
     }
     let Some(short) = short else { return Ok(tested) };
@@ -149,7 +141,8 @@ pub fn read<R: Recorder>(w: &mut R, plate: &Plate, report: &TestReport) -> Resul
         let (from, to) = (volts(r.short_circuit_side.unwrap_or(Side::Hv)), volts(fed));
         let ohm = transfer(w, Carried::Impedance(shorted.test.resistance_ohm), from, to)?;
         let lost = nameplate::open_circuit_copper(w, plate.phases, open.current_a, ohm);
-        tested.open_circuit_copper = Some([ohm, lost]);
+        let core = nameplate::core_loss(w, open.power_w, lost);
+        tested.open_circuit_copper = Some([ohm, lost, core]);
     }
     Ok(tested)
 }

@@ -100,11 +100,11 @@ calc! {
             .and("resistive_loss_w", copper.corrected.resistive_loss_w)
             .and("stray_loss_w", copper.corrected.stray_loss_w);
         let iron_w = tested.open.map(|iron| iron.no_load_loss_w);
-        if let (Some([ohm, lost]), Some(iron_w)) = (tested.open_circuit_copper, iron_w) {
+        if let Some([ohm, lost, core]) = tested.open_circuit_copper {
             out = out
                 .and("resistance_at_open_circuit_side_ohm", ohm)
                 .and("open_circuit_copper_w", lost)
-                .and("core_loss_w", iron_w - lost);
+                .and("core_loss_w", core);
         }
         let (impedance, load) = (Some(copper.impedance_pct), Some(copper.corrected.load_loss_w));
         let doubts = plausibility::nameplate(i.rated_kva, impedance, iron_w, load);
