@@ -182,6 +182,9 @@ fn which_basis(known: &[String]) -> String {
     if known.is_empty() {
         "the book has no basis yet; import one: ironhum import basis FILE".to_owned()
     } else {
-        format!("which basis? name one with --basis: {}", some(known))
+        format!(
+            "which basis? name one with --basis: {}; to make one of them the current one, import its file with --current",
+            some(known)
+        )
     }
 }

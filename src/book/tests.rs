@@ -371,7 +371,10 @@ fn a_basis_is_saved_as_a_whole() {
 
     book.save_basis(&sheet("low"), &actor()).expect("second");
     let error = book.basis(None).expect_err("two").to_string();
-    assert_eq!(error, "which basis? name one with --basis: plan, low");
+    assert_eq!(
+        error,
+        "which basis? name one with --basis: plan, low; to make one of them the current one, import its file with --current"
+    );
     let error = book.basis(Some("paln")).expect_err("unknown").to_string();
     assert_eq!(error, "the book has no basis paln; did you mean plan?");
     book.set_current_basis("low", &actor()).expect("choose");

@@ -66,7 +66,7 @@ pub(super) fn on(args: &Args, path: PathBuf) -> Result<Exit, Failure> {
 
 fn session(path: &Path, basis: Option<&str>, may_write: bool) -> Result<Session, StudyError> {
     let book = Book::open(path, Access::ReadOnly)?;
-    let desk = Desk::read(&book, basis)?;
+    let desk = Desk::read(&book, basis)?.with_every_series(&book)?;
     let tenders = book
         .tenders()?
         .iter()

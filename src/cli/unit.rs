@@ -71,7 +71,9 @@ fn fit_asked(book: &Book, desk: &Desk, options: &Unit) -> Result<Option<FitAsked
         }
         _ => return Ok(None),
     };
-    asked.beside = options.beside.as_deref().map(|unit| book.unit(unit)).transpose()?;
+    if let Some(beside) = &options.beside {
+        asked = asked.beside(desk, book.unit(beside)?, &options.unit)?;
+    }
     asked.network_mva = options.network_mva;
     asked.fault_limit_mva = options.fault_limit_mva;
     Ok(Some(asked))

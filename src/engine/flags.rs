@@ -40,7 +40,7 @@ flags! {
     22, LOSSES_SWAPPED, "losses_swapped", "the load loss is below the no-load loss: were they exchanged?";
     23, LAW_NOT_CHECKED, "law_not_checked", "the law that is named could not be held against an offer or bid; it passes";
     24, QUANTITY_SHORT, "quantity_short", "the bid offers fewer units than the lot asks for";
-    25, OFFER_OVERLOADED, "offer_overloaded", "the best offer is smaller than the peak load of a year of its service; set loading_limit_pu to rule that out";
+    25, OFFER_OVERLOADED, "offer_overloaded", "the best offer is smaller than the peak load of a year of its service; a loading_limit_pu of 1 rules that out";
     26, IMPEDANCE_UNKNOWN, "impedance_unknown", "impedance_pct is blank or contradicts the load loss: its voltage drop is that of the resistance alone";
     27, OFFER_IMPEDANCE_UNKNOWN, "offer_impedance_unknown", "impedance_pct of an offer is blank or contradicts its load loss: its voltage drop is that of the resistance alone";
     28, CAPACITY_SCALE, "capacity_scale", "the capacity charge of a kW and year is above what a kW of loss costs in energy all year: is it an investment, paid once? Give what it costs per year";

@@ -131,6 +131,17 @@ impl Desk {
         desk
     }
 
+    /// The same desk with every price series of the book, for a basis that may come to name another.
+    ///
+    /// # Errors
+    /// The store fails.
+    pub fn with_every_series(mut self, book: &Book) -> Result<Self, StudyError> {
+        let names = book.price_series_names()?;
+        let all: Result<Vec<_>, _> = names.iter().map(|name| book.price_series(name)).collect();
+        self.series = Arc::new(all?);
+        Ok(self)
+    }
+
     /// Stray part of a load loss of which the split is not known.
     pub fn stray_share_pu(&self) -> f64 {
         self.sheet.basis.stray_share_pu.unwrap_or(0.0)

@@ -224,6 +224,10 @@ impl App {
         if self.basis.storing && action != Some(Action::Save) {
             self.basis.storing = false;
             self.message = None;
+            if action == Some(Action::Quit) {
+                self.message = Some("Nothing was stored; the same key again quits.".to_owned());
+                return;
+            }
         }
         match (action, &mut self.typing) {
             (Some(action), _) => self.act(action),

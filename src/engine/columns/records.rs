@@ -147,7 +147,7 @@ record! {
         failure_cost: Option<Money>, COST.blank("basis, else 0"), "what its failure in service costs besides the replacement";
         removal_cost: Option<Money>, COST.blank("basis, else 0"), "cost of taking it away";
         scrap_value: Option<Money>, COST.blank("basis, else 0"), "what the scrap brings";
-        replace_by_year: Option<i64>, YEAR, "year by which it must be replaced";
+        replace_by_year: Option<i64>, YEAR, "year by which it must be replaced: kept for the replacement programme; the ranking goes by cost alone";
         customers: Option<i64>, C::integer(0, 100_000_000).blank("0"), "customers that its failure cuts off";
         note: Option<String>, C::text(), "remark";
     }
@@ -249,9 +249,9 @@ record! {
         near_tie_pct: Option<f64>, C::real(0.0, 100.0).blank("0"), "bids within this of the least owning cost count as near-tied";
         law: Option<String>, C::id(), "minimum-efficiency law that offers must meet: eu-548-2014, us-10cfr431 or ca-sor-2016-311";
         estimate_missing: Option<bool>, C::flag().blank("false"), "estimate missing losses from the fleet's own known units";
-        units_per_year: Option<i64>, C::integer(0, 10_000_000), "most replacements a year";
-        units_per_site_year: Option<i64>, C::integer(0, 10_000_000), "most replacements a year at one site";
-        carry_over: Option<bool>, C::flag().blank("false"), "whether unspent budget passes to the next year";
+        units_per_year: Option<i64>, C::integer(0, 10_000_000), "most replacements a year: kept for the replacement programme; the ranking goes by cost alone";
+        units_per_site_year: Option<i64>, C::integer(0, 10_000_000), "most replacements a year at one site: as units_per_year";
+        carry_over: Option<bool>, C::flag().blank("false"), "whether unspent budget passes to the next year: as units_per_year";
     }
 }
 

@@ -194,7 +194,7 @@ const WAITING: Formula = Formula {
     source: "methods, section 7",
 };
 const NO_WAITING: Formula = Formula {
-    name: "what a year's delay costs: nothing, to buy now is not best",
+    name: "what a year's delay costs: nothing, to buy now is not the best choice or not open",
     formula: "0",
     ..WAITING
 };

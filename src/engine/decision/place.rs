@@ -137,7 +137,7 @@ impl LeftOut {
         match self {
             Self::OutOfService => "is not in service",
             Self::LossesBlank => {
-                "no_load_loss_w and load_loss_w are blank; import them, or set estimate_missing in the basis"
+                "no_load_loss_w and load_loss_w are blank; import them (one of them where total_loss_w is known), or set estimate_missing in the basis"
             }
             Self::NoLoadLossBlank => {
                 "no_load_loss_w is blank; import it, or set estimate_missing in the basis"

@@ -41,11 +41,11 @@ const ROW: Formula = Formula {
     source: "the table named beside the step",
 };
 const LINE: Formula = Formula {
-    name: "limit between two ratings of the table, on a straight line",
+    name: "limit on the straight line through two ratings of the table",
     symbol: "L",
     formula: "L_a + (L_b − L_a)·(S − S_a)/(S_b − S_a)",
     unit: "",
-    source: "linear interpolation as the law says; the table is named beside the step",
+    source: "linear interpolation or extrapolation as the law says; the table is named beside the step",
 };
 
 /// The limit at `rating` (unit of the rows), from rows sorted by rating. `of` says what it limits.

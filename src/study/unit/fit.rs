@@ -242,8 +242,20 @@ impl Fit<'_> {
             law: verdict.map(|(verdict, on)| VerdictRow::of(&verdict, on)),
             notes: self.notes(),
         };
+        row.notes.extend(self.told_apart(row.law.as_ref()));
         Self::judge(&mut row);
         Ok(row)
+    }
+
+    /// Where the ranking, which holds an offer to the law by its catalogue alone, finds otherwise than here, where the
+    /// place counts too (pole mounting, tap changer, highest voltage).
+    fn told_apart(&self, here: Option<&VerdictRow>) -> Option<String> {
+        let mut candidates = self.question.context.candidates.iter();
+        let ranked = candidates.find(|c| c.offer == self.asked.proposed.unit)?.lawful_at(0);
+        let found = if ranked { "meets" } else { "misses" };
+        (here?.meets? != ranked).then(|| {
+            format!("the ranking holds the offer alone to the law, where it {found} it; what the place adds counts here")
+        })
     }
 
     /// Names what does not fit and what could not be looked at.

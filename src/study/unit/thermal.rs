@@ -287,7 +287,9 @@ impl Question<'_> {
             (Some(Ok(row)), Some(place)) if row.year.is_none() => {
                 self.steps(place, row.rated_kva).err().map(|refusal| refusal.to_string())
             }
-            (None, _) => Some("the unit cannot be computed: see left_out".to_owned()),
+            (None, _) => {
+                Some("its losses or its load are not known: see why it is not ranked".to_owned())
+            }
             _ => None,
         };
         let choice = decision.and_then(Self::heat_choice);

@@ -5,8 +5,8 @@ use crate::engine::columns::{Offer, TenderSheet, Unit};
 use crate::engine::transformer::losses::{Losses, quoted};
 use crate::engine::transformer::vector_group::{phases, two_windings};
 use crate::engine::working::Silent;
-use crate::study::StudyError;
 use crate::study::tender::{find_bid, find_lot};
+use crate::study::{Desk, StudyError};
 
 /// What is to be fitted, and beside what.
 #[derive(Clone, Debug, PartialEq)]
@@ -74,6 +74,20 @@ impl FitAsked {
             auxiliary_loss_w: bid.auxiliary_loss_w,
             ..Unit::blank()
         })?)
+    }
+
+    /// The same beside another unit of the fleet, its blanks filled from its test report.
+    ///
+    /// # Errors
+    /// The unit that stands there itself.
+    pub fn beside(mut self, desk: &Desk, unit: Unit, there: &str) -> Result<Self, Refusal> {
+        if unit.unit == there {
+            let why = "stands there itself; name the unit that stays in service next to it";
+            return Err(Refusal::new("beside", there, why));
+        }
+        let filled = desk.tested(&unit.unit).and_then(|it| it.filled(desk.stray_share_pu()));
+        self.beside = Some(filled.unwrap_or(unit));
+        Ok(self)
     }
 
     fn of(proposed: Unit) -> Result<Self, Refusal> {
