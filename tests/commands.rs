@@ -5,6 +5,7 @@ mod support;
 use std::io::Read as _;
 use std::process::{Output, Stdio};
 
+use ironhum::book::{Access, Book};
 use serde_json::Value;
 use support::{Program, demo_fleet};
 
@@ -483,4 +484,24 @@ fn columns_of_toml_files_show_a_file_that_is_taken() {
     assert!(names.contains(&"stray_share_pu") && names.contains(&"peak_pu"), "{names:?}");
     assert!(!names.contains(&"cash_flow") && !names.contains(&"max_mass_kg"), "{names:?}");
     assert!(!program.done(&["columns", "units"]).contains("layout"));
+}
+
+/// The dashboard reads a book and opens it a second time to store an award: the locks of the first stay, without which
+/// another program could take the log away that both still use.
+#[cfg(target_os = "linux")]
+#[test]
+fn a_book_that_is_opened_twice_keeps_its_locks() {
+    use std::os::unix::fs::MetadataExt as _;
+    let program = small();
+    let first = Book::open(program.book(), Access::ReadOnly).expect("a book");
+    assert_eq!(first.counts().expect("counts").units, 2);
+    let inode = format!(":{} ", std::fs::metadata(program.book()).expect("a file").ino());
+    let locks = || {
+        let all = std::fs::read_to_string("/proc/locks").expect("the locks of the system");
+        all.lines().filter(|line| line.contains(&inode)).count()
+    };
+    let held = locks();
+    assert!(held > 0, "a book that is read is locked");
+    drop(Book::open(program.book(), Access::ReadWrite).expect("the same"));
+    assert_eq!(locks(), held);
 }

@@ -60,15 +60,11 @@ impl Book {
                 }
             }
             Err(source) => return Err(BookError::File { path: path.to_owned(), source }),
-            // The store would only say that it cannot be opened.
-            Ok(_) => drop(
-                std::fs::File::open(path)
-                    .map_err(|source| BookError::File { path: path.to_owned(), source })?,
-            ),
+            Ok(_) => {}
         }
         // Looked at read-only first, so that what is not ours is never written to.
         if path.exists() {
-            let mut book = reader(path, false)?;
+            let mut book = reader(path, false).map_err(|error| unopened(path, error))?;
             let mut found = recognise(&book);
             let mut frozen = false;
             if matches!(&found, Err(Recognised::Failed(_)))
@@ -130,6 +126,15 @@ pub(super) fn reader(path: &Path, frozen: bool) -> Result<Connection> {
     };
     settle(&connection)?;
     Ok(connection)
+}
+
+/// Why a file cannot be opened: the store only says that. The file is opened here where the store could not and never
+/// before: to close it would take away the locks of every other connection of this process to the same book.
+fn unopened(path: &Path, error: BookError) -> BookError {
+    match (&error, std::fs::File::open(path)) {
+        (BookError::Store(_), Err(source)) => BookError::File { path: path.to_owned(), source },
+        _ => error,
+    }
 }
 
 /// Whether changes wait in a log beside the book: then the file alone is not the whole.
