@@ -145,6 +145,22 @@ fn rates_that_bids_rest_on() {
     program.import("tender", &program.write("one.toml", one), &[]);
 }
 
+/// A bid that names no currency is in the tender's: another one would make other money of it without a word.
+#[test]
+fn a_currency_that_blank_bids_rest_on() {
+    let program = program();
+    let bids = BIDS.replace("9000,EUR", "9000,").replace("9500,USD", "9500,");
+    let blank = bids.replace("L,A", "M,A").replace("L,B", "M,B");
+    program.import("bids", &program.write("blank.csv", blank), &[]);
+    let other = TENDER.replace("\"EUR\"", "\"SEK\"").replace("USD = 0.9", "USD = 9\nEUR = 11");
+    let said = "wrong:2: currency: (blank): currency EUR has bids that name no currency in the book and stays";
+    rejected(&program, "tender", &other, &[said]);
+    // Once they name it, the tender may go over to another.
+    let named = bids.replace("L,A", "M,A").replace("L,B", "M,B").replace("00,,", "00,EUR,");
+    program.import("bids", &program.write("named.csv", named), &[]);
+    program.import("tender", &program.write("other.toml", other), &[]);
+}
+
 #[test]
 fn quantity_of_zero() {
     let program = program();

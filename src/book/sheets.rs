@@ -4,6 +4,8 @@
 
 use std::ops::ControlFlow;
 
+use rusqlite::OptionalExtension as _;
+
 use super::{Actor, Book, BookError, Change, Result, Table, cells, read, tables};
 use crate::engine::columns::{
     Award, Basis, BasisBudget, BasisRange, BasisSheet, Bid, Lot, Measured, Tender, TenderRate,
@@ -106,11 +108,13 @@ impl Change<'_> {
     /// Saves a tender with its rates and lots. Bids and measured units of the book stay as they are.
     ///
     /// # Errors
-    /// A lot that has bids, or the rate of a currency of bids, is gone from the sheet ([`BookError::InUse`]), something that was awarded is changed
-    /// ([`BookError::Awarded`]), or the store fails.
+    /// A lot that has bids, or the rate of a currency of bids, is gone from the sheet, or its currency is another
+    /// while bids name none ([`BookError::InUse`]), something that was awarded is changed ([`BookError::Awarded`]), or the
+    /// store fails.
     pub fn save_tender(&self, sheet: &TenderSheet) -> Result<()> {
         self.keeps_awarded(sheet)?;
         let tender = &sheet.tender.tender;
+        self.keeps_currency(&sheet.tender)?;
         self.put(&tables::TENDERS, None, &sheet.tender.values())?;
         let rates: Vec<_> = sheet.rates.iter().map(TenderRate::values).collect();
         self.replace(&tables::TENDER_RATES, tender, &rates, |_| Ok(()))?;
@@ -131,6 +135,17 @@ impl Change<'_> {
             }
         }
         Ok(())
+    }
+
+    /// Holds that a bid which names no currency stays in that in which it came: the tender's.
+    fn keeps_currency(&self, sheet: &Tender) -> Result<()> {
+        let sql = "SELECT currency FROM tenders WHERE tender = ?1 AND currency <> ?2 AND EXISTS \
+                   (SELECT 1 FROM bids WHERE bids.tender = ?1 AND bids.currency IS NULL)";
+        let mut other = self.transaction.prepare_cached(sql)?;
+        let known =
+            other.query_row([&sheet.tender, &sheet.currency], |row| row.get(0)).optional()?;
+        let parts = "bids that name no currency";
+        known.map_or(Ok(()), |key| Err(BookError::InUse { kind: "currency", key, parts }))
     }
 
     /// Puts the parts of a whole and removes those that it no longer has, where `may_go` agrees.

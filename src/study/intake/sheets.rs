@@ -99,6 +99,9 @@ impl Intake<'_> {
             Err(error @ BookError::InUse { kind: "rate", .. }) => {
                 self.problems.add(sheet.line("rates"), "rates", "", error.to_string());
             }
+            Err(error @ BookError::InUse { kind: "currency", .. }) => {
+                self.problems.add(sheet.line("currency"), "currency", "", error.to_string());
+            }
             Err(error @ (BookError::InUse { .. } | BookError::Awarded { .. })) => {
                 self.problems.add(1, "lot", "", error.to_string());
             }
