@@ -122,7 +122,8 @@ pub fn tender(text: &str, problems: &mut Problems) -> Option<Sheet<TenderSheet>>
                 for lot in array {
                     let Some(lot) = reader.lot(lot) else { continue };
                     if lots.iter().any(|other| other.lot == lot.lot) {
-                        let line = reader.line(key);
+                        let line = reader.lines.get(&format!("{}.lot", lot.lot)).copied();
+                        let line = line.unwrap_or_else(|| reader.line(key));
                         reader.problems.add(line, "lot", &lot.lot, "stands twice in the tender");
                     }
                     lots.push(lot);

@@ -230,7 +230,7 @@ fn what_is_wrong_in_a_tender_is_told_by_line() {
             "quanity = 60",
             "t.toml:11: quanity: 60: is no key of a lot; did you mean quantity?",
         ),
-        ("\"L2\"", "\"L1\"", "t.toml:8: lot: L1: stands twice in the tender"),
+        ("\"L2\"", "\"L1\"", "t.toml:15: lot: L1: stands twice in the tender"),
         (
             "hv_kv = 20",
             "hv_kv = 0.2",
