@@ -291,6 +291,9 @@ fn measured_units_enter_the_fleet_once() {
     let said =
         "no_load_loss_w: 327: would change what 0427-07 measured: it is in the fleet as T-0427-07";
     assert!(error.contains(said) && error.contains("--why TEXT"), "{error}");
+    let corrected_path = corrected.to_string_lossy();
+    let blank = ["import", "measured", &*corrected_path, "--why", " "];
+    assert!(refused(&program, &blank).1.contains(said), "a blank is no reason");
     program.import("measured", &corrected, &["--why", "misread, report of 3 June"]);
     let third = deliver(&["--also", "0427-04"]);
     assert_eq!(third["units"][6]["outcome"], "changed");

@@ -46,7 +46,8 @@ impl Intake<'_> {
         let change = book.change(self.actor, Some(&self.file))?;
         let mut upsert = change.upsert(table, None, &layout.present(), self.options.clear_blank)?;
         let rules = Rules::of(rules, table.columns);
-        let mut ties = Ties::of(self.what, table, &change, self.actor.why.is_some())?;
+        let is_reasoned = self.actor.why.as_ref().is_some_and(|why| !why.trim().is_empty());
+        let mut ties = Ties::of(self.what, table, &change, is_reasoned)?;
         let put = |batch: &mut Batch| -> Result<(), IntakeError> {
             self.look(batch.bytes)?;
             for Read { row, values, faults } in batch.rows() {
