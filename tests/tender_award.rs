@@ -5,6 +5,11 @@ mod support;
 
 use std::process::Output;
 
+use ironhum::book::{Access, Actor, Book};
+use ironhum::study::StudyError;
+use ironhum::study::tender::Case;
+use ironhum::study::tender::decide::{self, Choice};
+use ironhum::study::tender::deliver::{Wanted, deliver};
 use serde_json::{Value, json};
 use support::{Program, demo_fleet};
 
@@ -342,6 +347,36 @@ fn a_unit_of_that_name_from_elsewhere_is_not_touched() {
 }
 
 /// Without a book nothing is made.
+/// What is signed is what was compared: between the two nobody else may have written.
+#[test]
+fn a_book_that_others_changed_is_not_awarded() {
+    let program = demo();
+    let open = || Book::open(program.book(), Access::ReadWrite).expect("the book");
+    let actor =
+        Actor { who: "tester".into(), at: "2027-05-04T08:00:00Z".into(), why: Some("x".into()) };
+    let choice = Choice { lot: "L1", bid: "O1", despite: false };
+    let mut book = open();
+    let case = Case::read(&book, TENDER, None).expect("the tender");
+
+    let mut sheet = book.basis(None).expect("the basis");
+    sheet.basis.discount_rate_pct += 3.0;
+    open().save_basis(&sheet, &actor).expect("another program");
+    let busy = |result: Result<_, StudyError>| assert!(matches!(result, Err(StudyError::Busy)));
+    busy(decide::award(&mut book, &case, choice, &actor).map(drop));
+    assert!(book.tender(TENDER).expect("the tender").awards.is_empty());
+
+    let case = Case::read(&book, TENDER, None).expect("read again");
+    decide::award(&mut book, &case, choice, &actor).expect("awarded");
+    let case = Case::read(&book, TENDER, None).expect("read again");
+    open().save_basis(&sheet, &actor).expect("nothing new");
+    sheet.basis.discount_rate_pct += 3.0;
+    open().save_basis(&sheet, &actor).expect("another program");
+    let wanted = Wanted { lot: None, except: &[], also: &[], prefix: "" };
+    busy(deliver(&mut book, &case, &wanted, &actor).map(drop));
+    busy(decide::withdraw(&mut book, &case, "L1", &actor).map(drop));
+    assert_eq!(book.tender(TENDER).expect("the tender").awards.len(), 1);
+}
+
 #[test]
 fn no_book_no_award() {
     let program = Program::new();

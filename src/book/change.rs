@@ -95,6 +95,14 @@ impl Book {
 }
 
 impl Change<'_> {
+    /// As [`Book::data_version`]: what others had written when the change began.
+    ///
+    /// # Errors
+    /// The store fails.
+    pub fn data_version(&self) -> Result<i64> {
+        super::read::data_version(&self.transaction)
+    }
+
     /// Prepares to put rows into a table. `present` are the places of the columns that the rows carry; the key is
     /// among them. Blanks leave old values unless `clear_blank`.
     ///

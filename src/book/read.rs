@@ -116,12 +116,12 @@ impl Book {
         }
     }
 
-    /// A number that changes whenever another connection changes the book.
+    /// A number that changes whenever another connection changes the book; a change has the same one.
     ///
     /// # Errors
     /// The store fails.
     pub fn data_version(&self) -> Result<i64> {
-        Ok(self.connection.query_row("PRAGMA data_version", [], |row| row.get(0))?)
+        data_version(&self.connection)
     }
 
     /// How much the book holds.
@@ -167,6 +167,10 @@ impl Book {
             Err(error) => error,
         }
     }
+}
+
+pub(super) fn data_version(connection: &Connection) -> Result<i64> {
+    Ok(connection.query_row("PRAGMA data_version", [], |row| row.get(0))?)
 }
 
 /// The keys of a table, in order of entry.

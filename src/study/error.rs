@@ -32,7 +32,7 @@ pub enum StudyError {
     #[error("{0}")]
     Book(#[from] BookError),
     /// Others kept writing while the book was read.
-    #[error("the book changed while it was read; try again when the import has ended")]
+    #[error("others changed the book meanwhile; nothing is stored: look, and try again")]
     Busy,
     /// The work was stopped.
     #[error("stopped")]

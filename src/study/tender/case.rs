@@ -5,7 +5,7 @@ use super::{
     BasisForFactors, BidWorking, LotFactors, LotResult, TenderResult, as_awarded, award_of,
     evaluate, lot_factors, working, working_as_awarded,
 };
-use crate::book::{Book, BookError};
+use crate::book::{Book, BookError, Change};
 use crate::engine::Refusal;
 use crate::engine::columns::{Lot, TenderSheet};
 use crate::engine::decision::Context;
@@ -24,6 +24,8 @@ pub struct Case {
     basis: Option<(Desk, Context)>,
     /// The lots as they were put out, where the factors that they state are set aside.
     put_out: Option<Vec<Lot>>,
+    /// Version of the book's data when it was read, where it came from a book.
+    read_at: Option<i64>,
 }
 
 /// How a simulation is drawn.
@@ -79,15 +81,17 @@ impl Case {
         basis: Option<&str>,
         needs_basis: impl Fn(&TenderSheet, &Lot) -> bool,
     ) -> Result<Self, StudyError> {
+        let read_at = Some(book.data_version()?);
         let sheet = book.tender(tender)?;
         let open = sheet.lots.iter().any(|lot| needs_basis(&sheet, lot));
-        match Desk::basis_only(book, basis) {
-            Ok(desk) => Self::new(sheet, Some(desk)),
+        let desk = match Desk::basis_only(book, basis) {
+            Ok(desk) => Some(desk),
             Err(StudyError::Book(BookError::WhichBasis { known })) if known.is_empty() || !open => {
-                Self::new(sheet, None)
+                None
             }
-            Err(error) => Err(error),
-        }
+            Err(error) => return Err(error),
+        };
+        Ok(Self { read_at, ..Self::new(sheet, desk)? })
     }
 
     /// A tender with the desk on which its basis lies.
@@ -96,7 +100,20 @@ impl Case {
     /// What the engine refuses of the basis.
     pub fn new(sheet: TenderSheet, desk: Option<Desk>) -> Result<Self, StudyError> {
         let ready = |desk: Desk| desk.context().map(|context| (desk, context));
-        Ok(Self { sheet, basis: desk.map(ready).transpose()?, put_out: None })
+        Ok(Self { sheet, basis: desk.map(ready).transpose()?, put_out: None, read_at: None })
+    }
+
+    /// Holds that a change begins on the book as the case was read from it, so that what is signed is what was compared:
+    /// from its beginning nobody else writes.
+    ///
+    /// # Errors
+    /// Others wrote since; the book fails.
+    pub(super) fn still_stands(&self, change: &Change<'_>) -> Result<(), StudyError> {
+        let now = change.data_version()?;
+        if self.read_at.is_some_and(|read_at| read_at != now) {
+            return Err(StudyError::Busy);
+        }
+        Ok(())
     }
 
     /// The same case as if no lot stated its factors: each comes from the basis, so that its ranges and what it rests

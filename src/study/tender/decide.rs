@@ -50,7 +50,7 @@ pub struct Choice<'a> {
 ///
 /// # Errors
 /// As [`super::evaluate`]; an unknown bid, no reason where one is needed, an excluded bid that is not meant despite
-/// what it misses, a lot that is awarded to another bid.
+/// what it misses, a lot that is awarded to another bid; a book that others changed since the case was read.
 pub fn award(
     book: &mut Book,
     case: &Case,
@@ -97,6 +97,7 @@ pub fn award(
         why: actor.why.clone().filter(|_| reasoned),
     };
     let change = book.change(actor, None)?;
+    case.still_stands(&change)?;
     change.award(&sheet.tender.tender, &record)?;
     change.commit()?;
     Ok(told(case, of_lot, chosen, Awarded::of(&record, chosen), "new"))
@@ -124,7 +125,8 @@ pub fn award_as_shown(
 /// Takes the award of a lot back; the journal keeps it.
 ///
 /// # Errors
-/// As [`super::evaluate`]; no reason, a lot that is not awarded or of which units are in the fleet.
+/// As [`super::evaluate`]; no reason, a lot that is not awarded or of which units are in the fleet; a book
+/// that others changed since the case was read.
 pub fn withdraw(
     book: &mut Book,
     case: &Case,
@@ -138,6 +140,7 @@ pub fn withdraw(
     }
     let evaluated = case.evaluate(Some(lot))?;
     let change = book.change(actor, None)?;
+    case.still_stands(&change)?;
     let record = change.withdraw(&case.sheet.tender.tender, lot)?;
     let (of_lot, bid) = find(&evaluated, lot, &record.bid)?;
     change.commit()?;

@@ -77,7 +77,7 @@ pub struct NotDelivered {
 ///
 /// # Errors
 /// As [`crate::study::settle::settle`]; an unknown serial number among those that are named, a unit of that identifier that
-/// came from elsewhere, nothing that could be taken.
+/// came from elsewhere, nothing that could be taken; a book that others changed since the case was read.
 pub fn deliver(
     book: &mut Book,
     case: &Case,
@@ -90,6 +90,7 @@ pub fn deliver(
     let tender = &sheet.tender.tender;
     let earlier = book.deliveries(tender)?;
     let change = book.change(actor, Some(&format!("tender {tender}")))?;
+    case.still_stands(&change)?;
     let mut fleet = Fleet::new(&change, wanted.prefix, &earlier)?;
     let mut result =
         DeliverResult { tender: tender.clone(), units: Vec::new(), left_out: Vec::new() };
