@@ -52,7 +52,7 @@ fn who_leads_and_what_a_bid_misses_is_said_before_it_is_stored() {
     assert!(screen.contains("owning cost 26 086 EUR a unit"), "{screen}");
     assert!(!screen.contains("a reason is needed"), "{screen}");
     let screen = bench.keys("<Esc><Up>w").screen();
-    assert!(screen.contains("! O1 leads, not O1-ALT: a reason is needed."), "{screen}");
+    assert!(screen.contains("! O1 is recommended, not O1-ALT: a reason is needed."), "{screen}");
     let screen = bench.keys("<Esc><Down><Down>w").screen();
     assert!(screen.contains("! O1-ALT costs 401 EUR a unit less to own."), "{screen}");
     let screen = bench.keys("<Esc><End>w").screen();
@@ -70,7 +70,7 @@ fn who_leads_and_what_a_bid_misses_is_said_before_it_is_stored() {
 fn an_award_is_stored_with_who_when_and_why() {
     let (mut bench, book) = bench();
     let screen = bench.keys("3w<Enter>").screen();
-    assert!(screen.contains("O1 leads; to award another bid, say why."), "{screen}");
+    assert!(screen.contains("O1 is recommended; to award another bid, say why."), "{screen}");
     assert!(awards(&book).is_empty());
     // The line is open still, and what is typed takes the message away.
     let screen = bench.keys("b").screen();

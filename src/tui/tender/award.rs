@@ -39,17 +39,19 @@ pub(in crate::tui) fn award(app: &App) -> Result<Of, String> {
     Ok(Of::Reason { lot: lot.to_owned(), bid: bid.to_owned() })
 }
 
-/// Holds that there is a reason where the lot that is shown goes to another bid than the one that leads.
+/// Holds that there is a reason where the lot that is shown goes to another bid than the recommended one.
 ///
 /// # Errors
 /// That one is needed.
 pub(in crate::tui) fn reasoned(app: &App, bid: &str, why: &str) -> Result<(), String> {
-    let leads = lot(app).and_then(|(_, result)| result.recommended.as_deref());
-    if leads == Some(bid) || !why.is_empty() {
+    let recommended = lot(app).and_then(|(_, result)| result.recommended.as_deref());
+    if recommended == Some(bid) || !why.is_empty() {
         return Ok(());
     }
-    Err(match leads {
-        Some(leads) => format!("{} leads; to award another bid, say why.", text::cut(leads, 20)),
+    Err(match recommended {
+        Some(other) => {
+            format!("{} is recommended; to award another bid, say why.", text::cut(other, 20))
+        }
         None => "It is not ranked; to award it, say why.".to_owned(),
     })
 }
@@ -98,12 +100,12 @@ pub(super) fn draw(
         against.push(format!("{least} costs {} {currency} a unit less to own.", money(lacked.gap)));
     }
     match result.recommended.as_deref() {
-        Some(leads) if leads == bid.bid => {}
-        Some(leads) => {
-            against
-                .push(format!("{} leads, not {name}: a reason is needed.", text::cut(leads, 20)));
+        Some(recommended) if recommended == bid.bid => {}
+        Some(other) => {
+            let other = text::cut(other, 20);
+            against.push(format!("{other} is recommended, not {name}: a reason is needed."));
         }
-        None => against.push("No bid leads: a reason is needed.".to_owned()),
+        None => against.push("No bid is recommended: a reason is needed.".to_owned()),
     }
     lines.extend(against.into_iter().map(|said| (format!("! {said}"), theme.warning())));
     let say = "Type why below. Enter stores it with who, when and why, and keeps these factors for the \

@@ -373,7 +373,7 @@ fn details(app: &App, lot: &LotResult, currency: &str, area: Rect, buffer: &mut 
         let margin = lot.margin_pct.map_or(String::new(), |margin| {
             format!(", the second {} % above", text::number(margin, 2))
         });
-        verdict.push(format!("Least to own: {}{margin}.", text::cut(least, 20)));
+        verdict.push(format!("Least owning cost: {}{margin}.", text::cut(least, 20)));
     }
     if lot.near_tie_order.len() > 1 {
         let by_cost: Vec<&str> =
@@ -384,8 +384,8 @@ fn details(app: &App, lot: &LotResult, currency: &str, area: Rect, buffer: &mut 
             lot.near_tie_order.join(", ")
         ));
     }
-    if let Some(leads) = &lot.recommended {
-        verdict.push(format!("{} leads.", text::cut(leads, 20)));
+    if let Some(recommended) = &lot.recommended {
+        verdict.push(format!("{} is recommended.", text::cut(recommended, 20)));
     }
     let mut verdict = text::wrap(&verdict.join(" "), cells);
     if let Some(award) = &lot.award {
