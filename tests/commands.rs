@@ -178,10 +178,7 @@ fn units_left_out_are_named_with_the_reason() {
         result["left_out"][0]["why"].as_str().is_some_and(|why| why.contains("no_load_loss_w"))
     );
     assert_eq!(result["units"][0]["unit"], "007", "leading zeros count");
-    assert!(
-        program.done(&["rank"]).contains("1 unit left out")
-            || program.done(&["rank"]).contains("left out")
-    );
+    assert!(program.done(&["rank"]).contains("\n1 unit left out:"));
 }
 
 #[test]
@@ -484,6 +481,21 @@ fn columns_of_toml_files_show_a_file_that_is_taken() {
     assert!(names.contains(&"stray_share_pu") && names.contains(&"peak_pu"), "{names:?}");
     assert!(!names.contains(&"cash_flow") && !names.contains(&"max_mass_kg"), "{names:?}");
     assert!(!program.done(&["columns", "units"]).contains("layout"));
+}
+
+/// What is said to a planner can be done: a window of ratings is raised where there is one.
+#[test]
+fn a_limit_that_leaves_no_offer_says_what_helps() {
+    let program = small();
+    for (window, helps) in
+        [("", "import a larger one"), ("offer_sizes_up = 1\n", "raise offer_sizes_up")]
+    {
+        let basis = format!("{BASIS}loading_limit_pu = 0.5\n{window}");
+        program.import("basis", &program.write("basis.toml", basis), &[]);
+        let ranked = program.json(&["rank", "--format", "json"]);
+        let why = ranked["left_out"][0]["why"].as_str().expect("a reason");
+        assert!(why.contains("above loading_limit_pu") && why.contains(helps), "{why}");
+    }
 }
 
 /// The dashboard reads a book and opens it a second time to store an award: the locks of the first stay, without which

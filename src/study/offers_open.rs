@@ -79,7 +79,14 @@ fn none_because(desk: &Desk, context: &Context, i: usize) -> &'static str {
         offer.delivered_by(t) && offer.lawful_at(t) && offer.holds_voltage(&place.duty, t, a)
     };
     if ever(&holds) && !ever(&|offer, t| holds(offer, t) && offer.carries(&place.duty, t, a)) {
-        return "no offer fits: its peak is above loading_limit_pu of each that connects; raise offer_sizes_up, or check peak_kva";
+        return match a.offer_sizes {
+            Some(_) => {
+                "no offer fits: its peak is above loading_limit_pu of each that connects; raise offer_sizes_up, or check peak_kva"
+            }
+            None => {
+                "no offer fits: its peak is above loading_limit_pu of each that connects; import a larger one, or check peak_kva"
+            }
+        };
     }
     "no offer fits: the voltage drop at its peak is too large with each that connects; check peak_kva and load growth"
 }
