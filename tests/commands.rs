@@ -517,3 +517,15 @@ fn a_book_that_is_opened_twice_keeps_its_locks() {
     drop(Book::open(program.book(), Access::ReadWrite).expect("the same"));
     assert_eq!(locks(), held);
 }
+
+/// A first import that fails takes nothing away that another has stored meanwhile.
+#[test]
+fn a_failed_first_import_leaves_the_book_to_others() {
+    let program = Program::new();
+    let bad = program.write("bad.csv", "unit,rated_kva\nA,big\n");
+    let output = program.run(&["import", "units", &bad.to_string_lossy()]);
+    assert_eq!(code(&output), 3);
+    assert!(program.book().exists(), "the empty book stays: another program may have opened it");
+    let good = program.write("good.csv", "unit,rated_kva\nA,400\n");
+    program.import("units", &good, &[]);
+}

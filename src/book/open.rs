@@ -64,16 +64,23 @@ impl Book {
         }
         // Looked at read-only first, so that what is not ours is never written to.
         if path.exists() {
-            let mut book = reader(path, false).map_err(|error| unopened(path, error))?;
+            let mut frozen =
+                access == Access::ReadOnly && !has_log(path) && !may_write_beside(path);
+            let mut book = reader(path, frozen).map_err(|error| unopened(path, error))?;
             let mut found = recognise(&book);
-            let mut frozen = false;
-            if matches!(&found, Err(Recognised::Failed(_)))
-                && access == Access::ReadOnly
-                && !has_log(path)
-            {
-                book = reader(path, true)?;
-                found = recognise(&book);
-                frozen = true;
+            if matches!(&found, Err(Recognised::Failed(_))) && access == Access::ReadOnly {
+                if has_log(path) && !may_write_beside(path) {
+                    let why = "changes wait in its -wal file, which cannot be taken in here: copy the book with its -wal to a place that may be written to";
+                    return Err(BookError::File {
+                        path: path.to_owned(),
+                        source: std::io::Error::other(why),
+                    });
+                }
+                if !has_log(path) {
+                    book = reader(path, true)?;
+                    found = recognise(&book);
+                    frozen = true;
+                }
             }
             let version = found.map_err(|error| match error {
                 Recognised::Other(why) => not_a_book(why),
@@ -142,6 +149,26 @@ fn has_log(path: &Path) -> bool {
     let mut log = path.as_os_str().to_owned();
     log.push("-wal");
     std::fs::metadata(PathBuf::from(log)).is_ok_and(|meta| meta.len() > 0)
+}
+
+/// Whether the store may keep its files beside the book. Where not, and no changes wait there, the book is read as it
+/// stands, whatever files of an earlier reader lie beside it.
+fn may_write_beside(path: &Path) -> bool {
+    #[cfg(unix)]
+    {
+        use rustix::fs::{Access as May, access};
+        let mut index = path.as_os_str().to_owned();
+        index.push("-shm");
+        let index = PathBuf::from(index);
+        let beside = path.parent().filter(|dir| !dir.as_os_str().is_empty());
+        let there = if index.exists() { &index } else { beside.unwrap_or(Path::new(".")) };
+        access(there, May::WRITE_OK).is_ok()
+    }
+    #[cfg(not(unix))]
+    {
+        let _ = path;
+        true
+    }
 }
 
 pub(super) fn flags(access: Access) -> OpenFlags {

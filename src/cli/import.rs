@@ -61,11 +61,6 @@ pub(super) fn import(
     };
     let actor = book::actor(options.why.clone());
     let report = take_in(&mut book, options.what, source, intake, &actor, &Watch::default())?;
-    if fresh && report.rejected && !options.dry_run {
-        // A book that holds nothing would only puzzle.
-        drop(book);
-        let _ = std::fs::remove_file(&path);
-    }
     say(printer, &report, options.dry_run)?;
     Ok(if report.rejected { Exit::Rejected } else { Exit::Done })
 }
