@@ -52,7 +52,7 @@ fn who_leads_and_what_a_bid_misses_is_said_before_it_is_stored() {
     assert!(screen.contains("owning cost 26 086 EUR a unit"), "{screen}");
     assert!(!screen.contains("a reason is needed"), "{screen}");
     let screen = bench.keys("<Esc><Up>w").screen();
-    assert!(screen.contains("! O1 leads, not O1-ALT: a reason is needed."), "{screen}");
+    assert!(screen.contains("! O1 is recommended, not O1-ALT: a reason is needed."), "{screen}");
     let screen = bench.keys("<Esc><Down><Down>w").screen();
     assert!(screen.contains("! O1-ALT costs 401 EUR a unit less to own."), "{screen}");
     let screen = bench.keys("<Esc><End>w").screen();
@@ -70,7 +70,7 @@ fn who_leads_and_what_a_bid_misses_is_said_before_it_is_stored() {
 fn an_award_is_stored_with_who_when_and_why() {
     let (mut bench, book) = bench();
     let screen = bench.keys("3w<Enter>").screen();
-    assert!(screen.contains("O1 leads; to award another bid, say why."), "{screen}");
+    assert!(screen.contains("O1 is recommended; to award another bid, say why."), "{screen}");
     assert!(awards(&book).is_empty());
     // The line is open still, and what is typed takes the message away.
     let screen = bench.keys("b").screen();
@@ -95,6 +95,20 @@ fn an_award_is_stored_with_who_when_and_why() {
     assert!(screen.contains("chosen award ol-2027-1/L1"), "{screen}");
     assert!(screen.contains("why: board of 1 December"), "{screen}");
     assert_eq!(awards(&book).len(), 1);
+}
+
+/// A reason alone may be a slip of the hand: a bid that misses a limit must be meant.
+#[test]
+fn a_bid_that_is_out_is_asked_for_twice() {
+    let (mut bench, book) = bench();
+    let screen = bench.keys("3<End>w").screen();
+    assert!(screen.contains("begin the reason with: despite"), "{screen}");
+    bench.keys("sister units<Enter>");
+    assert!(awards(&book).is_empty());
+    bench.keys("<Ctrl-u>despite<Enter>");
+    assert!(awards(&book).is_empty(), "the word alone is no reason");
+    bench.keys(" the iron: sister units<Enter>");
+    assert_eq!(awards(&book)[0].why.as_deref(), Some("despite the iron: sister units"));
 }
 
 #[test]
@@ -132,7 +146,7 @@ fn award_as_it_looks() {
         let mut out = String::new();
         for (word, caps) in [("colour", COLOUR), ("patterns", PLAIN), ("ascii", ASCII)] {
             let mut bench = Bench::on(caps, width, height, session().0);
-            bench.keys("3<End>wtheir works had room");
+            bench.keys("3<End>wdespite it their works had room");
             out.push_str(&format!("== {word}\n{}\n", bench.screen()));
             bench.keys("<Enter>k");
             out.push_str(&format!("== {word}, awarded\n{}\n", bench.screen()));

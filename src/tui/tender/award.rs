@@ -44,14 +44,29 @@ pub(in crate::tui) fn award(app: &App) -> Result<Of, String> {
 /// # Errors
 /// That one is needed.
 pub(in crate::tui) fn reasoned(app: &App, bid: &str, why: &str) -> Result<(), String> {
-    let leads = lot(app).and_then(|(_, result)| result.recommended.as_deref());
+    let shown = lot(app).map(|(_, result)| result);
+    let out = shown.and_then(|result| result.bids.iter().find(|of| of.bid == bid));
+    if let Some(out) = out.filter(|of| !of.misses.is_empty() && !means_it(why)) {
+        let misses = draw::misses(out);
+        return Err(format!("It misses {misses}; to award it begin the reason with: despite"));
+    }
+    let leads = shown.and_then(|result| result.recommended.as_deref());
     if leads == Some(bid) || !why.is_empty() {
         return Ok(());
     }
     Err(match leads {
-        Some(leads) => format!("{} leads; to award another bid, say why.", text::cut(leads, 20)),
+        Some(leads) => {
+            format!("{} is recommended; to award another bid, say why.", text::cut(leads, 20))
+        }
         None => "It is not ranked; to award it, say why.".to_owned(),
     })
+}
+
+/// Whether a reason says that a bid which misses a limit is meant: "despite", and more.
+fn means_it(why: &str) -> bool {
+    let mut words = why.split_whitespace();
+    let first = words.next().unwrap_or_default().trim_end_matches([',', ':']);
+    first.eq_ignore_ascii_case("despite") && words.next().is_some()
 }
 
 /// What would be awarded to whom, and what speaks against it, while the reason is typed.
@@ -91,7 +106,10 @@ pub(super) fn draw(
     ];
     let mut against = Vec::new();
     if !bid.misses.is_empty() {
-        against.push(format!("It is out, not ranked: misses {}.", draw::misses(bid)));
+        let misses = draw::misses(bid);
+        against.push(format!(
+            "It is out, not ranked: misses {misses}. If it is meant, begin the reason with: despite"
+        ));
     }
     if let Some(lacked) = shortfall(result, bid) {
         let least = text::cut(&lacked.least, 20);
@@ -100,10 +118,12 @@ pub(super) fn draw(
     match result.recommended.as_deref() {
         Some(leads) if leads == bid.bid => {}
         Some(leads) => {
-            against
-                .push(format!("{} leads, not {name}: a reason is needed.", text::cut(leads, 20)));
+            against.push(format!(
+                "{} is recommended, not {name}: a reason is needed.",
+                text::cut(leads, 20)
+            ));
         }
-        None => against.push("No bid leads: a reason is needed.".to_owned()),
+        None => against.push("No bid is recommended: a reason is needed.".to_owned()),
     }
     lines.extend(against.into_iter().map(|said| (format!("! {said}"), theme.warning())));
     let say = "Type why below. Enter stores it with who, when and why, and keeps these factors for the \

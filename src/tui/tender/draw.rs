@@ -385,7 +385,7 @@ fn details(app: &App, lot: &LotResult, currency: &str, area: Rect, buffer: &mut 
         ));
     }
     if let Some(leads) = &lot.recommended {
-        verdict.push(format!("{} leads.", text::cut(leads, 20)));
+        verdict.push(format!("{} is recommended.", text::cut(leads, 20)));
     }
     let mut verdict = text::wrap(&verdict.join(" "), cells);
     if let Some(award) = &lot.award {
