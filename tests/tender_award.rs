@@ -139,6 +139,20 @@ fn settlement_goes_by_the_terms_of_the_award() {
     let before = settled();
     assert_eq!(before["lots"][0]["awarded_to"], Value::Null);
     award(&program, "L1", "O1", "");
+    let flat = |text: String| text.split_whitespace().collect::<Vec<_>>().join(" ");
+    let factors = || flat(program.done(&["factors", "--tender", TENDER, "--lot", "L1"]));
+    let answer = || flat(program.done(&["tender", TENDER, "--lot", "L1", "--bid", "O1"]));
+    let text = factors();
+    assert!(text.contains("the lot is awarded to O1 on "), "{text}");
+    assert!(text.contains("at A 15 218.65, B 2 840.61") && text.contains("the same as"), "{text}");
+    let text = answer();
+    assert!(text.contains("basis plan-2027 gives the same today:"), "{text}");
+    assert!(text.contains(" A = "), "the working: {text}");
+    // Lot L2 states its factors: no basis gives them.
+    award(&program, "L2", "M1", "");
+    let stated = flat(program.done(&["tender", TENDER, "--lot", "L2", "--bid", "M1"]));
+    assert!(stated.contains("the lot states them itself, and still does."), "{stated}");
+    program.done(&["award", TENDER, "--lot", "L2", "--withdraw", "--why", "not yet"]);
     let basis = std::fs::read_to_string(demo_fleet("basis.toml")).expect("the demo");
     let dearer = basis
         .replace("discount_rate_pct = 6", "discount_rate_pct = 5")
@@ -171,6 +185,12 @@ fn settlement_goes_by_the_terms_of_the_award() {
     ] {
         assert!(flat.contains(said), "{said}\n{bid}");
     }
+    let text = answer();
+    assert!(text.contains("from basis plan-2027 as it stood on "), "{text}");
+    assert!(!text.contains("gives the same today"), "{text}");
+    let text = factors();
+    assert!(text.contains("others than here; what is settled goes by those"), "{text}");
+    assert!(!text.contains("write them below [[lot]]"), "{text}");
     let aside = program.done(&["tender", TENDER, "--lot", "L1", "--bid", "O1", "--from-basis"]);
     assert!(!aside.contains("kept with the award"), "asked for the basis: {aside}");
     let now = &lot["bids"][1];
@@ -178,6 +198,10 @@ fn settlement_goes_by_the_terms_of_the_award() {
     assert!(!flat.contains(&format!("= {} EUR", now["owning_cost"])), "{bid}");
     let report = program.done(&["report", "tender", TENDER, "-"]);
     assert!(report.contains("| L1 | 60 | awarded, second | O1 | Oskavend |"), "{report}");
+    assert!(report.contains("lot L1: compared again now, O1 comes to"), "{report}");
+    assert!(report.contains("| 26 086 |\n"), "as awarded, in the first table: {report}");
+    let head = report.find("Awarded to O1 on ").expect("the award");
+    assert!(head < report.find("How the factors come about").expect("below"), "{report}");
     assert!(report.contains("settled by the factors and the stray share of the award"), "{report}");
 
     // With two bases and none chosen the settlement of an awarded lot still needs none.
@@ -207,15 +231,23 @@ fn what_was_awarded_is_not_changed_by_an_import() {
     let rival = bids.replace("O1-ALT,Oskavend,13980", "O1-ALT,Oskavend,11980");
     refuse("bids", &rival, "price: 11980: would change bid O1-ALT: ol-2027-1/L1 is awarded");
     refuse("bids", &rival, "ironhum award ol-2027-1 --lot L1 --withdraw --why TEXT");
+    let late = bids.replace("ol-2027-1,L1,V1,", "ol-2027-1,L1,V9,");
+    assert_ne!(late, bids);
+    refuse("bids", &late, "bid: V9: is new, but ol-2027-1/L1 is awarded and takes no further bid");
+    let lost = bids.replace("ol-2027-1,L1,V1,", "ol-2027-1,L7,V1,");
+    refuse("bids", &lost, "is no lot of tender ol-2027-1 in the book; its lots: L1, L2");
     let tender = file("tender.toml");
-    refuse("tender", &tender.replace("SEK = 0.0885", "SEK = 0.09"), "is awarded");
+    let dearer = tender.replace("SEK = 0.0885", "SEK = 0.09");
+    refuse("tender", &dearer, "[rates] SEK of tender ol-2027-1 stays at 0.0885, by which lot L1");
+    let at = 1 + tender.lines().position(|line| line.starts_with("SEK")).expect("a rate");
+    refuse("tender", &dearer, &format!("{at}: rates: SEK"));
     refuse(
         "tender",
         &tender.replacen("tolerance = \"iec\"", "tolerance = \"none\"", 1),
         "is awarded",
     );
     refuse("tender", &tender.replace("currency = \"EUR\"", "currency = \"SEK\""), "is awarded");
-    // The same files again, a remark, a late bid and the other lot are no change of what was awarded.
+    // The same files again, a remark, a bid for the other lot and that lot itself are no change of what was awarded.
     program.import("bids", &demo_fleet("bids.csv"), &[]);
     program.import("tender", &demo_fleet("tender.toml"), &[]);
     let remark = bids
@@ -344,6 +376,21 @@ fn a_unit_of_that_name_from_elsewhere_is_not_touched() {
         csv.contains("\nol-0427-01,0427-01,L1,O1,400.0,328.0,2841.0,75.0,same,false\n"),
         "{csv}"
     );
+}
+
+/// Where a tender has one lot it need not be named; else the lots are.
+#[test]
+fn the_lot_of_factors_is_the_only_one() {
+    let program = demo();
+    let (code, error) = refused(&program, &["factors", "--tender", TENDER]);
+    assert_eq!(code, Some(2));
+    assert!(error.contains("the lots of tender ol-2027-1: L1, L2"), "{error}");
+    let tender = std::fs::read_to_string(demo_fleet("tender.toml")).expect("the demo");
+    let until = tender.rfind("[[lot]]").expect("two lots");
+    let one = tender[..until].replace(TENDER, "one");
+    program.import("tender", &program.write("one.toml", one), &[]);
+    let shown = program.done(&["factors", "--tender", "one"]);
+    assert!(shown.contains("Loss factors of tender one, lot L1"), "{shown}");
 }
 
 /// Without a book nothing is made.

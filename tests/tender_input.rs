@@ -307,6 +307,7 @@ fn factors_that_look_like_money_per_watt() {
         assert!(!out.contains(warning) && error.contains(warning), "{command}: {error}");
     }
     // One bid whose losses weigh more than 1 % lifts the doubt: the factors may be meant so.
+    program.done(&["award", "T", "--lot", "L", "--withdraw", "--why", "a further bid"]);
     let heavy = format!("{HEAD}T,L,C,West,90,EUR,2,430,4600\n");
     program.import("bids", &program.write("heavy.csv", heavy), &[]);
     let (out, _) = shown(&["tender", "T", "--lot", "L"]);

@@ -245,9 +245,57 @@ fn a_settlement_reads_as_a_letter() {
     let lot = &json["lots"][0];
     assert_eq!(lot["guaranteed"]["load_loss_w"], 2860.0);
     assert_eq!(lot["units"][3]["exceeds"][0]["loss"], "no-load loss");
+    // A short name is of the lot and the unit that are asked for.
+    let of_unit = ["settle", TENDER, "--lot", "L1", "--serial", "0427-04", "--working", "penalty"];
+    let shown = program.done(&of_unit);
+    assert!(shown.contains("How lots.0.units.3.penalty comes about:"), "{shown}");
+    let (_, _, error) = text(&program.run(&["settle", TENDER, "--working", "?"]));
+    assert!(error.contains("can be opened: "), "{error}");
+    assert_eq!(error.matches("no_load_excess_w").count(), 1, "{error}");
     let (code, _, error) = text(&program.run(&["settle", TENDER, "--serial", "0427-9"]));
     assert_eq!(code, Some(2));
     assert!(error.contains("did you mean 0427-0"), "{error}");
+}
+
+/// A rate the wrong way round makes a price a hundred times the others'.
+#[test]
+fn a_rate_that_makes_a_price_far_is_doubted() {
+    let program = demo();
+    let said = "rate_scale: by the rate stored with the tender the price is ten times";
+    let shown = || {
+        let text = program.done(&["tender", TENDER, "--lot", "L2"]);
+        let check = program.done(&["check"]);
+        [text, check].map(|text| text.split_whitespace().collect::<Vec<_>>().join(" "))
+    };
+    let [text, check] = shown();
+    assert!(!text.contains("rate_scale") && !check.contains("by the rate stored"), "{text}");
+    let tender = std::fs::read_to_string(support::demo_fleet("tender.toml")).expect("the demo");
+    let turned = tender.replace("SEK = 0.0885", "SEK = 11.3");
+    program.import("tender", &program.write("tender.toml", turned), &[]);
+    let [text, check] = shown();
+    assert!(text.contains(&format!("M1, J2: {said}")), "{text}");
+    assert!(check.contains("by the rate stored with the tender the price is ten times"), "{check}");
+}
+
+/// Whether the stray share decides is said where it has a range, else that it may be given one.
+#[test]
+fn an_unknown_split_says_whether_it_decides() {
+    let program = demo();
+    let basis = std::fs::read_to_string(support::demo_fleet("basis.toml")).expect("the demo");
+    let shown = |more: &[&str]| {
+        let text = program.done(&[&["tender", TENDER, "--lot", "L2"], more].concat());
+        text.split_whitespace().collect::<Vec<_>>().join(" ")
+    };
+    let hint = "give stray_share_pu a range to see whether it decides";
+    let has = basis.contains("[range.stray_share_pu]");
+    assert!(!has, "the demo has no such range");
+    assert!(shown(&[]).contains(hint));
+    let with = format!("{basis}\n[range.stray_share_pu]\nlow = 0.05\nhigh = 0.2\n");
+    program.import("basis", &program.write("basis.toml", with), &[]);
+    let text = shown(&[]);
+    assert!(!text.contains(hint) && text.contains("whether its range decides: --risk"), "{text}");
+    let text = shown(&["--risk", "--draws", "100"]);
+    assert!(text.contains("its range decides nothing alone: from 0.05 to 0.2 "), "{text}");
 }
 
 /// V1 lacked 939.07 EUR: the price cut, or the cut of one loss, that makes it up makes it as cheap as the winner.
@@ -260,8 +308,8 @@ fn one_bidder_is_answered() {
     };
     let (flat, shown) = answer("V1");
     let said = "O1-ALT has the least owning cost: 25 953.69 EUR a unit, 939.07 EUR less than V1 (3.62 %). Any one of \
-                these would have made that up: a price lower by 939.07 EUR; a no-load loss lower by 61.7 W; \
-                a load loss lower by 330.6 W.";
+                these would have made that up: a price lower by 939.08 EUR; a no-load loss lower by 61.8 W; \
+                a load loss lower by 330.6 W (as compared at 75 °C and 400 kVA).";
     assert!(flat.contains(said), "{shown}");
     assert!(flat.contains("It ranks 4 of 4 by owning cost."), "{shown}");
     assert!(!shown.contains("Lot L2"), "{shown}");
@@ -291,9 +339,24 @@ fn one_bidder_is_answered() {
     );
     let (flat, shown) = answer("P1");
     assert!(
-        flat.contains("It is not ranked: it misses max_no_load_loss_w (410 W, at most 387 W)."),
+        flat.contains(
+            "It is not ranked: it misses max_no_load_loss_w (410 W, at most 387 W). No lower price makes up for \
+             that."
+        ),
         "{shown}"
     );
+    assert!(
+        flat.contains("Had it kept every limit as it was offered, its owning cost of"),
+        "{shown}"
+    );
+    assert!(!flat.contains("would have made that up"), "{shown}");
+    // An objector sees the awarded bid beside its own.
+    program.done(&["award", TENDER, "--lot", "L1", "--bid", "O1"]);
+    let (flat, shown) = answer("V1");
+    assert!(flat.contains("O1-ALT, least") && flat.contains("O1, awarded"), "{shown}");
+    assert!(flat.contains("owning cost 26 892.76 25 953.69 26 086.30"), "{shown}");
+    let said = "The awarded bid O1 owns for 26 086.30 EUR a unit, 806.46 EUR less than V1.";
+    assert!(flat.contains(said), "{shown}");
     let (code, out, error) =
         text(&program.run(&["tender", TENDER, "--bid", "M2", "--format", "csv"]));
     assert_eq!((code, out.as_str()), (Some(2), ""));
@@ -429,7 +492,7 @@ fn a_supplier_is_told_in_its_own_currency() {
     for said in [
         "- each of 2 units, by the mean: (A 15 000.00 × 400.0 W)/1000 = 6 000.00 EUR",
         "Penalty: 12 000.00 EUR (135 593.22 SEK at the rate stored with the tender, 1 SEK = 0.0885 EUR).",
-        "not measured 6 000.00 67 796.61",
+        "not measured −39.0 6 000.00 67 796.61",
         "Auxiliary losses of some units were not measured: no excess is counted for them.",
         "The guarantee came from 85 °C",
     ] {

@@ -147,10 +147,21 @@ impl Change<'_> {
         Ok(rows.collect::<std::result::Result<_, _>>()?)
     }
 
+    /// The lots of a tender, in order of entry.
+    ///
+    /// # Errors
+    /// The store fails.
+    pub fn lots_of(&self, tender: &str) -> Result<Vec<String>> {
+        let (of, from) = ("WHERE tender = ?1", Lot::from_values);
+        let lots = read::records(&self.transaction, &tables::LOTS, from, of, [tender])?;
+        Ok(lots.into_iter().map(|lot| lot.lot).collect())
+    }
+
     /// Holds that a tender sheet leaves what was awarded as it is.
     ///
     /// # Errors
-    /// It changes an awarded lot, or the currency or a rate of a tender with one ([`BookError::Awarded`]).
+    /// It changes an awarded lot, or what stands at the head of a tender with one ([`BookError::Awarded`]), or a rate of
+    /// it ([`BookError::AwardedRate`]).
     pub(super) fn keeps_awarded(&self, sheet: &TenderSheet) -> Result<()> {
         let (store, tender) = (&self.transaction, sheet.tender.tender.as_str());
         let of = "WHERE tender = ?1";
@@ -169,9 +180,17 @@ impl Change<'_> {
         let known = read::records(store, &tables::TENDERS, Tender::from_values, of, [tender])?;
         let rates =
             read::records(store, &tables::TENDER_RATES, TenderRate::from_values, of, [tender])?;
-        let kept = |rate: &TenderRate| sheet.rates.contains(rate);
-        if known.first() != Some(&sheet.tender) || !rates.iter().all(kept) {
+        if known.first() != Some(&sheet.tender) {
             return awarded(&first.lot);
+        }
+        let kept = |rate: &&TenderRate| sheet.rates.contains(rate);
+        if let Some(rate) = rates.iter().find(|rate| !kept(rate)) {
+            return Err(BookError::AwardedRate {
+                tender: tender.into(),
+                lot: first.lot.clone(),
+                currency: rate.currency.clone(),
+                rate: rate.rate,
+            });
         }
         Ok(())
     }

@@ -106,6 +106,21 @@ pub enum BookError {
         /// The lot.
         lot: String,
     },
+    /// The rates under which a lot was awarded stay.
+    #[error(
+        "[rates] {currency} of tender {tender} stays at {rate}, by which lot {lot} was awarded; to change it, withdraw \
+         the award first: ironhum award {tender} --lot {lot} --withdraw --why TEXT"
+    )]
+    AwardedRate {
+        /// The tender.
+        tender: String,
+        /// An awarded lot of it.
+        lot: String,
+        /// The currency.
+        currency: String,
+        /// Its rate in the book.
+        rate: f64,
+    },
     /// An award of which units are in the fleet.
     #[error(
         "units of lot {lot} of tender {tender} are in the fleet: the award that they came of stays"

@@ -216,9 +216,9 @@ pub struct Rank {
 #[derive(Clone, Debug, Default, clap::Args)]
 pub struct Factors {
     /// Factors of a lot of this tender
-    #[arg(long, value_name = "TENDER", requires = "lot")]
+    #[arg(long, value_name = "TENDER")]
     pub tender: Option<String>,
-    /// The lot
+    /// The lot [default: the only one of the tender]
     #[arg(long, value_name = "LOT", requires = "tender")]
     pub lot: Option<String>,
     /// Peak load of year 1 over the rating
@@ -376,7 +376,7 @@ pub struct Settle {
     /// Only this bid: the letter to its supplier
     #[arg(long, value_name = "BID")]
     pub bid: Option<String>,
-    /// Show how each figure comes about, or the one that is named
+    /// Show how each figure comes about, or the one that is named (from the lot or the serial that is given); ? lists the names
     #[arg(long, value_name = "FIGURE", num_args = 0..=1, default_missing_value = "")]
     pub working: Option<String>,
     /// Show the working of this unit only

@@ -79,7 +79,9 @@ impl From<BookError> for Failure {
     fn from(error: BookError) -> Self {
         let exit = match error {
             BookError::Unknown { .. } | BookError::WhichBasis { .. } => Exit::Usage,
-            BookError::Awarded { .. } | BookError::Delivered { .. } => Exit::Rejected,
+            BookError::Awarded { .. }
+            | BookError::AwardedRate { .. }
+            | BookError::Delivered { .. } => Exit::Rejected,
             _ => Exit::Failed,
         };
         Self::new(exit, error.to_string())

@@ -21,8 +21,12 @@ pub(super) fn factors(
     printer: &mut Printer,
 ) -> Result<Exit, Failure> {
     let Opened { book, .. } = book::open_to_read(args)?;
-    if let (Some(tender), Some(lot)) = (&options.tender, &options.lot) {
+    if let Some(tender) = &options.tender {
         let case = Case::read(&book, tender, args.basis.as_deref())?;
+        let lot = &match &options.lot {
+            Some(lot) => lot.clone(),
+            None => case.only_lot().map_err(|why| Failure::new(Exit::Usage, why.to_string()))?,
+        };
         let case = if options.from_basis { case.from_basis() } else { case };
         let result = case.factors(lot)?;
         warn_of_scale(printer, lot, &result.flags);

@@ -10,7 +10,7 @@ use super::print::Printer;
 use super::tender::warn_of_scale;
 use crate::study::StudyError;
 use crate::study::explain::Explained as _;
-use crate::study::settle::{LotSettlement, Settled, UnitSettlement, letter};
+use crate::study::settle::{LotSettlement, SettleResult, Settled, UnitSettlement, letter};
 use crate::study::tender::Case;
 
 const KEYS: &[&str] = &[
@@ -75,6 +75,7 @@ pub(super) fn settle(
         Format::Text => {
             let settled = Settled(&case);
             if let Some(figure) = options.working.as_ref().filter(|figure| !figure.is_empty()) {
+                let figure = &in_place(options, &full, &settled.figures()?, figure);
                 let steps = settled.working(figure)?;
                 printer.line(format!("How {figure} comes about:"))?;
                 write_working(printer, &steps, 1, case.money())?;
@@ -96,6 +97,37 @@ pub(super) fn settle(
         }
     }
     Ok(Exit::Done)
+}
+
+/// The full name of a figure that is named from the lot, the bid or the unit that is asked for; else as it is written.
+fn in_place(
+    options: &Settle,
+    full: &SettleResult,
+    known: &[(String, f64)],
+    figure: &str,
+) -> String {
+    if options.lot.is_none() && options.bid.is_none() && options.serial.is_none() {
+        return figure.to_owned();
+    }
+    let is = |asked: &Option<String>, name: &str| asked.as_ref().is_none_or(|asked| asked == name);
+    let mut places = Vec::new();
+    for (n, lot) in full.lots.iter().enumerate() {
+        if !is(&options.lot, &lot.lot) || !is(&options.bid, &lot.bid) {
+            continue;
+        }
+        match &options.serial {
+            None => places.push(format!("lots.{n}.{figure}")),
+            Some(serial) => {
+                let of = lot.units.iter().enumerate().filter(|(_, unit)| unit.serial == *serial);
+                places.extend(of.map(|(m, _)| format!("lots.{n}.units.{m}.{figure}")));
+            }
+        }
+    }
+    places.retain(|place| known.iter().any(|(name, _)| name == place));
+    match places.as_slice() {
+        [one] => one.clone(),
+        _ => figure.to_owned(),
+    }
 }
 
 /// The figures of a settled lot that are opened, each with what it is called: all, or those of one unit.

@@ -28,7 +28,7 @@ flags! {
     10, VECTOR_GROUP_UNREAD, "vector_group_unread", "the vector group has no clock number that could be read; it is passed over";
     11, CARBON_SERIES, "carbon_series", "both the basis and the price series give CO2 per kWh; the series counts";
     12, LOSS_ESTIMATED, "loss_estimated", "a loss is estimated from the fleet's known units";
-    13, SPLIT_UNKNOWN, "split_unknown", "the load loss is brought to another temperature and its split into I²R and stray is not known: stray_share_pu of the basis is used; ask the maker for the loss at the reference temperature, and give stray_share_pu a range to see whether it decides";
+    13, SPLIT_UNKNOWN, "split_unknown", "the load loss is brought to another temperature and its split into I²R and stray is not known: stray_share_pu of the basis is used; ask the maker for the loss at the reference temperature";
     14, NO_REFERENCE_TEMP, "no_reference_temp", "no reference temperature of the bid or of the lot: the load loss is compared as quoted; ask for it and import the bid (or the lot) with reference_temp_c";
     15, LIMIT_UNKNOWN, "limit_unknown", "a value that the lot limits is blank in the bid; it passes: ask the bidder and import the bid again";
     16, LAW_RELAXED, "law_relaxed", "no offer meets the law in a year in which the unit may fail; a forced purchase passes it over";
@@ -54,6 +54,8 @@ flags! {
     36, FROM_TEST, "from_test", "a blank of the nameplate is filled from the unit's test report";
     37, LOSS_SCALE, "loss_scale", "a loss is below 0.02 W (no-load) or 0.2 W (load) per kVA of the rating: were kW written in a column of W? (common practice, no source)";
     38, TEST_TEMP_BLANK, "test_temp_blank", "test_temp_c is blank, so the load loss counts as one at the lot's reference temperature, but the bid was quoted at another: where the report gives it at the bid's temperature, import that as test_temp_c";
+    39, MEASURED_BEYOND, "measured_beyond", "more units are measured than the lot has: is a serial number written in two ways, or does a unit belong to another lot?";
+    40, RATE_SCALE, "rate_scale", "by the rate stored with the tender the price is ten times, or a tenth, of what the other bids ask on the median: is the rate that of one unit of the bid's currency in the tender's? (common practice, no source)";
 }
 
 impl Flags {

@@ -21,7 +21,7 @@ use crate::engine::transformer::losses::{self, quoted};
 use crate::engine::transformer::plausibility::{self, looks_in_kw};
 use crate::engine::transformer::vector_group;
 use crate::engine::working::Silent;
-use crate::study::tender::{BasisForFactors, looks_per_watt};
+use crate::study::tender::{BasisForFactors, bids_far_by_rate, looks_per_watt};
 use crate::study::test_report::TestedUnit;
 use crate::study::{Desk, StudyError, Watch};
 
@@ -142,6 +142,10 @@ pub fn each_doubt(
                 let key = format!("{}/{}", tender.tender, lot.lot);
                 let of = ("lot", key.as_str());
                 doubts.flag(of, "factor_a_per_kw", Kind::Implausible, Flags::FACTOR_SCALE);
+            }
+            for bid in bids_far_by_rate(&sheet, &lot.lot).unwrap_or_default() {
+                let key = format!("{}/{}/{bid}", tender.tender, lot.lot);
+                doubts.flag(("bid", &key), "currency", Kind::Implausible, Flags::RATE_SCALE);
             }
         }
         let lot_of = |lot: &str| sheet.lots.iter().find(|of| of.lot == lot);

@@ -185,7 +185,16 @@ fn named<'n>(
     match fit[..] {
         [name] => Ok(name),
         [] => {
-            let ends = names.iter().filter_map(|name| name.rsplit('.').next());
+            let mut ends: Vec<&str> = Vec::new();
+            for end in names.iter().filter_map(|name| name.rsplit('.').next()) {
+                if !ends.contains(&end) {
+                    ends.push(end);
+                }
+            }
+            if figure == "?" {
+                let why = format!("in {} can be opened: {}", called(), ends.join(", "));
+                return Err(Refusal::new("figure", figure, why).into());
+            }
             Err(StudyError::unknown("figure", figure, called(), ends))
         }
         _ => {

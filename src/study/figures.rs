@@ -134,9 +134,27 @@ pub fn short(value: f64) -> String {
     }
 }
 
+/// What is enough: the number rounded up to a number of decimal places, but not for the noise of the last digits.
+pub fn enough(value: f64, places: usize) -> String {
+    let scale = 10_f64.powi(i32::try_from(places).unwrap_or(0));
+    let (scaled, nearest) = (value * scale, (value * scale).round());
+    let noise = (scaled - nearest).abs() <= 1e-9 * scaled.abs();
+    group(if noise { nearest } else { scaled.ceil() } / scale, places)
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;
+
+    #[test]
+    fn enough_is_never_too_little() {
+        assert_eq!(enough(939.0612, 2), "939.07");
+        assert_eq!(enough(2.21, 1), "2.3");
+        assert_eq!(enough(2.3, 1), "2.3");
+        assert_eq!(enough(0.1 + 0.2, 1), "0.3");
+        assert_eq!(enough(1234.0, 0), "1 234");
+        assert_eq!(enough(0.0, 1), "0.0");
+    }
 
     #[test]
     fn numbers_for_people() {

@@ -21,7 +21,8 @@ use crate::engine::decision::tender::Terms;
 use crate::engine::decision::tender::bid::Comparable;
 use crate::engine::decision::tender::rates::amount_in_currency;
 use crate::engine::decision::tender::settlement::{
-    Delivered, beyond, delivered, mean, mean_cost, penalty_of_mean, penalty_of_units,
+    Delivered, beyond, correction_alone, delivered, mean, mean_cost, penalty_of_mean,
+    penalty_of_units,
 };
 use crate::engine::decision::tender::tolerance::Exceeded;
 use crate::engine::economics::penalty::{Excess, penalty};
@@ -158,6 +159,9 @@ pub struct UnitSettlement {
     pub exceeds: Vec<ExceedsRow>,
     /// The penalty in the currency of the bid, where it is another than the tender's.
     pub penalty_in_bid_currency: Option<f64>,
+    /// How far above its guarantee a unit exactly at it comes out at this test's temperature by the corrections alone
+    /// (below: negative); none where the bid was quoted or the unit tested at the lot's reference temperature.
+    pub correction_alone_w: Option<f64>,
 }
 
 /// A part of the tolerance that a unit exceeds; percent of the guarantee.
@@ -254,7 +258,9 @@ impl<'a> Guarantee<'a> {
         let promise = bring(&mut Silent, &terms, bid)?;
         // As it is shown wherever the tender is.
         let flags = flags.with_if(factor_scale(sheet, &terms)?, Flags::FACTOR_SCALE);
-        let units = measured_of(sheet, bid).collect();
+        let units: Vec<&Measured> = measured_of(sheet, bid).collect();
+        let beyond = i64::try_from(units.len()).is_ok_and(|n| n > terms.quantity());
+        let flags = flags.with_if(beyond, Flags::MEASURED_BEYOND);
         let foreign = bid.currency.as_deref().filter(|code| *code != sheet.tender.currency);
         let rated = |code| Ok::<_, Refusal>((code, terms.rates.of(Some(code))?));
         let foreign = foreign.map(rated).transpose()?;
@@ -389,6 +395,13 @@ impl<'a> Guarantee<'a> {
             penalty_in_bid_currency: self
                 .foreign
                 .map(|(_, rate)| amount_in_currency(&mut Silent, owed, rate)),
+            correction_alone_w: correction_alone(
+                &mut Silent,
+                &self.terms,
+                self.bid,
+                &self.promise,
+                unit,
+            ),
         }
     }
 }

@@ -24,6 +24,7 @@ use crate::engine::decision::tender::factors::{Computed, of_lot};
 use crate::engine::decision::tender::limits::{self, Findings};
 use crate::engine::decision::tender::map::WinnerMap;
 use crate::engine::decision::tender::ranking::{self, Ranking, Standing, rank};
+use crate::engine::decision::tender::rates::price_is_far;
 use crate::engine::decision::tender::{Plane, Rates, Terms, legal};
 use crate::engine::economics::loss_factors::LossFactors;
 use crate::engine::economics::owning_cost::OwningCost;
@@ -356,7 +357,12 @@ impl<'a> Judged<'a> {
     fn under(sheet: &'a TenderSheet, terms: Terms<'a>, flags: Flags) -> Result<Self, StudyError> {
         let lot = terms.lot;
         let bids = bids_of(sheet, &lot.lot).map(|bid| Assessed::new(&terms, bid));
-        let bids: Vec<Assessed> = bids.collect::<Result<_, _>>()?;
+        let mut bids: Vec<Assessed> = bids.collect::<Result<_, _>>()?;
+        let far = far_by_rate(sheet, &lot.lot, &terms.rates)?;
+        for of in &mut bids {
+            let is_far = far.contains(&of.bid.bid.as_str());
+            of.found.flags = of.found.flags.with_if(is_far, Flags::RATE_SCALE);
+        }
         let standings: Vec<Standing> = bids.iter().map(Assessed::standing).collect();
         let ranking = rank(&standings, terms.near_tie_pct);
         let flags = flags
@@ -464,6 +470,44 @@ pub fn looks_per_watt(
 ) -> Result<bool, StudyError> {
     let (terms, _) = terms(&mut Silent, sheet, basis, find_lot(sheet, lot)?)?;
     factor_scale(sheet, &terms)
+}
+
+/// Bids of a lot in another currency whose price the rate brings to ten times or a tenth of that of the others.
+///
+/// # Errors
+/// A currency without a rate.
+fn far_by_rate<'a>(
+    sheet: &'a TenderSheet,
+    lot: &str,
+    rates: &Rates,
+) -> Result<Vec<&'a str>, StudyError> {
+    let price = |bid: &'a Bid| {
+        let rate = rates.of(bid.currency.as_deref()).map_err(|refusal| StudyError::Refused {
+            at: format!("lot {lot}, bid {}", bid.bid),
+            refusal,
+        })?;
+        Ok((bid, Rates::convert(&mut Silent, bid.price.amount(), rate, "price")))
+    };
+    let prices: Vec<(&Bid, f64)> =
+        bids_of(sheet, lot).map(price).collect::<Result<_, StudyError>>()?;
+    let is_foreign =
+        |bid: &Bid| bid.currency.as_deref().is_some_and(|code| code != sheet.tender.currency);
+    let is_far = |(n, (bid, own)): (usize, &(&'a Bid, f64))| {
+        let others = prices.iter().enumerate().filter(|(m, _)| *m != n);
+        let far = is_foreign(bid) && price_is_far(*own, others.map(|(_, (_, price))| *price));
+        far.then_some(bid.bid.as_str())
+    };
+    Ok(prices.iter().enumerate().filter_map(is_far).collect())
+}
+
+/// The same for a lot of a sheet, for what is doubtful of the book.
+///
+/// # Errors
+/// As [`evaluate`].
+pub fn bids_far_by_rate<'a>(sheet: &'a TenderSheet, lot: &str) -> Result<Vec<&'a str>, StudyError> {
+    let at = format!("tender {}", sheet.tender.tender);
+    let rates = Rates::new(&sheet.tender, &sheet.rates).map_err(StudyError::refused(at))?;
+    far_by_rate(sheet, lot, &rates)
 }
 
 /// Whether the factors of a lot look like money per W: where they do, it is said wherever the tender is shown.

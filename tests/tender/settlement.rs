@@ -175,31 +175,65 @@ fn kw_in_a_column_of_watt_is_doubted() {
     assert_eq!(in_kw.rank, Some(1));
 }
 
-/// A unit that reads just what was guaranteed, at the temperature of the quotation, is never charged: the two forms of the
-/// stray share leave room, they do not take it. And the letter says that both are used.
+/// A unit exactly at its guarantee, its loss split as the bid's: tested on the same side of the lot's temperature as the bid
+/// was quoted it is never charged by the correction alone, on the other side it is; and the letter says by how much.
 #[test]
-fn a_unit_at_its_guarantee_is_not_charged() {
-    let lot = Lot { reference_temp_c: Some(75.0), ..lot(400.0, 9000.0, 3000.0, 0.0) };
-    let bid = Bid { reference_temp_c: Some(85.0), ..bid("A", 900.0, 400.0, 4000.0) };
-    for share in [0.0, 0.1, 0.3, 0.5, 1.0] {
-        let basis = ironhum::engine::columns::Basis {
-            stray_share_pu: Some(share),
-            ..crate::sheets::basis("USD", 10, 5.0, 0.1)
-        };
-        let (assumptions, market) = crate::sheets::resolved(&basis);
-        let basis =
-            ironhum::study::tender::BasisForFactors { assumptions: &assumptions, market: &market };
-        let mut sheet = sheet("USD", lot.clone(), vec![bid.clone()]);
-        sheet.measured =
-            vec![Measured { test_temp_c: Some(85.0), ..measured("A", "1", 400.0, 4000.0) }];
-        let result = settle(&sheet, Some(&basis), None).expect("complete");
-        let excess = result.lots[0].units[0].load_excess_w;
-        assert!(excess <= 1e-9, "{share}: {excess}");
-        // s(1−s)(r − 1/r)² of the guarantee is all that they differ by.
-        let r: f64 = 320.0 / 310.0;
-        let room = 4000.0 * share * (1.0 - share) * (r - 1.0 / r).powi(2);
-        assert!(excess >= -1.1 * room - 1e-9, "{share}: {excess} {room}");
-        let letter = ironhum::study::settle::letter::settlement(&result).to_markdown();
-        assert!(letter.contains("a unit exactly at its guarantee is not charged"), "{letter}");
+fn a_unit_at_its_guarantee_is_charged_on_the_other_side_only() {
+    let (t0, reference) = (235.0, 75.0);
+    let lot = Lot { reference_temp_c: Some(reference), ..lot(400.0, 9000.0, 3000.0, 0.0) };
+    for quoted in [55.0, 85.0, 120.0] {
+        let bid = Bid { reference_temp_c: Some(quoted), ..bid("A", 900.0, 400.0, 4000.0) };
+        for share in [0.0, 0.1, 0.3, 0.5, 1.0] {
+            let basis = ironhum::engine::columns::Basis {
+                stray_share_pu: Some(share),
+                ..crate::sheets::basis("USD", 10, 5.0, 0.1)
+            };
+            let (assumptions, market) = crate::sheets::resolved(&basis);
+            let basis = ironhum::study::tender::BasisForFactors {
+                assumptions: &assumptions,
+                market: &market,
+            };
+            for test in [10.0, 20.0, 55.0, 70.0, 80.0, 85.0, 120.0, 140.0] {
+                let y: f64 = (t0 + test) / (t0 + quoted);
+                let read = 4000.0 * ((1.0 - share) * y + share / y);
+                let mut sheet = sheet("USD", lot.clone(), vec![bid.clone()]);
+                sheet.measured =
+                    vec![Measured { test_temp_c: Some(test), ..measured("A", "1", 400.0, read) }];
+                let result = settle(&sheet, Some(&basis), None).expect("complete");
+                let unit = &result.lots[0].units[0];
+                let at = format!("{quoted} {share} {test}");
+                let alone = unit.correction_alone_w.expect("both are corrected");
+                assert!((unit.load_excess_w - alone).abs() < 1e-8, "{at}: {alone}");
+                // The closed form of the methods.
+                let r: f64 = (t0 + reference) / (t0 + quoted);
+                let x: f64 = (t0 + test) / (t0 + reference);
+                let apart = 4000.0 * share * (1.0 - share) * (r - 1.0 / r) * (x - 1.0 / x)
+                    / ((1.0 - share) * x + share / x);
+                assert!((alone - apart).abs() < 1e-8, "{at}: {alone} {apart}");
+                let same_side = (quoted > reference) == (test > reference);
+                let split = share > 0.0 && share < 1.0;
+                assert_eq!(alone > 1e-9, split && !same_side, "{at}: {alone}");
+                let letter = ironhum::study::settle::letter::settlement(&result).to_markdown();
+                assert!(letter.contains("correction alone"), "{letter}");
+                let warned = letter.contains("the correction alone puts a unit exactly");
+                assert_eq!(warned, alone >= 0.05, "{at}\n{letter}");
+            }
+        }
     }
+}
+
+/// More measured than the lot has is said with the settlement.
+#[test]
+fn more_measured_than_the_lot_has_is_said() {
+    let of = |quantity| {
+        let lot = Lot { quantity: Some(quantity), ..lot(400.0, 9000.0, 3000.0, 0.0) };
+        let mut sheet = sheet("USD", lot, vec![bid("A", 900.0, 400.0, 4000.0)]);
+        sheet.measured = ["1", "2"].map(|serial| measured("A", serial, 410.0, 4000.0)).to_vec();
+        let result = settle(&sheet, None, None).expect("complete");
+        ironhum::study::settle::letter::settlement(&result).to_markdown()
+    };
+    let said = "measured_beyond: more units are measured than the lot has";
+    assert!(of(1).contains(said), "{}", of(1));
+    assert!(!of(2).contains(said), "{}", of(2));
+    assert!(of(1).contains("Products and sums are of unrounded amounts."));
 }

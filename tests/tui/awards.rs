@@ -97,6 +97,20 @@ fn an_award_is_stored_with_who_when_and_why() {
     assert_eq!(awards(&book).len(), 1);
 }
 
+/// A reason alone may be a slip of the hand: a bid that misses a limit must be meant.
+#[test]
+fn a_bid_that_is_out_is_asked_for_twice() {
+    let (mut bench, book) = bench();
+    let screen = bench.keys("3<End>w").screen();
+    assert!(screen.contains("begin the reason with: despite"), "{screen}");
+    bench.keys("sister units<Enter>");
+    assert!(awards(&book).is_empty());
+    bench.keys("<Ctrl-u>despite<Enter>");
+    assert!(awards(&book).is_empty(), "the word alone is no reason");
+    bench.keys(" the iron: sister units<Enter>");
+    assert_eq!(awards(&book)[0].why.as_deref(), Some("despite the iron: sister units"));
+}
+
 #[test]
 fn what_is_shown_is_what_is_awarded() {
     let (mut bench, book) = bench();
@@ -132,7 +146,7 @@ fn award_as_it_looks() {
         let mut out = String::new();
         for (word, caps) in [("colour", COLOUR), ("patterns", PLAIN), ("ascii", ASCII)] {
             let mut bench = Bench::on(caps, width, height, session().0);
-            bench.keys("3<End>wtheir works had room");
+            bench.keys("3<End>wdespite it their works had room");
             out.push_str(&format!("== {word}\n{}\n", bench.screen()));
             bench.keys("<Enter>k");
             out.push_str(&format!("== {word}, awarded\n{}\n", bench.screen()));

@@ -69,6 +69,8 @@ impl Intake<'_> {
                         ties.keeps_evidence(known, values, |place, why| {
                             faults.push(fault(place, why));
                         })?;
+                    } else {
+                        ties.not_late(values, |place, why| faults.push(fault(place, why)))?;
                     }
                     if faults.is_empty() {
                         ties.note_lot(values);
@@ -242,7 +244,10 @@ impl<'c> Ties<'c> {
                     let known = known.iter().map(String::as_str).collect();
                     broken(self.places[0], unknown("tender", tender, known));
                 } else if !self.change.has(&LOTS, &[tender, lot])? {
-                    broken(self.places[1], format!("is no lot of tender {tender} in the book"));
+                    let known = self.change.lots_of(tender)?.join(", ");
+                    let why =
+                        format!("is no lot of tender {tender} in the book; its lots: {known}");
+                    broken(self.places[1], why);
                 } else if self.what == What::Bids {
                     if let Some(currency) = text(2)
                         && !self.change.knows_currency(tender, currency)?
@@ -337,6 +342,28 @@ impl<'c> Ties<'c> {
         };
         for place in changed {
             broken(place, why.clone());
+        }
+        Ok(())
+    }
+
+    /// Holds that no bid comes in for a lot once it is awarded: it would stand among those that were compared.
+    fn not_late(
+        &self,
+        values: &[Value],
+        mut broken: impl FnMut(usize, String),
+    ) -> Result<(), IntakeError> {
+        let place = BIDS.position("bid").filter(|_| self.what == What::Bids);
+        let ([Value::Text(tender), Value::Text(lot)], Some(place)) =
+            ([0, 1].map(|at| &values[self.places.get(at).copied().unwrap_or(0)]), place)
+        else {
+            return Ok(());
+        };
+        if self.change.awarded(tender, lot)?.is_some() {
+            let why = format!(
+                "is new, but {tender}/{lot} is awarded and takes no further bid; withdraw the award first: \
+                 ironhum award {tender} --lot {lot} --withdraw --why TEXT"
+            );
+            broken(place, why);
         }
         Ok(())
     }

@@ -102,6 +102,11 @@ impl Intake<'_> {
             Err(error @ BookError::InUse { kind: "currency", .. }) => {
                 self.problems.add(sheet.line("currency"), "currency", "", error.to_string());
             }
+            Err(ref error @ BookError::AwardedRate { ref currency, .. }) => {
+                // A rate that is gone from the file is told of the head of the rates.
+                let line = sheet.line(&format!("rates.{currency}")).max(sheet.line("rates"));
+                self.problems.add(line, "rates", currency, error.to_string());
+            }
             Err(error @ (BookError::InUse { .. } | BookError::Awarded { .. })) => {
                 self.problems.add(1, "lot", "", error.to_string());
             }

@@ -88,12 +88,29 @@ fn correction(letter: &mut Letter, lot: &LotSettlement) {
             short(reference)
         ));
         if let Some(quoted) = g.quoted_temp_c.filter(|quoted| *quoted != reference) {
-            letter.text(format!(
-                "The guarantee came from {} °C with that share of the loss there, the tests with that share of the loss at {} °C. Between the two a test never comes out above the guarantee by the correction alone: a unit exactly at its guarantee is not charged.",
-                short(quoted),
-                short(reference)
-            ));
+            apart(letter, lot, quoted, reference);
         }
+    }
+}
+
+/// How far the two ways of correcting lie apart for the tests as they were made.
+fn apart(letter: &mut Letter, lot: &LotSettlement, quoted: f64, reference: f64) {
+    let side = if quoted > reference { "above" } else { "below" };
+    letter.text(format!(
+        "The guarantee came from {quoted} °C with that share of the loss there, the tests with that share of the loss at {reference} °C. A unit exactly at its guarantee and tested at a temperature {side} {reference} °C, {quoted} °C among them, is not charged by the correction alone; tested on the other side it may be. The column \"correction alone\" says by how many W such a unit comes out above the guarantee (below: −) at the temperature of each test.",
+        quoted = short(quoted),
+        reference = short(reference)
+    ));
+    let above = |unit: &&UnitSettlement| unit.correction_alone_w.is_some_and(|w| w >= 0.05);
+    let above: Vec<&UnitSettlement> = lot.units.iter().filter(above).collect();
+    let most = above.iter().filter_map(|unit| unit.correction_alone_w).reduce(f64::max);
+    if let Some(most) = most {
+        let serials: Vec<&str> = above.iter().map(|unit| unit.serial.as_str()).collect();
+        letter.warning(format!(
+            "{}: the correction alone puts a unit exactly at its guarantee up to {} W above it, and it is charged for that; ask the maker for the split of the load loss",
+            serials.join(", "),
+            group(most, 1)
+        ));
     }
 }
 
@@ -132,8 +149,12 @@ fn promise(letter: &mut Letter, lot: &LotSettlement, currency: &str) {
         }
         _ => "none",
     };
+    let of = match g.tolerance {
+        "none" => "",
+        _ => "; it covers the no-load and the load loss only, not auxiliary losses",
+    };
     letter.text(format!(
-        "{per}; each loss counts from its guarantee and on its own; a loss below its guarantee earns no credit. Tolerance, beyond which a unit may be rejected: {rule}."
+        "{per}; each loss counts from its guarantee and on its own; a loss below its guarantee earns no credit. Tolerance, beyond which a unit may be rejected: {rule}{of}."
     ));
 }
 
@@ -155,6 +176,10 @@ fn units(letter: &mut Letter, lot: &LotSettlement, currency: &str) {
     if with_aux {
         columns.push(Column::figures("aux excess", "W"));
     }
+    let with_correction = lot.units.iter().any(|unit| unit.correction_alone_w.is_some());
+    if with_correction {
+        columns.push(Column::figures("correction alone", "W"));
+    }
     columns.push(Column::figures("penalty", currency));
     columns.extend(lot.bid_currency.as_ref().map(|code| Column::figures("penalty", code)));
     columns.push(Column::words("remark"));
@@ -173,6 +198,9 @@ fn units(letter: &mut Letter, lot: &LotSettlement, currency: &str) {
         if with_aux {
             let not = || "not measured".to_owned();
             cells.push(unit.auxiliary_excess_w.map_or_else(not, |w| group(w, 1)));
+        }
+        if with_correction {
+            cells.push(unit.correction_alone_w.map_or_else(blank, |w| group(w, 1)));
         }
         cells.push(group(unit.penalty, 2));
         cells.extend(unit.penalty_in_bid_currency.map(|amount| group(amount, 2)));
@@ -230,6 +258,9 @@ fn outcome(letter: &mut Letter, lot: &LotSettlement, currency: &str) {
         _ => String::new(),
     };
     letter.text(format!("Penalty: {} {currency}{foreign}.", group(lot.penalty, 2)));
+    if lot.penalty > 0.0 {
+        letter.text("Products and sums are of unrounded amounts.");
+    }
     if let Some(rest) = lot.penalty_without_rejectable {
         letter.text(format!(
             "If the units that may be rejected are rejected, the penalty of the others: {} {currency}.",

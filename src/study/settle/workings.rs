@@ -5,7 +5,7 @@ use crate::engine::columns::{Measured, Settlement};
 use crate::engine::decision::place::stated::{LOAD_LOSS, said};
 use crate::engine::decision::tender::rates::amount_in_currency;
 use crate::engine::decision::tender::settlement::{
-    beyond, delivered, mean, mean_cost, penalty_of_mean, penalty_of_units,
+    beyond, correction_alone, delivered, mean, mean_cost, penalty_of_mean, penalty_of_units,
 };
 use crate::engine::economics::loss_factors::LossFactors;
 use crate::engine::economics::penalty::penalty;
@@ -220,6 +220,9 @@ impl Guarantee<'_> {
             }
             ["owning_cost_delivered"] => {
                 self.as_delivered(w, unit).owning_cost(w);
+            }
+            ["correction_alone_w"] => {
+                correction_alone(w, &self.terms, self.bid, &self.promise, unit);
             }
             ["load_loss_w"] => load_loss(w, all, measured.losses.load_loss_w, "as measured"),
             ["exceeds", n, _] => {

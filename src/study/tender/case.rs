@@ -157,9 +157,29 @@ impl Case {
         self.basis.as_ref().map(|(desk, _)| desk.sheet.basis.name.as_str())
     }
 
+    /// Whether the basis says how far this input may lie.
+    pub fn has_range(&self, quantity: &str) -> bool {
+        let ranges = self.basis.iter().flat_map(|(desk, _)| &desk.sheet.ranges);
+        ranges.into_iter().any(|range| range.quantity == quantity)
+    }
+
     /// Whether the basis says how far any input may lie.
     pub fn has_ranges(&self) -> bool {
         self.basis.as_ref().is_some_and(|(desk, _)| !desk.sheet.ranges.is_empty())
+    }
+
+    /// The lot of a tender that has but one.
+    ///
+    /// # Errors
+    /// It has more, or none.
+    pub fn only_lot(&self) -> Result<String, StudyError> {
+        let lots: Vec<&str> = self.sheet.lots.iter().map(|lot| lot.lot.as_str()).collect();
+        if let [lot] = lots[..] {
+            return Ok(lot.to_owned());
+        }
+        let (tender, lots) = (&self.sheet.tender.tender, lots.join(", "));
+        let why = format!("is needed: --lot NAME; the lots of tender {tender}: {lots}");
+        Err(Refusal::new("lot", "", why).into())
     }
 
     /// Evaluates the bids of one lot, or of all.

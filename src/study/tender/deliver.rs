@@ -8,6 +8,7 @@ use crate::book::tables::{DELIVERIES, UNITS};
 use crate::book::{Actor, Book, Change, Outcome, Upsert};
 use crate::engine::Refusal;
 use crate::engine::columns::{Bid, Column, Delivery, Lot, Unit, Value};
+use crate::engine::flags::Flags;
 use crate::engine::transformer::vector_group;
 use crate::study::StudyError;
 use crate::study::settle::{LotSettlement, UnitSettlement};
@@ -27,7 +28,7 @@ pub struct Wanted<'a> {
 }
 
 /// What taking delivered units into the fleet came to.
-#[derive(Clone, Debug, PartialEq, Serialize)]
+#[derive(Clone, Debug, Default, PartialEq, Serialize)]
 pub struct DeliverResult {
     /// The tender.
     pub tender: String,
@@ -35,6 +36,8 @@ pub struct DeliverResult {
     pub units: Vec<DeliveredUnit>,
     /// Lots and units that were left out.
     pub left_out: Vec<NotDelivered>,
+    /// Lots of which more units of the awarded bid are measured than they have.
+    pub lots_measured_beyond: Vec<String>,
 }
 
 /// A unit that came of a tender.
@@ -92,8 +95,7 @@ pub fn deliver(
     let change = book.change(actor, Some(&format!("tender {tender}")))?;
     case.still_stands(&change)?;
     let mut fleet = Fleet::new(&change, wanted.prefix, &earlier)?;
-    let mut result =
-        DeliverResult { tender: tender.clone(), units: Vec::new(), left_out: Vec::new() };
+    let mut result = DeliverResult { tender: tender.clone(), ..DeliverResult::default() };
     for lot in sheet.lots.iter().filter(|lot| wanted.lot.is_none_or(|name| lot.lot == name)) {
         let leave = |serial: Option<&String>, why| NotDelivered {
             lot: lot.lot.clone(),
@@ -109,6 +111,9 @@ pub fn deliver(
             result.left_out.push(leave(None, "has no measured unit of the awarded bid"));
             continue;
         };
+        if Flags::MEASURED_BEYOND.keys().iter().any(|key| of_bid.flags.contains(key)) {
+            result.lots_measured_beyond.push(lot.lot.clone());
+        }
         for unit in &of_bid.units {
             if wanted.except.contains(&unit.serial) {
                 result.left_out.push(leave(Some(&unit.serial), "is excepted"));

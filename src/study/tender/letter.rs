@@ -41,6 +41,7 @@ pub fn result(case: &Case, result: &TenderResult) -> Letter {
     for of in &result.lots {
         let about = lot::About::new(case, result, of);
         asks(&mut letter, &about);
+        award::headline(&mut letter, &about);
         factor_scale(&mut letter, &about);
         loss_scale(&mut letter, &about);
         factors(&mut letter, &about);

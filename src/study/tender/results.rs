@@ -159,6 +159,13 @@ pub struct Awarded {
 }
 
 impl Awarded {
+    /// Whether a comparison of the lot goes by the very factors of the award.
+    pub fn has_factors_of(&self, lot: &LotResult) -> bool {
+        self.factor_a_per_kw == lot.factor_a_per_kw
+            && self.factor_b_per_kw == lot.factor_b_per_kw
+            && self.factor_aux_per_kw == lot.factor_aux_per_kw
+    }
+
     /// The award of a record, its bid as it compares now.
     pub fn of(record: &Award, now: &BidResult) -> Self {
         Self {

@@ -44,7 +44,13 @@ pub(in crate::tui) fn award(app: &App) -> Result<Of, String> {
 /// # Errors
 /// That one is needed.
 pub(in crate::tui) fn reasoned(app: &App, bid: &str, why: &str) -> Result<(), String> {
-    let recommended = lot(app).and_then(|(_, result)| result.recommended.as_deref());
+    let shown = lot(app).map(|(_, result)| result);
+    let out = shown.and_then(|result| result.bids.iter().find(|of| of.bid == bid));
+    if let Some(out) = out.filter(|of| !of.misses.is_empty() && !means_it(why)) {
+        let misses = draw::misses(out);
+        return Err(format!("It misses {misses}; to award it begin the reason with: despite"));
+    }
+    let recommended = shown.and_then(|result| result.recommended.as_deref());
     if recommended == Some(bid) || !why.is_empty() {
         return Ok(());
     }
@@ -54,6 +60,13 @@ pub(in crate::tui) fn reasoned(app: &App, bid: &str, why: &str) -> Result<(), St
         }
         None => "It is not ranked; to award it, say why.".to_owned(),
     })
+}
+
+/// Whether a reason says that a bid which misses a limit is meant: "despite", and more.
+fn means_it(why: &str) -> bool {
+    let mut words = why.split_whitespace();
+    let first = words.next().unwrap_or_default().trim_end_matches([',', ':']);
+    first.eq_ignore_ascii_case("despite") && words.next().is_some()
 }
 
 /// What would be awarded to whom, and what speaks against it, while the reason is typed.
@@ -93,7 +106,10 @@ pub(super) fn draw(
     ];
     let mut against = Vec::new();
     if !bid.misses.is_empty() {
-        against.push(format!("It is out, not ranked: misses {}.", draw::misses(bid)));
+        let misses = draw::misses(bid);
+        against.push(format!(
+            "It is out, not ranked: misses {misses}. If it is meant, begin the reason with: despite"
+        ));
     }
     if let Some(lacked) = shortfall(result, bid) {
         let least = text::cut(&lacked.least, 20);

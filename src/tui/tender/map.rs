@@ -57,10 +57,13 @@ pub(super) fn draw(
     let cloud = risk.map_or(&[][..], |risk| &risk.cloud);
     let cloud = drawn(cloud, [map.a_max, map.b_max], [width, height]);
 
+    // A cell is wide: the sign may stand in that of another region, so the winner is named.
+    let least = lot.least_owning_cost.as_deref().unwrap_or_default();
     let today_said = format!(
-        "◆ today {} / {}",
+        "◆ today {} / {}: {}",
         text::number(lot.factor_a_per_kw, 0),
-        text::number(lot.factor_b_per_kw, 0)
+        text::number(lot.factor_b_per_kw, 0),
+        text::cut(least, 12)
     );
     let mut said = vec![format!("B, {currency}/kW"), today_said];
     if let Some(risk) = risk {

@@ -45,6 +45,20 @@ pub fn in_currency<R: Recorder>(w: &mut R, own: f64, rate: f64) -> f64 {
     w.step(&IN_CURRENCY, &[("own", own), ("rate", rate)], own / rate)
 }
 
+/// Whether a price, brought to the tender currency, is ten times or a tenth of the median of the lot's other bids, which a
+/// rate the wrong way round makes it (common practice, no source). Never without another bid.
+pub fn price_is_far(price: f64, others: impl IntoIterator<Item = f64>) -> bool {
+    let mut others: Vec<f64> = others.into_iter().collect();
+    others.sort_by(f64::total_cmp);
+    let (Some(low), Some(high)) =
+        (others.get(others.len().saturating_sub(1) / 2), others.get(others.len() / 2))
+    else {
+        return false;
+    };
+    let median = f64::midpoint(*low, *high);
+    median > 0.0 && (price >= 10.0 * median || price <= 0.1 * median)
+}
+
 impl<'a> Rates<'a> {
     /// The rates of a tender.
     ///

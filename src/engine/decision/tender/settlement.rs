@@ -11,7 +11,9 @@ use crate::engine::economics::penalty::Excess;
 use crate::engine::flags::Flags;
 use crate::engine::transformer::losses::Losses;
 use crate::engine::transformer::plausibility::looks_in_kw;
-use crate::engine::transformer::temperature::{load_loss_at_reference, vanishing_temp_c};
+use crate::engine::transformer::temperature::{
+    load_loss_at, load_loss_at_reference, vanishing_temp_c,
+};
 use crate::engine::working::{Formula, Recorder};
 
 /// A delivered unit against its guarantee.
@@ -84,6 +86,41 @@ pub fn delivered<R: Recorder>(
         reactance_pu: None,
     };
     Delivered { losses, excess, flags }
+}
+
+const CORRECTION_ALONE: Formula = Formula {
+    name: "what the two corrections alone put a unit exactly at its guarantee above it",
+    symbol: "ΔP_corr",
+    formula: "corrected − guaranteed",
+    unit: "W",
+    source: "methods, section 8",
+};
+
+/// How far above its guarantee a unit that is exactly at it comes out when it is tested at another temperature than the
+/// lot's (W; below: negative): the bid splits its loss at the temperature of the quotation, the correction of the test at
+/// the lot's. None where not both are corrected. With x and r the ratios of resistances of the test and of the lot's
+/// temperature, from the lot's and from the quoted one, its sign is that of (r − 1/r)·(x − 1/x).
+pub fn correction_alone<R: Recorder>(
+    w: &mut R,
+    terms: &Terms,
+    bid: &Bid,
+    guaranteed: &Comparable,
+    measured: &Measured,
+) -> Option<f64> {
+    let (quoted_c, test_c) = (bid.reference_temp_c?, measured.test_temp_c?);
+    let reference_c = terms.lot.reference_temp_c?;
+    if quoted_c == reference_c || test_c == reference_c {
+        return None;
+    }
+    let t0 = vanishing_temp_c(bid.winding_metal.unwrap_or(WindingMetal::Copper));
+    let (share, promised) = (terms.stray_share_pu, guaranteed.losses.load_loss_w);
+    let stray = share * guaranteed.quoted_load_loss_w;
+    let resistive = guaranteed.quoted_load_loss_w - stray;
+    w.open();
+    let read = load_loss_at(w, resistive, stray, t0, quoted_c, test_c);
+    let corrected = load_loss_at_reference(w, read, share, t0, test_c, reference_c);
+    let inputs = [("corrected", corrected), ("guaranteed", promised)];
+    Some(w.close(&CORRECTION_ALONE, &inputs, corrected - promised))
 }
 
 const MEAN: Formula = Formula {

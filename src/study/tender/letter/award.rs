@@ -3,6 +3,7 @@
 use super::lot::About;
 use super::{day, flag};
 use crate::engine::decision::equal_pv;
+use crate::engine::flags::Flags;
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
 use crate::study::figures::{group, short};
@@ -30,12 +31,24 @@ fn terms(award: &Awarded, currency: &str) -> String {
     )
 }
 
-/// The award of a lot and whether the comparison has changed since; nothing where it is not awarded.
+/// The award of a lot with its terms; nothing where it is not awarded.
 pub(in crate::study) fn standing(letter: &mut Letter, about: &About) {
     let Some(award) = &about.result.award else { return };
     letter.heading(3, "Award");
     letter.text(format!("Awarded to {}", sentence(award)));
     letter.text(terms(award, about.currency));
+}
+
+/// Beside the head of an awarded lot: that what follows is compared by today's basis, and what the award itself says.
+pub(in crate::study) fn headline(letter: &mut Letter, about: &About) {
+    let Some(award) = &about.result.award else { return };
+    letter.text(format!(
+        "Awarded to {} on {} at an owning cost of {} {} a unit; the settlement goes by the award. What follows is compared with today's basis.",
+        award.bid,
+        day(&award.awarded_at),
+        group(award.owning_cost, 2),
+        about.currency
+    ));
     if let Some(changed) = changed_since(about.result, about.currency) {
         letter.warning(changed);
     }
@@ -194,6 +207,12 @@ pub fn delivered(result: &DeliverResult) -> Letter {
             Some(serial) => format!("Left out: {serial} of lot {} {}.", out.lot, out.why),
             None => format!("Left out: lot {} {}.", out.lot, out.why),
         });
+    }
+    if !result.lots_measured_beyond.is_empty() {
+        let lots = result.lots_measured_beyond.join(", ");
+        for key in Flags::MEASURED_BEYOND.keys() {
+            letter.warning(format!("lot {lots}: {}", flag(key)));
+        }
     }
     let rejectable: Vec<&str> = result
         .units

@@ -1,12 +1,13 @@
 //! The factors of a lot as they go into the tender documents.
 
-use super::flag;
+use super::{day, flag};
+use crate::engine::columns::Award;
 use crate::engine::economics::loss_factors::LossFactors;
 use crate::exchange::Letter;
 use crate::exchange::letter::Column;
 use crate::study::explain::StepRow;
 use crate::study::figures::{group, short};
-use crate::study::tender::{Case, InCurrency, LegalLimit, LotFactors};
+use crate::study::tender::{Case, InCurrency, LegalLimit, LotFactors, award_of};
 
 /// The published factors of a lot, with their working where it is wanted.
 pub fn lot_factors(case: &Case, factors: &LotFactors, working: bool) -> Letter {
@@ -28,6 +29,9 @@ pub fn lot_factors(case: &Case, factors: &LotFactors, working: bool) -> Letter {
             format!("Computed from basis {basis} by the {} method{stated}.", factors.method)
         }
     });
+    if let Some(award) = award_of(&case.sheet, &factors.lot) {
+        letter.warning(awarded(award, factors));
+    }
     letter.text(format!(
         "Money per kW of loss, once, not per year. B holds for the load loss at {} kVA; for a bid of another rating it is B·(S_lot/S_bid)².",
         short(factors.rated_kva)
@@ -60,7 +64,7 @@ pub fn lot_factors(case: &Case, factors: &LotFactors, working: bool) -> Letter {
     letter.points(factors.law.iter().map(legal).collect());
     if let Some(published) = &factors.published {
         letter.text(stands(factors, published));
-    } else if factors.basis.is_some() {
+    } else if factors.basis.is_some() && award_of(&case.sheet, &factors.lot).is_none() {
         letter.text(format!(
             "Once they are published they must not move with the basis: write them below [[lot]] of the tender file and import it again. Their working is to be had afterwards with: {again}."
         ));
@@ -78,6 +82,22 @@ pub fn lot_factors(case: &Case, factors: &LotFactors, working: bool) -> Letter {
         letter.lines(StepRow::lines(&factors.working, 0, case.money()));
     }
     letter
+}
+
+/// At which factors the lot is awarded.
+fn awarded(award: &Award, own: &LotFactors) -> String {
+    let kept = [award.factor_a_per_kw, award.factor_b_per_kw, award.factor_aux_per_kw];
+    let same = kept == [own.factor_a_per_kw, own.factor_b_per_kw, own.factor_aux_per_kw];
+    let [a, b, aux] = kept.map(|value| group(value, 2));
+    let basis = award.basis.as_ref().map_or(String::new(), |name| format!(" from basis {name}"));
+    let than =
+        if same { "the same as here" } else { "others than here; what is settled goes by those" };
+    format!(
+        "the lot is awarded to {} on {} at A {a}, B {b}, A aux {aux} {}/kW{basis}: {than}",
+        award.bid,
+        day(&award.awarded_at),
+        own.currency
+    )
 }
 
 /// Whether the factors that the lot states are those of the basis, as far as they are written.

@@ -10,6 +10,8 @@ use crate::study::tender::{
     BidResult, Case, ChangeResult, LotResult, Miss, MoveResult, TenderResult, bids_of,
 };
 
+const STRAY_SHARE: &str = "stray_share_pu";
+
 /// A lot with what is said of it.
 #[derive(Clone, Copy)]
 pub(in crate::study) struct About<'a> {
@@ -32,6 +34,33 @@ impl<'a> About<'a> {
 
     pub(super) fn bid(&self, name: &str) -> Option<&'a Bid> {
         bids_of(&self.case.sheet, &self.result.lot).find(|bid| bid.bid == name)
+    }
+
+    /// A flag of a bid with its meaning; of an unknown split also whether it decides.
+    pub(super) fn flag(&self, key: &str) -> String {
+        let said = flag_at(key, self.result.stray_share_pu);
+        if !Flags::SPLIT_UNKNOWN.keys().contains(&key) {
+            return said;
+        }
+        let risk = self.result.risk.as_ref();
+        let swing = risk.and_then(|risk| risk.swing.iter().find(|s| s.quantity == STRAY_SHARE));
+        match (self.case.has_range(STRAY_SHARE), swing) {
+            (false, _) => format!("{said}; give {STRAY_SHARE} a range to see whether it decides"),
+            (true, None) => format!("{said}; whether its range decides: --risk"),
+            (true, Some(swing)) if swing.winner_low == swing.winner_high => format!(
+                "{said}; its range decides nothing alone: from {} to {} {} wins",
+                short(swing.low),
+                short(swing.high),
+                swing.winner_low
+            ),
+            (true, Some(swing)) => format!(
+                "{said}; its range decides: at {} {} wins, at {} {}",
+                short(swing.low),
+                swing.winner_low,
+                short(swing.high),
+                swing.winner_high
+            ),
+        }
     }
 
     pub(super) fn ranked(&self) -> impl Iterator<Item = &'a BidResult> + use<'a> {
@@ -305,7 +334,7 @@ pub(in crate::study) fn doubts(letter: &mut Letter, about: &About) {
         }
     }
     for (key, bids) in said {
-        let said = flag_at(key, about.result.stray_share_pu);
+        let said = about.flag(key);
         letter.warning(format!("{}: {said}", bids.join(", ")));
     }
 }

@@ -1,6 +1,6 @@
 //! The report of a tender: everything that buyers, bidders and auditors ask, from factors to settlement.
 
-use super::award::standing;
+use super::award::{changed_since, headline, standing};
 use super::lot::About;
 use super::{
     asks, cautions, changes, cost_bars, doubts, excluded, factor_scale, factors, loss_scale, map,
@@ -31,6 +31,7 @@ pub fn report(
     for of in &result.lots {
         let about = About::new(case, result, of);
         asks(&mut letter, &about);
+        headline(&mut letter, &about);
         factor_scale(&mut letter, &about);
         loss_scale(&mut letter, &about);
         factors(&mut letter, &about);
@@ -81,23 +82,30 @@ fn opening(letter: &mut Letter, case: &Case, result: &TenderResult) {
     letter.text(
         "Owning cost of a unit = price + A·no-load loss + B·load loss + A aux·auxiliary loss + freight, installation and other adders; losses in kW.",
     );
-    letter.table(
-        vec![
-            Column::words("lot"),
-            Column::figures("units", ""),
-            Column::words("is"),
-            Column::words("bid"),
-            Column::words("bidder"),
-            Column::figures("owning cost", currency),
-            Column::figures("whole lot", currency),
-            Column::figures("above the least", "%"),
-        ],
-        result.lots.iter().flat_map(outcome).collect(),
-    );
+    let with_award = result.lots.iter().any(|lot| lot.award.is_some());
+    let mut columns = vec![
+        Column::words("lot"),
+        Column::figures("units", ""),
+        Column::words("is"),
+        Column::words("bid"),
+        Column::words("bidder"),
+        Column::figures("owning cost", currency),
+        Column::figures("whole lot", currency),
+        Column::figures("above the least", "%"),
+    ];
+    if with_award {
+        columns.push(Column::figures("owning cost as awarded", currency));
+    }
+    letter.table(columns, result.lots.iter().flat_map(|lot| outcome(lot, with_award)).collect());
+    for lot in &result.lots {
+        if let Some(changed) = changed_since(lot, currency) {
+            letter.warning(format!("lot {}: {changed}", lot.lot));
+        }
+    }
 }
 
 /// The bids that count in a lot, a row for each: that of least owning cost, the next, the recommended, the awarded one.
-fn outcome(lot: &LotResult) -> Vec<Vec<String>> {
+fn outcome(lot: &LotResult, with_award: bool) -> Vec<Vec<String>> {
     let blank = || "–".to_owned();
     let least = lot.bids.iter().find(|bid| bid.rank == Some(1)).map(|bid| bid.owning_cost);
     let above = |bid: &BidResult| {
@@ -120,7 +128,7 @@ fn outcome(lot: &LotResult) -> Vec<Vec<String>> {
         if bid.rank.is_none() {
             words.push("excluded");
         }
-        Some(vec![
+        let mut cells = vec![
             lot.lot.clone(),
             lot.quantity.to_string(),
             words.join(", "),
@@ -129,13 +137,20 @@ fn outcome(lot: &LotResult) -> Vec<Vec<String>> {
             money(bid.owning_cost),
             money(bid.lot_cost),
             above(bid).unwrap_or_else(blank),
-        ])
+        ];
+        if with_award {
+            let own = lot.award.as_ref().filter(|award| award.bid == bid.bid);
+            cells.push(own.map_or_else(blank, |award| money(award.owning_cost)));
+        }
+        Some(cells)
     };
     let rows: Vec<Vec<String>> = lot.bids.iter().filter_map(row).collect();
     if rows.is_empty() {
         let (name, units) = (lot.lot.clone(), lot.quantity.to_string());
         let none = "no bid is ranked".to_owned();
-        return vec![vec![name, units, none, blank(), blank(), blank(), blank(), blank()]];
+        let mut cells = vec![name, units, none];
+        cells.resize_with(if with_award { 9 } else { 8 }, blank);
+        return vec![cells];
     }
     rows
 }
