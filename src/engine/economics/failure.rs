@@ -30,7 +30,9 @@ impl Weibull {
     /// Probability that a unit of `age` fails within `years` (pu).
     pub fn fails_within<R: Recorder>(&self, w: &mut R, age: f64, years: f64) -> f64 {
         let hazard = |x: f64| (x / self.scale_years).powf(self.shape);
-        let value = -(hazard(age) - hazard(age + years)).exp_m1();
+        let lived = hazard(age);
+        // Nobody lives to an age at which the sum of the hazard is beyond any number.
+        let value = if lived.is_finite() { -(lived - hazard(age + years)).exp_m1() } else { 1.0 };
         let inputs = [("a", age), ("η", self.scale_years), ("b", self.shape), ("n", years)];
         w.step(&FAILS_WITHIN, &inputs, value)
     }
@@ -47,5 +49,7 @@ mod tests {
         let weibull = Weibull { shape: 3.5, scale_years: 45.0 };
         let p = weibull.fails_in_year(&mut Silent, 35.0);
         assert!((p / 0.042_086_761_94 - 1.0).abs() < 1e-9);
+        let steep = Weibull { shape: 100.0, scale_years: 0.1 };
+        assert_eq!(steep.fails_in_year(&mut Silent, 146.0), 1.0);
     }
 }
