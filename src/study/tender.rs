@@ -599,6 +599,7 @@ impl Contest {
             losses.no_load_loss_w,
             losses.load_loss_w,
             &winner.factors,
+            [terms.lot.max_no_load_loss_w, terms.lot.max_load_loss_w],
         ));
         found.extend(field.of_stray_share(w, terms.stray_share_pu));
         if let Some(basis) = basis.filter(|_| Computed::by(terms.lot).any()) {

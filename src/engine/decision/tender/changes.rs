@@ -32,6 +32,13 @@ const BY_RATE: Formula = Formula {
     unit: "%",
     source: "searched outward from today's rate and bisected to 1e-9 points; methods, section 8",
 };
+const BY_LIMIT: Formula = Formula {
+    name: "move of a loss of the winner to the lot's limit, beyond which it is out",
+    symbol: "by",
+    formula: "limit − today",
+    unit: "W",
+    source: "limits of the lot; methods, section 8",
+};
 const NEAREST_A: Formula = Formula {
     name: "A of the nearest pair at which another bid costs as much as the winner",
     symbol: "A_there",
@@ -200,7 +207,8 @@ impl Field<'_> {
         ]
     }
 
-    /// What the winner itself quotes: price, no-load and load loss (W, at its rating). `own` are its factors.
+    /// What the winner itself quotes: price, no-load and load loss (W, at its rating). `own` are its factors, `limits`
+    /// the lot's highest no-load and load loss.
     pub fn of_winner<R: Recorder>(
         &self,
         w: &mut R,
@@ -208,13 +216,27 @@ impl Field<'_> {
         no_load_loss_w: f64,
         load_loss_w: f64,
         own: &LossFactors,
+        limits: [Option<f64>; 2],
     ) -> [Change; 3] {
         let (a, b) = (own.factor_a_per_kw, own.factor_b_per_kw);
-        [
-            self.linear(w, "price", price, |_, _| -1.0),
-            self.linear(w, "no_load_loss_w", no_load_loss_w, |_, _| -a / 1000.0),
-            self.linear(w, "load_loss_w", load_loss_w, |_, _| -b / 1000.0),
-        ]
+        let price = self.linear(w, "price", price, |_, _| -1.0);
+        let iron = self.linear(w, "no_load_loss_w", no_load_loss_w, |_, _| -a / 1000.0);
+        let iron = self.up_to(w, limits[0], iron);
+        let copper = self.linear(w, "load_loss_w", load_loss_w, |_, _| -b / 1000.0);
+        [price, iron, self.up_to(w, limits[1], copper)]
+    }
+
+    /// The change of a loss of the winner that may not pass a limit: beyond it the next bid wins.
+    fn up_to<R: Recorder>(&self, w: &mut R, limit: Option<f64>, change: Change) -> Change {
+        let Some(limit) = limit.filter(|limit| change.up.is_none_or(|up| up.to > *limit)) else {
+            return change;
+        };
+        let next = self.leads_today().into_iter().min_by(|(_, a), (_, b)| a.total_cmp(b));
+        let Some((bid, _)) = next else { return change };
+        let by = (limit - change.base).max(0.0);
+        let inputs = [("limit", limit), ("today", change.base)];
+        state_move(w, &BY_LIMIT, &inputs, by, (change.quantity, true));
+        Change { up: Some(Move { by, to: limit, bid }), ..change }
     }
 
     /// The stray share by which load losses of unknown split were brought to the lot's temperature; none where no
@@ -429,11 +451,17 @@ mod tests {
         assert_eq!(b.up, Some(Move { by: 3500.0, to: 4000.0, bid: 2 }));
         assert_eq!((b.down, aux.down, aux.up), (None, None, None));
         let [price, iron, copper] =
-            field.of_winner(&mut Silent, 6000.0, 2000.0, 4000.0, &field.factors);
+            field.of_winner(&mut Silent, 6000.0, 2000.0, 4000.0, &field.factors, [None; 2]);
         assert_eq!(price.up, Some(Move { by: 1000.0, to: 7000.0, bid: 0 }));
         assert_eq!(iron.up.map(|up| up.by), Some(500.0));
         assert_eq!(copper.up.map(|up| up.by), Some(2000.0));
         assert_eq!((price.down, iron.down, copper.down), (None, None, None));
+        // A limit that comes first puts the winner out; one beyond the border changes nothing.
+        let limits = [Some(2100.0), Some(6500.0)];
+        let [_, iron, copper] =
+            field.of_winner(&mut Silent, 6000.0, 2000.0, 4000.0, &field.factors, limits);
+        assert_eq!(iron.up, Some(Move { by: 100.0, to: 2100.0, bid: 0 }));
+        assert_eq!(copper.up.map(|up| up.by), Some(2000.0));
         let border = nearest_border(&mut Silent, &field).expect("has rivals");
         assert_eq!((border.at, border.distance_per_kw, border.bid), ([1000.0, 500.0], 1000.0, 0));
     }
